@@ -1,0 +1,133 @@
+package study
+
+import (
+	"bankfire/diffusion"
+	"bankfire/diffusion/catalogue"
+	"bankfire/paths/traverse"
+	"bankfire/thermal"
+)
+
+// Study is a study file read and checked: plain data in SI, times in s from
+// the start of each path, values of an element in that element's unit.
+type Study struct {
+	Title      string
+	File       string  // the study file as the user named it
+	Confidence float64 // of the verdicts, 0 to 1; 0.95 where the study says nothing
+	Thresholds []Threshold
+	Paths      []Path // at least one, names differ
+	Crystals   []Crystal
+	Inputs     []Input  // the study first, then every other file in the order of its first use
+	Notes      []string // what was assumed or looks odd and stops nothing
+}
+
+// Input is one file that the study rests on.
+type Input struct {
+	Name   string // as written in the study; without its folder where that was an absolute one
+	SHA256 string // of its bytes, in lower-case hexadecimal
+}
+
+// Threshold is a temperature that the user named; time above it is reported.
+type Threshold struct {
+	Name string
+	Temp float64 // K
+}
+
+// Path is one temperature-time path, written out leg by leg.
+type Path struct {
+	Name     string
+	History  *thermal.History
+	Eruption float64 // s from the start; the end of the path where the study says nothing
+	Place    thermal.Place
+}
+
+// Crystal is a shape, the zones it is made of and the elements measured in it.
+type Crystal struct {
+	Name, Mineral string
+	Shape         diffusion.Shape
+	R0            float64   // inner radius, m; 0 is the centre
+	Zones         []Zone    // at least one, from the inside outwards
+	Elements      []Element // at least one
+	Place         thermal.Place
+}
+
+// Zone is a growth zone with its width. Widths add up from the inner radius
+// outwards.
+type Zone struct {
+	Name  string
+	Width float64 // m, above 0
+	Times float64 // factor on D, above 0; 1 where the study says nothing
+}
+
+// Element is one element of a crystal: how it moves, what it started from,
+// what held at the ends and what was measured.
+type Element struct {
+	Name, Unit string // Unit is that of every value below and of the traverse
+	Law        Law
+	Start      Start
+	Inner      []Rim              // nil is sealed: at the centre, symmetry
+	Rims       []Rim              // at least one
+	Traverse   *traverse.Traverse // nil if nothing was measured; then no value is free
+	Place      thermal.Place
+}
+
+// Law is the diffusivity of an element with what is known about it.
+type Law struct {
+	Key        string         // key in the catalogue, name of a [[law]], or "" for one written with the element
+	Row        *catalogue.Row // nil unless it is from the catalogue
+	Law        diffusion.Law
+	Sigma      float64 // standard deviation of log10 D at mid-range; 0 if the study does not say
+	TMin, TMax float64 // calibrated range, K; both 0 if the study does not say
+	Citation   string
+}
+
+// Plateau is a value before the measured traverse has been looked at.
+type Plateau struct {
+	Free         bool    // fitted from the traverse alone
+	Value, Sigma float64 // unless Free: the value, and its standard deviation from other analyses; 0 is exact
+}
+
+// Start is an element's profile before diffusion.
+type Start struct {
+	Zones []Plateau // one a zone
+	Edge  float64   // width of the edge between two zones, m: an error function of standard deviation Edge/4; 0 is a jump
+}
+
+// Rim says what holds at an end of the crystal from a moment on, until the
+// next rim of the list.
+type Rim struct {
+	Kind  diffusion.RimKind
+	Zone  int             // held at the plateau of this zone; -1 if it is not tied to one
+	Value Plateau         // held and tied to no zone
+	Given *Series         // prescribed
+	From  *thermal.Moment // nil in the first of a list: from the start of the path
+	Place thermal.Place
+}
+
+// Series is a value against time, linear between its rows; equal times jump.
+type Series struct {
+	Time           []float64 // s, never falling
+	Value          []float64 // in the element's unit
+	BeforeEruption bool      // Time counts from eruption and is negative before it, else it counts from the start
+	Place          thermal.Place
+}
+
+// FreeValue describes one column of a Problem's Basis: a value that the
+// traverse decides, alone or together with a prior.
+type FreeValue struct {
+	Name     string            // "core", "rim", "rim 2"
+	Prior    thermal.Uncertain // if HasPrior
+	HasPrior bool
+}
+
+// Size returns the outer radius of the crystal, m.
+func (c *Crystal) Size() float64 {
+	r := c.R0
+	for _, z := range c.Zones {
+		r += z.Width
+	}
+	return r
+}
+
+// Mirrored reports whether the inner end of the crystal is a centre of
+// symmetry for the element, so that what lies beyond it is its mirror image.
+func (c *Crystal) Mirrored(e *Element) bool { return c.R0 == 0 && e.Inner == nil }
