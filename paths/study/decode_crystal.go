@@ -1,0 +1,181 @@
+package study
+
+import (
+	"fmt"
+	"strconv"
+
+	"bankfire/diffusion"
+)
+
+// crystals reads every [[crystal]].
+func (d *decoder) crystals(root *node) []Crystal {
+	list := d.need(root, "crystal", "write one [[crystal]] with name, mineral, shape, zones and one [[crystal.element]]")
+	var out []Crystal
+	seen := map[string]int{}
+	for _, n := range d.tables(list, `begin a crystal with "[[crystal]]"`) {
+		out = append(out, d.crystal(n, seen))
+	}
+	if len(out) > 1 {
+		d.report(list.items[1], "a second crystal", "this version takes one crystal; put the others in studies of their own")
+	}
+	return out
+}
+
+func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
+	d.keys(n, "name", "mineral", "shape", "inner", "zones", "element")
+	c := Crystal{Place: d.place(n)}
+	if v := d.need(n, "name", `write a name, such as name = "HF-12"`); v != nil {
+		var ok bool
+		if c.Name, ok = d.name(v, `write a name, such as "HF-12"`); ok {
+			d.unique(v, c.Name, seen)
+		}
+	}
+	c.Mineral, _ = d.name(d.need(n, "mineral", `write the mineral, such as mineral = "quartz"`), `write it like "quartz"`)
+	c.Shape = d.shape(d.need(n, "shape", `write shape = "slab", "cylinder" or "ball"`))
+	c.Zones = d.zones(n)
+	inner := d.inner(n.get("inner"), &c)
+	d.elements(n, &c, inner)
+	return c
+}
+
+func (d *decoder) shape(n *node) diffusion.Shape {
+	const remedy = `write "slab", "cylinder" or "ball"`
+	text, ok := d.text(n, remedy)
+	if !ok {
+		return diffusion.Slab
+	}
+	var words []string
+	for s := diffusion.Slab; s <= diffusion.Ball; s++ {
+		if text == s.String() {
+			return s
+		}
+		words = append(words, s.String())
+	}
+	d.reportWord(n, "no shape of a crystal", words, remedy)
+	return diffusion.Slab
+}
+
+// reportWord reports a word that is none of the known ones and suggests the
+// nearest.
+func (d *decoder) reportWord(n *node, problem string, known []string, remedy string) {
+	if near := nearest(n.text, known); near != "" {
+		remedy = fmt.Sprintf("did you mean %q?", near)
+	}
+	d.report(n, problem, remedy)
+}
+
+// zones reads the zones of a crystal, from the inside outwards.
+func (d *decoder) zones(n *node) []Zone {
+	const example = `write zones = [ { name = "core", width = "140 um" } ], from the centre outwards`
+	var out []Zone
+	seen := map[string]int{}
+	for _, z := range d.tables(d.need(n, "zones", example), example) {
+		out = append(out, d.zone(z, seen))
+	}
+	return out
+}
+
+func (d *decoder) zone(n *node, seen map[string]int) Zone {
+	d.keys(n, "name", "width", "times")
+	z := Zone{Times: 1}
+	if v := d.need(n, "name", `write a name, such as name = "core"`); v != nil {
+		z.Name = d.zoneName(v, seen)
+	}
+	z.Width, _ = d.quantity(d.need(n, "width", `write a width, such as width = "140 um"`), width)
+	if v := n.get("times"); v != nil {
+		z.Times, _ = d.number(v, "write the factor on the diffusivity as a number, such as times = 0.1")
+	}
+	return z
+}
+
+// zoneName reads the name of a zone, which must be told from a value wherever
+// either may stand.
+func (d *decoder) zoneName(n *node, seen map[string]int) string {
+	name, ok := d.name(n, `write a name, such as "core"`)
+	switch {
+	case !ok:
+	case looksLikeValue(name):
+		d.report(n, "a zone's name must not begin like a number", fmt.Sprintf("write %q, say", "zone "+name))
+	case name == "free" || name == "sealed":
+		d.report(n, "a zone cannot have this name, it has a meaning of its own", `write "core", say`)
+	default:
+		d.unique(n, name, seen)
+	}
+	return name
+}
+
+// looksLikeValue reports whether a text is meant as a number with its unit.
+func looksLikeValue(text string) bool {
+	return text != "" && (text[0] >= '0' && text[0] <= '9' || text[0] == '-' || text[0] == '+' || text[0] == '.')
+}
+
+// inner reads what holds at the inner end. It returns the node of the rim,
+// which each element reads in its own unit; nil is sealed.
+func (d *decoder) inner(n *node, c *Crystal) *node {
+	const example = `write inner = { radius = "0 um", rim = "sealed" }`
+	if n == nil || !d.is(n, tableNode, example) {
+		return nil
+	}
+	d.keys(n, "radius", "rim")
+	if v := n.get("radius"); v != nil {
+		c.R0, _ = d.quantity(v, edgeWidth)
+	}
+	rim := n.get("rim")
+	if rim == nil || rim.kind == textNode && rim.text == "sealed" {
+		return nil
+	}
+	if c.R0 == 0 && c.Shape != diffusion.Slab {
+		d.report(rim, "the centre of a "+c.Shape.String()+" is sealed by symmetry",
+			"leave the rim out, or give the inner radius")
+		return nil
+	}
+	return rim
+}
+
+// elements reads every [[crystal.element]].
+func (d *decoder) elements(n *node, c *Crystal, inner *node) {
+	list := d.need(n, "element", "write one [[crystal.element]] with name, law, start and rim")
+	seen := map[string]int{}
+	for _, e := range d.tables(list, `begin an element with "[[crystal.element]]"`) {
+		c.Elements = append(c.Elements, d.element(e, c, inner, seen))
+	}
+	if len(c.Elements) > 1 {
+		d.report(list.items[1], "a second element", "this version takes one element; put the others in studies of their own")
+	}
+}
+
+// sized reports whether every width could be read.
+func (c *Crystal) sized() bool {
+	for _, z := range c.Zones {
+		if z.Width == 0 {
+			return false
+		}
+	}
+	return len(c.Zones) > 0
+}
+
+// zoneIndex returns the index of the zone of that name, -1 if there is none.
+func zoneIndex(c *Crystal, name string) int {
+	for i, z := range c.Zones {
+		if z.Name == name {
+			return i
+		}
+	}
+	return -1
+}
+
+func zoneNames(c *Crystal) []string {
+	var names []string
+	for _, z := range c.Zones {
+		names = append(names, z.Name)
+	}
+	return names
+}
+
+// count writes a number of things: "1 zone", "3 zones".
+func count(n int, thing string) string {
+	if n != 1 {
+		thing += "s"
+	}
+	return strconv.Itoa(n) + " " + thing
+}

@@ -1,0 +1,213 @@
+package study
+
+import (
+	"fmt"
+	"strings"
+
+	"bankfire/thermal"
+)
+
+// maxLegs bounds the legs of all paths of a study together, and with them the
+// memory that reading one can take.
+const maxLegs = 1_000_000
+
+// legKind is what the study grammar knows about a kind of leg, whose first key
+// is the one that names it.
+type legKind struct {
+	kind           thermal.SpecKind
+	needs, options []string
+}
+
+func legKinds() []legKind {
+	return []legKind{
+		{thermal.SpecHold, []string{"hold", "for"}, []string{"name"}},
+		{thermal.SpecRamp, []string{"ramp", "for"}, []string{"name", "from"}},
+		{thermal.SpecRelax, []string{"relax", "efold", "for"}, []string{"name", "from"}},
+		{thermal.SpecReheat, []string{"reheat", "efold"}, []string{"name", "from", "rise", "dwell", "for"}},
+		{thermal.SpecSheet, []string{"sheet", "host", "thickness", "position", "kappa", "for"}, []string{"name"}},
+		{thermal.SpecTable, []string{"table", "time", "temperature"}, []string{"name", "counts"}},
+		{thermal.SpecRepeat, []string{"repeat", "legs"}, nil},
+	}
+}
+
+// paths reads every [[path]]. The eruption of the study's top level holds for
+// those that have none of their own.
+func (d *decoder) paths(root *node) []Path {
+	list := d.need(root, "path", "write at least one [[path]] with name and legs")
+	var out []Path
+	seen := map[string]int{}
+	for _, n := range d.tables(list, `begin each path with "[[path]]"`) {
+		out = append(out, d.path(n, root.get("eruption"), seen))
+	}
+	return out
+}
+
+func (d *decoder) path(n, eruption *node, seen map[string]int) Path {
+	d.keys(n, "name", "legs", "eruption")
+	p := Path{Place: d.place(n)}
+	if v := d.need(n, "name", `write a name, such as name = "kept warm"`); v != nil {
+		var ok bool
+		if p.Name, ok = d.name(v, `write a name, such as "kept warm"`); ok {
+			d.unique(v, p.Name, seen)
+		}
+	}
+	before := len(d.found)
+	specs := d.legList(n)
+	if len(d.found) > before || len(specs) == 0 {
+		return p
+	}
+	p.History = d.history(n, specs)
+	if own := n.get("eruption"); own != nil {
+		eruption = own
+	}
+	if p.History != nil {
+		p.Eruption = d.eruption(&p, eruption)
+	}
+	return p
+}
+
+// history builds the path's history and reports what only shows there: a first
+// ramp without from, too many legs.
+func (d *decoder) history(n *node, specs []thermal.Spec) *thermal.History {
+	if d.legs > maxLegs {
+		return nil // reported with the path that went beyond
+	}
+	h := new(thermal.History)
+	if err := thermal.Build(h, specs); err != nil {
+		d.reportError(n, err)
+		return nil
+	}
+	if d.legs += len(h.Legs()); d.legs > maxLegs {
+		d.report(n, fmt.Sprintf("the paths up to this one have more than %d legs together", maxLegs),
+			"split the study")
+		return nil
+	}
+	return h
+}
+
+// legList reads the list of legs of a path or of a repeat.
+func (d *decoder) legList(n *node) []thermal.Spec {
+	const example = `write legs = [ { hold = "750 C", for = "800 yr" } ]`
+	list := d.need(n, "legs", example)
+	var out []thermal.Spec
+	for _, leg := range d.tables(list, example) {
+		out = append(out, d.leg(leg))
+	}
+	return out
+}
+
+func (d *decoder) leg(n *node) thermal.Spec {
+	spec := thermal.Spec{Place: d.place(n)}
+	kind, ok := d.legKind(n)
+	if !ok {
+		return spec
+	}
+	spec.Kind = kind.kind
+	d.keys(n, append(kind.needs, kind.options...)...)
+	for _, name := range kind.needs {
+		d.need(n, name, "a "+kind.needs[0]+" leg needs "+strings.Join(kind.needs, ", "))
+	}
+	for _, k := range n.keys {
+		d.legValue(&spec, k.name, k.value)
+	}
+	switch kind.kind {
+	case thermal.SpecSheet:
+		spec.Sheet = d.sheet(n, spec.Temp)
+	case thermal.SpecTable:
+		spec.Rows = d.rows(n)
+	case thermal.SpecRepeat:
+		if n.get("legs") != nil {
+			spec.Legs = d.legList(n)
+		}
+	}
+	return spec
+}
+
+// legKind finds the one key of a leg that says what kind it is.
+func (d *decoder) legKind(n *node) (legKind, bool) {
+	var found []legKind
+	var words []string
+	for _, kind := range legKinds() {
+		words = append(words, kind.needs[0])
+		if n.get(kind.needs[0]) != nil {
+			found = append(found, kind)
+		}
+	}
+	switch len(found) {
+	case 1:
+		return found[0], true
+	case 0:
+		d.noKind(n, words)
+	default:
+		d.report(n, fmt.Sprintf("%s and %s in one leg", found[0].needs[0], found[1].needs[0]),
+			"make them two legs")
+	}
+	return legKind{}, false
+}
+
+func (d *decoder) noKind(n *node, words []string) {
+	for i := range n.keys {
+		if near := nearest(n.keys[i].name, words); near != "" {
+			d.reportKey(n, &n.keys[i], "unknown key", fmt.Sprintf("did you mean %q?", near))
+			return
+		}
+	}
+	d.report(n, "a leg of no kind", "give it one of "+strings.Join(words, ", "))
+}
+
+// legValue reads a key that has one meaning in every kind of leg.
+func (d *decoder) legValue(spec *thermal.Spec, name string, v *node) {
+	switch name {
+	case "hold", "ramp", "relax", "reheat", "sheet":
+		spec.Temp, _ = d.quantity(v, temperature)
+	case "from":
+		spec.From, _ = d.quantity(v, temperature)
+	case "for":
+		spec.For, _ = d.quantity(v, duration)
+	case "efold":
+		spec.Efold, _ = d.quantity(v, duration)
+	case "rise":
+		spec.Rise, _ = d.quantity(v, pause)
+	case "dwell":
+		spec.Dwell, _ = d.quantity(v, pause)
+	case "name":
+		spec.Name, _ = d.name(v, `write a name, such as "wake 1"`)
+	case "repeat":
+		spec.Times = d.times(v)
+	}
+}
+
+func (d *decoder) times(v *node) int {
+	const remedy = "write how many times, such as repeat = 3"
+	if !d.is(v, numberNode, remedy) {
+		return 0
+	}
+	switch {
+	case !v.whole || v.number < 1:
+		d.report(v, "not a whole number of at least 1", remedy)
+	case v.number > thermal.MaxLegs:
+		d.report(v, fmt.Sprintf("a path has at most %d legs", thermal.MaxLegs), "repeat fewer times")
+	default:
+		return int(v.number)
+	}
+	return 0
+}
+
+func (d *decoder) sheet(n *node, magma float64) *thermal.Sheet {
+	s := thermal.Sheet{Magma: magma}
+	s.Host, _ = d.quantity(n.get("host"), temperature)
+	s.Thickness, _ = d.quantity(n.get("thickness"), thickness)
+	s.Position, _ = d.quantity(n.get("position"), fromMiddle)
+	s.Kappa, _ = d.quantity(n.get("kappa"), heat)
+	return &s
+}
+
+// rows reads the file of a table leg.
+func (d *decoder) rows(n *node) *thermal.Rows {
+	return nil
+}
+
+// eruption finds the time of the eruption on a path; its end if none is given.
+func (d *decoder) eruption(p *Path, v *node) float64 {
+	return p.History.Life()
+}

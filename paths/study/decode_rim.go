@@ -1,0 +1,101 @@
+package study
+
+import (
+	"fmt"
+
+	"bankfire/diffusion"
+	"bankfire/thermal"
+)
+
+const rimExample = `write rim = { held = "skin" }, { held = "90 ppm" }, "sealed" or { given = "rim.csv", time = "t [yr]", value = "Ti [ppm]" }`
+
+// tied returns a rim held at the plateau of a zone.
+func tied(zone int, at thermal.Place) Rim {
+	return Rim{Kind: diffusion.Held, Zone: zone, Place: at}
+}
+
+// rims reads what holds at one end: one rim, or a list of them with the moment
+// that each is in force from.
+func (d *decoder) rims(n *node, c *Crystal, u *units) []Rim {
+	if n == nil {
+		return nil
+	}
+	if n.kind != arrayNode {
+		return []Rim{d.rim(n, c, u, true)}
+	}
+	if len(n.items) == 0 {
+		d.report(n, "an empty list", rimExample)
+	}
+	var out []Rim
+	for i, item := range n.items {
+		out = append(out, d.rim(item, c, u, i == 0))
+	}
+	return out
+}
+
+func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
+	r := Rim{Kind: diffusion.Sealed, Zone: -1, Place: d.place(n)}
+	if n.kind == textNode && n.text == "sealed" {
+		if !first {
+			d.report(n, "does not say from when it holds", `write { sealed = true, from = "3 yr before eruption" }`)
+		}
+		return r
+	}
+	if !d.is(n, tableNode, rimExample) {
+		return r
+	}
+	switch {
+	case n.get("held") != nil:
+		d.keys(n, "held", "unit", "from")
+		d.held(n, &r, c, u)
+	case n.get("given") != nil:
+		d.keys(n, "given", "time", "value", "counts", "unit", "from")
+		r.Kind = diffusion.Prescribed
+		r.Given = d.series(n, u)
+	case n.get("sealed") != nil:
+		d.keys(n, "sealed", "from")
+		if v := n.get("sealed"); d.is(v, boolNode, "write sealed = true") && v.text != "true" {
+			d.report(v, "a rim that is not sealed is held or given", rimExample)
+		}
+	default:
+		d.keys(n, "held", "given", "sealed", "time", "value", "counts", "unit", "from")
+		d.report(n, "a rim of no kind", rimExample)
+	}
+	r.From = d.from(n, first)
+	return r
+}
+
+// from reads the moment from which a rim holds.
+func (d *decoder) from(n *node, first bool) *thermal.Moment {
+	v := n.get("from")
+	switch {
+	case v == nil && first:
+		return nil
+	case v == nil:
+		d.need(n, "from", `every rim of a list but the first needs the moment it holds from, such as from = "3 yr before eruption"`)
+		return nil
+	case first:
+		d.report(v, "the first rim holds from the start of the path", "leave from out")
+		return nil
+	}
+	m, _ := d.moment(v)
+	if m != nil && m.Kind == thermal.Added {
+		d.report(v, "zones that were added are not known in this version", `write another moment, such as "3 yr before eruption"`)
+	}
+	return m
+}
+
+// held reads the value at which a rim is held: the name of a zone, free, or a
+// value.
+func (d *decoder) held(n *node, r *Rim, c *Crystal, u *units) {
+	v := n.get("held")
+	r.Kind, r.Place = diffusion.Held, d.place(v)
+	if v.kind == textNode && v.text != "free" && !looksLikeValue(v.text) {
+		if r.Zone = zoneIndex(c, v.text); r.Zone < 0 && len(c.Zones) > 0 {
+			d.reportWord(v, "no zone has this name", zoneNames(c),
+				fmt.Sprintf("write the name of a zone (%q, say) or a value", c.Zones[len(c.Zones)-1].Name))
+		}
+		return
+	}
+	r.Value = d.amount(v, u, d.concentrationUnit(n.get("unit")))
+}

@@ -1,0 +1,139 @@
+package study
+
+import (
+	"errors"
+	"fmt"
+
+	"bankfire/paths/traverse"
+	"bankfire/thermal"
+)
+
+// rows reads the file of a table leg: temperature against time.
+func (d *decoder) rows(n *node) *thermal.Rows {
+	time, ok1 := d.text(n.get("time"), `name the column of times, such as "t [yr]"`)
+	temp, ok2 := d.text(n.get("temperature"), `name the column of temperatures, such as "T [C]"`)
+	before, ok3 := d.counts(n.get("counts"))
+	if !ok1 || !ok2 || !ok3 {
+		return nil
+	}
+	file := n.get("table")
+	t, label := d.columns(file, traverse.Column{Header: time, Dim: thermal.Duration}, traverse.Column{Header: temp, Dim: thermal.Temperature})
+	if t == nil {
+		return nil
+	}
+	for i, x := range t.Columns[1] {
+		if !(x > 0 && x <= temperature.top) {
+			d.row(label, t.Line[i], temp, fmt.Sprintf("%.6g C is no temperature of a rock", x-thermal.ZeroCelsius), "check the unit")
+			return nil
+		}
+	}
+	rows, err := thermal.TableFrom(t.Columns[0], t.Columns[1], before)
+	if err != nil {
+		d.reportIn(file, label, err)
+		return nil
+	}
+	return rows
+}
+
+// columns reads two columns of the file named at n, nil if that fails.
+func (d *decoder) columns(n *node, want ...traverse.Column) (*traverse.Table, string) {
+	label, r, ok := d.dataFile(n)
+	if !ok {
+		return nil, ""
+	}
+	t, err := traverse.ReadColumns(label, r, want)
+	if err != nil {
+		d.reportError(n, err)
+		return nil, ""
+	}
+	d.notes = append(d.notes, t.Notes...)
+	return t, label
+}
+
+// row reports a problem on a line of a data file.
+func (d *decoder) row(label string, line int, field, problem, remedy string) {
+	d.found = append(d.found, thermal.Place{File: label, Line: line, Field: field}.Error("", problem, remedy))
+}
+
+// reportIn reports an error about the content of a file that has no place yet.
+func (d *decoder) reportIn(n *node, label string, err error) {
+	var in *thermal.InputError
+	if errors.As(err, &in) && in.File == "" {
+		at := *in
+		at.File = label
+		err = &at
+	}
+	d.reportError(n, err)
+}
+
+// counts reads how the times of a file count.
+func (d *decoder) counts(n *node) (beforeEruption, ok bool) {
+	const remedy = `write "after start" (the default) or "before eruption"`
+	if n == nil {
+		return false, true
+	}
+	text, ok := d.text(n, remedy)
+	switch {
+	case !ok:
+	case text == "before eruption":
+		return true, true
+	case text == "after start":
+		return false, true
+	default:
+		d.reportWord(n, "no way to count times", []string{"after start", "before eruption"}, remedy)
+	}
+	return false, false
+}
+
+// series reads the file of a rim that is given: value against time.
+func (d *decoder) series(n *node, u *units) *Series {
+	const remedyTime, remedyValue = `name the column of times, such as time = "t [yr]"`, `name the column of values, such as value = "Ti [ppm]"`
+	time, ok1 := d.text(d.need(n, "time", remedyTime), remedyTime)
+	value := d.valueColumn(n, remedyValue)
+	before, ok2 := d.counts(n.get("counts"))
+	if !ok1 || !ok2 || value == "" {
+		return nil
+	}
+	file := n.get("given")
+	t, label := d.columns(file, traverse.Column{Header: time, Dim: thermal.Duration}, traverse.Column{Header: value, Dim: thermal.Concentration})
+	if t == nil {
+		return nil
+	}
+	s := &Series{Time: t.Columns[0], Value: t.Columns[1], BeforeEruption: before, Place: d.place(file)}
+	d.checkSeries(s, t, label)
+	d.seriesUnit(file, s, u, t.Units[1])
+	return s
+}
+
+// checkSeries turns the times of a series forward and checks its rows.
+func (d *decoder) checkSeries(s *Series, t *traverse.Table, label string) {
+	for i := range s.Time {
+		if s.BeforeEruption {
+			s.Time[i] = -s.Time[i]
+		}
+	}
+	for i := range s.Time {
+		switch {
+		case i > 0 && s.Time[i] < s.Time[i-1]:
+			d.row(label, t.Line[i], "time", "before the row above", "list rows in the order of time")
+		case i > 1 && s.Time[i] == s.Time[i-2]:
+			d.row(label, t.Line[i], "time", "the same time for the third time", "two rows of one time are a jump; keep two")
+		case s.Value[i] < 0:
+			d.row(label, t.Line[i], "value", "below zero", "a value is zero or more")
+		default:
+			continue
+		}
+		return
+	}
+}
+
+// seriesUnit converts the values of a series to the unit of the element.
+func (d *decoder) seriesUnit(file *node, s *Series, u *units, unit string) {
+	for i := range s.Value {
+		before := len(d.found)
+		s.Value[i] = d.inUnit(file, u, thermal.Uncertain{Value: s.Value[i]}, unit).Value
+		if len(d.found) > before {
+			return // one report is enough
+		}
+	}
+}

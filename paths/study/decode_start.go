@@ -1,0 +1,59 @@
+package study
+
+import (
+	"fmt"
+	"strings"
+)
+
+// start reads the profile before diffusion. Without one every plateau is free,
+// and edges are sharp.
+func (d *decoder) start(n *node, c *Crystal, e *Element, u *units) Start {
+	s := Start{Zones: make([]Plateau, len(c.Zones))}
+	for i := range s.Zones {
+		s.Zones[i].Free = true
+	}
+	const example = `write start = { zones = ["free", "58 +- 1.5 ppm"], edge = "0 um" }`
+	switch {
+	case n == nil:
+	case n.kind == arrayNode:
+		d.report(n, "alternatives of a start are not known in this version", example)
+	case d.is(n, tableNode, example):
+		d.keys(n, "zones", "edge", "unit")
+		if v := n.get("zones"); v != nil {
+			d.plateaux(v, s.Zones, c, u, d.concentrationUnit(n.get("unit")))
+		}
+	}
+	if edge := n.get("edge"); edge != nil {
+		s.Edge = d.edge(edge)
+	} else if len(c.Zones) > 1 {
+		d.note("%s: no edge given, zones taken to begin sharp", e.Name)
+	}
+	return s
+}
+
+// plateaux reads one value a zone into dst.
+func (d *decoder) plateaux(n *node, dst []Plateau, c *Crystal, u *units, unit string) {
+	const example = `write one value a zone, such as zones = ["free", "58 +- 1.5 ppm"]`
+	if !d.is(n, arrayNode, example) {
+		return
+	}
+	if len(n.items) != len(dst) {
+		if len(dst) > 0 {
+			d.report(n, fmt.Sprintf("%s for %s", count(len(n.items), "value"), count(len(dst), "zone")),
+				"write one value a zone: "+strings.Join(zoneNames(c), ", "))
+		}
+		return
+	}
+	for i, v := range n.items {
+		dst[i] = d.amount(v, u, unit)
+	}
+}
+
+func (d *decoder) edge(n *node) float64 {
+	if n.kind == textNode && strings.HasPrefix(n.text, "free") {
+		d.report(n, "a free edge is not known in this version", `write a width, such as "0.5 um"`)
+		return 0
+	}
+	w, _ := d.quantity(n, edgeWidth)
+	return w
+}

@@ -1,0 +1,195 @@
+package study
+
+import (
+	"fmt"
+	"strings"
+
+	"bankfire/paths/traverse"
+	"bankfire/thermal"
+)
+
+// traverse reads the measured traverse of an element and its file.
+func (d *decoder) traverse(n *node, c *Crystal) *traverse.Traverse {
+	const example = `write traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
+	if n == nil || !d.is(n, tableNode, example) {
+		return nil
+	}
+	before := len(d.found)
+	d.keys(n, "file", "position", "zero", "value", "unit", "error", "spot", "window", "skip")
+	o := traverse.Options{Size: c.Size()}
+	o.Position, _ = d.text(d.need(n, "position", `name the column of positions, such as position = "distance [um]"`), "name the column of positions")
+	o.Value = d.valueColumn(n, `name the column of values, such as value = "Ti [ppm]"`)
+	o.Zero = d.zero(d.need(n, "zero", `say where positions count from: zero = "rim" or zero = "centre"`))
+	o.Errors = d.errors(d.need(n, "error", `write one standard deviation: error = "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`))
+	o.Spot = d.spot(d.need(n, "spot", `write what one analysis averages over: spot = "0.8 um fwhm", "15 um top-hat" or "point"`))
+	if v := n.get("window"); v != nil {
+		o.From, o.To = d.window(v)
+	}
+	if v := n.get("skip"); v != nil {
+		o.Skip, _ = d.text(v, "name the column that marks rows to leave out")
+	}
+	file := d.need(n, "file", `name the file, such as file = "ti.csv"`)
+	if len(d.found) > before || !c.sized() {
+		return nil
+	}
+	label, r, ok := d.dataFile(file)
+	if !ok {
+		return nil
+	}
+	t, err := traverse.Read(label, r, o)
+	if err != nil {
+		d.reportError(file, err)
+		return nil
+	}
+	d.notes = append(d.notes, t.Notes...)
+	d.reach(file, t, c)
+	return t
+}
+
+// reach reports a traverse that leaves the piece of crystal through its inner
+// end.
+func (d *decoder) reach(file *node, t *traverse.Traverse, c *Crystal) {
+	const roundOff = 1e-9 // positions are sums of typed widths
+	for i, x := range t.Position {
+		if x < c.R0*(1-roundOff) {
+			at := thermal.Place{File: d.files.path(file.text), Line: t.Line[i], Field: "position"}
+			d.found = append(d.found, at.Error("", fmt.Sprintf("%.6g um from the centre, inside the inner radius", x*1e6),
+				"set a window, or check the widths of the zones"))
+			return
+		}
+	}
+}
+
+// valueColumn reads the header of the column of values; its unit may stand
+// beside it.
+func (d *decoder) valueColumn(n *node, remedy string) string {
+	v := n.get("value")
+	header, ok := d.text(d.need(n, "value", remedy), remedy)
+	unit := n.get("unit")
+	if !ok || unit == nil {
+		return header
+	}
+	name := d.concentrationUnit(unit)
+	if strings.HasSuffix(strings.TrimSpace(header), "]") {
+		d.report(v, "its unit is given here and under unit", "give it once")
+	}
+	return header + " [" + name + "]"
+}
+
+func (d *decoder) zero(n *node) traverse.Zero {
+	const remedy = `write "rim" or "centre"`
+	text, ok := d.text(n, remedy)
+	switch {
+	case !ok || text == "centre":
+	case text == "rim":
+		return traverse.Rim
+	case text == "center":
+		d.report(n, "spelt centre here", `write "centre"`)
+	default:
+		d.reportWord(n, "no place to count from", []string{"rim", "centre"}, remedy)
+	}
+	return traverse.Centre
+}
+
+func (d *decoder) spot(n *node) traverse.Spot {
+	text, ok := d.text(n, `write it like "0.8 um fwhm", "0.3 um sigma", "15 um top-hat" or "point"`)
+	if !ok {
+		return traverse.Spot{}
+	}
+	s, err := traverse.ParseSpot(text)
+	switch {
+	case err != nil:
+		d.reportError(n, err)
+		return traverse.Spot{}
+	case s.Width > width.top:
+		d.report(n, "wider than "+width.topText, "check the unit")
+	}
+	return s
+}
+
+func (d *decoder) window(n *node) (lo, hi float64) {
+	const remedy = `write the positions to keep, such as "20..60 um"`
+	text, ok := d.text(n, remedy)
+	if !ok {
+		return 0, 0
+	}
+	lo, hi, err := thermal.ParseRange(text, thermal.Length)
+	switch {
+	case err != nil:
+		d.reportError(n, err)
+	case !(lo < hi):
+		d.report(n, "the window is empty", remedy)
+	default:
+		return lo, hi
+	}
+	return 0, 0
+}
+
+// errors reads what one standard deviation of the values is: a text, or a
+// table of a column or a size, with or without a floor.
+func (d *decoder) errors(n *node) traverse.Errors {
+	const remedy = `write error = "4 %", "1.5 ppm", { column = "2se [ppm]", sigmas = 2 } or { size = "4 %", floor = "0.5 ppm" }`
+	switch {
+	case n == nil:
+		return traverse.Errors{}
+	case n.kind == numberNode:
+		d.report(n, "a number without a unit", remedy)
+		return traverse.Errors{}
+	case n.kind == tableNode:
+		return d.errorTable(n, remedy)
+	}
+	return d.errorText(n, remedy)
+}
+
+func (d *decoder) errorText(n *node, remedy string) traverse.Errors {
+	text, ok := d.text(n, remedy)
+	if !ok {
+		return traverse.Errors{}
+	}
+	e, err := traverse.ParseErrors(text)
+	if err != nil {
+		d.reportError(n, err)
+	}
+	return e
+}
+
+func (d *decoder) errorTable(n *node, remedy string) traverse.Errors {
+	d.keys(n, "column", "sigmas", "size", "floor")
+	var e traverse.Errors
+	column, size := n.get("column"), n.get("size")
+	switch {
+	case column != nil && size != nil:
+		d.report(size, "a column of errors is given as well", "keep one of them")
+	case column != nil:
+		e.Column, _ = d.text(column, "name the column of errors")
+		e.Sigmas = d.sigmas(d.need(n, "sigmas", "say what the column holds: sigmas = 1 or sigmas = 2"))
+	case size != nil:
+		e = d.errorText(size, remedy)
+		if v := n.get("sigmas"); v != nil {
+			d.report(v, "goes with a column", "leave it out: the error is one standard deviation")
+		}
+	default:
+		d.report(n, "no errors given", remedy)
+	}
+	if v := n.get("floor"); v != nil {
+		if text, ok := d.text(v, `write the least error, such as floor = "0.5 ppm"`); ok {
+			var err error
+			if e.Floor, err = traverse.ParseAmount(text); err != nil {
+				d.reportError(v, err)
+			}
+		}
+	}
+	return e
+}
+
+func (d *decoder) sigmas(n *node) float64 {
+	const remedy = "write sigmas = 1 or sigmas = 2"
+	if n == nil || !d.is(n, numberNode, remedy) {
+		return 0
+	}
+	if n.number != 1 && n.number != 2 {
+		d.report(n, "neither 1 nor 2", remedy)
+		return 0
+	}
+	return n.number
+}

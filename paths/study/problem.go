@@ -1,0 +1,207 @@
+package study
+
+import (
+	"fmt"
+	"sort"
+
+	"bankfire/diffusion"
+	"bankfire/thermal"
+)
+
+// Problem returns the element in the crystal as the solver wants it, on one
+// path. What the traverse has to decide is solved along: every free plateau or
+// rim value, and every one with a standard deviation, is a column of
+// Problem.Free, described by the FreeValue of the same index. The problem itself
+// has a free value at 0 and one with a prior at the middle of its prior, so that
+// the profile is
+//
+//	profile = answer + sum of (value - base) x column,  base 0 or Prior.Value.
+//
+// Moments of rims are resolved on the path. The error is a *thermal.InputError
+// at the rim whose moment the path does not have, or whose file does not cover
+// the time it is in force.
+func (c *Crystal) Problem(e *Element, p *Path) (*diffusion.Problem, []FreeValue, error) {
+	b := builder{c: c, e: e, path: p}
+	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law}
+	var err error
+	if out.Inner, err = b.rims(e.Inner); err != nil {
+		return nil, nil, err
+	}
+	if out.Outer, err = b.rims(e.Rims); err != nil {
+		return nil, nil, err
+	}
+	b.zoneValues()
+	b.rimValues("inner rim", e.Inner, func(basis *diffusion.Basis) []float64 { return basis.Inner })
+	b.rimValues("rim", e.Rims, func(basis *diffusion.Basis) []float64 { return basis.Outer })
+	out.Free = b.basis
+	return out, b.free, nil
+}
+
+// builder collects the columns of a problem.
+type builder struct {
+	c     *Crystal
+	e     *Element
+	path  *Path
+	basis []diffusion.Basis
+	free  []FreeValue
+}
+
+func (b *builder) zones() []diffusion.Zone {
+	zones := make([]diffusion.Zone, len(b.c.Zones))
+	r := b.c.R0
+	for i, z := range b.c.Zones {
+		r += z.Width
+		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: z.Times}
+		if i < len(zones)-1 {
+			zones[i].Edge = b.e.Start.Edge
+		}
+	}
+	return zones
+}
+
+// base is the value that a problem is set up with.
+func (p Plateau) base() float64 {
+	if p.Free {
+		return 0
+	}
+	return p.Value
+}
+
+// open reports whether the traverse has a say in the value.
+func (p Plateau) open() bool { return p.Free || p.Sigma > 0 }
+
+// column adds a column of zeros for an open value and returns it.
+func (b *builder) column(name string, p Plateau) *diffusion.Basis {
+	b.basis = append(b.basis, diffusion.Basis{
+		Start: make([]float64, len(b.c.Zones)),
+		Inner: make([]float64, len(b.e.Inner)),
+		Outer: make([]float64, len(b.e.Rims)),
+	})
+	f := FreeValue{Name: name, HasPrior: !p.Free}
+	if f.HasPrior {
+		f.Prior = thermal.Uncertain{Value: p.Value, Sigma: p.Sigma}
+	}
+	b.free = append(b.free, f)
+	return &b.basis[len(b.basis)-1]
+}
+
+// zoneValues adds a column for every open plateau: the start of its zone and
+// the rims held at it.
+func (b *builder) zoneValues() {
+	for i, p := range b.e.Start.Zones {
+		if !p.open() {
+			continue
+		}
+		col := b.column(b.c.Zones[i].Name, p)
+		col.Start[i] = 1
+		markTied(col.Inner, b.e.Inner, i)
+		markTied(col.Outer, b.e.Rims, i)
+	}
+}
+
+func markTied(dst []float64, rims []Rim, zone int) {
+	for i, r := range rims {
+		if r.Kind == diffusion.Held && r.Zone == zone {
+			dst[i] = 1
+		}
+	}
+}
+
+// rimValues adds a column for every open value at which a rim is held.
+func (b *builder) rimValues(name string, rims []Rim, end func(*diffusion.Basis) []float64) {
+	for i, r := range rims {
+		if r.Kind != diffusion.Held || r.Zone >= 0 || !r.Value.open() {
+			continue
+		}
+		full := name
+		if len(rims) > 1 {
+			full = fmt.Sprintf("%s %d", name, i+1)
+		}
+		end(b.column(full, r.Value))[i] = 1
+	}
+}
+
+// rims resolves the moments of one end on the path.
+func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
+	var out []diffusion.Rim
+	for i := range list {
+		r := &list[i]
+		from, err := b.from(r)
+		if err != nil {
+			return nil, err
+		}
+		if i > 0 && !(from > out[i-1].From) {
+			return nil, r.Place.Error(r.From.Text,
+				fmt.Sprintf("does not come after the rim before it on the path %q", b.path.Name), "list rims in the order of time")
+		}
+		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r)})
+	}
+	for i := range list {
+		if list[i].Given == nil {
+			continue
+		}
+		until := b.path.History.Life()
+		if i+1 < len(out) {
+			until = min(until, out[i+1].From)
+		}
+		var err error
+		if out[i].Given, err = b.given(list[i].Given, out[i].From, until); err != nil {
+			return nil, err
+		}
+	}
+	return out, nil
+}
+
+// value is what a held rim is held at in the problem.
+func (b *builder) value(r *Rim) float64 {
+	if r.Zone >= 0 {
+		return b.e.Start.Zones[r.Zone].base()
+	}
+	return r.Value.base()
+}
+
+// given turns a series into a function of the time since the start of the
+// path. It must cover the span from one time to another.
+func (b *builder) given(s *Series, from, until float64) (*diffusion.Given, error) {
+	t := make([]float64, len(s.Time))
+	for i := range t {
+		t[i] = s.Time[i]
+		if s.BeforeEruption {
+			t[i] += b.path.Eruption
+		}
+	}
+	if slack := 1e-9 * until; from < until && (t[0] > from+slack || t[len(t)-1] < until-slack) {
+		return nil, s.Place.Error("", fmt.Sprintf("holds times from %s to %s only, but the path %q needs %s to %s", years(t[0]),
+			years(t[len(t)-1]), b.path.Name, years(from), years(until)), "add rows at both ends")
+	}
+	g := &diffusion.Given{At: func(x float64) float64 { return interpolate(t, s.Value, x) }}
+	for i := 0; i < len(t); {
+		j := i + 1
+		for j < len(t) && t[j] == t[i] {
+			j++
+		}
+		if j > i+1 {
+			g.Jumps = append(g.Jumps, t[i])
+		} else {
+			g.Breaks = append(g.Breaks, t[i])
+		}
+		i = j
+	}
+	return g, nil
+}
+
+// interpolate returns the value at x, linear between the rows and constant
+// beyond them.
+func interpolate(t, v []float64, x float64) float64 {
+	i := sort.SearchFloat64s(t, x) // the first row not before x
+	switch {
+	case i == 0:
+		return v[0]
+	case i == len(t):
+		return v[len(v)-1]
+	}
+	w := (x - t[i-1]) / (t[i] - t[i-1])
+	return float64((1-w)*v[i-1]) + float64(w*v[i])
+}
+
+func years(t float64) string { return fmt.Sprintf("%.6g yr", t/thermal.Year) }

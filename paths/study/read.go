@@ -1,0 +1,163 @@
+package study
+
+import (
+	"cmp"
+	"errors"
+	"fmt"
+	"path/filepath"
+	"slices"
+	"strings"
+
+	"bankfire/thermal"
+)
+
+// defaultConfidence is that of a study which does not state one.
+const defaultConfidence = 0.95
+
+// Read reads a study file and every file that it names. The error is every
+// problem found, 20 at most, as *thermal.InputError joined by errors.Join: those
+// of the study in the order of its lines, then those of other files. The study
+// is nil then.
+func Read(file string) (*Study, error) {
+	data, err := load(file, maxStudyBytes)
+	var in *thermal.InputError
+	if errors.As(err, &in) {
+		in.File = file
+		return nil, in
+	}
+	if err != nil {
+		return nil, err
+	}
+	return parse(file, data, load)
+}
+
+// parse reads a study from its bytes and its other files through load.
+func parse(file string, data []byte, load loader) (*Study, error) {
+	root, err := parseDocument(data)
+	if err != nil {
+		var e *syntaxError
+		if errors.As(err, &e) {
+			err = thermal.Place{File: file, Line: e.line, Col: e.col, Field: e.field}.Error(e.value, e.problem, e.remedy)
+		}
+		return nil, err
+	}
+	d := &decoder{file: file, files: newFiles(file, data, load), laws: map[string]Law{}}
+	s := d.study(root)
+	if err := d.err(); err != nil {
+		return nil, err
+	}
+	s.Inputs, s.Notes = d.files.inputs, d.notes
+	return s, nil
+}
+
+// study reads the top level.
+func (d *decoder) study(root *node) *Study {
+	d.keys(root, "title", "confidence", "eruption", "threshold", "law", "path", "crystal")
+	s := &Study{File: d.file, Confidence: defaultConfidence}
+	s.Title = strings.TrimSuffix(filepath.Base(d.file), filepath.Ext(d.file))
+	if v := root.get("title"); v != nil {
+		s.Title, _ = d.name(v, "write a title, one line")
+	}
+	if v := root.get("confidence"); v != nil {
+		s.Confidence = d.confidence(v)
+	}
+	d.ownLaws(root.get("law"))
+	s.Thresholds = d.thresholds(root.get("threshold"))
+	s.Paths = d.paths(root)
+	s.Crystals = d.crystals(root)
+	if len(d.found) == 0 {
+		d.together(s)
+	}
+	return s
+}
+
+// confidence reads a probability in per cent.
+func (d *decoder) confidence(n *node) float64 {
+	const remedy = `write per cent above 0 and below 100, such as "95 %"`
+	if n.kind == numberNode {
+		d.report(n, "a number without a unit", fmt.Sprintf("write it in quotes, such as %q", "95 %"))
+		return defaultConfidence
+	}
+	text, ok := d.text(n, remedy)
+	if !ok {
+		return defaultConfidence
+	}
+	p, err := thermal.ParseQuantity(text, thermal.Concentration)
+	if number, percent := strings.CutSuffix(strings.TrimSpace(text), "%"); !percent || err != nil || strings.HasSuffix(number, "wt") || !(p > 0 && p < 100) {
+		d.report(n, "not a confidence", remedy)
+		return defaultConfidence
+	}
+	return p / 100
+}
+
+func (d *decoder) thresholds(n *node) []Threshold {
+	if n == nil {
+		return nil
+	}
+	var out []Threshold
+	seen := map[string]int{}
+	for _, t := range d.tables(n, `begin each threshold with "[[threshold]]"`) {
+		d.keys(t, "name", "temperature")
+		var th Threshold
+		if v := d.need(t, "name", `write a name, such as name = "lock-up"`); v != nil {
+			var ok bool
+			if th.Name, ok = d.name(v, `write a name, such as "lock-up"`); ok {
+				d.unique(v, th.Name, seen)
+			}
+		}
+		th.Temp, _ = d.quantity(d.need(t, "temperature", `write a temperature, such as temperature = "750 C"`), temperature)
+		out = append(out, th)
+	}
+	return out
+}
+
+// together checks what only shows when paths and crystals meet.
+func (d *decoder) together(s *Study) {
+	for i := range s.Crystals {
+		c := &s.Crystals[i]
+		for j := range c.Elements {
+			for k := range s.Paths {
+				d.meet(c, &c.Elements[j], &s.Paths[k])
+			}
+		}
+	}
+}
+
+func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
+	if _, _, err := c.Problem(e, p); err != nil {
+		d.reportError(&node{field: "crystal.element.rim"}, err)
+	}
+	for _, leg := range p.History.Legs() {
+		if leg.Kind != thermal.Table {
+			continue
+		}
+		for _, a := range e.Law.Law.Terms {
+			if row, ratio, coarse := leg.Rows.Coarse(a.E); coarse {
+				d.note("path %q: from row %d to the next of its table the diffusivity of %s changes %.3g-fold; give more rows there",
+					p.Name, row+1, e.Name, ratio)
+			}
+		}
+	}
+}
+
+// err returns the problems found, those of the study first and in the order of
+// its lines.
+func (d *decoder) err() error {
+	slices.SortStableFunc(d.found, func(a, b *thermal.InputError) int {
+		other := func(e *thermal.InputError) int {
+			if e.File == d.file {
+				return 0
+			}
+			return 1
+		}
+		if other(a)+other(b) > 0 {
+			return other(a) - other(b)
+		}
+		return cmp.Or(a.Line-b.Line, a.Col-b.Col)
+	})
+	var list []error
+	for _, e := range d.found[:min(len(d.found), maxProblems)] {
+		list = append(list, e)
+	}
+	return errors.Join(list...)
+}
