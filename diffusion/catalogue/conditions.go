@@ -23,30 +23,33 @@ const (
 // is not given; nil is none given.
 type Conditions map[string]float64
 
-// bounds are the lowest and highest value of a condition; open leaves out the
-// lowest itself.
+// bounds are the lowest and highest possible value of a condition in unit; open
+// leaves out the lowest itself.
 type bounds struct {
 	name    string
 	lo, hi  float64
 	open    bool
+	unit    string
 	example string
 }
 
-// limits returns the bounds of all conditions, in the order of Needs.
+// limits returns the bounds of all conditions, in the order of Needs. The upper
+// ones are far above anything in a magma or a mantle; they keep slips of the unit
+// out, and every D finite.
 func limits() []bounds {
 	return []bounds{
-		{Pressure, 0, math.MaxFloat64, false, "2e8 Pa"},
-		{FO2, 0, math.MaxFloat64, true, "1e-7 Pa"},
-		{XAn, 0, 1, false, "0.5"},
-		{XFe, 0, 1, false, "0.1"},
-		{ASiO2, 0, math.MaxFloat64, true, "0.6"},
+		{Pressure, 0, 1e12, false, " Pa", "2 kbar"},
+		{FO2, 0, 1e12, true, " Pa", "1e-7 Pa"},
+		{XAn, 0, 1, false, "", "0.5"},
+		{XFe, 0, 1, false, "", "0.1"},
+		{ASiO2, 0, 10, true, "", "0.6"},
 	}
 }
 
 // Check returns an error for the first condition whose value is impossible: a
 // pressure below zero, an fO2 or activity that is not above zero, a mole
-// fraction outside 0 to 1, anything not finite. It panics for a name that is not
-// a condition.
+// fraction outside 0 to 1, anything not finite or absurdly large. It panics for
+// a name that is not a condition.
 func (c Conditions) Check() error {
 	known := limits()
 	for name := range c {
@@ -72,13 +75,11 @@ func (b bounds) hold(x float64) bool {
 }
 
 func (b bounds) want() string {
-	switch {
-	case b.hi < math.MaxFloat64:
-		return fmt.Sprintf("want %g to %g", b.lo, b.hi)
-	case b.open:
-		return fmt.Sprintf("want a value above %g", b.lo)
+	from := "from"
+	if b.open {
+		from = "above"
 	}
-	return fmt.Sprintf("want at least %g", b.lo)
+	return fmt.Sprintf("want %s %g to %g%s", from, b.lo, b.hi, b.unit)
 }
 
 // Form is the way a Term depends on its variable, "" if it does not.

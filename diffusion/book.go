@@ -1,0 +1,64 @@
+package diffusion
+
+import "math"
+
+// book keeps the account of one run's answer: what was there, what came
+// through the rims, and the values between which a profile without drift must
+// stay.
+type book struct {
+	start  float64 // content before the run
+	inflow float64 // content that came through both ends
+	scale  float64 // all that was there or moved, without its sign
+	lo, hi float64 // least and greatest of start and rim values so far
+}
+
+func (p *Plan) openBook(c []float64) book {
+	b := book{lo: math.Inf(1), hi: math.Inf(-1)}
+	for i, v := range p.grid.volumes {
+		b.start += v * c[i]
+		b.scale += v * math.Abs(c[i])
+		b.see(c[i])
+	}
+	return b
+}
+
+func (b *book) see(value float64) {
+	b.lo, b.hi = math.Min(b.lo, value), math.Max(b.hi, value)
+}
+
+// enter books one solve from the values of the first and last cell before and
+// after it. Crank-Nicolson sees the mean of both, over twice the length.
+func (b *book) enter(e ends, euler bool, first0, last0, first1, last1 float64) {
+	if e.kIn != 0 {
+		b.see(e.vIn)
+		b.flow(e.kIn, e.vIn, first0, first1, euler)
+	}
+	if e.kOut != 0 {
+		b.see(e.vOut)
+		b.flow(e.kOut, e.vOut, last0, last1, euler)
+	}
+}
+
+func (b *book) flow(k, v, before, after float64, euler bool) {
+	amount := k * (v - after)
+	if !euler {
+		amount = k * ((v - before) + (v - after))
+	}
+	b.inflow += amount
+	b.scale += math.Abs(amount)
+}
+
+// close writes what the account says of the final answer c.
+func (b *book) close(s *Stats, p *Plan, c []float64) {
+	content, worst := 0.0, 0.0
+	for i, v := range p.grid.volumes {
+		content += v * c[i]
+		worst = math.Max(worst, math.Max(c[i]-b.hi, b.lo-c[i]))
+	}
+	if b.scale > 0 {
+		s.MassDrift = math.Abs(content-b.start-b.inflow) / b.scale
+	}
+	if b.hi > b.lo {
+		s.Overshoot = worst / (b.hi - b.lo)
+	}
+}

@@ -1,0 +1,219 @@
+package diffusion
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"sort"
+
+	"bankfire/thermal"
+	"bankfire/thermal/numeric"
+)
+
+// Course is one history as a plan needs it: the diffusion integral between
+// events and the rim values averaged exactly over each step. One course serves
+// every multiplier on D.
+type Course struct {
+	plan  *Plan
+	spans []span
+}
+
+// span is the stretch between two events.
+type span struct {
+	lnG          float64 // ln of the integral of D dt, m2
+	inner, outer ending
+}
+
+// ending is what holds at one end during a span.
+type ending struct {
+	open   bool
+	rim    int       // index into Problem.Inner or Outer
+	values []float64 // mean of a prescribed rim over each step, weighted by D; nil if held
+	rough  []float64 // the same over the steps of the rough schedule
+}
+
+// LnG returns ln of the diffusion integral over the whole course, m2.
+func (c *Course) LnG() float64 {
+	sum := math.Inf(-1)
+	for _, s := range c.spans {
+		sum = numeric.LnAdd(sum, s.lnG)
+	}
+	return sum
+}
+
+// Course prepares the history up to the time until, in s, for the plan and
+// writes it to dst, whose memory is reused. It returns an error if until lies
+// outside the history.
+func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
+	if !(until >= 0) || until > h.Life() {
+		return fmt.Errorf("diffusion: the path has no time %g s; it lasts %g s", until, h.Life())
+	}
+	dst.plan = p
+	dst.spans = dst.spans[:0]
+	from := 0.0
+	for i := 0; i <= len(p.events) && from < until; i++ {
+		to := until
+		if i < len(p.events) {
+			to = math.Min(to, p.events[i])
+		}
+		dst.spans = append(dst.spans, p.span(h, from, to))
+		from = to
+	}
+	return nil
+}
+
+func (p *Plan) span(h *thermal.History, t0, t1 float64) span {
+	s := span{
+		lnG:   p.problem.Law.LnIntegral(h, t0, t1),
+		inner: endingAt(p.problem.Inner, t0),
+		outer: endingAt(p.problem.Outer, t0),
+	}
+	prescribed := func(e ending, rims []Rim) bool { return e.open && rims[e.rim].Kind == Prescribed }
+	in, out := prescribed(s.inner, p.problem.Inner), prescribed(s.outer, p.problem.Outer)
+	if math.IsInf(s.lnG, -1) || !in && !out {
+		return s
+	}
+	times := p.stepTimes(h, t0, t1, s.lnG)
+	if in {
+		s.inner.average(p, h, p.problem.Inner[s.inner.rim].Given, times)
+	}
+	if out {
+		s.outer.average(p, h, p.problem.Outer[s.outer.rim].Given, times)
+	}
+	return s
+}
+
+// endingAt finds the rim in force from t on.
+func endingAt(rims []Rim, t float64) ending {
+	i := sort.Search(len(rims), func(i int) bool { return rims[i].From > t }) - 1
+	if i < 0 {
+		return ending{}
+	}
+	return ending{open: rims[i].Kind != Sealed, rim: i}
+}
+
+// stepTimes returns the times at which the steps of a span begin and end: those
+// at which the integral has grown to the plan's fractions of exp(lnG).
+func (p *Plan) stepTimes(h *thermal.History, t0, t1, lnG float64) []float64 {
+	marks := pieces(h.Breaks(nil), t0, t1)
+	grown := make([]float64, len(marks)) // ln of the integral from t0 to each mark
+	grown[0] = math.Inf(-1)
+	for i := 1; i < len(marks); i++ {
+		grown[i] = numeric.LnAdd(grown[i-1], p.problem.Law.LnIntegral(h, marks[i-1], marks[i]))
+	}
+	times := make([]float64, 0, len(p.steps)+1)
+	times = append(times, t0)
+	at := 0.0
+	for _, s := range p.steps[:len(p.steps)-1] {
+		at += s.df
+		t := p.timeAt(h, marks, grown, lnG+math.Log(at))
+		times = append(times, math.Max(t, times[len(times)-1]))
+	}
+	return append(times, t1)
+}
+
+// timeAt returns the time at which the integral has grown to exp(target).
+func (p *Plan) timeAt(h *thermal.History, marks, grown []float64, target float64) float64 {
+	i := sort.SearchFloat64s(grown, target)
+	if i == 0 || i == len(marks) {
+		return marks[min(i, len(marks)-1)]
+	}
+	a, b := marks[i-1], marks[i]
+	short := func(t float64) float64 { // by how much the integral up to t misses the target
+		return numeric.LnAdd(grown[i-1], p.problem.Law.LnIntegral(h, a, t)) - target
+	}
+	t, err := numeric.Root(short, a, b, timeResolution*(b-a))
+	if err != nil {
+		return b // the target is the piece's end to round-off
+	}
+	return t
+}
+
+// timeResolution is how finely a step's end is found, as part of its leg. Rim
+// values are averaged between the ends found, so it only moves a little of the
+// average from one step to the next.
+const timeResolution = 1e-12
+
+// pieces returns t0, the breaks strictly between, and t1, ascending.
+func pieces(breaks []float64, t0, t1 float64) []float64 {
+	in := append([]float64{t0}, within(breaks, t0, t1)...)
+	in = append(in, t1)
+	slices.Sort(in)
+	return slices.Compact(in)
+}
+
+// average fills the ending with the means of the given value over the steps,
+//
+//	integral of v dG / integral of dG,
+//
+// and with the same over the steps of the rough schedule.
+func (e *ending) average(p *Plan, h *thermal.History, v *Given, times []float64) {
+	breaks := slices.Concat(h.Breaks(nil), v.Breaks, v.Jumps)
+	slices.Sort(breaks)
+	e.values = make([]float64, len(p.steps))
+	for i := range e.values {
+		e.values[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
+	}
+	e.rough = p.steps.mergedMeans(e.values)
+}
+
+// meanOver returns the mean of v between ta and tb weighted by D.
+func (p *Plan) meanOver(h *thermal.History, v *Given, breaks []float64, ta, tb float64) float64 {
+	i := sort.SearchFloat64s(breaks, ta)
+	j := sort.SearchFloat64s(breaks, tb)
+	marks := pieces(breaks[i:j], ta, tb)
+	w := weighted{lnWeight: math.Inf(-1)}
+	for k := 1; k < len(marks); k++ {
+		w.addPiece(&p.problem.Law, h, v, marks[k-1], marks[k], maxHalvings)
+	}
+	if math.IsInf(w.lnWeight, -1) { // a step of no width or no diffusion: any value will do
+		return v.At(ta + (tb-ta)/2)
+	}
+	return w.mean
+}
+
+// maxHalvings bounds the division of a piece over which D changes much.
+const maxHalvings = 12
+
+// weighted is a running mean with the logarithm of its weight.
+type weighted struct{ mean, lnWeight float64 }
+
+func (w *weighted) add(value, lnWeight float64) {
+	if math.IsInf(lnWeight, -1) {
+		return
+	}
+	w.lnWeight = numeric.LnAdd(w.lnWeight, lnWeight)
+	w.mean += math.Exp(lnWeight-w.lnWeight) * (value - w.mean)
+}
+
+// addPiece adds the mean over [a, b], on which temperature and v are smooth,
+// halving it while D changes by more than e^2 over it.
+func (w *weighted) addPiece(law *Law, h *thermal.History, v *Given, a, b float64, halvings int) {
+	_, ta := h.At(a)
+	tb, _ := h.At(b)
+	if m := a + (b-a)/2; halvings > 0 && a < m && m < b && math.Abs(law.LnD(ta)-law.LnD(tb)) > 2 {
+		w.addPiece(law, h, v, a, m, halvings-1)
+		w.addPiece(law, h, v, m, b, halvings-1)
+		return
+	}
+	var inside weighted
+	for i, x := range gaussNodes {
+		t := a + (b-a)*x
+		temp, _ := h.At(t)
+		inside.add(v.At(t), math.Log(gaussWeights[i])+law.LnD(temp))
+	}
+	w.add(inside.mean, law.LnIntegral(h, a, b))
+}
+
+// Gauss-Legendre nodes and weights of five points on [0, 1] (Abramowitz and
+// Stegun 1964, table 25.4).
+var (
+	gaussNodes = [...]float64{
+		0.5 - 0.906179845938664/2, 0.5 - 0.538469310105683/2, 0.5,
+		0.5 + 0.538469310105683/2, 0.5 + 0.906179845938664/2,
+	}
+	gaussWeights = [...]float64{
+		0.236926885056189 / 2, 0.478628670499366 / 2, 0.568888888888889 / 2,
+		0.478628670499366 / 2, 0.236926885056189 / 2,
+	}
+)

@@ -1,0 +1,215 @@
+package diffusion
+
+import (
+	"fmt"
+	"math"
+	"slices"
+)
+
+// Options choose the plan. The zero value is the program's own.
+type Options struct {
+	Cells     int       // about how many cells; 0 is 200
+	Finest    float64   // smallest length that matters (spot, spacing), m; 0 is a fiftieth of the crystal
+	Growth    float64   // growth of a step over the one before, and of the longest step in proportion; 0 is 0.1
+	Faces     []float64 // the cells themselves, m; every zone boundary must be one of them
+	Fractions []float64 // the steps themselves, cumulative fractions of G rising to 1
+	Damp      int       // steps after an event done as two backward-Euler half steps; 0 is 8, -1 none
+}
+
+// defaultFinest is the part of the crystal taken as the smallest length that
+// matters when none is stated.
+const defaultFinest = 1.0 / 50
+
+// Plan is a problem made ready to run: grid, start and steps. It never changes
+// and may be shared by goroutines.
+type Plan struct {
+	problem *Problem
+	grid    *grid
+	cond    []float64   // conductance of each face at unit D
+	starts  [][]float64 // cell means: the answer, then one column per free value
+	steps   schedule    // between two events
+	events  []float64   // s, ascending: times after 0 at which the solution is damped anew
+	halved  *Plan       // on half the cells; nil in a halved plan itself
+	rough   schedule    // half the steps
+}
+
+// Compile checks the problem and lays its plan.
+func Compile(p *Problem, o Options) (*Plan, error) {
+	if err := p.check(); err != nil {
+		return nil, err
+	}
+	faces, err := o.faces(p)
+	if err != nil {
+		return nil, err
+	}
+	steps, err := o.schedule(p)
+	if err != nil {
+		return nil, err
+	}
+	plan, err := compile(p, faces, steps)
+	if err != nil {
+		return nil, err
+	}
+	if half := everySecond(p, faces); half != nil {
+		if plan.halved, err = compile(p, half, steps); err != nil {
+			return nil, err
+		}
+	}
+	return plan, nil
+}
+
+func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
+	g := newGrid(p.Shape, faces)
+	plan := &Plan{problem: p, grid: g, cond: p.conductances(g), steps: steps, rough: steps.merged(), events: p.events()}
+	for i, k := range plan.cond {
+		if !(k >= 0) || math.IsInf(k, 0) {
+			return nil, fmt.Errorf("diffusion: D is not a positive number near %g m", faces[i])
+		}
+	}
+	plan.starts = append(plan.starts, p.startMeans(g))
+	for _, b := range p.Free {
+		column := make([]float64, len(g.centres))
+		p.cellMeans(column, g, b.Start)
+		plan.starts = append(plan.starts, column)
+	}
+	return plan, nil
+}
+
+func (p *Problem) startMeans(g *grid) []float64 {
+	values := make([]float64, len(p.Zones))
+	for i, z := range p.Zones {
+		values[i] = z.Start
+	}
+	column := make([]float64, len(g.centres))
+	p.cellMeans(column, g, values)
+	if p.Profile != nil {
+		addProfile(column, p.Shape, g, p.Profile)
+	}
+	return column
+}
+
+func (o Options) faces(p *Problem) ([]float64, error) {
+	if o.Faces == nil {
+		cells, finest := o.Cells, o.Finest
+		if cells == 0 {
+			cells = defaultCells
+		}
+		if finest == 0 {
+			finest = (p.size() - p.R0) * defaultFinest
+		}
+		if cells < 0 || !(finest > 0) {
+			return nil, fmt.Errorf("diffusion: %d cells down to %g m make no grid", cells, finest)
+		}
+		return layFaces(p, cells, finest), nil
+	}
+	for i := 1; i < len(o.Faces); i++ {
+		if !(o.Faces[i] > o.Faces[i-1]) {
+			return nil, fmt.Errorf("diffusion: face %d at %g m is not outside the one before", i, o.Faces[i])
+		}
+	}
+	for _, mark := range segments(p) {
+		if !slices.Contains(o.Faces, mark) {
+			return nil, fmt.Errorf("diffusion: the boundary at %g m is no face", mark)
+		}
+	}
+	return o.Faces, nil
+}
+
+func (o Options) schedule(p *Problem) (schedule, error) {
+	damp := o.Damp
+	switch {
+	case damp == 0:
+		damp = defaultDamped
+	case damp < 0:
+		damp = 0
+	}
+	if o.Fractions != nil {
+		return newSchedule(o.Fractions, damp), checkFractions(o.Fractions)
+	}
+	growth := o.Growth
+	if growth == 0 {
+		growth = defaultGrowth
+	}
+	if !(growth > 0) || growth > 1 {
+		return nil, fmt.Errorf("diffusion: steps cannot grow by %g", growth)
+	}
+	return newSchedule(defaultFractions(damp, growth, p.moving()), damp), nil
+}
+
+// everySecond returns every second face, or nil where a zone boundary or end
+// would be lost (faces chosen by the caller).
+func everySecond(p *Problem, faces []float64) []float64 {
+	var half []float64
+	for i := 0; i < len(faces); i += 2 {
+		half = append(half, faces[i])
+	}
+	for _, mark := range segments(p) {
+		if !slices.Contains(half, mark) {
+			return nil
+		}
+	}
+	return half
+}
+
+// moving reports whether a rim value changes with time other than by jumps.
+func (p *Problem) moving() bool {
+	isPrescribed := func(r Rim) bool { return r.Kind == Prescribed }
+	return slices.ContainsFunc(p.Inner, isPrescribed) || slices.ContainsFunc(p.Outer, isPrescribed)
+}
+
+// events returns the times after 0 at which a rim changes its kind or jumps.
+func (p *Problem) events() []float64 {
+	var at []float64
+	for _, rims := range [][]Rim{p.Inner, p.Outer} {
+		for i, r := range rims {
+			at = append(at, r.From)
+			until := math.Inf(1)
+			if i+1 < len(rims) {
+				until = rims[i+1].From
+			}
+			if r.Kind == Prescribed {
+				at = append(at, within(r.Given.Jumps, r.From, until)...)
+			}
+		}
+	}
+	slices.Sort(at)
+	at = slices.Compact(at)
+	return slices.DeleteFunc(at, func(t float64) bool { return t <= 0 })
+}
+
+// within returns the entries strictly between lo and hi.
+func within(times []float64, lo, hi float64) []float64 {
+	var in []float64
+	for _, t := range times {
+		if t > lo && t < hi {
+			in = append(in, t)
+		}
+	}
+	return in
+}
+
+// Faces returns the cell faces from the inside outwards, m. Not to be changed.
+func (p *Plan) Faces() []float64 { return p.grid.faces }
+
+// Centres returns the middles of the cells, m. Not to be changed.
+func (p *Plan) Centres() []float64 { return p.grid.centres }
+
+// Volumes returns the integral of r^n dr over each cell. Not to be changed.
+func (p *Plan) Volumes() []float64 { return p.grid.volumes }
+
+// Start returns the cell means before diffusion of column j: 0 the profile,
+// then the free values. Not to be changed.
+func (p *Plan) Start(j int) []float64 { return p.starts[j] }
+
+// GEnough reports whether the final profile depends on the history through the
+// diffusion integral alone, and why or why not. It is decided from the kinds
+// of rim, never by trial.
+func (p *Plan) GEnough() (why string, ok bool) {
+	if len(p.events) > 0 {
+		return "a rim changes along the path", false
+	}
+	if p.problem.moving() {
+		return "a rim value follows time", false
+	}
+	return "D only scales with temperature and every end is sealed or held throughout", true
+}

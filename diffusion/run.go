@@ -1,0 +1,214 @@
+package diffusion
+
+import (
+	"fmt"
+	"math"
+)
+
+// Job is one run of a plan: a course, with D multiplied by exp(LnM).
+type Job struct {
+	Course *Course
+	LnM    float64
+}
+
+// Stats say how a run went.
+type Stats struct {
+	Steps     int     // solves
+	MassDrift float64 // content not accounted for by start and rims, as a part of all that was there or came
+	Overshoot float64 // by how much the answer leaves the range of start and rim values, as a part of that range
+}
+
+// Field is the outcome of a run. Its memory is reused by the next run into it.
+type Field struct {
+	Cols [][]float64 // cell means: the answer, then its derivative by each free value
+	// StepErr and CellErr estimate, cell by cell, what half the steps and half
+	// the cells did to each column (solution less truth). Filled by Audit.
+	StepErr, CellErr [][]float64
+	Stats            Stats
+
+	lane  lane
+	lane4 lane4
+	cols4 [][]four
+	other *Field // the coarser runs of Audit
+}
+
+// Run solves the plan's problem for all jobs and writes the outcome of jobs[k]
+// to dst[k]; the slices must have equal lengths. Up to four jobs go side by
+// side, and dst[k] depends on jobs[k] alone, to the bit. Run does not allocate
+// once dst has been used before; one dst belongs to one goroutine at a time.
+// Courses made by another plan are refused.
+func (p *Plan) Run(dst []Field, jobs []Job) error {
+	if len(dst) != len(jobs) {
+		panic(fmt.Sprintf("diffusion: len(dst) %d != len(jobs) %d", len(dst), len(jobs)))
+	}
+	if err := p.checkJobs(jobs); err != nil {
+		return err
+	}
+	for ; len(jobs) > 1; dst, jobs = dst[min(lanes, len(dst)):], jobs[min(lanes, len(jobs)):] {
+		n := min(lanes, len(jobs))
+		p.runFour(dst[:n], jobs[:n])
+	}
+	if len(jobs) == 1 {
+		p.runOne(&dst[0], jobs[0], false)
+	}
+	return nil
+}
+
+func (p *Plan) checkJobs(jobs []Job) error {
+	for k, j := range jobs {
+		switch {
+		case j.Course == nil || j.Course.plan != p:
+			return fmt.Errorf("diffusion: job %d has no course of this plan", k)
+		case !finite(j.LnM):
+			return fmt.Errorf("diffusion: job %d multiplies D by exp(%g)", k, j.LnM)
+		}
+	}
+	return nil
+}
+
+// Audit runs the job and measures its error: the differences from the same run
+// in half the steps and on half the cells, each divided by three, as befits a
+// method of second order (Richardson 1911). It returns an error where the
+// plan's faces cannot be halved.
+func (p *Plan) Audit(dst *Field, job Job) error {
+	if p.halved == nil {
+		return fmt.Errorf("diffusion: the faces do not pair up, so the error of the cells cannot be measured")
+	}
+	if err := p.checkJobs([]Job{job}); err != nil {
+		return err
+	}
+	if dst.other == nil {
+		dst.other = new(Field)
+	}
+	p.runOne(dst, job, false)
+	n, cells := len(dst.Cols), len(dst.Cols[0])
+	dst.StepErr, dst.CellErr = resizedCols(dst.StepErr, n, cells), resizedCols(dst.CellErr, n, cells)
+	p.runOne(dst.other, job, true)
+	for j, c := range dst.Cols {
+		for i := range c {
+			dst.StepErr[j][i] = (c[i] - dst.other.Cols[j][i]) / 3
+		}
+	}
+	p.halved.runOne(dst.other, job, false)
+	for j, c := range dst.Cols {
+		p.cellError(dst.CellErr[j], c, dst.other.Cols[j])
+	}
+	return nil
+}
+
+// cellError fills dst with a third of the difference between fine cell means,
+// averaged in pairs, and those of the halved plan.
+func (p *Plan) cellError(dst, fine, coarse []float64) {
+	for i, c := range coarse {
+		a, b := 2*i, 2*i+1
+		va, vb := p.grid.volumes[a], p.grid.volumes[b]
+		mean := (va*fine[a] + vb*fine[b]) / (va + vb)
+		dst[a], dst[b] = (mean-c)/3, (mean-c)/3
+	}
+}
+
+// reset puts the start into the field's columns.
+func (p *Plan) reset(f *Field) {
+	f.Cols = resizedCols(f.Cols, len(p.starts), len(p.grid.centres))
+	for j, start := range p.starts {
+		copy(f.Cols[j], start)
+	}
+	f.Stats = Stats{}
+}
+
+// runOne takes the start through all spans of the job's course.
+func (p *Plan) runOne(f *Field, job Job, rough bool) {
+	p.reset(f)
+	f.lane.resize(len(p.grid.centres))
+	book := p.openBook(f.Cols[0])
+	for i := range job.Course.spans {
+		sp := &job.Course.spans[i]
+		g := math.Exp(sp.lnG + job.LnM)
+		if g == 0 {
+			continue
+		}
+		for k, st := range p.solves(rough) {
+			s := st.length(g)
+			for j, c := range f.Cols {
+				e := p.ends(sp, j, k, s, rough)
+				if j > 0 {
+					p.forward(&f.lane, s, e, c)
+					f.lane.substitute(c, st.euler)
+					continue
+				}
+				first, last := c[0], c[len(c)-1]
+				p.eliminate(&f.lane, s, e, c)
+				f.lane.substitute(c, st.euler)
+				book.enter(e, st.euler, first, last, c[0], c[len(c)-1])
+			}
+		}
+		f.Stats.Steps += len(p.solves(rough))
+	}
+	book.close(&f.Stats, p, f.Cols[0])
+}
+
+func (p *Plan) solves(rough bool) schedule {
+	if rough {
+		return p.rough
+	}
+	return p.steps
+}
+
+// length returns s of the solve, m2, where g is the span's whole integral:
+// the step for backward Euler, half of it for Crank-Nicolson.
+func (s step) length(g float64) float64 {
+	if s.euler {
+		return s.df * g
+	}
+	return s.df * g / 2
+}
+
+// ends returns what the ends of column j are in solve k of a span, s long.
+func (p *Plan) ends(sp *span, j, k int, s float64, rough bool) ends {
+	var e ends
+	if sp.inner.open {
+		e.kIn = s * p.cond[0]
+		if e.vIn = sp.inner.value(p.problem.Inner, k, rough); j > 0 {
+			e.vIn = at(p.problem.Free[j-1].Inner, sp.inner.rim)
+		}
+	}
+	if sp.outer.open {
+		e.kOut = s * p.cond[len(p.cond)-1]
+		if e.vOut = sp.outer.value(p.problem.Outer, k, rough); j > 0 {
+			e.vOut = at(p.problem.Free[j-1].Outer, sp.outer.rim)
+		}
+	}
+	return e
+}
+
+// value returns what is behind an open end in solve k of its span.
+func (e *ending) value(rims []Rim, k int, rough bool) float64 {
+	switch {
+	case rims[e.rim].Kind == Held:
+		return rims[e.rim].Value
+	case rough:
+		return e.rough[k]
+	default:
+		return e.values[k]
+	}
+}
+
+// at returns slopes[i], or 0 where there are none.
+func at(slopes []float64, i int) float64 {
+	if slopes == nil {
+		return 0
+	}
+	return slopes[i]
+}
+
+// resizedCols returns cols as n columns of the given length, of new memory
+// only where it must grow.
+func resizedCols(cols [][]float64, n, length int) [][]float64 {
+	for len(cols) < n {
+		cols = append(cols, nil)
+	}
+	for j := range n {
+		cols[j] = resized(cols[j], length)
+	}
+	return cols[:n]
+}
