@@ -1,0 +1,333 @@
+package study
+
+import (
+	"errors"
+	"fmt"
+	"strings"
+	"testing"
+
+	"bankfire/thermal"
+)
+
+// memory is a loader of files that exist in a test only.
+func memory(files map[string]string) loader {
+	return func(name string, limit int64) ([]byte, error) {
+		text, ok := files[name]
+		switch {
+		case !ok:
+			return nil, &thermal.InputError{Problem: "no such file"}
+		case int64(len(text)) > limit:
+			return nil, &thermal.InputError{Problem: "larger than allowed"}
+		}
+		return []byte(text), nil
+	}
+}
+
+// problems takes an error of Read apart.
+func problems(t *testing.T, err error) []*thermal.InputError {
+	t.Helper()
+	if err == nil {
+		return nil
+	}
+	joined, ok := err.(interface{ Unwrap() []error })
+	if !ok {
+		joined = oneError{err}
+	}
+	var list []*thermal.InputError
+	for _, e := range joined.Unwrap() {
+		var in *thermal.InputError
+		if !errors.As(e, &in) {
+			t.Fatalf("error of type %T, want *thermal.InputError: %v", e, e)
+		}
+		list = append(list, in)
+	}
+	return list
+}
+
+type oneError struct{ error }
+
+func (e oneError) Unwrap() []error { return []error{e.error} }
+
+// sound is a study without a fault. The wrong studies are made of it.
+const sound = `title = "sound"
+confidence = "95 %"
+
+[[threshold]]
+name = "lock-up"
+temperature = "750 C"
+
+[[law]]
+name = "mine"
+D0 = "7e-8 m2/s"
+E = "273 kJ/mol"
+
+[[path]]
+name = "warm"
+legs = [
+  { name = "store", hold = "750 C", for = "800 yr" },
+  { name = "wake", ramp = "780 C", for = "5 yr" },
+]
+
+[[crystal]]
+name = "Q1"
+mineral = "quartz"
+shape = "slab"
+zones = [
+  { name = "core", width = "100 um" },
+  { name = "skin", width = "20 um" },
+]
+
+[[crystal.element]]
+name = "Ti"
+law = "quartz-ti-cherniak2007"
+start = { zones = ["free", "58 ppm"], edge = "0 um" }
+rim = { held = "skin" }
+traverse = { file = "ti.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }
+`
+
+// soundFiles are the files that the sound study and its faulty sisters name.
+func soundFiles() map[string]string {
+	return map[string]string{
+		"ti.csv":     "x [um],Ti [ppm]\n1,58\n30,70\n",
+		"bad.csv":    "x [um],Ti [ppm]\n1,58\n30,seventy\n",
+		"wide.csv":   "x [um],Ti [ppm]\n1,58\n300,70\n",
+		"percent.cs": "x [um],Ti [mole fraction]\n1,0.1\n30,0.2\n",
+		"rim.csv":    "t [yr],Ti [ppm]\n0,80\n900,90\n",
+		"short.csv":  "t [yr],Ti [ppm]\n0,80\n90,90\n",
+		"back.csv":   "t [yr],Ti [ppm]\n0,80\n900,90\n800,90\n",
+		"less.csv":   "t [yr],Ti [ppm]\n0,80\n900,-90\n",
+		"thrice.csv": "t [yr],Ti [ppm]\n0,80\n9,80\n9,85\n9,90\n900,90\n",
+		"tt.csv":     "t [yr],T [C]\n0,700\n900,750\n",
+		"hot.csv":    "t [yr],T [C]\n0,700\n900,75000\n",
+	}
+}
+
+// wrong is a fault put into the sound study. The text that replaces old marks
+// with @ the place where the problem must be reported; without a mark it is
+// expected elsewhere, at the place given.
+type wrong struct {
+	name, old, new  string
+	at              string // "file:line:col" where the text has no mark
+	field           string
+	problem, remedy string // words of it
+}
+
+func TestWrongStudies(t *testing.T) {
+	list := wrongStudies()
+	if len(list) < 40 {
+		t.Fatalf("only %d wrong studies", len(list))
+	}
+	for _, w := range list {
+		t.Run(w.name, func(t *testing.T) { w.check(t) })
+	}
+}
+
+func (w wrong) check(t *testing.T) {
+	if strings.Count(sound, w.old) != 1 {
+		t.Fatalf("%q is in the sound study %d times, want once", w.old, strings.Count(sound, w.old))
+	}
+	marked := strings.Replace(sound, w.old, w.new, 1)
+	text := strings.Replace(marked, "@", "", 1)
+	at := w.at
+	if before, _, ok := strings.Cut(marked, "@"); ok {
+		line := before[strings.LastIndexByte(before, '\n')+1:]
+		at = fmt.Sprintf("s.toml:%d:%d", 1+strings.Count(before, "\n"), 1+len([]rune(line)))
+	}
+	s, err := parse("s.toml", []byte(text), memory(soundFiles()))
+	got := problems(t, err)
+	if len(got) == 0 || s != nil {
+		t.Fatalf("read without a problem, want one at %s", at)
+	}
+	if len(got) > 1 {
+		t.Errorf("%d problems, want one fault to give one:\n%v", len(got), err)
+	}
+	e := got[0]
+	if place := fmt.Sprintf("%s:%d:%d", e.File, e.Line, e.Col); place != at {
+		t.Errorf("reported at %s, want %s", place, at)
+	}
+	if e.Field != w.field {
+		t.Errorf("field %q, want %q", e.Field, w.field)
+	}
+	if !strings.Contains(e.Problem, w.problem) || !strings.Contains(e.Remedy, w.remedy) {
+		t.Errorf("message %q, want the words %q and %q", e, w.problem, w.remedy)
+	}
+	t.Log(e)
+}
+
+func TestSoundStudy(t *testing.T) {
+	s, err := parse("s.toml", []byte(sound), memory(soundFiles()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(s.Paths) != 1 || len(s.Crystals) != 1 || s.Crystals[0].Elements[0].Traverse == nil {
+		t.Errorf("read %+v", s)
+	}
+}
+
+func wrongStudies() []wrong {
+	return append(append(wrongText(), wrongPaths()...), append(wrongCrystals(), wrongElements()...)...)
+}
+
+func wrongText() []wrong {
+	const title = `title = "sound"`
+	return []wrong{
+		{"unknown key", title, `@titel = "sound"`, "", "titel", "unknown key", `did you mean "title"?`},
+		{"unknown key, none near", title, `@colour = 3`, "", "colour", "unknown key", "known here: title, confidence"},
+		{"unknown table", "[[threshold]]", "[[@treshold]]", "", "treshold", "unknown key", `did you mean "threshold"?`},
+		{"later table", title, "@conditions = { pressure = \"2 kbar\" }", "", "conditions", "not known in this version", "leave it out"},
+		{"quoted key", title, `@"two words" = 1`, "", `"two words"`, "unknown key", "known here"},
+		{"title not a text", title, "title = @12", "", "title", "a number, not a text", "one line"},
+		{"title empty", title, `title = @" "`, "", "title", "empty", "title"},
+		{"key without value", title, "title = @\n", "", "", "not TOML", ""},
+		{"text not closed", title, `title = "sound@`, "", "", "not TOML", ""},
+		{"key twice", title, title + "\n@title = \"again\"", "", "title", "given twice, first on line 1", "keep one"},
+		{"table twice", "[[threshold]]", "[other]\n[@other]\n[[threshold]]", "", "other", "given twice, first on line 4", "keep one"},
+		{"list closed", title, "law = []\n" + title, "s.toml:9:3", "law", "given twice, first on line 1", "keep one"},
+		{"dotted into closed", title, "law = {}\n@law.name = 1", "", "law", "given twice", "keep one"},
+		{"not a number", `"4 %"`, `{ column = "2se [ppm]", sigmas = @nan }`, "", "crystal.element.traverse.error.sigmas", "not finite", "sigmas = 1"},
+		{"confidence bare", `"95 %"`, "@95", "", "confidence", "without a unit", `"95 %"`},
+		{"confidence of all", `"95 %"`, `@"100 %"`, "", "confidence", "not a confidence", "below 100"},
+		{"confidence in wt%", `"95 %"`, `@"95 wt%"`, "", "confidence", "not a confidence", "below 100"},
+		{"threshold without temperature", `temperature = "750 C"`, "", "s.toml:4:3", "threshold.temperature", "missing", `"750 C"`},
+		{"single brackets", "[[threshold]]", "[@threshold]", "", "threshold", "a table, not a list", `"[[threshold]]"`},
+	}
+}
+
+func wrongPaths() []wrong {
+	const store, wake = `{ name = "store", hold = "750 C", for = "800 yr" }`, `{ name = "wake", ramp = "780 C", for = "5 yr" }`
+	const legs = "[\n  " + store + ",\n  " + wake + ",\n]"
+	return []wrong{
+		{"no path", "[[path]]\nname = \"warm\"\nlegs = " + legs, "", "s.toml:1:1", "path", "missing", "[[path]]"},
+		{"no legs", "legs = " + legs, "", "s.toml:13:3", "path.legs", "missing", "legs = ["},
+		{"empty legs", legs, "@[]", "", "path.legs", "an empty list", "legs = ["},
+		{"leg not a table", store, `@"750 C"`, "", "path.legs", "a text, not a table", "legs = ["},
+		{"path without name", "name = \"warm\"\n", "", "s.toml:13:3", "path.name", "missing", "kept warm"},
+		{"two paths of one name", "[[crystal]]", "[[path]]\nname = @\"warm\"\nlegs = [" + store + "]\n[[crystal]]", "", "path.name", "used twice, first on line 14", "its own"},
+		{"temperature bare", `hold = "750 C"`, `hold = @750`, "", "path.legs.hold", "without a unit", `in quotes with its unit, such as "750 C"`},
+		{"temperature without unit", `hold = "750 C"`, `hold = @"750"`, "", "path.legs.hold", "unit", "750 C"},
+		{"unknown unit", `hold = "750 C"`, `hold = @"750 Q"`, "", "path.legs.hold", "unit", "C"},
+		{"unit of something else", `for = "800 yr"`, `for = @"800 um"`, "", "path.legs.for", "unit", "yr"},
+		{"below absolute zero", `hold = "750 C"`, `hold = @"-300 C"`, "", "path.legs.hold", "below absolute zero", "-273.15"},
+		{"absolute zero", `hold = "750 C"`, `hold = @"0 K"`, "", "path.legs.hold", "absolute zero", ""},
+		{"hotter than any rock", `hold = "750 C"`, `hold = @"75000 C"`, "", "path.legs.hold", "more than", "check the unit"},
+		{"negative time", `for = "800 yr"`, `for = @"-800 yr"`, "", "path.legs.for", "below zero", "12 kyr"},
+		{"no time", `for = "800 yr"`, `for = @"0 yr"`, "", "path.legs.for", "zero", "12 kyr"},
+		{"longer than the universe", `for = "800 yr"`, `for = @"1e9 Myr"`, "", "path.legs.for", "more than", "check the unit"},
+		{"infinite time", `for = "800 yr"`, `for = @"inf yr"`, "", "path.legs.for", "", ""},
+		{"time of NaN", `for = "800 yr"`, `for = @"nan yr"`, "", "path.legs.for", "", ""},
+		{"bare infinity", `for = "800 yr"`, `for = @inf`, "", "path.legs.for", "not finite", ""},
+		{"a date", `for = "800 yr"`, `for = @2020-01-01`, "", "path.legs.for", "a date, not a text", "12 kyr"},
+		{"leg of two kinds", store, `@{ hold = "750 C", ramp = "780 C", for = "1 yr" }`, "", "path.legs", "hold and ramp in one leg", "two legs"},
+		{"leg of no kind", store, `@{ name = "store", for = "1 yr" }`, "", "path.legs", "a leg of no kind", "hold, ramp, relax"},
+		{"mistyped kind", store, `{ @hodl = "750 C", for = "1 yr" }`, "", "path.legs.hodl", "unknown key", `did you mean "hold"?`},
+		{"key of another kind", store, `{ hold = "750 C", @efold = "1 yr", for = "1 yr" }`, "", "path.legs.efold", "unknown key", "known here: hold, for, name"},
+		{"later key of a leg", store, `{ hold = "750 C", @conditions = { fO2 = "NNO" }, for = "1 yr" }`, "", "path.legs.conditions", "not known in this version", "leave it out"},
+		{"hold without time", store, `@{ hold = "750 C" }`, "", "path.legs.for", "missing", "a hold leg needs hold, for"},
+		{"relax without e-fold time", store, `@{ from = "700 C", relax = "750 C", for = "1 yr" }`, "", "path.legs.efold", "missing", "a relax leg needs"},
+		{"first ramp without from", store, `@{ ramp = "750 C", for = "1 yr" }`, "", "path.legs", "from", "from"},
+		{"repeat a fraction", store, `{ repeat = @1.5, legs = [` + store + `] }`, "", "path.legs.repeat", "whole number", "repeat = 3"},
+		{"repeat never", store, `{ repeat = @0, legs = [` + store + `] }`, "", "path.legs.repeat", "at least 1", "repeat = 3"},
+		{"a thousand million repeats", store, `{ repeat = @1_000_000_000, legs = [` + store + `] }`, "", "path.legs.repeat", "at most 100000 legs", "fewer"},
+		{"repeats of repeats", store, `@{ repeat = 90000, legs = [ { repeat = 90000, legs = [` + store + `] } ] }`, "", "path.legs", "100", ""},
+		{"repeat without legs", store, `@{ repeat = 3 }`, "", "path.legs.legs", "missing", "a repeat leg needs"},
+		{"two legs of one name", wake, `{ name = "store", ramp = "780 C", for = "5 yr" }`, "s.toml:17:3", "path.legs", "store", ""},
+		{"table that is missing", store, `{ table = @"none.csv", time = "t [yr]", temperature = "T [C]" }`, "", "path.legs.table", "no such file", ""},
+		{"table without column", store, `{ table = "tt.csv", time = "time [yr]", temperature = "T [C]" }`, "tt.csv:1:1", "column", "not in the header", "t [yr]"},
+		{"table too hot", store, `{ table = "hot.csv", time = "t [yr]", temperature = "T [C]" }`, "hot.csv:3:0", "T [C]", "no temperature of a rock", "check the unit"},
+		{"table that counts oddly", store, `{ table = "tt.csv", time = "t [yr]", temperature = "T [C]", counts = @"before eruptoin" }`, "", "path.legs.counts", "no way to count", `did you mean "before eruption"?`},
+		{"eruption a duration", "legs = " + legs, "eruption = @\"3 yr\"\nlegs = " + legs, "", "path.eruption", "moment", "after start"},
+		{"eruption of no leg", "legs = " + legs, "eruption = @\"end of wake 9\"\nlegs = " + legs, "", "path.eruption", "wake 9", ""},
+		{"eruption before eruption", "legs = " + legs, "eruption = @\"3 yr before eruption\"\nlegs = " + legs, "", "path.eruption", "counts from the eruption itself", "after start"},
+		{"eruption after the end", "legs = " + legs, "eruption = @\"3 Myr after start\"\nlegs = " + legs, "", "path.eruption", "end", ""},
+		{"name not a text", `name = "warm"`, "name = @true", "", "path.name", "true or false, not a text", "kept warm"},
+	}
+}
+
+func wrongCrystals() []wrong {
+	const core, skin = `{ name = "core", width = "100 um" }`, `{ name = "skin", width = "20 um" }`
+	const element = "[[crystal.element]]"
+	return []wrong{
+		{"no shape", "shape = \"slab\"\n", "", "s.toml:20:3", "crystal.shape", "missing", `"cylinder"`},
+		{"unknown shape", `"slab"`, `@"slap"`, "", "crystal.shape", "no shape", `did you mean "slab"?`},
+		{"sphere", `"slab"`, `@"sphere"`, "", "crystal.shape", "no shape", `"ball"`},
+		{"no mineral", "mineral = \"quartz\"\n", "", "s.toml:20:3", "crystal.mineral", "missing", "quartz"},
+		{"no element", element, "[[law]]", "s.toml:20:3", "crystal.element", "missing", "[[crystal.element]]"},
+		{"a second crystal", "[[crystal]]", "[[crystal]]\nname = \"Q0\"\nmineral = \"quartz\"\nshape = \"slab\"\nzones = [" + core + "]\n[[crystal.element]]\nname = \"Ti\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\"] }\n[[@crystal]]", "", "crystal", "a second crystal", "one crystal"},
+		{"zone without width", core, `@{ name = "core" }`, "", "crystal.zones.width", "missing", "140 um"},
+		{"zone of no width", `"100 um"`, `@"0 um"`, "", "crystal.zones.width", "zero", "140 um"},
+		{"zone of a kilometre", `"100 um"`, `@"1000 m"`, "", "crystal.zones.width", "more than 1 m", "check the unit"},
+		{"zone like a number", `"skin", width`, `@"2nd", width`, "s.toml:26:12", "crystal.zones.name", "begin like a number", "zone 2nd"},
+		{"zone named free", `{ name = "core"`, `{ name = @"free"`, "", "crystal.zones.name", "meaning of its own", "core"},
+		{"two zones of one name", skin, `{ name = @"core", width = "20 um" }`, "", "crystal.zones.name", "used twice", "its own"},
+		{"zone added later", skin, `{ name = "skin", width = "20 um", @added = "1 kyr after start" }`, "", "crystal.zones.added", "not known in this version", "leave it out"},
+		{"zone that does not diffuse", core, `{ name = "core", width = "100 um", times = @0 }`, "", "crystal.zones.times", "above zero", "times = 0.1"},
+		{"zones not a list", "zones = [\n  " + core + ",\n  " + skin + ",\n]", "zones = @\"core\"", "", "crystal.zones", "a text, not a list", "zones = ["},
+		{"inner value at the centre", `shape = "slab"`, "shape = \"ball\"\ninner = { rim = @{ held = \"core\" } }", "", "crystal.inner.rim", "sealed by symmetry", "inner radius"},
+		{"inner key", `shape = "slab"`, "shape = \"ball\"\ninner = { @radus = \"1 um\" }", "", "crystal.inner.radus", "unknown key", `did you mean "radius"?`},
+	}
+}
+
+func wrongElements() []wrong {
+	const law, start, rim = `"quartz-ti-cherniak2007"`, `{ zones = ["free", "58 ppm"], edge = "0 um" }`, `{ held = "skin" }`
+	const traverse = `{ file = "ti.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
+	return append([]wrong{
+		{"unknown law", law, `@"quartz-ti-cherniak2008"`, "", "crystal.element.law", "not in the catalogue", "quartz-ti-cherniak2007"},
+		{"law of the study mistyped", law, `@"mime"`, "", "crystal.element.law", "neither in the catalogue nor", `did you mean "mine"?`},
+		{"law that needs conditions", law, `@"olivine-femg-dohmen2007-tamed"`, "", "crystal.element.law", "depends on", "D0"},
+		{"law without E", law, `@{ D0 = "1e-9 m2/s" }`, "", "crystal.element.law.E", "missing", "273 kJ/mol"},
+		{"law in the wrong unit", law, `{ D0 = @"1e-9 m", E = "250 kJ/mol" }`, "", "crystal.element.law.D0", "unit", "m2/s"},
+		{"law named like a published one", `name = "mine"`, `name = @` + law, "", "law.name", "of the catalogue", "another name"},
+		{"law with an empty range", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nrange = @\"900..800 C\"", "", "law.range", "", ""},
+		{"too few values", start, `{ zones = @["58 ppm"], edge = "0 um" }`, "", "crystal.element.start.zones", "1 value for 2 zones", "core, skin"},
+		{"value without a unit", `"58 ppm"]`, "@58]", "", "crystal.element.start.zones", "without a unit", `"58 ppm"`},
+		{"value of no kind", `"58 ppm"]`, `@"plenty"]`, "", "crystal.element.start.zones", "", ""},
+		{"value below zero", `"58 ppm"]`, `@"-58 ppm"]`, "", "crystal.element.start.zones", "below zero", "zero or more"},
+		{"value of more than all", `"58 ppm"]`, `@"580 wt%"]`, "", "crystal.element.start.zones", "more than all there is", "check the unit"},
+		{"units that do not agree", `"58 ppm"]`, `@"0.3 mole fraction"]`, "", "crystal.element.start.zones", "in mole fraction, but line 35 has ppm", "one unit"},
+		{"alternatives", start, `@[ ` + start + ` ]`, "", "crystal.element.start", "not known in this version", "start = {"},
+		{"start in melt", start, `{ @melt = ["90 ppm"], edge = "0 um" }`, "", "crystal.element.start.melt", "not known in this version", "leave it out"},
+		{"free edge", `edge = "0 um"`, `edge = @"free 0..2 um"`, "", "crystal.element.start.edge", "free edge", "0.5 um"},
+		{"negative edge", `edge = "0 um"`, `edge = @"-1 um"`, "", "crystal.element.start.edge", "below zero", ""},
+		{"rim at no zone", rim, `{ held = @"skim" }`, "", "crystal.element.rim.held", "no zone has this name", `did you mean "skin"?`},
+		{"rim of no kind", rim, `@{ from = "1 yr after start" }`, "", "crystal.element.rim", "a rim of no kind", "held"},
+		{"rim not sealed", rim, `{ sealed = @false }`, "", "crystal.element.rim.sealed", "held or given", "rim ="},
+		{"rim from before", rim, `[{ held = "skin", from = @"1 yr after start" }]`, "", "crystal.element.rim.from", "from the start", "leave from out"},
+		{"second rim without from", rim, `[{ held = "skin" }, @{ held = "90 ppm" }]`, "", "crystal.element.rim.from", "missing", "3 yr before eruption"},
+		{"rim from a duration", rim, `[{ held = "skin" }, { sealed = true, from = @"3 yr" }]`, "", "crystal.element.rim.from", "moment", ""},
+		{"rim from a leg that is not there", rim, `[{ held = "skin" }, @{ sealed = true, from = "end of wake 7" }]`, "", "crystal.element.rim", "wake 7", ""},
+		{"rims out of order", rim, `["sealed", { held = @"9 ppm", from = "9 yr after start" }, { sealed = true, from = "2 yr after start" }]`, "s.toml:34:63", "crystal.element.rim", "does not come after", "order of time"},
+		{"rim from an added zone", rim, `[{ held = "skin" }, { sealed = true, from = @"skin added" }]`, "", "crystal.element.rim.from", "not known in this version", "another moment"},
+		{"rim in another unit", rim, `{ held = @"0.2 mole fraction" }`, "", "crystal.element.rim.held", "in mole fraction, but line 35 has ppm", "one unit"},
+		{"mass transfer", rim, `{ held = "skin", @transfer = "60 ppm" }`, "", "crystal.element.rim.transfer", "not known in this version", "leave it out"},
+		{"given without time", rim, `@{ given = "rim.csv", value = "Ti [ppm]" }`, "", "crystal.element.rim.time", "missing", "t [yr]"},
+		{"given too short", rim, `{ given = @"short.csv", time = "t [yr]", value = "Ti [ppm]" }`, "", "crystal.element.rim.given", "holds times from 0 yr to 90 yr only", "add rows"},
+		{"given backwards", rim, `{ given = "back.csv", time = "t [yr]", value = "Ti [ppm]" }`, "back.csv:4:0", "time", "before the row above", "order of time"},
+		{"given below zero", rim, `{ given = "less.csv", time = "t [yr]", value = "Ti [ppm]" }`, "less.csv:3:0", "value", "below zero", "zero or more"},
+		{"given jumps twice", rim, `{ given = "thrice.csv", time = "t [yr]", value = "Ti [ppm]" }`, "thrice.csv:5:0", "time", "third time", "keep two"},
+		{"nothing to fit a plateau to", "traverse = " + traverse, "", "s.toml:32:9", "crystal.element.start", "the plateau of core is free", "give a traverse"},
+	}, wrongTraverses()...)
+}
+
+func wrongTraverses() []wrong {
+	const traverse = `{ file = "ti.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
+	return []wrong{
+		{"no such traverse", `"ti.csv"`, `@"no.csv"`, "", "crystal.element.traverse.file", "no such file", ""},
+		{"traverse without file", `file = "ti.csv", `, "", "s.toml:34:12", "crystal.element.traverse.file", "missing", "ti.csv"},
+		{"traverse a text", traverse, `@"ti.csv"`, "", "crystal.element.traverse", "a text, not a table", "traverse = {"},
+		{"no such column", `"x [um]"`, `"y [um]"`, "ti.csv:1:1", "column", "not in the header", "x [um]"},
+		{"a cell that is no number", `"ti.csv"`, `"bad.csv"`, "bad.csv:3:4", "Ti [ppm]", "not a number", ""},
+		{"beyond the centre", `"ti.csv"`, `"wide.csv"`, "wide.csv:3:1", "x [um]", "beyond the rim", "window"},
+		{"zero nowhere", `"rim"`, `@"edge"`, "", "crystal.element.traverse.zero", "no place to count from", `"rim" or "centre"`},
+		{"error bare", `"4 %"`, "@4", "", "crystal.element.traverse.error", "without a unit", `"4 %"`},
+		{"error of nothing", `"4 %"`, `@"0 %"`, "", "crystal.element.traverse.error", "above zero", `"4 %"`},
+		{"three sigmas", `"4 %"`, `{ column = "2se [ppm]", sigmas = @3 }`, "", "crystal.element.traverse.error.sigmas", "neither 1 nor 2", "sigmas = 1"},
+		{"column without sigmas", `"4 %"`, `@{ column = "2se [ppm]" }`, "", "crystal.element.traverse.error.sigmas", "missing", "sigmas = 2"},
+		{"only a floor", `"4 %"`, `@{ floor = "1 ppm" }`, "", "crystal.element.traverse.error", "no errors given", "error ="},
+		{"two errors", `"4 %"`, `{ column = "2se [ppm]", sigmas = 1, size = @"4 %" }`, "", "crystal.element.traverse.error.size", "a column of errors is given as well", "keep one"},
+		{"spot of no kind", `"1 um fwhm"`, `@"1 um"`, "", "crystal.element.traverse.spot", "does not say what the width measures", "fwhm"},
+		{"window backwards", `spot =`, `window = @"60..20 um", spot =`, "", "crystal.element.traverse.window", "", ""},
+		{"tilt", `spot =`, `@tilt = "0..30 deg", spot =`, "", "crystal.element.traverse.tilt", "not known in this version", "leave it out"},
+		{"unit twice", `value = "Ti [ppm]"`, `value = @"Ti [ppm]", unit = "ppm"`, "", "crystal.element.traverse.value", "given here and under unit", "once"},
+		{"unknown unit beside", `value = "Ti [ppm]"`, `value = "Ti", unit = @"pmp"`, "", "crystal.element.traverse.unit", "no unit of a concentration", `did you mean "ppm"?`},
+	}
+}
