@@ -226,10 +226,10 @@ func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 
 func (d *decoder) within(n *node, x float64, b bound) bool {
 	switch {
-	case x == 0 && !b.zero && b.dim != thermal.Temperature:
-		d.report(n, "zero", fmt.Sprintf("want more than zero, such as %q", b.example))
-	case x < 0 || x == 0 && !b.zero:
+	case x < 0:
 		d.report(n, "below zero", fmt.Sprintf("want something like %q", b.example))
+	case x == 0 && !b.zero:
+		d.report(n, "zero", fmt.Sprintf("want more than zero, such as %q", b.example))
 	case !(x <= b.top):
 		d.report(n, "more than "+b.topText, "check the unit")
 	default:

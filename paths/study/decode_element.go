@@ -24,7 +24,8 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	e.Traverse = d.traverse(n.get("traverse"), c)
 	u := &units{}
 	if e.Traverse != nil {
-		u.unit, u.from = e.Traverse.Unit, n.get("traverse").get("value")
+		u.unit, _ = thermal.UnitName(e.Traverse.Unit, thermal.Concentration)
+		u.from = n.get("traverse").get("value")
 	}
 	e.Start = d.start(n.get("start"), c, &e, u)
 	e.Rims = d.rims(n.get("rim"), c, u)
@@ -119,7 +120,7 @@ func (d *decoder) inUnit(n *node, u *units, v thermal.Uncertain, unit string) Pl
 	if u.unit == "" {
 		u.unit, u.from = unit, n
 	}
-	factor, ok := unitFactor(unit, u.unit)
+	factor, ok := thermal.ConcentrationFactor(unit, u.unit)
 	switch {
 	case !ok:
 		d.report(n, fmt.Sprintf("in %s, but line %d has %s", unit, u.from.line, u.unit), "give both in one unit")
@@ -131,20 +132,6 @@ func (d *decoder) inUnit(n *node, u *units, v thermal.Uncertain, unit string) Pl
 		d.report(n, fmt.Sprintf("its error is more than all there is, %g %s", maxAmount(u.unit), u.unit), "check the unit")
 	}
 	return Plateau{Value: v.Value * factor, Sigma: v.Sigma * factor}
-}
-
-// unitFactor returns the factor from one unit to another, if there is one:
-// 1 wt% = 10000 ppm; a mole fraction and a per cent are neither.
-func unitFactor(from, to string) (float64, bool) {
-	switch {
-	case from == to:
-		return 1, true
-	case from == "wt%" && to == "ppm":
-		return 1e4, true
-	case from == "ppm" && to == "wt%":
-		return 1e-4, true
-	}
-	return 0, false
 }
 
 // maxAmount returns the value of a unit that is everything.
@@ -161,15 +148,17 @@ func maxAmount(unit string) float64 {
 // concentrationUnit reads the unit that stands beside bare numbers, "" if none
 // does.
 func (d *decoder) concentrationUnit(n *node) string {
+	if n == nil {
+		return ""
+	}
 	const remedy = `write unit = "ppm", "wt%", "mole fraction" or "%"`
 	text, ok := d.text(n, remedy)
 	if !ok {
 		return ""
 	}
-	_, unit, err := thermal.ParseConcentration("1 " + text)
-	if err != nil {
-		d.reportWord(n, "no unit of a concentration", []string{"ppm", "wt%", "mole fraction", "%"}, remedy)
-		return ""
+	unit, ok := thermal.UnitName(text, thermal.Concentration)
+	if !ok {
+		d.reportWord(n, "no unit of a concentration", thermal.UnitNames(thermal.Concentration), remedy)
 	}
 	return unit
 }

@@ -69,8 +69,6 @@ func (d *decoder) calibrated(n *node) (lo, hi float64) {
 	switch {
 	case err != nil:
 		d.reportError(n, err)
-	case !(lo < hi):
-		d.report(n, "the range is empty", remedy)
 	case d.within(n, lo, temperature) && d.within(n, hi, temperature):
 		return lo, hi
 	}

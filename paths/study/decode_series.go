@@ -28,9 +28,16 @@ func (d *decoder) rows(n *node) *thermal.Rows {
 		}
 	}
 	rows, err := thermal.TableFrom(t.Columns[0], t.Columns[1], before)
-	if err != nil {
-		d.reportIn(file, label, err)
-		return nil
+	var in *thermal.InputError
+	switch {
+	case errors.As(err, &in):
+		at := thermal.Place{File: label, Field: time}
+		if in.Line > 0 {
+			at.Line = t.Line[in.Line-1]
+		}
+		d.found = append(d.found, in.At(at))
+	case err != nil:
+		d.reportError(file, err)
 	}
 	return rows
 }
@@ -53,17 +60,6 @@ func (d *decoder) columns(n *node, want ...traverse.Column) (*traverse.Table, st
 // row reports a problem on a line of a data file.
 func (d *decoder) row(label string, line int, field, problem, remedy string) {
 	d.found = append(d.found, thermal.Place{File: label, Line: line, Field: field}.Error("", problem, remedy))
-}
-
-// reportIn reports an error about the content of a file that has no place yet.
-func (d *decoder) reportIn(n *node, label string, err error) {
-	var in *thermal.InputError
-	if errors.As(err, &in) && in.File == "" {
-		at := *in
-		at.File = label
-		err = &at
-	}
-	d.reportError(n, err)
 }
 
 // counts reads how the times of a file count.

@@ -114,15 +114,11 @@ func (d *decoder) window(n *node) (lo, hi float64) {
 		return 0, 0
 	}
 	lo, hi, err := thermal.ParseRange(text, thermal.Length)
-	switch {
-	case err != nil:
+	if err != nil {
 		d.reportError(n, err)
-	case !(lo < hi):
-		d.report(n, "the window is empty", remedy)
-	default:
-		return lo, hi
+		return 0, 0
 	}
-	return 0, 0
+	return lo, hi
 }
 
 // errors reads what one standard deviation of the values is: a text, or a

@@ -3,7 +3,8 @@ package study
 import "strings"
 
 // nearest returns the known word that is closest to a mistyped one, or "" if
-// none is close: within a third of its letters, and one or two in short words.
+// none is close: within a third of its letters, one in short words. Of two as
+// close the one as long as the word is taken, a swap being likelier than a loss.
 func nearest(word string, known []string) string {
 	best, least := "", 0
 	for _, k := range known {
@@ -11,7 +12,7 @@ func nearest(word string, known []string) string {
 			continue
 		}
 		n := distance(strings.ToLower(word), strings.ToLower(k))
-		if n <= max(1, (len(k)+1)/3) && (best == "" || n < least) {
+		if n <= max(1, (len(k)+1)/3) && (best == "" || n < least || n == least && len(k) == len(word) && len(best) != len(word)) {
 			best, least = k, n
 		}
 	}

@@ -1,0 +1,337 @@
+package study
+
+import (
+	"crypto/sha256"
+	"encoding/hex"
+	"math"
+	"os"
+	"path/filepath"
+	"slices"
+	"strings"
+	"testing"
+
+	"bankfire/diffusion"
+	"bankfire/paths/traverse"
+	"bankfire/thermal"
+)
+
+// roundOff is what conversions of units may leave of a typed number.
+const roundOff = 1e-12
+
+func near(t *testing.T, what string, got, want float64) {
+	t.Helper()
+	if diff := math.Abs(got - want); !(diff <= roundOff*math.Abs(want)) {
+		t.Errorf("%s: got %.17g, want %.17g", what, got, want)
+	}
+}
+
+func everyKey(t *testing.T) *Study {
+	t.Helper()
+	s, err := Read("testdata/every-key/study.toml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
+}
+
+const (
+	um = 1e-6
+	yr = 365.25 * 86400
+	zc = 273.15
+)
+
+func TestEveryKeyTop(t *testing.T) {
+	s := everyKey(t)
+	if s.Title != "Every key, quartz EK-1" || s.File != "testdata/every-key/study.toml" || s.Confidence != 0.9 {
+		t.Errorf("title %q, file %q, confidence %v", s.Title, s.File, s.Confidence)
+	}
+	if want := []string{"lock-up", "solidus"}; len(s.Thresholds) != 2 || s.Thresholds[0].Name != want[0] || s.Thresholds[1].Name != want[1] {
+		t.Fatalf("thresholds %+v", s.Thresholds)
+	}
+	near(t, "lock-up", s.Thresholds[0].Temp, 750+zc)
+	near(t, "solidus", s.Thresholds[1].Temp, 953.15)
+	var names []string
+	for _, in := range s.Inputs {
+		names = append(names, in.Name)
+		data, err := os.ReadFile(filepath.Join("testdata/every-key", in.Name))
+		if err != nil {
+			t.Fatal(err)
+		}
+		if sum := sha256.Sum256(data); in.SHA256 != hex.EncodeToString(sum[:]) {
+			t.Errorf("%s has SHA-256 %s", in.Name, in.SHA256)
+		}
+	}
+	if want := []string{"study.toml", "tt.csv", "ti.csv", "rim.csv"}; !slices.Equal(names, want) {
+		t.Errorf("inputs %q, want %q", names, want)
+	}
+}
+
+func TestEveryKeyPaths(t *testing.T) {
+	s := everyKey(t)
+	if len(s.Paths) != 2 || s.Paths[0].Name != "woken twice" || s.Paths[1].Name != "every other leg" {
+		t.Fatalf("paths %+v", s.Paths)
+	}
+	first, second := s.Paths[0], s.Paths[1]
+	near(t, "life of the first", first.History.Life(), (6000+80+100+5+1)*yr)
+	near(t, "eruption of the first, from the top level", first.Eruption, (6000+80+100+5)*yr)
+	near(t, "life of the second", second.History.Life(), (400+3*(5+2*50)+30)*yr+86400)
+	near(t, "eruption of the second, its own", second.Eruption, (400+2*(5+2*50)+3)*yr)
+	if p := first.Place; p.Line != 24 || p.Col != 3 || p.File != s.File {
+		t.Errorf("the first path is at %+v", p)
+	}
+	for _, test := range []struct {
+		name          string
+		at            float64 // yr
+		before, after float64 // C
+	}{
+		{"table, start", 0, 690, 690},
+		{"table, jump", 300, 690, 740},
+		{"table, end, and ramp from", 400, 700, 700},
+		{"ramp, half way", 402.5, 740, 740},
+		{"relax, from", 405, 780, 780},
+		{"relax, one e-fold time", 408, 690 + 90*math.Exp(-1), 690 + 90*math.Exp(-1)},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			before, after := second.History.At(test.at * yr)
+			near(t, "before", before, test.before+zc)
+			near(t, "after", after, test.after+zc)
+		})
+	}
+	_, hot := second.History.At((400 + 3*105) * yr)
+	if !(hot > 600+zc && hot < 1000+zc) { // 3 m from the middle of 20 m at the start: still magma
+		t.Errorf("the dyke begins at %g C", hot-zc)
+	}
+}
+
+func TestEveryKeyCrystal(t *testing.T) {
+	c := everyKey(t).Crystals[0]
+	if c.Name != "EK-1" || c.Mineral != "quartz" || c.Shape != diffusion.Cylinder {
+		t.Errorf("crystal %q of %q, %v", c.Name, c.Mineral, c.Shape)
+	}
+	near(t, "inner radius", c.R0, 40*um)
+	near(t, "size", c.Size(), 212*um)
+	want := []Zone{{"core", 100 * um, 1}, {"mantle", 60 * um, 0.1}, {"skin", 12 * um, 1}}
+	for i, z := range c.Zones {
+		if z.Name != want[i].Name {
+			t.Errorf("zone %d is %q", i, z.Name)
+		}
+		near(t, z.Name+" width", z.Width, want[i].Width)
+		near(t, z.Name+" times", z.Times, want[i].Times)
+	}
+	if c.Mirrored(&c.Elements[0]) {
+		t.Error("a held inner end is no centre of symmetry")
+	}
+}
+
+func TestEveryKeyElement(t *testing.T) {
+	e := everyKey(t).Crystals[0].Elements[0]
+	if e.Name != "Ti" || e.Unit != "ppm" {
+		t.Errorf("element %q in %q", e.Name, e.Unit)
+	}
+	if l := e.Law; l.Key != "mine" || l.Row != nil || l.Sigma != 0.3 || l.Citation != "invented for this test" {
+		t.Errorf("law %+v", l)
+	}
+	near(t, "TMin", e.Law.TMin, 700+zc)
+	near(t, "TMax", e.Law.TMax, 1150+zc)
+	near(t, "ln D at 1000 K", e.Law.Law.LnD(1000), math.Log(7.01e-8)-273e3/(thermal.GasConstant*1000))
+	if !e.Start.Zones[0].Free || e.Start.Zones[1].Free || e.Start.Zones[2].Free {
+		t.Errorf("start %+v", e.Start)
+	}
+	near(t, "mantle, bare number in wt%", e.Start.Zones[1].Value, 92)
+	near(t, "skin", e.Start.Zones[2].Value, 58)
+	near(t, "skin's error", e.Start.Zones[2].Sigma, 1.5)
+	near(t, "edge", e.Start.Edge, 0.4*um)
+}
+
+func TestEveryKeyRims(t *testing.T) {
+	e := everyKey(t).Crystals[0].Elements[0]
+	if len(e.Inner) != 1 || e.Inner[0].Kind != diffusion.Held || e.Inner[0].Zone != 0 {
+		t.Errorf("inner end %+v", e.Inner)
+	}
+	if len(e.Rims) != 6 {
+		t.Fatalf("%d rims", len(e.Rims))
+	}
+	if e.Rims[0].Zone != 2 || e.Rims[0].From != nil {
+		t.Errorf("first rim %+v", e.Rims[0])
+	}
+	near(t, "held", e.Rims[1].Value.Value, 90)
+	near(t, "held, error", e.Rims[1].Value.Sigma, 3)
+	near(t, "held, bare", e.Rims[2].Value.Value, 80)
+	if !e.Rims[3].Value.Free || e.Rims[4].Kind != diffusion.Sealed || e.Rims[5].Kind != diffusion.Prescribed {
+		t.Errorf("rims %+v", e.Rims[3:])
+	}
+	g := e.Rims[5].Given
+	if !g.BeforeEruption || !slices.Equal(g.Value, []float64{80, 80, 95, 90, 90}) {
+		t.Errorf("given %+v", g)
+	}
+	near(t, "given, second row", g.Time[1], -5*yr)
+}
+
+func TestEveryKeyTraverse(t *testing.T) {
+	tr := everyKey(t).Crystals[0].Elements[0].Traverse
+	if tr.Unit != "ppm" || tr.Spot.Kind != traverse.Gaussian {
+		t.Errorf("unit %q, spot %+v", tr.Unit, tr.Spot)
+	}
+	near(t, "spot", tr.Spot.Width, 0.8*um/(2*math.Sqrt(2*math.Log(2))))
+	if want := []int{2, 3, 4, 5, 6, 8, 9}; !slices.Equal(tr.Line, want) {
+		t.Errorf("rows %v, want %v: one is flagged, one outside the window", tr.Line, want)
+	}
+	near(t, "first position", tr.Position[0], 210*um)
+	near(t, "first error, half of two", tr.Sigma[0], 1.5)
+	near(t, "third error, the floor", tr.Sigma[2], 1)
+}
+
+// TestDefaults holds what is assumed where a study says nothing, and that it
+// says so.
+func TestDefaults(t *testing.T) {
+	text := strings.NewReplacer(
+		"title = \"sound\"\nconfidence = \"95 %\"\n", "",
+		"start = { zones = [\"free\", \"58 ppm\"], edge = \"0 um\" }\nrim = { held = \"skin\" }\n", "",
+		`mineral = "quartz"`, `mineral = "zircon"`).Replace(sound)
+	s, err := parse("folder/harrow.toml", []byte(text), func(name string, limit int64) ([]byte, error) {
+		return memory(soundFiles())(filepath.Base(name), limit)
+	})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if s.Title != "harrow" || s.Confidence != 0.95 {
+		t.Errorf("title %q, confidence %v", s.Title, s.Confidence)
+	}
+	c := s.Crystals[0]
+	e := c.Elements[0]
+	if !e.Start.Zones[0].Free || !e.Start.Zones[1].Free || e.Start.Edge != 0 || !c.Mirrored(&e) {
+		t.Errorf("start %+v", e.Start)
+	}
+	if len(e.Rims) != 1 || e.Rims[0].Kind != diffusion.Held || e.Rims[0].Zone != 1 {
+		t.Errorf("rims %+v", e.Rims)
+	}
+	near(t, "eruption", s.Paths[0].Eruption, 805*yr)
+	notes := strings.Join(s.Notes, "\n")
+	for _, want := range []string{"no edge given", "no rim given, held at the plateau of its outermost zone, skin", "one of quartz, the crystal is zircon"} {
+		if !strings.Contains(notes, want) {
+			t.Errorf("notes %q do not say %q", s.Notes, want)
+		}
+	}
+}
+
+// TestGrammarOfThePage reads what this version knows of the study that the
+// format was agreed on with.
+func TestGrammarOfThePage(t *testing.T) {
+	s, err := Read("testdata/harrow/study.toml")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if e := s.Crystals[0].Elements[0]; e.Law.Row == nil || e.Law.Row.Key != "quartz-ti-cherniak2007" {
+		t.Errorf("law %+v", e.Law)
+	}
+	if p := s.Paths[1]; len(p.History.Names()) < 4 {
+		t.Errorf("names %+v", p.History.Names())
+	}
+}
+
+// TestUnits gives start, rim and traverse in units that convert.
+func TestUnits(t *testing.T) {
+	text := strings.Replace(sound, `["free", "58 ppm"]`, `["0.007 wt%", 0.0058], unit = "wt %"`, 1)
+	t.Run("unit of the traverse", func(t *testing.T) {
+		s, err := parse("s.toml", []byte(text), memory(soundFiles()))
+		if err != nil {
+			t.Fatal(err)
+		}
+		e := s.Crystals[0].Elements[0]
+		if e.Unit != "ppm" {
+			t.Errorf("unit %q", e.Unit)
+		}
+		near(t, "core", e.Start.Zones[0].Value, 70)
+		near(t, "skin", e.Start.Zones[1].Value, 58)
+	})
+	t.Run("unit of the start", func(t *testing.T) {
+		text := text[:strings.Index(text, "traverse =")]
+		s, err := parse("s.toml", []byte(text), memory(nil))
+		if err != nil {
+			t.Fatal(err)
+		}
+		if e := s.Crystals[0].Elements[0]; e.Unit != "wt%" || e.Start.Zones[1].Value != 0.0058 || e.Traverse != nil {
+			t.Errorf("element %+v", e)
+		}
+	})
+}
+
+// TestProblemsAreCollected wants every fault of a file in one go, in the order
+// of its lines, and no more than 20.
+func TestProblemsAreCollected(t *testing.T) {
+	t.Run("several", func(t *testing.T) {
+		text := strings.NewReplacer(`"slab"`, `"slap"`, `"800 yr"`, "800", `"1 um fwhm"`, `"1 um"`, `"750 C"`, `"-750 C"`).Replace(sound)
+		_, err := parse("s.toml", []byte(text), memory(soundFiles()))
+		var fields []string
+		for _, e := range problems(t, err) {
+			fields = append(fields, e.Field)
+		}
+		want := []string{"threshold.temperature", "path.legs.hold", "path.legs.for", "crystal.shape", "crystal.element.traverse.spot"}
+		if !slices.Equal(fields, want) {
+			t.Errorf("got %q, want %q", fields, want)
+		}
+	})
+	t.Run("at most 20", func(t *testing.T) {
+		_, err := parse("s.toml", []byte(strings.Repeat("[[path]]\n", 50)), memory(nil))
+		if got := len(problems(t, err)); got != maxProblems {
+			t.Errorf("%d problems reported", got)
+		}
+	})
+	t.Run("the study before its files", func(t *testing.T) {
+		text := strings.NewReplacer(`"ti.csv"`, `"bad.csv"`, `rim = {`, "colour = 1\nrim = {").Replace(sound)
+		_, err := parse("s.toml", []byte(text), memory(soundFiles()))
+		got := problems(t, err)
+		if len(got) != 2 || got[0].File != "s.toml" || got[1].File != "bad.csv" {
+			t.Errorf("got %v", err)
+		}
+	})
+}
+
+// TestReadFiles tries what the file system can do to a reader.
+func TestReadFiles(t *testing.T) {
+	dir := t.TempDir()
+	write := func(name, text string) string {
+		t.Helper()
+		path := filepath.Join(dir, name)
+		if err := os.WriteFile(path, []byte(text), 0o600); err != nil {
+			t.Fatal(err)
+		}
+		return path
+	}
+	sparse := write("sparse.toml", "")
+	if err := os.Truncate(sparse, 100<<20); err != nil {
+		t.Fatal(err)
+	}
+	data := write("large.csv", "")
+	if err := os.Truncate(data, maxDataBytes+1); err != nil {
+		t.Fatal(err)
+	}
+	tests := []struct{ name, file, problem string }{
+		{"missing", filepath.Join(dir, "no.toml"), "no such file"},
+		{"a folder", dir, "a folder"},
+		{"100 MB", sparse, "larger than"},
+		{"empty", write("empty.toml", ""), "empty"},
+		{"traverse a folder", write("folder.toml", strings.Replace(sound, `"ti.csv"`, `"."`, 1)), "a folder"},
+		{"traverse too large", write("large.toml", strings.Replace(sound, `"ti.csv"`, `"large.csv"`, 1)), "larger than"},
+		{"traverse a study", write("self.toml", strings.Replace(sound, `"ti.csv"`, `"self.toml"`, 1)), "not in the header"},
+	}
+	for _, test := range tests {
+		t.Run(test.name, func(t *testing.T) {
+			s, err := Read(test.file)
+			got := problems(t, err)
+			if s != nil || len(got) == 0 || !strings.Contains(got[0].Problem, test.problem) || got[0].File == "" {
+				t.Errorf("got %v, want the words %q", err, test.problem)
+			}
+		})
+	}
+	t.Run("absolute names stay out of the record", func(t *testing.T) {
+		text := strings.Replace(sound, "ti.csv", filepath.ToSlash(write("ti.csv", soundFiles()["ti.csv"])), 1)
+		s, err := Read(write("absolute.toml", text))
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := s.Inputs[1].Name; got != "ti.csv" {
+			t.Errorf("recorded as %q", got)
+		}
+	})
+}
