@@ -1,5 +1,7 @@
 package thermal
 
+import "strings"
+
 // MomentKind says which event a moment is counted from.
 type MomentKind int
 
@@ -19,4 +21,91 @@ type Moment struct {
 	Offset float64 // s, positive later: "3 yr before eruption" has -3 yr
 	Name   string  // of the leg (StartOf, EndOf) or zone (Added), else empty
 	Text   string  // as the user wrote it
+}
+
+// momentForms is what a moment may look like.
+const momentForms = `want start, eruption, "start of LEG", "end of LEG" or "ZONE added", alone or after "3 yr after" or "3 yr before"`
+
+// ParseMoment reads a moment: one of the events
+//
+//	start, eruption, start of LEG, end of LEG, ZONE added
+//
+// alone, or a duration after or before it: "4 kyr after start", "3 yr before eruption", "3 yr after end of wake 1". The
+// name of a zone does not begin with a digit. The error is an *InputError with Value, Problem and Remedy set; a bare
+// duration is one, since it could be counted from either end.
+func ParseMoment(text string) (Moment, error) {
+	plain := strings.TrimSpace(text)
+	read := readEvent
+	if numberStart.MatchString(plain) {
+		read = readOffset
+	}
+	m, refused := read(plain)
+	if refused != nil {
+		return Moment{}, refused.of(text)
+	}
+	m.Text = text
+	return m, nil
+}
+
+// readOffset reads a duration and the event that it is counted from.
+func readOffset(text string) (Moment, *InputError) {
+	duration, event, later, ok := cutOffset(text)
+	offset, err := ParseQuantity(duration, Duration)
+	if err != nil {
+		return Moment{}, err.(*InputError)
+	}
+	if !ok {
+		return Moment{}, &InputError{Problem: "is a duration, not a moment",
+			Remedy: `write "` + text + ` after start" or "` + text + ` before eruption"`}
+	}
+	if offset < 0 {
+		return Moment{}, &InputError{Problem: "counts a negative duration", Remedy: `want "after" or "before" and a positive one`}
+	}
+	m, refused := readEvent(event)
+	if refused != nil {
+		return Moment{}, refused
+	}
+	m.Offset = offset
+	if !later {
+		m.Offset = 0 - offset // not -0
+	}
+	if m.Kind == AfterStart && m.Offset < 0 {
+		return Moment{}, &InputError{Problem: "lies before the start of the path", Remedy: `write "after start"`}
+	}
+	return m, nil
+}
+
+// cutOffset cuts text at its first word "after" (later) or "before". ok is false if there is none.
+func cutOffset(text string) (duration, event string, later, ok bool) {
+	text += " " // so that a last word is found, too
+	after, before := strings.Index(text, " after "), strings.Index(text, " before ")
+	later = after >= 0 && (before < 0 || after < before)
+	word := " before "
+	if later {
+		word = " after "
+	}
+	duration, event, ok = strings.Cut(text, word)
+	return duration, strings.TrimSpace(event), later, ok
+}
+
+// readEvent reads an event without an offset.
+func readEvent(text string) (Moment, *InputError) {
+	switch text {
+	case "start":
+		return Moment{Kind: AfterStart}, nil
+	case "eruption":
+		return Moment{Kind: BeforeEruption}, nil
+	case "":
+		return Moment{}, &InputError{Problem: "is incomplete", Remedy: momentForms}
+	}
+	if name, ok := strings.CutPrefix(text, "start of "); ok {
+		return Moment{Kind: StartOf, Name: strings.TrimSpace(name)}, nil
+	}
+	if name, ok := strings.CutPrefix(text, "end of "); ok {
+		return Moment{Kind: EndOf, Name: strings.TrimSpace(name)}, nil
+	}
+	if name, ok := strings.CutSuffix(text, " added"); ok {
+		return Moment{Kind: Added, Name: strings.TrimSpace(name)}, nil
+	}
+	return Moment{}, &InputError{Problem: "is no moment", Remedy: momentForms}
 }
