@@ -1,0 +1,109 @@
+package thermal
+
+import "math"
+
+// relaxIntegral is int_a^b T^-k exp(-e/T) ds along T = ambient + (first - ambient) exp(-s), s in e-fold times.
+//
+// With w = (T - ambient)/T, u = e/ambient and ds = -dw/(w (1 - w)) the exponent is linear, -e/T = u w - u, and
+//
+//	I = ambient^-k e^-u int_w(b)^w(a) (1 - w)^k e^(u w) / (w (1 - w)) dw
+//	  = ambient^-k e^-u {b - a + int_w(b)^w(a) [(1 - w)^k e^(u w) - 1] / (w (1 - w)) dw}.
+//
+// The second form has no pole at w = 0, that is at the ambient temperature, and keeps the long stay there apart; the
+// first serves where the exponent at w is far below that at 0 and the second would cancel. By parts in w they are the sum
+// of exponential integrals E1(e/T) and Ei(u w), which cancel on short parts and overflow on long ones, so both are
+// integrated by Gauss-Legendre panels instead, starting where the exponent is largest.
+func relaxIntegral(e float64, k int, first, ambient, a, b float64) scaled {
+	r := relaxation{u: e / ambient, k: k}
+	off := first - ambient
+	if a > 0 {
+		off *= math.Exp(-a)
+	}
+	t0, t1 := ambient+off, ambient+off*math.Exp(a-b)
+	w0, w1 := off/t0, off*math.Exp(a-b)/t1
+	width := -math.Expm1(a-b) * off / t0 * (ambient / t1) // w0 - w1 without cancellation
+	var m, ln float64
+	if r.u*off >= 0 { // the exponent falls towards the ambient temperature
+		ln = r.u * w0
+		m = (b-a)*math.Exp(-ln) - r.march(w0, -width, ln, math.Exp(-ln))
+	} else {
+		m, ln = r.rising(w0, w1, width, b-a)
+	}
+	if k == 1 {
+		m /= ambient
+	}
+	return scaled{m, ln - r.u}
+}
+
+// relaxation is what the integrand knows.
+type relaxation struct {
+	u float64 // e/ambient
+	k int
+}
+
+// Where the exponent at the late end of a relaxation that it climbs to lies below that of the ambient temperature by more
+// than farBelow, the form with its pole is used; where that at its early end does not lie below by nearBelow, the other;
+// else the part is cut at cutBelow.
+const farBelow, cutBelow, nearBelow = -1, -2, -3
+
+// rising is the integral, without ambient^-k e^-u, where the exponent rises towards the ambient temperature, as m exp(ln).
+// width is w0 - w1 and s the time from w0 to w1.
+func (r relaxation) rising(w0, w1, width, s float64) (m, ln float64) {
+	switch ln = r.u * w1; {
+	case ln <= farBelow:
+		return r.march(w1, width, ln, 0), ln
+	case r.u*w0 >= nearBelow:
+		return s + r.march(w1, width, 0, 1), 0
+	}
+	cut := cutBelow / r.u
+	early := math.Log(w0 / cut * ((1 - cut) / (1 - w0))) // time from w0 to the cut
+	return s - early + r.march(w1, cut-w1, 0, 1) + r.march(cut, w0-cut, 0, 0), 0
+}
+
+// march is
+//
+//	int_from^(from+width) [(1 - w)^k e^(u w - ln) - base] / (w (1 - w)) dw
+//
+// in panels that start at from, where u w is largest and about ln, and stop where nothing is left. base is e^-ln, or 0: then
+// w = 0 is a pole, which the panels walk away from.
+func (r relaxation) march(from, width, ln, base float64) float64 {
+	sum, at, left := 0.0, from, width
+	for left != 0 && r.u*(at-from) >= -negligible {
+		step := r.step(at, left, base == 0)
+		sum += step * r.panel(at, step, ln, base)
+		at, left = at+step, left-step
+	}
+	return sum
+}
+
+// step is the width of the panel at w with left still to do.
+func (r relaxation) step(w, left float64, pole bool) float64 {
+	most := math.Min(math.Abs(left), rise16/math.Abs(r.u))
+	if left < 0 { // away from the pole at 1
+		most = math.Min(most, 2*(1-w))
+	} else {
+		most = math.Min(most, (1-w)*2/3)
+	}
+	if pole {
+		most = math.Min(most, 2*math.Abs(w))
+	}
+	return math.Copysign(most, left)
+}
+
+// panel is the mean of the integrand of march from w to w + step.
+func (r relaxation) panel(w, step, ln, base float64) float64 {
+	room := 1 - math.Max(w, w+step)
+	if base == 0 {
+		room = math.Min(room, math.Abs(w))
+	}
+	sum := 0.0
+	for _, n := range gauss(math.Abs(r.u*step), room/math.Abs(step)) {
+		x := w + n.x*step
+		f := math.Exp(r.u*x - ln)
+		if r.k == 1 {
+			f -= x * f
+		}
+		sum += n.w * ((f - base) / (x - x*x))
+	}
+	return sum
+}
