@@ -1,0 +1,245 @@
+package traverse
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strings"
+
+	"bankfire/thermal"
+)
+
+// Traverse is one element measured along a line from rim to centre, or a part
+// of it.
+type Traverse struct {
+	Name     string    // of the file
+	Unit     string    // of Value and Sigma: ppm, wt%, mole fraction or %
+	Position []float64 // m from the crystal's centre (a slab's inner end), rising or falling throughout as in the file
+	Value    []float64
+	Sigma    []float64 // one standard deviation, above 0
+	Line     []int     // where each point stands in the file, from 1
+	Spot     Spot
+	Notes    []string // what was not taken exactly as typed
+}
+
+// Zero says where positions of the file count from.
+type Zero int
+
+// The places to count from. Centre is the zero value.
+const (
+	Centre Zero = iota // outwards from the centre, or from the inner end of a slab
+	Rim                // inwards from the rim
+)
+
+// Options say how a file of a traverse is to be read.
+type Options struct {
+	Position string  // header of the positions, with its unit as in Column.Header
+	Value    string  // header of the values, likewise
+	Errors   Errors  // where the errors come from; it must say
+	Skip     string  // header of a column that marks rows to be left out; "" = there is none
+	Zero     Zero    // where positions count from
+	Size     float64 // position of the rim from the centre, m; needed for Rim, else 0 = not known yet
+	From, To float64 // rows to keep by position as in the file, m, ends included; both 0 = all
+	Spot     Spot    // handed on
+}
+
+// Read reads a measured traverse from a text table; see [ReadColumns] for the
+// kinds of table, what is noted and what is refused.
+//
+// Rows are left out, unread but for their position, if they are marked in the
+// Skip column or outside the window; both are counted in the notes. A mark is
+// "x", "1", "yes", "true" or "skip"; no mark is a blank, "0", "no" or "false".
+// Also refused are positions that occur twice or turn back, positions beyond
+// the rim if Size is known, errors that are not above zero, and a file of which
+// no row is left. Negative values are kept and noted: about a detection limit
+// they are as honest as positive ones.
+//
+// The error is a *thermal.InputError with file, line and column, or up to 20 of
+// them joined; the traverse is then nil. Read panics if Options cannot be meant:
+// Rim without a Size above 0, a window that ends before it begins, a Spot
+// without a width.
+func Read(name string, r io.Reader, o Options) (*Traverse, error) {
+	o.check()
+	want, err := o.columns(name)
+	if err != nil {
+		return nil, err
+	}
+	s, err := openSheet(name, r, want)
+	if err != nil {
+		return nil, err
+	}
+	d := reader{sheet: s, o: o, lines: map[float64]int{}, t: &Traverse{Name: name, Unit: s.columns[valueColumn].unit, Spot: o.Spot}}
+	if err := d.bindErrors(); err != nil {
+		return nil, err
+	}
+	for s.next() {
+		d.row()
+	}
+	if err := s.finish(); err != nil {
+		return nil, err
+	}
+	if len(d.t.Position) == 0 {
+		return nil, d.noneLeft()
+	}
+	d.addNotes()
+	return d.t, nil
+}
+
+func (o *Options) check() {
+	o.Spot.check()
+	switch {
+	case o.Zero != Centre && o.Zero != Rim:
+		panic(fmt.Sprintf("traverse: unknown zero %d", o.Zero))
+	case !(o.Size >= 0) || !finite(o.Size) || o.Zero == Rim && o.Size == 0:
+		panic(fmt.Sprintf("traverse: size of the crystal %g m", o.Size))
+	case !(o.From < o.To) && (o.From != 0 || o.To != 0):
+		panic(fmt.Sprintf("traverse: window from %g to %g m", o.From, o.To))
+	}
+}
+
+// Where the wanted columns stand in sheet.columns. Those of Errors and Skip
+// come after them, if there are any.
+const (
+	positionColumn = iota
+	valueColumn
+	wantedColumns
+)
+
+func (o *Options) columns(name string) ([]Column, error) {
+	want := []Column{{o.Position, thermal.Length}, {o.Value, thermal.Concentration}}
+	if err := o.Errors.check(name); err != nil {
+		return nil, err
+	}
+	if o.Errors.Column != "" {
+		want = append(want, Column{o.Errors.Column, thermal.Concentration})
+	}
+	if o.Skip != "" {
+		want = append(want, Column{o.Skip, flagColumn})
+	}
+	return want, nil
+}
+
+// reader turns the rows of a sheet into a traverse.
+type reader struct {
+	*sheet
+	o                          Options
+	t                          *Traverse
+	lines                      map[float64]int // of the positions so far
+	last                       float64         // position as in the file
+	direction                  float64         // 1 rising, -1 falling, 0 not known yet
+	turned                     bool            // a position that turns back has been reported
+	constant, floor, perColumn float64         // in the unit of the values
+	marked, outside, negative  int
+}
+
+// row reads the current row into the traverse, or leaves it out.
+func (d *reader) row() {
+	if d.o.Skip != "" {
+		if marked, ok := d.mark(len(d.columns) - 1); !ok || marked {
+			return
+		}
+	}
+	x, ok := d.quantity(positionColumn)
+	if !ok {
+		return
+	}
+	if (d.o.From != 0 || d.o.To != 0) && !(x >= d.o.From && x <= d.o.To) {
+		d.outside++
+		return
+	}
+	if !d.inOrder(x) {
+		return
+	}
+	v, ok := d.quantity(valueColumn)
+	if !ok {
+		return
+	}
+	if sigma, ok := d.sigma(v); ok {
+		d.keep(x, v, sigma)
+	}
+}
+
+func (d *reader) keep(x, v, sigma float64) {
+	if v < 0 {
+		d.negative++
+	}
+	if d.o.Zero == Rim {
+		x = d.o.Size - x
+	}
+	d.t.Position = append(d.t.Position, x)
+	d.t.Value = append(d.t.Value, v)
+	d.t.Sigma = append(d.t.Sigma, sigma)
+	d.t.Line = append(d.t.Line, d.line)
+}
+
+// mark reads the k-th wanted column as a mark.
+func (d *reader) mark(k int) (marked, ok bool) {
+	switch strings.ToLower(d.cells[d.columns[k].index].text) {
+	case "", "0", "no", "false":
+		return false, true
+	case "x", "1", "yes", "true", "skip":
+		d.marked++
+		return true, true
+	}
+	d.refuse(k, "neither a mark nor none", `write "x" to leave the row out, nothing to keep it`)
+	return false, false
+}
+
+// inOrder checks a position against those before it and the rim. Only the
+// first position that turns back is reported: those after it follow from it.
+func (d *reader) inOrder(x float64) bool {
+	if line, twice := d.lines[x]; twice {
+		d.refuse(positionColumn, fmt.Sprintf("the same position as on line %d", line),
+			"average the analyses of one place, or leave all but one out")
+		return false
+	}
+	if d.beyondRim(x) {
+		d.refuse(positionColumn, "beyond the rim, which is at "+micrometres(d.o.Size)+" from the centre",
+			"check the unit, the zero and the widths of the zones, or set a window")
+		return false
+	}
+	step := math.Copysign(1, x-d.last)
+	if len(d.lines) > 0 && d.direction == 0 {
+		d.direction = step
+	}
+	if d.direction != 0 && step != d.direction && !d.turned {
+		d.turned = true
+		d.refuse(positionColumn, fmt.Sprintf("turns back after line %d", d.lines[d.last]), "sort the rows by position")
+		return false
+	}
+	d.lines[x], d.last = d.line, x
+	return true
+}
+
+// beyondRim allows for round-off at the rim itself, as NewWeights does.
+func (d *reader) beyondRim(x float64) bool {
+	if d.o.Size == 0 {
+		return false
+	}
+	if d.o.Zero == Rim {
+		x = d.o.Size - x
+	}
+	return !(math.Abs(x) <= d.o.Size*(1+roundOff))
+}
+
+func (d *reader) noneLeft() error {
+	if d.marked == 0 && d.outside == 0 {
+		return d.noRows()
+	}
+	return &thermal.InputError{File: d.name, Problem: fmt.Sprintf("no row is left: %d marked to be left out, %d outside the window",
+		d.marked, d.outside), Remedy: "want at least one"}
+}
+
+func (d *reader) addNotes() {
+	if d.marked > 0 {
+		d.note("%s left out by column %q", plural(d.marked, "row"), d.o.Skip)
+	}
+	if d.outside > 0 {
+		d.note("%s outside the window %s to %s left out", plural(d.outside, "row"), micrometres(d.o.From), micrometres(d.o.To))
+	}
+	if d.negative > 0 {
+		d.note("%s below zero kept", plural(d.negative, "value"))
+	}
+	d.noteErrors()
+	d.t.Notes = d.notes
+}
