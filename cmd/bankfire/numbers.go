@@ -1,0 +1,112 @@
+package main
+
+import (
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+
+	"bankfire/thermal"
+)
+
+// number prints x with three digits, without an exponent where people would
+// not use one.
+func number(x float64) string {
+	if a := math.Abs(x); a >= 1e5 || a < 1e-3 && a > 0 {
+		return strconv.FormatFloat(x, 'e', 2, 64)
+	}
+	return strings.TrimSuffix(trimmed(strconv.FormatFloat(x, 'f', decimals(x, 3), 64)), ".")
+}
+
+// decimals returns how many decimals show the given number of digits of x.
+func decimals(x float64, digits int) int {
+	if x == 0 {
+		return 0
+	}
+	return max(0, digits-1-int(math.Floor(math.Log10(math.Abs(x)))))
+}
+
+// trimmed returns a decimal number without the zeros at its end.
+func trimmed(s string) string {
+	if strings.Contains(s, ".") {
+		s = strings.TrimRight(s, "0")
+	}
+	return s
+}
+
+// plain prints x for another program, with six digits: fewer than two machines
+// can disagree on.
+func plain(x float64) string { return strconv.FormatFloat(x, 'g', 6, 64) }
+
+// openEnd is plain, and empty where there is no number.
+func openEnd(x float64) string {
+	if math.IsInf(x, 0) || math.IsNaN(x) || x <= 0 {
+		return ""
+	}
+	return plain(x)
+}
+
+// intervalText prints an interval of a factor; a side that the data leave open
+// is not there.
+func intervalText(x [2]float64) string {
+	lo, hi := x[0] > 0, !math.IsInf(x[1], 1)
+	switch {
+	case lo && hi:
+		return number(x[0]) + " to " + number(x[1])
+	case lo:
+		return "> " + number(x[0])
+	case hi:
+		return "< " + number(x[1])
+	}
+	return "not bounded"
+}
+
+// timeText prints a time in the unit that suits it.
+func timeText(s float64) string {
+	units := []struct {
+		size float64
+		name string
+	}{
+		{1e6 * thermal.Year, "Myr"}, {1e4 * thermal.Year, "kyr"}, {thermal.Year, "yr"},
+		{thermal.Day, "days"}, {3600, "h"}, {60, "min"},
+	}
+	for _, u := range units {
+		if s >= u.size {
+			size := u.size
+			if u.name == "kyr" {
+				size = 1e3 * thermal.Year
+			}
+			return number(s/size) + " " + u.name
+		}
+	}
+	return number(s) + " s"
+}
+
+func celsius(temp float64) string {
+	if temp == 0 {
+		return "temperature: none"
+	}
+	return fmt.Sprintf("%.0f C", temp-thermal.ZeroCelsius)
+}
+
+// withError prints a value to the digits that its error leaves.
+func withError(value, sigma float64, unit string) string {
+	if math.IsInf(sigma, 1) || !(sigma > 0) {
+		return number(value) + " " + unit
+	}
+	n := decimals(sigma, 2)
+	return fmt.Sprintf("%.*f +- %.*f %s", n, value, n, sigma, unit)
+}
+
+func percent(x float64) string { return number(100*x) + " %" }
+
+func quoted(name string) string { return `"` + name + `"` }
+
+// list joins words as a sentence does.
+func list(words []string) string {
+	if len(words) < 2 {
+		return strings.Join(words, "")
+	}
+	last := len(words) - 1
+	return strings.Join(words[:last], ", ") + " and " + words[last]
+}

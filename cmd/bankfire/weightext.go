@@ -1,0 +1,170 @@
+package main
+
+import (
+	"bytes"
+	"encoding/csv"
+	"fmt"
+	"io"
+	"math"
+	"strconv"
+	"strings"
+	"text/tabwriter"
+
+	"bankfire/paths"
+	"bankfire/thermal"
+)
+
+// care is the caution that every result carries.
+const care = "A storage time is not a forecast; decisions about safety belong to the responsible authorities."
+
+// weighingText is the report for people.
+func weighingText(r *paths.Result) bytes.Buffer {
+	var text bytes.Buffer
+	fmt.Fprintf(&text, "%s\n\n", r.Study.Title)
+	notes := writeVerdicts(&text, r)
+	fmt.Fprintln(&text)
+	writeSentences(&text, r)
+	writeFreeValues(&text, r)
+	for i, note := range notes {
+		fmt.Fprintf(&text, "[%d] %s\n", i+1, note)
+	}
+	fmt.Fprintf(&text, "\nVerdicts at %s confidence; D factor: what D would have to be multiplied by, with its 95 %% interval.\n"+
+		"A year is 365.25 days. %s\n", percent(r.Study.Confidence), care)
+	return text
+}
+
+// writeVerdicts writes the table of paths and returns the notes its last
+// column refers to.
+func writeVerdicts(w io.Writer, r *paths.Result) []string {
+	table := tabwriter.NewWriter(w, 0, 0, 3, ' ', 0)
+	head := []string{"path", "verdict", "D factor", "95 %", "tail", "chi-square", "life"}
+	for _, t := range r.Study.Thresholds {
+		head = append(head, "above "+t.Name)
+	}
+	fmt.Fprintln(table, strings.Join(append(head, ""), "\t"))
+	var notes numbered
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		o := &p.Outcome
+		row := []string{p.Path.Name, o.Verdict.String(), number(o.Shift), intervalText(o.Shift95), number(o.Tail),
+			fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees), timeText(p.Life)}
+		for _, above := range p.Above {
+			row = append(row, timeText(above))
+		}
+		marks := notes.marks(p.Notes)
+		for j := range p.Profiles {
+			marks += notes.marks(p.Profiles[j].Notes)
+		}
+		fmt.Fprintln(table, strings.Join(append(row, marks), "\t"))
+	}
+	table.Flush()
+	return notes
+}
+
+// numbered is a list of notes without repeats.
+type numbered []string
+
+// marks returns the numbers of the notes, which join the list as needed.
+func (n *numbered) marks(notes []string) string {
+	var marks strings.Builder
+	for _, note := range notes {
+		i := 0
+		for i < len(*n) && (*n)[i] != note {
+			i++
+		}
+		if i == len(*n) {
+			*n = append(*n, note)
+		}
+		fmt.Fprintf(&marks, "[%d]", i+1)
+	}
+	return marks.String()
+}
+
+// writeSentences says in words what the table shows.
+func writeSentences(w io.Writer, r *paths.Result) {
+	var fit []string
+	for i := range r.Paths {
+		if r.Paths[i].Outcome.Verdict == paths.Reproduces {
+			fit = append(fit, quoted(r.Paths[i].Path.Name))
+		}
+	}
+	switch n := len(r.Paths); {
+	case len(fit) == 0:
+		fmt.Fprintf(w, "None of the %d paths reproduces what was measured.\n", n)
+	case len(fit) == n:
+		fmt.Fprintf(w, "All of the %d paths reproduce what was measured: the data cannot tell them apart.\n", n)
+	case len(fit) == 1:
+		fmt.Fprintf(w, "Of the %d paths, %s reproduces what was measured.\n", n, fit[0])
+	default:
+		fmt.Fprintf(w, "Of the %d paths, %s reproduce what was measured: the data cannot tell these apart.\n", n, list(fit))
+	}
+	for i := range r.Paths {
+		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
+			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(o))
+		}
+	}
+	fmt.Fprintln(w)
+}
+
+// writeFreeValues says what the traverse decided on each path.
+func writeFreeValues(w io.Writer, r *paths.Result) {
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		for j := range p.Profiles {
+			q := &p.Profiles[j]
+			fmt.Fprintf(w, "%s, %s in %s: ", quoted(p.Path.Name), q.Element.Name, q.Crystal.Name)
+			for _, f := range q.Free {
+				fmt.Fprintf(w, "%s %s, ", f.Name, withError(f.Value, f.Sigma, q.Element.Unit))
+			}
+			fmt.Fprintf(w, "sqrt(2 G) = %s um, same G at a constant %s\n", number(math.Sqrt2*math.Exp(q.LnG/2)*1e6), celsius(q.StandIn))
+		}
+	}
+	fmt.Fprintln(w)
+}
+
+// verdictInWords is the verdict with how far the path misses.
+func verdictInWords(o *paths.Outcome) string {
+	switch o.Verdict {
+	case paths.TooSharp:
+		return fmt.Sprintf("too sharp: needs %s x more diffusion", number(o.Shift))
+	case paths.TooSmooth:
+		return fmt.Sprintf("too smooth: needs %s x less diffusion", number(1/o.Shift))
+	case paths.WrongShape:
+		return "of wrong shape: no amount of diffusion along it fits"
+	default:
+		return "reproduces"
+	}
+}
+
+// pathsTable is paths.csv, a row a path.
+func pathsTable(r *paths.Result) ([]byte, error) {
+	var text bytes.Buffer
+	table := csv.NewWriter(&text)
+	head := []string{"path", "verdict", "tail", "chi_square", "degrees_of_freedom", "shift_factor",
+		"shift_68_low", "shift_68_high", "shift_95_low", "shift_95_high", "life [yr]"}
+	for _, t := range r.Study.Thresholds {
+		head = append(head, "above "+t.Name+" [yr]")
+	}
+	for _, q := range r.Paths[0].Profiles {
+		head = append(head, "stand-in temperature "+q.Element.Name+" in "+q.Crystal.Name+" [C]")
+	}
+	table.Write(head)
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		o := &p.Outcome
+		row := []string{p.Path.Name, o.Verdict.String(), plain(o.Tail), plain(o.Misfit), strconv.Itoa(o.Degrees), plain(o.Shift)}
+		for _, x := range [][2]float64{o.Shift68, o.Shift95} {
+			row = append(row, openEnd(x[0]), openEnd(x[1]))
+		}
+		row = append(row, plain(p.Life/thermal.Year))
+		for _, above := range p.Above {
+			row = append(row, plain(above/thermal.Year))
+		}
+		for j := range p.Profiles {
+			row = append(row, openEnd(p.Profiles[j].StandIn-thermal.ZeroCelsius))
+		}
+		table.Write(row)
+	}
+	table.Flush()
+	return text.Bytes(), table.Error()
+}

@@ -1,0 +1,313 @@
+package paths
+
+import (
+	"fmt"
+	"math"
+	"slices"
+)
+
+// Curve is one profile on one path: chi-square against the logarithm of a
+// multiplier on D, with the profile's own free values fitted at every knot.
+// Between knots it is a cubic Hermite polynomial, beyond them constant.
+type Curve struct {
+	LnM, ChiSq, Slope []float64 // knots, LnM ascending, at least two
+	Points            int       // data points
+	Free              int       // values fitted from the points alone, without a prior
+}
+
+// At returns chi-square at lnM.
+func (c *Curve) At(lnM float64) float64 {
+	i, ok := c.interval(lnM)
+	if !ok {
+		return c.ChiSq[i]
+	}
+	chi, _ := c.piece(i).at(lnM)
+	return chi
+}
+
+// interval returns the knot below lnM, or false and the nearest knot where
+// lnM lies beyond them.
+func (c *Curve) interval(lnM float64) (int, bool) {
+	last := len(c.LnM) - 1
+	switch {
+	case lnM <= c.LnM[0]:
+		return 0, false
+	case lnM >= c.LnM[last]:
+		return last, false
+	}
+	i, found := slices.BinarySearch(c.LnM, lnM)
+	if !found {
+		i--
+	}
+	return i, true
+}
+
+// cubic is one piece of a curve: value and slope at both ends.
+type cubic struct{ x0, x1, y0, y1, s0, s1 float64 }
+
+func (c *Curve) piece(i int) cubic {
+	return cubic{c.LnM[i], c.LnM[i+1], c.ChiSq[i], c.ChiSq[i+1], c.Slope[i], c.Slope[i+1]}
+}
+
+// at returns value and slope at x.
+func (q cubic) at(x float64) (value, slope float64) {
+	h := q.x1 - q.x0
+	t := (x - q.x0) / h
+	rise := q.y1 - q.y0
+	b := 3*rise - h*(2*q.s0+q.s1)
+	a := h*(q.s0+q.s1) - 2*rise
+	return q.y0 + t*(h*q.s0+t*(b+t*a)), q.s0 + t*(2*b+3*t*a)/h
+}
+
+// lowest returns the least value of the piece and where it is.
+func (q cubic) lowest() (x, y float64) {
+	x, y = q.x0, q.y0
+	if q.y1 < y {
+		x, y = q.x1, q.y1
+	}
+	h, rise := q.x1-q.x0, q.y1-q.y0
+	b := 3*rise - h*(2*q.s0+q.s1)
+	a := h*(q.s0+q.s1) - 2*rise
+	for _, t := range quadraticRoots(3*a, 2*b, h*q.s0) {
+		if t > 0 && t < 1 {
+			if v, _ := q.at(q.x0 + t*h); v < y {
+				x, y = q.x0+t*h, v
+			}
+		}
+	}
+	return x, y
+}
+
+// quadraticRoots returns the real roots of a t^2 + b t + c, without the loss
+// of digits where one is much smaller than the other.
+func quadraticRoots(a, b, c float64) []float64 {
+	d := b*b - 4*a*c
+	if !(d >= 0) {
+		return nil
+	}
+	q := -(b + math.Copysign(math.Sqrt(d), b)) / 2
+	var roots []float64
+	if a != 0 {
+		roots = append(roots, q/a)
+	}
+	if q != 0 {
+		roots = append(roots, c/q)
+	}
+	return roots
+}
+
+// Lowest returns the least chi-square of the curve and where it is.
+func (c *Curve) Lowest() (lnM, chiSq float64) {
+	lnM, chiSq = c.LnM[0], c.ChiSq[0]
+	for i := range len(c.LnM) - 1 {
+		if x, y := c.piece(i).lowest(); y < chiSq {
+			lnM, chiSq = x, y
+		}
+	}
+	return lnM, chiSq
+}
+
+// Below returns the smallest interval that holds every lnM at which chi-square
+// does not exceed level. An end that is not reached within the knots is
+// infinite: the profile sets no bound on that side.
+func (c *Curve) Below(level float64) (lo, hi float64) {
+	lo, hi = math.Inf(-1), math.Inf(1)
+	last := len(c.LnM) - 1
+	if c.ChiSq[0] > level {
+		lo = c.crossing(level, 0, 1)
+	}
+	if c.ChiSq[last] > level {
+		hi = c.crossing(level, last, -1)
+	}
+	return lo, hi
+}
+
+// crossing returns the first lnM, walking from knot from in the direction
+// step, at which the curve comes down to level; NaN if it never does.
+func (c *Curve) crossing(level float64, from, step int) float64 {
+	for i := from; i+step >= 0 && i+step < len(c.LnM); i += step {
+		q := c.piece(min(i, i+step))
+		if low, least := q.lowest(); least <= level {
+			return bisect(func(x float64) bool { v, _ := q.at(x); return v > level }, c.LnM[i], low)
+		}
+	}
+	return math.NaN()
+}
+
+// bisect returns the border between outside, where far(x) holds, and inside,
+// to round-off.
+func bisect(far func(float64) bool, outside, inside float64) float64 {
+	for range 60 {
+		mid := outside + (inside-outside)/2
+		if far(mid) {
+			outside = mid
+		} else {
+			inside = mid
+		}
+	}
+	return inside
+}
+
+// Ranges returns how many separate ranges of lnM have a chi-square of no more
+// than level.
+func (c *Curve) Ranges(level float64) int {
+	n := 0
+	inside := c.ChiSq[0] <= level
+	if inside {
+		n++
+	}
+	for i := range len(c.LnM) - 1 {
+		_, low := c.piece(i).lowest()
+		if low <= level && !inside {
+			n++
+		}
+		inside = c.ChiSq[i+1] <= level
+	}
+	return n
+}
+
+// settleSlopes fills Slope with the derivative, at each knot, of the parabola
+// through it and its neighbours.
+func (c *Curve) settleSlopes() {
+	n := len(c.LnM)
+	c.Slope = slices.Grow(c.Slope[:0], n)[:n]
+	for i := range c.Slope {
+		j := min(max(i, 1), n-2)
+		c.Slope[i] = c.parabolaSlope(j, c.LnM[i])
+	}
+}
+
+// parabolaSlope returns the slope at x of the parabola through knots j-1, j, j+1.
+func (c *Curve) parabolaSlope(j int, x float64) float64 {
+	x0, x1, x2 := c.LnM[j-1], c.LnM[j], c.LnM[j+1]
+	d01 := (c.ChiSq[j] - c.ChiSq[j-1]) / (x1 - x0)
+	d12 := (c.ChiSq[j+1] - c.ChiSq[j]) / (x2 - x1)
+	return d01 + (2*x-x0-x1)*(d12-d01)/(x2-x0)
+}
+
+// add puts a knot in its place. A knot already there is kept.
+func (c *Curve) add(lnM, chiSq float64) {
+	i, found := slices.BinarySearch(c.LnM, lnM)
+	if !found {
+		c.LnM = slices.Insert(c.LnM, i, lnM)
+		c.ChiSq = slices.Insert(c.ChiSq, i, chiSq)
+	}
+}
+
+// Sum returns the joint curve of several profiles that share one multiplier.
+func Sum(cs []Curve) Curve {
+	if len(cs) == 0 {
+		panic("paths: the sum of no curves")
+	}
+	var sum Curve
+	for i := range cs {
+		sum.LnM = append(sum.LnM, cs[i].LnM...)
+		sum.Points += cs[i].Points
+		sum.Free += cs[i].Free
+	}
+	slices.Sort(sum.LnM)
+	sum.LnM = slices.Compact(sum.LnM)
+	for _, x := range sum.LnM {
+		chi := 0.0
+		for i := range cs {
+			chi += cs[i].At(x)
+		}
+		sum.ChiSq = append(sum.ChiSq, chi)
+	}
+	sum.settleSlopes()
+	return sum
+}
+
+// The scan: multipliers on D over twelve decades, half a decade apart, then
+// halved wherever it matters for the verdict and its intervals.
+const (
+	scanDecades  = 6
+	scanKnots    = 25
+	concern      = 30.0 // chi-square above the lowest within which the curve must be right
+	curveError   = 0.02 // chi-square, largest miss of the curve half way between knots
+	shiftError   = 2e-3 // of lnM: shift factors are good to well under 1 %
+	leastSpacing = 1e-4 // of lnM, below which no interval is halved
+	mostRounds   = 16
+)
+
+// scan builds the curve of a function that returns chi-square for several lnM
+// at once.
+func scan(points, free int, chiSq func(lnM []float64) ([]float64, error)) (Curve, error) {
+	c := Curve{Points: points, Free: free}
+	var lnM []float64
+	for i := range scanKnots {
+		lnM = append(lnM, (2*float64(i)/(scanKnots-1)-1)*scanDecades*math.Ln10)
+	}
+	add := func(at []float64) ([]float64, error) {
+		values, err := chiSq(at)
+		if err != nil {
+			return nil, err
+		}
+		for i, v := range values {
+			if math.IsNaN(v) {
+				return nil, fmt.Errorf("paths: chi-square at a multiplier of %g is not a number", math.Exp(at[i]))
+			}
+			c.add(at[i], v)
+		}
+		c.settleSlopes()
+		return values, nil
+	}
+	if _, err := add(lnM); err != nil {
+		return c, err
+	}
+	if err := c.refine(add); err != nil {
+		return c, err
+	}
+	return c, c.polish(add)
+}
+
+// refine halves the intervals of concern until the curve foretells the value
+// half way.
+func (c *Curve) refine(add func([]float64) ([]float64, error)) error {
+	settled := map[[2]float64]bool{}
+	for range mostRounds {
+		_, best := c.Lowest()
+		var mids, told []float64
+		for i := range len(c.LnM) - 1 {
+			q := c.piece(i)
+			_, low := q.lowest()
+			if low > best+concern || q.x1-q.x0 < leastSpacing || settled[[2]float64{q.x0, q.x1}] {
+				continue
+			}
+			mid := q.x0 + (q.x1-q.x0)/2
+			value, _ := q.at(mid)
+			mids, told = append(mids, mid), append(told, value)
+		}
+		if len(mids) == 0 {
+			return nil
+		}
+		values, err := add(mids)
+		if err != nil {
+			return err
+		}
+		for k, mid := range mids {
+			if math.Abs(values[k]-told[k]) <= curveError {
+				i, _ := slices.BinarySearch(c.LnM, mid)
+				settled[[2]float64{c.LnM[i-1], mid}] = true
+				settled[[2]float64{mid, c.LnM[i+1]}] = true
+			}
+		}
+	}
+	return nil
+}
+
+// polish puts knots at the lowest point until it stays.
+func (c *Curve) polish(add func([]float64) ([]float64, error)) error {
+	x, _ := c.Lowest()
+	for range mostRounds {
+		if _, err := add([]float64{x}); err != nil {
+			return err
+		}
+		next, _ := c.Lowest()
+		if math.Abs(next-x) <= shiftError {
+			return nil
+		}
+		x = next
+	}
+	return nil
+}

@@ -1,0 +1,155 @@
+package paths
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"bankfire/diffusion"
+	"bankfire/paths/study"
+	"bankfire/thermal"
+)
+
+// Course is one path followed through every element of a study.
+type Course struct {
+	Path     *study.Path
+	Elements []ElementCourse
+}
+
+// ElementCourse is what one element did along a path. Profiles are cell means
+// before the spot, in the element's unit.
+type ElementCourse struct {
+	Crystal   *study.Crystal
+	Element   *study.Element
+	Centres   []float64 // m from the crystal's centre
+	Start     []float64
+	Final     []float64
+	NumErr    float64   // largest numerical error of Final, in the element's unit
+	LnG       float64   // ln of the diffusion integral of the whole path, m2
+	Free      []FreeFit // what the traverse decided, at the end of the path
+	Legs      []LegShare
+	Snapshots []Snapshot
+	WhyG      string // whether the profile knows more of the path than G, and why
+	GEnough   bool
+	Notes     []string
+}
+
+// LegShare is how much of the diffusion one leg did.
+type LegShare struct {
+	Name     string
+	Duration float64 // s
+	Share    float64 // of G
+}
+
+// Snapshot is the profile at one time.
+type Snapshot struct {
+	Time  float64 // s from the start of the path
+	Value []float64
+}
+
+// Follow runs one path in detail: every element of every crystal, at the end
+// of the path and at the given times, in s from its start. Values left free
+// are those that fit the traverse at the end of the path.
+func Follow(s *study.Study, path *study.Path, at []float64) (*Course, error) {
+	out := &Course{Path: path}
+	for i := range s.Crystals {
+		c := &s.Crystals[i]
+		for j := range c.Elements {
+			e, err := follow(c, &c.Elements[j], path, at)
+			if err != nil {
+				return nil, fmt.Errorf("path %q, %s in %s: %w", path.Name, c.Elements[j].Name, c.Name, err)
+			}
+			out.Elements = append(out.Elements, *e)
+		}
+	}
+	return out, nil
+}
+
+func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) (*ElementCourse, error) {
+	p, err := newProfile(c, e, path, 0)
+	if err != nil {
+		return nil, err
+	}
+	f := &p.fields[0]
+	if err := p.plan.Audit(f, diffusion.Job{Course: &p.course}); err != nil {
+		return nil, err
+	}
+	values := make([]float64, len(p.free))
+	out := &ElementCourse{Crystal: c, Element: e, Centres: p.plan.Centres(), LnG: p.course.LnG()}
+	if p.weights != nil {
+		r, err := p.asItIs()
+		if err != nil {
+			return nil, err
+		}
+		out.Free, out.Notes = r.Free, r.Notes
+		values = p.fitTo(f.Cols).values
+	}
+	out.WhyG, out.GEnough = p.plan.GEnough()
+	out.Start, out.Final = combined(p.starts(), values), combined(f.Cols, values)
+	steps, space := combined(f.StepErr, values), combined(f.CellErr, values)
+	for i := range steps {
+		out.NumErr = math.Max(out.NumErr, math.Abs(steps[i])+math.Abs(space[i]))
+	}
+	out.Legs = legShares(path.History, e.Law.Law)
+	for _, t := range at {
+		value, err := p.snapshot(t, values)
+		if err != nil {
+			return nil, err
+		}
+		out.Snapshots = append(out.Snapshots, Snapshot{t, value})
+	}
+	return out, nil
+}
+
+// snapshot runs the path up to time t.
+func (p *profile) snapshot(t float64, values []float64) ([]float64, error) {
+	var course diffusion.Course
+	if err := p.plan.Course(&course, p.path.History, t); err != nil {
+		return nil, err
+	}
+	fields := p.fields[1:2]
+	if err := p.plan.Run(fields, []diffusion.Job{{Course: &course}}); err != nil {
+		return nil, err
+	}
+	return combined(fields[0].Cols, values), nil
+}
+
+// legShares returns what each leg did, legs as the user named them and the
+// others by their kind.
+func legShares(h *thermal.History, law diffusion.Law) []LegShare {
+	total := law.LnIntegral(h, 0, h.Life())
+	var shares []LegShare
+	for _, n := range spans(h) {
+		share := LegShare{Name: n.Name, Duration: n.End - n.Start}
+		if !math.IsInf(total, -1) {
+			share.Share = math.Exp(law.LnIntegral(h, n.Start, n.End) - total)
+		}
+		shares = append(shares, share)
+	}
+	return shares
+}
+
+// spans cuts the history into the user's named legs and, between them, the
+// single legs without a name.
+func spans(h *thermal.History) []thermal.Named {
+	named := slices.Clone(h.Names())
+	for i, leg := range h.Legs() {
+		start := h.Start(i)
+		inside := slices.ContainsFunc(h.Names(), func(n thermal.Named) bool {
+			return start >= n.Start && start+leg.For <= n.End
+		})
+		if !inside {
+			named = append(named, thermal.Named{Name: fmt.Sprintf("leg %d (%s)", i+1, leg.Kind), Start: start, End: start + leg.For})
+		}
+	}
+	slices.SortStableFunc(named, func(a, b thermal.Named) int {
+		switch {
+		case a.Start < b.Start:
+			return -1
+		case a.Start > b.Start:
+			return 1
+		}
+		return 0
+	})
+	return named
+}

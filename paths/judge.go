@@ -1,0 +1,117 @@
+package paths
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/mathext"
+	"gonum.org/v1/gonum/stat/distuv"
+)
+
+// Verdict is what became of one path against the data.
+type Verdict int
+
+// The verdicts, in the order in which Judge looks for them.
+const (
+	Reproduces Verdict = iota // the path passes as it is
+	TooSharp                  // it would pass with more diffusion
+	TooSmooth                 // it would pass with less diffusion
+	WrongShape                // no amount of diffusion along this path passes
+)
+
+func (v Verdict) String() string {
+	return [...]string{"reproduces", "too sharp", "too smooth", "wrong shape"}[v]
+}
+
+// Finding is what chi-square says of one profile, or of several jointly.
+type Finding struct {
+	Verdict Verdict
+	Shift   float64    // the multiplier on D that agrees best
+	Shift68 [2]float64 // its 68 % interval; 0 or +Inf at a side the data leave open
+	Shift95 [2]float64 // its 95 % interval
+	Tail    float64    // probability of a larger chi-square, were the path true
+	Misfit  float64    // chi-square of the path as it is
+	Points  int        // data points
+	Degrees int        // points less the values fitted without a prior
+	Ranges  int        // how many separate ranges of multipliers make up the 95 % interval
+}
+
+// Outcome is the verdict on one path.
+type Outcome struct {
+	Finding            // joint
+	Profiles []Finding // each by itself, in the order of the curves
+}
+
+// Judge weighs a path by the curves of the profiles it must satisfy, which
+// share one multiplier m on D, at the given confidence (0.95, say). With
+// p(m) the chi-square tail, at m degrees less one where m was chosen,
+//
+//	p(1) passes                      reproduces
+//	p(m*) passes at the best m*      too sharp (m* > 1) or too smooth (m* < 1)
+//	neither                          wrong shape
+//
+// where to pass is to be no smaller than 1 - confidence. It never solves.
+// Judge panics if there are no curves.
+func Judge(dst *Outcome, cs []Curve, confidence float64) {
+	joint := Sum(cs)
+	dst.Finding = find(&joint, confidence)
+	dst.Profiles = dst.Profiles[:0]
+	for i := range cs {
+		dst.Profiles = append(dst.Profiles, find(&cs[i], confidence))
+	}
+}
+
+// find reads one curve.
+func find(c *Curve, confidence float64) Finding {
+	f := Finding{Points: c.Points, Degrees: c.Points - c.Free, Misfit: c.At(0)}
+	f.Tail = Tail(f.Misfit, f.Degrees)
+	lnM, best := c.Lowest()
+	f.Shift = math.Exp(lnM)
+	f.Shift68 = interval(c, best+Rise(0.68))
+	f.Shift95 = interval(c, best+Rise(0.95))
+	f.Ranges = c.Ranges(best + Rise(0.95))
+	switch level := 1 - confidence; {
+	case f.Tail >= level:
+		f.Verdict = Reproduces
+	case Tail(best, f.Degrees-1) < level:
+		f.Verdict = WrongShape
+	case lnM > 0:
+		f.Verdict = TooSharp
+	default:
+		f.Verdict = TooSmooth
+	}
+	return f
+}
+
+func interval(c *Curve, level float64) [2]float64 {
+	lo, hi := c.Below(level)
+	return [2]float64{math.Exp(lo), math.Exp(hi)}
+}
+
+// Tail returns the probability that chi-square with the given degrees of
+// freedom exceeds x,
+//
+//	Q(degrees/2, x/2),
+//
+// the upper regularised incomplete gamma function (Abramowitz and Stegun 1964,
+// 26.4), not formed as 1 - P. With no degrees left it is 1 where x is 0 to
+// round-off, else 0.
+func Tail(x float64, degrees int) float64 {
+	switch {
+	case degrees > 0:
+		return mathext.GammaIncRegComp(float64(degrees)/2, math.Max(x, 0)/2)
+	case x <= exactFit:
+		return 1
+	default:
+		return 0
+	}
+}
+
+// exactFit is the chi-square that round-off leaves where as many values are
+// free as there are points.
+const exactFit = 1e-9
+
+// Rise returns by how much chi-square rises above its lowest value at the ends
+// of an interval of the given confidence for one value.
+func Rise(confidence float64) float64 {
+	return distuv.ChiSquared{K: 1}.Quantile(confidence)
+}
