@@ -103,10 +103,13 @@ func (d *decoder) keys(n *node, known ...string) {
 	}
 }
 
-// is reports whether n is of the kind, and reports it if not, with what to
-// write instead.
+// is reports whether n is of the kind. If it is of another it is a problem, and
+// the remedy says what to write instead; no node is left to need.
 func (d *decoder) is(n *node, kind nodeKind, remedy string) bool {
-	if n.kind == kind {
+	switch {
+	case n == nil:
+		return false
+	case n.kind == kind:
 		return true
 	}
 	d.report(n, fmt.Sprintf("%s, not %s", n.kind, kind), remedy)
@@ -127,7 +130,7 @@ func (d *decoder) need(n *node, name, remedy string) *node {
 // tables returns the tables of a list; a single table or anything else is
 // reported.
 func (d *decoder) tables(n *node, remedy string) []*node {
-	if n == nil || !d.is(n, arrayNode, remedy) {
+	if !d.is(n, arrayNode, remedy) {
 		return nil
 	}
 	if len(n.items) == 0 {
@@ -144,7 +147,7 @@ func (d *decoder) tables(n *node, remedy string) []*node {
 
 // text returns a text that is not empty.
 func (d *decoder) text(n *node, remedy string) (string, bool) {
-	if n == nil || !d.is(n, textNode, remedy) {
+	if !d.is(n, textNode, remedy) {
 		return "", false
 	}
 	if strings.TrimSpace(n.text) == "" {
@@ -240,7 +243,7 @@ func (d *decoder) within(n *node, x float64, b bound) bool {
 
 // number returns a plain number above zero.
 func (d *decoder) number(n *node, remedy string) (float64, bool) {
-	if n == nil || !d.is(n, numberNode, remedy) {
+	if !d.is(n, numberNode, remedy) {
 		return 0, false
 	}
 	if !(n.number > 0) || n.number > math.MaxFloat32 {

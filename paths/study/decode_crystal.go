@@ -89,7 +89,7 @@ func (d *decoder) zone(n *node, seen map[string]int) Zone {
 }
 
 // zoneName reads the name of a zone, which must be told from a value wherever
-// either may stand.
+// either may stand. It is "" if it cannot be used.
 func (d *decoder) zoneName(n *node, seen map[string]int) string {
 	name, ok := d.name(n, `write a name, such as "core"`)
 	switch {
@@ -100,8 +100,9 @@ func (d *decoder) zoneName(n *node, seen map[string]int) string {
 		d.report(n, "a zone cannot have this name, it has a meaning of its own", `write "core", say`)
 	default:
 		d.unique(n, name, seen)
+		return name
 	}
-	return name
+	return ""
 }
 
 // looksLikeValue reports whether a text is meant as a number with its unit.
@@ -113,7 +114,7 @@ func looksLikeValue(text string) bool {
 // which each element reads in its own unit; nil is sealed.
 func (d *decoder) inner(n *node, c *Crystal) *node {
 	const example = `write inner = { radius = "0 um", rim = "sealed" }`
-	if n == nil || !d.is(n, tableNode, example) {
+	if !d.is(n, tableNode, example) {
 		return nil
 	}
 	d.keys(n, "radius", "rim")

@@ -22,12 +22,12 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	}
 	e.Law = d.law(d.need(n, "law", `write a key of the catalogue, such as law = "quartz-ti-cherniak2007"`))
 	e.Traverse = d.traverse(n.get("traverse"), c)
-	u := &units{}
+	u := &units{measured: n.get("traverse") != nil}
 	if e.Traverse != nil {
 		u.unit, _ = thermal.UnitName(e.Traverse.Unit, thermal.Concentration)
 		u.from = n.get("traverse").get("value")
 	}
-	e.Start = d.start(n.get("start"), c, &e, u)
+	e.Start = d.start(n, c, u)
 	e.Rims = d.rims(n.get("rim"), c, u)
 	if e.Inner = d.rims(inner, c, u); allSealed(e.Inner) {
 		e.Inner = nil
@@ -37,41 +37,18 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	return e
 }
 
-// assumed notes what was taken because the study does not say, and reports
-// what cannot be taken.
+// assumed notes what was taken because the study does not say.
 func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	if e.Law.Row != nil && c.Mineral != "" && !strings.EqualFold(e.Law.Row.Mineral, c.Mineral) {
 		d.note("%s: the law %s is one of %s, the crystal is %s", e.Name, e.Law.Key, e.Law.Row.Mineral, c.Mineral)
+	}
+	if n.get("start").get("edge") == nil && len(c.Zones) > 1 {
+		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)
 	}
 	if n.get("rim") == nil && len(c.Zones) > 0 {
 		last := len(c.Zones) - 1
 		e.Rims = []Rim{tied(last, d.place(n))}
 		d.note("%s: no rim given, held at the plateau of its outermost zone, %s", e.Name, c.Zones[last].Name)
-	}
-	if e.Traverse == nil && n.get("traverse") == nil {
-		d.noneFree(n, c, e)
-	}
-}
-
-// noneFree reports a free value that no traverse could fit.
-func (d *decoder) noneFree(n *node, c *Crystal, e *Element) {
-	at := n
-	if v := n.get("start"); v != nil {
-		at = v
-	}
-	for i, p := range e.Start.Zones {
-		if p.Free && i < len(c.Zones) {
-			d.report(at, fmt.Sprintf("the plateau of %s is free, but %s has no traverse to fit it to", c.Zones[i].Name, e.Name),
-				"write its value, or give a traverse")
-			return
-		}
-	}
-	for _, r := range append(e.Inner, e.Rims...) {
-		if r.Zone < 0 && r.Value.Free {
-			d.found = append(d.found, r.Place.Error("free", "a free value, but "+e.Name+" has no traverse to fit it to",
-				"write its value, or give a traverse"))
-			return
-		}
 	}
 }
 
@@ -84,10 +61,11 @@ func allSealed(rims []Rim) bool {
 	return true
 }
 
-// units is the unit of an element while its values are being read.
+// units is what the values of an element have to agree with while they are read.
 type units struct {
-	unit string
-	from *node // the value that decided it
+	unit     string
+	from     *node // the value that decided it
+	measured bool  // there is a traverse to fit free values to
 }
 
 // amount reads a value of the element: "free", "58 ppm", "58 +- 1.5 ppm", or a
@@ -96,6 +74,9 @@ func (d *decoder) amount(n *node, u *units, beside string) Plateau {
 	const example = `write it like "58 ppm", "58 +- 1.5 ppm" or "free"`
 	switch {
 	case n.kind == textNode && n.text == "free":
+		if !u.measured {
+			d.report(n, "no traverse to fit it to", "write a value, or give a traverse")
+		}
 		return Plateau{Free: true}
 	case n.kind == numberNode && beside == "":
 		d.report(n, "a number without a unit", fmt.Sprintf("write it like \"%s ppm\", or add unit = \"ppm\"", n.text))
@@ -127,9 +108,9 @@ func (d *decoder) inUnit(n *node, u *units, v thermal.Uncertain, unit string) Pl
 	case v.Value < 0:
 		d.report(n, "below zero", "a value is zero or more")
 	case v.Value*factor > maxAmount(u.unit):
-		d.report(n, fmt.Sprintf("more than all there is, %g %s", maxAmount(u.unit), u.unit), "check the unit")
+		d.report(n, fmt.Sprintf("more than all there is, %.0f %s", maxAmount(u.unit), u.unit), "check the unit")
 	case v.Sigma*factor > maxAmount(u.unit):
-		d.report(n, fmt.Sprintf("its error is more than all there is, %g %s", maxAmount(u.unit), u.unit), "check the unit")
+		d.report(n, fmt.Sprintf("its error is more than all there is, %.0f %s", maxAmount(u.unit), u.unit), "check the unit")
 	}
 	return Plateau{Value: v.Value * factor, Sigma: v.Sigma * factor}
 }
@@ -148,9 +129,6 @@ func maxAmount(unit string) float64 {
 // concentrationUnit reads the unit that stands beside bare numbers, "" if none
 // does.
 func (d *decoder) concentrationUnit(n *node) string {
-	if n == nil {
-		return ""
-	}
 	const remedy = `write unit = "ppm", "wt%", "mole fraction" or "%"`
 	text, ok := d.text(n, remedy)
 	if !ok {

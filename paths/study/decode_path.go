@@ -61,7 +61,8 @@ func (d *decoder) path(n, eruption *node, seen map[string]int) Path {
 		eruption = own
 	}
 	if p.History != nil {
-		p.Eruption = d.eruption(&p, eruption)
+		d.erupt(p.History, eruption)
+		p.Eruption = p.History.Eruption()
 	}
 	return p
 }
@@ -202,12 +203,28 @@ func (d *decoder) sheet(n *node, magma float64) *thermal.Sheet {
 	return &s
 }
 
-// rows reads the file of a table leg.
-func (d *decoder) rows(n *node) *thermal.Rows {
-	return nil
-}
-
-// eruption finds the time of the eruption on a path; its end if none is given.
-func (d *decoder) eruption(p *Path, v *node) float64 {
-	return p.History.Life()
+// erupt sets the eruption of a path where the study gives one; else it is the
+// end.
+func (d *decoder) erupt(h *thermal.History, v *node) {
+	if v == nil {
+		return
+	}
+	m, ok := d.moment(v)
+	switch {
+	case !ok:
+		return
+	case m.Kind == thermal.BeforeEruption:
+		d.report(v, "counts from the eruption itself", `write a moment such as "end of wake 2" or "4 kyr after start"`)
+		return
+	case m.Kind == thermal.Added:
+		d.report(v, "counts from a zone", `write a moment such as "end of wake 2" or "4 kyr after start"`)
+		return
+	}
+	t, err := h.Moment(*m)
+	if err == nil {
+		err = h.SetEruption(t)
+	}
+	if err != nil {
+		d.reportError(v, err)
+	}
 }

@@ -61,6 +61,9 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 		d.keys(n, "held", "given", "sealed", "time", "value", "counts", "unit", "from")
 		d.report(n, "a rim of no kind", rimExample)
 	}
+	if v := n.get("from"); v != nil {
+		r.Place = d.place(v)
+	}
 	r.From = d.from(n, first)
 	return r
 }
@@ -89,9 +92,10 @@ func (d *decoder) from(n *node, first bool) *thermal.Moment {
 // value.
 func (d *decoder) held(n *node, r *Rim, c *Crystal, u *units) {
 	v := n.get("held")
-	r.Kind, r.Place = diffusion.Held, d.place(v)
+	r.Kind = diffusion.Held
 	if v.kind == textNode && v.text != "free" && !looksLikeValue(v.text) {
-		if r.Zone = zoneIndex(c, v.text); r.Zone < 0 && len(c.Zones) > 0 {
+		unreadable := zoneIndex(c, "") >= 0 || len(c.Zones) == 0
+		if r.Zone = zoneIndex(c, v.text); r.Zone < 0 && !unreadable {
 			d.reportWord(v, "no zone has this name", zoneNames(c),
 				fmt.Sprintf("write the name of a zone (%q, say) or a value", c.Zones[len(c.Zones)-1].Name))
 		}

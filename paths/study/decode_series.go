@@ -96,13 +96,14 @@ func (d *decoder) series(n *node, u *units) *Series {
 		return nil
 	}
 	s := &Series{Time: t.Columns[0], Value: t.Columns[1], BeforeEruption: before, Place: d.place(file)}
-	d.checkSeries(s, t, label)
-	d.seriesUnit(file, s, u, t.Units[1])
+	if d.checkSeries(s, t, label) {
+		d.seriesUnit(file, s, u, t.Units[1])
+	}
 	return s
 }
 
 // checkSeries turns the times of a series forward and checks its rows.
-func (d *decoder) checkSeries(s *Series, t *traverse.Table, label string) {
+func (d *decoder) checkSeries(s *Series, t *traverse.Table, label string) bool {
 	for i := range s.Time {
 		if s.BeforeEruption {
 			s.Time[i] = -s.Time[i]
@@ -119,8 +120,9 @@ func (d *decoder) checkSeries(s *Series, t *traverse.Table, label string) {
 		default:
 			continue
 		}
-		return
+		return false
 	}
+	return true
 }
 
 // seriesUnit converts the values of a series to the unit of the element.

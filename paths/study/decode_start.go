@@ -5,28 +5,30 @@ import (
 	"strings"
 )
 
-// start reads the profile before diffusion. Without one every plateau is free,
-// and edges are sharp.
-func (d *decoder) start(n *node, c *Crystal, e *Element, u *units) Start {
+// start reads the profile of an element before diffusion. Where it does not say
+// otherwise every plateau is free, and edges are sharp.
+func (d *decoder) start(element *node, c *Crystal, u *units) Start {
 	s := Start{Zones: make([]Plateau, len(c.Zones))}
 	for i := range s.Zones {
 		s.Zones[i].Free = true
 	}
 	const example = `write start = { zones = ["free", "58 +- 1.5 ppm"], edge = "0 um" }`
+	n := element.get("start")
 	switch {
 	case n == nil:
 	case n.kind == arrayNode:
 		d.report(n, "alternatives of a start are not known in this version", example)
+		return s
 	case d.is(n, tableNode, example):
 		d.keys(n, "zones", "edge", "unit")
-		if v := n.get("zones"); v != nil {
-			d.plateaux(v, s.Zones, c, u, d.concentrationUnit(n.get("unit")))
-		}
+	}
+	if zones := n.get("zones"); zones != nil {
+		d.plateaux(zones, s.Zones, c, u, d.concentrationUnit(n.get("unit")))
+	} else if !u.measured {
+		d.report(element, "all plateaux are free, but there is no traverse to fit them to", example)
 	}
 	if edge := n.get("edge"); edge != nil {
 		s.Edge = d.edge(edge)
-	} else if len(c.Zones) > 1 {
-		d.note("%s: no edge given, zones taken to begin sharp", e.Name)
 	}
 	return s
 }

@@ -11,7 +11,7 @@ import (
 // traverse reads the measured traverse of an element and its file.
 func (d *decoder) traverse(n *node, c *Crystal) *traverse.Traverse {
 	const example = `write traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
-	if n == nil || !d.is(n, tableNode, example) {
+	if !d.is(n, tableNode, example) {
 		return nil
 	}
 	before := len(d.found)
@@ -180,7 +180,7 @@ func (d *decoder) errorTable(n *node, remedy string) traverse.Errors {
 
 func (d *decoder) sigmas(n *node) float64 {
 	const remedy = "write sigmas = 1 or sigmas = 2"
-	if n == nil || !d.is(n, numberNode, remedy) {
+	if !d.is(n, numberNode, remedy) {
 		return 0
 	}
 	if n.number != 1 && n.number != 2 {

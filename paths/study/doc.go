@@ -5,7 +5,7 @@
 //
 //	s, err := study.Read("study.toml")
 //	c := &s.Crystals[0]
-//	problem, free, err := c.Problem(&c.Elements[0], &s.Paths[0])
+//	problem, free, err := c.Problem(&c.Elements[0], s.Paths[0].History)
 //
 // document.go turns the text into a tree of nodes that know their line and
 // column; each decode file reads one table of that tree; problem.go turns the

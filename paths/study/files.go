@@ -91,6 +91,12 @@ func (f *files) read(name string) ([]byte, error) {
 		return data, nil
 	}
 	data, err := f.load(path, maxDataBytes)
+	var in *thermal.InputError
+	if errors.As(err, &in) && path != name {
+		at := *in
+		at.Remedy = fmt.Sprintf("looked for at %q, names are relative to the study's folder", path)
+		return nil, &at
+	}
 	if err != nil {
 		return nil, err
 	}
@@ -102,7 +108,8 @@ func (f *files) read(name string) ([]byte, error) {
 	return data, nil
 }
 
-// file opens the file that the study names at n. The label names it in errors.
+// dataFile opens the file that the study names at n. The label names it in
+// errors.
 func (d *decoder) dataFile(n *node) (label string, r io.Reader, ok bool) {
 	name, ok := d.text(n, `write the name of a file, relative to the folder of the study`)
 	if !ok {

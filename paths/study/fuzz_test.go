@@ -4,6 +4,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 )
 
@@ -11,18 +12,46 @@ import (
 // refuses as input errors, and that what it accepts is finite and can be made
 // into a problem.
 func FuzzParse(f *testing.F) {
-	seeds, err := filepath.Glob("testdata/*/study.toml")
-	if err != nil || len(seeds) < 2 {
-		f.Fatalf("seeds %q, error %v", seeds, err)
+	for _, seed := range seeds(f) {
+		f.Add([]byte(seed))
 	}
-	for _, name := range seeds {
-		data, err := os.ReadFile(name)
+	files := seedFiles(f)
+	f.Fuzz(func(t *testing.T, data []byte) { holds(t, data, files) })
+}
+
+// FuzzEdit holds the same of sound studies in which one stretch of text is
+// replaced, which gets past the syntax more often.
+func FuzzEdit(f *testing.F) {
+	texts := seeds(f)
+	for _, w := range wrongStudies() {
+		f.Add(uint8(0), uint16(strings.Index(sound, w.old)), uint16(len(w.old)), strings.Replace(w.new, "@", "", 1))
+	}
+	f.Add(uint8(1), uint16(900), uint16(30), "repeat = 3")
+	f.Add(uint8(2), uint16(500), uint16(10), "1e300 Myr")
+	files := seedFiles(f)
+	f.Fuzz(func(t *testing.T, which uint8, at, length uint16, text string) {
+		base := texts[int(which)%len(texts)]
+		from := min(int(at), len(base))
+		to := min(from+int(length), len(base))
+		holds(t, []byte(base[:from]+text+base[to:]), files)
+	})
+}
+
+// seeds returns the sound study and those of testdata.
+func seeds(f *testing.F) []string {
+	texts := []string{sound}
+	for _, name := range []string{"every-key", "harrow"} {
+		data, err := os.ReadFile(filepath.Join("testdata", name, "study.toml"))
 		if err != nil {
 			f.Fatal(err)
 		}
-		f.Add(data)
+		texts = append(texts, string(data))
 	}
-	f.Add([]byte(sound))
+	return texts
+}
+
+// seedFiles returns the files that the seeds name.
+func seedFiles(f *testing.F) map[string]string {
 	files := soundFiles()
 	for _, name := range []string{"every-key/ti.csv", "every-key/tt.csv", "every-key/rim.csv", "harrow/hf12-ti.csv"} {
 		data, err := os.ReadFile(filepath.Join("testdata", name))
@@ -31,28 +60,30 @@ func FuzzParse(f *testing.F) {
 		}
 		files[filepath.Base(name)] = string(data)
 	}
-	f.Fuzz(func(t *testing.T, data []byte) {
-		s, err := parse("s.toml", data, memory(files))
-		if err != nil {
-			if s != nil {
-				t.Fatal("a study beside an error")
-			}
-			for _, e := range problems(t, err) {
-				if e.File == "" || e.Problem == "" || e.Line < 0 || e.Col < 0 {
-					t.Fatalf("error without place or problem: %#v", e)
-				}
-			}
-			return
+	return files
+}
+
+func holds(t *testing.T, data []byte, files map[string]string) {
+	s, err := parse("s.toml", data, memory(files))
+	if err != nil {
+		if s != nil {
+			t.Fatal("a study beside an error")
 		}
-		for i := range s.Paths {
-			finitePath(t, &s.Paths[i])
-			for j := range s.Crystals {
-				for k := range s.Crystals[j].Elements {
-					finiteProblem(t, &s.Crystals[j], &s.Crystals[j].Elements[k], &s.Paths[i])
-				}
+		for _, e := range problems(t, err) {
+			if e.File == "" || e.Problem == "" || e.Line < 0 || e.Col < 0 {
+				t.Fatalf("error without place or problem: %#v", e)
 			}
 		}
-	})
+		return
+	}
+	for i := range s.Paths {
+		finitePath(t, &s.Paths[i])
+		for j := range s.Crystals {
+			for k := range s.Crystals[j].Elements {
+				finiteProblem(t, &s.Crystals[j], &s.Crystals[j].Elements[k], &s.Paths[i])
+			}
+		}
+	}
 }
 
 func mustBeFinite(t *testing.T, what string, values ...float64) {
@@ -73,7 +104,7 @@ func finitePath(t *testing.T, p *Path) {
 }
 
 func finiteProblem(t *testing.T, c *Crystal, e *Element, p *Path) {
-	problem, free, err := c.Problem(e, p)
+	problem, free, err := c.Problem(e, p.History)
 	if err != nil {
 		t.Fatalf("accepted, but no problem: %v", err)
 	}

@@ -55,8 +55,12 @@ const (
 	dottedSource                    // by a dotted key
 )
 
-// get returns the value under a key of a table, or nil.
+// get returns the value under a key of a table, or nil; of no table there is
+// none.
 func (n *node) get(name string) *node {
+	if n == nil {
+		return nil
+	}
 	if k := n.values[name]; k != nil {
 		return k.value
 	}

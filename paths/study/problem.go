@@ -1,6 +1,7 @@
 package study
 
 import (
+	"errors"
 	"fmt"
 	"sort"
 
@@ -20,8 +21,8 @@ import (
 // Moments of rims are resolved on the path. The error is a *thermal.InputError
 // at the rim whose moment the path does not have, or whose file does not cover
 // the time it is in force.
-func (c *Crystal) Problem(e *Element, p *Path) (*diffusion.Problem, []FreeValue, error) {
-	b := builder{c: c, e: e, path: p}
+func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, []FreeValue, error) {
+	b := builder{c: c, e: e, h: h}
 	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law}
 	var err error
 	if out.Inner, err = b.rims(e.Inner); err != nil {
@@ -41,7 +42,7 @@ func (c *Crystal) Problem(e *Element, p *Path) (*diffusion.Problem, []FreeValue,
 type builder struct {
 	c     *Crystal
 	e     *Element
-	path  *Path
+	h     *thermal.History
 	basis []diffusion.Basis
 	free  []FreeValue
 }
@@ -131,8 +132,7 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 			return nil, err
 		}
 		if i > 0 && !(from > out[i-1].From) {
-			return nil, r.Place.Error(r.From.Text,
-				fmt.Sprintf("does not come after the rim before it on the path %q", b.path.Name), "list rims in the order of time")
+			return nil, r.Place.Error(r.From.Text, "does not come after the rim before it", "list rims in the order of time")
 		}
 		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r)})
 	}
@@ -140,7 +140,7 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		if list[i].Given == nil {
 			continue
 		}
-		until := b.path.History.Life()
+		until := b.h.Life()
 		if i+1 < len(out) {
 			until = min(until, out[i+1].From)
 		}
@@ -150,6 +150,19 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		}
 	}
 	return out, nil
+}
+
+// from is the time, s, from which a rim is in force.
+func (b *builder) from(r *Rim) (float64, error) {
+	if r.From == nil {
+		return 0, nil
+	}
+	t, err := b.h.Moment(*r.From)
+	var in *thermal.InputError
+	if errors.As(err, &in) {
+		return 0, in.At(r.Place)
+	}
+	return t, err
 }
 
 // value is what a held rim is held at in the problem.
@@ -167,12 +180,12 @@ func (b *builder) given(s *Series, from, until float64) (*diffusion.Given, error
 	for i := range t {
 		t[i] = s.Time[i]
 		if s.BeforeEruption {
-			t[i] += b.path.Eruption
+			t[i] += b.h.Eruption()
 		}
 	}
 	if slack := 1e-9 * until; from < until && (t[0] > from+slack || t[len(t)-1] < until-slack) {
-		return nil, s.Place.Error("", fmt.Sprintf("holds times from %s to %s only, but the path %q needs %s to %s", years(t[0]),
-			years(t[len(t)-1]), b.path.Name, years(from), years(until)), "add rows at both ends")
+		return nil, s.Place.Error("", fmt.Sprintf("holds times from %s to %s only, but the path needs %s to %s",
+			years(t[0]), years(t[len(t)-1]), years(from), years(until)), "add rows at both ends")
 	}
 	g := &diffusion.Given{At: func(x float64) float64 { return interpolate(t, s.Value, x) }}
 	for i := 0; i < len(t); {

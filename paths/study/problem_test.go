@@ -11,7 +11,7 @@ import (
 
 func TestProblemZones(t *testing.T) {
 	s := everyKey(t)
-	p, _, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], &s.Paths[0])
+	p, _, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], s.Paths[0].History)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -34,7 +34,7 @@ func TestProblemZones(t *testing.T) {
 
 func TestProblemFreeValues(t *testing.T) {
 	s := everyKey(t)
-	p, free, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], &s.Paths[0])
+	p, free, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], s.Paths[0].History)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -68,7 +68,7 @@ func TestProblemRims(t *testing.T) {
 		eruption float64 // yr
 	}{{"eruption of the study", 6185}, {"eruption of the path", 613}} {
 		t.Run(test.name, func(t *testing.T) {
-			p, _, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], &s.Paths[i])
+			p, _, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], s.Paths[i].History)
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -100,7 +100,7 @@ func TestProblemIsLinear(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		p, free, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], &s.Paths[0])
+		p, free, err := s.Crystals[0].Problem(&s.Crystals[0].Elements[0], s.Paths[0].History)
 		if err != nil {
 			t.Fatal(err)
 		}

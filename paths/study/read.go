@@ -124,8 +124,12 @@ func (d *decoder) together(s *Study) {
 }
 
 func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
-	if _, _, err := c.Problem(e, p); err != nil {
-		d.reportError(&node{field: "crystal.element.rim"}, err)
+	_, _, err := c.Problem(e, p.History)
+	var in *thermal.InputError
+	if errors.As(err, &in) {
+		on := *in
+		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
+		d.found = append(d.found, &on)
 	}
 	for _, leg := range p.History.Legs() {
 		if leg.Kind != thermal.Table {

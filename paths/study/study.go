@@ -36,7 +36,7 @@ type Threshold struct {
 type Path struct {
 	Name     string
 	History  *thermal.History
-	Eruption float64 // s from the start; the end of the path where the study says nothing
+	Eruption float64 // that of History, s from the start; the end of the path where the study says nothing
 	Place    thermal.Place
 }
 
@@ -100,7 +100,7 @@ type Rim struct {
 	Value Plateau         // held and tied to no zone
 	Given *Series         // prescribed
 	From  *thermal.Moment // nil in the first of a list: from the start of the path
-	Place thermal.Place
+	Place thermal.Place   // of its moment, or of the rim if it has none
 }
 
 // Series is a value against time, linear between its rows; equal times jump.
