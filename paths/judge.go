@@ -66,9 +66,9 @@ func find(c *Curve, confidence float64) Finding {
 	f.Tail = Tail(f.Misfit, f.Degrees)
 	lnM, best := c.Lowest()
 	f.Shift = math.Exp(lnM)
-	f.Shift68 = interval(c, best+Rise(0.68))
-	f.Shift95 = interval(c, best+Rise(0.95))
-	f.Ranges = c.Ranges(best + Rise(0.95))
+	f.Shift68 = interval(c, best+Critical(0.68, 1))
+	f.Shift95 = interval(c, best+Critical(0.95, 1))
+	f.Ranges = c.Ranges(best + Critical(0.95, 1))
 	switch level := 1 - confidence; {
 	case f.Tail >= level:
 		f.Verdict = Reproduces
@@ -110,8 +110,10 @@ func Tail(x float64, degrees int) float64 {
 // free as there are points.
 const exactFit = 1e-9
 
-// Rise returns by how much chi-square rises above its lowest value at the ends
-// of an interval of the given confidence for one value.
-func Rise(confidence float64) float64 {
-	return distuv.ChiSquared{K: 1}.Quantile(confidence)
+// Critical returns the chi-square that a fraction confidence of repeats stays
+// below, at the given degrees of freedom. With one degree it is also by how
+// much chi-square rises above its lowest value at the ends of the interval of
+// that confidence for one value, the others fitted again.
+func Critical(confidence float64, degrees int) float64 {
+	return distuv.ChiSquared{K: float64(degrees)}.Quantile(confidence)
 }
