@@ -6,7 +6,6 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"text/tabwriter"
 
 	"github.com/spf13/pflag"
 
@@ -184,12 +183,12 @@ func writeElement(text *bytes.Buffer, e *paths.ElementCourse) {
 		fmt.Fprintf(text, "note: %s\n", note)
 	}
 	fmt.Fprintln(text)
-	legs := tabwriter.NewWriter(text, 0, 0, 3, ' ', 0)
-	fmt.Fprintln(legs, "leg\tduration\tpart of G")
+	legs := newTable()
+	legs.row("leg", "duration", "part of G")
 	for _, l := range e.Legs {
-		fmt.Fprintf(legs, "%s\t%s\t%s\n", l.Name, timeText(l.Duration), percent(l.Share))
+		legs.row(l.Name, timeText(l.Duration), percent(l.Share))
 	}
-	legs.Flush()
+	legs.writeTo(text)
 	writeProfiles(text, e)
 }
 
@@ -200,19 +199,19 @@ const shownCells = 25
 // cells.
 func writeProfiles(text *bytes.Buffer, e *paths.ElementCourse) {
 	fmt.Fprintf(text, "\nprofiles in %s, numerical error up to %s; --json has every cell\n\n", e.Element.Unit, number(e.NumErr))
-	table := tabwriter.NewWriter(text, 0, 0, 3, ' ', 0)
-	fmt.Fprint(table, "from centre [um]\tstart")
+	table := newTable()
+	head := []string{"from centre [um]", "start"}
 	for _, s := range e.Snapshots {
-		fmt.Fprintf(table, "\tat %s", timeText(s.Time))
+		head = append(head, "at "+timeText(s.Time))
 	}
-	fmt.Fprintln(table, "\tend")
+	table.row(append(head, "end")...)
 	every := max(1, len(e.Centres)/shownCells)
 	for i := every / 2; i < len(e.Centres); i += every {
-		fmt.Fprintf(table, "%s\t%s", number(e.Centres[i]*1e6), number(e.Start[i]))
+		row := []string{fmt.Sprintf("%.2f", e.Centres[i]*1e6), number(e.Start[i])}
 		for _, s := range e.Snapshots {
-			fmt.Fprintf(table, "\t%s", number(s.Value[i]))
+			row = append(row, number(s.Value[i]))
 		}
-		fmt.Fprintf(table, "\t%s\n", number(e.Final[i]))
+		table.row(append(row, number(e.Final[i]))...)
 	}
-	table.Flush()
+	table.writeTo(text)
 }

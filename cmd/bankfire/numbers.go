@@ -18,6 +18,17 @@ func number(x float64) string {
 	return strings.TrimSuffix(trimmed(strconv.FormatFloat(x, 'f', decimals(x, 3), 64)), ".")
 }
 
+// tailText prints a probability; below a thousandth nobody should read digits.
+func tailText(x float64) string {
+	if x < 0.001 {
+		return "< 0.001"
+	}
+	return number(x)
+}
+
+// oneDigit prints a size of which only the magnitude matters.
+func oneDigit(x float64) string { return strconv.FormatFloat(x, 'g', 1, 64) }
+
 // decimals returns how many decimals show the given number of digits of x.
 func decimals(x float64, digits int) int {
 	if x == 0 {
@@ -84,7 +95,7 @@ func timeText(s float64) string {
 
 func celsius(temp float64) string {
 	if temp == 0 {
-		return "temperature: none"
+		return "no temperature"
 	}
 	return fmt.Sprintf("%.0f C", temp-thermal.ZeroCelsius)
 }

@@ -8,7 +8,6 @@ import (
 	"math"
 	"strconv"
 	"strings"
-	"text/tabwriter"
 
 	"bankfire/paths"
 	"bankfire/thermal"
@@ -24,7 +23,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	notes := writeVerdicts(&text, r)
 	fmt.Fprintln(&text)
 	writeSentences(&text, r)
-	writeFreeValues(&text, r)
+	writeFits(&text, r)
 	for i, note := range notes {
 		fmt.Fprintf(&text, "[%d] %s\n", i+1, note)
 	}
@@ -36,17 +35,17 @@ func weighingText(r *paths.Result) bytes.Buffer {
 // writeVerdicts writes the table of paths and returns the notes its last
 // column refers to.
 func writeVerdicts(w io.Writer, r *paths.Result) []string {
-	table := tabwriter.NewWriter(w, 0, 0, 3, ' ', 0)
+	table := newTable()
 	head := []string{"path", "verdict", "D factor", "95 %", "tail", "chi-square", "life"}
 	for _, t := range r.Study.Thresholds {
 		head = append(head, "above "+t.Name)
 	}
-	fmt.Fprintln(table, strings.Join(append(head, ""), "\t"))
+	table.row(append(head, "")...)
 	var notes numbered
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
-		row := []string{p.Path.Name, o.Verdict.String(), number(o.Shift), intervalText(o.Shift95), number(o.Tail),
+		row := []string{p.Path.Name, o.Verdict.String(), number(o.Shift), intervalText(o.Shift95), tailText(o.Tail),
 			fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees), timeText(p.Life)}
 		for _, above := range p.Above {
 			row = append(row, timeText(above))
@@ -55,9 +54,9 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 		for j := range p.Profiles {
 			marks += notes.marks(p.Profiles[j].Notes)
 		}
-		fmt.Fprintln(table, strings.Join(append(row, marks), "\t"))
+		table.row(append(row, marks)...)
 	}
-	table.Flush()
+	table.writeTo(w)
 	return notes
 }
 
@@ -106,20 +105,29 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	fmt.Fprintln(w)
 }
 
-// writeFreeValues says what the traverse decided on each path.
-func writeFreeValues(w io.Writer, r *paths.Result) {
-	for i := range r.Paths {
-		p := &r.Paths[i]
-		for j := range p.Profiles {
-			q := &p.Profiles[j]
-			fmt.Fprintf(w, "%s, %s in %s: ", quoted(p.Path.Name), q.Element.Name, q.Crystal.Name)
-			for _, f := range q.Free {
-				fmt.Fprintf(w, "%s %s, ", f.Name, withError(f.Value, f.Sigma, q.Element.Unit))
-			}
-			fmt.Fprintf(w, "sqrt(2 G) = %s um, same G at a constant %s\n", number(math.Sqrt2*math.Exp(q.LnG/2)*1e6), celsius(q.StandIn))
+// writeFits writes, for each measured element, what the traverse decided on
+// each path and how much diffusion the path did.
+func writeFits(w io.Writer, r *paths.Result) {
+	for n := range r.Paths[0].Profiles {
+		first := &r.Paths[0].Profiles[n]
+		fmt.Fprintf(w, "%s in %s, fitted for each path:\n\n", first.Element.Name, first.Crystal.Name)
+		fits := newTable()
+		head := []string{"path"}
+		for _, f := range first.Free {
+			head = append(head, f.Name)
 		}
+		fits.row(append(head, "sqrt(2 G)", "same G at", "numerical error")...)
+		for i := range r.Paths {
+			q := &r.Paths[i].Profiles[n]
+			row := []string{r.Paths[i].Path.Name}
+			for _, f := range q.Free {
+				row = append(row, withError(f.Value, f.Sigma, q.Element.Unit))
+			}
+			fits.row(append(row, number(math.Sqrt2*math.Exp(q.LnG/2)*1e6)+" um", celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")...)
+		}
+		fits.writeTo(w)
+		fmt.Fprintln(w)
 	}
-	fmt.Fprintln(w)
 }
 
 // verdictInWords is the verdict with how far the path misses.
