@@ -38,7 +38,11 @@ func Find(key string) (*Row, error) {
 		if r.Key == key {
 			return &r, nil
 		}
-		if d := distance(key, r.Key); d < least {
+		d := distance(key, r.Key)
+		if strings.HasPrefix(r.Key, key) {
+			d = min(d, 1) // the end was left out
+		}
+		if d < least {
 			best, least = r.Key, d
 		}
 	}

@@ -206,6 +206,7 @@ func TestFind(t *testing.T) {
 		{"one letter", "quartz-ti-cherniak2006", "quartz-ti-cherniak2007"},
 		{"letter left out", "olivine-ni-pety2004", "olivine-ni-petry2004"},
 		{"capitals", "Quartz-Ti-Jollands2020", "quartz-ti-jollands2020"},
+		{"long end left out", "quartz-ti", "quartz-ti-cherniak2007"},
 		{"end left out", "plagioclase-sr-giletti", "plagioclase-sr-giletti1994"},
 	} {
 		t.Run(test.name, func(t *testing.T) {
