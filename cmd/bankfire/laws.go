@@ -414,7 +414,7 @@ func lawNotes(r *catalogue.Row, temps []float64) []string {
 	for _, beyond := range []struct {
 		by    float64
 		where string
-	}{{below, "down to %.0f K below"}, {above, "up to %.0f K above"}} {
+	}{{below, "down to %.5g K below"}, {above, "up to %.0f K above"}} {
 		if beyond.by > 0 {
 			notes = append(notes, fmt.Sprintf("used "+beyond.where+" its calibrated range", beyond.by))
 		}

@@ -234,9 +234,9 @@ func beyondText(r *catalogue.Row, temp float64) string {
 	case !r.RangeKnown():
 		return "calibrated range not known"
 	case below > 0:
-		return fmt.Sprintf("%.0f K below the calibrated range", below)
+		return fmt.Sprintf("%.5g K below the calibrated range", below)
 	case above > 0:
-		return fmt.Sprintf("%.0f K above the calibrated range", above)
+		return fmt.Sprintf("%.5g K above the calibrated range", above)
 	}
 	return ""
 }
