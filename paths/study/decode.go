@@ -11,19 +11,30 @@ import (
 	"bankfire/thermal"
 )
 
-// maxProblems is the number of problems of one study that are reported.
-const maxProblems = 20
+// At most maxProblems of one study are reported, the first by line of the
+// maxKept that were found first.
+const (
+	maxProblems = 20
+	maxKept     = 1000
+)
 
 // decoder turns the tree of a document into a Study. Its methods, one or a few
 // a table, return what they could read and report what is wrong; nothing that
 // they return is used once a problem was reported.
 type decoder struct {
-	file  string // the study as the user named it
-	files *files
-	laws  map[string]Law // the study's own, by name
-	notes []string
-	legs  int // of all paths so far
-	found []*thermal.InputError
+	file   string // the study as the user named it
+	files  *files
+	laws   map[string]Law // the study's own, by name
+	notes  []string
+	legs   int // of all paths so far
+	found  []*thermal.InputError
+	faults int // all found, kept or not
+}
+
+func (d *decoder) add(e *thermal.InputError) {
+	if d.faults++; d.faults <= maxKept {
+		d.found = append(d.found, e)
+	}
 }
 
 // report adds a problem of the value n.
@@ -32,13 +43,13 @@ func (d *decoder) report(n *node, problem, remedy string) {
 	if n.kind != tableNode && n.kind != arrayNode {
 		value = shorten(n.text)
 	}
-	d.found = append(d.found, d.place(n).Error(value, problem, remedy))
+	d.add(d.place(n).Error(value, problem, remedy))
 }
 
 // reportKey adds a problem of a key, whatever its value.
 func (d *decoder) reportKey(n *node, k *key, problem, remedy string) {
 	p := thermal.Place{File: d.file, Line: k.line, Col: k.col, Field: join(n.field, k.name)}
-	d.found = append(d.found, p.Error("", problem, remedy))
+	d.add(p.Error("", problem, remedy))
 }
 
 // reportError adds an error that came from reading the value n, at the places
@@ -61,9 +72,9 @@ func (d *decoder) reportError(n *node, err error) {
 			at.Value = n.text
 		}
 		at.Value = shorten(at.Value)
-		d.found = append(d.found, at)
+		d.add(at)
 	default:
-		d.found = append(d.found, in)
+		d.add(in)
 	}
 }
 
@@ -122,7 +133,7 @@ func (d *decoder) need(n *node, name, remedy string) *node {
 	if v == nil {
 		p := d.place(n)
 		p.Field = join(n.field, name)
-		d.found = append(d.found, p.Error("", "missing", remedy))
+		d.add(p.Error("", "missing", remedy))
 	}
 	return v
 }
@@ -168,7 +179,7 @@ func (d *decoder) name(n *node, remedy string) (string, bool) {
 	case strings.ContainsFunc(text, func(r rune) bool { return r < ' ' || r == utf8.RuneError }):
 		d.report(n, "a name must be one line of plain text", remedy)
 	case utf8.RuneCountInString(text) > 200:
-		d.report(n, "a name of more than 200 characters", "write a shorter one")
+		d.report(n, "more than 200 characters", "write a shorter one")
 	default:
 		return text, true
 	}

@@ -7,6 +7,10 @@ import (
 	"bankfire/diffusion"
 )
 
+// maxZones bounds the zones of a crystal and the rims of an end. Each may become
+// a free value, and every free value knows every zone and rim.
+const maxZones = 500
+
 // crystals reads every [[crystal]].
 func (d *decoder) crystals(root *node) []Crystal {
 	list := d.need(root, "crystal", "write one [[crystal]] with name, mineral, shape, zones and one [[crystal.element]]")
@@ -69,10 +73,23 @@ func (d *decoder) zones(n *node) []Zone {
 	const example = `write zones = [ { name = "core", width = "140 um" } ], from the centre outwards`
 	var out []Zone
 	seen := map[string]int{}
-	for _, z := range d.tables(d.need(n, "zones", example), example) {
+	list := d.need(n, "zones", example)
+	if d.tooMany(list, "zones") {
+		return nil
+	}
+	for _, z := range d.tables(list, example) {
 		out = append(out, d.zone(z, seen))
 	}
 	return out
+}
+
+// tooMany reports a list of more than maxZones things.
+func (d *decoder) tooMany(n *node, things string) bool {
+	if n == nil || len(n.items) <= maxZones {
+		return false
+	}
+	d.report(n, fmt.Sprintf("more than %d %s", maxZones, things), "fewer are enough to describe a crystal")
+	return true
 }
 
 func (d *decoder) zone(n *node, seen map[string]int) Zone {

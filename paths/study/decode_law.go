@@ -82,6 +82,10 @@ func (d *decoder) law(n *node) Law {
 	if n == nil {
 		return Law{}
 	}
+	if n.get("a") != nil || n.get("b") != nil || n.get("c") != nil {
+		d.report(n, "a law by direction is not known in this version", "name the law along your traverse")
+		return Law{}
+	}
 	if n.kind == tableNode {
 		return d.ownLaw(n)
 	}

@@ -51,9 +51,9 @@ func (d *decoder) path(n, eruption *node, seen map[string]int) Path {
 			d.unique(v, p.Name, seen)
 		}
 	}
-	before := len(d.found)
+	before := d.faults
 	specs := d.legList(n)
-	if len(d.found) > before || len(specs) == 0 {
+	if d.faults > before || len(specs) == 0 {
 		return p
 	}
 	p.History = d.history(n, specs)

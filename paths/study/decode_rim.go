@@ -26,6 +26,9 @@ func (d *decoder) rims(n *node, c *Crystal, u *units) []Rim {
 	if len(n.items) == 0 {
 		d.report(n, "an empty list", rimExample)
 	}
+	if d.tooMany(n, "rims") {
+		return nil
+	}
 	var out []Rim
 	for i, item := range n.items {
 		out = append(out, d.rim(item, c, u, i == 0))
@@ -45,6 +48,8 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 		return r
 	}
 	switch {
+	case n.get("following") != nil || n.get("transfer") != nil:
+		d.report(n, "a rim that follows conditions or exchanges by transfer is not known in this version", rimExample)
 	case n.get("held") != nil:
 		d.keys(n, "held", "unit", "from")
 		d.held(n, &r, c, u)

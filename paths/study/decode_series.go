@@ -35,7 +35,7 @@ func (d *decoder) rows(n *node) *thermal.Rows {
 		if in.Line > 0 {
 			at.Line = t.Line[in.Line-1]
 		}
-		d.found = append(d.found, in.At(at))
+		d.add(in.At(at))
 	case err != nil:
 		d.reportError(file, err)
 	}
@@ -59,7 +59,7 @@ func (d *decoder) columns(n *node, want ...traverse.Column) (*traverse.Table, st
 
 // row reports a problem on a line of a data file.
 func (d *decoder) row(label string, line int, field, problem, remedy string) {
-	d.found = append(d.found, thermal.Place{File: label, Line: line, Field: field}.Error("", problem, remedy))
+	d.add(thermal.Place{File: label, Line: line, Field: field}.Error("", problem, remedy))
 }
 
 // counts reads how the times of a file count.
@@ -128,9 +128,9 @@ func (d *decoder) checkSeries(s *Series, t *traverse.Table, label string) bool {
 // seriesUnit converts the values of a series to the unit of the element.
 func (d *decoder) seriesUnit(file *node, s *Series, u *units, unit string) {
 	for i := range s.Value {
-		before := len(d.found)
+		before := d.faults
 		s.Value[i] = d.inUnit(file, u, thermal.Uncertain{Value: s.Value[i]}, unit).Value
-		if len(d.found) > before {
+		if d.faults > before {
 			return // one report is enough
 		}
 	}

@@ -14,7 +14,7 @@ func (d *decoder) traverse(n *node, c *Crystal) *traverse.Traverse {
 	if !d.is(n, tableNode, example) {
 		return nil
 	}
-	before := len(d.found)
+	before := d.faults
 	d.keys(n, "file", "position", "zero", "value", "unit", "error", "spot", "window", "skip")
 	o := traverse.Options{Size: c.Size()}
 	o.Position, _ = d.text(d.need(n, "position", `name the column of positions, such as position = "distance [um]"`), "name the column of positions")
@@ -29,7 +29,7 @@ func (d *decoder) traverse(n *node, c *Crystal) *traverse.Traverse {
 		o.Skip, _ = d.text(v, "name the column that marks rows to leave out")
 	}
 	file := d.need(n, "file", `name the file, such as file = "ti.csv"`)
-	if len(d.found) > before || !c.sized() {
+	if d.faults > before || !c.sized() {
 		return nil
 	}
 	label, r, ok := d.dataFile(file)
@@ -51,9 +51,9 @@ func (d *decoder) traverse(n *node, c *Crystal) *traverse.Traverse {
 func (d *decoder) reach(file *node, t *traverse.Traverse, c *Crystal) {
 	const roundOff = 1e-9 // positions are sums of typed widths
 	for i, x := range t.Position {
-		if x < c.R0*(1-roundOff) {
+		if c.R0 > 0 && x < c.R0*(1-roundOff) {
 			at := thermal.Place{File: d.files.path(file.text), Line: t.Line[i], Field: "position"}
-			d.found = append(d.found, at.Error("", fmt.Sprintf("%.6g um from the centre, inside the inner radius", x*1e6),
+			d.add(at.Error("", fmt.Sprintf("%.6g um from the centre, inside the inner radius", x*1e6),
 				"set a window, or check the widths of the zones"))
 			return
 		}

@@ -133,7 +133,8 @@ func (d *document) parserError(err error) error {
 		return &syntaxError{problem: err.Error()}
 	}
 	offset := min(cap(d.data)-cap(p.Highlight), len(d.data))
-	return d.errorAt(max(offset, 0), "", "not TOML: "+p.Message, "")
+	return d.errorAt(max(offset, 0), "", "not TOML: "+p.Message,
+		`close quotes and brackets, and write quantities in quotes: "800 yr"`)
 }
 
 // expression adds one top-level expression: a header or a key with its value.

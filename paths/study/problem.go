@@ -38,6 +38,16 @@ func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, [
 	return out, b.free, nil
 }
 
+// holds reports, as Problem does, the rim that cannot be placed on the path.
+func (c *Crystal) holds(e *Element, h *thermal.History) error {
+	b := builder{c: c, e: e, h: h}
+	if _, err := b.rims(e.Inner); err != nil {
+		return err
+	}
+	_, err := b.rims(e.Rims)
+	return err
+}
+
 // builder collects the columns of a problem.
 type builder struct {
 	c     *Crystal

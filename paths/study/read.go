@@ -65,7 +65,7 @@ func (d *decoder) study(root *node) *Study {
 	s.Thresholds = d.thresholds(root.get("threshold"))
 	s.Paths = d.paths(root)
 	s.Crystals = d.crystals(root)
-	if len(d.found) == 0 {
+	if d.faults == 0 {
 		d.together(s)
 	}
 	return s
@@ -123,24 +123,30 @@ func (d *decoder) together(s *Study) {
 	}
 }
 
+// meet checks one element on one path.
 func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
-	_, _, err := c.Problem(e, p.History)
 	var in *thermal.InputError
-	if errors.As(err, &in) {
+	if errors.As(c.holds(e, p.History), &in) {
 		on := *in
 		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
-		d.found = append(d.found, &on)
+		d.add(&on)
 	}
-	for _, leg := range p.History.Legs() {
-		if leg.Kind != thermal.Table {
+	legs := p.History.Legs()
+	for i := range legs {
+		if legs[i].Kind != thermal.Table {
 			continue
 		}
 		for _, a := range e.Law.Law.Terms {
-			if row, ratio, coarse := leg.Rows.Coarse(a.E); coarse {
-				d.note("path %q: from row %d to the next of its table the diffusivity of %s changes %.3g-fold; give more rows there",
-					p.Name, row+1, e.Name, ratio)
-			}
+			d.coarse(e, p, legs[i].Rows, a.E)
 		}
+	}
+}
+
+// coarse notes a table whose rows are too far apart for the law.
+func (d *decoder) coarse(e *Element, p *Path, rows *thermal.Rows, energy float64) {
+	if step, ratio, coarse := rows.Coarse(energy); coarse {
+		d.note("path %q: its table is coarse: straight lines between its rows may put the diffusion of %s off by a factor of %.3g, most from %s to %s after its first row",
+			p.Name, e.Name, ratio, years(rows.Time[step]), years(rows.Time[step+1]))
 	}
 }
 

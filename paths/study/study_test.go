@@ -254,6 +254,46 @@ func TestUnits(t *testing.T) {
 	})
 }
 
+// TestPieceOfCrystal reads a piece that does not reach the centre.
+func TestPieceOfCrystal(t *testing.T) {
+	piece := strings.Replace(sound, `shape = "slab"`, "shape = \"ball\"\ninner = { radius = \"40 um\", rim = \"sealed\" }", 1)
+	t.Run("inside", func(t *testing.T) {
+		s, err := parse("s.toml", []byte(piece), memory(soundFiles()))
+		if err != nil {
+			t.Fatal(err)
+		}
+		c := s.Crystals[0]
+		if near(t, "size", c.Size(), 160*um); c.Elements[0].Inner != nil || c.Mirrored(&c.Elements[0]) {
+			t.Errorf("inner end %+v", c.Elements[0].Inner)
+		}
+		near(t, "first position", c.Elements[0].Traverse.Position[0], 159*um)
+	})
+	t.Run("beyond its inner end", func(t *testing.T) {
+		files := soundFiles()
+		files["q1.csv"] = "x [um],Ti [ppm]\n1,58\n130,70\n"
+		_, err := parse("s.toml", []byte(piece), memory(files))
+		got := problems(t, err)
+		if len(got) != 1 || got[0].File != "q1.csv" || got[0].Line != 3 || !strings.Contains(got[0].Problem, "30 um from the centre, inside the inner radius") {
+			t.Errorf("got %v", err)
+		}
+	})
+}
+
+// TestCoarseTable wants a note where straight lines between the rows of a table
+// may not be what was meant.
+func TestCoarseTable(t *testing.T) {
+	files := soundFiles()
+	files["decay.csv"] = "t [yr],T [C]\n0,900\n10,800\n20,730\n40,690\n100,680\n"
+	text := strings.Replace(sound, `{ name = "store", hold = "750 C", for = "800 yr" }`, `{ table = "decay.csv", time = "t [yr]", temperature = "T [C]" }`, 1)
+	s, err := parse("s.toml", []byte(text), memory(files))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(s.Notes) != 1 || !strings.Contains(s.Notes[0], "its table is coarse") || !strings.Contains(s.Notes[0], "Ti") {
+		t.Errorf("notes %q", s.Notes)
+	}
+}
+
 // TestProblemsAreCollected wants every fault of a file in one go, in the order
 // of its lines, and no more than 20.
 func TestProblemsAreCollected(t *testing.T) {

@@ -47,13 +47,14 @@ func distance(a, b string) int {
 // later reports whether a dotted key belongs to the grammar of study files but
 // to none that this version reads, so that the message can say which it is.
 func later(field string) bool {
+	for strings.Contains(field, ".legs.legs.") {
+		field = strings.ReplaceAll(field, ".legs.legs.", ".legs.")
+	}
 	switch field {
-	case "conditions", "partition", "family", "limits", "law.own", "law.host", "law.times",
-		"path.legs.conditions", "path.legs.legs.conditions",
+	case "conditions", "partition", "family", "law.own", "law.host", "law.times", "path.legs.conditions",
 		"crystal.host", "crystal.zones.host", "crystal.zones.added",
 		"crystal.element.rivals", "crystal.element.partition",
 		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled",
-		"crystal.element.rim.following", "crystal.element.rim.transfer",
 		"crystal.element.traverse.tilt", "crystal.element.traverse.below", "crystal.element.traverse.scatter":
 		return true
 	}
