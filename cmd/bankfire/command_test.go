@@ -6,6 +6,9 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"os"
+	"os/exec"
+	"path/filepath"
 	"strings"
 	"syscall"
 	"testing"
@@ -21,15 +24,14 @@ func trial() *command {
 	var count int
 	input := &thermal.InputError{File: "s.toml", Line: 3, Col: 4, Field: "hold", Value: "x", Problem: "has no unit"}
 	errs := map[string]error{
-		"fine":     nil,
-		"breaks":   errors.New("disk full"),
-		"wrong":    input,
-		"wrapped":  fmt.Errorf("crystal HF-12: %w", input),
-		"several":  errors.Join(input, &thermal.InputError{Field: "for", Problem: "missing"}),
-		"hint":     hinted{input, "look again"},
-		"unread":   fmt.Errorf("write: %w", syscall.EPIPE),
-		"mingled":  fmt.Errorf("weigh: %w", errors.Join(errors.New("no memory"), input)),
-		"reads in": nil,
+		"fine":    nil,
+		"breaks":  errors.New("disk full"),
+		"wrong":   input,
+		"wrapped": fmt.Errorf("crystal HF-12: %w", input),
+		"several": errors.Join(input, &thermal.InputError{Field: "for", Problem: "missing"}),
+		"hint":    hinted{input, "look again"},
+		"unread":  fmt.Errorf("write: %w", syscall.EPIPE),
+		"mingled": fmt.Errorf("weigh: %w", errors.Join(errors.New("no memory"), input)),
 	}
 	return &command{
 		name: "trial", args: "HOW", short: "fail in some way", long: "Fails.", least: 1, most: 1,
@@ -166,6 +168,33 @@ func TestCommandTable(t *testing.T) {
 					t.Errorf("--%s: name its value %q in backquotes and capitals", f.Name, value)
 				}
 			})
+		})
+	}
+}
+
+// TestHelpExamples runs the examples that the help shows, in a folder with a study.
+func TestHelpExamples(t *testing.T) {
+	bash, err := exec.LookPath("bash")
+	if err != nil {
+		t.Skip(err)
+	}
+	for _, c := range commands() {
+		t.Run(c.name, func(t *testing.T) {
+			home := t.TempDir()
+			t.Setenv("HOME", home)
+			if err := os.MkdirAll(filepath.Join(home, ".config/fish/completions"), 0o777); err != nil {
+				t.Fatal(err)
+			}
+			if err := os.CopyFS(filepath.Join(home, "study"), os.DirFS("../../examples/cold-store")); err != nil {
+				t.Fatal(err)
+			}
+			for _, e := range c.examples {
+				shell := exec.Command(bash, "-c", e.line)
+				shell.Dir = filepath.Join(home, "study")
+				if out, err := shell.CombinedOutput(); err != nil {
+					t.Errorf("%s: %v\n%s", e.line, err, out)
+				}
+			}
 		})
 	}
 }
