@@ -2,38 +2,44 @@ package thermal
 
 import "math"
 
-// relaxIntegral is int_a^b T^-k exp(-e/T) ds along T = ambient + (first - ambient) exp(-s), s in e-fold times.
+// relaxIntegral is int_a^(a+s) T^-k exp(-e/T) dx along T = ambient + (first - ambient) exp(-x), x in e-fold times.
 //
-// With w = (T - ambient)/T, u = e/ambient and ds = -dw/(w (1 - w)) the exponent is linear, -e/T = u w - u, and
+// With w = (T - ambient)/T, from w0 to w1, u = e/ambient and dx = -dw/(w (1 - w)) the exponent is linear, -e/T = u w - u, and
 //
-//	I = ambient^-k e^-u int_w(b)^w(a) (1 - w)^k e^(u w) / (w (1 - w)) dw
-//	  = ambient^-k e^-u {b - a + int_w(b)^w(a) [(1 - w)^k e^(u w) - 1] / (w (1 - w)) dw}.
+//	I = ambient^-k e^-u int_w1^w0 (1 - w)^k e^(u w) / (w (1 - w)) dw
+//	  = ambient^-k e^-u {s + int_w1^w0 [(1 - w)^k e^(u w) - 1] / (w (1 - w)) dw}.
 //
 // The second form has no pole at w = 0, that is at the ambient temperature, and keeps the long stay there apart; the
 // first serves where the exponent at w is far below that at 0 and the second would cancel. By parts in w they are the sum
 // of exponential integrals E1(e/T) and Ei(u w), which cancel on short parts and overflow on long ones, so both are
 // integrated by Gauss-Legendre panels instead, starting where the exponent is largest.
-func relaxIntegral(e float64, k int, first, ambient, a, b float64) scaled {
+func relaxIntegral(e float64, k int, first, ambient, a, s float64) scaled {
 	r := relaxation{u: e / ambient, k: k}
 	off := first - ambient
 	if a > 0 {
 		off *= math.Exp(-a)
 	}
-	t0, t1 := ambient+off, ambient+off*math.Exp(a-b)
-	w0, w1 := off/t0, off*math.Exp(a-b)/t1
-	width := -math.Expm1(a-b) * off / t0 * (ambient / t1) // w0 - w1 without cancellation
+	if math.Abs(off)*(1+math.Abs(r.u)) < arrived*ambient {
+		return holdIntegral(e, k, ambient, s)
+	}
+	lost := -math.Expm1(-s) * off
+	w0, w1 := off/(ambient+off), (off-lost)/(ambient+off-lost)
+	width := lost / (ambient + off) * (1 - w1) // w0 - w1 without cancellation
 	var m, ln float64
 	if r.u*off >= 0 { // the exponent falls towards the ambient temperature
 		ln = r.u * w0
-		m = (b-a)*math.Exp(-ln) - r.march(w0, -width, ln, math.Exp(-ln))
+		m = s*math.Exp(-ln) - r.march(w0, -width, ln, math.Exp(-ln))
 	} else {
-		m, ln = r.rising(w0, w1, width, b-a)
+		m, ln = r.rising(w0, w1, width, s)
 	}
 	if k == 1 {
 		m /= ambient
 	}
 	return scaled{m, ln - r.u}
 }
+
+// arrived is how near T/ambient must be to 1, over the exponent, to be it: half an ulp is 1e-16.
+const arrived = 1e-18
 
 // relaxation is what the integrand knows.
 type relaxation struct {
@@ -78,7 +84,7 @@ func (r relaxation) march(from, width, ln, base float64) float64 {
 
 // step is the width of the panel at w with left still to do.
 func (r relaxation) step(w, left float64, pole bool) float64 {
-	most := math.Min(math.Abs(left), rise16/math.Abs(r.u))
+	most := math.Min(math.Abs(left), widest/math.Abs(r.u))
 	if left < 0 { // away from the pole at 1
 		most = math.Min(most, 2*(1-w))
 	} else {
@@ -96,14 +102,21 @@ func (r relaxation) panel(w, step, ln, base float64) float64 {
 	if base == 0 {
 		room = math.Min(room, math.Abs(w))
 	}
-	sum := 0.0
+	sum, middle := 0.0, w+step/2
+	centre := math.Exp(r.u*middle - ln)
 	for _, n := range gauss(math.Abs(r.u*step), room/math.Abs(step)) {
-		x := w + n.x*step
-		f := math.Exp(r.u*x - ln)
-		if r.k == 1 {
-			f -= x * f
-		}
-		sum += n.w * ((f - base) / (x - x*x))
+		x := n.x * step
+		f := math.Exp(r.u * x)
+		sum += n.w * r.both(middle-x, middle+x, centre/f-base, centre*f-base, base)
 	}
 	return sum
+}
+
+// both is the sum of the integrand at x and y, from e^(u x - ln) - base and e^(u y - ln) - base.
+func (r relaxation) both(x, y, atX, atY, base float64) float64 {
+	if r.k == 1 {
+		atX, atY = atX-x*(atX+base), atY-y*(atY+base)
+	}
+	x, y = x-x*x, y-y*y
+	return (atX*y + atY*x) / (x * y)
 }

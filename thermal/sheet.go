@@ -148,7 +148,7 @@ const (
 
 // sheetTol is the difference between the Gauss and the Kronrod sum of a panel, relative to the integral so far, at which
 // the panel is taken. The error of the latter is about the 1.5th power of it.
-const sheetTol = 1e-9
+const sheetTol = 1e-7
 
 // arrhenius is the integral between t0 and t1: a hold until the front of cooling or heat arrives, then panels in ln t, a
 // factor of 16 each and halved where needed.
