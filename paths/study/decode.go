@@ -3,7 +3,6 @@ package study
 import (
 	"errors"
 	"fmt"
-	"math"
 	"slices"
 	"strings"
 	"unicode/utf8"
@@ -252,12 +251,15 @@ func (d *decoder) within(n *node, x float64, b bound) bool {
 	return false
 }
 
+// Extremes of plain numbers, which no factor or scatter needs to pass.
+const leastNumber, mostNumber = 1e-12, 1e12
+
 // number returns a plain number above zero.
 func (d *decoder) number(n *node, remedy string) (float64, bool) {
 	if !d.is(n, numberNode, remedy) {
 		return 0, false
 	}
-	if !(n.number > 0) || n.number > math.MaxFloat32 {
+	if !(n.number >= leastNumber && n.number <= mostNumber) {
 		d.report(n, "not a usable number above zero", remedy)
 		return 0, false
 	}

@@ -11,6 +11,9 @@ import (
 // a free value, and every free value knows every zone and rim.
 const maxZones = 500
 
+// atom is a length, m, below which nothing in a crystal has a width.
+const atom = 1e-10
+
 // crystals reads every [[crystal]].
 func (d *decoder) crystals(root *node) []Crystal {
 	list := d.need(root, "crystal", "write one [[crystal]] with name, mineral, shape, zones and one [[crystal.element]]")
@@ -98,7 +101,11 @@ func (d *decoder) zone(n *node, seen map[string]int) Zone {
 	if v := d.need(n, "name", `write a name, such as name = "core"`); v != nil {
 		z.Name = d.zoneName(v, seen)
 	}
-	z.Width, _ = d.quantity(d.need(n, "width", `write a width, such as width = "140 um"`), width)
+	w := d.need(n, "width", `write a width, such as width = "140 um"`)
+	z.Width, _ = d.quantity(w, width)
+	if 0 < z.Width && z.Width < atom {
+		d.report(w, "thinner than an atom", "check the unit")
+	}
 	if v := n.get("times"); v != nil {
 		z.Times, _ = d.number(v, "write the factor on the diffusivity as a number, such as times = 0.1")
 	}

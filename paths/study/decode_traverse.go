@@ -101,6 +101,8 @@ func (d *decoder) spot(n *node) traverse.Spot {
 	case err != nil:
 		d.reportError(n, err)
 		return traverse.Spot{}
+	case s.Kind != traverse.Point && s.Width < atom:
+		d.report(n, "narrower than an atom", `check the unit, or write "point"`)
 	case s.Width > width.top:
 		d.report(n, "wider than "+width.topText, "check the unit")
 	}

@@ -6,6 +6,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"bankfire/diffusion"
 )
 
 // FuzzParse holds that no text makes the reader panic, that what it refuses it
@@ -121,6 +123,9 @@ func finiteProblem(t *testing.T, c *Crystal, e *Element, p *Path) {
 		mustBeFinite(t, "prior", v.Prior.Value, v.Prior.Sigma)
 	}
 	mustBeFinite(t, "law", problem.Law.LnD(1000))
+	if _, err := diffusion.Compile(problem, diffusion.Options{}); err != nil {
+		t.Fatalf("accepted, but the solver refuses it: %v", err)
+	}
 	if e.Traverse != nil {
 		mustBeFinite(t, "traverse", e.Traverse.Position...)
 		mustBeFinite(t, "traverse", e.Traverse.Value...)
