@@ -1,0 +1,41 @@
+package figure
+
+import "image/color"
+
+// Colours from ember to slate. Paths that reproduce the traverse are embers, drawn
+// thicker and unbroken first; the others are slates. Within each the lightness changes from
+// one to the next and so does the dash, so that lines can be told apart in grey and by any eye.
+var (
+	ink   = rgb(0x24282c) // text, points
+	iron  = rgb(0x5f666c) // axes, small text
+	mist  = rgb(0x9aa1a7) // thresholds, leaders
+	ash   = rgb(0xf1e9e0) // the band of two sigma
+	paper = rgb(0xffffff)
+)
+
+// Palette and dashes are fixed tables.
+var (
+	embers = []color.RGBA{rgb(0x9c1c12), rgb(0xdb6a1c), rgb(0x5a140e), rgb(0xcf9a2e)}
+	slates = []color.RGBA{rgb(0x33475a), rgb(0x7f97aa), rgb(0x4f7391), rgb(0xa3b4c1)}
+	dashes = [][]float64{nil, {5, 2}, {8, 1.8, 1.6, 1.8}, {1.8, 1.4}, {10, 3}}
+)
+
+func rgb(hex uint32) color.RGBA {
+	return color.RGBA{uint8(hex >> 16), uint8(hex >> 8), uint8(hex), 0xff}
+}
+
+// looksOf gives every path its pen. Four colours and five dashes repeat after twenty paths.
+func looksOf(paths []Path) []pen {
+	out := make([]pen, len(paths))
+	var ember, slate int
+	for i := range paths {
+		if paths[i].Reproduces {
+			out[i] = pen{1.4, embers[ember%len(embers)], dashes[ember%len(dashes)]}
+			ember++
+		} else {
+			out[i] = pen{0.9, slates[slate%len(slates)], dashes[(slate+1)%len(dashes)]}
+			slate++
+		}
+	}
+	return out
+}
