@@ -1,0 +1,112 @@
+// Package failing has a disk for tests on which any one operation can be made to fail.
+//
+// Count the operations of a run without a failure, then run again with At from 1 to
+// that count.
+package failing
+
+import (
+	"errors"
+
+	"bankfire/cmd/bankfire/internal/results"
+)
+
+// Mode is what becomes of the operations from the failing one on.
+type Mode int
+
+// The modes.
+const (
+	Once   Mode = iota // one operation fails, the others work
+	Dead               // all from that one on fail
+	Killed             // the program ends there: a panic with ErrFull
+)
+
+// Modes lists them for tests.
+var Modes = map[string]Mode{"once": Once, "dead": Dead, "killed": Killed}
+
+// ErrFull is what a failing operation returns.
+var ErrFull = errors.New("trial disk full")
+
+// Disk is the disk of the operating system with a failure. Half of the data of a
+// write that fails is written.
+type Disk struct {
+	At    int // the operation that fails, from 1; 0 is none
+	Mode  Mode
+	Count int // operations so far
+}
+
+// fails counts an operation and returns its error.
+func (d *Disk) fails() error {
+	d.Count++
+	switch {
+	case d.At == 0 || d.Count < d.At || d.Count > d.At && d.Mode == Once:
+		return nil
+	case d.Mode == Killed:
+		panic(ErrFull)
+	}
+	return ErrFull
+}
+
+func (d *Disk) do(operation func() error) error {
+	if err := d.fails(); err != nil {
+		return err
+	}
+	return operation()
+}
+
+// Mkdir is an operation.
+func (d *Disk) Mkdir(name string) error {
+	return d.do(func() error { return results.OnDisk{}.Mkdir(name) })
+}
+
+// Rename is an operation.
+func (d *Disk) Rename(from, to string) error {
+	return d.do(func() error { return results.OnDisk{}.Rename(from, to) })
+}
+
+// Remove is an operation.
+func (d *Disk) Remove(name string) error {
+	return d.do(func() error { return results.OnDisk{}.Remove(name) })
+}
+
+// SyncFolder is an operation.
+func (d *Disk) SyncFolder(name string) error {
+	return d.do(func() error { return results.OnDisk{}.SyncFolder(name) })
+}
+
+// Create is an operation, and so is whatever is done to the file.
+func (d *Disk) Create(name string) (results.Sink, error) {
+	if err := d.fails(); err != nil {
+		return nil, err
+	}
+	f, err := results.OnDisk{}.Create(name)
+	if err != nil {
+		return nil, err
+	}
+	return &sink{f, d}, nil
+}
+
+type sink struct {
+	results.Sink
+	disk *Disk
+}
+
+func (s *sink) Write(data []byte) (n int, err error) {
+	failed := true
+	defer func() {
+		if failed {
+			n, _ = s.Sink.Write(data[:len(data)/2])
+		}
+	}()
+	if err := s.disk.fails(); err != nil {
+		return 0, err
+	}
+	failed = false
+	return s.Sink.Write(data)
+}
+
+func (s *sink) Sync() error { return s.disk.do(s.Sink.Sync) }
+
+// Close closes the file also where it fails.
+func (s *sink) Close() error {
+	return errors.Join(s.Sink.Close(), s.disk.fails())
+}
