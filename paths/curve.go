@@ -17,29 +17,22 @@ type Curve struct {
 
 // At returns chi-square at lnM.
 func (c *Curve) At(lnM float64) float64 {
-	i, ok := c.interval(lnM)
-	if !ok {
-		return c.ChiSq[i]
-	}
-	chi, _ := c.piece(i).at(lnM)
+	chi, _ := c.at(lnM)
 	return chi
 }
 
-// interval returns the knot below lnM, or false and the nearest knot where
-// lnM lies beyond them.
-func (c *Curve) interval(lnM float64) (int, bool) {
-	last := len(c.LnM) - 1
-	switch {
-	case lnM <= c.LnM[0]:
-		return 0, false
-	case lnM >= c.LnM[last]:
-		return last, false
-	}
+// at returns value and slope at lnM.
+func (c *Curve) at(lnM float64) (value, slope float64) {
 	i, found := slices.BinarySearch(c.LnM, lnM)
-	if !found {
-		i--
+	switch {
+	case found:
+		return c.ChiSq[i], c.Slope[i]
+	case i == 0:
+		return c.ChiSq[0], 0
+	case i == len(c.LnM):
+		return c.ChiSq[i-1], 0
 	}
-	return i, true
+	return c.piece(i - 1).at(lnM)
 }
 
 // cubic is one piece of a curve: value and slope at both ends.
@@ -59,20 +52,40 @@ func (q cubic) at(x float64) (value, slope float64) {
 	return q.y0 + t*(h*q.s0+t*(b+t*a)), q.s0 + t*(2*b+3*t*a)/h
 }
 
-// lowest returns the least value of the piece and where it is.
-func (q cubic) lowest() (x, y float64) {
-	x, y = q.x0, q.y0
-	if q.y1 < y {
-		x, y = q.x1, q.y1
-	}
+// turns returns the ends of the piece and, between them, where it turns,
+// ascending: from each to the next it only rises or only falls.
+func (q cubic) turns() []float64 {
 	h, rise := q.x1-q.x0, q.y1-q.y0
 	b := 3*rise - h*(2*q.s0+q.s1)
 	a := h*(q.s0+q.s1) - 2*rise
+	xs := append(make([]float64, 0, 4), q.x0, q.x1)
 	for _, t := range quadraticRoots(3*a, 2*b, h*q.s0) {
-		if t > 0 && t < 1 {
-			if v, _ := q.at(q.x0 + t*h); v < y {
-				x, y = q.x0+t*h, v
-			}
+		if x := q.x0 + t*h; x > q.x0 && x < q.x1 {
+			xs = append(xs, x)
+		}
+	}
+	slices.Sort(xs)
+	return xs
+}
+
+// value returns the piece at x, at its ends exactly their values.
+func (q cubic) value(x float64) float64 {
+	switch x {
+	case q.x0:
+		return q.y0
+	case q.x1:
+		return q.y1
+	}
+	y, _ := q.at(x)
+	return y
+}
+
+// lowest returns the least value of the piece and where it is.
+func (q cubic) lowest() (x, y float64) {
+	y = math.Inf(1)
+	for _, turn := range q.turns() {
+		if v := q.value(turn); v < y {
+			x, y = turn, v
 		}
 	}
 	return x, y
@@ -127,8 +140,14 @@ func (c *Curve) Below(level float64) (lo, hi float64) {
 func (c *Curve) crossing(level float64, from, step int) float64 {
 	for i := from; i+step >= 0 && i+step < len(c.LnM); i += step {
 		q := c.piece(min(i, i+step))
-		if low, least := q.lowest(); least <= level {
-			return bisect(func(x float64) bool { v, _ := q.at(x); return v > level }, c.LnM[i], low)
+		turns := q.turns()
+		if step < 0 {
+			slices.Reverse(turns)
+		}
+		for k := 1; k < len(turns); k++ {
+			if q.value(turns[k]) <= level {
+				return bisect(func(x float64) bool { return q.value(x) > level }, turns[k-1], turns[k])
+			}
 		}
 	}
 	return math.NaN()
@@ -152,16 +171,18 @@ func bisect(far func(float64) bool, outside, inside float64) float64 {
 // than level.
 func (c *Curve) Ranges(level float64) int {
 	n := 0
-	inside := c.ChiSq[0] <= level
-	if inside {
-		n++
-	}
-	for i := range len(c.LnM) - 1 {
-		_, low := c.piece(i).lowest()
-		if low <= level && !inside {
+	inside := false
+	see := func(y float64) {
+		if y <= level && !inside {
 			n++
 		}
-		inside = c.ChiSq[i+1] <= level
+		inside = y <= level
+	}
+	for i := range len(c.LnM) - 1 {
+		q := c.piece(i)
+		for _, x := range q.turns() {
+			see(q.value(x))
+		}
 	}
 	return n
 }
@@ -194,7 +215,9 @@ func (c *Curve) add(lnM, chiSq float64) {
 	}
 }
 
-// Sum returns the joint curve of several profiles that share one multiplier.
+// Sum returns the joint curve of several profiles that share one multiplier,
+// which all know over the same range. Between any two knots of any of them all
+// are cubic, so it is their sum everywhere. Sum panics if there are none.
 func Sum(cs []Curve) Curve {
 	if len(cs) == 0 {
 		panic("paths: the sum of no curves")
@@ -208,13 +231,13 @@ func Sum(cs []Curve) Curve {
 	slices.Sort(sum.LnM)
 	sum.LnM = slices.Compact(sum.LnM)
 	for _, x := range sum.LnM {
-		chi := 0.0
+		chi, slope := 0.0, 0.0
 		for i := range cs {
-			chi += cs[i].At(x)
+			v, s := cs[i].at(x)
+			chi, slope = chi+v, slope+s
 		}
-		sum.ChiSq = append(sum.ChiSq, chi)
+		sum.ChiSq, sum.Slope = append(sum.ChiSq, chi), append(sum.Slope, slope)
 	}
-	sum.settleSlopes()
 	return sum
 }
 
