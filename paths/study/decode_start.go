@@ -28,7 +28,7 @@ func (d *decoder) start(element *node, c *Crystal, u *units) Start {
 		d.report(element, "all plateaux are free, but there is no traverse to fit them to", example)
 	}
 	if edge := n.get("edge"); edge != nil {
-		s.Edge = d.edge(edge)
+		s.Edge.Value = d.edge(edge)
 	}
 	return s
 }

@@ -18,6 +18,9 @@ import (
 //
 //	profile = answer + sum of (value - base) x column,  base 0 or Prior.Value.
 //
+// Edges have their middle width: where the width is not Fixed, set Edge of all
+// zones but the last to the one wanted.
+//
 // Moments of rims are resolved on the path. The error is a *thermal.InputError
 // at the rim whose moment the path does not have, or whose file does not cover
 // the time it is in force.
@@ -64,7 +67,7 @@ func (b *builder) zones() []diffusion.Zone {
 		r += z.Width
 		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: z.Times}
 		if i < len(zones)-1 {
-			zones[i].Edge = b.e.Start.Edge
+			zones[i].Edge = b.e.Start.Edge.Middle()
 		}
 	}
 	return zones

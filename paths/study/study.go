@@ -14,6 +14,7 @@ type Study struct {
 	File       string  // the study file as the user named it
 	Confidence float64 // of the verdicts, 0 to 1; 0.95 where the study says nothing
 	Thresholds []Threshold
+	Limits     Limits
 	Paths      []Path // at least one, names differ
 	Crystals   []Crystal
 	Inputs     []Input  // the study first, then every other file in the order of its first use
@@ -36,7 +37,38 @@ type Threshold struct {
 type Path struct {
 	Name     string
 	History  *thermal.History
-	Eruption float64 // that of History, s from the start; the end of the path where the study says nothing
+	Eruption float64  // that of History, s from the start; the end of the path where the study says nothing
+	Barred   []string // why the crystals cannot have seen it: moments of their rims that it does not have; see also Limits
+	Place    thermal.Place
+}
+
+// Limits are what the user rules out whatever the crystals say. The zero value
+// rules out nothing. Life and all times stop at eruption.
+type Limits struct {
+	Life    [2]float64  // shortest and longest time from start to eruption, s; 0 is none
+	Lowest  float64     // coldest that a path may be before eruption, K; 0 is none
+	Above   []TimeLimit // times spent above temperatures
+	Between []Interval  // times between two moments
+	Place   thermal.Place
+}
+
+// TimeLimit bounds the time that a path spends above a temperature before
+// eruption.
+type TimeLimit struct {
+	Name    string  // of the threshold; "" where the temperature was typed
+	Temp    float64 // K
+	Stretch bool    // the longest time without a break, not the total
+	Least   float64 // s, 0 is none
+	Most    float64 // s, +Inf is none; 0 is never
+	Place   thermal.Place
+}
+
+// Interval bounds the time between two moments of a path. A path that does not
+// have both, or has them the other way round, is barred.
+type Interval struct {
+	From, To thermal.Moment
+	Least    float64 // s, 0 is none
+	Most     float64 // s, +Inf is none
 	Place    thermal.Place
 }
 
@@ -67,7 +99,32 @@ type Element struct {
 	Inner      []Rim              // nil is sealed: at the centre, symmetry
 	Rims       []Rim              // at least one
 	Traverse   *traverse.Traverse // nil if nothing was measured; then no value is free
+	Tilt       Nuisance           // of the boundaries against the measured line, rad, 0 to below a right angle; see traverse.Place
+	Origin     Nuisance           // m, added to every measured position counted as in the file; see traverse.Place
+	Scatter    bool               // scatter beyond the errors is fitted
 	Place      thermal.Place
+}
+
+// Nuisance is a value of no interest by itself, of which the study says more or
+// less: Value exactly; Value with a Gaussian prior of standard deviation Sigma;
+// or that it is free between Lo and Hi, evenly likely inside.
+type Nuisance struct {
+	Value, Sigma float64 // unless Ranged; Sigma 0 is exact
+	Lo, Hi       float64 // Lo < Hi if Ranged, else both 0
+}
+
+// Fixed reports whether the value is known exactly.
+func (n Nuisance) Fixed() bool { return n.Sigma == 0 && !n.Ranged() }
+
+// Ranged reports whether the value is free within a range.
+func (n Nuisance) Ranged() bool { return n.Lo < n.Hi }
+
+// Middle returns the value to begin with: Value, or the middle of the range.
+func (n Nuisance) Middle() float64 {
+	if n.Ranged() {
+		return n.Lo + (n.Hi-n.Lo)/2
+	}
+	return n.Value
 }
 
 // Law is the diffusivity of an element with what is known about it.
@@ -89,7 +146,7 @@ type Plateau struct {
 // Start is an element's profile before diffusion.
 type Start struct {
 	Zones []Plateau // one a zone
-	Edge  float64   // width of the edge between two zones, m: an error function of standard deviation Edge/4; 0 is a jump
+	Edge  Nuisance  // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
 }
 
 // Rim says what holds at an end of the crystal from a moment on, until the

@@ -138,7 +138,7 @@ func TestEveryKeyElement(t *testing.T) {
 	near(t, "mantle, bare number in wt%", e.Start.Zones[1].Value, 92)
 	near(t, "skin", e.Start.Zones[2].Value, 58)
 	near(t, "skin's error", e.Start.Zones[2].Sigma, 1.5)
-	near(t, "edge", e.Start.Edge, 0.4*um)
+	near(t, "edge", e.Start.Edge.Value, 0.4*um)
 }
 
 func TestEveryKeyRims(t *testing.T) {
@@ -197,7 +197,7 @@ func TestDefaults(t *testing.T) {
 	}
 	c := s.Crystals[0]
 	e := c.Elements[0]
-	if !e.Start.Zones[0].Free || !e.Start.Zones[1].Free || e.Start.Edge != 0 || !c.Mirrored(&e) {
+	if !e.Start.Zones[0].Free || !e.Start.Zones[1].Free || e.Start.Edge != (Nuisance{}) || !c.Mirrored(&e) {
 		t.Errorf("start %+v", e.Start)
 	}
 	if len(e.Rims) != 1 || e.Rims[0].Kind != diffusion.Held || e.Rims[0].Zone != 1 {

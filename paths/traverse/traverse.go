@@ -14,11 +14,15 @@ import (
 type Traverse struct {
 	Name     string    // of the file
 	Unit     string    // of Value and Sigma: ppm, wt%, mole fraction or %
-	Position []float64 // m from the crystal's centre (a slab's inner end), rising or falling throughout as in the file
+	Position []float64 // m from the crystal's centre (a slab's inner end), rising or falling throughout as in the file; as typed, see Place
 	Value    []float64
 	Sigma    []float64 // one standard deviation, above 0
+	Limit    []bool    // true: below detection, Value is the limit, Sigma that of a value at it, Value/3; nil = none
+	Grey     bool      // relative values: an unknown scale and offset lie between Value and the element's unit
 	Line     []int     // where each point stands in the file, from 1
 	Spot     Spot
+	Zero     Zero     // where positions count from in the file
+	Size     float64  // position of the rim from the centre, m; 0 = not known
 	Notes    []string // what was not taken exactly as typed
 }
 
@@ -30,6 +34,31 @@ const (
 	Centre Zero = iota // outwards from the centre, or from the inner end of a slab
 	Rim                // inwards from the rim
 )
+
+// Place sets dst to the positions of the points, m from the centre, where the
+// zero of the file is off by origin (m) and the line meets the boundaries at a
+// slant of tilt (rad):
+//
+//	true distance from the zero = (typed distance + origin) cos tilt.
+//
+// Place(dst, 0, 0) is Position. It panics if dst is not as long as Position or
+// if Size is needed and not known.
+func (t *Traverse) Place(dst []float64, origin, tilt float64) {
+	if len(dst) != len(t.Position) {
+		panic(fmt.Sprintf("traverse: len(dst) %d != points %d", len(dst), len(t.Position)))
+	}
+	if t.Zero == Rim && !(t.Size > 0) {
+		panic("traverse: positions count from a rim that is not known")
+	}
+	shrink := math.Cos(tilt)
+	for i, x := range t.Position {
+		if t.Zero == Rim {
+			dst[i] = t.Size - float64((t.Size-x+origin)*shrink)
+		} else {
+			dst[i] = (x + origin) * shrink
+		}
+	}
+}
 
 // Options say how a file of a traverse is to be read.
 type Options struct {
@@ -68,7 +97,7 @@ func Read(name string, r io.Reader, o Options) (*Traverse, error) {
 	if err != nil {
 		return nil, err
 	}
-	d := reader{sheet: s, o: o, lines: map[float64]int{}, t: &Traverse{Name: name, Unit: s.columns[valueColumn].unit, Spot: o.Spot}}
+	d := reader{sheet: s, o: o, lines: map[float64]int{}, t: &Traverse{Name: name, Unit: s.columns[valueColumn].unit, Spot: o.Spot, Zero: o.Zero, Size: o.Size}}
 	if err := d.bindErrors(); err != nil {
 		return nil, err
 	}

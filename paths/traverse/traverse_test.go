@@ -111,6 +111,7 @@ func TestRead(t *testing.T) {
 			}
 			want := test.want
 			want.Name, want.Spot, want.Line = "ti.csv", o.Spot, test.lines
+			want.Zero, want.Size = o.Zero, o.Size
 			if want.Unit == "" {
 				want.Unit = "ppm"
 			}

@@ -103,6 +103,21 @@ func (t *Traverse) Weights(faces []float64, mirrored bool) (*Weights, error) {
 	return NewWeights(faces, mirrored, t.Spot, t.Position)
 }
 
+// WeightsAt is Weights for the positions that [Traverse.Place] gives for an
+// origin, m, and a tilt, rad. A position that these move out of the crystal is
+// taken at the end that it left by: it was measured in the crystal.
+func (t *Traverse) WeightsAt(faces []float64, mirrored bool, origin, tilt float64) *Weights {
+	t.Spot.check()
+	g := newGrid(faces, mirrored)
+	at := make([]float64, len(t.Position))
+	t.Place(at, origin, tilt)
+	w := &Weights{Row: make([]Sparse, len(at))}
+	for i, x := range at {
+		w.Row[i] = g.row(t.Spot, math.Min(math.Max(x, g.faces[0]), g.faces[len(g.faces)-1]))
+	}
+	return w
+}
+
 // grid is the cells of a crystal; of a mirrored one, those of both halves.
 type grid struct {
 	faces  []float64 // ascending, m
