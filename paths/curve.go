@@ -248,8 +248,9 @@ const (
 	scanKnots    = 25
 	concern      = 30.0 // chi-square above the lowest within which the curve must be right
 	curveError   = 0.02 // chi-square, largest miss of the curve half way between knots
+	dipError     = 0.1  // the same beyond concern, of what lies beyond
 	shiftError   = 2e-3 // of lnM: shift factors are good to well under 1 %
-	leastSpacing = 1e-4 // of lnM, below which no interval is halved
+	leastSpacing = 1e-4 // of lnM: no interval below is halved and no two knots are nearer
 	mostRounds   = 16
 )
 
@@ -289,40 +290,74 @@ func scan(points, free int, chiSq func(lnM []float64) ([]float64, error)) (Curve
 func (c *Curve) refine(add func([]float64) ([]float64, error)) error {
 	settled := map[[2]float64]bool{}
 	for range mostRounds {
-		_, best := c.Lowest()
-		var mids, told []float64
-		for i := range len(c.LnM) - 1 {
-			q := c.piece(i)
-			_, low := q.lowest()
-			if low > best+concern || q.x1-q.x0 < leastSpacing || settled[[2]float64{q.x0, q.x1}] {
-				continue
-			}
-			mid := q.x0 + (q.x1-q.x0)/2
-			value, _ := q.at(mid)
-			mids, told = append(mids, mid), append(told, value)
-		}
-		if len(mids) == 0 {
+		halvings := c.halvings(settled)
+		if len(halvings) == 0 {
 			return nil
+		}
+		mids := make([]float64, len(halvings))
+		for k, h := range halvings {
+			mids[k] = h.mid
 		}
 		values, err := add(mids)
 		if err != nil {
 			return err
 		}
-		for k, mid := range mids {
-			if math.Abs(values[k]-told[k]) <= curveError {
-				i, _ := slices.BinarySearch(c.LnM, mid)
-				settled[[2]float64{c.LnM[i-1], mid}] = true
-				settled[[2]float64{mid, c.LnM[i+1]}] = true
+		for k, h := range halvings {
+			if math.Abs(values[k]-h.told) <= h.allowed {
+				settled[[2]float64{h.x0, h.mid}] = true
+				settled[[2]float64{h.mid, h.x1}] = true
 			}
 		}
 	}
 	return nil
 }
 
-// polish puts knots at the lowest point until it stays.
+// halving is an interval to be halved, with what the curve foretells half way
+// and by how much it may be wrong.
+type halving struct{ x0, mid, x1, told, allowed float64 }
+
+// halvings returns the intervals to be halved that are not settled: those
+// within concern of the lowest point, and those that hold a lowest point of
+// their own, because the curve between few knots may pass far above the truth.
+// It is followed down until it is known to a tenth of what it lies above the
+// lowest.
+func (c *Curve) halvings(settled map[[2]float64]bool) []halving {
+	_, best := c.Lowest()
+	var list []halving
+	for i := range len(c.LnM) - 1 {
+		q := c.piece(i)
+		x, low := q.lowest()
+		far := math.Max(0, low-best-concern)
+		if q.x1-q.x0 < 2*leastSpacing || settled[[2]float64{q.x0, q.x1}] || far > 0 && !c.dips(i, x) {
+			continue
+		}
+		mid := q.x0 + (q.x1-q.x0)/2
+		list = append(list, halving{q.x0, mid, q.x1, q.value(mid), curveError + dipError*far})
+	}
+	return list
+}
+
+// dips reports whether x, the lowest point of piece i, is also lower than what
+// lies on either side of the piece.
+func (c *Curve) dips(i int, x float64) bool {
+	last := len(c.LnM) - 1
+	switch x {
+	case c.LnM[i]:
+		return i == 0 || c.ChiSq[i-1] >= c.ChiSq[i]
+	case c.LnM[i+1]:
+		return i+1 == last || c.ChiSq[i+2] >= c.ChiSq[i+1]
+	}
+	return true
+}
+
+// polish puts knots at the lowest point until it stays, or has a knot so near
+// that the slope between the two would be one of round-off.
 func (c *Curve) polish(add func([]float64) ([]float64, error)) error {
 	x, _ := c.Lowest()
 	for range mostRounds {
+		if c.nearest(x) < leastSpacing {
+			return nil
+		}
 		if _, err := add([]float64{x}); err != nil {
 			return err
 		}
@@ -333,4 +368,14 @@ func (c *Curve) polish(add func([]float64) ([]float64, error)) error {
 		x = next
 	}
 	return nil
+}
+
+// nearest returns how far the nearest knot is from lnM.
+func (c *Curve) nearest(lnM float64) float64 {
+	i, _ := slices.BinarySearch(c.LnM, lnM)
+	least := math.Inf(1)
+	for _, k := range c.LnM[max(i-1, 0):min(i+1, len(c.LnM))] {
+		least = math.Min(least, math.Abs(k-lnM))
+	}
+	return least
 }

@@ -305,3 +305,40 @@ func TestScan(t *testing.T) {
 		})
 	}
 }
+
+// Of two minima the deeper is found, whatever the curve through the first few
+// knots looks like.
+func TestScanFindsTheDeeperWell(t *testing.T) {
+	rng := rand.New(rand.NewPCG(4, 2))
+	for range 500 {
+		height := math.Pow(10, 1+6*rng.Float64())
+		left, right := -11+8*rng.Float64(), 3+8*rng.Float64()
+		shallower := 3.0 + 10*rng.Float64() // by so much chi-square
+		f := func(x float64) float64 { return well(height+shallower, left)(x) + well(height, right)(x) }
+		c, _ := scanned(t, f)
+		x, low := c.Lowest()
+		// the other well has died away at a distance of 6 and more
+		if !(math.Abs(x-left) <= 0.01) || !(math.Abs(low-height) <= 2*curveError) {
+			t.Fatalf("wells of %g at %g and %g at %g: lowest %g at %g", height+shallower, left, height, right, low, x)
+		}
+	}
+}
+
+// Chi-square carries the round-off of a solve. It must not be taken for a
+// slope where a minimum falls on a knot but for round-off.
+func TestScanBearsRoundOff(t *testing.T) {
+	rng := rand.New(rand.NewPCG(4, 3))
+	for range 200 {
+		at := math.Pow(10, -15+10*rng.Float64()) // of the knot at 0
+		f := func(x float64) float64 {
+			noise := 1e-9 * math.Sin(1e6*x+1e17*(x-at)) // of the last digits of some 1e5
+			return 400*(x-at)*(x-at) + noise
+		}
+		c, _ := scanned(t, f)
+		lo, hi := c.Below(1)
+		x, low := c.Lowest()
+		if !(math.Abs(x) <= 0.01) || !(math.Abs(low) <= 2*curveError) || !(math.Abs(hi-0.05) <= 0.002) || !(math.Abs(lo+0.05) <= 0.002) {
+			t.Fatalf("minimum at %g: found %g at %g, 1 above it from %g to %g, want -0.05 to 0.05", at, low, x, lo, hi)
+		}
+	}
+}
