@@ -7,9 +7,9 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-// rankCut is the singular value, as a part of the largest, below which a
-// combination of free values is one that the data do not see. It is left at
-// its base.
+// rankCut is the part of the largest below which a column, or a singular value
+// of columns brought to equal length, is one of round-off: a free value or a
+// combination of free values that the data do not see. It is left at its base.
 const rankCut = 1e-10
 
 // fit is a weighted linear least-squares problem: data, and free values with
@@ -41,25 +41,52 @@ func (f *fit) solve(seen [][]float64) fitted {
 		return fitted{chiSq: dot(b, b)}
 	}
 	a, rhs := f.system(seen, b)
+	lengths := f.level(a)
+	out := fitted{values: make([]float64, k), sigmas: make([]float64, k)}
 	var svd mat.SVD
 	if !svd.Factorize(a, mat.SVDThin) {
-		return fitted{chiSq: math.NaN()}
+		out.chiSq = math.NaN()
+		return out
 	}
-	out := fitted{values: make([]float64, k), sigmas: make([]float64, k)}
 	f.invert(&svd, rhs, &out)
 	x := mat.NewVecDense(k, out.values)
 	var residual mat.VecDense
 	residual.MulVec(a, x)
 	residual.SubVec(rhs, &residual)
 	out.chiSq = mat.Dot(&residual, &residual)
+	for j, l := range lengths {
+		out.values[j] /= l
+		out.sigmas[j] /= l
+	}
 	return out
+}
+
+// level brings the columns to length 1, so that a narrow prior on one value
+// does not hide the others, and returns what they were divided by. Columns that
+// are nothing but round-off become zero.
+func (f *fit) level(a *mat.Dense) []float64 {
+	n, k := len(f.obs), len(f.free)
+	longest := 0.0
+	for j := range k {
+		longest = math.Max(longest, mat.Norm(a.Slice(0, n, j, j+1), 2))
+	}
+	lengths := make([]float64, k)
+	for j := range k {
+		column := a.ColView(j).(*mat.VecDense)
+		lengths[j] = mat.Norm(column, 2)
+		if !f.free[j].HasPrior && lengths[j] <= rankCut*longest {
+			lengths[j] = 1
+			column.Zero()
+		}
+		column.ScaleVec(1/lengths[j], column)
+	}
+	return lengths
 }
 
 // system stacks the data over the priors, each row divided by its sigma.
 func (f *fit) system(seen [][]float64, b []float64) (*mat.Dense, *mat.VecDense) {
 	n, k := len(f.obs), len(f.free)
-	rows := max(n+k, k)
-	a, rhs := mat.NewDense(rows, k, nil), mat.NewVecDense(rows, nil)
+	a, rhs := mat.NewDense(n+k, k, nil), mat.NewVecDense(n+k, nil)
 	for i, v := range b {
 		rhs.SetVec(i, v)
 		for j := range k {
