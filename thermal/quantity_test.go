@@ -39,6 +39,7 @@ var quantityTests = []struct {
 	{"2 kbar", Pressure, 2e8}, {"2 bar", Pressure, 2e5}, {"200 MPa", Pressure, 2e8}, {"0.2 GPa", Pressure, 2e8}, {"7 Pa", Pressure, 7},
 	{"92 ppm", Concentration, 92}, {"92 µg/g", Concentration, 92}, {"0.3 wt%", Concentration, 3000}, {"0.3 wt. %", Concentration, 3000},
 	{"0.3 mole fraction", Concentration, 0.3}, {"0.3 mol fraction", Concentration, 0.3}, {"30 %", Concentration, 30},
+	{"45 mol%", Concentration, 0.45}, {"88.5 Fo", Concentration, 88.5}, {"45 mol% An", Concentration, 45}, {"120 gray", Concentration, 120},
 	{"30%", Concentration, 30}, {"30 per cent", Concentration, 30}, {"30 percent", Concentration, 30},
 }
 
@@ -91,8 +92,8 @@ var refusedQuantities = []struct {
 	{"3 fortnights", Duration, `"3 fortnights": unknown unit "fortnights"; want s, min, h, day, yr, kyr or Myr`},
 	{"273 kJ", MolarEnergy, `"273 kJ": unit "kJ" is not per mole; write kJ/mol`},
 	{"273 KJ/mol", MolarEnergy, `"273 KJ/mol": unknown unit "KJ/mol"; did you mean kJ/mol? want kJ/mol, J/mol, kcal/mol, cal/mol or eV`},
-	{"92 ppmm", Concentration, `"92 ppmm": unknown unit "ppmm"; did you mean ppm? want ppm, wt%, mole fraction or %`},
-	{"45 mol%", Concentration, `"45 mol%": unit "mol%" is not known here; write 0.45 mole fraction for 45 mol%`},
+	{"92 ppmm", Concentration, `"92 ppmm": unknown unit "ppmm"; did you mean ppm? want ppm, wt%, mole fraction, mol%, %, Fo, An or grey`},
+	{"45 at%", Concentration, `"45 at%": unit "at%" counts the atoms of all elements; write mol%, wt% or ppm`},
 	{"7,5 um", Length, `"7,5 um": has a decimal comma; write 7.5, not 7,5`},
 	{"-0,25", Length, `"-0,25": has a decimal comma; write -0.25, not -0,25`},
 	{"1,000 yr", Duration, `"1,000 yr": has a comma in its number; write 1000 for a thousand and 1.0 for one, without commas`},
@@ -186,9 +187,9 @@ func TestParseUncertainRefuses(t *testing.T) {
 		dim  Dimension
 		want string
 	}{
-		{"92 +- 2", Concentration, `"92 +- 2": has no unit; want ppm, wt%, mole fraction or %, such as "92 +- 2 ppm"`},
-		{"92", Concentration, `"92": has no unit; want ppm, wt%, mole fraction or %, such as "92 ppm"`},
-		{"92 ppm +- 2", Concentration, `"92 ppm +- 2": has no unit; want ppm, wt%, mole fraction or %, such as "92 ppm +- 2 ppm"`},
+		{"92 +- 2", Concentration, `"92 +- 2": has no unit; want ppm, wt%, mole fraction, mol%, %, Fo, An or grey, such as "92 +- 2 ppm"`},
+		{"92", Concentration, `"92": has no unit; want ppm, wt%, mole fraction, mol%, %, Fo, An or grey, such as "92 ppm"`},
+		{"92 ppm +- 2", Concentration, `"92 ppm +- 2": has no unit; want ppm, wt%, mole fraction, mol%, %, Fo, An or grey, such as "92 ppm +- 2 ppm"`},
 		{"92 ppm +- 2 %", Concentration, `"92 ppm +- 2 %": has units that do not convert; want both in ppm`},
 		{"92 +- -2 ppm", Concentration, `"92 +- -2 ppm": has a negative error; want an error of at least 0`},
 		{"92 +- NaN ppm", Concentration, `"92 +- NaN ppm": is not a finite number; want a concentration such as "92 ppm"`},
@@ -228,7 +229,7 @@ func TestParseConcentration(t *testing.T) {
 	}
 	t.Run("refuses", func(t *testing.T) {
 		_, _, err := ParseConcentration("3 um")
-		checkRefused(t, err, "3 um", `"3 um": is a length; want a concentration in ppm, wt%, mole fraction or %`)
+		checkRefused(t, err, "3 um", `"3 um": is a length; want a concentration in ppm, wt%, mole fraction, mol%, %, Fo, An or grey`)
 		_, _, err = ParseConcentration("1 ppm +- 1e306 wt%")
 		checkRefused(t, err, "1 ppm +- 1e306 wt%",
 			`"1 ppm +- 1e306 wt%": is beyond the range of numbers; want a size between 1e-300 and 1e300 in SI units`)

@@ -21,7 +21,7 @@ const (
 	Velocity                       // m/s
 	MolarVolume                    // m3/mol
 	Pressure                       // Pa
-	Concentration                  // ppm where it was ppm or wt%, else the unit in which it was written
+	Concentration                  // ppm where it was ppm or wt%, mole fraction where it was that or mol%, else as it was written
 )
 
 // String is the dimension as a noun with its article, "a temperature".
@@ -53,7 +53,9 @@ func UnitName(name string, dim Dimension) (usual string, ok bool) {
 }
 
 // ConcentrationFactor is the factor by which a value in the unit from becomes one in the unit to. ppm and wt% are both by
-// mass, 1 wt% = 1e4 ppm; mole fraction and per cent convert only to themselves. ok is false if there is no factor.
+// mass, 1 wt% = 1e4 ppm, mole fraction and mol% both by moles; the others convert only to themselves. What Fo and An, 100
+// times the mole fraction of forsterite and of anorthite, are of an element depends on the element; grey levels are of
+// unknown scale. ok is false if there is no factor.
 func ConcentrationFactor(from, to string) (factor float64, ok bool) {
 	a, okA := findUnit(from, Concentration)
 	b, okB := findUnit(to, Concentration)
@@ -164,9 +166,13 @@ var dimensions = [...]dimension{
 		{name: "ppm", scale: 1, family: "mass", also: "ppmw,wt ppm,ug/g,mg/kg"},
 		{name: "wt%", scale: 1e4, family: "mass", also: "wt %,wt.%,wt. %,wt.-%,wt-%,mass%,mass %,weight %"},
 		{name: "mole fraction", scale: 1, family: "mole", also: "mol fraction,molar fraction"},
+		{name: "mol%", scale: 1e-2, family: "mole", also: "mol %,mol.%,mol. %,mole%,mole %"},
 		{name: "%", scale: 1, family: "cent", also: "per cent,percent"},
+		{name: "Fo", scale: 1, family: "Fo", also: "mol% Fo"},
+		{name: "An", scale: 1, family: "An", also: "mol% An"},
+		{name: "grey", scale: 1, family: "grey", also: "gray,grey level,grey levels,gray level,gray levels,counts,cps"},
 	}, traps: []trap{
-		{"mol%,mol %,mol. %,at%,at %,at. %,at.%", "is not known here", "write 0.45 mole fraction for 45 mol%"},
+		{"at%,at %,at. %,at.%", "counts the atoms of all elements", "write mol%, wt% or ppm"},
 		{"ppma,at ppm,at. ppm", "counts atoms; ppm here is by mass", "write mole fraction, or ppm by mass"},
 	}},
 }

@@ -92,6 +92,9 @@ func TestConcentrationFactor(t *testing.T) {
 		{"%", "%", 1, true},
 		{"mole fraction", "%", 0, false},
 		{"wt%", "%", 0, false},
+		{"mol%", "mole fraction", 0.01, true},
+		{"Fo", "mole fraction", 0, false},
+		{"grey", "%", 0, false},
 		{"um", "um", 0, false},
 	}
 	for _, test := range tests {

@@ -163,7 +163,7 @@ var refusals = []struct {
 	{name: "no unit", text: "x,Ti [ppm],2se [ppm]\n1,50,2\n", change: func(o *Options) { o.Position = "x" }, want: []string{
 		`ti.csv:1:1: column "x": no unit; write, for example, "x [nm]"`}},
 	{name: "unknown unit", text: "distance [um],Ti [ppmm],2se [ppm]\n1,50,2\n", change: func(o *Options) { o.Value = "Ti" }, want: []string{
-		`ti.csv:1:15: column "Ti [ppmm]": unknown unit "ppmm"; did you mean ppm? want ppm, wt%, mole fraction or %`}},
+		`ti.csv:1:15: column "Ti [ppmm]": unknown unit "ppmm"; did you mean ppm? want ppm, wt%, mole fraction, mol%, %, Fo, An or grey`}},
 	{name: "two units", text: "distance [nm],Ti [ppm],2se [ppm]\n1,50,2\n", want: []string{
 		`ti.csv:1:1: column "distance [nm]": its unit is nm, but the column asked for is in um; write the same unit in both places`}},
 	{name: "error in another family", text: "distance [um],Ti [ppm],2se [mole fraction]\n1,50,2\n", change: func(o *Options) { o.Errors.Column = "2se" }, want: []string{
