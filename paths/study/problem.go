@@ -140,7 +140,7 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 	var out []diffusion.Rim
 	for i := range list {
 		r := &list[i]
-		from, err := b.from(r)
+		from, err := r.from(b.h)
 		if err != nil {
 			return nil, err
 		}
@@ -165,12 +165,12 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 	return out, nil
 }
 
-// from is the time, s, from which a rim is in force.
-func (b *builder) from(r *Rim) (float64, error) {
+// from is the time, s, from which a rim is in force on a path.
+func (r *Rim) from(h *thermal.History) (float64, error) {
 	if r.From == nil {
 		return 0, nil
 	}
-	t, err := b.h.Moment(*r.From)
+	t, err := h.Moment(*r.From)
 	var in *thermal.InputError
 	if errors.As(err, &in) {
 		return 0, in.At(r.Place)

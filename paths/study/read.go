@@ -52,7 +52,7 @@ func parse(file string, data []byte, load loader) (*Study, error) {
 
 // study reads the top level.
 func (d *decoder) study(root *node) *Study {
-	d.keys(root, "title", "confidence", "eruption", "threshold", "law", "path", "crystal")
+	d.keys(root, "title", "confidence", "eruption", "threshold", "limits", "law", "path", "crystal")
 	s := &Study{File: d.file, Confidence: defaultConfidence}
 	s.Title = strings.TrimSuffix(filepath.Base(d.file), filepath.Ext(d.file))
 	if v := root.get("title"); v != nil {
@@ -63,6 +63,7 @@ func (d *decoder) study(root *node) *Study {
 	}
 	d.ownLaws(root.get("law"))
 	s.Thresholds = d.thresholds(root.get("threshold"))
+	s.Limits = d.limits(root.get("limits"), s.Thresholds)
 	s.Paths = d.paths(root)
 	s.Crystals = d.crystals(root)
 	if d.faults == 0 {
@@ -111,45 +112,6 @@ func (d *decoder) thresholds(n *node) []Threshold {
 	return out
 }
 
-// together checks what only shows when paths and crystals meet.
-func (d *decoder) together(s *Study) {
-	for i := range s.Crystals {
-		c := &s.Crystals[i]
-		for j := range c.Elements {
-			for k := range s.Paths {
-				d.meet(c, &c.Elements[j], &s.Paths[k])
-			}
-		}
-	}
-}
-
-// meet checks one element on one path.
-func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
-	var in *thermal.InputError
-	if errors.As(c.holds(e, p.History), &in) {
-		on := *in
-		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
-		d.add(&on)
-	}
-	legs := p.History.Legs()
-	for i := range legs {
-		if legs[i].Kind != thermal.Table {
-			continue
-		}
-		for _, a := range e.Law.Law.Terms {
-			d.coarse(e, p, legs[i].Rows, a.E)
-		}
-	}
-}
-
-// coarse notes a table whose rows are too far apart for the law.
-func (d *decoder) coarse(e *Element, p *Path, rows *thermal.Rows, energy float64) {
-	if step, ratio, coarse := rows.Coarse(energy); coarse {
-		d.note("path %q: its table is coarse: straight lines between its rows may put the diffusion of %s off by a factor of %.3g, most from %s to %s after its first row",
-			p.Name, e.Name, ratio, years(rows.Time[step]), years(rows.Time[step+1]))
-	}
-}
-
 // err returns the problems found, those of the study first and in the order of
 // its lines.
 func (d *decoder) err() error {
@@ -165,6 +127,7 @@ func (d *decoder) err() error {
 		}
 		return cmp.Or(a.Line-b.Line, a.Col-b.Col)
 	})
+	d.found = slices.CompactFunc(d.found, func(a, b *thermal.InputError) bool { return *a == *b })
 	var list []error
 	for _, e := range d.found[:min(len(d.found), maxProblems)] {
 		list = append(list, e)

@@ -1,0 +1,113 @@
+package study
+
+import (
+	"errors"
+	"fmt"
+
+	"bankfire/thermal"
+)
+
+// together checks what only shows when paths, crystals and limits meet.
+func (d *decoder) together(s *Study) {
+	for i := range s.Crystals {
+		c := &s.Crystals[i]
+		for j := range c.Elements {
+			e := &c.Elements[j]
+			d.moments(s.Paths, c, e, e.Inner)
+			d.moments(s.Paths, c, e, e.Rims)
+			for k := range s.Paths {
+				d.meet(c, e, &s.Paths[k])
+			}
+		}
+	}
+	for i := range s.Limits.Between {
+		l := &s.Limits.Between[i]
+		for _, m := range []thermal.Moment{l.From, l.To} {
+			d.lacking(s.Paths, func(p *Path) *thermal.InputError {
+				_, err := p.History.Moment(m)
+				return inputError(err, l.Place)
+			})
+		}
+	}
+}
+
+// moments bars the paths that do not have the moment of a rim, or have it
+// before that of the rim it follows. A rim that holds on no path is a problem.
+func (d *decoder) moments(paths []Path, c *Crystal, e *Element, rims []Rim) {
+	for i := 1; i < len(rims); i++ {
+		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError { return after(rims, i, p.History) }) {
+			p.Barred = append(p.Barred, fmt.Sprintf("the rim of %s in %s from %q: %s", e.Name, c.Name, rims[i].From.Text, why.Problem))
+		}
+	}
+}
+
+// after checks the moment of rim i on a path, and that it comes after the one
+// before it if that is on the path as well.
+func after(rims []Rim, i int, h *thermal.History) *thermal.InputError {
+	from, err := rims[i].from(h)
+	if err != nil {
+		return inputError(err, rims[i].Place)
+	}
+	if before, err := rims[i-1].from(h); err == nil && !(from > before) {
+		return rims[i].Place.Error(rims[i].From.Text, "does not come after the rim before it", "list rims in the order of time")
+	}
+	return nil
+}
+
+// inputError is the *thermal.InputError in err, at a place if it has none; nil
+// if there is none.
+func inputError(err error, at thermal.Place) *thermal.InputError {
+	var in *thermal.InputError
+	if errors.As(err, &in) && in.File == "" {
+		return in.At(at)
+	}
+	return in
+}
+
+// lacking returns the paths that fail a check. If all of them do, the study is
+// wrong: the first is reported, and none returned.
+func (d *decoder) lacking(paths []Path, check func(p *Path) *thermal.InputError) map[*Path]*thermal.InputError {
+	failed := map[*Path]*thermal.InputError{}
+	for i := range paths {
+		if e := check(&paths[i]); e != nil {
+			failed[&paths[i]] = e
+		}
+	}
+	if len(failed) < len(paths) {
+		return failed
+	}
+	on := *failed[&paths[0]]
+	on.Problem += fmt.Sprintf(" (path %q", paths[0].Name)
+	if len(paths) > 1 {
+		on.Problem += ", and it is no better on any other"
+	}
+	on.Problem += ")"
+	d.add(&on)
+	return nil
+}
+
+// meet checks one element on one path.
+func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
+	if in := inputError(c.holds(e, p.History), e.Place); in != nil && len(p.Barred) == 0 {
+		on := *in
+		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
+		d.add(&on)
+	}
+	legs := p.History.Legs()
+	for i := range legs {
+		if legs[i].Kind != thermal.Table {
+			continue
+		}
+		for _, a := range e.Law.Law.Terms {
+			d.coarse(e, p, legs[i].Rows, a.E)
+		}
+	}
+}
+
+// coarse notes a table whose rows are too far apart for the law.
+func (d *decoder) coarse(e *Element, p *Path, rows *thermal.Rows, energy float64) {
+	if step, ratio, coarse := rows.Coarse(energy); coarse {
+		d.note("path %q: its table is coarse: straight lines between its rows may put the diffusion of %s off by a factor of %.3g, most from %s to %s after its first row",
+			p.Name, e.Name, ratio, years(rows.Time[step]), years(rows.Time[step+1]))
+	}
+}
