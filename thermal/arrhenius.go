@@ -178,7 +178,7 @@ func e1From(u, f float64) float64 {
 //
 //	int T^-k exp(-e/T) dt = dt/(hot - cold) int p^(k-2) exp(-e p) dp,
 //
-// by Gauss-Legendre panels. Each keeps its distance from the pole at p = 0.
+// by Gauss-Legendre panels that keep clear of the pole at p = 0.
 func narrowRamp(e float64, k int, hot, cold, dt float64) scaled {
 	width := (hot - cold) / (hot * cold)
 	start := 1 / hot
@@ -196,10 +196,7 @@ func narrowRamp(e float64, k int, hot, cold, dt float64) scaled {
 
 // rampStep is the width of the panel at p with left still to do.
 func rampStep(e, p, left float64) float64 {
-	if left > 0 {
-		return math.Min(left, math.Min(2*p, widest/e))
-	}
-	return math.Max(left, math.Max(-p*2/3, widest/e))
+	return math.Copysign(math.Min(math.Abs(left), math.Min(clearOf(p, left > 0), widest/math.Abs(e))), left)
 }
 
 // rampPanel is the mean of p^(k-2) exp(-e (p - at)) from p = at to at + step.

@@ -9,10 +9,10 @@ import "math"
 //	I = ambient^-k e^-u int_w1^w0 (1 - w)^k e^(u w) / (w (1 - w)) dw
 //	  = ambient^-k e^-u {s + int_w1^w0 [(1 - w)^k e^(u w) - 1] / (w (1 - w)) dw}.
 //
-// The second form has no pole at w = 0, that is at the ambient temperature, and keeps the long stay there apart; the
-// first serves where the exponent at w is far below that at 0 and the second would cancel. By parts in w they are the sum
-// of exponential integrals E1(e/T) and Ei(u w), which cancel on short parts and overflow on long ones, so both are
-// integrated by Gauss-Legendre panels instead, starting where the exponent is largest.
+// The first form serves short parts, and those where the exponent at w is far below that at 0; the second, in which w = 0,
+// the ambient temperature, is no pole, keeps the long stay there apart. Both are sums of the exponential integrals E1(e/T)
+// and Ei(u w), which cancel on short parts and overflow on long ones, so they are integrated by Gauss-Legendre panels,
+// starting where the exponent is largest.
 func relaxIntegral(e float64, k int, first, ambient, a, s float64) scaled {
 	r := relaxation{u: e / ambient, k: k}
 	off := first - ambient
@@ -25,13 +25,7 @@ func relaxIntegral(e float64, k int, first, ambient, a, s float64) scaled {
 	lost := -math.Expm1(-s) * off
 	w0, w1 := off/(ambient+off), (off-lost)/(ambient+off-lost)
 	width := lost / (ambient + off) * (1 - w1) // w0 - w1 without cancellation
-	var m, ln float64
-	if r.u*off >= 0 { // the exponent falls towards the ambient temperature
-		ln = r.u * w0
-		m = s*math.Exp(-ln) - r.march(w0, -width, ln, math.Exp(-ln))
-	} else {
-		m, ln = r.rising(w0, w1, width, s)
-	}
+	m, ln := r.integral(w0, w1, width, s)
 	if k == 1 {
 		m /= ambient
 	}
@@ -47,16 +41,28 @@ type relaxation struct {
 	k int
 }
 
-// Where the exponent at the late end of a relaxation that it climbs to lies below that of the ambient temperature by more
-// than farBelow, the form with its pole is used; where that at its early end does not lie below by nearBelow, the other;
-// else the part is cut at cutBelow.
+// integral is the one over w, the time s included, as m exp(ln). width is w0 - w1.
+func (r relaxation) integral(w0, w1, width, s float64) (m, ln float64) {
+	short := math.Abs(w1) > math.Abs(w0)/2
+	if r.u*w0 < 0 { // the exponent rises towards the ambient temperature
+		return r.rising(w0, w1, width, s, short)
+	}
+	ln = r.u * w0
+	if short {
+		return -r.march(w0, -width, ln, 0), ln
+	}
+	return s*math.Exp(-ln) - r.march(w0, -width, ln, math.Exp(-ln)), ln
+}
+
+// Where the exponent at the late end of a relaxation lies below that of the ambient temperature by more than farBelow, the
+// first form is used; where that at its early end does not lie below by nearBelow, the second; else the part is cut at
+// cutBelow.
 const farBelow, cutBelow, nearBelow = -1, -2, -3
 
-// rising is the integral, without ambient^-k e^-u, where the exponent rises towards the ambient temperature, as m exp(ln).
-// width is w0 - w1 and s the time from w0 to w1.
-func (r relaxation) rising(w0, w1, width, s float64) (m, ln float64) {
+// rising is integral where the exponent rises towards the ambient temperature.
+func (r relaxation) rising(w0, w1, width, s float64, short bool) (m, ln float64) {
 	switch ln = r.u * w1; {
-	case ln <= farBelow:
+	case short || ln <= farBelow:
 		return r.march(w1, width, ln, 0), ln
 	case r.u*w0 >= nearBelow:
 		return s + r.march(w1, width, 0, 1), 0
@@ -70,8 +76,8 @@ func (r relaxation) rising(w0, w1, width, s float64) (m, ln float64) {
 //
 //	int_from^(from+width) [(1 - w)^k e^(u w - ln) - base] / (w (1 - w)) dw
 //
-// in panels that start at from, where u w is largest and about ln, and stop where nothing is left. base is e^-ln, or 0: then
-// w = 0 is a pole, which the panels walk away from.
+// in panels that start at from, where u w is largest and about ln, and stop where nothing is left. base is e^-ln, or 0, and
+// then w = 0 is a pole.
 func (r relaxation) march(from, width, ln, base float64) float64 {
 	sum, at, left := 0.0, from, width
 	for left != 0 && r.u*(at-from) >= -negligible {
@@ -85,22 +91,26 @@ func (r relaxation) march(from, width, ln, base float64) float64 {
 // step is the width of the panel at w with left still to do.
 func (r relaxation) step(w, left float64, pole bool) float64 {
 	most := math.Min(math.Abs(left), widest/math.Abs(r.u))
-	if left < 0 { // away from the pole at 1
-		most = math.Min(most, 2*(1-w))
-	} else {
-		most = math.Min(most, (1-w)*2/3)
-	}
+	most = math.Min(most, clearOf(1-w, left < 0))
 	if pole {
-		most = math.Min(most, 2*math.Abs(w))
+		most = math.Min(most, clearOf(math.Abs(w), left*w > 0))
 	}
 	return math.Copysign(most, left)
+}
+
+// clearOf is how wide a panel may be that begins at a distance from a pole, so that all of it is at least half its width away.
+func clearOf(distance float64, away bool) float64 {
+	if away {
+		return 2 * distance
+	}
+	return distance * 2 / 3
 }
 
 // panel is the mean of the integrand of march from w to w + step.
 func (r relaxation) panel(w, step, ln, base float64) float64 {
 	room := 1 - math.Max(w, w+step)
 	if base == 0 {
-		room = math.Min(room, math.Abs(w))
+		room = math.Min(room, math.Min(math.Abs(w), math.Abs(w+step)))
 	}
 	sum, middle := 0.0, w+step/2
 	centre := math.Exp(r.u*middle - ln)

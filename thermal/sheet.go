@@ -147,8 +147,13 @@ const (
 )
 
 // sheetTol is the difference between the Gauss and the Kronrod sum of a panel, relative to the integral so far, at which
-// the panel is taken. The error of the latter is about the 1.5th power of it.
-const sheetTol = 1e-7
+// the panel is taken. The error of the latter is about the 1.5th power of it. To sheetTol is added what the rounding of the
+// exponent may make, sheetNoise of it. Halving stops at sheetDepth in any case, at 4e-5 in ln t.
+const (
+	sheetTol   = 1e-7
+	sheetNoise = 1e-14
+	sheetDepth = 16
+)
 
 // arrhenius is the integral between t0 and t1: a hold until the front of cooling or heat arrives, then panels in ln t, a
 // factor of 16 each and halved where needed.
@@ -165,7 +170,7 @@ func (s *Sheet) arrhenius(e float64, k int, t0, t1 float64) scaled {
 		if next > t1/2 {
 			next = t1
 		}
-		y, width := math.Log(at), math.Log(next/at)
+		y, width := math.Log(at), math.Log1p((next-at)/at)
 		whole, off := c.panel(y, width)
 		sum += c.refine(y, width, whole, off, sum+whole, 0)
 		at = next
@@ -202,9 +207,9 @@ func (c *cooling) panel(y, width float64) (whole, off float64) {
 	return width * whole, width * math.Abs(whole-seven)
 }
 
-// refine halves a panel until it is within sheetTol of the size of the integral, at most 40 times.
+// refine halves a panel until it is good enough for an integral of the given size.
 func (c *cooling) refine(y, width, whole, off, size float64, depth int) float64 {
-	if off <= sheetTol*size || depth == 40 {
+	if off <= (sheetTol+sheetNoise*math.Abs(c.ln))*size || depth == sheetDepth {
 		return whole
 	}
 	half := width / 2
