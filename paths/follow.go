@@ -66,22 +66,15 @@ func Follow(s *study.Study, path *study.Path, at []float64) (*Course, error) {
 }
 
 func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) (*ElementCourse, error) {
-	p, err := newProfile(c, e, path, 0)
+	p, result, err := run(c, e, path)
 	if err != nil {
 		return nil, err
 	}
-	f := &p.fields[0]
-	if err := p.plan.Audit(f, diffusion.Job{Course: &p.course}); err != nil {
-		return nil, err
-	}
-	values := make([]float64, len(p.free))
 	out := &ElementCourse{Crystal: c, Element: e, Centres: p.plan.Centres(), LnG: p.course.LnG()}
-	if p.weights != nil {
-		r, err := p.asItIs()
-		if err != nil {
-			return nil, err
-		}
-		out.Free, out.Notes = r.Free, r.Notes
+	values := make([]float64, len(p.free))
+	f := &p.fields[0]
+	if result != nil {
+		out.Free, out.Notes = result.Free, result.notes(path)
 		values = p.fitTo(f.Cols).values
 	}
 	out.WhyG, out.GEnough = p.plan.GEnough()
@@ -99,6 +92,19 @@ func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) 
 		out.Snapshots = append(out.Snapshots, Snapshot{t, value})
 	}
 	return out, nil
+}
+
+// run leaves the audited run of the path as it is in fields[0]. Where there is
+// a traverse its plan is fine enough for that, and the result is not nil.
+func run(c *study.Crystal, e *study.Element, path *study.Path) (*profile, *ProfileResult, error) {
+	if e.Traverse != nil {
+		return audited(c, e, path, 0)
+	}
+	p, err := newProfile(c, e, path, 0)
+	if err != nil {
+		return nil, nil, err
+	}
+	return p, nil, p.plan.Audit(&p.fields[0], diffusion.Job{Course: &p.course})
 }
 
 // snapshot runs the path up to time t.

@@ -10,8 +10,9 @@ import (
 	"bankfire/paths/traverse"
 )
 
-// The plan of a profile. Its error is measured at the path as it is; above
-// errorAim of the data's sigma the plan is refined, at most mostRefined times.
+// The plan of a profile. Its error is measured for the path as it is and at its
+// shift factor; above errorAim of the data's sigma the plan is refined, at most
+// mostRefined times.
 const (
 	errorAim    = 0.1
 	mostRefined = 2
@@ -25,6 +26,7 @@ type profile struct {
 	element *study.Element
 	path    *study.Path
 	free    []study.FreeValue
+	refined int // how often the plan is finer than the usual one
 	plan    *diffusion.Plan
 	course  diffusion.Course
 	weights *traverse.Weights // nil without a traverse
@@ -33,8 +35,8 @@ type profile struct {
 	seen    [][]float64 // the columns after the spot
 }
 
-// newProfile compiles the element for the path; refined says how many times
-// the plan is finer than the usual one.
+// newProfile compiles the element for the path with a plan that is refined so
+// many times: each time twice the cells and half the steps' growth.
 func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined int) (*profile, error) {
 	problem, free, err := c.Problem(e, path.History)
 	if err != nil {
@@ -48,7 +50,7 @@ func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined in
 	if err != nil {
 		return nil, err
 	}
-	p := &profile{crystal: c, element: e, path: path, free: free, plan: plan, fields: make([]diffusion.Field, batch)}
+	p := &profile{crystal: c, element: e, path: path, free: free, refined: refined, plan: plan, fields: make([]diffusion.Field, batch)}
 	if err := plan.Course(&p.course, path.History, path.History.Life()); err != nil {
 		return nil, err
 	}

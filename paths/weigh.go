@@ -38,7 +38,7 @@ type ProfileResult struct {
 	Free    []FreeFit
 	LnG     float64   // ln of the diffusion integral, m2
 	StandIn float64   // the constant temperature that gives the same G over the whole path, K; 0 where nothing diffuses
-	NumErr  float64   // largest numerical error at the data points, in sigma
+	NumErr  float64   // largest numerical error at the data points, in sigma, of the path as it is and at its shift factor
 	Seen    []float64 // what the instrument would have shown at the points, in the element's unit
 	Centres []float64 // of the cells, m from the crystal's centre
 	Start   []float64 // what the instrument would have shown there before diffusion
@@ -134,10 +134,36 @@ func (r *PathResult) weigh(s *study.Study, path *study.Path) error {
 	return nil
 }
 
-// weighProfile audits the path as it is, with a plan fine enough, and scans
-// the multipliers on D.
+// weighProfile scans the multipliers on D with a plan that is fine enough both
+// for the path as it is and at the best of them: a path that hardly diffuses
+// says nothing of the error there.
 func weighProfile(c *study.Crystal, e *study.Element, path *study.Path) (*ProfileResult, *Curve, error) {
-	for refined := 0; ; refined++ {
+	for refined := 0; ; {
+		p, result, err := audited(c, e, path, refined)
+		if err != nil {
+			return nil, nil, err
+		}
+		curve, err := p.curve()
+		if err != nil {
+			return nil, nil, err
+		}
+		best, err := p.errorAtBest(&curve)
+		if err != nil {
+			return nil, nil, err
+		}
+		if refined = p.finer(best); refined > p.refined {
+			continue
+		}
+		result.NumErr = math.Max(result.NumErr, best)
+		result.Notes = result.notes(path)
+		return result, &curve, nil
+	}
+}
+
+// audited compiles the element for the path, with a plan at least so often
+// refined and fine enough for the path as it is, and runs that.
+func audited(c *study.Crystal, e *study.Element, path *study.Path, refined int) (*profile, *ProfileResult, error) {
+	for {
 		p, err := newProfile(c, e, path, refined)
 		if err != nil {
 			return nil, nil, err
@@ -146,15 +172,30 @@ func weighProfile(c *study.Crystal, e *study.Element, path *study.Path) (*Profil
 		if err != nil {
 			return nil, nil, err
 		}
-		if result.NumErr > errorAim && refined < mostRefined {
-			continue
+		if refined = p.finer(result.NumErr); refined == p.refined {
+			return p, result, nil
 		}
-		curve, err := p.curve()
-		if err != nil {
-			return nil, nil, err
-		}
-		return result, &curve, nil
 	}
+}
+
+// finer returns how often the plan should be refined, each time to a quarter of
+// its error numErr, to reach errorAim.
+func (p *profile) finer(numErr float64) int {
+	if !(numErr > errorAim) {
+		return p.refined
+	}
+	more := math.Ceil(math.Log(numErr/errorAim) / math.Log(4))
+	return int(math.Min(float64(p.refined)+more, mostRefined))
+}
+
+// errorAtBest returns the numerical error at the multiplier that agrees best.
+func (p *profile) errorAtBest(c *Curve) (float64, error) {
+	lnM, _ := c.Lowest()
+	f := &p.fields[0]
+	if err := p.plan.Audit(f, diffusion.Job{Course: &p.course, LnM: lnM}); err != nil {
+		return 0, err
+	}
+	return p.numErr(f, p.fitTo(f.Cols).values), nil
 }
 
 // asItIs runs the path with D unchanged, measures the numerical error and
@@ -188,7 +229,6 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		r.Free = append(r.Free, FreeFit{Name: v.Name, Value: value, Sigma: fitted.sigmas[j], HasPrior: v.HasPrior})
 	}
 	r.StandIn = standIn(p.element.Law.Law, r.LnG, p.path.History.Life())
-	r.Notes = r.notes(p.path)
 	return r, nil
 }
 
