@@ -1,37 +1,51 @@
 package main
 
-import (
-	"math"
-
-	"bankfire/paths"
-)
-
 // summarySchema numbers the form of the summaries. It grows by one when a
 // field that others rely on changes its meaning or goes.
 const summarySchema = 1
 
-// weighing is the summary of `bankfire weigh`. Numbers are in SI; an open end
-// of an interval is null.
+// weighing is the summary of `bankfire weigh`, which summary.schema.json
+// describes. Names of numbers end in their unit, SI but for what is in the
+// element's own unit; an open end of an interval, and what does not exist, is
+// null. Runs of one build on equal inputs have equal summaries.
 type weighing struct {
 	Schema     int           `json:"schema"`
+	Program    program       `json:"program"`
 	Title      string        `json:"title"`
-	Confidence float64       `json:"confidence"`
-	Inputs     []input       `json:"inputs"`
+	Confidence float64       `json:"confidence"` // of the verdicts, 0 to 1
+	Year       float64       `json:"year_s"`     // what a year is taken for
+	Seed       *uint64       `json:"seed"`       // of what was drawn at random
+	Inputs     []input       `json:"inputs"`     // the study, then the files it names
 	Laws       []lawUsed     `json:"laws"`
 	Paths      []weighedPath `json:"paths"`
 	Families   []struct{}    `json:"families"`
 	Notes      []string      `json:"notes"`
+	Files      []string      `json:"files"` // of the folder, written by the same run, this one included; none if there is no folder
+}
+
+// program says what computed a summary.
+type program struct {
+	Name    string `json:"name"`
+	Version string `json:"version"`
+	Build   string `json:"build"` // SHA-256 of the executable, hexadecimal, or "unknown"
 }
 
 type input struct {
-	Name   string `json:"name"`
+	Name   string `json:"name"` // as the study writes it
 	SHA256 string `json:"sha256"`
 }
 
+// lawUsed is a law that a measured element diffused by.
 type lawUsed struct {
-	Key        string `json:"key"`
-	Citation   string `json:"citation"`
-	Confidence string `json:"confidence"`
+	Key        string       `json:"key"` // of the catalogue or a [[law]]; "" if it stands with its element
+	Citation   string       `json:"citation"`
+	Confidence string       `json:"confidence"` // in its constants
+	Elements   []elementKey `json:"elements"`
+}
+
+type elementKey struct {
+	Crystal string `json:"crystal"`
+	Element string `json:"element"`
 }
 
 // finding holds the fields that paths and their profiles share.
@@ -40,7 +54,7 @@ type finding struct {
 	Shift68     [2]*float64 `json:"shift_68"`
 	Shift95     [2]*float64 `json:"shift_95"`
 	Tail        float64     `json:"tail"`
-	Misfit      float64     `json:"misfit"`
+	Misfit      float64     `json:"misfit"` // chi-square
 	Points      int         `json:"points"`
 	Degrees     int         `json:"degrees_of_freedom"`
 	Notes       []string    `json:"notes"`
@@ -62,8 +76,7 @@ type timeAbove struct {
 }
 
 type weighedProfile struct {
-	Crystal string `json:"crystal"`
-	Element string `json:"element"`
+	elementKey
 	Verdict string `json:"verdict"`
 	finding
 	G          *float64     `json:"diffusion_integral_m2"`
@@ -75,103 +88,7 @@ type weighedProfile struct {
 type fittedFree struct {
 	Name  string   `json:"name"`
 	Value float64  `json:"value"`
-	Sigma *float64 `json:"sigma"`
+	Sigma *float64 `json:"sigma"` // null where the data do not see the value
 	Unit  string   `json:"unit"`
 	Prior bool     `json:"has_prior"`
-}
-
-// weighingSummary turns a result into its summary.
-func weighingSummary(r *paths.Result) weighing {
-	w := weighing{
-		Schema: summarySchema, Title: r.Study.Title, Confidence: r.Study.Confidence,
-		Inputs: []input{}, Laws: lawsUsed(r), Paths: []weighedPath{}, Families: []struct{}{}, Notes: filled(r.Study.Notes),
-	}
-	for _, in := range r.Study.Inputs {
-		w.Inputs = append(w.Inputs, input{in.Name, in.SHA256})
-	}
-	for i := range r.Paths {
-		w.Paths = append(w.Paths, summariseThe(r, &r.Paths[i]))
-	}
-	return w
-}
-
-func summariseThe(r *paths.Result, p *paths.PathResult) weighedPath {
-	out := weighedPath{
-		Name: p.Path.Name, Verdict: p.Outcome.Verdict.String(), finding: newFinding(&p.Outcome.Finding, p.Notes),
-		LifeS: p.Life, Above: []timeAbove{}, Profiles: []weighedProfile{},
-	}
-	for i, t := range r.Study.Thresholds {
-		out.Above = append(out.Above, timeAbove{t.Name, t.Temp, p.Above[i]})
-	}
-	for i := range p.Profiles {
-		q := &p.Profiles[i]
-		out.Profiles = append(out.Profiles, weighedProfile{
-			Crystal: q.Crystal.Name, Element: q.Element.Name, Verdict: p.Outcome.Profiles[i].Verdict.String(),
-			finding: newFinding(&p.Outcome.Profiles[i], q.Notes),
-			G:       bounded(math.Exp(q.LnG)), StandIn: positive(q.StandIn), NumErr: q.NumErr,
-			FreeValues: freeValues(q.Free, q.Element.Unit),
-		})
-	}
-	return out
-}
-
-func newFinding(f *paths.Finding, notes []string) finding {
-	return finding{
-		ShiftFactor: f.Shift, Shift68: ends(f.Shift68), Shift95: ends(f.Shift95),
-		Tail: f.Tail, Misfit: f.Misfit, Points: f.Points, Degrees: f.Degrees, Notes: filled(notes),
-	}
-}
-
-func freeValues(free []paths.FreeFit, unit string) []fittedFree {
-	out := []fittedFree{}
-	for _, f := range free {
-		out = append(out, fittedFree{f.Name, f.Value, bounded(f.Sigma), unit, f.HasPrior})
-	}
-	return out
-}
-
-// lawsUsed lists the laws of the measured elements once each, in their order.
-func lawsUsed(r *paths.Result) []lawUsed {
-	laws := []lawUsed{}
-	seen := map[string]bool{}
-	for _, c := range r.Study.Crystals {
-		for _, e := range c.Elements {
-			l := lawUsed{Key: e.Law.Key, Citation: e.Law.Citation, Confidence: "as given in the study"}
-			if e.Law.Row != nil {
-				l.Confidence = e.Law.Row.Confidence
-			}
-			if !seen[l.Key] {
-				seen[l.Key] = true
-				laws = append(laws, l)
-			}
-		}
-	}
-	return laws
-}
-
-// ends returns an interval with its open ends nil.
-func ends(x [2]float64) [2]*float64 {
-	return [2]*float64{positive(x[0]), bounded(x[1])}
-}
-
-func positive(x float64) *float64 {
-	if x > 0 {
-		return &x
-	}
-	return nil
-}
-
-func bounded(x float64) *float64 {
-	if math.IsInf(x, 0) || math.IsNaN(x) {
-		return nil
-	}
-	return &x
-}
-
-// filled returns notes, never nil, so that JSON shows an empty list.
-func filled(notes []string) []string {
-	if notes == nil {
-		return []string{}
-	}
-	return notes
 }

@@ -1,25 +1,29 @@
 package main
 
 import (
-	"bytes"
 	"context"
 	"encoding/json"
+	"fmt"
 	"io"
 	"runtime"
 	"strconv"
+	"strings"
+	"time"
 
 	"github.com/spf13/pflag"
 
+	"bankfire/cmd/bankfire/internal/results"
 	"bankfire/paths"
 	"bankfire/paths/study"
 	"bankfire/thermal"
 )
 
 // weighCommand is `bankfire weigh`.
-func weighCommand() *command {
-	var out string
-	var replace, asJSON, quiet bool
-	var jobs int
+func weighCommand() *command { return weighCommandOn(results.OnDisk{}) }
+
+// weighCommandOn is `bankfire weigh` with its results on that disk.
+func weighCommandOn(disk results.Disk) *command {
+	w := &weigh{disk: disk}
 	return &command{
 		name:  "weigh",
 		args:  "STUDY",
@@ -34,48 +38,70 @@ func weighCommand() *command {
 			{"bankfire weigh study.toml --json", "print the summary for another program"},
 		},
 		least: 1, most: 1,
-		flags: func(set *pflag.FlagSet) {
-			set.StringVar(&out, "out", "", "write tables and figures to the folder `DIR`")
-			set.BoolVar(&replace, "replace", false, "replace results that are already in the folder")
-			set.BoolVar(&asJSON, "json", false, "print the summary as JSON instead of text")
-			set.BoolVar(&quiet, "quiet", false, "print nothing but errors")
-			set.IntVar(&jobs, "jobs", runtime.NumCPU(), "run `N` paths at the same time; the results do not depend on it")
-		},
-		run: func(ctx context.Context, s streams, operands []string) error {
-			if err := checkJobs(jobs); err != nil {
-				return err
-			}
-			folder, err := openFolder(out, replace)
-			if err != nil {
-				return err
-			}
-			result, err := weighStudy(ctx, operands[0], jobs)
-			if err != nil {
-				return err
-			}
-			if err := folder.writeWeighing(result); err != nil {
-				return err
-			}
-			switch {
-			case asJSON:
-				return writeJSON(s.out, weighingSummary(result))
-			case quiet:
-				return nil
-			}
-			text := weighingText(result)
-			folder.describe(&text)
-			_, err = s.out.Write(text.Bytes())
-			return err
-		},
+		flags: w.define,
+		run:   w.run,
 	}
 }
 
-// checkJobs refuses a number of jobs that cannot be meant.
-func checkJobs(jobs int) error {
-	if jobs < 1 {
-		return &thermal.InputError{Field: "--jobs", Value: strconv.Itoa(jobs), Problem: "below 1", Remedy: "want 1 or more"}
+// weigh is one run of the command.
+type weigh struct {
+	disk                   results.Disk
+	flags                  *pflag.FlagSet
+	out                    string
+	replace, asJSON, quiet bool
+	jobs                   int
+}
+
+func (o *weigh) define(set *pflag.FlagSet) {
+	o.flags = set
+	set.StringVar(&o.out, "out", "", "write tables and figures to the folder `DIR`")
+	set.BoolVar(&o.replace, "replace", false, "replace results of an earlier run in the folder")
+	set.BoolVar(&o.asJSON, "json", false, "print the summary as JSON instead of text")
+	set.BoolVar(&o.quiet, "quiet", false, "print nothing but errors")
+	set.IntVar(&o.jobs, "jobs", runtime.NumCPU(), "run `N` paths at the same time; the results do not depend on it")
+}
+
+func (o *weigh) run(ctx context.Context, s streams, operands []string) error {
+	log := &runLog{made: thisProgram(), started: time.Now(), jobs: o.jobs}
+	if err := o.check(); err != nil {
+		return err
+	}
+	folder, err := o.open()
+	if err != nil {
+		return err
+	}
+	result, err := weighStudy(ctx, operands[0], o.jobs)
+	if err != nil {
+		return err
+	}
+	log.took = time.Since(log.started)
+	summary := summarise(result, log.made)
+	if folder != nil {
+		files := weighingFiles(result, summary, log)
+		if err := folder.Write(files); err != nil {
+			return err
+		}
+	}
+	return o.print(s.out, result, summary)
+}
+
+// check refuses flags that cannot be meant.
+func (o *weigh) check() error {
+	switch {
+	case o.jobs < 1:
+		return &thermal.InputError{Field: "--jobs", Value: strconv.Itoa(o.jobs), Problem: "below 1", Remedy: "want 1 or more"}
+	case o.replace && !o.flags.Changed("out"):
+		return &thermal.InputError{Field: "--replace", Problem: "there is no folder whose results to replace", Remedy: "add --out DIR"}
 	}
 	return nil
+}
+
+// open returns the folder that the results go to, nil if nobody asked for files.
+func (o *weigh) open() (*results.Folder, error) {
+	if !o.flags.Changed("out") {
+		return nil, nil
+	}
+	return results.Open(o.disk, o.out, o.replace)
 }
 
 func weighStudy(ctx context.Context, file string, jobs int) (*paths.Result, error) {
@@ -86,28 +112,20 @@ func weighStudy(ctx context.Context, file string, jobs int) (*paths.Result, erro
 	return paths.Weigh(ctx, s, jobs)
 }
 
-// writeWeighing writes the files of a weighing; nothing if there is no folder.
-func (f *folder) writeWeighing(r *paths.Result) error {
-	if f == nil {
+// print prints the result as the flags ask.
+func (o *weigh) print(w io.Writer, r *paths.Result, summary *weighing) error {
+	switch {
+	case o.asJSON:
+		return writeJSON(w, summary)
+	case o.quiet:
 		return nil
 	}
-	var summary bytes.Buffer
-	if err := writeJSON(&summary, weighingSummary(r)); err != nil {
-		return err
+	text := weighingText(r)
+	if len(summary.Files) > 0 {
+		fmt.Fprintf(&text, "\nwritten to %s: %s\n", o.out, strings.Join(summary.Files, " "))
 	}
-	table, err := pathsTable(r)
-	if err != nil {
-		return err
-	}
-	files := []file{{"summary.json", summary.Bytes()}, {"paths.csv", table}}
-	for i, name := range figureNames(r) {
-		picture, err := weighingFigure(r, i)
-		if err != nil {
-			return err
-		}
-		files = append(files, file{name, picture})
-	}
-	return f.write(files)
+	_, err := w.Write(text.Bytes())
+	return err
 }
 
 // writeJSON writes v with an indent, ending in a line break.

@@ -2,15 +2,12 @@ package main
 
 import (
 	"bytes"
-	"encoding/csv"
 	"fmt"
 	"io"
 	"math"
-	"strconv"
 	"strings"
 
 	"bankfire/paths"
-	"bankfire/thermal"
 )
 
 // care is the caution that every result carries.
@@ -142,37 +139,4 @@ func verdictInWords(o *paths.Outcome) string {
 	default:
 		return "reproduces"
 	}
-}
-
-// pathsTable is paths.csv, a row a path.
-func pathsTable(r *paths.Result) ([]byte, error) {
-	var text bytes.Buffer
-	table := csv.NewWriter(&text)
-	head := []string{"path", "verdict", "tail", "chi_square", "degrees_of_freedom", "shift_factor",
-		"shift_68_low", "shift_68_high", "shift_95_low", "shift_95_high", "life [yr]"}
-	for _, t := range r.Study.Thresholds {
-		head = append(head, "above "+t.Name+" [yr]")
-	}
-	for _, q := range r.Paths[0].Profiles {
-		head = append(head, "stand-in temperature "+q.Element.Name+" in "+q.Crystal.Name+" [C]")
-	}
-	table.Write(head)
-	for i := range r.Paths {
-		p := &r.Paths[i]
-		o := &p.Outcome
-		row := []string{p.Path.Name, o.Verdict.String(), plain(o.Tail), plain(o.Misfit), strconv.Itoa(o.Degrees), plain(o.Shift)}
-		for _, x := range [][2]float64{o.Shift68, o.Shift95} {
-			row = append(row, openEnd(x[0]), openEnd(x[1]))
-		}
-		row = append(row, plain(p.Life/thermal.Year))
-		for _, above := range p.Above {
-			row = append(row, plain(above/thermal.Year))
-		}
-		for j := range p.Profiles {
-			row = append(row, openEnd(p.Profiles[j].StandIn-thermal.ZeroCelsius))
-		}
-		table.Write(row)
-	}
-	table.Flush()
-	return text.Bytes(), table.Error()
 }

@@ -1,0 +1,185 @@
+package main
+
+import (
+	"bytes"
+	"context"
+	"encoding/json"
+	"maps"
+	"math"
+	"os"
+	"slices"
+	"testing"
+
+	"github.com/google/jsonschema-go/jsonschema"
+
+	"bankfire/paths"
+	"bankfire/paths/study"
+)
+
+// readSchema reads the committed schema.
+func readSchema(t *testing.T) *jsonschema.Schema {
+	t.Helper()
+	text, err := os.ReadFile("summary.schema.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	var s jsonschema.Schema
+	if err := json.Unmarshal(text, &s); err != nil {
+		t.Fatal(err)
+	}
+	return &s
+}
+
+func resolve(t *testing.T, s *jsonschema.Schema) *jsonschema.Resolved {
+	t.Helper()
+	resolved, err := s.Resolve(nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return resolved
+}
+
+// smallResult weighs the small study.
+func smallResult(t *testing.T) *paths.Result {
+	t.Helper()
+	s, err := study.Read(plantStudy(t, t.TempDir()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	r, err := paths.Weigh(context.Background(), s, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return r
+}
+
+// asJSON is the summary as another program reads it.
+func asJSON(t *testing.T, w *weighing) map[string]any {
+	t.Helper()
+	var text bytes.Buffer
+	if err := writeJSON(&text, w); err != nil {
+		t.Fatal(err)
+	}
+	var out map[string]any
+	if err := json.Unmarshal(text.Bytes(), &out); err != nil {
+		t.Fatal(err)
+	}
+	return out
+}
+
+// TestSummaryKeepsSchema checks summaries, at the limits of what they may hold, against
+// the schema.
+func TestSummaryKeepsSchema(t *testing.T) {
+	schema := resolve(t, readSchema(t))
+	inf := math.Inf(1)
+	for _, test := range []struct {
+		name   string
+		change func(r *paths.Result)
+	}{
+		{"as it is", func(*paths.Result) {}},
+		{"open intervals", func(r *paths.Result) {
+			o := &r.Paths[0].Outcome
+			o.Shift68, o.Shift95, o.Profiles[0].Shift68 = [2]float64{0, 3}, [2]float64{0.3, inf}, [2]float64{0, inf}
+		}},
+		{"nothing diffuses", func(r *paths.Result) { r.Paths[0].Profiles[0].LnG, r.Paths[0].Profiles[0].StandIn = -inf, 0 }},
+		{"a value unseen", func(r *paths.Result) { r.Paths[0].Profiles[0].Free[0].Sigma = inf }},
+		{"nothing free", func(r *paths.Result) { r.Paths[0].Profiles[0].Free = nil }},
+		{"notes", func(r *paths.Result) {
+			r.Study.Notes, r.Paths[0].Notes, r.Paths[0].Profiles[0].Notes = []string{"a"}, []string{"b"}, []string{"c"}
+		}},
+		{"thresholds", func(r *paths.Result) {
+			r.Study.Thresholds, r.Paths[0].Above = []study.Threshold{{Name: "lock-up", Temp: 1000}}, []float64{0}
+		}},
+		{"every verdict of now", func(r *paths.Result) {
+			p := &r.Paths[0]
+			for _, v := range []paths.Verdict{paths.TooSharp, paths.TooSmooth, paths.WrongShape} {
+				q := *p
+				q.Outcome.Verdict = v
+				r.Paths = append(r.Paths, q)
+			}
+		}},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			r := smallResult(t)
+			test.change(r)
+			w := summarise(r, thisProgram())
+			if err := schema.Validate(asJSON(t, w)); err != nil {
+				t.Errorf("without files: %v", err)
+			}
+			weighingFiles(r, w, &runLog{})
+			if err := schema.Validate(asJSON(t, w)); err != nil {
+				t.Errorf("with files: %v", err)
+			}
+		})
+	}
+}
+
+// TestSchemaRefuses sees that the schema finds what is wrong.
+func TestSchemaRefuses(t *testing.T) {
+	schema := resolve(t, readSchema(t))
+	for _, test := range []struct {
+		name   string
+		change func(summary, path, profile map[string]any)
+	}{
+		{"field too many", func(s, _, _ map[string]any) { s["host"] = "x" }},
+		{"field too many in a path", func(_, p, _ map[string]any) { p["colour"] = "red" }},
+		{"field too many in a profile", func(_, _, q map[string]any) { q["colour"] = "red" }},
+		{"field missing", func(s, _, _ map[string]any) { delete(s, "families") }},
+		{"field missing in a path", func(_, p, _ map[string]any) { delete(p, "tail") }},
+		{"field missing in a profile", func(_, _, q map[string]any) { delete(q, "unit"); delete(q, "crystal") }},
+		{"number as text", func(_, p, _ map[string]any) { p["misfit"] = "3" }},
+		{"number null", func(_, p, _ map[string]any) { p["shift_factor"] = nil }},
+		{"unknown verdict", func(_, p, _ map[string]any) { p["verdict"] = "fine" }},
+		{"interval with one end", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0} }},
+		{"interval with three", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0, 2.0, 3.0} }},
+		{"open end as zero", func(_, p, _ map[string]any) { p["shift_95"] = []any{0.0, 2.0} }},
+		{"other schema", func(s, _, _ map[string]any) { s["schema"] = 2.0 }},
+		{"no list of notes", func(s, _, _ map[string]any) { s["notes"] = nil }},
+		{"tail above 1", func(_, p, _ map[string]any) { p["tail"] = 1.1 }},
+		{"build by half", func(s, _, _ map[string]any) { s["program"].(map[string]any)["build"] = "12ab" }},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			s := asJSON(t, summarise(smallResult(t), thisProgram()))
+			path := s["paths"].([]any)[0].(map[string]any)
+			test.change(s, path, path["profiles"].([]any)[0].(map[string]any))
+			if err := schema.Validate(s); err == nil {
+				t.Error("passed")
+			}
+		})
+	}
+}
+
+// TestSchemaIsStrict checks that no object of the schema takes a field it does not name
+// or does without one that it names. With TestSummaryKeepsSchema it holds that schema
+// and Go type have the same fields.
+func TestSchemaIsStrict(t *testing.T) {
+	root := readSchema(t)
+	objects := 0
+	var walk func(at string, s *jsonschema.Schema)
+	walk = func(at string, s *jsonschema.Schema) {
+		if s == nil {
+			return
+		}
+		if s.Type == "object" {
+			objects++
+			names := slices.Sorted(maps.Keys(s.Properties))
+			if extra := s.AdditionalProperties; extra == nil || extra.Not == nil {
+				t.Errorf("%s takes other fields", at)
+			}
+			if required := slices.Sorted(slices.Values(s.Required)); !slices.Equal(required, names) {
+				t.Errorf("%s requires %q, names %q", at, required, names)
+			}
+		}
+		walk(at+"[]", s.Items)
+		for name, p := range s.Properties {
+			walk(at+"."+name, p)
+		}
+		for name, p := range s.Defs {
+			walk(name, p)
+		}
+	}
+	walk("summary", root)
+	if objects < 8 {
+		t.Errorf("only %d objects found", objects)
+	}
+}

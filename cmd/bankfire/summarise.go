@@ -1,0 +1,129 @@
+package main
+
+import (
+	"math"
+	"path/filepath"
+	"strings"
+
+	"bankfire/paths"
+	"bankfire/paths/study"
+	"bankfire/thermal"
+)
+
+// summarise turns a result into the summary of a run without files, by the
+// program.
+func summarise(r *paths.Result, made program) *weighing {
+	w := &weighing{
+		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
+		Inputs: []input{}, Laws: lawsUsed(r), Paths: []weighedPath{}, Families: []struct{}{},
+		Notes: portable(r.Study), Files: []string{},
+	}
+	for _, in := range r.Study.Inputs {
+		w.Inputs = append(w.Inputs, input{in.Name, in.SHA256})
+	}
+	for i := range r.Paths {
+		w.Paths = append(w.Paths, summarisePath(r, &r.Paths[i]))
+	}
+	return w
+}
+
+func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
+	out := weighedPath{
+		Name: p.Path.Name, Verdict: p.Outcome.Verdict.String(), finding: newFinding(&p.Outcome.Finding, p.Notes),
+		LifeS: p.Life, Above: []timeAbove{}, Profiles: []weighedProfile{},
+	}
+	for i, t := range r.Study.Thresholds {
+		out.Above = append(out.Above, timeAbove{t.Name, t.Temp, p.Above[i]})
+	}
+	for i := range p.Profiles {
+		q := &p.Profiles[i]
+		out.Profiles = append(out.Profiles, weighedProfile{
+			elementKey: elementKey{q.Crystal.Name, q.Element.Name}, Verdict: p.Outcome.Profiles[i].Verdict.String(),
+			finding: newFinding(&p.Outcome.Profiles[i], q.Notes),
+			G:       bounded(math.Exp(q.LnG)), StandIn: positive(q.StandIn), NumErr: q.NumErr,
+			FreeValues: freeValues(q.Free, q.Element.Unit),
+		})
+	}
+	return out
+}
+
+func newFinding(f *paths.Finding, notes []string) finding {
+	return finding{
+		ShiftFactor: f.Shift, Shift68: ends(f.Shift68), Shift95: ends(f.Shift95),
+		Tail: f.Tail, Misfit: f.Misfit, Points: f.Points, Degrees: f.Degrees, Notes: filled(notes),
+	}
+}
+
+func freeValues(free []paths.FreeFit, unit string) []fittedFree {
+	out := []fittedFree{}
+	for _, f := range free {
+		out = append(out, fittedFree{f.Name, f.Value, bounded(f.Sigma), unit, f.HasPrior})
+	}
+	return out
+}
+
+// lawsUsed lists the laws of the measured elements in their order, those with a
+// key once each.
+func lawsUsed(r *paths.Result) []lawUsed {
+	laws := []lawUsed{}
+	known := map[string]int{}
+	for _, q := range r.Paths[0].Profiles {
+		of := elementKey{q.Crystal.Name, q.Element.Name}
+		l := &q.Element.Law
+		if i, is := known[l.Key]; is && l.Key != "" {
+			laws[i].Elements = append(laws[i].Elements, of)
+			continue
+		}
+		known[l.Key] = len(laws)
+		confidence := "as given in the study"
+		if l.Row != nil {
+			confidence = l.Row.Confidence
+		}
+		laws = append(laws, lawUsed{l.Key, l.Citation, confidence, []elementKey{of}})
+	}
+	return laws
+}
+
+// portable returns the notes of the study with the files that they begin with
+// named as among its inputs, wherever the study was read from.
+func portable(s *study.Study) []string {
+	notes := []string{}
+	for _, note := range s.Notes {
+		file, rest, found := strings.Cut(note, ": ")
+		for _, in := range s.Inputs {
+			written := filepath.Join(filepath.Dir(s.File), filepath.FromSlash(in.Name)) == file
+			if found && (written || filepath.IsAbs(file) && filepath.Base(file) == in.Name) {
+				note = in.Name + ": " + rest
+			}
+		}
+		notes = append(notes, note)
+	}
+	return notes
+}
+
+// ends returns an interval with its open ends nil.
+func ends(x [2]float64) [2]*float64 {
+	return [2]*float64{positive(x[0]), bounded(x[1])}
+}
+
+func positive(x float64) *float64 {
+	if x > 0 {
+		return &x
+	}
+	return nil
+}
+
+func bounded(x float64) *float64 {
+	if math.IsInf(x, 0) || math.IsNaN(x) {
+		return nil
+	}
+	return &x
+}
+
+// filled returns texts, never nil, so that JSON shows an empty list.
+func filled(texts []string) []string {
+	if texts == nil {
+		return []string{}
+	}
+	return texts
+}

@@ -1,0 +1,146 @@
+package main
+
+import (
+	"encoding/csv"
+	"io"
+	"math"
+	"strconv"
+	"strings"
+
+	"bankfire/paths"
+	"bankfire/thermal"
+)
+
+// The tables are CSV as in RFC 4180: UTF-8, lines that end in CR LF, a header
+// with the units. A cell where there is no number is empty.
+
+// csvTable writes such a table.
+type csvTable struct{ *csv.Writer }
+
+func newCSV(w io.Writer) csvTable {
+	table := csvTable{csv.NewWriter(w)}
+	table.UseCRLF = true
+	return table
+}
+
+func (t csvTable) row(cells ...string) { t.Write(cells) } // end returns its error
+
+// end returns the first error of all rows.
+func (t csvTable) end() error {
+	t.Flush()
+	return t.Error()
+}
+
+// cell prints a number of a table.
+func cell(x float64) string {
+	if math.IsInf(x, 0) || math.IsNaN(x) {
+		return ""
+	}
+	return plain(x)
+}
+
+// pathsTable writes paths.csv, a row a path.
+func pathsTable(w io.Writer, r *paths.Result) error {
+	table := newCSV(w)
+	table.row(pathsHead(r)...)
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		o := &p.Outcome
+		row := []string{p.Path.Name, o.Verdict.String(), cell(o.Tail), cell(o.Misfit), strconv.Itoa(o.Points),
+			strconv.Itoa(o.Degrees), cell(o.Shift)}
+		for _, x := range [][2]float64{o.Shift68, o.Shift95} {
+			row = append(row, openEnd(x[0]), openEnd(x[1]))
+		}
+		row = append(row, cell(p.Life/thermal.Year))
+		for _, above := range p.Above {
+			row = append(row, cell(above/thermal.Year))
+		}
+		for j := range p.Profiles {
+			row = append(row, profileCells(&p.Profiles[j], &o.Profiles[j])...)
+		}
+		table.row(append(row, strings.Join(p.Notes, "; "))...)
+	}
+	return table.end()
+}
+
+func pathsHead(r *paths.Result) []string {
+	head := []string{"path", "verdict", "tail", "misfit", "points", "degrees_of_freedom", "shift_factor",
+		"shift_68_low", "shift_68_high", "shift_95_low", "shift_95_high", "life [yr]"}
+	for _, t := range r.Study.Thresholds {
+		head = append(head, "above "+t.Name+" [yr]")
+	}
+	for i := range r.Paths[0].Profiles {
+		q := &r.Paths[0].Profiles[i]
+		for _, name := range profileHead(q) {
+			head = append(head, q.Element.Name+" in "+q.Crystal.Name+": "+name)
+		}
+	}
+	return append(head, "notes")
+}
+
+// profileHead names the columns of a profile in paths.csv.
+func profileHead(q *paths.ProfileResult) []string {
+	head := []string{"verdict", "misfit", "shift_factor", "stand-in temperature [C]", "sqrt(2 G) [um]"}
+	for _, f := range q.Free {
+		unit := " [" + q.Element.Unit + "]"
+		head = append(head, f.Name+unit, f.Name+" sigma"+unit)
+	}
+	return append(head, "numerical error [sigma]")
+}
+
+// profileCells are the cells of those columns.
+func profileCells(q *paths.ProfileResult, f *paths.Finding) []string {
+	standIn := ""
+	if q.StandIn > 0 {
+		standIn = cell(q.StandIn - thermal.ZeroCelsius)
+	}
+	row := []string{f.Verdict.String(), cell(f.Misfit), cell(f.Shift), standIn, cell(math.Sqrt2 * math.Exp(q.LnG/2) * 1e6)}
+	for _, v := range q.Free {
+		row = append(row, cell(v.Value), cell(v.Sigma))
+	}
+	return append(row, cell(q.NumErr))
+}
+
+// profilesTable writes profiles.csv: for every profile and path, at the centres
+// of the cells, what the instrument would show of the fitted model before and
+// after diffusion.
+func profilesTable(w io.Writer, r *paths.Result) error {
+	table := newCSV(w)
+	table.row("crystal", "element", "path", "from centre [um]", "unit", "start", "end")
+	for q, path := range profiles(r) {
+		for k, x := range q.Centres {
+			table.row(q.Crystal.Name, q.Element.Name, path, cell(x*1e6), q.Element.Unit, cell(q.Start[k]), cell(q.Final[k]))
+		}
+	}
+	return table.end()
+}
+
+// pointsTable writes points.csv: for every profile and path, at the points of
+// the traverse, what was measured, what the instrument would show of the fitted
+// model and the difference.
+func pointsTable(w io.Writer, r *paths.Result) error {
+	table := newCSV(w)
+	table.row("crystal", "element", "path", "line", "from centre [um]", "unit", "measured", "sigma", "modelled", "residual [sigma]")
+	for q, path := range profiles(r) {
+		t := q.Element.Traverse
+		for k, x := range t.Position {
+			table.row(q.Crystal.Name, q.Element.Name, path, strconv.Itoa(t.Line[k]), cell(x*1e6), q.Element.Unit,
+				cell(t.Value[k]), cell(t.Sigma[k]), cell(q.Seen[k]), cell((t.Value[k]-q.Seen[k])/t.Sigma[k]))
+		}
+	}
+	return table.end()
+}
+
+// profiles goes through the profiles in the order of the study, and for each
+// through the paths.
+func profiles(r *paths.Result) func(yield func(q *paths.ProfileResult, path string) bool) {
+	return func(yield func(*paths.ProfileResult, string) bool) {
+		for n := range r.Paths[0].Profiles {
+			for i := range r.Paths {
+				if !yield(&r.Paths[i].Profiles[n], r.Paths[i].Path.Name) {
+					return
+				}
+			}
+		}
+	}
+}
