@@ -3,17 +3,19 @@ package traverse
 import (
 	"fmt"
 	"math"
-	"strconv"
-	"strings"
 
 	"bankfire/thermal"
 )
 
 // Errors say what one standard deviation of each value is. One of Column,
-// Percent and Constant must be given; Floor goes with any of them.
+// Percent and Constant must be given; Floor goes with any of them. A column in
+// "% of value", or in "%" where the values are in ppm, mole fraction or grey
+// levels, holds per cent of each value.
 type Errors struct {
-	Column   string  // header of a column of errors, with a unit like the values'
+	Column   string  // header of a column of errors, with a unit like the values' or per cent of them
 	Sigmas   float64 // standard deviations, or standard errors of a mean, that the column holds: 1 or 2; 0 is read as 1 and noted
+	Analyses float64 // the value is the mean of so many analyses whose scatter the column holds: it is divided by the root; 0 is 1
+	Counts   string  // header of a column of such numbers, without a unit; "" = there is none
 	Percent  float64 // per cent of each value's size, one standard deviation
 	Constant Amount  // the same for all, one standard deviation
 	Floor    Amount  // no standard deviation is taken to be less
@@ -30,12 +32,14 @@ type Amount struct {
 // the values are themselves in per cent. The error is a *thermal.InputError
 // without a place.
 func ParseErrors(text string) (Errors, error) {
-	if number, ok := strings.CutSuffix(strings.TrimSpace(text), "%"); ok && !strings.HasSuffix(number, "wt") {
-		v, err := strconv.ParseFloat(strings.TrimSpace(number), 64)
-		if err != nil || !(v > 0) || !finite(v) {
-			return Errors{}, &thermal.InputError{Value: text, Problem: "not a number of per cent above zero", Remedy: `write, for example, "4 %"`}
-		}
-		return Errors{Percent: v}, nil
+	c, unit, err := thermal.ParseConcentration(text)
+	switch {
+	case err != nil:
+		return Errors{}, err
+	case unit == "%" && (!(c.Value > 0) || c.Sigma != 0):
+		return Errors{}, &thermal.InputError{Value: text, Problem: "not a number of per cent above zero", Remedy: `write, for example, "4 %"`}
+	case unit == "%":
+		return Errors{Percent: c.Value}, nil
 	}
 	a, err := ParseAmount(text)
 	return Errors{Constant: a}, err
@@ -72,6 +76,10 @@ func (e *Errors) check(name string) error {
 		problem = "errors below zero"
 	case e.Sigmas != 0 && e.Sigmas != 1 && e.Sigmas != 2:
 		problem = fmt.Sprintf("a column of %g standard deviations", e.Sigmas)
+	case e.Column == "" && (e.Analyses != 0 || e.Counts != "") || e.Analyses != 0 && e.Counts != "":
+		problem = "numbers of analyses without a column of errors, or twice"
+	case e.Analyses != 0 && !(e.Analyses >= 1 && e.Analyses <= mostAnalyses):
+		problem = fmt.Sprintf("errors of %g analyses", e.Analyses)
 	}
 	if problem == "" {
 		return nil
@@ -93,21 +101,48 @@ func (d *reader) bindErrors() error {
 		return nil
 	}
 	b := d.columns[wantedColumns]
-	factor, ok := thermal.ConcentrationFactor(b.unit, d.t.Unit)
-	if !ok {
-		return d.errorAt(d.header[b.index].at, "column", b.title, "in a unit that the values' unit "+d.t.Unit+" does not convert to",
-			"give errors in the unit of the values")
+	d.perColumn = 1 / math.Max(d.o.Errors.Sigmas, 1) / math.Sqrt(math.Max(d.o.Errors.Analyses, 1))
+	if d.relative = b.unit == ofValue || b.unit == "%" && percentIsOfValue(d.t.Unit); d.relative {
+		d.perColumn /= 100
+		return nil
 	}
-	d.perColumn = factor / math.Max(d.o.Errors.Sigmas, 1)
-	return nil
+	factor, ok := errorFactor(b.unit, d.t.Unit)
+	if ok {
+		d.perColumn *= factor
+		return nil
+	}
+	problem, remedy := "in a unit that the values' unit "+d.t.Unit+" does not convert to", "give errors in the unit of the values"
+	if b.unit == "%" {
+		problem = "per cent of each value, or of the whole like the values in " + d.t.Unit
+		remedy = fmt.Sprintf("write [%s] or [%s]", ofValue, d.t.Unit)
+	}
+	return d.errorAt(d.header[b.index].at, "column", b.title, problem, remedy)
 }
+
+// percentIsOfValue reports whether an error in "%" can only be one of each
+// value, the values being in no kind of per cent.
+func percentIsOfValue(unit string) bool {
+	return unit == "ppm" || unit == "mole fraction" || unit == greyUnit
+}
+
+// errorFactor converts an error to the unit of the values: where that is Fo or
+// An, differences are those of mol%.
+func errorFactor(from, to string) (factor float64, ok bool) {
+	if factor, ok = thermal.ConcentrationFactor(from, to); ok || to != "Fo" && to != "An" {
+		return factor, ok
+	}
+	return thermal.ConcentrationFactor(from, "mol%")
+}
+
+// mostAnalyses is more than anyone averages.
+const mostAnalyses = 1e6
 
 // amount converts an amount of the options into the unit of the values.
 func (d *reader) amount(a Amount) (float64, error) {
 	if a == (Amount{}) {
 		return 0, nil
 	}
-	factor, ok := thermal.ConcentrationFactor(a.Unit, d.t.Unit)
+	factor, ok := errorFactor(a.Unit, d.t.Unit)
 	v := a.Value * factor
 	if ok && d.usable(v) {
 		return v, nil
@@ -129,7 +164,7 @@ const leastError = 1e-15
 func (d *reader) sigma(v float64) (float64, bool) {
 	e := &d.o.Errors
 	if e.Column != "" {
-		return d.typedSigma()
+		return d.typedSigma(v)
 	}
 	sigma := math.Max(d.constant+math.Abs(v)*e.Percent/100, d.floor)
 	if !d.usable(sigma) {
@@ -140,13 +175,25 @@ func (d *reader) sigma(v float64) (float64, bool) {
 	return sigma, true
 }
 
-// typedSigma returns the standard deviation in the current row's error column.
-func (d *reader) typedSigma() (float64, bool) {
+// typedSigma returns the standard deviation of v from the current row's error
+// column.
+func (d *reader) typedSigma(v float64) (float64, bool) {
 	typed, ok := d.quantity(wantedColumns)
 	if !ok {
 		return 0, false
 	}
-	sigma := math.Max(typed*d.perColumn, d.floor)
+	sigma := typed * d.perColumn
+	if d.relative {
+		sigma *= math.Abs(v)
+	}
+	if d.o.Errors.Counts != "" {
+		n, ok := d.analyses(wantedColumns + 1)
+		if !ok {
+			return 0, false
+		}
+		sigma /= math.Sqrt(n)
+	}
+	sigma = math.Max(sigma, d.floor)
 	switch {
 	case typed < 0:
 		d.refuse(wantedColumns, "an error below zero", "write the size of the error")
@@ -158,14 +205,30 @@ func (d *reader) typedSigma() (float64, bool) {
 	return 0, false
 }
 
+// analyses reads how many analyses the current row's value is the mean of.
+func (d *reader) analyses(k int) (float64, bool) {
+	n, ok := d.number(k)
+	if ok && !(n >= 1 && n <= mostAnalyses && n == math.Trunc(n)) {
+		d.refuse(k, "not a number of analyses", "write a whole number of at least 1")
+		return 0, false
+	}
+	return n, ok
+}
+
 func (d *reader) usable(sigma float64) bool {
 	return sigma >= leastError*whole(d.t.Unit) && finite(sigma)
 }
 
 func (d *reader) noteErrors() {
 	e := &d.o.Errors
-	if e.Column != "" && e.Sigmas == 0 {
+	if e.Column != "" && e.Sigmas == 0 && e.Analyses == 0 && e.Counts == "" {
 		d.note("column %q read as one standard deviation", e.Column)
+	}
+	if d.relative {
+		d.note("column %q is taken as per cent of each value", e.Column)
+	}
+	if e.Column != "" && !d.relative && d.t.Unit == "%" {
+		d.note("column %q is taken as per cent of the whole, like the values", e.Column)
 	}
 	if e.Percent != 0 && d.t.Unit == "%" {
 		d.note("errors of %g %% are taken of each value, not of the whole", e.Percent)

@@ -16,6 +16,12 @@ var variants = []func(o *Options){
 	func(o *Options) { o.Zero, o.Size, o.Skip = Rim, 20e-6, "skip" },
 	func(o *Options) { o.Position, o.Value, o.Errors = "x", "Ti", Errors{Column: "err"} },
 	func(o *Options) { o.From, o.To = -2e-6, 3e-6 },
+	func(o *Options) { o.Below = AsLimit },
+	func(o *Options) { o.Below, o.Value, o.Errors = LeftOut, "Ti", Errors{Column: "rsd", Sigmas: 2} },
+	func(o *Options) { o.Position, o.Errors = "x", Errors{Column: "sd", Counts: "n"} },
+	func(o *Options) {
+		o.Value, o.Errors, o.Zero, o.Size, o.Beyond = "BSE", Errors{Column: "err", Analyses: 4}, Rim, 1e-5, 1e-6
+	},
 }
 
 // FuzzRead: a reader never panics, says where the trouble is, and what it
@@ -65,7 +71,7 @@ func FuzzReadColumns(f *testing.F) {
 
 // FuzzParse: the texts of a spot and of errors.
 func FuzzParse(f *testing.F) {
-	for _, seed := range []string{"0.8 um fwhm", "15 um top-hat", "point", "4 %", "1.5 ppm", "0.01 wt%", "-1e400 um sigma", "1e-310 m sigma", "%"} {
+	for _, seed := range []string{"0.8 um fwhm", "15 um top-hat", "point", "4 %", "1.5 ppm", "0.01 wt%", "-1e400 um sigma", "1e-310 m sigma", "%", "0.5 mol%", "4. %", "2 grey"} {
 		f.Add(seed)
 	}
 	f.Fuzz(func(t *testing.T, text string) {
@@ -128,10 +134,13 @@ func checkProblem(t *testing.T, err error) *thermal.InputError {
 func checkReading(t *testing.T, got *Traverse) {
 	t.Helper()
 	n := len(got.Position)
-	if n == 0 || len(got.Value) != n || len(got.Sigma) != n || len(got.Line) != n {
+	if n == 0 || len(got.Value) != n || len(got.Sigma) != n || len(got.Line) != n || got.Limit != nil && len(got.Limit) != n {
 		t.Fatalf("lengths of %v", got)
 	}
 	for i, x := range got.Position {
+		if got.Limit != nil && got.Limit[i] && !(got.Value[i] > 0) {
+			t.Fatalf("limit %d of %v", i, got)
+		}
 		if !finite(x) || !finite(got.Value[i]) || !finite(got.Sigma[i]) || !(got.Sigma[i] > 0) {
 			t.Fatalf("point %d of %v", i, got)
 		}

@@ -47,7 +47,7 @@ func notNumber(text string) *fault {
 	case text == "":
 		return &fault{"blank", "fill it in, or leave the row out"}
 	case strings.ContainsAny(text[:1], "<>"):
-		return &fault{"a limit and not a value", "leave the row out, or mark it in a flag column"}
+		return &fault{"a limit and not a number", "leave the row out, or mark it in a flag column"}
 	case text[0] == '#':
 		return &fault{"an error that a spreadsheet left", "mend it in the spreadsheet, or leave the row out"}
 	}

@@ -261,17 +261,22 @@ func (s *sheet) quotedFrom(at int) (c cell, end int, f *fault) {
 
 // number reads the current row's cell of the k-th wanted column as typed.
 func (s *sheet) number(k int) (float64, bool) {
-	c := s.cells[s.columns[k].index]
-	v, f := s.numbers.parse(c.text)
+	v, f := s.parse(k, s.cells[s.columns[k].index].text)
 	if f != nil {
 		s.refuse(k, f.problem, f.remedy)
 		return 0, false
 	}
-	if s.comma == nil && s.numbers.ambiguous() {
+	return v, true
+}
+
+// parse reads a number from the current row's cell of the k-th wanted column.
+func (s *sheet) parse(k int, text string) (float64, *fault) {
+	v, f := s.numbers.parse(text)
+	if f == nil && s.comma == nil && s.numbers.ambiguous() {
 		s.comma = s.problemIn(k, "thousands set off, or a decimal comma",
 			"write 1234 or 1.234; nothing else in the file tells which is meant")
 	}
-	return v, true
+	return v, f
 }
 
 // refuse reports the current row's cell of the k-th wanted column.

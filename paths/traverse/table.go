@@ -86,7 +86,7 @@ func (s *sheet) quantity(k int) (float64, bool) {
 		s.refuse(k, "too large for a number", "check the exponent and the unit")
 	case b.dim == thermal.Temperature && v < coldest:
 		s.refuse(k, "not above absolute zero", "check the sign and the unit")
-	case b.dim == thermal.Concentration && math.Abs(v) > tooMuch*whole(b.unit):
+	case b.dim == thermal.Concentration && b.unit != ofValue && math.Abs(v) > tooMuch*whole(b.unit):
 		s.refuse(k, fmt.Sprintf("more than the whole, which is %g %s", whole(b.unit), b.unit), "check the number and the unit")
 	default:
 		return v, true
@@ -106,11 +106,17 @@ func whole(unit string) float64 {
 	if ppm, ok := thermal.ConcentrationFactor("ppm", unit); ok {
 		return 1e6 * ppm
 	}
-	if unit == "%" {
+	switch unit {
+	case "%", "mol%", "Fo", "An":
 		return 100
+	case greyUnit:
+		return 1e9 // no detector counts more
 	}
 	return 1
 }
+
+// greyUnit is the unit of relative values: grey levels, counts.
+const greyUnit = "grey"
 
 func finite(x float64) bool { return x-x == 0 }
 
@@ -118,8 +124,12 @@ func (s *sheet) noRows() error {
 	return &thermal.InputError{File: s.name, Problem: "no rows below the header", Remedy: "want at least one"}
 }
 
-// flagColumn is the Dim of a column of words.
-const flagColumn thermal.Dimension = -1
+// Dim of columns that are no quantities.
+const (
+	flagColumn  thermal.Dimension = -1 - iota // words
+	countColumn                               // numbers without a unit
+	errorColumn                               // a concentration, or per cent of another
+)
 
 // bound is a wanted column found in the header.
 type bound struct {
@@ -174,8 +184,14 @@ func (s *sheet) missingRemedy() string {
 func (s *sheet) bind(w Column, index int) (bound, *thermal.InputError) {
 	c := s.header[index]
 	b := bound{index: index, title: c.text, dim: w.Dim}
-	if w.Dim == flagColumn {
+	switch w.Dim {
+	case flagColumn:
 		return b, nil
+	case countColumn:
+		b.scale = 1
+		return b, nil
+	case errorColumn:
+		b.dim = thermal.Concentration
 	}
 	refuse := func(problem, remedy string) (bound, *thermal.InputError) {
 		return b, s.errorAt(c.at, "column", c.text, problem, remedy)
@@ -186,15 +202,34 @@ func (s *sheet) bind(w Column, index int) (bound, *thermal.InputError) {
 		typed = asked
 	}
 	if typed == "" {
-		return refuse("no unit", fmt.Sprintf("write, for example, %q", fmt.Sprintf("%s [%s]", c.text, thermal.UnitNames(w.Dim)[0])))
+		return refuse("no unit", fmt.Sprintf("write, for example, %q", fmt.Sprintf("%s [%s]", c.text, thermal.UnitNames(b.dim)[0])))
 	}
-	if problem, remedy := b.setUnit(typed); problem != "" {
+	if w.Dim == errorColumn && usualUnit(typed, w.Dim) == ofValue {
+		b.unit, b.scale = ofValue, 1
+	} else if problem, remedy := b.setUnit(typed); problem != "" {
 		return refuse(problem, remedy)
 	}
-	if usual, _ := thermal.UnitName(asked, w.Dim); asked != "" && usual != b.unit {
+	if usual := usualUnit(asked, w.Dim); asked != "" && usual != b.unit {
 		return refuse(fmt.Sprintf("its unit is %s, but the column asked for is in %s", b.unit, asked), "write the same unit in both places")
 	}
 	return b, nil
+}
+
+// ofValue is the unit of an error column in per cent of each value. Plain "%"
+// says the same where nothing else can be meant.
+const ofValue = "% of value"
+
+// usualUnit is the usual spelling of a column's unit, "" if it has none.
+func usualUnit(name string, dim thermal.Dimension) string {
+	if dim == errorColumn {
+		switch name {
+		case ofValue, "rel%", "rel %", "rel. %", "% rel", "% rel.", "%RSD", "% RSD":
+			return ofValue
+		}
+		dim = thermal.Concentration
+	}
+	usual, _ := thermal.UnitName(name, dim)
+	return usual
 }
 
 // setUnit looks a unit up, or says what is wrong with it. Concentrations stay

@@ -13,7 +13,7 @@ import (
 // of it.
 type Traverse struct {
 	Name     string    // of the file
-	Unit     string    // of Value and Sigma: ppm, wt%, mole fraction or %
+	Unit     string    // of Value and Sigma, in its usual spelling
 	Position []float64 // m from the crystal's centre (a slab's inner end), rising or falling throughout as in the file; as typed, see Place
 	Value    []float64
 	Sigma    []float64 // one standard deviation, above 0
@@ -60,14 +60,33 @@ func (t *Traverse) Place(dst []float64, origin, tilt float64) {
 	}
 }
 
+// Below says what becomes of a value below detection, typed as "<5".
+type Below int
+
+// What becomes of values below detection. Words that stand for one without its
+// limit ("bdl", "n.d.", "<LOD" and their like) can only be left out.
+const (
+	Undeclared Below = iota // refused
+	AsLimit                 // kept as a limit, see Traverse.Limit
+	LeftOut                 // left out and counted in the notes
+)
+
+// sigmasOfLimit is how many standard deviations of the blank a detection limit
+// is taken to be: three, the usual definition (Currie 1995, Pure Appl. Chem. 67,
+// 1699-1723, discusses it). A true value mu below a limit L then has the
+// likelihood Phi((L - mu)/s), s = L/3, of being reported as below it.
+const sigmasOfLimit = 3
+
 // Options say how a file of a traverse is to be read.
 type Options struct {
 	Position string  // header of the positions, with its unit as in Column.Header
 	Value    string  // header of the values, likewise
 	Errors   Errors  // where the errors come from; it must say
 	Skip     string  // header of a column that marks rows to be left out; "" = there is none
+	Below    Below   // what becomes of values below detection
 	Zero     Zero    // where positions count from
 	Size     float64 // position of the rim from the centre, m; needed for Rim, else 0 = not known yet
+	Beyond   float64 // how far beyond the rim positions may lie because the zero is uncertain, m
 	From, To float64 // rows to keep by position as in the file, m, ends included; both 0 = all
 	Spot     Spot    // handed on
 }
@@ -79,9 +98,10 @@ type Options struct {
 // Skip column or outside the window; both are counted in the notes. A mark is
 // "x", "1", "yes", "true" or "skip"; no mark is a blank, "0", "no" or "false".
 // Also refused are positions that occur twice or turn back, positions beyond
-// the rim if Size is known, errors that are not above zero, and a file of which
-// no row is left. Negative values are kept and noted: about a detection limit
-// they are as honest as positive ones.
+// the rim if Size is known, errors that are not above zero, values below
+// detection unless Options.Below says what becomes of them, and a file of which
+// no value is left. Negative values are kept and noted: about a detection limit
+// they are as honest as positive ones. Of a limit, the error column is not read.
 //
 // The error is a *thermal.InputError with file, line and column, or up to 20 of
 // them joined; the traverse is then nil. Read panics if Options cannot be meant:
@@ -97,7 +117,9 @@ func Read(name string, r io.Reader, o Options) (*Traverse, error) {
 	if err != nil {
 		return nil, err
 	}
-	d := reader{sheet: s, o: o, lines: map[float64]int{}, t: &Traverse{Name: name, Unit: s.columns[valueColumn].unit, Spot: o.Spot, Zero: o.Zero, Size: o.Size}}
+	unit := s.columns[valueColumn].unit
+	d := reader{sheet: s, o: o, lines: map[float64]int{},
+		t: &Traverse{Name: name, Unit: unit, Grey: unit == greyUnit, Spot: o.Spot, Zero: o.Zero, Size: o.Size}}
 	if err := d.bindErrors(); err != nil {
 		return nil, err
 	}
@@ -107,7 +129,7 @@ func Read(name string, r io.Reader, o Options) (*Traverse, error) {
 	if err := s.finish(); err != nil {
 		return nil, err
 	}
-	if len(d.t.Position) == 0 {
+	if len(d.t.Position) == d.limits {
 		return nil, d.noneLeft()
 	}
 	d.addNotes()
@@ -121,13 +143,15 @@ func (o *Options) check() {
 		panic(fmt.Sprintf("traverse: unknown zero %d", o.Zero))
 	case !(o.Size >= 0) || !finite(o.Size) || o.Zero == Rim && o.Size == 0:
 		panic(fmt.Sprintf("traverse: size of the crystal %g m", o.Size))
+	case !(o.Beyond >= 0) || !finite(o.Beyond):
+		panic(fmt.Sprintf("traverse: positions may lie %g m beyond the rim", o.Beyond))
 	case !(o.From < o.To) && (o.From != 0 || o.To != 0):
 		panic(fmt.Sprintf("traverse: window from %g to %g m", o.From, o.To))
 	}
 }
 
-// Where the wanted columns stand in sheet.columns. Those of Errors and Skip
-// come after them, if there are any.
+// Where the wanted columns stand in sheet.columns. Those that Options may leave
+// out come after them, in this order: errors, numbers of analyses, marks.
 const (
 	positionColumn = iota
 	valueColumn
@@ -135,15 +159,16 @@ const (
 )
 
 func (o *Options) columns(name string) ([]Column, error) {
-	want := []Column{{o.Position, thermal.Length}, {o.Value, thermal.Concentration}}
 	if err := o.Errors.check(name); err != nil {
 		return nil, err
 	}
-	if o.Errors.Column != "" {
-		want = append(want, Column{o.Errors.Column, thermal.Concentration})
-	}
-	if o.Skip != "" {
-		want = append(want, Column{o.Skip, flagColumn})
+	want := []Column{{o.Position, thermal.Length}, {o.Value, thermal.Concentration}}
+	for _, more := range []Column{
+		{o.Errors.Column, errorColumn}, {o.Errors.Counts, countColumn}, {o.Skip, flagColumn},
+	} {
+		if more.Header != "" {
+			want = append(want, more)
+		}
 	}
 	return want, nil
 }
@@ -158,7 +183,9 @@ type reader struct {
 	direction                  float64         // 1 rising, -1 falling, 0 not known yet
 	turned                     bool            // a position that turns back has been reported
 	constant, floor, perColumn float64         // in the unit of the values
+	relative                   bool            // the error column is in per cent of each value
 	marked, outside, negative  int
+	limits, below              int // values below detection kept and left out
 }
 
 // row reads the current row into the traverse, or leaves it out.
@@ -179,6 +206,10 @@ func (d *reader) row() {
 	if !d.inOrder(x) {
 		return
 	}
+	if d.isBelow() {
+		d.takeBelow(x)
+		return
+	}
 	v, ok := d.quantity(valueColumn)
 	if !ok {
 		return
@@ -191,6 +222,9 @@ func (d *reader) row() {
 func (d *reader) keep(x, v, sigma float64) {
 	if v < 0 {
 		d.negative++
+	}
+	if d.t.Limit != nil {
+		d.t.Limit = append(d.t.Limit, false)
 	}
 	if d.o.Zero == Rim {
 		x = d.o.Size - x
@@ -248,15 +282,15 @@ func (d *reader) beyondRim(x float64) bool {
 	if d.o.Zero == Rim {
 		x = d.o.Size - x
 	}
-	return !(math.Abs(x) <= d.o.Size*(1+roundOff))
+	return !(math.Abs(x) <= d.o.Size*(1+roundOff)+d.o.Beyond)
 }
 
 func (d *reader) noneLeft() error {
-	if d.marked == 0 && d.outside == 0 {
+	if d.marked+d.outside+d.below+d.limits == 0 {
 		return d.noRows()
 	}
-	return &thermal.InputError{File: d.name, Problem: fmt.Sprintf("no row is left: %d marked to be left out, %d outside the window",
-		d.marked, d.outside), Remedy: "want at least one"}
+	return &thermal.InputError{File: d.name, Problem: fmt.Sprintf("no value is left: %d marked to be left out, %d outside the window, %d below detection",
+		d.marked, d.outside, d.below+d.limits), Remedy: "want at least one"}
 }
 
 func (d *reader) addNotes() {
@@ -265,6 +299,12 @@ func (d *reader) addNotes() {
 	}
 	if d.outside > 0 {
 		d.note("%s outside the window %s to %s left out", plural(d.outside, "row"), micrometres(d.o.From), micrometres(d.o.To))
+	}
+	if d.below > 0 {
+		d.note("%s below detection left out", plural(d.below, "value"))
+	}
+	if d.limits > 0 {
+		d.note("%s below detection used as limits", plural(d.limits, "value"))
 	}
 	if d.negative > 0 {
 		d.note("%s below zero kept", plural(d.negative, "value"))

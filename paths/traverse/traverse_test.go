@@ -72,6 +72,38 @@ var readings = []struct {
 	{name: "marks", text: "distance [um],Ti [ppm],2se [ppm],skip\n0,50,2,\n0,crack,,x\n3,60,2,no\n,,,Yes\n", change: func(o *Options) { o.Skip = "skip" },
 		want: Traverse{Position: []float64{0, 3e-6}, Value: []float64{50, 60}, Sigma: []float64{1, 1}}, lines: []int{2, 4},
 		notes: []string{`2 rows left out by column "skip"`}},
+	{name: "limits of detection", text: header + "0,50,2\n1,<6,\n2,< 0.03,bdl\n3,4,2\n", change: func(o *Options) { o.Below = AsLimit },
+		want: Traverse{Position: []float64{0, 1e-6, 2e-6, 3e-6}, Value: []float64{50, 6, 0.03, 4}, Sigma: []float64{1, 2, 0.01, 1},
+			Limit: []bool{false, true, true, false}}, lines: []int{2, 3, 4, 5},
+		notes: []string{"2 values below detection used as limits"}},
+	{name: "below detection left out", text: header + "0,50,2\n1,<6,\n2,b.d.l.,\n3,<LOD,1\n4,4,2\n", change: func(o *Options) { o.Below = LeftOut },
+		want: Traverse{Position: []float64{0, 4e-6}, Value: []float64{50, 4}, Sigma: []float64{1, 1}}, lines: []int{2, 6},
+		notes: []string{"3 values below detection left out"}},
+	{name: "standard error of a number of analyses", text: header + "0,50,6\n", change: func(o *Options) { o.Errors = Errors{Column: "2se [ppm]", Sigmas: 2, Analyses: 9} },
+		want: Traverse{Position: []float64{0}, Value: []float64{50}, Sigma: []float64{1}}, lines: []int{2}},
+	{name: "standard errors with a column of numbers", text: "x [um],Ti [ppm],sd [ppm],n,skip\n0,50,6,9,\n1,50,6,4,\n2,50,6,,x\n",
+		change: func(o *Options) {
+			o.Position, o.Skip, o.Errors = "x [um]", "skip", Errors{Column: "sd [ppm]", Counts: "n"}
+		},
+		want: Traverse{Position: []float64{0, 1e-6}, Value: []float64{50, 50}, Sigma: []float64{2, 3}}, lines: []int{2, 3},
+		notes: []string{`1 row left out by column "skip"`}},
+	{name: "column of errors in per cent of each value", text: "distance [um],Ti [ppm],rsd [%]\n0,50,4\n1,-20,10\n", change: func(o *Options) { o.Errors = Errors{Column: "rsd [%]", Sigmas: 2} },
+		want: Traverse{Position: []float64{0, 1e-6}, Value: []float64{50, -20}, Sigma: []float64{1, 1}}, lines: []int{2, 3},
+		notes: []string{"1 value below zero kept", `column "rsd [%]" is taken as per cent of each value`}},
+	{name: "the same of wt%, said so", text: "distance [um],Ti [wt%],rsd [rel. %]\n0,0.5,4\n", change: func(o *Options) { o.Value, o.Errors = "Ti", Errors{Column: "rsd", Sigmas: 1} },
+		want: Traverse{Unit: "wt%", Position: []float64{0}, Value: []float64{0.5}, Sigma: []float64{0.02}}, lines: []int{2},
+		notes: []string{`column "rsd" is taken as per cent of each value`}},
+	{name: "column of errors in per cent of the whole", text: "distance [um],An [%],err [%]\n0,50,4\n", change: func(o *Options) { o.Value, o.Errors = "An", Errors{Column: "err", Sigmas: 2} },
+		want: Traverse{Unit: "%", Position: []float64{0}, Value: []float64{50}, Sigma: []float64{2}}, lines: []int{2},
+		notes: []string{`column "err" is taken as per cent of the whole, like the values`}},
+	{name: "grey levels", text: "distance [um],BSE [grey],err [grey]\n0,120,2\n1,300,2\n", change: func(o *Options) { o.Value, o.Errors = "BSE [grey]", Errors{Column: "err", Sigmas: 2} },
+		want: Traverse{Unit: "grey", Grey: true, Position: []float64{0, 1e-6}, Value: []float64{120, 300}, Sigma: []float64{1, 1}}, lines: []int{2, 3}},
+	{name: "forsterite with errors in mol%", text: "distance [um],x [Fo],err [mol%]\n0,88,1\n", change: func(o *Options) {
+		o.Value, o.Errors = "x [Fo]", Errors{Column: "err", Sigmas: 2, Floor: Amount{0.002, "mole fraction"}}
+	},
+		want: Traverse{Unit: "Fo", Position: []float64{0}, Value: []float64{88}, Sigma: []float64{0.5}}, lines: []int{2}},
+	{name: "beyond the rim by an uncertain zero", text: header + "-0.5,50,2\n1,50,2\n", change: func(o *Options) { o.Zero, o.Size, o.Beyond = Rim, 10e-6, 1e-6 },
+		want: Traverse{Position: []float64{10.5e-6, 9e-6}, Value: []float64{50, 50}, Sigma: []float64{1, 1}}, lines: []int{2, 3}},
 	{name: "comments and empty rows", text: "# HF-12, spot 0.8 um\n\n" + header + ",,\n1,50,2,,\n# lost the beam\n2,60,2\n",
 		want: Traverse{Position: []float64{1e-6, 2e-6}, Value: []float64{50, 60}, Sigma: []float64{1, 1}}, lines: []int{5, 7},
 		notes: []string{"1 comment line skipped, the first on line 6"}},
@@ -176,6 +208,28 @@ var refusals = []struct {
 		`ti.csv: error: no errors given; want one of "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`}},
 	{name: "errors twice", text: header + "1,50,2\n", change: func(o *Options) { o.Errors.Percent = 4 }, want: []string{
 		`ti.csv: error: errors given in more than one way; want one of "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`}},
+	{name: "per cent of what", text: "distance [um],Ti [wt%],err [%]\n0,50,4\n", change: func(o *Options) { o.Value, o.Errors = "Ti", Errors{Column: "err", Sigmas: 1} }, want: []string{
+		`ti.csv:1:24: column "err [%]": per cent of each value, or of the whole like the values in wt%; write [% of value] or [wt%]`}},
+	{name: "limits that are none", text: header + "1,<0,\n2,<,\n3,<five,\n4,<-1,\n5,< 2e6,\n6,bdl,\n7,<<5,\n", change: func(o *Options) { o.Below = AsLimit }, want: []string{
+		`ti.csv:2:3: Ti [ppm] "<0": not a limit between zero and the whole, which is 1e+06 ppm; write the limit of detection, such as "<5"`,
+		`ti.csv:3:3: Ti [ppm] "<": blank; write the limit as a number, such as "<5"`,
+		`ti.csv:4:3: Ti [ppm] "<five": not a number; write the limit as a number, such as "<5"`,
+		`ti.csv:5:3: Ti [ppm] "<-1": not a limit between zero and the whole, which is 1e+06 ppm; write the limit of detection, such as "<5"`,
+		`ti.csv:6:3: Ti [ppm] "< 2e6": not a limit between zero and the whole, which is 1e+06 ppm; write the limit of detection, such as "<5"`,
+		`ti.csv:7:3: Ti [ppm] "bdl": below a limit that is not given; write the limit, such as "<5", or below = "skip" in the study to leave such rows out`,
+		`ti.csv:8:3: Ti [ppm] "<<5": a limit and not a number; write the limit as a number, such as "<5"`}},
+	{name: "a comma in limits that may mean thousands", text: strings.ReplaceAll(header, ",", ";") + "1;50;2\n2;<1,250;\n", change: func(o *Options) { o.Below = AsLimit }, want: []string{
+		`ti.csv:3:3: Ti [ppm] "<1,250": thousands set off, or a decimal comma; write 1234 or 1.234; nothing else in the file tells which is meant`}},
+	{name: "nothing but limits", text: header + "1,<5,\n", change: func(o *Options) { o.Below = AsLimit }, want: []string{
+		`ti.csv: no value is left: 0 marked to be left out, 0 outside the window, 1 below detection; want at least one`}},
+	{name: "numbers of analyses that are none", text: "distance [um],Ti [ppm],sd [ppm],n\n1,50,2,0\n2,50,2,2.5\n3,50,2,\n", change: func(o *Options) { o.Errors = Errors{Column: "sd [ppm]", Counts: "n"} }, want: []string{
+		`ti.csv:2:8: n "0": not a number of analyses; write a whole number of at least 1`,
+		`ti.csv:3:8: n "2.5": not a number of analyses; write a whole number of at least 1`,
+		`ti.csv:4:8: n: blank; fill it in, or leave the row out`}},
+	{name: "numbers of analyses of no column", text: header + "1,50,2\n", change: func(o *Options) { o.Errors = Errors{Percent: 2, Analyses: 3} }, want: []string{
+		`ti.csv: error: numbers of analyses without a column of errors, or twice; want one of "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`}},
+	{name: "a tenth of an analysis", text: header + "1,50,2\n", change: func(o *Options) { o.Errors.Analyses = 0.1 }, want: []string{
+		`ti.csv: error: errors of 0.1 analyses; want one of "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`}},
 	{name: "three sigmas", text: header + "1,50,2\n", change: func(o *Options) { o.Errors.Sigmas = 3 }, want: []string{
 		`ti.csv: error: a column of 3 standard deviations; want one of "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`}},
 	{name: "negative per cent", text: header + "1,50,2\n", change: func(o *Options) { o.Errors = Errors{Percent: -4} }, want: []string{
@@ -189,7 +243,7 @@ var refusals = []struct {
 		`ti.csv:5:3: Ti [ppm] "abc": not a number; write only the number, such as 12.5; its unit belongs in the header`,
 		`ti.csv:6:3: Ti [ppm] "12 ppm": not a number; write only the number, such as 12.5; its unit belongs in the header`,
 		`ti.csv:7:3: Ti [ppm] "#DIV/0!": an error that a spreadsheet left; mend it in the spreadsheet, or leave the row out`,
-		`ti.csv:8:3: Ti [ppm] "<5": a limit and not a value; leave the row out, or mark it in a flag column`,
+		`ti.csv:8:3: Ti [ppm] "<5": below detection, and the study does not say what becomes of it; write below = "limit" in the traverse to use it as a limit, or below = "skip" to leave such rows out`,
 		`ti.csv:9:3: Ti [ppm] "1e999": too large for a number; check the exponent`,
 		`ti.csv:10:3: Ti [ppm] "0x1p4": not a number; write only the number, such as 12.5; its unit belongs in the header`,
 		`ti.csv:11:3: Ti [ppm] "1_0": not a number; write only the number, such as 12.5; its unit belongs in the header`}},
@@ -228,7 +282,7 @@ var refusals = []struct {
 	{name: "odd mark", text: "distance [um],Ti [ppm],2se [ppm],skip\n1,50,2,good\n", change: func(o *Options) { o.Skip = "skip" }, want: []string{
 		`ti.csv:2:8: skip "good": neither a mark nor none; write "x" to leave the row out, nothing to keep it`}},
 	{name: "nothing left", text: "distance [um],Ti [ppm],2se [ppm],skip\n1,50,2,x\n7,50,2,\n", change: func(o *Options) { o.Skip, o.To = "skip", 3e-6 }, want: []string{
-		`ti.csv: no row is left: 1 marked to be left out, 1 outside the window; want at least one`}},
+		`ti.csv: no value is left: 1 marked to be left out, 1 outside the window, 0 below detection; want at least one`}},
 	{name: "long line", text: header + strings.Repeat("1", maxLine+1), want: []string{
 		`ti.csv:2:1: a line of more than 1048576 bytes; want one row a line`}},
 	{name: "many columns", text: strings.Repeat(",", maxCells+5), want: []string{
@@ -410,6 +464,9 @@ func TestParseSpot(t *testing.T) {
 func TestParseErrors(t *testing.T) {
 	for text, want := range map[string]Errors{
 		"4 %":      {Percent: 4},
+		"4. %":     {Percent: 4},
+		"0.5 mol%": {Constant: Amount{0.5, "mol%"}},
+		"2 grey":   {Constant: Amount{2, "grey"}},
 		"2.5%":     {Percent: 2.5},
 		"1.5 ppm":  {Constant: Amount{1.5, "ppm"}},
 		"0.01 wt%": {Constant: Amount{0.01, "wt%"}},
