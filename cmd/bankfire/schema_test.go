@@ -53,6 +53,14 @@ func smallResult(t *testing.T) *paths.Result {
 	return r
 }
 
+// notRun makes the first path of the result one that was not run.
+func notRun(r *paths.Result) {
+	nan := math.NaN()
+	r.Paths[0].Profiles, r.Paths[0].Notes = nil, []string{"lives longer than 1 kyr"}
+	r.Paths[0].Outcome = paths.Outcome{Finding: paths.Finding{
+		Shift: nan, Shift68: [2]float64{0, math.Inf(1)}, Shift95: [2]float64{0, math.Inf(1)}, Tail: nan, Misfit: nan}}
+}
+
 // asJSON is the summary as another program reads it.
 func asJSON(t *testing.T, w *weighing) map[string]any {
 	t.Helper()
@@ -90,6 +98,7 @@ func TestSummaryKeepsSchema(t *testing.T) {
 		{"thresholds", func(r *paths.Result) {
 			r.Study.Thresholds, r.Paths[0].Above = []study.Threshold{{Name: "lock-up", Temp: 1000}}, []float64{0}
 		}},
+		{"nothing but one path that was not run", notRun},
 		{"every verdict of now", func(r *paths.Result) {
 			p := &r.Paths[0]
 			for _, v := range []paths.Verdict{paths.TooSharp, paths.TooSmooth, paths.WrongShape} {
@@ -128,7 +137,7 @@ func TestSchemaRefuses(t *testing.T) {
 		{"field missing in a path", func(_, p, _ map[string]any) { delete(p, "tail") }},
 		{"field missing in a profile", func(_, _, q map[string]any) { delete(q, "unit"); delete(q, "crystal") }},
 		{"number as text", func(_, p, _ map[string]any) { p["misfit"] = "3" }},
-		{"number null", func(_, p, _ map[string]any) { p["shift_factor"] = nil }},
+		{"number null though the path was run", func(_, p, _ map[string]any) { p["shift_factor"] = nil }},
 		{"unknown verdict", func(_, p, _ map[string]any) { p["verdict"] = "fine" }},
 		{"interval with one end", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0} }},
 		{"interval with three", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0, 2.0, 3.0} }},

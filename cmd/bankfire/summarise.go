@@ -15,7 +15,7 @@ import (
 func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
-		Inputs: []input{}, Laws: lawsUsed(r), Paths: []weighedPath{}, Families: []struct{}{},
+		Inputs: []input{}, Laws: lawsUsed(r.Study), Paths: []weighedPath{}, Families: []struct{}{},
 		Notes: portable(r.Study), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {
@@ -49,8 +49,8 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 
 func newFinding(f *paths.Finding, notes []string) finding {
 	return finding{
-		ShiftFactor: f.Shift, Shift68: ends(f.Shift68), Shift95: ends(f.Shift95),
-		Tail: f.Tail, Misfit: f.Misfit, Points: f.Points, Degrees: f.Degrees, Notes: filled(notes),
+		ShiftFactor: bounded(f.Shift), Shift68: ends(f.Shift68), Shift95: ends(f.Shift95),
+		Tail: bounded(f.Tail), Misfit: bounded(f.Misfit), Points: f.Points, Degrees: f.Degrees, Notes: filled(notes),
 	}
 }
 
@@ -64,24 +64,32 @@ func freeValues(free []paths.FreeFit, unit string) []fittedFree {
 
 // lawsUsed lists the laws of the measured elements in their order, those with a
 // key once each.
-func lawsUsed(r *paths.Result) []lawUsed {
+func lawsUsed(s *study.Study) []lawUsed {
 	laws := []lawUsed{}
 	known := map[string]int{}
-	for _, q := range r.Paths[0].Profiles {
-		of := elementKey{q.Crystal.Name, q.Element.Name}
-		l := &q.Element.Law
-		if i, is := known[l.Key]; is && l.Key != "" {
-			laws[i].Elements = append(laws[i].Elements, of)
-			continue
+	for _, c := range s.Crystals {
+		for _, e := range c.Elements {
+			of := elementKey{c.Name, e.Name}
+			i, is := known[e.Law.Key]
+			switch {
+			case e.Traverse == nil:
+			case is && e.Law.Key != "":
+				laws[i].Elements = append(laws[i].Elements, of)
+			default:
+				known[e.Law.Key] = len(laws)
+				laws = append(laws, lawUsed{e.Law.Key, e.Law.Citation, confidence(&e.Law), []elementKey{of}})
+			}
 		}
-		known[l.Key] = len(laws)
-		confidence := "as given in the study"
-		if l.Row != nil {
-			confidence = l.Row.Confidence
-		}
-		laws = append(laws, lawUsed{l.Key, l.Citation, confidence, []elementKey{of}})
 	}
 	return laws
+}
+
+// confidence says how sure the constants of a law are.
+func confidence(l *study.Law) string {
+	if l.Row == nil {
+		return "as given in the study"
+	}
+	return l.Row.Confidence
 }
 
 // portable returns the notes of the study with the files that they begin with

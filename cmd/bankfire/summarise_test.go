@@ -8,8 +8,8 @@ import (
 	"slices"
 	"testing"
 
-	"bankfire/paths"
 	"bankfire/paths/study"
+	"bankfire/paths/traverse"
 )
 
 func TestPortable(t *testing.T) {
@@ -35,23 +35,21 @@ func TestPortable(t *testing.T) {
 
 func TestLawsUsed(t *testing.T) {
 	law := func(key, citation string) study.Law { return study.Law{Key: key, Citation: citation} }
-	var r paths.Result
-	r.Paths = make([]paths.PathResult, 1)
-	for _, x := range []struct {
-		crystal, element string
-		law              study.Law
-	}{{"A", "Ti", law("mine", "me")}, {"A", "Sr", law("", "one")}, {"B", "Ti", law("mine", "me")}, {"B", "Sr", law("", "two")}} {
-		r.Paths[0].Profiles = append(r.Paths[0].Profiles, paths.ProfileResult{
-			Crystal: &study.Crystal{Name: x.crystal}, Element: &study.Element{Name: x.element, Law: x.law},
-		})
-	}
+	measured := new(traverse.Traverse)
+	s := &study.Study{Crystals: []study.Crystal{
+		{Name: "A", Elements: []study.Element{
+			{Name: "Ti", Law: law("mine", "me"), Traverse: measured}, {Name: "Sr", Law: law("", "one"), Traverse: measured}}},
+		{Name: "B", Elements: []study.Element{
+			{Name: "Ti", Law: law("mine", "me"), Traverse: measured}, {Name: "Sr", Law: law("", "two"), Traverse: measured},
+			{Name: "Al", Law: law("unmeasured", "me")}}},
+	}}
 	const own = "as given in the study"
 	want := []lawUsed{
 		{"mine", "me", own, []elementKey{{"A", "Ti"}, {"B", "Ti"}}},
 		{"", "one", own, []elementKey{{"A", "Sr"}}},
 		{"", "two", own, []elementKey{{"B", "Sr"}}},
 	}
-	if got := lawsUsed(&r); !reflect.DeepEqual(got, want) {
+	if got := lawsUsed(s); !reflect.DeepEqual(got, want) {
 		t.Errorf("got  %+v\nwant %+v", got, want)
 	}
 }

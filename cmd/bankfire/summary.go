@@ -48,13 +48,14 @@ type elementKey struct {
 	Element string `json:"element"`
 }
 
-// finding holds the fields that paths and their profiles share.
+// finding holds the fields that paths and their profiles share. The numbers of
+// a path that was not run are null.
 type finding struct {
-	ShiftFactor float64     `json:"shift_factor"`
+	ShiftFactor *float64    `json:"shift_factor"`
 	Shift68     [2]*float64 `json:"shift_68"`
 	Shift95     [2]*float64 `json:"shift_95"`
-	Tail        float64     `json:"tail"`
-	Misfit      float64     `json:"misfit"` // chi-square
+	Tail        *float64    `json:"tail"`
+	Misfit      *float64    `json:"misfit"` // chi-square
 	Points      int         `json:"points"`
 	Degrees     int         `json:"degrees_of_freedom"`
 	Notes       []string    `json:"notes"`

@@ -42,7 +42,8 @@ func cell(x float64) string {
 // pathsTable writes paths.csv, a row a path.
 func pathsTable(w io.Writer, r *paths.Result) error {
 	table := newCSV(w)
-	table.row(pathsHead(r)...)
+	head := pathsHead(r)
+	table.row(head...)
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
@@ -58,6 +59,7 @@ func pathsTable(w io.Writer, r *paths.Result) error {
 		for j := range p.Profiles {
 			row = append(row, profileCells(&p.Profiles[j], &o.Profiles[j])...)
 		}
+		row = append(row, make([]string, len(head)-1-len(row))...) // a path that was not run has no profiles
 		table.row(append(row, strings.Join(p.Notes, "; "))...)
 	}
 	return table.end()
@@ -69,8 +71,8 @@ func pathsHead(r *paths.Result) []string {
 	for _, t := range r.Study.Thresholds {
 		head = append(head, "above "+t.Name+" [yr]")
 	}
-	for i := range r.Paths[0].Profiles {
-		q := &r.Paths[0].Profiles[i]
+	for i := range profilesOf(r) {
+		q := &profilesOf(r)[i]
 		for _, name := range profileHead(q) {
 			head = append(head, q.Element.Name+" in "+q.Crystal.Name+": "+name)
 		}
@@ -132,15 +134,27 @@ func pointsTable(w io.Writer, r *paths.Result) error {
 }
 
 // profiles goes through the profiles in the order of the study, and for each
-// through the paths.
+// through the paths that were run.
 func profiles(r *paths.Result) func(yield func(q *paths.ProfileResult, path string) bool) {
 	return func(yield func(*paths.ProfileResult, string) bool) {
-		for n := range r.Paths[0].Profiles {
+		for n := range profilesOf(r) {
 			for i := range r.Paths {
-				if !yield(&r.Paths[i].Profiles[n], r.Paths[i].Path.Name) {
+				p := &r.Paths[i]
+				if len(p.Profiles) > 0 && !yield(&p.Profiles[n], p.Path.Name) {
 					return
 				}
 			}
 		}
 	}
+}
+
+// profilesOf returns the profiles of the first path that was run, none if none
+// was.
+func profilesOf(r *paths.Result) []paths.ProfileResult {
+	for i := range r.Paths {
+		if len(r.Paths[i].Profiles) > 0 {
+			return r.Paths[i].Profiles
+		}
+	}
+	return nil
 }

@@ -95,6 +95,32 @@ func TestPathsTableWithoutStandIn(t *testing.T) {
 	checkCell(t, readTable(t, r, pathsTable)[0], "Ti in HF-1: stand-in temperature [C]", math.NaN())
 }
 
+// TestTablesOfPathsNotRun has one path that was not run before one that was, and then alone.
+func TestTablesOfPathsNotRun(t *testing.T) {
+	r := smallResult(t)
+	r.Paths = append(r.Paths, r.Paths[0])
+	notRun(r)
+	rows := readTable(t, r, pathsTable)
+	for _, name := range []string{"tail", "misfit", "shift_factor", "shift_95_high", "Ti in HF-1: verdict", "Ti in HF-1: core [ppm]"} {
+		if rows[0][name] != "" {
+			t.Errorf("column %q of the path not run is %q", name, rows[0][name])
+		}
+	}
+	if rows[0]["notes"] != "lives longer than 1 kyr" || rows[1]["Ti in HF-1: core [ppm]"] == "" {
+		t.Errorf("got %q", rows)
+	}
+	if points := readTable(t, r, pointsTable); len(points) != 6 {
+		t.Errorf("%d points, want those of the one path that was run", len(points))
+	}
+	r.Paths = r.Paths[:1]
+	if rows := len(readTable(t, r, pathsTable)); rows != 1 {
+		t.Errorf("%d rows, want 1", rows)
+	}
+	if curves := len(readTable(t, r, profilesTable)); curves != 0 {
+		t.Errorf("%d cells, want none", curves)
+	}
+}
+
 // TestPointsTable checks the table against the file of the traverse and itself.
 func TestPointsTable(t *testing.T) {
 	r := smallResult(t)

@@ -321,12 +321,15 @@ func TestOpenRefusesUnwritable(t *testing.T) {
 		t.Skip("root may write anywhere")
 	}
 	dir := t.TempDir()
-	plant(t, dir, map[string]string{"empty": "/"})
+	plant(t, dir, map[string]string{"empty": "/", "writable": "/"})
 	for _, name := range []string{"empty", "."} {
 		if err := os.Chmod(filepath.Join(dir, name), 0o555); err != nil {
 			t.Fatal(err)
 		}
 		defer os.Chmod(filepath.Join(dir, name), 0o755)
+	}
+	if err := put(results.OnDisk{}, filepath.Join(dir, "writable"), false, first); err != nil {
+		t.Errorf("a folder that can be written to, in one that cannot: %v", err)
 	}
 	for _, name := range []string{"empty", "new"} {
 		t.Run(name, func(t *testing.T) {
