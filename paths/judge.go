@@ -12,14 +12,15 @@ type Verdict int
 
 // The verdicts, in the order in which Judge looks for them.
 const (
-	Reproduces Verdict = iota // the path passes as it is
+	Unjudged   Verdict = iota // none: what was never judged does not pass
+	Reproduces                // the path passes as it is
 	TooSharp                  // it would pass with more diffusion
 	TooSmooth                 // it would pass with less diffusion
 	WrongShape                // no amount of diffusion along this path passes
 )
 
 func (v Verdict) String() string {
-	return [...]string{"reproduces", "too sharp", "too smooth", "wrong shape"}[v]
+	return [...]string{"not judged", "reproduces", "too sharp", "too smooth", "wrong shape"}[v]
 }
 
 // Finding is what chi-square says of one profile, or of several jointly.
@@ -49,7 +50,9 @@ type Outcome struct {
 //	p(m*) passes at the best m*      too sharp (m* > 1) or too smooth (m* < 1)
 //	neither                          wrong shape
 //
-// where to pass is to be no smaller than 1 - confidence. It never solves.
+// where to pass is to be no smaller than 1 - confidence. If m spends the last
+// degree, what is left of chi-square is there because m met a bound, so that it
+// counts as one again. What is not a number does not pass. Judge never solves.
 // Judge panics if there are no curves.
 func Judge(dst *Outcome, cs []Curve, confidence float64) {
 	joint := Sum(cs)
@@ -72,7 +75,7 @@ func find(c *Curve, confidence float64) Finding {
 	switch level := 1 - confidence; {
 	case f.Tail >= level:
 		f.Verdict = Reproduces
-	case Tail(best, f.Degrees-1) < level:
+	case f.Degrees < 1 || !(Tail(best, max(f.Degrees-1, 1)) >= level):
 		f.Verdict = WrongShape
 	case lnM > 0:
 		f.Verdict = TooSharp
