@@ -254,28 +254,17 @@ const (
 	mostRounds   = 16
 )
 
-// scan builds the curve of a function that returns chi-square for several lnM
-// at once.
-func scan(points, free int, chiSq func(lnM []float64) ([]float64, error)) (Curve, error) {
+// sampler returns chi-square at each of several multipliers.
+type sampler func(lnM []float64) ([]float64, error)
+
+// scan builds the curve of what the sampler returns.
+func scan(points, free int, chiSq sampler) (Curve, error) {
 	c := Curve{Points: points, Free: free}
 	var lnM []float64
 	for i := range scanKnots {
 		lnM = append(lnM, (2*float64(i)/(scanKnots-1)-1)*scanDecades*math.Ln10)
 	}
-	add := func(at []float64) ([]float64, error) {
-		values, err := chiSq(at)
-		if err != nil {
-			return nil, err
-		}
-		for i, v := range values {
-			if math.IsNaN(v) {
-				return nil, fmt.Errorf("paths: chi-square at a multiplier of %g is not a number", math.Exp(at[i]))
-			}
-			c.add(at[i], v)
-		}
-		c.settleSlopes()
-		return values, nil
-	}
+	add := func(at []float64) ([]float64, error) { return c.sample(chiSq, at) }
 	if _, err := add(lnM); err != nil {
 		return c, err
 	}
@@ -285,9 +274,52 @@ func scan(points, free int, chiSq func(lnM []float64) ([]float64, error)) (Curve
 	return c, c.polish(add)
 }
 
+// sample puts knots at the given multipliers and returns their values.
+func (c *Curve) sample(chiSq sampler, at []float64) ([]float64, error) {
+	values, err := chiSq(at)
+	if err != nil {
+		return nil, err
+	}
+	for i, v := range values {
+		if math.IsNaN(v) || math.IsInf(v, 0) {
+			return nil, fmt.Errorf("paths: chi-square at a multiplier of %g is %g", math.Exp(at[i]), v)
+		}
+		c.add(at[i], v)
+	}
+	c.settleSlopes()
+	return values, nil
+}
+
+// sharpen adds knots to the curves of several profiles until their sum is as
+// right around its own lowest point as each of them is around its own.
+func sharpen(cs []Curve, each []sampler) error {
+	if len(cs) < 2 {
+		return nil
+	}
+	joint := Sum(cs)
+	add := func(at []float64) ([]float64, error) {
+		sums := make([]float64, len(at))
+		for k := range cs {
+			values, err := cs[k].sample(each[k], at)
+			if err != nil {
+				return nil, err
+			}
+			for i, v := range values {
+				sums[i] += v
+			}
+		}
+		joint = Sum(cs)
+		return sums, nil
+	}
+	if err := joint.refine(add); err != nil {
+		return err
+	}
+	return joint.polish(add)
+}
+
 // refine halves the intervals of concern until the curve foretells the value
 // half way.
-func (c *Curve) refine(add func([]float64) ([]float64, error)) error {
+func (c *Curve) refine(add sampler) error {
 	settled := map[[2]float64]bool{}
 	for range mostRounds {
 		halvings := c.halvings(settled)
@@ -352,7 +384,7 @@ func (c *Curve) dips(i int, x float64) bool {
 
 // polish puts knots at the lowest point until it stays, or has a knot so near
 // that the slope between the two would be one of round-off.
-func (c *Curve) polish(add func([]float64) ([]float64, error)) error {
+func (c *Curve) polish(add sampler) error {
 	x, _ := c.Lowest()
 	for range mostRounds {
 		if c.nearest(x) < leastSpacing {

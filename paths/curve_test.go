@@ -1,9 +1,11 @@
 package paths
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"strings"
 	"testing"
 )
 
@@ -340,5 +342,91 @@ func TestScanBearsRoundOff(t *testing.T) {
 		if !(math.Abs(x) <= 0.01) || !(math.Abs(low) <= 2*curveError) || !(math.Abs(hi-0.05) <= 0.002) || !(math.Abs(lo+0.05) <= 0.002) {
 			t.Fatalf("minimum at %g: found %g at %g, 1 above it from %g to %g, want -0.05 to 0.05", at, low, x, lo, hi)
 		}
+	}
+}
+
+// Profiles that disagree meet where neither is at its best. The joint curve must
+// be right there as well.
+func TestSharpenMakesTheJointCurveRight(t *testing.T) {
+	for _, test := range []struct {
+		name string
+		fs   []func(float64) float64
+		near float64 // the joint minimum, roughly
+	}{
+		{"wells side by side", []func(float64) float64{well(500, -0.9), well(500, 0.8)}, 0},
+		{"profiles side by side", []func(float64) float64{blurred(100, -0.4, 0.05), blurred(60, 1.1, 0.3)}, 0},
+		{"three", []func(float64) float64{blurred(100, -3, 0.05), blurred(60, -2, 0.3), well(300, -2.2)}, -2.6},
+		{"a limit and a well", []func(float64) float64{step(900, 0.1), well(300, 1.3)}, -10},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			var cs []Curve
+			var each []sampler
+			asked := 0
+			sum := func(x float64) (y float64) {
+				for _, f := range test.fs {
+					y += f(x)
+				}
+				return y
+			}
+			for _, f := range test.fs {
+				c, _ := scanned(t, f)
+				cs = append(cs, c)
+				each = append(each, func(lnM []float64) (out []float64, err error) {
+					for _, x := range lnM {
+						out = append(out, f(x))
+						asked++
+					}
+					return out, nil
+				})
+			}
+			if err := sharpen(cs, each); err != nil {
+				t.Fatal(err)
+			}
+			if most := 60 * len(cs); asked > most {
+				t.Errorf("asked %d times, want at most %d", asked, most)
+			}
+			joint := Sum(cs)
+			x, low := joint.Lowest()
+			near(t, "lowest", low, sum(x), 2*curveError)
+			for _, rise := range []float64{Critical(0.68, 1), Critical(0.95, 1)} {
+				lo, hi := joint.Below(sum(x) + rise)
+				near(t, "lower end", lo, crossed(sum, sum(x)+rise, x, -scanDecades*math.Ln10), 0.01)
+				near(t, "upper end", hi, crossed(sum, sum(x)+rise, x, scanDecades*math.Ln10), 0.01)
+			}
+			if y := sum(x) - curveError; y > sum(x-0.01) || y > sum(x+0.01) {
+				t.Errorf("%g is not the minimum: %g, but %g and %g beside it", x, y, sum(x-0.01), sum(x+0.01))
+			}
+		})
+	}
+}
+
+// What cannot be a chi-square is an error that says where.
+func TestScanRefusesWhatIsNoNumber(t *testing.T) {
+	failed := errors.New("the solver failed")
+	for _, test := range []struct {
+		name  string
+		value float64
+		err   error
+		want  string
+	}{
+		{"not a number", math.NaN(), nil, "at a multiplier of 1 "},
+		{"infinite", math.Inf(1), nil, "at a multiplier of 1 "},
+		{"an error", 0, failed, failed.Error()},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			_, err := scan(9, 2, func(lnM []float64) ([]float64, error) {
+				out := make([]float64, len(lnM))
+				for i, x := range lnM {
+					out[i] = x * x
+					if x == 0 {
+						out[i] = test.value
+					}
+				}
+				return out, test.err
+			})
+			if err == nil || !strings.Contains(err.Error(), test.want) {
+				t.Errorf("got %v, want an error with %q", err, test.want)
+			}
+		})
 	}
 }

@@ -1,6 +1,7 @@
 package paths
 
 import (
+	"context"
 	"fmt"
 	"math"
 	"slices"
@@ -96,24 +97,29 @@ func finest(t *traverse.Traverse) float64 {
 	return least * pointFinest
 }
 
-// chiSq returns chi-square at each of the multipliers.
-func (p *profile) chiSq(lnM []float64) ([]float64, error) {
-	out := make([]float64, 0, len(lnM))
-	jobs := make([]diffusion.Job, 0, batch)
-	for from := 0; from < len(lnM); from += batch {
-		part := lnM[from:min(from+batch, len(lnM))]
-		jobs = jobs[:0]
-		for _, x := range part {
-			jobs = append(jobs, diffusion.Job{Course: &p.course, LnM: x})
+// sampler returns chi-square at multipliers on D until ctx is done.
+func (p *profile) sampler(ctx context.Context) sampler {
+	return func(lnM []float64) ([]float64, error) {
+		out := make([]float64, 0, len(lnM))
+		jobs := make([]diffusion.Job, 0, batch)
+		for from := 0; from < len(lnM); from += batch {
+			if err := ctx.Err(); err != nil {
+				return nil, err
+			}
+			part := lnM[from:min(from+batch, len(lnM))]
+			jobs = jobs[:0]
+			for _, x := range part {
+				jobs = append(jobs, diffusion.Job{Course: &p.course, LnM: x})
+			}
+			if err := p.plan.Run(p.fields[:len(part)], jobs); err != nil {
+				return nil, err
+			}
+			for k := range part {
+				out = append(out, p.fitTo(p.fields[k].Cols).chiSq)
+			}
 		}
-		if err := p.plan.Run(p.fields[:len(part)], jobs); err != nil {
-			return nil, err
-		}
-		for k := range part {
-			out = append(out, p.fitTo(p.fields[k].Cols).chiSq)
-		}
+		return out, nil
 	}
-	return out, nil
 }
 
 // fitTo fits the free values to the data for the given columns of cell means.
@@ -122,11 +128,6 @@ func (p *profile) fitTo(cols [][]float64) fitted {
 		p.weights.Apply(p.seen[j], c)
 	}
 	return p.fit.solve(p.seen)
-}
-
-// curve scans the profile's chi-square over the multipliers.
-func (p *profile) curve() (Curve, error) {
-	return scan(len(p.fit.obs), p.fit.unconstrained(), p.chiSq)
 }
 
 // combined returns the answer column plus the free values times theirs.

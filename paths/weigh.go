@@ -55,8 +55,10 @@ type FreeFit struct {
 }
 
 // Weigh runs every path of the study against every traverse and judges it.
-// Up to jobs paths go at the same time; the result does not depend on jobs.
-// A path's error is reported with its name; up to 20 are joined.
+// Up to jobs paths go at the same time; the result does not depend on jobs. The
+// result is nil if there is an error: that of ctx if it is done before the last
+// path is weighed, else those of up to 20 paths, each with the path's name,
+// joined.
 func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 	if !measured(s) {
 		return nil, thermal.Place{File: s.File, Field: "crystal.element.traverse"}.
@@ -70,22 +72,26 @@ func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 	for range max(1, min(jobs, len(s.Paths))) {
 		team.Go(func() {
 			for i := range next {
-				errs[i] = r.Paths[i].weigh(s, &s.Paths[i])
+				errs[i] = r.Paths[i].weigh(ctx, s, &s.Paths[i])
 			}
 		})
 	}
 	for i := range s.Paths {
-		if ctx.Err() != nil {
-			break
+		select {
+		case next <- i:
+		case <-ctx.Done():
+			errs[i] = ctx.Err()
 		}
-		next <- i
 	}
 	close(next)
 	team.Wait()
-	if err := ctx.Err(); err != nil {
+	if done := ctx.Err(); done != nil && slices.ContainsFunc(errs, func(err error) bool { return errors.Is(err, done) }) {
+		return nil, done
+	}
+	if err := firstErrors(errs); err != nil {
 		return nil, err
 	}
-	return r, firstErrors(errs)
+	return r, nil
 }
 
 // mostErrors is how many errors are reported at once.
@@ -108,12 +114,13 @@ func measured(s *study.Study) bool {
 }
 
 // weigh runs one path through every measured element and judges it.
-func (r *PathResult) weigh(s *study.Study, path *study.Path) error {
+func (r *PathResult) weigh(ctx context.Context, s *study.Study, path *study.Path) error {
 	r.Path, r.Life = path, path.Eruption
 	for _, t := range s.Thresholds {
 		r.Above = append(r.Above, path.History.TimeAbove(t.Temp))
 	}
 	var curves []Curve
+	var each []sampler
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
 		for j := range c.Elements {
@@ -121,13 +128,16 @@ func (r *PathResult) weigh(s *study.Study, path *study.Path) error {
 			if e.Traverse == nil {
 				continue
 			}
-			result, curve, err := weighProfile(c, e, path)
+			p, result, curve, err := weighProfile(ctx, c, e, path)
 			if err != nil {
 				return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.Name, c.Name, err)
 			}
 			r.Profiles = append(r.Profiles, *result)
-			curves = append(curves, *curve)
+			curves, each = append(curves, curve), append(each, p.sampler(ctx))
 		}
+	}
+	if err := sharpen(curves, each); err != nil {
+		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	Judge(&r.Outcome, curves, s.Confidence)
 	r.Notes = r.Outcome.notes()
@@ -137,26 +147,27 @@ func (r *PathResult) weigh(s *study.Study, path *study.Path) error {
 // weighProfile scans the multipliers on D with a plan that is fine enough both
 // for the path as it is and at the best of them: a path that hardly diffuses
 // says nothing of the error there.
-func weighProfile(c *study.Crystal, e *study.Element, path *study.Path) (*ProfileResult, *Curve, error) {
+func weighProfile(ctx context.Context, c *study.Crystal, e *study.Element, path *study.Path) (
+	*profile, *ProfileResult, Curve, error) {
 	for refined := 0; ; {
 		p, result, err := audited(c, e, path, refined)
 		if err != nil {
-			return nil, nil, err
+			return nil, nil, Curve{}, err
 		}
-		curve, err := p.curve()
+		curve, err := scan(len(p.fit.obs), p.fit.unconstrained(), p.sampler(ctx))
 		if err != nil {
-			return nil, nil, err
+			return nil, nil, Curve{}, err
 		}
 		best, err := p.errorAtBest(&curve)
 		if err != nil {
-			return nil, nil, err
+			return nil, nil, Curve{}, err
 		}
 		if refined = p.finer(best); refined > p.refined {
 			continue
 		}
 		result.NumErr = math.Max(result.NumErr, best)
 		result.Notes = result.notes(path)
-		return result, &curve, nil
+		return p, result, curve, nil
 	}
 }
 
