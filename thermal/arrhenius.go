@@ -12,9 +12,9 @@ import (
 //	int_t0^t1 T^-k exp(-e/T) dt,  k = 0 or 1,
 //
 // along the part of the leg between t0 and t1 (s from its start; what lies outside the leg counts nothing), T in K, e =
-// E/R in K, positive, zero or negative. The integral is in s, or s/K for k = 1; its logarithm is -Inf for an empty part
-// and where e/T overflows, and never NaN for a finite e. The relative error of the integral is below 2e-14, and 1e-11
-// along a sheet, besides the rounding of e/T.
+// E/R in K, positive, zero or negative, up to 1e5 in size (831 kJ/mol). The integral is in s, or s/K for k = 1; its
+// logarithm is -Inf for an empty part. The relative error of the integral is below 2e-14, and 1e-11 along a sheet, besides
+// the rounding of e/T.
 //
 // A hold and a ramp are closed forms (see e2Scaled), a ramp over which e/T changes little and a relaxation are
 // Gauss-Legendre panels in 1/T, in which the exponent is linear; a table is a sum of ramps, a sheet adaptive
@@ -173,8 +173,8 @@ func e1From(u, f float64) float64 {
 	return (1 - f) / u
 }
 
-// narrowRamp is the integral along a ramp over which e/T rises by at most narrowRise from hot to cold, or falls (e < 0). In p =
-// 1/T, which runs from hot to cold where e >= 0 and from cold to hot where e < 0, so that the exponent falls,
+// narrowRamp is the integral along a ramp over which e/T rises by at most narrowRise from hot to cold, or falls. In p =
+// 1/T, which runs from hot to cold, or from cold to hot where the exponent falls that way by more than 1,
 //
 //	int T^-k exp(-e/T) dt = dt/(hot - cold) int p^(k-2) exp(-e p) dp,
 //
@@ -182,7 +182,7 @@ func e1From(u, f float64) float64 {
 func narrowRamp(e float64, k int, hot, cold, dt float64) scaled {
 	width := (hot - cold) / (hot * cold)
 	start := 1 / hot
-	if e < 0 {
+	if e*width < -1 {
 		start, width = 1/cold, -width
 	}
 	sum, p, left := 0.0, start, width
@@ -202,7 +202,7 @@ func rampStep(e, p, left float64) float64 {
 // rampPanel is the mean of p^(k-2) exp(-e (p - at)) from p = at to at + step.
 func rampPanel(e float64, k int, at, step float64) float64 {
 	sum, middle := 0.0, at+step/2
-	for _, n := range gauss(e*step, math.Min(at, at+step)/math.Abs(step)) {
+	for _, n := range gauss(math.Abs(e*step), math.Min(at, at+step)/math.Abs(step)) {
 		x := n.x * step
 		near, far := middle-x, middle+x
 		f := math.Exp(e * x)

@@ -46,9 +46,11 @@ type Leg struct {
 // Limits of what Set accepts. They are far beyond anything a rock has seen, and keep every intermediate result of the
 // integrals within the range of float64.
 const (
-	coldest = 1e-3 // K
-	hottest = 1e6  // K
+	coldest = 1.0  // K
+	hottest = 1e5  // K
 	longest = 1e20 // s, 3e12 yr
+
+	shortest = 1e-9 // s, of an e-fold time
 )
 
 // length is the duration of the leg, s.
@@ -140,7 +142,7 @@ func checkTemperature(temp float64) *InputError {
 	case temp <= 0:
 		return &InputError{Value: tempText(temp), Problem: "not above absolute zero", Remedy: "want a temperature above -273.15 C"}
 	}
-	return &InputError{Value: tempText(temp), Problem: "not a temperature that a rock can have", Remedy: "want one between 0.001 and 1,000,000 K"}
+	return &InputError{Value: tempText(temp), Problem: "not a temperature that a rock can have", Remedy: "want one between 1 and 100,000 K"}
 }
 
 func checkDuration(t float64) *InputError {
@@ -154,8 +156,8 @@ func checkDuration(t float64) *InputError {
 }
 
 func checkEfold(t float64) *InputError {
-	if t > 0 && t <= longest {
+	if t >= shortest && t <= longest {
 		return nil
 	}
-	return &InputError{Value: timeText(t), Problem: "e-fold time that is not positive and finite", Remedy: "want a duration above 0 s"}
+	return &InputError{Value: timeText(t), Problem: "not an e-fold time", Remedy: "want one between 1e-9 s and 1e20 s"}
 }

@@ -156,12 +156,12 @@ const (
 )
 
 // arrhenius is the integral between t0 and t1: a hold until the front of cooling or heat arrives, then panels in ln t, a
-// factor of 16 each and halved where needed.
+// factor of 16 each and halved where needed. The hottest time is an end of a panel, so that no peak falls between points.
 func (s *Sheet) arrhenius(e float64, k int, t0, t1 float64) scaled {
 	c := cooling{sheet: s, e: e, k: k}
 	lo, hi := s.span(t0, t1)
 	c.ln = math.Max(-e/lo, -e/hi)
-	sum, at := 0.0, math.Max(t0, math.Min(s.still(), t1))
+	sum, at, peak := 0.0, math.Max(t0, math.Min(s.still(), t1)), s.peak()
 	if at > t0 {
 		sum = (at - t0) * c.integrand(t0)
 	}
@@ -169,6 +169,9 @@ func (s *Sheet) arrhenius(e float64, k int, t0, t1 float64) scaled {
 		next := 16 * at
 		if next > t1/2 {
 			next = t1
+		}
+		if at < peak && peak < next {
+			next = peak
 		}
 		y, width := math.Log(at), math.Log1p((next-at)/at)
 		whole, off := c.panel(y, width)
