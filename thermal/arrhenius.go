@@ -71,7 +71,7 @@ func (a scaled) log() float64 { return math.Log(a.m) + a.ln }
 
 // arrhenius is the integral between t0 and t1 along the leg.
 func (l *Leg) arrhenius(e float64, k int, t0, t1 float64) scaled {
-	t0, t1 = math.Max(t0, 0), math.Min(t1, l.length())
+	t0, t1 = max(t0, 0), min(t1, l.length())
 	switch {
 	case !(t0 < t1):
 		return scaled{}
@@ -122,7 +122,7 @@ func narrowRise(uHot float64) float64 {
 // bracket T exp(-u) (1 - u e^u E1(u)) would lose are kept.
 // Source: Abramowitz and Stegun (1964), 5.1.14 and 5.1.26.
 func rampIntegral(e float64, k int, a, b, dt float64) scaled {
-	hot, cold := math.Max(a, b), math.Min(a, b)
+	hot, cold := max(a, b), min(a, b)
 	if hot == cold {
 		return holdIntegral(e, k, hot, dt)
 	}
@@ -196,13 +196,13 @@ func narrowRamp(e float64, k int, hot, cold, dt float64) scaled {
 
 // rampStep is the width of the panel at p with left still to do.
 func rampStep(e, p, left float64) float64 {
-	return math.Copysign(math.Min(math.Abs(left), math.Min(clearOf(p, left > 0), widest/math.Abs(e))), left)
+	return math.Copysign(min(math.Abs(left), clearOf(p, left > 0), widest/math.Abs(e)), left)
 }
 
 // rampPanel is the mean of p^(k-2) exp(-e (p - at)) from p = at to at + step.
 func rampPanel(e float64, k int, at, step float64) float64 {
 	sum, middle := 0.0, at+step/2
-	for _, n := range gauss(math.Abs(e*step), math.Min(at, at+step)/math.Abs(step)) {
+	for _, n := range gauss(math.Abs(e*step), min(at, at+step)/math.Abs(step)) {
 		x := n.x * step
 		near, far := middle-x, middle+x
 		f := math.Exp(e * x)
@@ -219,7 +219,7 @@ func rampPanel(e float64, k int, at, step float64) float64 {
 func (r *Rows) arrhenius(e float64, k int, t0, t1 float64) scaled {
 	var sum scaled
 	for i := r.interval(t0); i+1 < len(r.Time) && r.Time[i] < t1; i++ {
-		from, to := math.Max(t0, r.Time[i]), math.Min(t1, r.Time[i+1])
+		from, to := max(t0, r.Time[i]), min(t1, r.Time[i+1])
 		if from < to {
 			sum.add(rampIntegral(e, k, r.within(i, from), r.within(i, to), to-from))
 		}

@@ -179,6 +179,16 @@ func TestShortParts(t *testing.T) {
 	}
 }
 
+// TestPowerPanics: only the powers that diffusion needs.
+func TestPowerPanics(t *testing.T) {
+	defer func() {
+		if got := fmt.Sprint(recover()); got != "thermal: integral of T^-2 exp(-e/T), want a power of 0 or 1" {
+			t.Errorf("panic %q", got)
+		}
+	}()
+	set(t, coldStore()).LnArrhenius(3e4, 2, 0, 1)
+}
+
 // TestPulse: ten days at 850 C in a million years at 500 C are not missed. Closed form: the two holds added.
 func TestPulse(t *testing.T) {
 	const cold, hot, e = 773.15, 1123.15, 40000.0

@@ -135,7 +135,8 @@ func (s *Spec) check() *InputError {
 	case SpecRelax:
 		return firstProblem(checkTemperature(s.Temp), checkDuration(s.For), checkEfold(s.Efold))
 	case SpecReheat:
-		return firstProblem(checkTemperature(s.Temp), checkDuration(s.For), checkDuration(s.Rise), checkDuration(s.Dwell), checkEfold(s.Efold), s.checkReheat())
+		return firstProblem(checkTemperature(s.Temp), checkDuration(s.For), checkDuration(s.Rise), checkDuration(s.Dwell),
+			checkEfold(s.Efold), s.checkReheat())
 	case SpecSheet:
 		return firstProblem(s.sheet().check(), checkDuration(s.For))
 	case SpecTable:
@@ -275,7 +276,7 @@ func (b *builder) reheat(s *Spec, base float64) error {
 	}
 	back := s.For - s.Rise - s.Dwell
 	if s.For == 0 {
-		back = s.Efold * math.Max(0, math.Log((s.Temp-base)/backWithin))
+		back = s.Efold * max(0, math.Log((s.Temp-base)/backWithin))
 	}
 	for _, l := range [...]Leg{
 		{Kind: Ramp, For: s.Rise, T0: base, T1: s.Temp},

@@ -12,7 +12,7 @@ func (l *Leg) timeAbove(temp, until float64) float64 {
 		return l.Rows.timeAbove(temp, until)
 	}
 	from, to := l.above(temp)
-	return math.Max(0, math.Min(to, until)-from)
+	return max(0, min(to, until)-from)
 }
 
 // above is the one stretch of a leg that is no table in which it is hotter than temp, s from its start.
@@ -37,9 +37,9 @@ func stretch(a, b, temp, until, crossing float64) (from, to float64) {
 	case a > temp && b > temp:
 		return 0, until
 	case a > temp:
-		return 0, math.Max(0, math.Min(crossing, until))
+		return 0, max(0, min(crossing, until))
 	case b > temp:
-		return math.Max(0, math.Min(crossing, until)), until
+		return max(0, min(crossing, until)), until
 	}
 	return 0, 0
 }
@@ -50,7 +50,7 @@ func (r *Rows) timeAbove(temp, until float64) float64 {
 	for i := 0; i+1 < len(r.Time) && r.Time[i] < until; i++ {
 		a, b, dt := r.Temp[i], r.Temp[i+1], r.Time[i+1]-r.Time[i]
 		from, to := stretch(a, b, temp, dt, dt*((temp-a)/(b-a)))
-		sum += math.Max(0, math.Min(to, until-r.Time[i])-from)
+		sum += max(0, min(to, until-r.Time[i])-from)
 	}
 	return sum
 }

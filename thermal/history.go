@@ -153,7 +153,7 @@ func (h *History) Breaks(dst []float64) []float64 {
 		put(h.starts[i])
 		if l := &h.legs[i]; l.Kind == Table {
 			for _, t := range l.Rows.Time {
-				put(math.Min(h.starts[i]+t, h.starts[i+1]))
+				put(min(h.starts[i]+t, h.starts[i+1]))
 			}
 		}
 	}
@@ -167,7 +167,7 @@ func (h *History) Range() (lo, hi float64) {
 	for i := range h.legs {
 		if l := &h.legs[i]; l.For > 0 {
 			a, b := l.Range()
-			lo, hi = math.Min(lo, a), math.Max(hi, b)
+			lo, hi = min(lo, a), max(hi, b)
 		}
 	}
 	return lo, hi
@@ -240,7 +240,7 @@ func (h *History) within(t float64) (float64, *InputError) {
 	slack := momentSlack * life
 	switch {
 	case t >= -slack && t <= life+slack:
-		return math.Max(0, math.Min(t, life)), nil
+		return max(0, min(t, life)), nil
 	case t < 0:
 		return 0, &InputError{Problem: timeText(-t) + " before the start of the path", Remedy: "want a moment within its " + timeText(life)}
 	case t > life:

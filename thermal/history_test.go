@@ -210,6 +210,14 @@ func TestMoment(t *testing.T) {
 	}
 }
 
+// TestMomentWithoutNames: the remedy is to name a leg.
+func TestMomentWithoutNames(t *testing.T) {
+	_, err := set(t, coldStore()).Moment(Moment{Kind: EndOf, Name: "wake", Text: "end of wake"})
+	if want := `"end of wake": the path has no leg "wake"; name a leg: name = "wake"`; err == nil || err.Error() != want {
+		t.Errorf("got %v, want %s", err, want)
+	}
+}
+
 func TestSetEruption(t *testing.T) {
 	h := set(t, coldStore())
 	closeTo(t, "eruption at the end", h.Eruption(), 135, 0)

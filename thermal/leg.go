@@ -64,7 +64,7 @@ func (l *Leg) length() float64 {
 // At is the temperature, K, at t seconds from the start of the leg; before the start and after the end it is that of the
 // start and the end. Where a table jumps it is the temperature after the jump.
 func (l *Leg) At(t float64) float64 {
-	t = math.Max(0, math.Min(t, l.length()))
+	t = max(0, min(t, l.length()))
 	switch l.Kind {
 	case Hold:
 		return l.T0
@@ -83,7 +83,7 @@ func (l *Leg) At(t float64) float64 {
 // before is the temperature as t is approached from earlier times, K.
 func (l *Leg) before(t float64) float64 {
 	if l.Kind == Table {
-		return l.Rows.before(math.Max(0, math.Min(t, l.length())))
+		return l.Rows.before(max(0, min(t, l.length())))
 	}
 	return l.At(t)
 }
@@ -105,7 +105,7 @@ func (l *Leg) Range() (lo, hi float64) {
 		return l.Rows.span(l.length())
 	}
 	a, b := l.At(0), l.At(l.For)
-	return math.Min(a, b), math.Max(a, b)
+	return min(a, b), max(a, b)
 }
 
 // check is nil, or what is wrong with the leg: the value, the problem and the remedy.

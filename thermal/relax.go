@@ -22,7 +22,7 @@ func relaxIntegral(e float64, k int, first, ambient, a, s float64) scaled {
 	if math.Abs(off)*(1+math.Abs(r.u)) < arrived*ambient {
 		return holdIntegral(e, k, ambient, s)
 	}
-	lost := -math.Expm1(-s) * off
+	lost := passed(s) * off
 	w0, w1 := off/(ambient+off), (off-lost)/(ambient+off-lost)
 	width := lost / (ambient + off) * (1 - w1) // w0 - w1 without cancellation
 	m, ln := r.integral(w0, w1, width, s)
@@ -30,6 +30,14 @@ func relaxIntegral(e float64, k int, first, ambient, a, s float64) scaled {
 		m /= ambient
 	}
 	return scaled{m, ln - r.u}
+}
+
+// passed is 1 - exp(-s), by the slower function only where the faster would cancel.
+func passed(s float64) float64 {
+	if s < math.Ln2 {
+		return -math.Expm1(-s)
+	}
+	return 1 - math.Exp(-s)
 }
 
 // arrived is how near T/ambient must be to 1, over the exponent, to be it: half an ulp is 1e-16.
@@ -90,10 +98,9 @@ func (r relaxation) march(from, width, ln, base float64) float64 {
 
 // step is the width of the panel at w with left still to do.
 func (r relaxation) step(w, left float64, pole bool) float64 {
-	most := math.Min(math.Abs(left), widest/math.Abs(r.u))
-	most = math.Min(most, clearOf(1-w, left < 0))
+	most := min(math.Abs(left), widest/math.Abs(r.u), clearOf(1-w, left < 0))
 	if pole {
-		most = math.Min(most, clearOf(math.Abs(w), left*w > 0))
+		most = min(most, clearOf(math.Abs(w), left*w > 0))
 	}
 	return math.Copysign(most, left)
 }
@@ -108,9 +115,9 @@ func clearOf(distance float64, away bool) float64 {
 
 // panel is the mean of the integrand of march from w to w + step.
 func (r relaxation) panel(w, step, ln, base float64) float64 {
-	room := 1 - math.Max(w, w+step)
+	room := 1 - max(w, w+step)
 	if base == 0 {
-		room = math.Min(room, math.Min(math.Abs(w), math.Abs(w+step)))
+		room = min(room, math.Abs(w), math.Abs(w+step))
 	}
 	sum, middle := 0.0, w+step/2
 	centre := math.Exp(r.u*middle - ln)

@@ -53,7 +53,8 @@ func checkOrder(times []float64, beforeEruption bool) *InputError {
 			return &InputError{Line: i + 1, Value: timeText(t), Problem: p.Problem, Remedy: p.Remedy}
 		}
 		if beforeEruption && t < 0 {
-			return &InputError{Line: i + 1, Value: timeText(t), Problem: "negative time before eruption", Remedy: "want times that count down to 0 at the eruption"}
+			return &InputError{Line: i + 1, Value: timeText(t), Problem: "negative time before eruption",
+				Remedy: "want times that count down to 0 at the eruption"}
 		}
 		if i == 0 || t == times[i-1] || falls == (t < times[i-1]) {
 			continue
@@ -61,7 +62,8 @@ func checkOrder(times []float64, beforeEruption bool) *InputError {
 		e := &InputError{Line: i + 1, Value: timeText(t), Problem: "earlier than " + timeText(times[i-1]) + " in the row above",
 			Remedy: `want times that ascend, or counts = "before eruption"`}
 		if beforeEruption {
-			e.Problem, e.Remedy = "turns back after "+timeText(times[i-1])+" in the row above", "want times that only fall or only rise from row to row"
+			e.Problem = "turns back after " + timeText(times[i-1]) + " in the row above"
+			e.Remedy = "want times that only fall or only rise from row to row"
 		}
 		return e
 	}
@@ -74,9 +76,11 @@ func (r *Rows) check(until float64) *InputError {
 	case r == nil || len(r.Time) < 2 || len(r.Time) != len(r.Temp):
 		return &InputError{Problem: "table without two rows of time and temperature", Remedy: "want at least 2 rows"}
 	case r.Time[0] != 0:
-		return &InputError{Value: timeText(r.Time[0]), Problem: "first time of a table that is not 0", Remedy: "want times from the start of the leg"}
+		return &InputError{Value: timeText(r.Time[0]), Problem: "first time of a table that is not 0",
+			Remedy: "want times from the start of the leg"}
 	case until > r.end():
-		return &InputError{Value: timeText(until), Problem: "longer than the table, which ends at " + timeText(r.end()), Remedy: "leave the duration out or shorten it"}
+		return &InputError{Value: timeText(until), Problem: "longer than the table, which ends at " + timeText(r.end()),
+			Remedy: "leave the duration out or shorten it"}
 	case r.end() == 0:
 		return &InputError{Problem: "all rows of the table have one time", Remedy: "want times that ascend"}
 	}
@@ -142,7 +146,7 @@ func (r *Rows) span(until float64) (lo, hi float64) {
 		if t > until {
 			temp = r.before(until)
 		}
-		lo, hi = math.Min(lo, temp), math.Max(hi, temp)
+		lo, hi = min(lo, temp), max(hi, temp)
 		if t > until {
 			break
 		}
@@ -197,12 +201,12 @@ func (r *Rows) Coarse(e float64) (step int, ratio float64, coarse bool) {
 func (r *Rows) curveIntegral(e float64, i int) scaled {
 	dt, rise := r.Time[i+1]-r.Time[i], r.Temp[i+1]-r.Temp[i]
 	s0, s1 := r.slope(i, i)*dt, r.slope(i+1, i)*dt
-	ln := math.Max(-e/r.Temp[i], -e/r.Temp[i+1])
+	ln := max(-e/r.Temp[i], -e/r.Temp[i+1])
 	factor := func(x float64) float64 { // x from 0 to 1 between the rows
 		temp := r.Temp[i] + x*x*(3-2*x)*rise + x*(1-x)*((1-x)*s0-x*s1)
 		return math.Exp(-e/temp - ln)
 	}
-	panels := math.Ceil(math.Min(100, 1+math.Abs(e/r.Temp[i]-e/r.Temp[i+1])/2))
+	panels := math.Ceil(min(100, 1+math.Abs(e/r.Temp[i]-e/r.Temp[i+1])/2))
 	sum := 0.0
 	for p := 0.5; p < panels; p++ {
 		for _, n := range gauss8 {

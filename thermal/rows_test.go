@@ -89,6 +89,28 @@ func TestRowsAt(t *testing.T) {
 	closeTo(t, "cut short", l.At(9), 950, 0)
 }
 
+func TestTableFromPanics(t *testing.T) {
+	defer func() {
+		if got := fmt.Sprint(recover()); got != "thermal: 2 times, 1 temperatures" {
+			t.Errorf("panic %q", got)
+		}
+	}()
+	TableFrom([]float64{0, 1}, []float64{900}, false)
+}
+
+// TestRowsCutShort: a leg shorter than its table ends between rows, and what lies beyond is no part of it.
+func TestRowsCutShort(t *testing.T) {
+	l := Leg{Kind: Table, For: 5, Rows: &Rows{Time: []float64{0, 4, 8, 9}, Temp: []float64{900, 1000, 800, 2000}}}
+	lo, hi := l.Range()
+	closeTo(t, "lowest", lo, 900, 0)
+	closeTo(t, "highest", hi, 1000, 0)
+	closeTo(t, "above 950 K", l.TimeAbove(950), 2+1, 1e-13)
+	closeTo(t, "ln of the time", l.LnArrhenius(0, 0, 0, 9), math.Log(5), 1e-15)
+	l.Rows.Temp[2] = 400
+	lo, _ = l.Range()
+	closeTo(t, "lowest, at the cut", lo, 850, 0)
+}
+
 // TestCoarse: on samples of the cooling sheet of check C06 the estimate finds every table that is off by more than 1 %, and
 // no table that is off by less than 0.2 %; 200 equally spaced rows beside the contact are off by 28 % (C06), and so says
 // the estimate, within 3 %.

@@ -83,8 +83,8 @@ func (s *Sheet) peak() float64 {
 
 // span is the lowest and the highest temperature between two times, K.
 func (s *Sheet) span(t0, t1 float64) (lo, hi float64) {
-	peak := math.Max(t0, math.Min(s.peak(), t1))
-	return math.Min(s.At(t0), s.At(t1)), s.At(peak)
+	peak := max(t0, min(s.peak(), t1))
+	return min(s.At(t0), s.At(t1)), s.At(peak)
 }
 
 // above is the one stretch of time, s, within which the temperature is above temp, K.
@@ -92,16 +92,16 @@ func (s *Sheet) above(temp, until float64) (from, to float64) {
 	if temp < s.Host || (temp == s.Host && s.Host < s.Magma) {
 		return 0, until
 	}
-	peak := math.Min(s.peak(), until)
+	peak := min(s.peak(), until)
 	if !(s.At(peak) > temp) {
 		return 0, 0
 	}
 	from, to = 0, until
 	if !(s.At(0) > temp) {
-		from = s.reaches(temp, math.Min(s.still(), peak), peak)
+		from = s.reaches(temp, min(s.still(), peak), peak)
 	}
 	if !(s.At(until) > temp) {
-		to = s.reaches(temp, math.Max(s.still(), peak), until)
+		to = s.reaches(temp, max(s.still(), peak), until)
 	}
 	return from, to
 }
@@ -129,7 +129,8 @@ func (s *Sheet) check() *InputError {
 	}
 	switch {
 	case s.Magma < s.Host:
-		return &InputError{Value: tempText(s.Magma), Problem: "magma colder than its host at " + tempText(s.Host), Remedy: "want an intrusion hotter than its host"}
+		return &InputError{Value: tempText(s.Magma), Problem: "magma colder than its host at " + tempText(s.Host),
+			Remedy: "want an intrusion hotter than its host"}
 	case !(s.Thickness >= thinnest && s.Thickness <= thickest):
 		return &InputError{Problem: "thickness of a sheet that is zero, negative or out of range", Remedy: `want a length like "20 m"`}
 	case !(math.Abs(s.Position) <= thickest):
@@ -160,8 +161,8 @@ const (
 func (s *Sheet) arrhenius(e float64, k int, t0, t1 float64) scaled {
 	c := cooling{sheet: s, e: e, k: k}
 	lo, hi := s.span(t0, t1)
-	c.ln = math.Max(-e/lo, -e/hi)
-	sum, at, peak := 0.0, math.Max(t0, math.Min(s.still(), t1)), s.peak()
+	c.ln = max(-e/lo, -e/hi)
+	sum, at, peak := 0.0, max(t0, min(s.still(), t1)), s.peak()
 	if at > t0 {
 		sum = (at - t0) * c.integrand(t0)
 	}
