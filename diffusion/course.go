@@ -162,21 +162,44 @@ func (p *Plan) meanOver(h *thermal.History, v *Given, breaks []float64, ta, tb f
 	i := sort.SearchFloat64s(breaks, ta)
 	j := sort.SearchFloat64s(breaks, tb)
 	marks := pieces(breaks[i:j], ta, tb)
-	w := weighted{lnWeight: math.Inf(-1)}
+	w := weighted{lnWeight: math.Inf(-1), halvings: maxHalvings}
 	for k := 1; k < len(marks); k++ {
-		w.addPiece(&p.problem.Law, h, v, marks[k-1], marks[k], maxHalvings)
+		w.addPiece(&p.problem.Law, h, v, marks[k-1], marks[k])
 	}
-	if math.IsInf(w.lnWeight, -1) { // a step of no width or no diffusion: any value will do
-		return v.At(ta + (tb-ta)/2)
+	if math.IsInf(w.lnWeight, -1) { // a step of no width or no diffusion: any value near it will do
+		return v.At(clearOf(breaks, ta))
 	}
 	return w.mean
 }
 
-// maxHalvings bounds the division of a piece over which D changes much.
-const maxHalvings = 12
+// clearOf returns a time just after t, or before it at the end of the path,
+// that is none of the breaks. The last of them is the end of the path.
+func clearOf(breaks []float64, t float64) float64 {
+	i := sort.Search(len(breaks), func(i int) bool { return breaks[i] > t })
+	if i == len(breaks) {
+		i = sort.SearchFloat64s(breaks, t) - 1
+	}
+	return t + (breaks[i]-t)*nudge
+}
+
+const (
+	// maxHalvings bounds the divisions in one step. The first minutes of a
+	// relaxation that lasts a million years need 40.
+	maxHalvings = 200
+	// resolved is how closely the five points must give the logarithm of the
+	// integral of D itself before they are trusted with the mean of v, and
+	// ulps what rounding of the times may add, in parts of their difference.
+	resolved = 1e-8
+	ulps     = 0x1p-50
+	// nudge is how far into its piece a time at a break is moved, as a part of it.
+	nudge = 1e-9
+)
 
 // weighted is a running mean with the logarithm of its weight.
-type weighted struct{ mean, lnWeight float64 }
+type weighted struct {
+	mean, lnWeight float64
+	halvings       int // that addPiece may still do
+}
 
 func (w *weighted) add(value, lnWeight float64) {
 	if math.IsInf(lnWeight, -1) {
@@ -187,22 +210,26 @@ func (w *weighted) add(value, lnWeight float64) {
 }
 
 // addPiece adds the mean over [a, b], on which temperature and v are smooth,
-// halving it while D changes by more than e^2 over it.
-func (w *weighted) addPiece(law *Law, h *thermal.History, v *Given, a, b float64, halvings int) {
-	_, ta := h.At(a)
-	tb, _ := h.At(b)
-	if m := a + (b-a)/2; halvings > 0 && a < m && m < b && math.Abs(law.LnD(ta)-law.LnD(tb)) > 2 {
-		w.addPiece(law, h, v, a, m, halvings-1)
-		w.addPiece(law, h, v, m, b, halvings-1)
+// halving it until five points are enough for D.
+func (w *weighted) addPiece(law *Law, h *thermal.History, v *Given, a, b float64) {
+	exact := law.LnIntegral(h, a, b)
+	if math.IsInf(exact, -1) {
 		return
 	}
-	var inside weighted
+	inside := weighted{lnWeight: math.Inf(-1)}
 	for i, x := range gaussNodes {
 		t := a + (b-a)*x
 		temp, _ := h.At(t)
 		inside.add(v.At(t), math.Log(gaussWeights[i])+law.LnD(temp))
 	}
-	w.add(inside.mean, law.LnIntegral(h, a, b))
+	misses := math.Abs(inside.lnWeight + math.Log(b-a) - exact)
+	if m := a + (b-a)/2; w.halvings > 0 && a < m && m < b && !(misses <= resolved+ulps*b/(b-a)) {
+		w.halvings--
+		w.addPiece(law, h, v, a, m)
+		w.addPiece(law, h, v, m, b)
+		return
+	}
+	w.add(inside.mean, exact)
 }
 
 // Gauss-Legendre nodes and weights of five points on [0, 1] (Abramowitz and

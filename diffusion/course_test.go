@@ -1,0 +1,128 @@
+package diffusion
+
+import (
+	"math"
+	"testing"
+
+	"bankfire/thermal"
+)
+
+// longHistories are paths on which temperature changes slowly, fast, for a
+// short part of a leg only, or not at all.
+func longHistories(tb testing.TB) map[string]*thermal.History {
+	tb.Helper()
+	const year = thermal.Year
+	ember := thermal.Leg{Kind: thermal.Relax, For: 1e6 * year, T0: 1250, T1: 900, Tau: thermal.Day}
+	sheet := thermal.Leg{Kind: thermal.SheetCooling, For: 1e5 * year,
+		Sheet: &thermal.Sheet{Magma: 1400, Host: 800, Thickness: 2, Position: 2, Kappa: 1e-6}}
+	return map[string]*thermal.History{
+		"hold": newHistory(tb, thermal.Leg{Kind: thermal.Hold, For: 1e4 * year, T0: 1000}),
+		"ramp": newHistory(tb, thermal.Leg{Kind: thermal.Ramp, For: 1e4 * year, T0: 700, T1: 1200}),
+		// D falls for days in a leg of a million years
+		"quench": newHistory(tb, ember),
+		// it does so in the middle of a path
+		"quench between": newHistory(tb, thermal.Leg{Kind: thermal.Hold, For: year, T0: 950}, ember,
+			thermal.Leg{Kind: thermal.Ramp, For: 5 * year, T0: 900, T1: 1100}),
+		// D rises and falls inside one leg that begins and ends cold
+		"sheet": newHistory(tb, sheet),
+		"table": newHistory(tb, thermal.Leg{Kind: thermal.Table, Rows: &thermal.Rows{
+			Time: []float64{0, 10 * year, 10 * year, 11 * year, 500 * year}, Temp: []float64{900, 1000, 1150, 1100, 800}}}),
+	}
+}
+
+// TestRimMeans compares the means of a rim value over the steps with closed
+// forms. A value exp(a - b/T) only shifts the activation energy, so its mean
+// weighted by D is a ratio of two integrals of the history.
+func TestRimMeans(t *testing.T) {
+	const (
+		a, b = 8.0, 6000.0
+		// five points resolve D to 1e-8 (resolved); D times the value changes by a sixth more, and the error of five
+		// points goes with the tenth power of that
+		tol = 1e-7
+	)
+	shifted := Law{Terms: []Arrhenius{{LnA: testLaw.Terms[0].LnA + a, E: testLaw.Terms[0].E + b}}}
+	for name, h := range longHistories(t) {
+		t.Run(name, func(t *testing.T) {
+			given := &Given{At: func(at float64) float64 { temp, _ := h.At(at); return math.Exp(a - b/temp) }}
+			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: []Rim{{Kind: Prescribed, Given: given}}}
+			plan := newPlan(t, p, Options{})
+			got := newCourse(t, plan, h).spans[0].outer.values
+			times := plan.stepTimes(h, 0, h.Life(), testLaw.LnIntegral(h, 0, h.Life()))
+			for i := range got {
+				if i+1 < len(got) && times[i+1] <= times[i] || plan.steps[i].euler && i > len(got)/2 {
+					continue // no time in the step, or a value led to its end
+				}
+				want := math.Exp(shifted.LnIntegral(h, times[i], times[i+1]) - testLaw.LnIntegral(h, times[i], times[i+1]))
+				if diff := math.Abs(got[i]/want - 1); !(diff <= tol) {
+					t.Fatalf("step %d of %d, %g to %g s: mean %.12g, want %.12g, relative difference %.2g, allowed %g",
+						i, len(got), times[i], times[i+1], got[i], want, diff, tol)
+				}
+			}
+		})
+	}
+}
+
+// TestStepTimes: between the times of two steps the integral of D grows by the
+// plan's fraction.
+func TestStepTimes(t *testing.T) {
+	for name, h := range longHistories(t) {
+		t.Run(name, func(t *testing.T) {
+			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw}
+			plan := newPlan(t, p, Options{})
+			total := testLaw.LnIntegral(h, 0, h.Life())
+			times := plan.stepTimes(h, 0, h.Life(), total)
+			fraction := 0.0
+			for i, s := range plan.steps {
+				fraction += s.df
+				got := math.Exp(testLaw.LnIntegral(h, 0, times[i+1]) - total)
+				// times are found to 1e-12 of their leg, which is 1e-7 of a quench
+				if !(math.Abs(got-fraction) <= 1e-6) {
+					t.Fatalf("after %d steps: %.9g of the integral, want %.9g", i+1, got, fraction)
+				}
+			}
+		})
+	}
+}
+
+// TestBreaksAreNotAsked: a given rim is asked for its value only between its
+// breaks, where it has one.
+func TestBreaksAreNotAsked(t *testing.T) {
+	for name, h := range longHistories(t) {
+		t.Run(name, func(t *testing.T) {
+			life := h.Life()
+			given := &Given{Breaks: []float64{0, life / 3, life}, Jumps: []float64{life / 2, life * 0.9}}
+			given.At = func(at float64) float64 {
+				for _, b := range append(given.Breaks, given.Jumps...) {
+					if at == b {
+						t.Fatalf("asked for the value at %g s, where it breaks", at)
+					}
+				}
+				if !(at > 0 && at < life) {
+					t.Fatalf("asked for the value at %g s of %g", at, life)
+				}
+				return at / life
+			}
+			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: []Rim{{Kind: Prescribed, Given: given}}}
+			for _, span := range newCourse(t, newPlan(t, p, Options{}), h).spans {
+				if i, v := 0, span.outer.values; len(v) == 0 || rangeOf(v) > 1 || math.IsNaN(v[i]) {
+					t.Errorf("values %v", v)
+				}
+			}
+		})
+	}
+}
+
+// TestCourseRefusesTimes: a course ends within its history.
+func TestCourseRefusesTimes(t *testing.T) {
+	h := holdOf(t, 1e-10)
+	plan := newPlan(t, &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw}, Options{})
+	for _, until := range []float64{-1, math.NaN(), h.Life() * 1.01, math.Inf(1)} {
+		if err := plan.Course(new(Course), h, until); err == nil {
+			t.Errorf("a course until %g s of %g was accepted", until, h.Life())
+		}
+	}
+	c := new(Course)
+	if err := plan.Course(c, h, 0); err != nil || !math.IsInf(c.LnG(), -1) {
+		t.Errorf("until 0 s: error %v, ln G %g, want none and -Inf", err, c.LnG())
+	}
+}
