@@ -165,6 +165,8 @@ func (p *Plan) meanOver(h *thermal.History, v *Given, breaks []float64, ta, tb f
 	w := weighted{lnWeight: math.Inf(-1), halvings: maxHalvings}
 	for k := 1; k < len(marks); k++ {
 		w.addPiece(&p.problem.Law, h, v, marks[k-1], marks[k])
+	p.steps.leadEnd(e.values)
+	p.rough.leadEnd(e.rough)
 	}
 	if math.IsInf(w.lnWeight, -1) { // a step of no width or no diffusion: any value near it will do
 		return v.At(clearOf(breaks, ta))

@@ -112,6 +112,41 @@ func TestBreaksAreNotAsked(t *testing.T) {
 	}
 }
 
+// TestStiffRim: far above the time in which the crystal follows, a rim that
+// moves in step with G drags the profile along at a known distance (Crank 1975,
+// equation 5.31 without its sum): C = v - v' (a^2 - r^2)/4 in a cylinder.
+func TestStiffRim(t *testing.T) {
+	for _, times := range []float64{1e1, 1e3, 1e6} { // G/a^2
+		h := holdOf(t, times*testSize*testSize)
+		given := &Given{At: func(at float64) float64 { return at / h.Life() }}
+		p := &Problem{Shape: Cylinder, Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: []Rim{{Kind: Prescribed, Given: given}}}
+		plan := newPlan(t, p, Options{})
+		want := make([]float64, len(plan.Centres()))
+		for i := range want {
+			a, b := plan.Faces()[i]/testSize, plan.Faces()[i+1]/testSize
+			want[i] = 1 - (1-(a*a+b*b)/2)/4/times
+		}
+		// the sum of equation 5.31 is below 1e-20, and the cells are exact for a parabola that moves evenly
+		wantClose(t, "profile", run(t, plan, h).Cols[0], want, 1e-10)
+	}
+}
+
+// TestKinkedRimDoesNotRing: a rim that follows a fast cooling and then a long
+// slow warming leaves no waves between cells, though the steps are far too long
+// for them. Compared with eight times as many steps.
+func TestKinkedRimDoesNotRing(t *testing.T) {
+	h := newHistory(t, thermal.Leg{Kind: thermal.Relax, For: 2.4e5, T0: 1156, T1: 956, Tau: 7.4e4},
+		thermal.Leg{Kind: thermal.Ramp, For: 3.7e7, T0: 964, T1: 989})
+	law := testLaw
+	law.Terms = []Arrhenius{{LnA: testLaw.Terms[0].LnA + 2*math.Log(testSize) - testLaw.LnIntegral(h, 0, h.Life()), E: testLaw.Terms[0].E}}
+	given := &Given{At: func(at float64) float64 { temp, _ := h.At(at); return (temp - 956) / 200 }}
+	p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: law, Outer: []Rim{{Kind: Prescribed, Given: given}}}
+	plan := newPlan(t, p, Options{})
+	fine := newFiner(t, plan, Options{}, 1)
+	// the default steps are good to 1e-4 where a rim moves this fast; without damping at the end, 4e-2
+	wantClose(t, "profile", run(t, plan, h).Cols[0], onto(plan, fine, run(t, fine, h).Cols[0]), 1e-4)
+}
+
 // TestCourseRefusesTimes: a course ends within its history.
 func TestCourseRefusesTimes(t *testing.T) {
 	h := holdOf(t, 1e-10)

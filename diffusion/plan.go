@@ -124,7 +124,7 @@ func (o Options) schedule(p *Problem) (schedule, error) {
 		damp = 0
 	}
 	if o.Fractions != nil {
-		return newSchedule(o.Fractions, damp), checkFractions(o.Fractions)
+		return newSchedule(o.Fractions, damp, 0), checkFractions(o.Fractions)
 	}
 	growth := o.Growth
 	if growth == 0 {
@@ -133,7 +133,11 @@ func (o Options) schedule(p *Problem) (schedule, error) {
 	if !(growth > 0) || growth > 1 {
 		return nil, fmt.Errorf("diffusion: steps cannot grow by %g", growth)
 	}
-	return newSchedule(defaultFractions(damp, growth, p.moving()), damp), nil
+	end := 0
+	if p.moving() {
+		end = min(damp, lastDamped)
+	}
+	return newSchedule(defaultFractions(damp, growth, p.moving()), damp, end), nil
 }
 
 // everySecond returns every second face, or nil where a zone boundary or end

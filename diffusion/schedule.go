@@ -17,7 +17,8 @@ const (
 	defaultDamped  = 8    // steps replaced by two backward-Euler half steps each
 	defaultGrowth  = 0.1  // of a step over the one before
 	longestStep    = 0.01 // of G, at the default growth
-	lastFraction   = 5e-5 // of G, the last step under a rim that changes with time
+	lastFraction   = 5e-7 // of G, about the last step under a rim that changes with time
+	lastDamped     = 4    // of these, how many are damped too
 	fractionsSlack = 1e-12
 )
 
@@ -32,14 +33,14 @@ type step struct {
 type schedule []step
 
 // newSchedule turns cumulative fractions of G, rising to 1, into solves, the
-// first damp of them as two backward-Euler half steps each (Rannacher 1984,
-// Numer. Math. 43, 309-327).
-func newSchedule(fractions []float64, damp int) schedule {
+// first damp and the last end of them as two backward-Euler half steps each
+// (Rannacher 1984, Numer. Math. 43, 309-327).
+func newSchedule(fractions []float64, damp, end int) schedule {
 	var s schedule
 	from := 0.0
 	for i, f := range fractions {
 		df := f - from
-		if i < damp {
+		if i < damp || i >= len(fractions)-end {
 			s = append(s, step{df / 2, true}, step{df / 2, true})
 		} else {
 			s = append(s, step{df, false})
@@ -75,6 +76,16 @@ func (s schedule) mergedMeans(means []float64) []float64 {
 		half = append(half, mean)
 	}
 	return half
+}
+
+// leadEnd turns the means over the damped steps at the end into values at the
+// ends of these steps, from the means of each and the one before. Backward Euler
+// looks at the end of its step: with the mean, what follows a rim closely would
+// lag half of the last step behind it.
+func (s schedule) leadEnd(means []float64) {
+	for i := len(s) - 1; i > 0 && s[i].euler; i-- {
+		means[i] += (means[i] - means[i-1]) * s[i].df / (s[i].df + s[i-1].df)
+	}
 }
 
 // pair returns how many steps merge into one at i: two, or one where the next
