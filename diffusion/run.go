@@ -167,13 +167,13 @@ func (s step) length(g float64) float64 {
 func (p *Plan) ends(sp *span, j, k int, s float64, rough bool) ends {
 	var e ends
 	if sp.inner.open {
-		e.kIn = s * p.cond[0]
+		e.kIn = float64(s * p.cond[0])
 		if e.vIn = sp.inner.value(p.problem.Inner, k, rough); j > 0 {
 			e.vIn = at(p.problem.Free[j-1].Inner, sp.inner.rim)
 		}
 	}
 	if sp.outer.open {
-		e.kOut = s * p.cond[len(p.cond)-1]
+		e.kOut = float64(s * p.cond[len(p.cond)-1])
 		if e.vOut = sp.outer.value(p.problem.Outer, k, rough); j > 0 {
 			e.vOut = at(p.problem.Free[j-1].Outer, sp.outer.rim)
 		}

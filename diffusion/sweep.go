@@ -46,24 +46,24 @@ func (p *Plan) eliminate(l *lane, s float64, e ends, c []float64) {
 	xj, fj := e.kOut, float64(e.kOut*(e.vOut-c[n-1]))
 	i, j := 0, n-1
 	if n&1 == 0 { // the left chain is one cell longer
-		a := s * cond[1]
+		a := float64(s * cond[1])
 		inv := 1 / (vol[0] + a + xi)
 		q, flux := a*inv, float64(a*(c[1]-c[0]))
 		f := flux + fi
 		factor[0], inverse[0], rhs[0] = q, inv, f
-		xi, fi = float64(a*(vol[0]+xi))*inv, float64(q*f)-flux
+		xi, fi = float64(float64(a*(vol[0]+xi))*inv), float64(q*f)-flux
 		i = 1
 	}
 	for ; i < m; i, j = i+1, j-1 {
-		a, b := s*cond[i+1], s*cond[j]
+		a, b := float64(s*cond[i+1]), float64(s*cond[j])
 		invA, invB := 1/(vol[i]+a+xi), 1/(vol[j]+b+xj)
 		fluxA, fluxB := float64(a*(c[i+1]-c[i])), float64(b*(c[j-1]-c[j]))
 		qa, qb := a*invA, b*invB
 		fa, fb := fluxA+fi, fluxB+fj
 		factor[i], inverse[i], rhs[i] = qa, invA, fa
 		factor[j], inverse[j], rhs[j] = qb, invB, fb
-		xi, fi = float64(a*(vol[i]+xi))*invA, float64(qa*fa)-fluxA
-		xj, fj = float64(b*(vol[j]+xj))*invB, float64(qb*fb)-fluxB
+		xi, fi = float64(float64(a*(vol[i]+xi))*invA), float64(qa*fa)-fluxA
+		xj, fj = float64(float64(b*(vol[j]+xj))*invB), float64(qb*fb)-fluxB
 	}
 	l.middle = 1 / (vol[m] + xi + xj)
 	rhs[m] = fi + fj

@@ -49,15 +49,16 @@ func (p *Plan) eliminate4(l *lane4, s *four, e *ends4, c []four) {
 // on.
 func (l *lane4) reduce(i int, s *four, v, k float64, x, f, c, d *four) {
 	q, inv, rhs := &l.factor[i], &l.inverse[i], &l.rhs[i]
-	a0, a1, a2, a3 := s[0]*k, s[1]*k, s[2]*k, s[3]*k
+	a0, a1, a2, a3 := float64(s[0]*k), float64(s[1]*k), float64(s[2]*k), float64(s[3]*k)
 	i0, i1, i2, i3 := 1/(v+a0+x[0]), 1/(v+a1+x[1]), 1/(v+a2+x[2]), 1/(v+a3+x[3])
-	x[0], x[1] = float64(a0*(v+x[0]))*i0, float64(a1*(v+x[1]))*i1
-	x[2], x[3] = float64(a2*(v+x[2]))*i2, float64(a3*(v+x[3]))*i3
+	x[0], x[1] = float64(float64(a0*(v+x[0]))*i0), float64(float64(a1*(v+x[1]))*i1)
+	x[2], x[3] = float64(float64(a2*(v+x[2]))*i2), float64(float64(a3*(v+x[3]))*i3)
 	inv[0], inv[1], inv[2], inv[3] = i0, i1, i2, i3
 	i0, i1, i2, i3 = a0*i0, a1*i1, a2*i2, a3*i3
 	q[0], q[1], q[2], q[3] = i0, i1, i2, i3
-	a0, a1, a2, a3 = a0*(d[0]-c[0]), a1*(d[1]-c[1]), a2*(d[2]-c[2]), a3*(d[3]-c[3])
-	f0, f1, f2, f3 := float64(a0)+f[0], float64(a1)+f[1], float64(a2)+f[2], float64(a3)+f[3]
+	a0, a1 = float64(a0*(d[0]-c[0])), float64(a1*(d[1]-c[1]))
+	a2, a3 = float64(a2*(d[2]-c[2])), float64(a3*(d[3]-c[3]))
+	f0, f1, f2, f3 := a0+f[0], a1+f[1], a2+f[2], a3+f[3]
 	rhs[0], rhs[1], rhs[2], rhs[3] = f0, f1, f2, f3
 	f[0], f[1], f[2], f[3] = float64(i0*f0)-a0, float64(i1*f1)-a1, float64(i2*f2)-a2, float64(i3*f3)-a3
 }
@@ -127,7 +128,10 @@ func (l *lane4) solve(i int, times float64, d, c *four) {
 
 // inflow4 returns what the rims drive into the cells of value c beside them.
 func inflow4(k, v, c *four) four {
-	return four{k[0] * (v[0] - c[0]), k[1] * (v[1] - c[1]), k[2] * (v[2] - c[2]), k[3] * (v[3] - c[3])}
+	return four{
+		float64(k[0] * (v[0] - c[0])), float64(k[1] * (v[1] - c[1])),
+		float64(k[2] * (v[2] - c[2])), float64(k[3] * (v[3] - c[3])),
+	}
 }
 
 func resized4(s []four, n int) []four {
