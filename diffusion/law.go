@@ -1,6 +1,7 @@
 package diffusion
 
 import (
+	"fmt"
 	"math"
 
 	"bankfire/thermal"
@@ -24,6 +25,17 @@ type Law struct{ Terms []Arrhenius }
 // J/mol. A d0 of zero is a crystal in which nothing moves.
 func NewLaw(d0, energy float64) Law {
 	return Law{Terms: []Arrhenius{{LnA: math.Log(d0), E: energy / thermal.GasConstant}}}
+}
+
+// check reports a term that is no diffusivity. An LnA of -Inf is one: nothing
+// moves.
+func (l Law) check() error {
+	for i, a := range l.Terms {
+		if math.IsNaN(a.LnA) || math.IsInf(a.LnA, 1) || !finite(a.E) {
+			return fmt.Errorf("diffusion: term %d of the law has ln A %g and E/R %g K", i, a.LnA, a.E)
+		}
+	}
+	return nil
 }
 
 // LnD returns ln D, D in m2/s, at temp in K.

@@ -62,7 +62,8 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 	g := newGrid(p.Shape, faces)
 	plan := &Plan{problem: p, grid: g, cond: p.conductances(g), steps: steps, rough: steps.merged(), events: p.events()}
 	for i, k := range plan.cond {
-		if !(k >= 0) || math.IsInf(k, 0) {
+		centre := i == 0 && p.R0 == 0 && p.Shape != Slab
+		if !(k > 0 || centre) || math.IsInf(k, 0) {
 			return nil, fmt.Errorf("diffusion: D is not a positive number near %g m", faces[i])
 		}
 	}
@@ -71,6 +72,11 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 		column := make([]float64, len(g.centres))
 		p.cellMeans(column, g, b.Start)
 		plan.starts = append(plan.starts, column)
+	}
+	for j, column := range plan.starts {
+		if i := slices.IndexFunc(column, func(v float64) bool { return !finite(v) }); i >= 0 {
+			return nil, fmt.Errorf("diffusion: column %d starts at %g near %g m", j, column[i], g.centres[i])
+		}
 	}
 	return plan, nil
 }
@@ -111,6 +117,9 @@ func (o Options) faces(p *Problem) ([]float64, error) {
 		if !slices.Contains(o.Faces, mark) {
 			return nil, fmt.Errorf("diffusion: the boundary at %g m is no face", mark)
 		}
+	}
+	if first, last := o.Faces[0], o.Faces[len(o.Faces)-1]; first != p.R0 || last != p.size() {
+		return nil, fmt.Errorf("diffusion: the faces reach from %g to %g m, the crystal from %g to %g m", first, last, p.R0, p.size())
 	}
 	return o.Faces, nil
 }

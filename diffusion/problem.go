@@ -93,6 +93,9 @@ func (p *Problem) check() error {
 	if !(p.R0 >= 0) || math.IsInf(p.R0, 0) {
 		return fmt.Errorf("diffusion: inner radius %g m is not a length", p.R0)
 	}
+	if err := p.Law.check(); err != nil {
+		return err
+	}
 	if err := p.checkZones(); err != nil {
 		return err
 	}
