@@ -32,6 +32,16 @@ type ending struct {
 	rough  []float64 // the same over the steps of the rough schedule
 }
 
+// most is a diffusion integral, m2, beyond which no crystal changes any more.
+// It keeps the solver's products finite.
+const most = 1e100
+
+// integral returns the span's diffusion integral, m2, with D multiplied by
+// exp(lnM).
+func (s *span) integral(lnM float64) float64 {
+	return math.Min(math.Exp(s.lnG+lnM), most)
+}
+
 // LnG returns ln of the diffusion integral over the whole course, m2.
 func (c *Course) LnG() float64 {
 	sum := math.Inf(-1)
@@ -155,6 +165,8 @@ func (e *ending) average(p *Plan, h *thermal.History, v *Given, times []float64)
 		e.values[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
 	}
 	e.rough = p.steps.mergedMeans(e.values)
+	p.steps.leadEnd(e.values)
+	p.rough.leadEnd(e.rough)
 }
 
 // meanOver returns the mean of v between ta and tb weighted by D.
@@ -165,8 +177,6 @@ func (p *Plan) meanOver(h *thermal.History, v *Given, breaks []float64, ta, tb f
 	w := weighted{lnWeight: math.Inf(-1), halvings: maxHalvings}
 	for k := 1; k < len(marks); k++ {
 		w.addPiece(&p.problem.Law, h, v, marks[k-1], marks[k])
-	p.steps.leadEnd(e.values)
-	p.rough.leadEnd(e.rough)
 	}
 	if math.IsInf(w.lnWeight, -1) { // a step of no width or no diffusion: any value near it will do
 		return v.At(clearOf(breaks, ta))

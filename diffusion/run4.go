@@ -1,7 +1,5 @@
 package diffusion
 
-import "math"
-
 // crew is four jobs going side by side. Idle lanes take steps of length 0 and
 // are thrown away.
 type crew struct {
@@ -49,7 +47,7 @@ func (cr *crew) span(i int) {
 	for k := range cr.dst {
 		cr.g[k] = 0
 		if spans := cr.jobs[k].Course.spans; i < len(spans) {
-			cr.g[k] = math.Exp(spans[i].lnG + cr.jobs[k].LnM)
+			cr.g[k] = spans[i].integral(cr.jobs[k].LnM)
 		}
 		if cr.g[k] != 0 {
 			cr.dst[k].Stats.Steps += len(cr.plan.steps)

@@ -1,0 +1,161 @@
+package diffusion
+
+import (
+	"fmt"
+	"math"
+
+	"bankfire/thermal/numeric"
+)
+
+// A jump narrower than a cell spreads slower on a grid than it should until it
+// is about as wide as a cell, and half the cells are no better: their
+// difference then says little. But for a jump on an even grid both the grid's
+// answer and the true one are known, so what Audit reports for the two cells at
+// a jump contains the difference. Jumps are the zone boundaries with edges
+// narrower than a cell and whatever a rim does.
+
+// should is what the first cell beside a jump of 1 has become after
+// gamma = G/h^2, h being the width of a cell: the mean of erfc(x/(2 sqrt(G)))/2
+// (Crank 1975, equation 2.14),
+//
+//	sqrt(gamma) (ierfc(0) - ierfc(1/(2 sqrt(gamma)))).
+func should(gamma float64) float64 {
+	root := math.Sqrt(gamma)
+	if root == 0 {
+		return 0
+	}
+	return root * (numeric.Ierfc(0) - numeric.Ierfc(1/(2*root)))
+}
+
+// does is what an even grid makes of it, (1 - exp(-2 gamma) I0(2 gamma))/2, the
+// half of a walk that has left its place (Feller 1966, An introduction to
+// probability theory, volume 2, section II.7).
+func does(gamma float64) float64 { return (1 - besselScaled(2*gamma)) / 2 }
+
+// lag is how much less than it should the first cell beside a jump of 1 has
+// changed after gamma, where the jump had spread by blurred at the start, both
+// in units of h^2.
+func lag(blurred, gamma float64) float64 {
+	if blurred > lagTail {
+		return 0 // an edge that the cells resolve
+	}
+	begun := 0.0 // what the grid would have needed to spread it as much
+	if blurred > 0 {
+		root, err := numeric.Root(func(g float64) float64 { return does(g) - should(blurred) }, 0, 2*lagTail, 1e-12)
+		if err != nil {
+			panic(fmt.Sprintf("diffusion: no grid spreads a jump by %g: %v", blurred, err)) // does is monotone: cannot happen
+		}
+		begun = root
+	}
+	if sum := blurred + gamma; sum > lagTail {
+		return (lagLead - (begun-blurred)/2) / (4 * math.Sqrt(math.Pi) * sum * math.Sqrt(sum))
+	}
+	return should(blurred+gamma) - does(begun+gamma)
+}
+
+const (
+	// lagTail is where lag goes over to its leading term, then right to 3 %,
+	// and lagLead what is in it: should is 1/2 - (1 - 1/(24 gamma))/sqrt(16 pi gamma)
+	// and does 1/2 - (1 + 1/(16 gamma))/sqrt(16 pi gamma).
+	lagTail = 10
+	lagLead = 1.0/16 + 1.0/24
+	// besselPoints is how many points make the trapezoidal rule exact to 1e-11
+	// up to 2 lagTail.
+	besselPoints = 32
+)
+
+// besselScaled returns exp(-x) I0(x), the mean over theta of exp(x (cos theta - 1))
+// (Abramowitz and Stegun 1964, 9.6.16).
+func besselScaled(x float64) float64 {
+	sum := 0.0
+	for i := range besselPoints {
+		sum += math.Exp(x * (math.Cos(2*math.Pi*float64(i)/besselPoints) - 1))
+	}
+	return sum / besselPoints
+}
+
+// addJumps adds to err, of column j, what the grid does to the jumps of a job.
+// f holds the job's outcome.
+func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
+	total := 0.0
+	for i := range job.Course.spans {
+		total += job.Course.spans[i].integral(job.LnM)
+	}
+	face := 0
+	for _, z := range p.problem.Zones[:len(p.problem.Zones)-1] {
+		for p.grid.faces[face] < z.Outer {
+			face++
+		}
+		p.addEdge(err, p.starts[j], face, z.Edge, total)
+	}
+	p.addRim(err, f, job, j, total, false)
+	p.addRim(err, f, job, j, total, true)
+}
+
+// addEdge adds what the grid does, in a diffusion integral of g, to the jump at
+// a zone boundary with an edge of the given width. Where D differs between the
+// two sides, the faster one moves what the slower one lets through.
+func (p *Plan) addEdge(err, start []float64, face int, edge, g float64) {
+	a, b := face-1, face
+	jump := start[b] - start[a]
+	da, db := p.problem.factor(p.grid.centres[a]), p.problem.factor(p.grid.centres[b])
+	ra, rb := math.Sqrt(da), math.Sqrt(db)
+	blur := edge / edgesPerWidth * edge / edgesPerWidth / 2 // the edge is what this integral makes of a jump
+	lagAt := func(d float64, cell int) float64 {
+		h := p.width(cell)
+		return lag(blur/(h*h), d*g/(h*h))
+	}
+	err[a] -= jump * 2 * rb / (ra + rb) * lagAt(da, a)
+	err[b] += jump * 2 * ra / (ra + rb) * lagAt(db, b)
+	h := (p.width(a) + p.width(b)) / 2
+	slope := jump / h * math.Min(1, edge/edgesPerWidth/h)
+	short := slope * (ra*rb - 2*da*db/(da+db)) * g
+	err[a] -= short / p.width(a) * math.Pow(1+da*g/(h*h), -1.5)
+	err[b] += short / p.width(b) * math.Pow(1+db*g/(h*h), -1.5)
+}
+
+// appendEnds appends the values of a column at both ends of the crystal, on the
+// straight line through the two cells beside them.
+func (p *Plan) appendEnds(to, c []float64) []float64 {
+	last := len(c) - 1
+	if last == 0 {
+		return append(to, c[0], c[0])
+	}
+	a := p.width(0) / (p.width(0) + p.width(1))
+	b := p.width(last) / (p.width(last) + p.width(last-1))
+	return append(to, c[0]+a*(c[0]-c[1]), c[last]+b*(c[last]-c[last-1]))
+}
+
+func (p *Plan) width(i int) float64 { return p.grid.faces[i+1] - p.grid.faces[i] }
+
+// addRim adds what the grid does to the changes of a rim. Each acts like a jump
+// of twice its size between two cells, of which one side is seen. left is the
+// diffusion integral of the whole job.
+func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, outer bool) {
+	cell, side := 0, 0
+	if outer {
+		cell, side = len(err)-1, 1
+	}
+	h := p.width(cell)
+	perG := p.problem.factor(p.grid.centres[cell]) / (h * h)
+	was, sealed := 0.0, true
+	for i := range job.Course.spans {
+		sp := &job.Course.spans[i]
+		g := sp.integral(job.LnM)
+		if end := [...]ending{sp.inner, sp.outer}[side]; !end.open || g == 0 {
+			left, sealed = math.Max(left-g, 0), !end.open
+			continue
+		}
+		if sealed {
+			was, sealed = f.atSpan[(i*len(f.Cols)+j)*2+side], false
+		}
+		for k, st := range p.steps {
+			e := p.ends(sp, j, k, 1, false)
+			if v := [...]float64{e.vIn, e.vOut}[side]; v != was {
+				err[cell] -= 2 * (v - was) * lag(0, perG*left)
+				was = v
+			}
+			left = math.Max(left-st.df*g, 0)
+		}
+	}
+}
