@@ -217,7 +217,8 @@ var (
 	energy      = bound{thermal.MolarEnergy, true, 1e7, "10000 kJ/mol", "273 kJ/mol"}
 )
 
-// quantity returns a quantity with its unit within bounds, in SI.
+// quantity returns a quantity with its unit within bounds, in SI; 0 if it is
+// not one.
 func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 	if n == nil {
 		return 0, false
@@ -234,7 +235,10 @@ func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 		d.reportError(n, err)
 		return 0, false
 	}
-	return x, d.within(n, x, b)
+	if !d.within(n, x, b) {
+		return 0, false
+	}
+	return x, true
 }
 
 func (d *decoder) within(n *node, x float64, b bound) bool {

@@ -22,9 +22,6 @@ func (d *decoder) crystals(root *node) []Crystal {
 	for _, n := range d.tables(list, `begin a crystal with "[[crystal]]"`) {
 		out = append(out, d.crystal(n, seen))
 	}
-	if len(out) > 1 {
-		d.report(list.items[1], "a second crystal", "this version takes one crystal; put the others in studies of their own")
-	}
 	return out
 }
 
@@ -143,7 +140,10 @@ func (d *decoder) inner(n *node, c *Crystal) *node {
 	}
 	d.keys(n, "radius", "rim")
 	if v := n.get("radius"); v != nil {
-		c.R0, _ = d.quantity(v, edgeWidth)
+		var ok bool
+		if c.R0, ok = d.quantity(v, edgeWidth); !ok {
+			return nil
+		}
 	}
 	rim := n.get("rim")
 	if rim == nil || rim.kind == textNode && rim.text == "sealed" {
@@ -163,9 +163,6 @@ func (d *decoder) elements(n *node, c *Crystal, inner *node) {
 	seen := map[string]int{}
 	for _, e := range d.tables(list, `begin an element with "[[crystal.element]]"`) {
 		c.Elements = append(c.Elements, d.element(e, c, inner, seen))
-	}
-	if len(c.Elements) > 1 {
-		d.report(list.items[1], "a second element", "this version takes one element; put the others in studies of their own")
 	}
 }
 

@@ -97,7 +97,8 @@ func (d *decoder) series(n *node, u *units) *Series {
 	}
 	s := &Series{Time: t.Columns[0], Value: t.Columns[1], BeforeEruption: before, Place: d.place(file)}
 	if d.checkSeries(s, t, label) {
-		d.seriesUnit(file, s, u, t.Units[1])
+		unit, _ := d.moles(n.get("value"), u, value, t.Units[1], s.Value, nil)
+		d.seriesUnit(file, s, u, unit)
 	}
 	return s
 }

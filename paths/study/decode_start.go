@@ -28,7 +28,7 @@ func (d *decoder) start(element *node, c *Crystal, u *units) Start {
 		d.report(element, "all plateaux are free, but there is no traverse to fit them to", example)
 	}
 	if edge := n.get("edge"); edge != nil {
-		s.Edge.Value = d.edge(edge)
+		s.Edge = d.nuisance(edge, edgeLatitude())
 	}
 	return s
 }
@@ -49,13 +49,4 @@ func (d *decoder) plateaux(n *node, dst []Plateau, c *Crystal, u *units, unit st
 	for i, v := range n.items {
 		dst[i] = d.amount(v, u, unit)
 	}
-}
-
-func (d *decoder) edge(n *node) float64 {
-	if n.kind == textNode && strings.HasPrefix(n.text, "free") {
-		d.report(n, "a free edge is not known in this version", `write a width, such as "0.5 um"`)
-		return 0
-	}
-	w, _ := d.quantity(n, edgeWidth)
-	return w
 }

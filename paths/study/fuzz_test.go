@@ -30,6 +30,16 @@ func FuzzEdit(f *testing.F) {
 	}
 	f.Add(uint8(1), uint16(900), uint16(30), "repeat = 3")
 	f.Add(uint8(2), uint16(500), uint16(10), "1e300 Myr")
+	for _, text := range []string{
+		`[limits]
+above = [ { temperature = "1e-300 K", longest = "0 yr", counts = "without a break" } ]`,
+		`[limits]
+life = { shortest = "1e-9 s", longest = "1e10 yr" }`,
+		`tilt = "84.99 deg", origin = "free -1..1 m"`, `scatter = "free", below = "limit"`, `value = "Fo [mol%]"`, `unit = "grey"`,
+	} {
+		f.Add(uint8(0), uint16(strings.Index(sound, "[[path]]")), uint16(0), text+"\n")
+		f.Add(uint8(0), uint16(strings.Index(sound, "spot =")), uint16(0), text+", ")
+	}
 	files := seedFiles(f)
 	f.Fuzz(func(t *testing.T, which uint8, at, length uint16, text string) {
 		base := texts[int(which)%len(texts)]
@@ -78,8 +88,15 @@ func holds(t *testing.T, data []byte, files map[string]string) {
 		}
 		return
 	}
+	mustBeFinite(t, "limits", s.Limits.Life[0], s.Limits.Life[1], s.Limits.Lowest)
 	for i := range s.Paths {
 		finitePath(t, &s.Paths[i])
+		if _, err := s.Limits.Barred(s.Paths[i].History); err != nil {
+			t.Fatalf("accepted, but a limit cannot be judged: %v", err)
+		}
+		if len(s.Paths[i].Barred) > 0 {
+			continue
+		}
 		for j := range s.Crystals {
 			for k := range s.Crystals[j].Elements {
 				finiteProblem(t, &s.Crystals[j], &s.Crystals[j].Elements[k], &s.Paths[i])
@@ -130,5 +147,11 @@ func finiteProblem(t *testing.T, c *Crystal, e *Element, p *Path) {
 		mustBeFinite(t, "traverse", e.Traverse.Position...)
 		mustBeFinite(t, "traverse", e.Traverse.Value...)
 		mustBeFinite(t, "traverse", e.Traverse.Sigma...)
+		for _, n := range []Nuisance{e.Start.Edge, e.Tilt, e.Origin} {
+			mustBeFinite(t, "nuisance", n.Value, n.Sigma, n.Lo, n.Hi)
+		}
+		at := make([]float64, len(e.Traverse.Position))
+		e.Traverse.Place(at, e.Origin.Middle(), e.Tilt.Middle())
+		mustBeFinite(t, "moved traverse", at...)
 	}
 }

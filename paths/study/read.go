@@ -83,12 +83,12 @@ func (d *decoder) confidence(n *node) float64 {
 	if !ok {
 		return defaultConfidence
 	}
-	p, err := thermal.ParseQuantity(text, thermal.Concentration)
-	if number, percent := strings.CutSuffix(strings.TrimSpace(text), "%"); !percent || err != nil || strings.HasSuffix(number, "wt") || !(p > 0 && p < 100) {
+	q, err := thermal.ReadQuantity(text, thermal.Concentration)
+	if err != nil || q.Unit != "%" || !(q.Value > 0 && q.Value < 100) {
 		d.report(n, "not a confidence", remedy)
 		return defaultConfidence
 	}
-	return p / 100
+	return q.Value / 100
 }
 
 func (d *decoder) thresholds(n *node) []Threshold {

@@ -76,7 +76,7 @@ func TestEveryKeyPaths(t *testing.T) {
 	near(t, "eruption of the first, from the top level", first.Eruption, (6000+80+100+5)*yr)
 	near(t, "life of the second", second.History.Life(), (400+3*(5+2*50)+30)*yr+86400)
 	near(t, "eruption of the second, its own", second.Eruption, (400+2*(5+2*50)+3)*yr)
-	if p := first.Place; p.Line != 22 || p.Col != 3 || p.File != s.File {
+	if p := first.Place; p.Line != 32 || p.Col != 3 || p.File != s.File {
 		t.Errorf("the first path is at %+v", p)
 	}
 	for _, test := range []struct {
@@ -138,7 +138,7 @@ func TestEveryKeyElement(t *testing.T) {
 	near(t, "mantle, bare number in wt%", e.Start.Zones[1].Value, 92)
 	near(t, "skin", e.Start.Zones[2].Value, 58)
 	near(t, "skin's error", e.Start.Zones[2].Sigma, 1.5)
-	near(t, "edge", e.Start.Edge.Value, 0.4*um)
+	near(t, "edge, its upper end", e.Start.Edge.Hi, 0.8*um)
 }
 
 func TestEveryKeyRims(t *testing.T) {
@@ -171,12 +171,51 @@ func TestEveryKeyTraverse(t *testing.T) {
 		t.Errorf("unit %q, spot %+v", tr.Unit, tr.Spot)
 	}
 	near(t, "spot", tr.Spot.Width, 0.8*um/(2*math.Sqrt(2*math.Log(2))))
-	if want := []int{2, 3, 4, 5, 6, 8, 9}; !slices.Equal(tr.Line, want) {
+	if want := []int{2, 3, 4, 5, 6, 8, 9, 10}; !slices.Equal(tr.Line, want) {
 		t.Errorf("rows %v, want %v: one is flagged, one outside the window", tr.Line, want)
 	}
 	near(t, "first position", tr.Position[0], 210*um)
 	near(t, "first error, half of two", tr.Sigma[0], 1.5)
 	near(t, "third error, the floor", tr.Sigma[2], 1)
+	if want := []bool{false, false, false, false, false, false, false, true}; !slices.Equal(tr.Limit, want) {
+		t.Errorf("limits %v", tr.Limit)
+	}
+	near(t, "error of a limit, a third of it", tr.Sigma[7], 23)
+}
+
+func TestEveryKeyNuisances(t *testing.T) {
+	e := everyKey(t).Crystals[0].Elements
+	near(t, "tilt, its upper end", e[0].Tilt.Hi, math.Pi/6)
+	near(t, "origin, its lower end", e[0].Origin.Lo, -1*um)
+	near(t, "tilt, known", e[1].Tilt.Value, math.Pi/18)
+	near(t, "origin, its error", e[1].Origin.Sigma, 0.2*um)
+	near(t, "edge", e[1].Start.Edge.Value, 0.4*um)
+	near(t, "its error", e[1].Start.Edge.Sigma, 0.1*um)
+	near(t, "error of three analyses, two of it", e[1].Traverse.Sigma[0], 1.5/math.Sqrt(3))
+	if !e[0].Scatter || e[1].Scatter || e[1].Traverse.Limit != nil {
+		t.Errorf("elements %+v", e)
+	}
+}
+
+func TestEveryKeyLimits(t *testing.T) {
+	s := everyKey(t)
+	l := s.Limits
+	near(t, "shortest life", l.Life[0], 100*yr)
+	near(t, "longest life", l.Life[1], 1e4*yr)
+	near(t, "lowest", l.Lowest, 600+zc)
+	if len(l.Above) != 3 || len(l.Between) != 1 || l.Above[0].Most != 0 || !l.Above[2].Stretch || l.Above[1].Stretch {
+		t.Fatalf("limits %+v", l)
+	}
+	near(t, "highest", l.Above[0].Temp, 1200+zc)
+	near(t, "threshold", l.Above[1].Temp, 750+zc)
+	near(t, "its longest", l.Above[1].Most, 1000*yr)
+	near(t, "without a break, shortest", l.Above[2].Least, 86400)
+	near(t, "between", l.Between[0].Most, 7000*yr)
+	for _, p := range s.Paths {
+		if got, err := l.Barred(p.History); err != nil || got != nil || p.Barred != nil {
+			t.Errorf("%s is barred: %q, %q, %v", p.Name, got, p.Barred, err)
+		}
+	}
 }
 
 // TestDefaults holds what is assumed where a study says nothing, and that it

@@ -54,8 +54,7 @@ func later(field string) bool {
 	case "conditions", "partition", "family", "law.own", "law.host", "law.times", "path.legs.conditions",
 		"crystal.host", "crystal.zones.host", "crystal.zones.added",
 		"crystal.element.rivals", "crystal.element.partition",
-		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled",
-		"crystal.element.traverse.tilt", "crystal.element.traverse.below", "crystal.element.traverse.scatter":
+		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled":
 		return true
 	}
 	return false

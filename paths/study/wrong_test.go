@@ -103,6 +103,8 @@ func soundFiles() map[string]string {
 		"bare.csv":    "t [yr],Ti\n0,80\n900,90\n",
 		"mole.csv":    "t [yr],Ti [mole fraction]\n0,0.1\n900,0.1\n",
 		"hot.csv":     "t [yr],T [C]\n0,700\n900,75000\n",
+		"below.csv":   "x [um],Ti [ppm]\n1,58\n30,<5\n",
+		"moles.csv":   "x [um],Fo [mol%],An [wt%],BSE\n1,88,50,120\n30,85,40,130\n",
 	}
 }
 
@@ -169,7 +171,7 @@ func TestSoundStudy(t *testing.T) {
 }
 
 func wrongStudies() []wrong {
-	return append(append(wrongText(), wrongPaths()...), append(wrongCrystals(), wrongElements()...)...)
+	return append(wrongLimits(), append(append(wrongText(), wrongPaths()...), append(wrongCrystals(), wrongElements()...)...)...)
 }
 
 func wrongText() []wrong {
@@ -198,6 +200,34 @@ func wrongText() []wrong {
 		{"confidence in wt%", `"95 %"`, `@"95 wt%"`, "", "confidence", "not a confidence", "below 100"},
 		{"threshold without temperature", `temperature = "750 C"`, "", "s.toml:4:3", "threshold.temperature", "missing", `"750 C"`},
 		{"single brackets", "[[threshold]]", "[@threshold]", "", "threshold", "a table, not a list", `"[[threshold]]"`},
+	}
+}
+
+// wrongLimits are faults in a table of limits that is put before the paths.
+func wrongLimits() []wrong {
+	const old = "[[path]]\n"
+	with := func(name, text, at, field, problem, remedy string) wrong {
+		return wrong{name, old, "[limits]\n" + text + "\n" + old, at, field, problem, remedy}
+	}
+	return []wrong{
+		with("limits of nothing", "", "s.toml:13:2", "limits", "no limit", "life, lowest"),
+		{"limits twice", old, "[[@limits]]\nlowest = \"1 C\"\n" + old, "", "limits", "a list, not a table", "[limits]"},
+		with("limit unknown", `@highst = "900 C"`, "", "limits.highst", "unknown key", `did you mean "highest"?`),
+		with("life bare", `life = @"1 kyr"`, "", "limits.life", "a text, not a table", "longest"),
+		with("life of no limit", `life = @{}`, "", "limits.life", "neither shortest nor longest", "longest"),
+		with("life inside out", `life = { shortest = "2 kyr", longest = @"1 kyr" }`, "", "limits.life.longest", "less than the shortest, 2 kyr", "exchange"),
+		with("life of nothing", `life = { longest = @"0 yr" }`, "", "limits.life.longest", "zero", "12 kyr"),
+		with("lowest bare", `lowest = @600`, "", "limits.lowest", "without a unit", "750 C"),
+		with("highest a time", `highest = @"3 yr"`, "", "limits.highest", "is a duration", "C, F or K"),
+		with("above nothing", `above = [ @{ longest = "3 yr" } ]`, "", "limits.above", "neither threshold nor temperature", "820 C"),
+		with("above twice", `above = [ { threshold = "lock-up", temperature = @"3 C", longest = "3 yr" } ]`, "", "limits.above.temperature", "a threshold is given as well", "keep one"),
+		with("above an unknown threshold", `above = [ { threshold = @"lockup", longest = "3 yr" } ]`, "", "limits.above.threshold", "no threshold has this name", `did you mean "lock-up"?`),
+		with("above without a time", `above = [ @{ threshold = "lock-up" } ]`, "", "limits.above", "neither shortest nor longest", "longest"),
+		with("above, counting oddly", `above = [ { threshold = "lock-up", longest = "3 yr", counts = @"without break" } ]`, "", "limits.above.counts", "no way to count", `did you mean "without a break"?`),
+		with("between one moment", `between = [ @{ from = "start", longest = "3 yr" } ]`, "", "limits.between.to", "missing", "start of wake 2"),
+		with("between a duration", `between = [ { from = "start", to = @"3 yr", longest = "3 yr" } ]`, "", "limits.between.to", "a duration, not a moment", "after start"),
+		with("between an added zone", `between = [ { from = "start", to = @"skin added", longest = "3 yr" } ]`, "", "limits.between.to", "not known in this version", "another moment"),
+		with("between, of no path", `between = [ @{ from = "start", to = "end of wake 9", longest = "3 yr" } ]`, "", "limits.between", `no leg "wake 9" (path "warm")`, "nearest"),
 	}
 }
 
@@ -262,8 +292,9 @@ func wrongCrystals() []wrong {
 		{"sphere", `"slab"`, `@"sphere"`, "", "crystal.shape", "no shape", `"ball"`},
 		{"no mineral", "mineral = \"quartz\"\n", "", "s.toml:20:3", "crystal.mineral", "missing", "quartz"},
 		{"no element", sound[strings.Index(sound, element):], "", "s.toml:20:3", "crystal.element", "missing", "[[crystal.element]]"},
-		{"a second crystal", "[[crystal]]", "[[crystal]]\nname = \"Q0\"\nmineral = \"quartz\"\nshape = \"slab\"\nzones = [" + core + "]\n[[crystal.element]]\nname = \"Ti\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\"] }\n[[@crystal]]", "", "crystal", "a second crystal", "one crystal"},
+		{"two crystals of one name", "[[crystal]]", "[[crystal]]\nname = \"Q1\"\nmineral = \"quartz\"\nshape = \"slab\"\nzones = [" + core + "]\n[[crystal.element]]\nname = \"Ti\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\"] }\n[[crystal]]", "s.toml:30:8", "crystal.name", "used twice, first on line 21", "its own"},
 		{"zone without width", core, `@{ name = "core" }`, "", "crystal.zones.width", "missing", "140 um"},
+		{"zone of negative width", `"100 um"`, `@"-1 m"`, "", "crystal.zones.width", "below zero", "140 um"},
 		{"zone of no width", `"100 um"`, `@"0 um"`, "", "crystal.zones.width", "zero", "140 um"},
 		{"zone thinner than an atom", `"100 um"`, `@"1e-6 um"`, "", "crystal.zones.width", "thinner than an atom", "check the unit"},
 		{"zone of a kilometre", `"100 um"`, `@"1000 m"`, "", "crystal.zones.width", "more than 1 m", "check the unit"},
@@ -283,7 +314,7 @@ func wrongElements() []wrong {
 	const law, start, rim = `"quartz-ti-cherniak2007"`, `{ zones = ["free", "58 ppm"], edge = "0 um" }`, `{ held = "skin" }`
 	const traverse = `{ file = "q1.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
 	return append([]wrong{
-		{"a second element", "[[crystal.element]]", "[[crystal.element]]\nname = \"Al\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\", \"2 ppm\"] }\n[[crystal.element]]", "s.toml:33:11", "crystal.element", "a second element", "one element"},
+		{"two elements of one name", "[[crystal.element]]", "[[crystal.element]]\nname = \"Ti\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\", \"2 ppm\"] }\n[[crystal.element]]", "s.toml:34:8", "crystal.element.name", "used twice, first on line 30", "its own"},
 		{"unknown law", law, `@"quartz-ti-cherniak2008"`, "", "crystal.element.law", "not in the catalogue", "quartz-ti-cherniak2007"},
 		{"law of the study mistyped", law, `@"mime"`, "", "crystal.element.law", "neither in the catalogue nor", `did you mean "mine"?`},
 		{"law that needs conditions", law, `@"olivine-femg-dohmen2007-tamed"`, "", "crystal.element.law", "depends on", "D0"},
@@ -299,7 +330,8 @@ func wrongElements() []wrong {
 		{"units that do not agree", `"58 ppm"]`, `@"0.3 mole fraction"]`, "", "crystal.element.start.zones", "in mole fraction, but line 34 has ppm", "one unit"},
 		{"alternatives", start, `@[ ` + start + ` ]`, "", "crystal.element.start", "not known in this version", "start = {"},
 		{"start in melt", start, `{ @melt = ["90 ppm"], edge = "0 um" }`, "", "crystal.element.start.melt", "not known in this version", "leave it out"},
-		{"free edge", `edge = "0 um"`, `edge = @"free 0..2 um"`, "", "crystal.element.start.edge", "free edge", "0.5 um"},
+		{"edge free, not said where", `edge = "0 um"`, `edge = @"free"`, "", "crystal.element.start.edge", "not between which ends", "free 0..2 um"},
+		{"edge free from below zero", `edge = "0 um"`, `edge = @"free -1..2 um"`, "", "crystal.element.start.edge", "below zero", "free 0..2 um"},
 		{"negative edge", `edge = "0 um"`, `edge = @"-1 um"`, "", "crystal.element.start.edge", "below zero", ""},
 		{"rim at no zone", rim, `{ held = @"skim" }`, "", "crystal.element.rim.held", "no zone has this name", `did you mean "skin"?`},
 		{"rim of no kind", rim, `@{ unit = "ppm" }`, "", "crystal.element.rim", "a rim of no kind", "held"},
@@ -336,6 +368,7 @@ func wrongElements() []wrong {
 
 func wrongTraverses() []wrong {
 	const traverse = `{ file = "q1.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
+	const head = `file = "q1.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]"`
 	return []wrong{
 		{"no such traverse", `"q1.csv"`, `@"no.csv"`, "", "crystal.element.traverse.file", "no such file", ""},
 		{"traverse without file", `file = "q1.csv", `, "", "s.toml:34:12", "crystal.element.traverse.file", "missing", "ti.csv"},
@@ -358,7 +391,24 @@ func wrongTraverses() []wrong {
 		{"spot of a kilometre", `"1 um fwhm"`, `@"2000 m fwhm"`, "", "crystal.element.traverse.spot", "wider than 1 m", "check the unit"},
 		{"center", `"rim"`, `@"center"`, "", "crystal.element.traverse.zero", "spelt centre", "centre"},
 		{"window backwards", `spot =`, `window = @"60..20 um", spot =`, "", "crystal.element.traverse.window", "does not run upwards", "smaller end first"},
-		{"tilt", `spot =`, `@tilt = "0..30 deg", spot =`, "", "crystal.element.traverse.tilt", "not known in this version", "leave it out"},
+		{"tilt backwards", `spot =`, `tilt = @"30..0 deg", spot =`, "", "crystal.element.traverse.tilt", "does not run upwards", "smaller end first"},
+		{"tilt below zero", `spot =`, `tilt = @"-30 deg", spot =`, "", "crystal.element.traverse.tilt", "below zero", "0..30 deg"},
+		{"tilt along the boundary", `spot =`, `tilt = @"0..90 deg", spot =`, "", "crystal.element.traverse.tilt", "more than 85 deg", "check the unit"},
+		{"tilt bare", `spot =`, `tilt = @30, spot =`, "", "crystal.element.traverse.tilt", "without a unit", "20 +- 5 deg"},
+		{"tilt a length", `spot =`, `tilt = @"3 um", spot =`, "", "crystal.element.traverse.tilt", "is a length", "deg"},
+		{"tilt of a wild error", `spot =`, `tilt = @"20 +- 100 deg", spot =`, "", "crystal.element.traverse.tilt", "its error is more than", "check the unit"},
+		{"origin free, not said where", `spot =`, `origin = @"free", spot =`, "", "crystal.element.traverse.origin", "not between which ends", "free -2..2 um"},
+		{"origin out of the crystal", `spot =`, `origin = "-5 um", spot =`, "q1.csv:2:0", "position", "beyond the rim at 120 um", "sign of the origin"},
+		{"origin with no room", `file = "q1.csv"`, `origin = "free -9..-5 um", file = @"q1.csv"`, "", "crystal.element.traverse.file", "no origin in its range", "sign of the range"},
+		{"scatter stated", `spot =`, `scatter = @"2 ppm", spot =`, "", "crystal.element.traverse.scatter", "no scatter that can be stated", `"free"`},
+		{"below detection undeclared", `"q1.csv"`, `"below.csv"`, "below.csv:3:4", "Ti [ppm]", "below detection, and the study does not say", `below = "skip"`},
+		{"below detection, mistyped", `spot =`, `below = @"limits", spot =`, "", "crystal.element.traverse.below", "no way to take values below", `did you mean "limit"?`},
+		{"half an analysis", `"4 %"`, `{ column = "2se [ppm]", analyses = @0.5 }`, "", "crystal.element.traverse.error.analyses", "not a number of analyses", "analyses = 5"},
+		{"analyses of a size", `"4 %"`, `{ size = "4 %", analyses = @5 }`, "", "crystal.element.traverse.error.analyses", "goes with a column", "leave it out"},
+		{"forsterite of titanium", head, `file = "moles.csv", position = "x [um]", zero = "rim", value = @"Fo", unit = "mol%"`, "", "crystal.element.traverse.value", "Fo says nothing of Ti", "named Fe or Mg"},
+		{"anorthite by mass", head, `file = "moles.csv", position = "x [um]", zero = "rim", value = @"An [wt%]"`, "", "crystal.element.traverse.value", "An in wt%, but it counts moles", "[mol%]"},
+		{"plateau in forsterite of titanium", `"58 ppm"]`, `@"88 Fo"]`, "", "crystal.element.start.zones", "in Fo, which says nothing of Ti", "named Fe or Mg"},
+		{"grey with one value", head, `file = "moles.csv", position = "x [um]", zero = "rim", value = "BSE", unit = "grey"`, "s.toml:34:12", "crystal.element.traverse", "one stated value does not tell", "leave all free"},
 		{"unit twice", `value = "Ti [ppm]"`, `value = @"Ti [ppm]", unit = "ppm"`, "", "crystal.element.traverse.value", "given here and under unit", "once"},
 		{"unknown unit beside", `value = "Ti [ppm]"`, `value = "Ti", unit = @"pmp"`, "", "crystal.element.traverse.unit", "no unit of a concentration", `did you mean "ppm"?`},
 	}

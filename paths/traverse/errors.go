@@ -227,10 +227,11 @@ func (d *reader) noteErrors() {
 	if d.relative {
 		d.note("column %q is taken as per cent of each value", e.Column)
 	}
+	cent := whole(d.t.Unit) == 100 && d.t.Unit != "wt%"
 	if e.Column != "" && !d.relative && d.t.Unit == "%" {
 		d.note("column %q is taken as per cent of the whole, like the values", e.Column)
 	}
-	if e.Percent != 0 && d.t.Unit == "%" {
+	if e.Percent != 0 && cent {
 		d.note("errors of %g %% are taken of each value, not of the whole", e.Percent)
 	}
 }

@@ -15,7 +15,8 @@ import (
 type Column struct {
 	// Header is the header of the column, "t [yr]". The unit in brackets may
 	// stand in the file, here, or in both if they agree; it must stand
-	// somewhere. Blanks count as one.
+	// somewhere. Blanks count as one. Concentrations named Fo, An, XFo or XAn
+	// in % or mol% are in the units Fo and An.
 	Header string
 	Dim    thermal.Dimension
 }
@@ -196,7 +197,7 @@ func (s *sheet) bind(w Column, index int) (bound, *thermal.InputError) {
 	refuse := func(problem, remedy string) (bound, *thermal.InputError) {
 		return b, s.errorAt(c.at, "column", c.text, problem, remedy)
 	}
-	_, asked := splitUnit(w.Header)
+	name, asked := splitUnit(w.Header)
 	_, typed := splitUnit(c.text)
 	if typed == "" {
 		typed = asked
@@ -212,7 +213,20 @@ func (s *sheet) bind(w Column, index int) (bound, *thermal.InputError) {
 	if usual := usualUnit(asked, w.Dim); asked != "" && usual != b.unit {
 		return refuse(fmt.Sprintf("its unit is %s, but the column asked for is in %s", b.unit, asked), "write the same unit in both places")
 	}
+	if of := component(name); of != "" && (b.unit == "%" || b.unit == "mol%") && w.Dim == thermal.Concentration {
+		b.unit = of
+	}
 	return b, nil
+}
+
+// component is the unit of a column of that name in per cent: Fo or An, which
+// count moles; "" for every other name.
+func component(name string) string {
+	switch name = strings.TrimPrefix(name, "X"); name {
+	case "Fo", "An":
+		return name
+	}
+	return ""
 }
 
 // ofValue is the unit of an error column in per cent of each value. Plain "%"
