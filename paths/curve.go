@@ -12,7 +12,7 @@ import (
 type Curve struct {
 	LnM, ChiSq, Slope []float64 // knots, LnM ascending, at least two
 	Points            int       // data points
-	Free              int       // values fitted from the points alone, without a prior
+	Free              int       // values that the points alone decide, without a prior
 }
 
 // At returns chi-square at lnM.

@@ -4,23 +4,30 @@ import (
 	"math"
 
 	"bankfire/paths/study"
-	"gonum.org/v1/gonum/mat"
+	"bankfire/thermal"
 )
 
-// rankCut is the part of the largest below which a column, or a singular value
-// of columns brought to equal length, is one of round-off: a free value or a
-// combination of free values that the data do not see. It is left at its base.
-const rankCut = 1e-10
+// A value without a prior is given one that is too wide to matter where the
+// data see the value: about the mean of the data, wide times their largest.
+// Without it a plateau that has all but diffused away would be fitted at 1e10
+// times anything measured, and the round-off of the solver be taken for its
+// profile. A value whose error comes out above unseen times the largest is one
+// that the data do not see.
+const (
+	wide   = 100
+	unseen = 10
+)
 
-// fit is a weighted linear least-squares problem: data, and free values with
-// or without a prior,
+// fit is a weighted linear least-squares problem: data, and free values,
 //
-//	chi-square = sum ((obs - y0 - sum x_j y_j)/sigma)^2 + sum (x_j/prior_j)^2.
+//	chi-square = sum ((obs - y0 - sum x_j y_j)/sigma)^2 + sum ((x_j - mean_j)/prior_j)^2.
 //
 // A free value x_j is counted from its base.
 type fit struct {
 	obs, sigma []float64
 	free       []study.FreeValue
+	prior      []thermal.Uncertain // of every free value
+	largest    float64             // of the data, errors and all
 }
 
 // fitted is the solution of a fit.
@@ -28,110 +35,25 @@ type fitted struct {
 	chiSq  float64
 	values []float64 // x_j
 	sigmas []float64 // standard deviations of x_j; +Inf where the data do not see it
+	spent  int       // combinations of values without a prior that the data decided
 }
 
-// solve fits the columns seen: seen[0] is y0, seen[1+j] is y_j.
-func (f *fit) solve(seen [][]float64) fitted {
-	n, k := len(f.obs), len(f.free)
-	b := make([]float64, n)
-	for i := range b {
-		b[i] = (f.obs[i] - seen[0][i]) / f.sigma[i]
+func newFit(obs, sigma []float64, free []study.FreeValue) fit {
+	f := fit{obs: obs, sigma: sigma, free: free}
+	mean := 0.0
+	for i, v := range obs {
+		mean += v / float64(len(obs))
+		f.largest = math.Max(f.largest, math.Abs(v)+sigma[i])
 	}
-	if k == 0 {
-		return fitted{chiSq: dot(b, b)}
+	for _, v := range free {
+		prior := thermal.Uncertain{Value: mean, Sigma: wide * f.largest}
+		if v.HasPrior { // its base is the middle of its prior
+			prior = thermal.Uncertain{Sigma: v.Prior.Sigma}
+		}
+		f.prior = append(f.prior, prior)
 	}
-	a, rhs := f.system(seen, b)
-	lengths := f.level(a)
-	out := fitted{values: make([]float64, k), sigmas: make([]float64, k)}
-	var svd mat.SVD
-	if !svd.Factorize(a, mat.SVDThin) {
-		out.chiSq = math.NaN()
-		return out
-	}
-	f.invert(&svd, rhs, &out)
-	x := mat.NewVecDense(k, out.values)
-	var residual mat.VecDense
-	residual.MulVec(a, x)
-	residual.SubVec(rhs, &residual)
-	out.chiSq = mat.Dot(&residual, &residual)
-	for j, l := range lengths {
-		out.values[j] /= l
-		out.sigmas[j] /= l
-	}
-	return out
+	return f
 }
-
-// level brings the columns to length 1, so that a narrow prior on one value
-// does not hide the others, and returns what they were divided by. Columns that
-// are nothing but round-off become zero.
-func (f *fit) level(a *mat.Dense) []float64 {
-	n, k := len(f.obs), len(f.free)
-	longest := 0.0
-	for j := range k {
-		longest = math.Max(longest, mat.Norm(a.Slice(0, n, j, j+1), 2))
-	}
-	lengths := make([]float64, k)
-	for j := range k {
-		column := a.ColView(j).(*mat.VecDense)
-		lengths[j] = mat.Norm(column, 2)
-		if !f.free[j].HasPrior && lengths[j] <= rankCut*longest {
-			lengths[j] = 1
-			column.Zero()
-		}
-		column.ScaleVec(1/lengths[j], column)
-	}
-	return lengths
-}
-
-// system stacks the data over the priors, each row divided by its sigma.
-func (f *fit) system(seen [][]float64, b []float64) (*mat.Dense, *mat.VecDense) {
-	n, k := len(f.obs), len(f.free)
-	a, rhs := mat.NewDense(n+k, k, nil), mat.NewVecDense(n+k, nil)
-	for i, v := range b {
-		rhs.SetVec(i, v)
-		for j := range k {
-			a.Set(i, j, seen[1+j][i]/f.sigma[i])
-		}
-	}
-	for j, v := range f.free {
-		if v.HasPrior {
-			a.Set(n+j, j, 1/v.Prior.Sigma)
-		}
-	}
-	return a, rhs
-}
-
-// invert fills the values of least norm and their standard deviations from the
-// decomposition A = U S V^T.
-func (f *fit) invert(svd *mat.SVD, rhs *mat.VecDense, out *fitted) {
-	var u, v mat.Dense
-	svd.UTo(&u)
-	svd.VTo(&v)
-	s := svd.Values(nil)
-	k := len(s)
-	for c := range k {
-		if s[c] <= rankCut*s[0] {
-			for j := range k {
-				if math.Abs(v.At(j, c)) > unseen {
-					out.sigmas[j] = math.Inf(1)
-				}
-			}
-			continue
-		}
-		w := mat.Dot(u.ColView(c), rhs) / s[c]
-		for j := range k {
-			out.values[j] += w * v.At(j, c)
-			out.sigmas[j] += (v.At(j, c) / s[c]) * (v.At(j, c) / s[c])
-		}
-	}
-	for j := range out.sigmas {
-		out.sigmas[j] = math.Sqrt(out.sigmas[j])
-	}
-}
-
-// unseen is the part of a free value in an unseen combination that makes the
-// value itself unseen.
-const unseen = 1e-6
 
 // unconstrained counts the free values without a prior.
 func (f *fit) unconstrained() int {
@@ -142,6 +64,101 @@ func (f *fit) unconstrained() int {
 		}
 	}
 	return n
+}
+
+// solve fits the columns seen: seen[0] is y0, seen[1+j] is y_j. With z_j =
+// (x_j - mean_j)/prior_j it is the least-squares problem A z = b of
+//
+//	A = (y_j prior_j/sigma; 1),  b = ((obs - y0 - sum mean_j y_j)/sigma; 0),
+//
+// whose columns are independent whatever the data see. It is solved by the
+// modified process of Gram and Schmidt applied to A and b together, which is as
+// stable as Householder's (Bjorck 1967, BIT 7, 1-21).
+func (f *fit) solve(seen [][]float64) fitted {
+	a, b := f.system(seen)
+	k := len(a)
+	r, z := make([][]float64, k), make([]float64, k)
+	for j, q := range a {
+		r[j] = make([]float64, k)
+		r[j][j] = math.Sqrt(dot(q, q))
+		for i := range q {
+			q[i] /= r[j][j]
+		}
+		for l := j + 1; l < k; l++ {
+			r[j][l] = takeOut(a[l], q)
+		}
+		z[j] = takeOut(b, q)
+	}
+	return f.read(inverse(r), z, dot(b, b))
+}
+
+// system returns the columns of A and b.
+func (f *fit) system(seen [][]float64) (a [][]float64, b []float64) {
+	n, k := len(f.obs), len(f.free)
+	b = make([]float64, n+k)
+	for i := range n {
+		b[i] = (f.obs[i] - seen[0][i]) / f.sigma[i]
+	}
+	a = make([][]float64, k)
+	for j, p := range f.prior {
+		a[j] = make([]float64, n+k)
+		a[j][n+j] = 1
+		for i := range n {
+			y := seen[1+j][i] / f.sigma[i]
+			a[j][i] = y * p.Sigma
+			b[i] -= y * p.Value
+		}
+	}
+	return a, b
+}
+
+// takeOut removes from v its part along the unit vector q and returns how much
+// it was.
+func takeOut(v, q []float64) float64 {
+	part := dot(v, q)
+	for i := range v {
+		v[i] -= part * q[i]
+	}
+	return part
+}
+
+// inverse returns that of an upper triangular matrix.
+func inverse(r [][]float64) [][]float64 {
+	inv := make([][]float64, len(r))
+	for i := range inv {
+		inv[i] = make([]float64, len(r))
+	}
+	for j := range r {
+		inv[j][j] = 1 / r[j][j]
+		for i := j - 1; i >= 0; i-- {
+			for l := i + 1; l <= j; l++ {
+				inv[i][j] -= r[i][l] * inv[l][j] / r[i][i]
+			}
+		}
+	}
+	return inv
+}
+
+// read turns the solution, in units of the priors, into values and their
+// errors; inverse is that of R.
+func (f *fit) read(inverse [][]float64, z []float64, chiSq float64) fitted {
+	k := len(z)
+	out := fitted{chiSq: chiSq, values: make([]float64, k), sigmas: make([]float64, k)}
+	spent := 0.0
+	for j, p := range f.prior {
+		left := dot(inverse[j], inverse[j]) // variance, as a part of the prior's
+		out.values[j] = p.Value + p.Sigma*dot(inverse[j], z)
+		out.sigmas[j] = p.Sigma * math.Sqrt(left)
+		if f.free[j].HasPrior {
+			continue
+		}
+		spent += 1 - left
+		if out.sigmas[j] > unseen*f.largest {
+			out.sigmas[j] = math.Inf(1)
+		}
+	}
+	out.spent = int(math.Round(spent))
+	return out
 }
 
 func dot(a, b []float64) float64 {

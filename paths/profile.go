@@ -32,6 +32,7 @@ type profile struct {
 	course  diffusion.Course
 	weights *traverse.Weights // nil without a traverse
 	fit     fit
+	spent   int // degrees of freedom that the free values take on the path as it is
 	fields  []diffusion.Field
 	seen    [][]float64 // the columns after the spot
 }
@@ -59,7 +60,7 @@ func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined in
 		if p.weights, err = t.Weights(plan.Faces(), c.Mirrored(e)); err != nil {
 			return nil, err
 		}
-		p.fit = fit{obs: t.Value, sigma: t.Sigma, free: free}
+		p.fit = newFit(t.Value, t.Sigma, free)
 		p.seen = make([][]float64, 1+len(free))
 		for j := range p.seen {
 			p.seen[j] = make([]float64, len(t.Value))

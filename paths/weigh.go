@@ -154,7 +154,7 @@ func weighProfile(ctx context.Context, c *study.Crystal, e *study.Element, path 
 		if err != nil {
 			return nil, nil, Curve{}, err
 		}
-		curve, err := scan(len(p.fit.obs), p.fit.unconstrained(), p.sampler(ctx))
+		curve, err := scan(len(p.fit.obs), p.spent, p.sampler(ctx))
 		if err != nil {
 			return nil, nil, Curve{}, err
 		}
@@ -225,6 +225,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		Centres: p.plan.Centres(),
 		Stats:   f.Stats,
 	}
+	p.spent = fitted.spent
 	everywhere, err := traverse.NewWeights(p.plan.Faces(), p.crystal.Mirrored(p.element), p.element.Traverse.Spot, r.Centres)
 	if err != nil {
 		return nil, err
