@@ -246,9 +246,10 @@ func Sum(cs []Curve) Curve {
 const (
 	scanDecades  = 6
 	scanKnots    = 25
-	concern      = 30.0 // chi-square above the lowest within which the curve must be right
-	curveError   = 0.02 // chi-square, largest miss of the curve half way between knots
-	dipError     = 0.1  // the same beyond concern, of what lies beyond
+	concern      = 30.0 // chi-square above the lowest up to which the curve is looked at
+	inner        = 10.0 // the same up to which it must be right: 3.84 above the lowest, and above the lowest but one, is read
+	curveError   = 0.02 // chi-square, largest miss of the curve half way between knots within inner
+	outerError   = 0.03 // the same beyond, of what lies beyond
 	shiftError   = 2e-3 // of lnM: shift factors are good to well under 1 %
 	leastSpacing = 1e-4 // of lnM: no interval below is halved and no two knots are nearer
 	mostRounds   = 16
@@ -351,20 +352,20 @@ type halving struct{ x0, mid, x1, told, allowed float64 }
 // halvings returns the intervals to be halved that are not settled: those
 // within concern of the lowest point, and those that hold a lowest point of
 // their own, because the curve between few knots may pass far above the truth.
-// It is followed down until it is known to a tenth of what it lies above the
-// lowest.
+// It is followed down until it is known to a small part of what it lies above
+// the lowest.
 func (c *Curve) halvings(settled map[[2]float64]bool) []halving {
 	_, best := c.Lowest()
 	var list []halving
 	for i := range len(c.LnM) - 1 {
 		q := c.piece(i)
 		x, low := q.lowest()
-		far := math.Max(0, low-best-concern)
-		if q.x1-q.x0 < 2*leastSpacing || settled[[2]float64{q.x0, q.x1}] || far > 0 && !c.dips(i, x) {
+		if q.x1-q.x0 < 2*leastSpacing || settled[[2]float64{q.x0, q.x1}] || low > best+concern && !c.dips(i, x) {
 			continue
 		}
 		mid := q.x0 + (q.x1-q.x0)/2
-		list = append(list, halving{q.x0, mid, q.x1, q.value(mid), curveError + dipError*far})
+		allowed := curveError + outerError*math.Max(0, low-best-inner)
+		list = append(list, halving{q.x0, mid, q.x1, q.value(mid), allowed})
 	}
 	return list
 }
