@@ -2,7 +2,6 @@ package main
 
 import (
 	"bytes"
-	"context"
 	"encoding/json"
 	"maps"
 	"math"
@@ -37,28 +36,6 @@ func resolve(t *testing.T, s *jsonschema.Schema) *jsonschema.Resolved {
 		t.Fatal(err)
 	}
 	return resolved
-}
-
-// smallResult weighs the small study.
-func smallResult(t *testing.T) *paths.Result {
-	t.Helper()
-	s, err := study.Read(plantStudy(t, t.TempDir()))
-	if err != nil {
-		t.Fatal(err)
-	}
-	r, err := paths.Weigh(context.Background(), s, 1)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return r
-}
-
-// notRun makes the first path of the result one that was not run.
-func notRun(r *paths.Result) {
-	nan := math.NaN()
-	r.Paths[0].Profiles, r.Paths[0].Notes = nil, []string{"lives longer than 1 kyr"}
-	r.Paths[0].Outcome = paths.Outcome{Finding: paths.Finding{
-		Shift: nan, Shift68: [2]float64{0, math.Inf(1)}, Shift95: [2]float64{0, math.Inf(1)}, Tail: nan, Misfit: nan}}
 }
 
 // asJSON is the summary as another program reads it.

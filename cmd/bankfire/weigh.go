@@ -19,11 +19,12 @@ import (
 )
 
 // weighCommand is `bankfire weigh`.
-func weighCommand() *command { return weighCommandOn(results.OnDisk{}) }
+func weighCommand() *command { return newWeighCommand(results.OnDisk{}, weighStudy) }
 
-// weighCommandOn is `bankfire weigh` with its results on that disk.
-func weighCommandOn(disk results.Disk) *command {
-	w := &weigh{disk: disk}
+// newWeighCommand is `bankfire weigh` with its results on that disk and with
+// what computes them.
+func newWeighCommand(disk results.Disk, compute func(context.Context, string, int) (*paths.Result, error)) *command {
+	w := &weigh{disk: disk, compute: compute}
 	return &command{
 		name:  "weigh",
 		args:  "STUDY",
@@ -46,6 +47,7 @@ func weighCommandOn(disk results.Disk) *command {
 // weigh is one run of the command.
 type weigh struct {
 	disk                   results.Disk
+	compute                func(ctx context.Context, file string, jobs int) (*paths.Result, error)
 	flags                  *pflag.FlagSet
 	out                    string
 	replace, asJSON, quiet bool
@@ -70,7 +72,7 @@ func (o *weigh) run(ctx context.Context, s streams, operands []string) error {
 	if err != nil {
 		return err
 	}
-	result, err := weighStudy(ctx, operands[0], o.jobs)
+	result, err := o.compute(ctx, operands[0], o.jobs)
 	if err != nil {
 		return err
 	}
@@ -104,6 +106,7 @@ func (o *weigh) open() (*results.Folder, error) {
 	return results.Open(o.disk, o.out, o.replace)
 }
 
+// weighStudy weighs the study in the file, jobs paths at a time.
 func weighStudy(ctx context.Context, file string, jobs int) (*paths.Result, error) {
 	s, err := study.Read(file)
 	if err != nil {
