@@ -1,6 +1,7 @@
 package paths
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -136,26 +137,32 @@ func legShares(h *thermal.History, law diffusion.Law) []LegShare {
 }
 
 // spans cuts the history into the user's named legs and, between them, the
-// single legs without a name.
+// single legs without a name. Of names within names the innermost count.
 func spans(h *thermal.History) []thermal.Named {
-	named := slices.Clone(h.Names())
+	list := innermost(h.Names())
+	named := len(list)
+	k := 0
 	for i, leg := range h.Legs() {
-		start := h.Start(i)
-		inside := slices.ContainsFunc(h.Names(), func(n thermal.Named) bool {
-			return start >= n.Start && start+leg.For <= n.End
-		})
-		if !inside {
-			named = append(named, thermal.Named{Name: fmt.Sprintf("leg %d (%s)", i+1, leg.Kind), Start: start, End: start + leg.For})
+		start, end := h.Start(i), h.Start(i)+leg.For
+		for k < named && list[k].End <= start {
+			k++
+		}
+		if k == named || start < list[k].Start || end > list[k].End {
+			list = append(list, thermal.Named{Name: fmt.Sprintf("leg %d (%s)", i+1, leg.Kind), Start: start, End: end})
 		}
 	}
-	slices.SortStableFunc(named, func(a, b thermal.Named) int {
-		switch {
-		case a.Start < b.Start:
-			return -1
-		case a.Start > b.Start:
-			return 1
+	slices.SortStableFunc(list, func(a, b thermal.Named) int { return cmp.Compare(a.Start, b.Start) })
+	return list
+}
+
+// innermost returns the stretches that hold no other. They come in the order
+// in which they begin, those of a stretch after it.
+func innermost(names []thermal.Named) []thermal.Named {
+	var list []thermal.Named
+	for i, n := range names {
+		if i+1 == len(names) || names[i+1].Start >= n.End || names[i+1].End > n.End {
+			list = append(list, n)
 		}
-		return 0
-	})
-	return named
+	}
+	return list
 }
