@@ -26,11 +26,10 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 	}
 	lo, hi := path.History.Range()
 	notes = append(notes, outOfRange(&r.Element.Law, lo, hi)...)
-	if row := r.Element.Law.Row; row != nil && !row.Checked() {
-		notes = append(notes, fmt.Sprintf("%s: constants not checked against the paper", row.Key))
-	}
-	if row := r.Element.Law.Row; row != nil && row.Tag == "multicomponent" {
-		notes = append(notes, fmt.Sprintf("%s is one diffusivity of a multicomponent set used alone", row.Key))
+	if row := r.Element.Law.Row; row != nil {
+		for _, caution := range row.Cautions() {
+			notes = append(notes, row.Key+": "+caution)
+		}
 	}
 	for _, f := range r.Free {
 		switch {
@@ -56,7 +55,7 @@ func (r *ProfileResult) reach() float64 {
 }
 
 // outOfRange says how far temperatures between lo and hi, in K, leave the
-// law's calibrated range.
+// law's calibrated range, if by half a degree or more.
 func outOfRange(law *study.Law, lo, hi float64) []string {
 	if law.TMin == 0 && law.TMax == 0 {
 		return nil
@@ -66,10 +65,10 @@ func outOfRange(law *study.Law, lo, hi float64) []string {
 		name = "the law"
 	}
 	var how []string
-	if lo < law.TMin {
+	if law.TMin-lo >= 0.5 {
 		how = append(how, fmt.Sprintf("%.0f C below", law.TMin-lo))
 	}
-	if hi > law.TMax {
+	if hi-law.TMax >= 0.5 {
 		how = append(how, fmt.Sprintf("%.0f C above", hi-law.TMax))
 	}
 	if len(how) == 0 {
