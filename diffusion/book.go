@@ -4,11 +4,14 @@ import "math"
 
 // book keeps the account of one run's answer: what was there, what came
 // through the rims, and the values between which a profile without drift must
-// stay.
+// stay. In a step far longer than a cell's own time the flow through a rim is a
+// tiny difference of values times a large conductance; what it may be wrong by
+// is no drift.
 type book struct {
 	start  float64 // content before the run
 	inflow float64 // content that came through both ends
 	scale  float64 // all that was there or moved, without its sign
+	noise  float64 // what rounding of the values may have done to the inflow
 	lo, hi float64 // least and greatest of start and rim values so far
 }
 
@@ -46,6 +49,7 @@ func (b *book) flow(k, v, before, after float64, euler bool) {
 	}
 	b.inflow += amount
 	b.scale += math.Abs(amount)
+	b.noise += k * (math.Abs(v) + math.Abs(after)) * 0x1p-52
 }
 
 // close writes what the account says of the final answer c.
@@ -56,7 +60,7 @@ func (b *book) close(s *Stats, p *Plan, c []float64) {
 		worst = math.Max(worst, math.Max(c[i]-b.hi, b.lo-c[i]))
 	}
 	if b.scale > 0 {
-		s.MassDrift = math.Abs(content-b.start-b.inflow) / b.scale
+		s.MassDrift = math.Max(0, math.Abs(content-b.start-b.inflow)-b.noise) / b.scale
 	}
 	if b.hi > b.lo {
 		s.Overshoot = worst / (b.hi - b.lo)

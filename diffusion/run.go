@@ -147,7 +147,7 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 			for j, c := range f.Cols {
 				e := p.ends(sp, j, k, s, rough)
 				if j > 0 {
-					p.forward(&f.lane, s, e, c)
+					f.lane.forward(e, c)
 					f.lane.substitute(c, st.euler)
 					continue
 				}

@@ -73,7 +73,7 @@ func (cr *crew) step(i, n int) {
 	for j, c := range f.cols4 {
 		e := cr.ends(i, j, n, &s)
 		if j > 0 {
-			p.forward4(&f.lane4, &s, &e, c)
+			f.lane4.forward(&e, c)
 			f.lane4.substitute(c, st.euler)
 			continue
 		}

@@ -15,78 +15,93 @@ type ends4 struct{ kIn, kOut, vIn, vOut four }
 
 // lane4 is lane for four paths, cell by cell.
 type lane4 struct {
-	factor, inverse, rhs []four
-	middle               four
+	cells  []cell4
+	middle four
 }
 
+// cell4 is a cell's part of lane4.
+type cell4 struct{ factor, rhs, series, inverse four }
+
 func (l *lane4) resize(n int) {
-	l.factor, l.inverse, l.rhs = resized4(l.factor, n), resized4(l.inverse, n), resized4(l.rhs, n)
+	if cap(l.cells) < n {
+		l.cells = make([]cell4, n)
+	}
+	l.cells = l.cells[:n]
 }
 
 func (p *Plan) eliminate4(l *lane4, s *four, e *ends4, c []four) {
 	n := len(c)
 	m := n / 2
 	vol, cond := p.grid.volumes[:n], p.cond[:n+1]
-	x, f := e.kIn, inflow4(&e.kIn, &e.vIn, &c[0])
-	y, g := e.kOut, inflow4(&e.kOut, &e.vOut, &c[n-1])
+	x, f := &e.kIn, inflow4(&e.kIn, &e.vIn, &c[0])
+	y, g := &e.kOut, inflow4(&e.kOut, &e.vOut, &c[n-1])
 	i, j := 0, n-1
 	if n&1 == 0 {
-		l.reduce(0, s, vol[0], cond[1], &x, &f, &c[0], &c[1])
+		x = l.reduce(0, s, vol[0], cond[1], x, &f, &c[0], &c[1])
 		i = 1
 	}
 	for ; i < m; i, j = i+1, j-1 {
-		l.reduce(i, s, vol[i], cond[i+1], &x, &f, &c[i], &c[i+1])
-		l.reduce(j, s, vol[j], cond[j], &y, &g, &c[j], &c[j-1])
+		x = l.reduce(i, s, vol[i], cond[i+1], x, &f, &c[i], &c[i+1])
+		y = l.reduce(j, s, vol[j], cond[j], y, &g, &c[j], &c[j-1])
 	}
 	for k := range lanes {
 		l.middle[k] = 1 / (vol[m] + x[k] + y[k])
-		l.rhs[m][k] = f[k] + g[k]
+	}
+	l.meet(m, &f, &g)
+}
+
+// meet finds the change of the middle cell m, from what both chains hand on.
+func (l *lane4) meet(m int, f, g *four) {
+	for k := range lanes {
+		l.cells[m].rhs[k] = float64((f[k] + g[k]) * l.middle[k])
 	}
 }
 
 // reduce eliminates cell i of volume v and value c, coupled by k to the next
-// one of value d: x and f are what was handed to it, and become what it hands
-// on.
-func (l *lane4) reduce(i int, s *four, v, k float64, x, f, c, d *four) {
-	q, inv, rhs := &l.factor[i], &l.inverse[i], &l.rhs[i]
+// one of value d: x and f are what was handed to it, f and what is returned what
+// it hands on.
+func (l *lane4) reduce(i int, s *four, v, k float64, x, f, c, d *four) *four {
+	to := &l.cells[i]
 	a0, a1, a2, a3 := float64(s[0]*k), float64(s[1]*k), float64(s[2]*k), float64(s[3]*k)
-	i0, i1, i2, i3 := 1/(v+a0+x[0]), 1/(v+a1+x[1]), 1/(v+a2+x[2]), 1/(v+a3+x[3])
-	x[0], x[1] = float64(float64(a0*(v+x[0]))*i0), float64(float64(a1*(v+x[1]))*i1)
-	x[2], x[3] = float64(float64(a2*(v+x[2]))*i2), float64(float64(a3*(v+x[3]))*i3)
-	inv[0], inv[1], inv[2], inv[3] = i0, i1, i2, i3
-	i0, i1, i2, i3 = a0*i0, a1*i1, a2*i2, a3*i3
-	q[0], q[1], q[2], q[3] = i0, i1, i2, i3
-	a0, a1 = float64(a0*(d[0]-c[0])), float64(a1*(d[1]-c[1]))
-	a2, a3 = float64(a2*(d[2]-c[2])), float64(a3*(d[3]-c[3]))
-	f0, f1, f2, f3 := a0+f[0], a1+f[1], a2+f[2], a3+f[3]
-	rhs[0], rhs[1], rhs[2], rhs[3] = f0, f1, f2, f3
-	f[0], f[1], f[2], f[3] = float64(i0*f0)-a0, float64(i1*f1)-a1, float64(i2*f2)-a2, float64(i3*f3)-a3
+	v0, v1, v2, v3 := v+x[0], v+x[1], v+x[2], v+x[3]
+	i0, i1, i2, i3 := 1/(v0+a0), 1/(v1+a1), 1/(v2+a2), 1/(v3+a3)
+	to.inverse[0], to.inverse[1], to.inverse[2], to.inverse[3] = i0, i1, i2, i3
+	v0, v1 = float64(float64(a0*v0)*i0), float64(float64(a1*v1)*i1)
+	v2, v3 = float64(float64(a2*v2)*i2), float64(float64(a3*v3)*i3)
+	to.series[0], to.series[1], to.series[2], to.series[3] = v0, v1, v2, v3
+	a0, a1, a2, a3 = float64(a0*i0), float64(a1*i1), float64(a2*i2), float64(a3*i3)
+	to.factor[0], to.factor[1], to.factor[2], to.factor[3] = a0, a1, a2, a3
+	s0, s1, s2, s3 := d[0]-c[0], d[1]-c[1], d[2]-c[2], d[3]-c[3]
+	f0, f1, f2, f3 := f[0], f[1], f[2], f[3]
+	to.rhs[0], to.rhs[1] = float64(a0*s0)+float64(f0*i0), float64(a1*s1)+float64(f1*i1)
+	to.rhs[2], to.rhs[3] = float64(a2*s2)+float64(f2*i2), float64(a3*s3)+float64(f3*i3)
+	f[0], f[1] = float64(a0*f0)-float64(v0*s0), float64(a1*f1)-float64(v1*s1)
+	f[2], f[3] = float64(a2*f2)-float64(v2*s2), float64(a3*f3)-float64(v3*s3)
+	return &to.series
 }
 
-func (p *Plan) forward4(l *lane4, s *four, e *ends4, c []four) {
+func (l *lane4) forward(e *ends4, c []four) {
 	n := len(c)
 	m := n / 2
 	f := inflow4(&e.kIn, &e.vIn, &c[0])
 	for i := range m {
-		l.carry(i, s, p.cond[i+1], &f, &c[i], &c[i+1])
+		l.carry(i, &f, &c[i], &c[i+1])
 	}
 	g := inflow4(&e.kOut, &e.vOut, &c[n-1])
 	for j := n - 1; j > m; j-- {
-		l.carry(j, s, p.cond[j], &g, &c[j], &c[j-1])
+		l.carry(j, &g, &c[j], &c[j-1])
 	}
-	for k := range lanes {
-		l.rhs[m][k] = f[k] + g[k]
-	}
+	l.meet(m, &f, &g)
 }
 
 // carry takes the right-hand side of a further column through cell i of value
-// c, coupled by k to the next one of value d.
-func (l *lane4) carry(i int, s *four, k float64, f, c, d *four) {
-	q, rhs := &l.factor[i], &l.rhs[i]
+// c, next to one of value d.
+func (l *lane4) carry(i int, f, c, d *four) {
+	at := &l.cells[i]
 	for n := range lanes {
-		flux := float64(float64(s[n]*k) * (d[n] - c[n]))
-		rhs[n] = flux + f[n]
-		f[n] = float64(q[n]*rhs[n]) - flux
+		step := d[n] - c[n]
+		at.rhs[n] = float64(at.factor[n]*step) + float64(f[n]*at.inverse[n])
+		f[n] = float64(at.factor[n]*f[n]) - float64(at.series[n]*step)
 	}
 }
 
@@ -97,33 +112,28 @@ func (l *lane4) substitute(c []four, euler bool) {
 	if euler {
 		times = 1
 	}
-	var d four
+	d := l.cells[m].rhs
 	for k := range lanes {
-		d[k] = l.rhs[m][k] * l.middle[k]
 		c[m][k] += float64(times * d[k])
 	}
-	u := d
-	for i := m - 1; i >= 0; i-- {
-		l.solve(i, times, &d, &c[i])
-	}
-	for j := m + 1; j < n; j++ {
-		l.solve(j, times, &u, &c[j])
-	}
+	l.outwards(c, m-1, -1, times)
+	l.outwards(c, m+1, 1, times)
 }
 
-// solve finds the change of cell i from its neighbour's d, which becomes its
-// own, and adds it to c.
-func (l *lane4) solve(i int, times float64, d, c *four) {
-	q, inv, rhs := &l.factor[i], &l.inverse[i], &l.rhs[i]
-	d0 := float64(rhs[0]*inv[0]) + float64(q[0]*d[0])
-	d1 := float64(rhs[1]*inv[1]) + float64(q[1]*d[1])
-	d2 := float64(rhs[2]*inv[2]) + float64(q[2]*d[2])
-	d3 := float64(rhs[3]*inv[3]) + float64(q[3]*d[3])
-	d[0], d[1], d[2], d[3] = d0, d1, d2, d3
-	c[0] += float64(times * d0)
-	c[1] += float64(times * d1)
-	c[2] += float64(times * d2)
-	c[3] += float64(times * d3)
+// outwards finds the changes of the cells from i on, by each, from that of the
+// middle one, and adds them to c.
+func (l *lane4) outwards(c []four, i, by int, times float64) {
+	d := &l.cells[i-by].rhs
+	d0, d1, d2, d3 := d[0], d[1], d[2], d[3]
+	for ; uint(i) < uint(len(c)); i += by {
+		at, to := &l.cells[i], &c[i]
+		d0, d1 = at.rhs[0]+float64(at.factor[0]*d0), at.rhs[1]+float64(at.factor[1]*d1)
+		d2, d3 = at.rhs[2]+float64(at.factor[2]*d2), at.rhs[3]+float64(at.factor[3]*d3)
+		to[0] += float64(times * d0)
+		to[1] += float64(times * d1)
+		to[2] += float64(times * d2)
+		to[3] += float64(times * d3)
+	}
 }
 
 // inflow4 returns what the rims drive into the cells of value c beside them.

@@ -1,0 +1,181 @@
+package diffusion
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"testing"
+	"time"
+
+	"bankfire/thermal"
+)
+
+const benchCells = 200
+
+// benchProblem is a slab of 200 cells with three zones and a held rim, of the
+// kind that a screening solves most.
+func benchProblem() (*Problem, Options) {
+	p := &Problem{
+		Zones: []Zone{{Outer: 80e-6, Start: 100}, {Outer: 160e-6, Start: 40}, {Outer: 200e-6, Start: 70}},
+		Law:   testLaw, Outer: []Rim{{Kind: Held, Value: 70}},
+	}
+	return p, Options{Faces: uniform(0, 200e-6, benchCells)}
+}
+
+// benchWake is store at 690 C with ten wakes to 780 C in 2000 years.
+func benchWake(tb testing.TB) *thermal.History {
+	tb.Helper()
+	const year, zero = thermal.Year, thermal.ZeroCelsius
+	legs := []thermal.Leg{{Kind: thermal.Hold, For: 100 * year, T0: 690 + zero}}
+	for i := range 10 {
+		rest := 175 * year
+		if i == 9 {
+			rest = 75 * year
+		}
+		legs = append(legs, thermal.Leg{Kind: thermal.Ramp, For: 5 * year, T0: 690 + zero, T1: 780 + zero},
+			thermal.Leg{Kind: thermal.Hold, For: 20 * year, T0: 780 + zero},
+			thermal.Leg{Kind: thermal.Relax, For: rest, T0: 780 + zero, T1: 690 + zero, Tau: 15 * year})
+	}
+	return newHistory(tb, legs...)
+}
+
+// benchJobs returns n jobs of one course with multipliers from 1e-3 to 1e3.
+func benchJobs(tb testing.TB, plan *Plan, n int) []Job {
+	tb.Helper()
+	c := newCourse(tb, plan, benchWake(tb))
+	jobs := make([]Job, n)
+	for k := range jobs {
+		jobs[k] = Job{Course: c, LnM: math.Log(1e3) * (2*float64(k)/float64(n) - 1)}
+	}
+	return jobs
+}
+
+// referenceKernel is one path on 200 cells by Crank-Nicolson, the matrix factored
+// in every step and solved by plain elimination from one end (Thomas 1949): what
+// speeds are measured against.
+type referenceKernel struct{ c, factor, rhs []float64 }
+
+func newReferenceKernel() *referenceKernel {
+	k := &referenceKernel{c: make([]float64, benchCells), factor: make([]float64, benchCells), rhs: make([]float64, benchCells)}
+	for i := range k.c {
+		k.c[i] = float64(i % 7)
+	}
+	return k
+}
+
+// step solves (I - r/2 L) w = c and puts c to 2 w - c, sealed at one end and held
+// at 70 at the other.
+func (k *referenceKernel) step(r float64) {
+	c, factor, rhs := k.c, k.factor[:len(k.c)], k.rhs[:len(k.c)]
+	half := r / 2
+	n := len(c)
+	inv := 1 / (1 + half)
+	factor[0], rhs[0] = half*inv, c[0]*inv
+	for i := 1; i < n; i++ {
+		diagonal, right := 1+2*half, c[i]
+		if i == n-1 {
+			diagonal, right = 1+3*half, c[i]+2*half*70
+		}
+		inv = 1 / (diagonal - half*factor[i-1])
+		factor[i] = half * inv
+		rhs[i] = (right + half*rhs[i-1]) * inv
+	}
+	w := rhs[n-1]
+	c[n-1] = 2*w - c[n-1]
+	for i := n - 2; i >= 0; i-- {
+		w = rhs[i] + factor[i]*w
+		c[i] = 2*w - c[i]
+	}
+}
+
+// run does as many steps as one run of the solver on benchProblem.
+func (k *referenceKernel) run(steps int) {
+	for i := range steps {
+		k.step(0.5 + float64(i%10))
+	}
+}
+
+func BenchmarkReference(b *testing.B) {
+	k := newReferenceKernel()
+	const steps = 200
+	b.ReportAllocs()
+	for b.Loop() {
+		k.run(steps)
+	}
+	perNodeStep(b, steps*benchCells)
+}
+
+// perNodeStep reports the time of one node in one step.
+func perNodeStep(b *testing.B, nodeSteps int) {
+	b.Helper()
+	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(nodeSteps), "ns/node-step")
+}
+
+func BenchmarkRun(b *testing.B) {
+	p, o := benchProblem()
+	plan := newPlan(b, p, o)
+	for _, n := range []int{1, 4, 8} {
+		b.Run(fmt.Sprintf("shape=%v/cells=%d/jobs=%d", p.Shape, benchCells, n), func(b *testing.B) {
+			jobs, dst := benchJobs(b, plan, n), make([]Field, n)
+			b.ReportAllocs()
+			for b.Loop() {
+				if err := plan.Run(dst, jobs); err != nil {
+					b.Fatal(err)
+				}
+			}
+			perNodeStep(b, n*benchCells*dst[0].Stats.Steps)
+			b.ReportMetric(kernelRatio(plan, dst, jobs, 5), "of-reference")
+		})
+	}
+}
+
+// BenchmarkCourse is what a plan needs of a history: one integral under rims that
+// are held, the mean over each step under one that moves.
+func BenchmarkCourse(b *testing.B) {
+	for _, rim := range []string{"held", "given"} {
+		b.Run("legs=31/rim="+rim, func(b *testing.B) {
+			p, o := benchProblem()
+			h := benchWake(b)
+			if rim == "given" {
+				at := func(t float64) float64 { temp, _ := h.At(t); return temp / 10 }
+				p.Outer = []Rim{{Kind: Prescribed, Given: &Given{At: at}}}
+			}
+			plan := newPlan(b, p, o)
+			var c Course
+			b.ReportAllocs()
+			for b.Loop() {
+				if err := plan.Course(&c, h, h.Life()); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
+	}
+}
+
+// kernelRatio returns the time of a node and step in Run, as a part of that in
+// the reference kernel: the median of rounds that alternate.
+func kernelRatio(plan *Plan, dst []Field, jobs []Job, rounds int) float64 {
+	k := newReferenceKernel()
+	_ = plan.Run(dst, jobs)
+	steps := dst[0].Stats.Steps
+	ratios := make([]float64, rounds)
+	for i := range ratios {
+		ours := timed(func() { _ = plan.Run(dst, jobs) })
+		reference := timed(func() { k.run(steps) })
+		ratios[i] = ours / float64(len(jobs)) / reference
+	}
+	slices.Sort(ratios)
+	return ratios[rounds/2]
+}
+
+// timed returns the least time of one call of f among some, s: what else the
+// machine does can only add to it.
+func timed(f func()) float64 {
+	best := math.Inf(1)
+	for range 5 {
+		start := time.Now()
+		f()
+		best = math.Min(best, time.Since(start).Seconds())
+	}
+	return best
+}
