@@ -349,3 +349,128 @@ func TestWeighStops(t *testing.T) {
 		}
 	}
 }
+
+// Two elements of one crystal share the path. If they agree the joint interval is
+// narrower by the root of two; if they want different amounts of diffusion no
+// shift fits both, though each passes by itself.
+func TestWeighOfTwoElements(t *testing.T) {
+	p := sharp()
+	for _, test := range []struct {
+		name  string
+		times float64 // by how much more the law lets the second move
+		want  Verdict
+	}{
+		{"agree", 1, Reproduces},
+		{"differ", 20, WrongShape},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			s := p.study(nil, p.path(t, "as it was", 1))
+			second := s.Crystals[0].Elements[0]
+			second.Name, second.Law.Law = "Al", diffusion.NewLaw(7e-8*test.times, 273e3)
+			s.Crystals[0].Elements = append(s.Crystals[0].Elements, second)
+			o := &weighed(t, s).Paths[0].Outcome
+			if o.Verdict != test.want || len(o.Profiles) != 2 {
+				t.Fatalf("%s with %d profiles, want %s with 2", o.Verdict, len(o.Profiles), test.want)
+			}
+			near(t, "shift factor of the first", o.Profiles[0].Shift, 1, 0.01)
+			near(t, "shift factor of the second", o.Profiles[1].Shift*test.times, 1, 0.01)
+			if o.Points != 2*p.points || o.Degrees != 2*p.points-4 {
+				t.Errorf("%d degrees of %d points, want %d of %d", o.Degrees, o.Points, 2*p.points-4, 2*p.points)
+			}
+			if test.want != Reproduces {
+				return
+			}
+			width := func(f Finding) float64 { return math.Log(f.Shift68[1] / f.Shift68[0]) }
+			near(t, "width over that of one", width(o.Finding)/width(o.Profiles[0]), 1/math.Sqrt2, 0.01)
+		})
+	}
+}
+
+// In a ball a core of radius b that was uniform in a boundless mantle is
+//
+//	c = (c1-c2)/2 (erf((b-r)/w) + erf((b+r)/w)) - (c1-c2) w/(2 r sqrt pi) (exp(-((b-r)/w)^2) - exp(-((b+r)/w)^2)) + c2,
+//
+// w = 2 sqrt G (Crank 1975, eq. 3.8).
+func TestWeighOfABall(t *testing.T) {
+	p := couple{core: 40, mantle: 90, reach: 4 * um, sigma: 0.3, points: 41, window: 14 * um}
+	const b = 20 * um
+	s := p.study(nil, p.path(t, "as it was", 1), p.path(t, "too short", 50))
+	c := &s.Crystals[0]
+	c.Shape = diffusion.Ball
+	c.Zones[0].Width, c.Zones[1].Width = b, 60*um
+	line := c.Elements[0].Traverse
+	w := math.Sqrt2 * p.reach
+	for i := range line.Position {
+		line.Position[i] += b - boundary
+		r := line.Position[i]
+		in, out := (b-r)/w, (b+r)/w
+		line.Value[i] = p.mantle + (p.core-p.mantle)*((math.Erf(in)+math.Erf(out))/2-
+			w/(2*r*math.Sqrt(math.Pi))*(math.Exp(-in*in)-math.Exp(-out*out)))
+	}
+	r := weighed(t, s)
+	for i, m := range []float64{1, 50} {
+		near(t, "shift factor", r.Paths[i].Outcome.Shift/m, 1, 0.01)
+	}
+}
+
+// What other analyses know of a plateau is a measurement like the others: it
+// narrows what the traverse alone leaves open, and costs no degree of freedom.
+func TestWeighWithKnownPlateaux(t *testing.T) {
+	p := sharp()
+	p.window = 3 * um // too short to see either plateau
+	path := p.path(t, "as it was", 1)
+	width := func(core, mantle study.Plateau) (float64, *PathResult) {
+		s := p.study(nil, path)
+		s.Crystals[0].Elements[0].Start.Zones = []study.Plateau{core, mantle}
+		r := &weighed(t, s).Paths[0]
+		near(t, "shift factor", r.Outcome.Shift, 1, 0.02)
+		return math.Log(r.Outcome.Shift68[1] / r.Outcome.Shift68[0]), r
+	}
+	open, free := width(study.Plateau{Free: true}, study.Plateau{Free: true})
+	narrower, known := width(study.Plateau{Value: p.core, Sigma: 1}, study.Plateau{Value: p.mantle, Sigma: 1})
+	narrowest, fixed := width(study.Plateau{Value: p.core}, study.Plateau{Value: p.mantle})
+	if !(open > 1.5*narrower && narrower > 1.5*narrowest) {
+		t.Errorf("widths %g free, %g known, %g fixed, want each much narrower than the one before", open, narrower, narrowest)
+	}
+	for _, r := range []struct {
+		path          *PathResult
+		degrees, free int
+	}{{free, p.points - 2, 2}, {known, p.points, 2}, {fixed, p.points, 0}} {
+		if got := r.path.Outcome.Degrees; got != r.degrees || len(r.path.Profiles[0].Free) != r.free {
+			t.Errorf("%d degrees and %d values, want %d and %d", got, len(r.path.Profiles[0].Free), r.degrees, r.free)
+		}
+	}
+	for i, want := range []float64{p.core, p.mantle} {
+		f := known.Profiles[0].Free[i]
+		near(t, f.Name, f.Value, want, 0.05)
+		if !f.HasPrior || !(f.Sigma < 1) {
+			t.Errorf("%s: %+v, want a prior that the traverse has narrowed", f.Name, f)
+		}
+	}
+}
+
+// A zone that the traverse does not reach is said to be unseen, takes no degree
+// of freedom and changes nothing else.
+func TestWeighWithAZoneOutOfSight(t *testing.T) {
+	p := sharp()
+	path := p.path(t, "too short", 5)
+	without := &weighed(t, p.study(nil, path)).Paths[0]
+	s := p.study(nil, path)
+	c := &s.Crystals[0]
+	c.Zones = append(c.Zones, study.Zone{Name: "skin", Width: 12 * um, Times: 1})
+	e := &c.Elements[0]
+	e.Start.Zones = append(e.Start.Zones, study.Plateau{Free: true})
+	e.Rims[0].Zone = 2
+	with := &weighed(t, s).Paths[0]
+	if a, b := with.Outcome, without.Outcome; a.Verdict != b.Verdict || a.Degrees != b.Degrees {
+		t.Errorf("%s with %d degrees, without the zone %s with %d", a.Verdict, a.Degrees, b.Verdict, b.Degrees)
+	}
+	near(t, "shift factor", with.Outcome.Shift, 5, 0.05)
+	skin := with.Profiles[0].Free[2]
+	if skin.Name != "skin" || !math.IsInf(skin.Sigma, 1) {
+		t.Errorf("%+v, want the skin unseen", skin)
+	}
+	if notes := strings.Join(with.Profiles[0].Notes, "\n"); !strings.Contains(notes, "do not see skin") {
+		t.Errorf("notes %q do not say so", notes)
+	}
+}
