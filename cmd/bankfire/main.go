@@ -23,6 +23,7 @@ func run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 // commands returns the commands in the order in which help lists them.
 func commands() []*command {
 	return []*command{
+		checkCommand(),
 		weighCommand(),
 		followCommand(),
 		lawsCommand(),

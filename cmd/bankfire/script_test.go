@@ -34,7 +34,9 @@ func TestScripts(t *testing.T) {
 			env.Setenv("EXAMPLES", examples)
 			return nil
 		},
-		Cmds: map[string]func(*testscript.TestScript, bool, []string){"status": status},
+		Cmds: map[string]func(*testscript.TestScript, bool, []string){
+			"status": status, "wrong": wrongFile, "edited": editedFile, "bigfile": bigFile,
+		},
 	})
 }
 

@@ -25,7 +25,8 @@ type decoder struct {
 	files  *files
 	laws   map[string]Law // the study's own, by name
 	notes  []string
-	legs   int // of all paths so far
+	meant  map[string]bool // dotted keys, with the place of their table, that a mistyped key stands for
+	legs   int             // of all paths so far
 	found  []*thermal.InputError
 	faults int // all found, kept or not
 }
@@ -108,6 +109,7 @@ func (d *decoder) keys(n *node, known ...string) {
 		remedy := "known here: " + strings.Join(known, ", ")
 		if near := nearest(k.name, known); near != "" {
 			remedy = fmt.Sprintf("did you mean %q?", near)
+			d.meant[keyOf(n, near)] = true
 		}
 		d.reportKey(n, k, "unknown key", remedy)
 	}
@@ -126,10 +128,16 @@ func (d *decoder) is(n *node, kind nodeKind, remedy string) bool {
 	return false
 }
 
-// need returns a value of the table n and reports it if it is missing.
+// keyOf tells a key of one table from all others.
+func keyOf(n *node, name string) string {
+	return fmt.Sprintf("%d:%d %s", n.line, n.col, join(n.field, name))
+}
+
+// need returns a value of the table n and reports it if it is missing, unless a
+// mistyped key of the table was reported that stands for it.
 func (d *decoder) need(n *node, name, remedy string) *node {
 	v := n.get(name)
-	if v == nil {
+	if v == nil && !d.meant[keyOf(n, name)] {
 		p := d.place(n)
 		p.Field = join(n.field, name)
 		d.add(p.Error("", "missing", remedy))

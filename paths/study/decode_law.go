@@ -19,8 +19,8 @@ func (d *decoder) ownLaws(n *node) {
 	}
 	seen := map[string]int{}
 	for _, t := range d.tables(n, `begin each law with "[[law]]"`) {
-		v := d.need(t, "name", `write a name, such as name = "mine"`)
 		law := d.ownLaw(t, "name")
+		v := d.need(t, "name", `write a name, such as name = "mine"`)
 		name, ok := "", false
 		if v != nil {
 			name, ok = d.name(v, `write a name, such as "mine"`)

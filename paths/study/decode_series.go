@@ -53,7 +53,7 @@ func (d *decoder) columns(n *node, want ...traverse.Column) (*traverse.Table, st
 		d.reportError(n, err)
 		return nil, ""
 	}
-	d.notes = append(d.notes, t.Notes...)
+	d.notes = append(d.notes, d.named(n, label, t.Notes)...)
 	return t, label
 }
 

@@ -33,16 +33,29 @@ func (d *decoder) traverse(n *node, c *Crystal, e *Element, u *units) {
 	}
 	t, err := traverse.Read(label, r, o)
 	if err != nil {
-		d.reportError(file, err)
+		d.unread(n, err)
 		return
 	}
 	d.component(n.get("value"), t, u, o.Value)
+	t.Notes = d.named(file, label, t.Notes)
 	d.notes = append(d.notes, t.Notes...)
 	d.reach(file, t, c, e)
 	e.Traverse = t
 	if !t.Grey && d.faults == before { // else the unit may be the fault
 		u.unit, u.from = t.Unit, n.get("value")
 	}
+}
+
+// unread reports what is wrong with the file of the traverse n; where it is the
+// stated errors that do not go with the file, at these.
+func (d *decoder) unread(n *node, err error) {
+	if in, ok := err.(*thermal.InputError); ok && in.Line == 0 && in.Field == "error" {
+		bare := *in
+		bare.File, bare.Field = "", ""
+		d.reportError(n.get("error"), &bare)
+		return
+	}
+	d.reportError(n.get("file"), err)
 }
 
 // options reads how the file of a traverse is to be read.

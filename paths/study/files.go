@@ -10,6 +10,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"strings"
 
 	"bankfire/thermal"
 )
@@ -31,6 +32,8 @@ func load(name string, limit int64) ([]byte, error) {
 		return nil, unreadable(err)
 	case info.IsDir():
 		return nil, &thermal.InputError{Problem: "a folder", Remedy: "name a file in it"}
+	case info.Size() > limit:
+		return nil, tooLarge(limit)
 	}
 	f, err := os.Open(name)
 	if err != nil {
@@ -41,10 +44,14 @@ func load(name string, limit int64) ([]byte, error) {
 	switch {
 	case err != nil:
 		return nil, unreadable(err)
-	case int64(len(data)) > limit:
-		return nil, &thermal.InputError{Problem: fmt.Sprintf("larger than %d MiB", limit>>20), Remedy: "is it the right file?"}
+	case int64(len(data)) > limit: // what grows, or is no plain file
+		return nil, tooLarge(limit)
 	}
 	return data, nil
+}
+
+func tooLarge(limit int64) error {
+	return &thermal.InputError{Problem: fmt.Sprintf("larger than %d MiB", limit>>20), Remedy: "is it the right file?"}
 }
 
 func unreadable(err error) error {
@@ -101,11 +108,31 @@ func (f *files) read(name string) ([]byte, error) {
 		return nil, err
 	}
 	f.known[path] = data
-	if filepath.IsAbs(name) {
-		name = filepath.Base(name)
-	}
-	f.account(name, data)
+	f.account(f.shown(name), data)
 	return data, nil
+}
+
+// shown returns how results name a file of the study: as it is written there,
+// without its folder where that is an absolute one, so that they do not depend
+// on where the study lies.
+func (f *files) shown(name string) string {
+	if filepath.IsAbs(name) {
+		return filepath.Base(name)
+	}
+	return name
+}
+
+// named returns the notes on the file that the study names at n as results have
+// them: with its name there for the label that errors have.
+func (d *decoder) named(n *node, label string, notes []string) []string {
+	var out []string
+	for _, note := range notes {
+		if rest, ok := strings.CutPrefix(note, label); ok {
+			note = d.files.shown(n.text) + rest
+		}
+		out = append(out, note)
+	}
+	return out
 }
 
 // dataFile opens the file that the study names at n. The label names it in

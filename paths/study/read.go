@@ -41,7 +41,7 @@ func parse(file string, data []byte, load loader) (*Study, error) {
 		}
 		return nil, err
 	}
-	d := &decoder{file: file, files: newFiles(file, data, load), laws: map[string]Law{}}
+	d := &decoder{file: file, files: newFiles(file, data, load), laws: map[string]Law{}, meant: map[string]bool{}}
 	s := d.study(root)
 	if err := d.err(); err != nil {
 		return nil, err
@@ -113,24 +113,27 @@ func (d *decoder) thresholds(n *node) []Threshold {
 }
 
 // err returns the problems found, those of the study first and in the order of
-// its lines.
+// its lines, then those of each other file in the order of theirs. Beyond
+// maxProblems, it only says how many more there are.
 func (d *decoder) err() error {
+	rank := map[string]int{d.file: 0}
+	for _, e := range d.found {
+		if _, known := rank[e.File]; !known {
+			rank[e.File] = len(rank)
+		}
+	}
 	slices.SortStableFunc(d.found, func(a, b *thermal.InputError) int {
-		other := func(e *thermal.InputError) int {
-			if e.File == d.file {
-				return 0
-			}
-			return 1
-		}
-		if other(a)+other(b) > 0 {
-			return other(a) - other(b)
-		}
-		return cmp.Or(a.Line-b.Line, a.Col-b.Col)
+		return cmp.Or(rank[a.File]-rank[b.File], a.Line-b.Line, a.Col-b.Col)
 	})
+	kept := len(d.found)
 	d.found = slices.CompactFunc(d.found, func(a, b *thermal.InputError) bool { return *a == *b })
+	all := d.faults - (kept - len(d.found))
 	var list []error
 	for _, e := range d.found[:min(len(d.found), maxProblems)] {
 		list = append(list, e)
+	}
+	if more := all - maxProblems; more > 0 {
+		list = append(list, &thermal.InputError{File: d.file, Problem: "and " + count(more, "more problem"), Remedy: "mend these first"})
 	}
 	return errors.Join(list...)
 }

@@ -3,6 +3,7 @@ package study
 import (
 	"crypto/sha256"
 	"encoding/hex"
+	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -334,7 +335,7 @@ func TestCoarseTable(t *testing.T) {
 }
 
 // TestProblemsAreCollected wants every fault of a file in one go, in the order
-// of its lines, and no more than 20.
+// of its lines, and how many more there are than 20.
 func TestProblemsAreCollected(t *testing.T) {
 	t.Run("several", func(t *testing.T) {
 		text := strings.NewReplacer(`"slab"`, `"slap"`, `"800 yr"`, "800", `"1 um fwhm"`, `"1 um"`, `"750 C"`, `"-750 C"`).Replace(sound)
@@ -350,8 +351,19 @@ func TestProblemsAreCollected(t *testing.T) {
 	})
 	t.Run("at most 20", func(t *testing.T) {
 		_, err := parse("s.toml", []byte(strings.Repeat("[[path]]\n", 50)), memory(nil))
-		if got := len(problems(t, err)); got != maxProblems {
-			t.Errorf("%d problems reported", got)
+		got := problems(t, err)
+		if len(got) != maxProblems+1 {
+			t.Fatalf("%d problems reported", len(got))
+		}
+		// Each path lacks its name and its legs, and the study a crystal.
+		if want := fmt.Sprintf("s.toml: and %d more problems; mend these first", 2*50+1-maxProblems); got[maxProblems].Error() != want {
+			t.Errorf("the last is %q, want %q", got[maxProblems], want)
+		}
+	})
+	t.Run("a mistyped key is not missing as well", func(t *testing.T) {
+		_, err := parse("s.toml", []byte(strings.Replace(sound, "mineral =", "minreal =", 1)), memory(soundFiles()))
+		if got := problems(t, err); len(got) != 1 || got[0].Problem != "unknown key" {
+			t.Errorf("got %v", err)
 		}
 	})
 	t.Run("the study before its files", func(t *testing.T) {

@@ -1,0 +1,145 @@
+package main
+
+import (
+	"bytes"
+	"context"
+	"fmt"
+	"io"
+	"path/filepath"
+	"slices"
+	"strings"
+
+	"bankfire/paths/study"
+	"bankfire/paths/traverse"
+)
+
+// checkCommand is `bankfire check`.
+func checkCommand() *command {
+	return &command{
+		name:  "check",
+		args:  "STUDY",
+		short: "read a study and its data and say what is wrong with them",
+		long: "Reads the study and every file that it names and computes nothing. What is wrong is reported\n" +
+			"with file, line, what was typed and what to write instead, up to 20 problems at a time; if\n" +
+			"nothing is, says in a few lines what was understood.",
+		examples: []example{{"bankfire check study.toml", "find mistakes before a long run"}},
+		least:    1, most: 1,
+		run: func(_ context.Context, s streams, operands []string) error {
+			read, err := study.Read(operands[0])
+			if err != nil {
+				return err
+			}
+			text, err := checkText(read)
+			if err != nil {
+				return err
+			}
+			_, err = s.out.Write(text.Bytes())
+			return err
+		},
+	}
+}
+
+// checkText says what was understood of a study.
+func checkText(s *study.Study) (*bytes.Buffer, error) {
+	text := new(bytes.Buffer)
+	fmt.Fprintf(text, "%s\n\nNothing is wrong with %s", s.Title, filepath.Base(s.File))
+	var names []string
+	for _, in := range s.Inputs[1:] {
+		names = append(names, in.Name)
+	}
+	if len(names) > 0 {
+		fmt.Fprintf(text, " and %s", list(names))
+	}
+	fmt.Fprint(text, ".\n\n")
+	if err := writePathsRead(text, s); err != nil {
+		return nil, err
+	}
+	for i := range s.Crystals {
+		writeCrystal(text, &s.Crystals[i], filepath.Dir(s.File))
+	}
+	for _, n := range s.Notes {
+		fmt.Fprintf(text, "note: %s\n", n)
+	}
+	return text, nil
+}
+
+// writePathsRead writes the paths with what the study's limits say of them.
+func writePathsRead(w io.Writer, s *study.Study) error {
+	table := newTable()
+	table.row("path", "life", "lowest", "highest", "")
+	for i := range s.Paths {
+		p := &s.Paths[i]
+		lo, hi := p.History.Range()
+		broken, err := s.Limits.Barred(p.History)
+		if err != nil {
+			return err
+		}
+		barred := ""
+		if reasons := slices.Concat(p.Barred, broken); len(reasons) > 0 {
+			barred = "barred: " + strings.Join(reasons, "; ")
+		}
+		table.row(p.Name, timeText(p.Eruption), celsius(lo), celsius(hi), barred)
+	}
+	table.writeTo(w)
+	fmt.Fprintln(w)
+	return nil
+}
+
+// writeCrystal writes a crystal with its elements. Their files are named from
+// the folder of the study.
+func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
+	var zones []string
+	for _, z := range c.Zones {
+		zones = append(zones, z.Name+" "+micrometres(z.Width))
+	}
+	fmt.Fprintf(w, "%s, %s, %s from %s to %s: %s\n", c.Name, c.Mineral, c.Shape, micrometres(c.R0), micrometres(c.Size()), list(zones))
+	for i := range c.Elements {
+		e := &c.Elements[i]
+		fmt.Fprintf(w, "  %s by %s\n", e.Name, lawText(&e.Law))
+		if t := e.Traverse; t != nil {
+			name, err := filepath.Rel(folder, t.Name)
+			if err != nil {
+				name = t.Name
+			}
+			fmt.Fprintf(w, "  %s: %s\n", filepath.ToSlash(name), traverseText(t))
+		}
+	}
+	fmt.Fprintln(w)
+}
+
+// lawText names a law with how far its constants can be trusted.
+func lawText(l *study.Law) string {
+	switch {
+	case l.Row != nil:
+		known, _, _ := strings.Cut(l.Row.Confidence, ":")
+		text := l.Key + ", " + l.Row.Citation + "; constants known: " + known
+		for _, c := range l.Row.Cautions() {
+			text += "; " + c
+		}
+		return text
+	case l.Key != "":
+		return l.Key + ", a law of this study"
+	}
+	return "a law of this study"
+}
+
+// traverseText says what there is of a traverse.
+func traverseText(t *traverse.Traverse) string {
+	lowest, highest := slices.Min(t.Position), slices.Max(t.Position)
+	text := fmt.Sprintf("%d points in %s, from %s to %s from the centre", len(t.Value), t.Unit, micrometres(lowest), micrometres(highest))
+	if len(t.Value) == 1 {
+		text = fmt.Sprintf("1 point in %s, %s from the centre", t.Unit, micrometres(lowest))
+	}
+	limits := 0
+	for _, is := range t.Limit {
+		if is {
+			limits++
+		}
+	}
+	if limits > 0 {
+		text += fmt.Sprintf(", %d of them below detection", limits)
+	}
+	return text
+}
+
+func micrometres(x float64) string { return plain(x*1e6) + " um" }
