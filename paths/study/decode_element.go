@@ -42,6 +42,9 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	if n.get("start").get("edge") == nil && len(c.Zones) > 1 {
 		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)
 	}
+	if e.Tilt != (Nuisance{}) && len(c.Zones) > 1 {
+		d.note("%s: the tilt shortens measured positions, not the widths of zones: these must be true ones, or the origin free", e.Name)
+	}
 	if n.get("rim") == nil && len(c.Zones) > 0 {
 		last := len(c.Zones) - 1
 		e.Rims = []Rim{tied(last, d.place(n))}

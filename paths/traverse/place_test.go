@@ -49,6 +49,21 @@ func TestWeightsAt(t *testing.T) {
 	}
 }
 
+// TestWeightsAtSlant: a slanted line through a crystal sees what a straight line
+// through one shrunk along it does: at 60 deg, by half.
+func TestWeightsAtSlant(t *testing.T) {
+	faces, wide := []float64{0, 1e-6, 2e-6, 3e-6, 4e-6, 5e-6}, []float64{0, 2e-6, 4e-6, 6e-6, 8e-6, 10e-6}
+	slanted := Traverse{Position: []float64{2.5e-6, 9e-6}, Spot: Spot{Gaussian, 1e-6}, Line: []int{1, 2}}
+	want, err := slanted.Weights(wide, true)
+	if err != nil {
+		t.Fatal(err)
+	}
+	got := slanted.WeightsAt(faces, true, 0, math.Pi/3)
+	if diff := cmp.Diff(want, got, cmp.Comparer(within(1e-9))); diff != "" {
+		t.Errorf("wanted -, got +:\n%s", diff)
+	}
+}
+
 func TestPlacePanics(t *testing.T) {
 	for name, f := range map[string]func(){
 		"length":      func() { (&Traverse{Position: []float64{1}}).Place(nil, 0, 0) },

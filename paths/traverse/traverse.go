@@ -12,18 +12,19 @@ import (
 // Traverse is one element measured along a line from rim to centre, or a part
 // of it.
 type Traverse struct {
-	Name     string    // of the file
-	Unit     string    // of Value and Sigma, in its usual spelling
-	Position []float64 // m from the crystal's centre (a slab's inner end), rising or falling throughout as in the file; as typed, see Place
-	Value    []float64
-	Sigma    []float64 // one standard deviation, above 0
-	Limit    []bool    // true: below detection, Value is the limit, Sigma that of a value at it, Value/3; nil = none
-	Grey     bool      // relative values: an unknown scale and offset lie between Value and the element's unit
-	Line     []int     // where each point stands in the file, from 1
-	Spot     Spot
-	Zero     Zero     // where positions count from in the file
-	Size     float64  // position of the rim from the centre, m; 0 = not known
-	Notes    []string // what was not taken exactly as typed
+	Name        string    // of the file
+	Unit        string    // of Value and Sigma, in its usual spelling
+	Position    []float64 // m from the crystal's centre (a slab's inner end), rising or falling throughout as in the file; as typed, see Place
+	Value       []float64
+	Sigma       []float64 // one standard deviation, above 0
+	Limit       []bool    // true: below detection, Value is the limit, Sigma that of a value at it, Value/3; nil = none
+	Grey        bool      // relative values: an unknown scale and offset lie between Value and the element's unit
+	Independent bool      // the errors of overlapping spots have nothing in common: counting errors
+	Line        []int     // where each point stands in the file, from 1
+	Spot        Spot
+	Zero        Zero     // where positions count from in the file
+	Size        float64  // position of the rim from the centre, m; 0 = not known
+	Notes       []string // what was not taken exactly as typed
 }
 
 // Zero says where positions of the file count from.
@@ -72,9 +73,9 @@ const (
 )
 
 // sigmasOfLimit is how many standard deviations of the blank a detection limit
-// is taken to be: three, the usual definition (Currie 1995, Pure Appl. Chem. 67,
-// 1699-1723, discusses it). A true value mu below a limit L then has the
-// likelihood Phi((L - mu)/s), s = L/3, of being reported as below it.
+// is taken to be: three, the usual definition (Long and Winefordner 1983, Anal.
+// Chem. 55, 712A-724A). A true value mu is then reported as below a limit L with
+// the likelihood Phi((L - mu)/s), s = L/3, Phi the normal distribution function.
 const sigmasOfLimit = 3
 
 // Options say how a file of a traverse is to be read.

@@ -104,16 +104,18 @@ func (t *Traverse) Weights(faces []float64, mirrored bool) (*Weights, error) {
 }
 
 // WeightsAt is Weights for the positions that [Traverse.Place] gives for an
-// origin, m, and a tilt, rad. A position that these move out of the crystal is
-// taken at the end that it left by: it was measured in the crystal.
+// origin, m, and a tilt, rad; the spot lies along the same line and shrinks with
+// it. A position that these move out of the crystal is taken at the end that it
+// left by: it was measured in the crystal.
 func (t *Traverse) WeightsAt(faces []float64, mirrored bool, origin, tilt float64) *Weights {
 	t.Spot.check()
 	g := newGrid(faces, mirrored)
 	at := make([]float64, len(t.Position))
 	t.Place(at, origin, tilt)
+	spot := Spot{t.Spot.Kind, t.Spot.Width * math.Cos(tilt)}
 	w := &Weights{Row: make([]Sparse, len(at))}
 	for i, x := range at {
-		w.Row[i] = g.row(t.Spot, math.Min(math.Max(x, g.faces[0]), g.faces[len(g.faces)-1]))
+		w.Row[i] = g.row(spot, math.Min(math.Max(x, g.faces[0]), g.faces[len(g.faces)-1]))
 	}
 	return w
 }
