@@ -11,6 +11,9 @@ import (
 // a free value, and every free value knows every zone and rim.
 const maxZones = 500
 
+// maxElements bounds the elements of all crystals together: each may read a file.
+const maxElements = 100
+
 // atom is a length, m, below which nothing in a crystal has a width.
 const atom = 1e-10
 
@@ -19,7 +22,18 @@ func (d *decoder) crystals(root *node) []Crystal {
 	list := d.need(root, "crystal", "write one [[crystal]] with name, mineral, shape, zones and one [[crystal.element]]")
 	var out []Crystal
 	seen := map[string]int{}
-	for _, n := range d.tables(list, `begin a crystal with "[[crystal]]"`) {
+	tables := d.tables(list, `begin a crystal with "[[crystal]]"`)
+	elements := 0
+	for _, n := range tables {
+		if e := n.get("element"); e != nil {
+			elements += len(e.items)
+		}
+	}
+	if len(tables) > maxElements || elements > maxElements {
+		d.report(list, fmt.Sprintf("more than %d crystals or elements", maxElements), "split the study")
+		return nil
+	}
+	for _, n := range tables {
 		out = append(out, d.crystal(n, seen))
 	}
 	return out
@@ -88,7 +102,7 @@ func (d *decoder) tooMany(n *node, things string) bool {
 	if n == nil || len(n.items) <= maxZones {
 		return false
 	}
-	d.report(n, fmt.Sprintf("more than %d %s", maxZones, things), "fewer are enough to describe a crystal")
+	d.report(n, fmt.Sprintf("more than %d %s", maxZones, things), "fewer are enough")
 	return true
 }
 

@@ -65,7 +65,7 @@ func (d *decoder) spans(n *node, b bound) (least, most float64) {
 // timeLimits reads the limits of time above temperatures.
 func (d *decoder) timeLimits(n *node, thresholds []Threshold) []TimeLimit {
 	const example = `write above = [ { threshold = "lock-up", longest = "100 yr" }, { temperature = "820 C", longest = "2 yr", counts = "without a break" } ]`
-	if n == nil {
+	if n == nil || d.tooMany(n, "limits") {
 		return nil
 	}
 	var out []TimeLimit
@@ -132,7 +132,7 @@ func (d *decoder) stretch(n *node) bool {
 // intervals reads the limits of time between two moments.
 func (d *decoder) intervals(n *node) []Interval {
 	const example = `write between = [ { from = "end of wake 1", to = "start of wake 2", shortest = "1 kyr" } ]`
-	if n == nil {
+	if n == nil || d.tooMany(n, "limits") {
 		return nil
 	}
 	var out []Interval

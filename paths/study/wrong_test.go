@@ -224,6 +224,7 @@ func wrongLimits() []wrong {
 		with("above an unknown threshold", `above = [ { threshold = @"lockup", longest = "3 yr" } ]`, "", "limits.above.threshold", "no threshold has this name", `did you mean "lock-up"?`),
 		with("above without a time", `above = [ @{ threshold = "lock-up" } ]`, "", "limits.above", "neither shortest nor longest", "longest"),
 		with("above, counting oddly", `above = [ { threshold = "lock-up", longest = "3 yr", counts = @"without break" } ]`, "", "limits.above.counts", "no way to count", `did you mean "without a break"?`),
+		with("limits without end", "between = @["+strings.Repeat("{},", maxZones+1)+"]", "", "limits.between", "more than 500 limits", "fewer"),
 		with("between one moment", `between = [ @{ from = "start", longest = "3 yr" } ]`, "", "limits.between.to", "missing", "start of wake 2"),
 		with("between a duration", `between = [ { from = "start", to = @"3 yr", longest = "3 yr" } ]`, "", "limits.between.to", "a duration, not a moment", "after start"),
 		with("between an added zone", `between = [ { from = "start", to = @"skin added", longest = "3 yr" } ]`, "", "limits.between.to", "not known in this version", "another moment"),
@@ -314,6 +315,7 @@ func wrongElements() []wrong {
 	const law, start, rim = `"quartz-ti-cherniak2007"`, `{ zones = ["free", "58 ppm"], edge = "0 um" }`, `{ held = "skin" }`
 	const traverse = `{ file = "q1.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
 	return append([]wrong{
+		{"elements without end", "[[crystal.element]]", strings.Repeat("[[crystal.element]]\n", 101) + "[[crystal.element]]", "s.toml:20:3", "crystal", "more than 100 crystals or elements", "split"},
 		{"two elements of one name", "[[crystal.element]]", "[[crystal.element]]\nname = \"Ti\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\", \"2 ppm\"] }\n[[crystal.element]]", "s.toml:34:8", "crystal.element.name", "used twice, first on line 30", "its own"},
 		{"unknown law", law, `@"quartz-ti-cherniak2008"`, "", "crystal.element.law", "not in the catalogue", "quartz-ti-cherniak2007"},
 		{"law of the study mistyped", law, `@"mime"`, "", "crystal.element.law", "neither in the catalogue nor", `did you mean "mine"?`},
