@@ -3,7 +3,6 @@ package paths
 import (
 	"context"
 	"fmt"
-	"math/rand/v2"
 	"testing"
 )
 
@@ -50,19 +49,6 @@ func BenchmarkCurve(b *testing.B) {
 	}
 }
 
-// BenchmarkFit fits the free values of one multiplier.
-func BenchmarkFit(b *testing.B) {
-	for _, k := range []int{0, 2, 6} {
-		b.Run(fmt.Sprintf("points=200/values=%d", k), func(b *testing.B) {
-			f, seen := randomFit(rand.New(rand.NewPCG(12, 1)), 200, k)
-			b.ReportAllocs()
-			for b.Loop() {
-				f.solve(seen)
-			}
-		})
-	}
-}
-
 // BenchmarkJudge reads a scanned curve.
 func BenchmarkJudge(b *testing.B) {
 	for _, n := range []int{1, 4} {
@@ -74,7 +60,7 @@ func BenchmarkJudge(b *testing.B) {
 			var o Outcome
 			b.ReportAllocs()
 			for b.Loop() {
-				Judge(&o, cs, 0.95)
+				Judge(&o, cs, nil, 0.95)
 			}
 		})
 	}

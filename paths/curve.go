@@ -10,9 +10,13 @@ import (
 // multiplier on D, with the profile's own free values fitted at every knot.
 // Between knots it is a cubic Hermite polynomial, beyond them constant.
 type Curve struct {
-	LnM, ChiSq, Slope []float64 // knots, LnM ascending, at least two
-	Points            int       // data points
-	Free              int       // values that the points alone decide, without a prior
+	LnM, ChiSq, Slope []float64  // knots, LnM ascending, at least three
+	Still, Full       float64    // chi-square without any diffusion, and after diffusion without end
+	Best              float64    // chi-square of the profile's own best fit
+	Points            int        // data points
+	Free              int        // degrees of freedom that values fitted from the points alone take
+	Law               int        // the law it rests on, counted from 1 among Judge's laws; 0 if that has no errors
+	ByE               [2]float64 // first and second derivative of ln G by the law's activation energy, mol/J
 }
 
 // At returns chi-square at lnM.
@@ -187,23 +191,21 @@ func (c *Curve) Ranges(level float64) int {
 	return n
 }
 
-// settleSlopes fills Slope with the derivative, at each knot, of the parabola
-// through it and its neighbours.
-func (c *Curve) settleSlopes() {
-	n := len(c.LnM)
-	c.Slope = slices.Grow(c.Slope[:0], n)[:n]
-	for i := range c.Slope {
-		j := min(max(i, 1), n-2)
-		c.Slope[i] = c.parabolaSlope(j, c.LnM[i])
+// parabolaSlopes fills dst with the derivative, at each x, of the parabola
+// through its point (x, y) and its neighbours; there are at least three points.
+func parabolaSlopes(dst, x, y []float64) {
+	for i := range dst {
+		j := min(max(i, 1), len(x)-2)
+		d01 := (y[j] - y[j-1]) / (x[j] - x[j-1])
+		d12 := (y[j+1] - y[j]) / (x[j+1] - x[j])
+		dst[i] = d01 + (2*x[i]-x[j-1]-x[j])*(d12-d01)/(x[j+1]-x[j-1])
 	}
 }
 
-// parabolaSlope returns the slope at x of the parabola through knots j-1, j, j+1.
-func (c *Curve) parabolaSlope(j int, x float64) float64 {
-	x0, x1, x2 := c.LnM[j-1], c.LnM[j], c.LnM[j+1]
-	d01 := (c.ChiSq[j] - c.ChiSq[j-1]) / (x1 - x0)
-	d12 := (c.ChiSq[j+1] - c.ChiSq[j]) / (x2 - x1)
-	return d01 + (2*x-x0-x1)*(d12-d01)/(x2-x0)
+// settleSlopes fills Slope with the slopes of those parabolas at the knots.
+func (c *Curve) settleSlopes() {
+	c.Slope = slices.Grow(c.Slope[:0], len(c.LnM))[:len(c.LnM)]
+	parabolaSlopes(c.Slope, c.LnM, c.ChiSq)
 }
 
 // add puts a knot in its place. A knot already there is kept.
@@ -227,6 +229,7 @@ func Sum(cs []Curve) Curve {
 		sum.LnM = append(sum.LnM, cs[i].LnM...)
 		sum.Points += cs[i].Points
 		sum.Free += cs[i].Free
+		sum.Best += cs[i].Best
 	}
 	slices.Sort(sum.LnM)
 	sum.LnM = slices.Compact(sum.LnM)

@@ -68,7 +68,7 @@ func ExampleJudge() {
 		c.Slope = append(c.Slope, 2*miss/0.1)
 	}
 	var o paths.Outcome
-	paths.Judge(&o, []paths.Curve{c}, 0.95)
+	paths.Judge(&o, []paths.Curve{c}, nil, 0.95)
 	fmt.Printf("%s, D factor %.1f (%.1f to %.1f)\n", o.Verdict, o.Shift, o.Shift95[0], o.Shift95[1])
 	// Output: too sharp, D factor 10.0 (8.2 to 12.2)
 }

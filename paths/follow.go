@@ -71,54 +71,61 @@ func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) 
 	if err != nil {
 		return nil, err
 	}
-	out := &ElementCourse{Crystal: c, Element: e, Centres: p.plan.Centres(), LnG: p.course.LnG()}
-	values := make([]float64, len(p.free))
-	f := &p.fields[0]
+	out := &ElementCourse{Crystal: c, Element: e, Centres: p.plan().Centres(), LnG: p.runs[0].course.LnG()}
+	edge, amounts := e.Start.Edge.Middle(), amounts{scale: 1, values: make([]float64, len(p.free))}
 	if result != nil {
 		out.Free, out.Notes = result.Free, result.notes(path)
-		values = p.fitTo(f.Cols).values
+		fitted := p.fitTo(p.columns(0))
+		edge, _, _ = p.lens.values(fitted.Bent)
+		amounts = p.amounts(fitted)
 	}
-	out.WhyG, out.GEnough = p.plan.GEnough()
-	out.Start, out.Final = combined(p.starts(), values), combined(f.Cols, values)
-	steps, space := combined(f.StepErr, values), combined(f.CellErr, values)
+	out.WhyG, out.GEnough = p.plan().GEnough()
+	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))
+	steps, cells := p.errors(edge, amounts)
 	for i := range steps {
-		out.NumErr = math.Max(out.NumErr, math.Abs(steps[i])+math.Abs(space[i]))
+		out.NumErr = math.Max(out.NumErr, math.Abs(steps[i])+math.Abs(cells[i]))
 	}
 	out.Legs = legShares(path.History, e.Law.Law)
 	for _, t := range at {
-		value, err := p.snapshot(t, values)
+		cols, err := p.until(t)
 		if err != nil {
 			return nil, err
 		}
-		out.Snapshots = append(out.Snapshots, Snapshot{t, value})
+		out.Snapshots = append(out.Snapshots, Snapshot{t, amounts.of(p.mix(cols, edge))})
 	}
 	return out, nil
 }
 
-// run leaves the audited run of the path as it is in fields[0]. Where there is
-// a traverse its plan is fine enough for that, and the result is not nil.
+// run leaves the audited run of the path as it is in the first fields. Where
+// there is a traverse its plan is fine enough for that, and the result is not
+// nil.
 func run(c *study.Crystal, e *study.Element, path *study.Path) (*profile, *ProfileResult, error) {
 	if e.Traverse != nil {
-		return audited(c, e, path, 0)
+		return audited(c, e, path, 0, 0)
 	}
-	p, err := newProfile(c, e, path, 0)
+	p, err := newProfile(c, e, path, 0, 0)
 	if err != nil {
 		return nil, nil, err
 	}
-	return p, nil, p.plan.Audit(&p.fields[0], diffusion.Job{Course: &p.course})
+	return p, nil, p.audit(0)
 }
 
-// snapshot runs the path up to time t.
-func (p *profile) snapshot(t float64, values []float64) ([]float64, error) {
-	var course diffusion.Course
-	if err := p.plan.Course(&course, p.path.History, t); err != nil {
-		return nil, err
+// until runs the path up to time t and returns the columns.
+func (p *profile) until(t float64) ([][][]float64, error) {
+	cols := make([][][]float64, len(p.runs))
+	for i := range p.runs {
+		r := &p.runs[i]
+		var course diffusion.Course
+		if err := r.plan.Course(&course, p.path.History, t); err != nil {
+			return nil, err
+		}
+		fields := r.fields[1:2]
+		if err := r.plan.Run(fields, []diffusion.Job{{Course: &course}}); err != nil {
+			return nil, err
+		}
+		cols[i] = fields[0].Cols
 	}
-	fields := p.fields[1:2]
-	if err := p.plan.Run(fields, []diffusion.Job{{Course: &course}}); err != nil {
-		return nil, err
-	}
-	return combined(fields[0].Cols, values), nil
+	return cols, nil
 }
 
 // legShares returns what each leg did, legs as the user named them and the

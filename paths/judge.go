@@ -2,6 +2,7 @@ package paths
 
 import (
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mathext"
 	"gonum.org/v1/gonum/stat/distuv"
@@ -10,17 +11,20 @@ import (
 // Verdict is what became of one path against the data.
 type Verdict int
 
-// The verdicts, in the order in which Judge looks for them.
+// The verdicts, in the order in which Judge looks for them, and the one it
+// does not give: Barred is for a path that breaks a limit of the user's.
 const (
 	Unjudged   Verdict = iota // none: what was never judged does not pass
 	Reproduces                // the path passes as it is
 	TooSharp                  // it would pass with more diffusion
 	TooSmooth                 // it would pass with less diffusion
+	AtOdds                    // each profile would pass alone, with its own amount of diffusion
 	WrongShape                // no amount of diffusion along this path passes
+	Barred                    // the user rules it out
 )
 
 func (v Verdict) String() string {
-	return [...]string{"not judged", "reproduces", "too sharp", "too smooth", "wrong shape"}[v]
+	return [...]string{"not judged", "reproduces", "too sharp", "too smooth", "at odds", "wrong shape", "barred"}[v]
 }
 
 // Finding is what chi-square says of one profile, or of several jointly.
@@ -31,6 +35,7 @@ type Finding struct {
 	Shift95 [2]float64 // its 95 % interval
 	Tail    float64    // probability of a larger chi-square, were the path true
 	Misfit  float64    // chi-square of the path as it is
+	Above   float64    // Misfit less chi-square of each profile's own best fit
 	Points  int        // data points
 	Degrees int        // points less the values fitted without a prior
 	Ranges  int        // how many separate ranges of multipliers make up the 95 % interval
@@ -38,8 +43,24 @@ type Finding struct {
 
 // Outcome is the verdict on one path.
 type Outcome struct {
-	Finding            // joint
-	Profiles []Finding // each by itself, in the order of the curves
+	Finding              // joint
+	Profiles []Finding   // each by itself, in the order of the curves
+	WithLaws LawsAllowed // the same with the laws' own errors allowed for
+}
+
+// LawsAllowed is the verdict when the laws may deviate within their errors.
+type LawsAllowed struct {
+	Verdict Verdict
+	Tail    float64
+	Misfit  float64   // chi-square, that of the deviations included
+	Leaning []Leaning // on each law, in the order given
+}
+
+// Leaning is by how many standard deviations, of ln D and E together, a path
+// leans on a law.
+type Leaning struct {
+	Law   string
+	Sigma float64
 }
 
 // Judge weighs a path by the curves of the profiles it must satisfy, which
@@ -48,34 +69,49 @@ type Outcome struct {
 //
 //	p(1) passes                      reproduces
 //	p(m*) passes at the best m*      too sharp (m* > 1) or too smooth (m* < 1)
+//	each p(m*) at its own m*         at odds
 //	neither                          wrong shape
 //
 // where to pass is to be no smaller than 1 - confidence. If m spends the last
 // degree, what is left of chi-square is there because m met a bound, so that it
-// counts as one again. What is not a number does not pass. Judge never solves.
-// Judge panics if there are no curves.
-func Judge(dst *Outcome, cs []Curve, confidence float64) {
+// counts as one again. What is not a number does not pass. The second verdict
+// allows each of the laws to deviate, shared by all its profiles, at the cost
+// of its prior. Judge never solves. It panics if there are no curves.
+func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 	joint := Sum(cs)
 	dst.Finding = find(&joint, confidence)
 	dst.Profiles = dst.Profiles[:0]
 	for i := range cs {
 		dst.Profiles = append(dst.Profiles, find(&cs[i], confidence))
 	}
+	if dst.Verdict == WrongShape && len(cs) > 1 && !slices.ContainsFunc(dst.Profiles, Finding.hopeless) {
+		dst.Verdict = AtOdds
+	}
+	l := lean(cs, laws)
+	dst.WithLaws = LawsAllowed{Verdict: dst.Verdict, Misfit: l.chiSq, Tail: Tail(l.chiSq, dst.Degrees), Leaning: l.laws}
+	if dst.WithLaws.Tail >= 1-confidence {
+		dst.WithLaws.Verdict = Reproduces
+	}
 }
+
+// hopeless reports whether no amount of diffusion passes.
+func (f Finding) hopeless() bool { return f.Verdict == WrongShape }
 
 // find reads one curve.
 func find(c *Curve, confidence float64) Finding {
 	f := Finding{Points: c.Points, Degrees: c.Points - c.Free, Misfit: c.At(0)}
+	f.Above = f.Misfit - c.Best
 	f.Tail = Tail(f.Misfit, f.Degrees)
 	lnM, best := c.Lowest()
 	f.Shift = math.Exp(lnM)
 	f.Shift68 = interval(c, best+Critical(0.68, 1))
 	f.Shift95 = interval(c, best+Critical(0.95, 1))
 	f.Ranges = c.Ranges(best + Critical(0.95, 1))
-	switch level := 1 - confidence; {
-	case f.Tail >= level:
+	passes := func(tail float64) bool { return tail >= 1-confidence } // false for NaN
+	switch {
+	case passes(f.Tail):
 		f.Verdict = Reproduces
-	case f.Degrees < 1 || !(Tail(best, max(f.Degrees-1, 1)) >= level):
+	case f.Degrees < 1 || !passes(Tail(best, max(f.Degrees-1, 1))):
 		f.Verdict = WrongShape
 	case lnM > 0:
 		f.Verdict = TooSharp
@@ -100,6 +136,8 @@ func interval(c *Curve, level float64) [2]float64 {
 // round-off, else 0.
 func Tail(x float64, degrees int) float64 {
 	switch {
+	case math.IsNaN(x):
+		return math.NaN()
 	case degrees > 0:
 		return mathext.GammaIncRegComp(float64(degrees)/2, math.Max(x, 0)/2)
 	case x <= exactFit:

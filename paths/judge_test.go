@@ -7,6 +7,8 @@ import (
 	"testing"
 )
 
+func square(x float64) float64 { return x * x }
+
 // bowl is the curve of a well-behaved profile: chi-square floor at the
 // multiplier exp(at), rising as ((lnM - at)/sigma)^2. With its own slopes it is
 // exact.
@@ -53,7 +55,7 @@ func TestVerdicts(t *testing.T) {
 	} {
 		t.Run(test.name, func(t *testing.T) {
 			var o Outcome
-			Judge(&o, []Curve{test.c}, test.confidence)
+			Judge(&o, []Curve{test.c}, nil, test.confidence)
 			if o.Verdict != test.want {
 				t.Errorf("%s (tail %g, misfit %g of %d), want %s", o.Verdict, o.Tail, o.Misfit, o.Degrees, test.want)
 			}
@@ -71,7 +73,7 @@ func TestVerdicts(t *testing.T) {
 // not of one sigma.
 func TestShiftAndItsIntervals(t *testing.T) {
 	var o Outcome
-	Judge(&o, []Curve{bowl(19, -1.3, 0.25, 22, 2)}, 0.95)
+	Judge(&o, []Curve{bowl(19, -1.3, 0.25, 22, 2)}, nil, 0.95)
 	near(t, "shift factor", o.Shift, math.Exp(-1.3), 1e-9)
 	const one, two = 0.994457883209753, 1.959963984540054 // standard normal deviates of 68 and 95 %
 	near(t, "68 %, lower", o.Shift68[0], math.Exp(-1.3-0.25*one), 1e-9)
@@ -106,7 +108,7 @@ func TestOneSidedIntervals(t *testing.T) {
 		t.Run(test.name, func(t *testing.T) {
 			c, _ := scanned(t, test.f)
 			var o Outcome
-			Judge(&o, []Curve{c}, 0.95)
+			Judge(&o, []Curve{c}, nil, 0.95)
 			if o.Verdict != test.verdict {
 				t.Errorf("%s, want %s", o.Verdict, test.verdict)
 			}
@@ -132,7 +134,7 @@ func TestJointVerdict(t *testing.T) {
 	} {
 		t.Run(test.name, func(t *testing.T) {
 			var o Outcome
-			Judge(&o, test.cs, 0.95)
+			Judge(&o, test.cs, nil, 0.95)
 			if o.Verdict != test.joint.Verdict || o.Points != test.joint.Points || o.Degrees != test.joint.Degrees {
 				t.Errorf("got %+v, want %+v", o.Finding, test.joint)
 			}
@@ -150,9 +152,9 @@ func TestJointVerdict(t *testing.T) {
 // Memory is reused; what was there before does not shine through.
 func TestJudgeOverwrites(t *testing.T) {
 	var o, fresh Outcome
-	Judge(&o, []Curve{bowl(20, -1, 0.1, 22, 2), bowl(30, 1, 0.1, 31, 1)}, 0.95)
-	Judge(&o, []Curve{bowl(19, 2, 0.5, 22, 2)}, 0.95)
-	Judge(&fresh, []Curve{bowl(19, 2, 0.5, 22, 2)}, 0.95)
+	Judge(&o, []Curve{bowl(20, -1, 0.1, 22, 2), bowl(30, 1, 0.1, 31, 1)}, nil, 0.95)
+	Judge(&o, []Curve{bowl(19, 2, 0.5, 22, 2)}, nil, 0.95)
+	Judge(&fresh, []Curve{bowl(19, 2, 0.5, 22, 2)}, nil, 0.95)
 	if got, want := fmt.Sprintf("%+v", o), fmt.Sprintf("%+v", fresh); got != want {
 		t.Errorf("got %s, want %s", got, want)
 	}
@@ -169,7 +171,7 @@ func TestNothingPassesThatIsNoNumber(t *testing.T) {
 	} {
 		t.Run(name, func(t *testing.T) {
 			var o Outcome
-			Judge(&o, []Curve{c}, 0.95)
+			Judge(&o, []Curve{c}, nil, 0.95)
 			if o.Verdict == Reproduces || name == "everywhere" && o.Verdict != WrongShape {
 				t.Errorf("verdict %s", o.Verdict)
 			}
@@ -204,7 +206,7 @@ func TestJudgeRatesOfALinearModel(t *testing.T) {
 		}
 		mean := sum / points
 		var o Outcome
-		Judge(&o, []Curve{bowl(sumSq-points*mean*mean, mean, 1/math.Sqrt(points), points, 0)}, 0.95)
+		Judge(&o, []Curve{bowl(sumSq-points*mean*mean, mean, 1/math.Sqrt(points), points, 0)}, nil, 0.95)
 		if o.Verdict == Reproduces {
 			passes++
 		}

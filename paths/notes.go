@@ -35,7 +35,7 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 		switch {
 		case math.IsInf(f.Sigma, 1):
 			notes = append(notes, fmt.Sprintf("the data do not see %s apart from the other free values", f.Name))
-		case f.Value < -2*f.Sigma:
+		case f.Unit == r.Element.Unit && f.Value < -2*f.Sigma:
 			notes = append(notes, fmt.Sprintf("the fitted %s is negative, %.3g %s", f.Name, f.Value, r.Element.Unit))
 		}
 	}

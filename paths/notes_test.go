@@ -48,7 +48,7 @@ func TestNotesOfAProfile(t *testing.T) {
 	element.Law.Row = row
 	r.Element = &element
 	r.NumErr = 0.4
-	r.Free = []FreeFit{{Name: "core", Value: 40, Sigma: math.Inf(1)}, {Name: "mantle", Value: -9, Sigma: 1}}
+	r.Free = []FreeFit{{Name: "core", Value: 40, Sigma: math.Inf(1)}, {Name: "mantle", Value: -9, Sigma: 1, Unit: element.Unit}}
 	r.LnG = math.Log(square(r.Crystal.Size()))
 	notes := strings.Join(r.notes(&path), "\n")
 	for _, want := range append(row.Cautions(), "the data do not see core", "the fitted mantle is negative, -9 ppm",
@@ -75,11 +75,11 @@ func cautious(t *testing.T) *catalogue.Row {
 func TestNotesOfAnOutcome(t *testing.T) {
 	c, _ := scanned(t, func(x float64) float64 { return 10 + well(500, -3)(x) + well(501, 4)(x) })
 	var o Outcome
-	Judge(&o, []Curve{c}, 0.95)
+	Judge(&o, []Curve{c}, nil, 0.95)
 	if notes := strings.Join(o.notes(), "\n"); o.Ranges != 2 || !strings.Contains(notes, "2 separate amounts of diffusion") {
 		t.Errorf("%d ranges, notes %q", o.Ranges, notes)
 	}
-	Judge(&o, []Curve{bowl(19, 0, 1, 22, 2)}, 0.95)
+	Judge(&o, []Curve{bowl(19, 0, 1, 22, 2)}, nil, 0.95)
 	if notes := o.notes(); len(notes) > 0 {
 		t.Errorf("one range, notes %q", notes)
 	}

@@ -7,6 +7,7 @@ import (
 	"slices"
 
 	"bankfire/diffusion"
+	"bankfire/paths/least"
 	"bankfire/paths/study"
 	"bankfire/paths/traverse"
 )
@@ -19,6 +20,8 @@ const (
 	mostRefined = 2
 	pointFinest = 0.5 // of the smallest spacing: what matters where there is no spot
 	batch       = 8   // multipliers that go side by side
+	usualCells  = 200 // the solver's own choice, from which a refined plan starts
+	usualGrowth = 0.1
 )
 
 // profile is one element of one crystal on one path, ready to run.
@@ -27,114 +30,306 @@ type profile struct {
 	element *study.Element
 	path    *study.Path
 	free    []study.FreeValue
-	refined int // how often the plan is finer than the usual one
-	plan    *diffusion.Plan
-	course  diffusion.Course
-	weights *traverse.Weights // nil without a traverse
-	fit     fit
-	spent   int // degrees of freedom that the free values take on the path as it is
-	fields  []diffusion.Field
-	seen    [][]float64 // the columns after the spot
+	runs    []variant // one an edge width between which the lens interpolates
+	lens    *lens     // nil without a traverse
+	fit     least.Problem
+	grey    bool // a scale and an offset are two more linear values
+	refined int  // how often the plan is finer than the usual one
+	counted int  // values that the points alone decide, at the path as it is
+}
+
+// variant is the problem with one width of the start's edges.
+type variant struct {
+	plan   *diffusion.Plan
+	course diffusion.Course
+	fields []diffusion.Field
 }
 
 // newProfile compiles the element for the path with a plan that is refined so
-// many times: each time twice the cells and half the steps' growth.
-func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined int) (*profile, error) {
+// many times: each time twice the cells and half the steps' growth. scatter is
+// added to the data's errors in quadrature.
+func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined int, scatter float64) (*profile, error) {
 	problem, free, err := c.Problem(e, path.History)
 	if err != nil {
 		return nil, err
 	}
+	p := &profile{crystal: c, element: e, path: path, free: free, refined: refined}
 	options := diffusion.Options{Finest: finest(e.Traverse)}
 	if refined > 0 {
 		options.Cells, options.Growth = usualCells<<refined, usualGrowth/float64(int(1)<<refined)
 	}
-	plan, err := diffusion.Compile(problem, options)
-	if err != nil {
-		return nil, err
+	edges := []float64{e.Start.Edge.Middle()}
+	if e.Traverse != nil {
+		edges = nodes(e.Start.Edge, 0, math.Inf(1), edgeNodes)
 	}
-	p := &profile{crystal: c, element: e, path: path, free: free, refined: refined, plan: plan, fields: make([]diffusion.Field, batch)}
-	if err := plan.Course(&p.course, path.History, path.History.Life()); err != nil {
-		return nil, err
-	}
-	if t := e.Traverse; t != nil {
-		if p.weights, err = t.Weights(plan.Faces(), c.Mirrored(e)); err != nil {
+	for _, edge := range edges {
+		if err := p.addRun(problem, edge, &options); err != nil {
 			return nil, err
 		}
-		p.fit = newFit(t.Value, t.Sigma, free)
-		p.seen = make([][]float64, 1+len(free))
-		for j := range p.seen {
-			p.seen[j] = make([]float64, len(t.Value))
-		}
-		if len(t.Value) <= p.fit.unconstrained() {
-			return nil, tooFewPoints(e, len(t.Value), p.fit.unconstrained())
-		}
+	}
+	if e.Traverse == nil {
+		return p, nil
+	}
+	if p.lens, err = newLens(c, e, p.plan().Faces()); err != nil {
+		return nil, err
+	}
+	if err := p.setFit(scatter); err != nil {
+		return nil, err
 	}
 	return p, nil
 }
 
-// usualCells and usualGrowth are the solver's own choice, from which a refined
-// plan starts.
+// addRun adds the problem with the given width of its edges. All runs share
+// the faces of the first, which are left in the options.
+func (p *profile) addRun(problem *diffusion.Problem, edge float64, options *diffusion.Options) error {
+	this := *problem
+	this.Zones = slices.Clone(problem.Zones)
+	for i := range len(this.Zones) - 1 {
+		this.Zones[i].Edge = edge
+	}
+	plan, err := diffusion.Compile(&this, *options)
+	if err != nil {
+		return err
+	}
+	options.Faces = plan.Faces()
+	p.runs = append(p.runs, variant{plan: plan, fields: make([]diffusion.Field, batch)})
+	r := &p.runs[len(p.runs)-1]
+	return plan.Course(&r.course, p.path.History, p.path.History.Life())
+}
+
+func (p *profile) plan() *diffusion.Plan { return p.runs[0].plan }
+
+// A value without a prior is given one that is too wide to matter where the
+// data see the value: about the mean of the data, wide times their largest.
+// Without it a plateau that has all but diffused away would be fitted at 1e10
+// times anything measured, and the round-off of the solver be taken for its
+// profile. A value whose error comes out above unseen times the largest is one
+// that the data do not see.
 const (
-	usualCells  = 200
-	usualGrowth = 0.1
+	wide   = 100
+	unseen = 10
 )
+
+// setFit says what is to be fitted to what.
+func (p *profile) setFit(scatter float64) error {
+	t := p.element.Traverse
+	p.fit = least.Problem{Obs: t.Value, Sigma: widened(t, scatter), Limit: t.Limit, White: overlapWhite(t), Bent: p.lens.bent()}
+	p.grey = t.Grey
+	mean, size := meanAndSize(t)
+	for _, v := range p.free {
+		prior := least.Prior{Mean: mean, Sigma: wide * size}
+		if v.HasPrior { // counted from its base, the middle of its prior
+			if t.Grey {
+				return p.element.Place.Error("", "relative values have no unit, so a plateau known with an error cannot be tied to them",
+					`make the plateau "free", or give it without an error`)
+			}
+			prior = least.Prior{Sigma: v.Prior.Sigma}
+		}
+		p.fit.Linear = append(p.fit.Linear, prior)
+	}
+	if p.grey {
+		p.fit.Linear = append(p.fit.Linear, least.None, least.None)
+	}
+	if n := p.open(); len(t.Value) <= n {
+		return tooFewPoints(p.element, len(t.Value), n)
+	}
+	return nil
+}
+
+// meanAndSize returns the mean of the data and the largest of them, errors and
+// all.
+func meanAndSize(t *traverse.Traverse) (mean, size float64) {
+	for i, v := range t.Value {
+		mean += v / float64(len(t.Value))
+		size = math.Max(size, math.Abs(v)+t.Sigma[i])
+	}
+	return mean, size
+}
+
+// open counts the linear values without a prior of the study's.
+func (p *profile) open() int {
+	n := len(p.fit.Linear) - len(p.free)
+	for _, v := range p.free {
+		if !v.HasPrior {
+			n++
+		}
+	}
+	return n
+}
+
+// spent returns how many degrees of freedom the linear values without a prior
+// of the study's take: each the part of the variance of its wide prior that the
+// data have taken away, rounded in all.
+func (p *profile) spent(at least.Solution) int {
+	sum := 0.0
+	for j, prior := range p.fit.Linear {
+		switch {
+		case j < len(p.free) && p.free[j].HasPrior:
+		case math.IsInf(prior.Sigma, 1):
+			sum++
+		default:
+			part := at.Sigma[j] / prior.Sigma
+			sum += 1 - part*part
+		}
+	}
+	return int(math.Round(sum))
+}
+
+// widened returns the data's standard deviations with scatter added.
+func widened(t *traverse.Traverse, scatter float64) []float64 {
+	sigma := slices.Clone(t.Sigma)
+	for i, s := range sigma {
+		sigma[i] = math.Hypot(s, scatter)
+	}
+	return sigma
+}
+
+func tooFewPoints(e *study.Element, points, free int) error {
+	return e.Place.Error(fmt.Sprint(points), fmt.Sprintf("points for %d free values leave nothing to judge by", free),
+		"measure more points, or state plateaux that other analyses know")
+}
 
 // finest returns the smallest length that the traverse can see, m; 0 where
 // nothing was measured.
 func finest(t *traverse.Traverse) float64 {
-	if t == nil {
+	switch {
+	case t == nil || len(t.Position) < 2 && t.Spot.Kind == traverse.Point:
 		return 0
-	}
-	if t.Spot.Kind != traverse.Point {
+	case t.Spot.Kind != traverse.Point:
 		return t.Spot.Sigma()
 	}
-	least := math.Inf(1)
-	for i := 1; i < len(t.Position); i++ {
-		least = math.Min(least, math.Abs(t.Position[i]-t.Position[i-1]))
+	return leastSpacingOf(t.Position) * pointFinest
+}
+
+// solveFor runs the path for each of the multipliers and fits the data, until
+// ctx is done.
+func (p *profile) solveFor(ctx context.Context, lnM []float64) ([]least.Solution, error) {
+	out := make([]least.Solution, 0, len(lnM))
+	jobs := make([]diffusion.Job, batch)
+	for from := 0; from < len(lnM); from += batch {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
+		part := lnM[from:min(from+batch, len(lnM))]
+		for i := range p.runs {
+			r := &p.runs[i]
+			for k, x := range part {
+				jobs[k] = diffusion.Job{Course: &r.course, LnM: x}
+			}
+			if err := r.plan.Run(r.fields[:len(part)], jobs[:len(part)]); err != nil {
+				return nil, err
+			}
+		}
+		for k := range part {
+			out = append(out, p.fitTo(p.columns(k)))
+		}
 	}
-	if math.IsInf(least, 1) {
-		return 0
-	}
-	return least * pointFinest
+	return out, nil
 }
 
 // sampler returns chi-square at multipliers on D until ctx is done.
 func (p *profile) sampler(ctx context.Context) sampler {
 	return func(lnM []float64) ([]float64, error) {
-		out := make([]float64, 0, len(lnM))
-		jobs := make([]diffusion.Job, 0, batch)
-		for from := 0; from < len(lnM); from += batch {
-			if err := ctx.Err(); err != nil {
-				return nil, err
-			}
-			part := lnM[from:min(from+batch, len(lnM))]
-			jobs = jobs[:0]
-			for _, x := range part {
-				jobs = append(jobs, diffusion.Job{Course: &p.course, LnM: x})
-			}
-			if err := p.plan.Run(p.fields[:len(part)], jobs); err != nil {
-				return nil, err
-			}
-			for k := range part {
-				out = append(out, p.fitTo(p.fields[k].Cols).chiSq)
+		solutions, err := p.solveFor(ctx, lnM)
+		values := make([]float64, len(solutions))
+		for i, s := range solutions {
+			values[i] = s.ChiSq
+		}
+		return values, err
+	}
+}
+
+// columns returns the columns of the runs' fields k.
+func (p *profile) columns(k int) [][][]float64 {
+	cols := make([][][]float64, len(p.runs))
+	for i := range p.runs {
+		cols[i] = p.runs[i].fields[k].Cols
+	}
+	return cols
+}
+
+// starts returns the columns before diffusion.
+func (p *profile) starts() [][][]float64 {
+	cols := make([][][]float64, len(p.runs))
+	for i := range p.runs {
+		for j := range 1 + len(p.free) {
+			cols[i] = append(cols[i], p.runs[i].plan.Start(j))
+		}
+	}
+	return cols
+}
+
+// fitTo fits the values that are open to the data, for columns of cell means.
+func (p *profile) fitTo(cols [][][]float64) least.Solution {
+	v := p.lens.look(cols)
+	n := 1 + len(p.free)
+	return p.fit.Solve(func(dst [][]float64, bent []float64) {
+		v.columns(dst[:n], bent)
+		if p.grey { // value = offset + scale (base + sum of free x columns)
+			copy(dst[n], dst[0])
+			clear(dst[0])
+			for i := range dst[n+1] {
+				dst[n+1][i] = 1
 			}
 		}
-		return out, nil
-	}
+	})
 }
 
-// fitTo fits the free values to the data for the given columns of cell means.
-func (p *profile) fitTo(cols [][]float64) fitted {
-	for j, c := range cols {
-		p.weights.Apply(p.seen[j], c)
+// curve scans the profile's chi-square over the multipliers.
+func (p *profile) curve(ctx context.Context) (Curve, error) {
+	chiSq := p.sampler(ctx)
+	c, err := scan(len(p.fit.Obs), p.counted, chiSq)
+	if err != nil {
+		return c, err
 	}
-	return p.fit.solve(p.seen)
+	c.Still = p.fitTo(p.starts()).ChiSq
+	c.Full, err = p.full(chiSq)
+	return c, err
 }
 
-// combined returns the answer column plus the free values times theirs.
-func combined(cols [][]float64, values []float64) []float64 {
-	dst := slices.Clone(cols[0])
-	for j, x := range values {
+// equilibrated is the diffusion integral, in squares of the crystal's size, by
+// which nothing of the start's shape is left.
+const equilibrated = 1e3
+
+// full returns chi-square after diffusion without end.
+func (p *profile) full(chiSq sampler) (float64, error) {
+	lnG := p.runs[0].course.LnG()
+	if math.IsInf(lnG, -1) {
+		return p.fitTo(p.starts()).ChiSq, nil
+	}
+	size := p.crystal.Size() - p.crystal.R0
+	values, err := chiSq([]float64{math.Log(equilibrated*size*size) - lnG})
+	if err != nil {
+		return 0, err
+	}
+	return values[0], nil
+}
+
+// amounts are the values that make one profile of the columns,
+//
+//	profile = offset + scale answer + sum of value x derivative;
+//
+// offset 0 and scale 1 but for relative data.
+type amounts struct {
+	offset, scale float64
+	values        []float64
+}
+
+func (p *profile) amounts(at least.Solution) amounts {
+	k := len(p.free)
+	if p.grey {
+		return amounts{at.Linear[k+1], at.Linear[k], at.Linear[:k]}
+	}
+	return amounts{0, 1, at.Linear}
+}
+
+// of returns the profile that the amounts make of the columns.
+func (a amounts) of(cols [][]float64) []float64 {
+	dst := make([]float64, len(cols[0]))
+	for i, v := range cols[0] {
+		dst[i] = a.offset + a.scale*v
+	}
+	for j, x := range a.values {
 		for i := range dst {
 			dst[i] += x * cols[1+j][i]
 		}
@@ -142,20 +337,57 @@ func combined(cols [][]float64, values []float64) []float64 {
 	return dst
 }
 
-// numErr returns the largest estimated numerical error of the fitted model at
-// the data points, in units of their sigma. The field must have been audited.
-func (p *profile) numErr(f *diffusion.Field, values []float64) float64 {
-	steps, space := make([]float64, len(p.fit.obs)), make([]float64, len(p.fit.obs))
-	p.weights.Apply(steps, combined(f.StepErr, values))
-	p.weights.Apply(space, combined(f.CellErr, values))
-	worst := 0.0
-	for i, s := range p.fit.sigma {
-		worst = math.Max(worst, (math.Abs(steps[i])+math.Abs(space[i]))/s)
+// mix returns the columns at one width of the edges, from those at the nodes.
+func (p *profile) mix(cols [][][]float64, edge float64) [][]float64 {
+	if len(cols) == 1 {
+		return cols[0]
 	}
-	return worst
+	weights := lagrange(p.lens.edges, edge)
+	out := make([][]float64, len(cols[0]))
+	for j := range out {
+		out[j] = make([]float64, len(cols[0][j]))
+		for a, w := range weights {
+			for i, v := range cols[a][j] {
+				out[j][i] += w * v
+			}
+		}
+	}
+	return out
 }
 
-func tooFewPoints(e *study.Element, points, free int) error {
-	return e.Place.Error(fmt.Sprint(points), fmt.Sprintf("points for %d free values leave nothing to judge by", free),
-		"measure more points, or state plateaux that other analyses know")
+// audit runs the path with a multiplier on D and measures the error of every
+// column.
+func (p *profile) audit(lnM float64) error {
+	for i := range p.runs {
+		r := &p.runs[i]
+		if err := r.plan.Audit(&r.fields[0], diffusion.Job{Course: &r.course, LnM: lnM}); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// errors returns the audited errors, by steps and by cells, of the profile that
+// the amounts make at one width of the edges.
+func (p *profile) errors(edge float64, a amounts) (steps, cells []float64) {
+	var s, c [][][]float64
+	for i := range p.runs {
+		s = append(s, p.runs[i].fields[0].StepErr)
+		c = append(c, p.runs[i].fields[0].CellErr)
+	}
+	a.offset = 0
+	return a.of(p.mix(s, edge)), a.of(p.mix(c, edge))
+}
+
+// numErr returns the largest estimated numerical error of the fitted model at
+// the data points, in units of their sigma. The path must have been audited.
+func (p *profile) numErr(at least.Solution) float64 {
+	edge, tilt, origin := p.lens.values(at.Bent)
+	steps, cells := p.errors(edge, p.amounts(at))
+	steps, cells = p.lens.through(steps, tilt, origin), p.lens.through(cells, tilt, origin)
+	worst := 0.0
+	for i, s := range p.fit.Sigma {
+		worst = math.Max(worst, (math.Abs(steps[i])+math.Abs(cells[i]))/s)
+	}
+	return worst
 }

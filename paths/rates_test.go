@@ -13,6 +13,9 @@ import (
 // i alone.
 func simulate(t *testing.T, p couple, seed uint64, repeats int) []Outcome {
 	t.Helper()
+	if underRace {
+		t.Skip("a long simulation; TestWeighSameBitsWhateverTheJobs runs the same side by side")
+	}
 	out, errs := make([]Outcome, repeats), make([]error, repeats)
 	path := p.path(t, "as it was", 1)
 	next := make(chan int)

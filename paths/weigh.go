@@ -9,6 +9,7 @@ import (
 	"sync"
 
 	"bankfire/diffusion"
+	"bankfire/paths/least"
 	"bankfire/paths/study"
 	"bankfire/paths/traverse"
 	"bankfire/thermal"
@@ -18,13 +19,17 @@ import (
 // Result is a study weighed: what became of every path, in the study's order.
 type Result struct {
 	Study *study.Study
+	Laws  []LawPrior // in the order of first use
+	Own   []OwnBest  // one a measured element
 	Paths []PathResult
 }
 
-// PathResult is one path with its verdict.
+// PathResult is one path with its verdict. A barred path has no outcome but
+// its verdict, and no profiles.
 type PathResult struct {
 	Path     *study.Path
 	Outcome  Outcome
+	Barred   []string  // why the user's limits rule it out
 	Life     float64   // start to eruption, s
 	Above    []float64 // time above each of the study's thresholds before eruption, s
 	Profiles []ProfileResult
@@ -39,18 +44,24 @@ type ProfileResult struct {
 	LnG     float64   // ln of the diffusion integral, m2
 	StandIn float64   // the constant temperature that gives the same G over the whole path, K; 0 where nothing diffuses
 	NumErr  float64   // largest numerical error at the data points, in sigma, of the path as it is and at its shift factor
+	At      []float64 // where the points are in the fit, m from the crystal's centre
 	Seen    []float64 // what the instrument would have shown at the points, in the element's unit
-	Centres []float64 // of the cells, m from the crystal's centre
-	Start   []float64 // what the instrument would have shown there before diffusion
-	Final   []float64 // and at the end of the path
-	Stats   diffusion.Stats
-	Notes   []string
+	Sigma   []float64 // the points' standard deviations, extra scatter included
+	// Residuals are (measured - modelled)/sigma; of a value below detection minus
+	// the root of -2 ln of its likelihood.
+	Residuals []float64
+	Centres   []float64 // of the cells, m from the crystal's centre
+	Start     []float64 // what the instrument would have shown there before diffusion
+	Final     []float64 // and at the end of the path
+	Stats     diffusion.Stats
+	Notes     []string
 }
 
 // FreeFit is a value that the traverse decided, alone or with a prior.
 type FreeFit struct {
 	Name         string
-	Value, Sigma float64 // in the element's unit; Sigma is +Inf where the data do not see it
+	Value, Sigma float64 // Sigma is +Inf where the data do not see it, 0 where it is not known
+	Unit         string
 	HasPrior     bool
 }
 
@@ -60,23 +71,96 @@ type FreeFit struct {
 // path is weighed, else those of up to 20 paths, each with the path's name,
 // joined.
 func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
-	if !measured(s) {
+	w := newWeighing(s)
+	if len(w.elements) == 0 {
 		return nil, thermal.Place{File: s.File, Field: "crystal.element.traverse"}.
 			Error("", "no element has a traverse, so there is nothing to weigh against",
 				`add traverse = { file = "...", ... } to an element, or use follow`)
 	}
-	r := &Result{Study: s, Paths: make([]PathResult, len(s.Paths))}
-	errs := make([]error, len(s.Paths))
+	if err := w.all(ctx, jobs); err != nil {
+		return nil, err
+	}
+	if w.addScatter() {
+		if err := w.all(ctx, jobs); err != nil {
+			return nil, err
+		}
+	}
+	return w.judge()
+}
+
+// weighing is a study in the course of being weighed.
+type weighing struct {
+	study    *study.Study
+	elements []element
+	laws     []LawPrior
+	paths    []weighedPath
+}
+
+// element is one that was measured.
+type element struct {
+	crystal *study.Crystal
+	element *study.Element
+	law     int
+	scatter float64 // extra scatter of its traverse, in its unit
+}
+
+// weighedPath is what the solver said of one path.
+type weighedPath struct {
+	barred   []string
+	profiles []*profile // one an element
+	results  []ProfileResult
+	curves   []Curve
+}
+
+func newWeighing(s *study.Study) *weighing {
+	w := &weighing{study: s, paths: make([]weighedPath, len(s.Paths))}
+	for i := range s.Crystals {
+		for j := range s.Crystals[i].Elements {
+			if e := &s.Crystals[i].Elements[j]; e.Traverse != nil {
+				w.elements = append(w.elements, element{&s.Crystals[i], e, w.law(&e.Law), 0})
+			}
+		}
+	}
+	return w
+}
+
+// law returns the number of a law's prior, counted from 1; 0 where it has none.
+func (w *weighing) law(l *study.Law) int {
+	prior := lawPrior(l)
+	if prior.LnD == 0 && prior.E == 0 {
+		return 0
+	}
+	for k := range w.laws {
+		if w.laws[k] == prior {
+			return k + 1
+		}
+	}
+	w.laws = append(w.laws, prior)
+	return len(w.laws)
+}
+
+// lawPrior says how well a law is known.
+func lawPrior(l *study.Law) LawPrior {
+	p := LawPrior{Key: l.Key, LnD: l.Sigma * math.Ln10}
+	if l.Row != nil {
+		p.LnD, p.E = l.Row.SigmaMid.Value*math.Ln10, l.Row.SigmaE.Value
+	}
+	return p
+}
+
+// all solves every path.
+func (w *weighing) all(ctx context.Context, jobs int) error {
+	errs := make([]error, len(w.paths))
 	next := make(chan int)
 	var team sync.WaitGroup
-	for range max(1, min(jobs, len(s.Paths))) {
+	for range max(1, min(jobs, len(w.paths))) {
 		team.Go(func() {
 			for i := range next {
-				errs[i] = r.Paths[i].weigh(ctx, s, &s.Paths[i])
+				errs[i] = w.path(ctx, i)
 			}
 		})
 	}
-	for i := range s.Paths {
+	for i := range w.paths {
 		select {
 		case next <- i:
 		case <-ctx.Done():
@@ -86,12 +170,9 @@ func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 	close(next)
 	team.Wait()
 	if done := ctx.Err(); done != nil && slices.ContainsFunc(errs, func(err error) bool { return errors.Is(err, done) }) {
-		return nil, done
+		return done
 	}
-	if err := firstErrors(errs); err != nil {
-		return nil, err
-	}
-	return r, nil
+	return firstErrors(errs)
 }
 
 // mostErrors is how many errors are reported at once.
@@ -102,80 +183,74 @@ func firstErrors(errs []error) error {
 	return errors.Join(errs[:min(len(errs), mostErrors)]...)
 }
 
-func measured(s *study.Study) bool {
-	for i := range s.Crystals {
-		for j := range s.Crystals[i].Elements {
-			if s.Crystals[i].Elements[j].Traverse != nil {
-				return true
-			}
-		}
-	}
-	return false
-}
-
-// weigh runs one path through every measured element and judges it.
-func (r *PathResult) weigh(ctx context.Context, s *study.Study, path *study.Path) error {
-	r.Path, r.Life = path, path.Eruption
-	for _, t := range s.Thresholds {
-		r.Above = append(r.Above, path.History.TimeAbove(t.Temp))
-	}
-	var curves []Curve
-	var each []sampler
-	for i := range s.Crystals {
-		c := &s.Crystals[i]
-		for j := range c.Elements {
-			e := &c.Elements[j]
-			if e.Traverse == nil {
-				continue
-			}
-			p, result, curve, err := weighProfile(ctx, c, e, path)
-			if err != nil {
-				return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.Name, c.Name, err)
-			}
-			r.Profiles = append(r.Profiles, *result)
-			curves, each = append(curves, curve), append(each, p.sampler(ctx))
-		}
-	}
-	if err := sharpen(curves, each); err != nil {
+// path solves path i for every element, unless the user rules it out.
+func (w *weighing) path(ctx context.Context, i int) error {
+	path := &w.study.Paths[i]
+	p := weighedPath{barred: slices.Clone(path.Barred)}
+	reasons, err := w.study.Limits.Barred(path.History)
+	if err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
-	Judge(&r.Outcome, curves, s.Confidence)
-	r.Notes = r.Outcome.notes()
+	if p.barred = append(p.barred, reasons...); len(p.barred) == 0 {
+		for _, e := range w.elements {
+			if err := p.add(ctx, e, path, w.laws); err != nil {
+				return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
+			}
+		}
+		if err := p.sharpen(ctx); err != nil {
+			return fmt.Errorf("path %q: %w", path.Name, err)
+		}
+	}
+	w.paths[i] = p
 	return nil
 }
 
-// weighProfile scans the multipliers on D with a plan that is fine enough both
-// for the path as it is and at the best of them: a path that hardly diffuses
-// says nothing of the error there.
-func weighProfile(ctx context.Context, c *study.Crystal, e *study.Element, path *study.Path) (
-	*profile, *ProfileResult, Curve, error) {
+// add scans the multipliers on D for one element, with a plan that is fine
+// enough both for the path as it is and at the best of them: a path that hardly
+// diffuses says nothing of the error there.
+func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws []LawPrior) error {
 	for refined := 0; ; {
-		p, result, err := audited(c, e, path, refined)
+		p, result, err := audited(e.crystal, e.element, path, refined, e.scatter)
 		if err != nil {
-			return nil, nil, Curve{}, err
+			return err
 		}
-		curve, err := scan(len(p.fit.obs), p.spent, p.sampler(ctx))
+		curve, err := p.curve(ctx)
 		if err != nil {
-			return nil, nil, Curve{}, err
+			return err
 		}
 		best, err := p.errorAtBest(&curve)
 		if err != nil {
-			return nil, nil, Curve{}, err
+			return err
 		}
 		if refined = p.finer(best); refined > p.refined {
 			continue
 		}
 		result.NumErr = math.Max(result.NumErr, best)
 		result.Notes = result.notes(path)
-		return p, result, curve, nil
+		if curve.Law = e.law; e.law > 0 {
+			curve.ByE = p.byE(laws[e.law-1].E)
+		}
+		w.profiles = append(w.profiles, p)
+		w.results = append(w.results, *result)
+		w.curves = append(w.curves, curve)
+		return nil
 	}
+}
+
+// sharpen makes the joint curve right around its own lowest point.
+func (w *weighedPath) sharpen(ctx context.Context) error {
+	each := make([]sampler, len(w.profiles))
+	for i, p := range w.profiles {
+		each[i] = p.sampler(ctx)
+	}
+	return sharpen(w.curves, each)
 }
 
 // audited compiles the element for the path, with a plan at least so often
 // refined and fine enough for the path as it is, and runs that.
-func audited(c *study.Crystal, e *study.Element, path *study.Path, refined int) (*profile, *ProfileResult, error) {
+func audited(c *study.Crystal, e *study.Element, path *study.Path, refined int, scatter float64) (*profile, *ProfileResult, error) {
 	for {
-		p, err := newProfile(c, e, path, refined)
+		p, err := newProfile(c, e, path, refined, scatter)
 		if err != nil {
 			return nil, nil, err
 		}
@@ -202,55 +277,241 @@ func (p *profile) finer(numErr float64) int {
 // errorAtBest returns the numerical error at the multiplier that agrees best.
 func (p *profile) errorAtBest(c *Curve) (float64, error) {
 	lnM, _ := c.Lowest()
-	f := &p.fields[0]
-	if err := p.plan.Audit(f, diffusion.Job{Course: &p.course, LnM: lnM}); err != nil {
+	if err := p.audit(lnM); err != nil {
 		return 0, err
 	}
-	return p.numErr(f, p.fitTo(f.Cols).values), nil
+	return p.numErr(p.fitTo(p.columns(0))), nil
+}
+
+// byE returns the first and second derivative of ln G by the activation energy,
+// in mol/J, D in the middle of the law's calibrated range held:
+//
+//	ln G(E + d) = ln of the integral of D exp(-(d/R) (1/T - 1/Tmid)) dt,
+//
+// from central differences a standard deviation sigma wide.
+func (p *profile) byE(sigma float64) [2]float64 {
+	if sigma == 0 {
+		return [2]float64{}
+	}
+	law, h := &p.element.Law, p.path.History
+	middle := inverseMiddle(law)
+	if middle == 0 { // a law of unknown range: what it is known for is taken to be what it is used for
+		middle = 1 / standIn(law.Law, p.runs[0].course.LnG(), h.Life())
+	}
+	lnG := func(d float64) float64 {
+		moved := diffusion.Law{}
+		for _, a := range law.Law.Terms {
+			a.E += d / thermal.GasConstant
+			a.LnA += d / thermal.GasConstant * middle
+			moved.Terms = append(moved.Terms, a)
+		}
+		return moved.LnIntegral(h, 0, h.Life())
+	}
+	up, mid, down := lnG(sigma), lnG(0), lnG(-sigma)
+	if math.IsInf(mid, -1) {
+		return [2]float64{}
+	}
+	return [2]float64{(up - down) / (2 * sigma), (up - 2*mid + down) / (sigma * sigma)}
+}
+
+// inverseMiddle returns 1/T in the middle of the law's calibrated range of 1/T,
+// 1/K; 0 where the range is not known.
+func inverseMiddle(law *study.Law) float64 {
+	if law.TMin == 0 || law.TMax == 0 {
+		return 0
+	}
+	return (1/law.TMin + 1/law.TMax) / 2
 }
 
 // asItIs runs the path with D unchanged, measures the numerical error and
 // keeps what is to be shown.
 func (p *profile) asItIs() (*ProfileResult, error) {
-	f := &p.fields[0]
-	if err := p.plan.Audit(f, diffusion.Job{Course: &p.course}); err != nil {
+	if err := p.audit(0); err != nil {
 		return nil, err
 	}
-	fitted := p.fitTo(f.Cols)
+	at := p.fitTo(p.columns(0))
+	p.counted = p.spent(at)
+	edge, tilt, origin := p.lens.values(at.Bent)
+	a := p.amounts(at)
 	r := &ProfileResult{
 		Crystal: p.crystal, Element: p.element,
-		LnG:     p.course.LnG(),
-		NumErr:  p.numErr(f, fitted.values),
-		Seen:    combined(p.seen, fitted.values),
-		Centres: p.plan.Centres(),
-		Stats:   f.Stats,
+		Free:   p.freeFits(at),
+		LnG:    p.runs[0].course.LnG(),
+		NumErr: p.numErr(at),
+		At:     make([]float64, len(p.fit.Obs)),
+		Seen:   at.Model, Sigma: p.fit.Sigma, Residuals: at.Residuals,
+		Centres: p.plan().Centres(),
+		Stats:   p.runs[0].fields[0].Stats,
 	}
-	p.spent = fitted.spent
-	everywhere, err := traverse.NewWeights(p.plan.Faces(), p.crystal.Mirrored(p.element), p.element.Traverse.Spot, r.Centres)
+	p.element.Traverse.Place(r.At, origin, tilt)
+	spot := p.element.Traverse.Spot
+	spot.Width *= math.Cos(tilt)
+	everywhere, err := traverse.NewWeights(p.plan().Faces(), p.lens.mirrored, spot, r.Centres)
 	if err != nil {
 		return nil, err
 	}
 	r.Start, r.Final = make([]float64, len(r.Centres)), make([]float64, len(r.Centres))
-	everywhere.Apply(r.Start, combined(p.starts(), fitted.values))
-	everywhere.Apply(r.Final, combined(f.Cols, fitted.values))
-	for j, v := range p.free {
-		value := fitted.values[j]
-		if v.HasPrior {
-			value += v.Prior.Value
-		}
-		r.Free = append(r.Free, FreeFit{Name: v.Name, Value: value, Sigma: fitted.sigmas[j], HasPrior: v.HasPrior})
-	}
+	everywhere.Apply(r.Start, a.of(p.mix(p.starts(), edge)))
+	everywhere.Apply(r.Final, a.of(p.mix(p.columns(0), edge)))
 	r.StandIn = standIn(p.element.Law.Law, r.LnG, p.path.History.Life())
 	return r, nil
 }
 
-// starts returns the start columns of the plan.
-func (p *profile) starts() [][]float64 {
-	cols := make([][]float64, 1+len(p.free))
-	for j := range cols {
-		cols[j] = p.plan.Start(j)
+// freeFits names the fitted values.
+func (p *profile) freeFits(at least.Solution) []FreeFit {
+	var fits []FreeFit
+	unit := p.element.Unit
+	_, size := meanAndSize(p.element.Traverse)
+	for j, v := range p.free {
+		f := FreeFit{Name: v.Name, Value: at.Linear[j], Sigma: at.Sigma[j], Unit: unit, HasPrior: v.HasPrior}
+		switch {
+		case v.HasPrior:
+			f.Value += v.Prior.Value
+		case f.Sigma > unseen*size:
+			f.Sigma = math.Inf(1)
+		}
+		fits = append(fits, f)
 	}
-	return cols
+	if p.grey {
+		k := len(p.free)
+		fits = append(fits, FreeFit{Name: "scale", Value: at.Linear[k], Sigma: at.Sigma[k]},
+			FreeFit{Name: "offset", Value: at.Linear[k+1], Sigma: at.Sigma[k+1]})
+	}
+	edge, tilt, origin := p.lens.values(at.Bent)
+	add := func(n study.Nuisance, name string, value float64, unit string) {
+		if !n.Fixed() {
+			fits = append(fits, FreeFit{Name: name, Value: value, Unit: unit, HasPrior: !n.Ranged()})
+		}
+	}
+	add(p.lens.edge, "edge width", edge*1e6, "um")
+	add(p.lens.tilt, "tilt", tilt*180/math.Pi, "deg")
+	add(p.lens.origin, "origin", origin*1e6, "um")
+	return fits
+}
+
+// addScatter finds, for each traverse whose extra scatter is to be fitted, the
+// scatter with which its own best fit has a chi-square equal to its degrees of
+// freedom. It reports whether any was needed.
+func (w *weighing) addScatter() bool {
+	found := false
+	for n := range w.elements {
+		e := &w.elements[n]
+		if !e.element.Scatter {
+			continue
+		}
+		best, lnM := w.ownBest(n)
+		if best < 0 {
+			continue
+		}
+		p := w.paths[best].profiles[n]
+		e.scatter = p.scatter(lnM)
+		found = found || e.scatter > 0
+	}
+	return found
+}
+
+// scatter returns the extra scatter that makes chi-square at the multiplier
+// equal to the degrees of freedom; 0 if it is no larger without.
+func (p *profile) scatter(lnM float64) float64 {
+	if _, err := p.solveFor(context.Background(), []float64{lnM}); err != nil {
+		return 0
+	}
+	cols := p.columns(0)
+	degrees := float64(len(p.fit.Obs) - p.counted - 1)
+	excess := func(s float64) float64 {
+		p.fit.Sigma = widened(p.element.Traverse, s)
+		return p.fitTo(cols).ChiSq - degrees
+	}
+	defer func() { p.fit.Sigma = p.element.Traverse.Sigma }()
+	if degrees < 1 || !(excess(0) > 0) {
+		return 0
+	}
+	most := 0.0
+	for _, v := range p.fit.Obs {
+		most = math.Max(most, math.Abs(v))
+	}
+	s, err := numeric.Root(excess, 0, most, scatterResolution*most)
+	if err != nil {
+		return 0
+	}
+	return s
+}
+
+// scatterResolution is how finely extra scatter is found, as a part of the
+// largest value.
+const scatterResolution = 1e-6
+
+// ownBest returns the path along which element n fits best, and the multiplier
+// there; -1 if every path is barred.
+func (w *weighing) ownBest(n int) (path int, lnM float64) {
+	path = -1
+	best := math.Inf(1)
+	for i := range w.paths {
+		if len(w.paths[i].curves) == 0 {
+			continue
+		}
+		if x, chi := w.paths[i].curves[n].Lowest(); chi < best {
+			path, lnM, best = i, x, chi
+		}
+	}
+	return path, lnM
+}
+
+// judge turns curves into verdicts.
+func (w *weighing) judge() (*Result, error) {
+	r := &Result{Study: w.study, Laws: w.laws, Paths: make([]PathResult, len(w.paths))}
+	for n := range w.elements {
+		own, err := w.examine(n)
+		if err != nil {
+			return nil, err
+		}
+		r.Own = append(r.Own, own)
+		for i := range w.paths {
+			if curves := w.paths[i].curves; len(curves) > 0 {
+				curves[n].Best = own.ChiSq
+			}
+		}
+	}
+	for i := range w.paths {
+		r.Paths[i] = w.verdict(i)
+	}
+	return r, nil
+}
+
+// examine looks at the own best fit of element n.
+func (w *weighing) examine(n int) (OwnBest, error) {
+	e := w.elements[n]
+	own := OwnBest{Crystal: e.crystal, Element: e.element, Scatter: e.scatter, Outlier: -1}
+	i, lnM := w.ownBest(n)
+	if i < 0 {
+		return own, nil
+	}
+	p := w.paths[i].profiles[n]
+	solutions, err := p.solveFor(context.Background(), []float64{lnM})
+	if err != nil {
+		return own, err
+	}
+	own.Path, own.Shift = p.path, math.Exp(lnM)
+	own.Degrees = len(p.fit.Obs) - p.counted - 1
+	own.examine(solutions[0], w.study.Confidence)
+	own.knowing(&w.paths[i].curves[n], w.study.Confidence)
+	return own, nil
+}
+
+// verdict judges path i.
+func (w *weighing) verdict(i int) PathResult {
+	path, p := &w.study.Paths[i], &w.paths[i]
+	r := PathResult{Path: path, Barred: p.barred, Life: path.History.Eruption(), Profiles: p.results}
+	for _, t := range w.study.Thresholds {
+		r.Above = append(r.Above, path.History.TimeAbove(t.Temp))
+	}
+	if len(p.barred) > 0 {
+		r.Outcome.Verdict, r.Notes = Barred, p.barred
+		return r
+	}
+	Judge(&r.Outcome, p.curves, w.laws, w.study.Confidence)
+	r.Notes = r.Outcome.notes()
+	return r
 }
 
 // standIn returns the one constant temperature, in K, at which the law gives

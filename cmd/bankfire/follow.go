@@ -144,7 +144,7 @@ func courseSummary(c *paths.Course) followed {
 			Crystal: e.Crystal.Name, Element: e.Element.Name, Unit: e.Element.Unit,
 			PositionM: e.Centres, Start: e.Start, Final: e.Final, NumErr: e.NumErr,
 			G: math.Exp(e.LnG), Method: "steps",
-			Legs: []legDone{}, Snapshots: []snapshot{}, FreeValues: freeValues(e.Free, e.Element.Unit), Notes: filled(e.Notes),
+			Legs: []legDone{}, Snapshots: []snapshot{}, FreeValues: freeValues(e.Free), Notes: filled(e.Notes),
 		}
 		for _, l := range e.Legs {
 			f.Legs = append(f.Legs, legDone{l.Name, l.Duration, l.Share})
@@ -177,7 +177,7 @@ func writeElement(text *bytes.Buffer, e *paths.ElementCourse) {
 		fmt.Fprintf(text, "The profile knows more of the path than G: %s.\n", e.WhyG)
 	}
 	for _, f := range e.Free {
-		fmt.Fprintf(text, "fitted %s: %s\n", f.Name, withError(f.Value, f.Sigma, e.Element.Unit))
+		fmt.Fprintf(text, "fitted %s: %s\n", f.Name, withError(f.Value, f.Sigma, f.Unit))
 	}
 	for _, note := range e.Notes {
 		fmt.Fprintf(text, "note: %s\n", note)

@@ -61,7 +61,7 @@ func smallResult(t *testing.T) *paths.Result {
 	p.Outcome.Profiles = slices.Clone(p.Outcome.Profiles)
 	p.Profiles = slices.Clone(p.Profiles)
 	p.Profiles[0].Free = slices.Clone(p.Profiles[0].Free)
-	return &paths.Result{Study: &s, Paths: []paths.PathResult{p}}
+	return &paths.Result{Study: &s, Own: slices.Clone(r.Own), Paths: []paths.PathResult{p}}
 }
 
 // notRun makes the first path of the result one that was not run; its verdict does not

@@ -15,7 +15,7 @@ import (
 func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
-		Inputs: []input{}, Laws: lawsUsed(r.Study), Paths: []weighedPath{}, Families: []struct{}{},
+		Inputs: []input{}, Laws: lawsUsed(r.Study), Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
 		Notes: portable(r.Study), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {
@@ -32,6 +32,9 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 		Name: p.Path.Name, Verdict: p.Outcome.Verdict.String(), finding: newFinding(&p.Outcome.Finding, p.Notes),
 		LifeS: p.Life, Above: []timeAbove{}, Profiles: []weighedProfile{},
 	}
+	if len(p.Profiles) > 0 {
+		out.WithLaws = newWithLaws(&p.Outcome.WithLaws)
+	}
 	for i, t := range r.Study.Thresholds {
 		out.Above = append(out.Above, timeAbove{t.Name, t.Temp, p.Above[i]})
 	}
@@ -41,7 +44,7 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 			elementKey: elementKey{q.Crystal.Name, q.Element.Name}, Verdict: p.Outcome.Profiles[i].Verdict.String(),
 			finding: newFinding(&p.Outcome.Profiles[i], q.Notes),
 			G:       bounded(math.Exp(q.LnG)), StandIn: positive(q.StandIn), NumErr: q.NumErr,
-			FreeValues: freeValues(q.Free, q.Element.Unit),
+			FreeValues: freeValues(q.Free),
 		})
 	}
 	return out
@@ -50,14 +53,49 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 func newFinding(f *paths.Finding, notes []string) finding {
 	return finding{
 		ShiftFactor: bounded(f.Shift), Shift68: ends(f.Shift68), Shift95: ends(f.Shift95),
-		Tail: bounded(f.Tail), Misfit: bounded(f.Misfit), Points: f.Points, Degrees: f.Degrees, Notes: filled(notes),
+		Tail: bounded(f.Tail), Misfit: bounded(f.Misfit), AboveBest: bounded(math.Max(f.Above, 0)), Points: f.Points, Degrees: f.Degrees, Notes: filled(notes),
 	}
 }
 
-func freeValues(free []paths.FreeFit, unit string) []fittedFree {
+func freeValues(free []paths.FreeFit) []fittedFree {
 	out := []fittedFree{}
 	for _, f := range free {
-		out = append(out, fittedFree{f.Name, f.Value, bounded(f.Sigma), unit, f.HasPrior})
+		out = append(out, fittedFree{f.Name, f.Value, known(f.Sigma), f.Unit, f.HasPrior})
+	}
+	return out
+}
+
+// known returns a standard deviation; nil where there is none.
+func known(sigma float64) *float64 {
+	if sigma == 0 {
+		return nil
+	}
+	return bounded(sigma)
+}
+
+func ownBests(r *paths.Result) []ownBest {
+	out := []ownBest{}
+	for i := range r.Own {
+		o := &r.Own[i]
+		own := ownBest{
+			elementKey: elementKey{o.Crystal.Name, o.Element.Name}, ShiftFactor: positive(o.Shift), Misfit: o.ChiSq,
+			Degrees: o.Degrees, Tail: o.Tail, Runs: o.Runs, Scatter: o.Scatter, Findings: filled(o.Findings),
+		}
+		if o.Path != nil {
+			own.Path = o.Path.Name
+		}
+		if o.Outlier >= 0 {
+			own.OutlierLine = &o.Element.Traverse.Line[o.Outlier]
+		}
+		out = append(out, own)
+	}
+	return out
+}
+
+func newWithLaws(l *paths.LawsAllowed) *withLaws {
+	out := &withLaws{Verdict: l.Verdict.String(), Tail: l.Tail, Misfit: l.Misfit, Leaning: []lawLeaning{}}
+	for _, on := range l.Leaning {
+		out.Leaning = append(out.Leaning, lawLeaning{on.Law, on.Sigma})
 	}
 	return out
 }

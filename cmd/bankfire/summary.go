@@ -17,6 +17,7 @@ type weighing struct {
 	Seed       *uint64       `json:"seed"`       // of what was drawn at random
 	Inputs     []input       `json:"inputs"`     // the study, then the files it names
 	Laws       []lawUsed     `json:"laws"`
+	Own        []ownBest     `json:"own_best"` // one a measured element
 	Paths      []weighedPath `json:"paths"`
 	Families   []struct{}    `json:"families"`
 	Notes      []string      `json:"notes"`
@@ -55,7 +56,8 @@ type finding struct {
 	Shift68     [2]*float64 `json:"shift_68"`
 	Shift95     [2]*float64 `json:"shift_95"`
 	Tail        *float64    `json:"tail"`
-	Misfit      *float64    `json:"misfit"` // chi-square
+	Misfit      *float64    `json:"misfit"`            // chi-square
+	AboveBest   *float64    `json:"misfit_above_best"` // above that of the own best fits
 	Points      int         `json:"points"`
 	Degrees     int         `json:"degrees_of_freedom"`
 	Notes       []string    `json:"notes"`
@@ -65,9 +67,37 @@ type weighedPath struct {
 	Name    string `json:"name"`
 	Verdict string `json:"verdict"`
 	finding
+	WithLaws *withLaws        `json:"with_law_errors"` // null if the path was not run
 	LifeS    float64          `json:"life_s"`
 	Above    []timeAbove      `json:"time_above"`
 	Profiles []weighedProfile `json:"profiles"`
+}
+
+// ownBest is the best fit of one profile by itself.
+type ownBest struct {
+	elementKey
+	Path        string   `json:"path"` // along which it was found, "" if no path was run
+	ShiftFactor *float64 `json:"shift_factor"`
+	Misfit      float64  `json:"misfit"`
+	Degrees     int      `json:"degrees_of_freedom"`
+	Tail        float64  `json:"tail"`
+	Runs        float64  `json:"runs_probability"`
+	Scatter     float64  `json:"extra_scatter"` // in the element's unit
+	OutlierLine *int     `json:"outlier_line"`
+	Findings    []string `json:"findings"`
+}
+
+// withLaws is the verdict with the laws' own errors allowed for.
+type withLaws struct {
+	Verdict string       `json:"verdict"`
+	Tail    float64      `json:"tail"`
+	Misfit  float64      `json:"misfit"`
+	Leaning []lawLeaning `json:"leaning"`
+}
+
+type lawLeaning struct {
+	Law   string  `json:"law"`
+	Sigma float64 `json:"sigma"`
 }
 
 type timeAbove struct {

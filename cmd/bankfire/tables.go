@@ -47,7 +47,7 @@ func pathsTable(w io.Writer, r *paths.Result) error {
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
-		row := []string{p.Path.Name, o.Verdict.String(), cell(o.Tail), cell(o.Misfit), strconv.Itoa(o.Points),
+		row := []string{p.Path.Name, o.Verdict.String(), cell(o.Tail), cell(o.Misfit), cell(o.Above), strconv.Itoa(o.Points),
 			strconv.Itoa(o.Degrees), cell(o.Shift)}
 		for _, x := range [][2]float64{o.Shift68, o.Shift95} {
 			row = append(row, openEnd(x[0]), openEnd(x[1]))
@@ -66,7 +66,7 @@ func pathsTable(w io.Writer, r *paths.Result) error {
 }
 
 func pathsHead(r *paths.Result) []string {
-	head := []string{"path", "verdict", "tail", "misfit", "points", "degrees_of_freedom", "shift_factor",
+	head := []string{"path", "verdict", "tail", "misfit", "misfit_above_best", "points", "degrees_of_freedom", "shift_factor",
 		"shift_68_low", "shift_68_high", "shift_95_low", "shift_95_high", "life [yr]"}
 	for _, t := range r.Study.Thresholds {
 		head = append(head, "above "+t.Name+" [yr]")
@@ -84,7 +84,10 @@ func pathsHead(r *paths.Result) []string {
 func profileHead(q *paths.ProfileResult) []string {
 	head := []string{"verdict", "misfit", "shift_factor", "stand-in temperature [C]", "sqrt(2 G) [um]"}
 	for _, f := range q.Free {
-		unit := " [" + q.Element.Unit + "]"
+		unit := ""
+		if f.Unit != "" {
+			unit = " [" + f.Unit + "]"
+		}
 		head = append(head, f.Name+unit, f.Name+" sigma"+unit)
 	}
 	return append(head, "numerical error [sigma]")
@@ -125,9 +128,9 @@ func pointsTable(w io.Writer, r *paths.Result) error {
 	table.row("crystal", "element", "path", "line", "from centre [um]", "unit", "measured", "sigma", "modelled", "residual [sigma]")
 	for q, path := range profiles(r) {
 		t := q.Element.Traverse
-		for k, x := range t.Position {
+		for k, x := range q.At {
 			table.row(q.Crystal.Name, q.Element.Name, path, strconv.Itoa(t.Line[k]), cell(x*1e6), q.Element.Unit,
-				cell(t.Value[k]), cell(t.Sigma[k]), cell(q.Seen[k]), cell((t.Value[k]-q.Seen[k])/t.Sigma[k]))
+				cell(t.Value[k]), cell(q.Sigma[k]), cell(q.Seen[k]), cell(q.Residuals[k]))
 		}
 	}
 	return table.end()

@@ -15,48 +15,56 @@ import (
 // figureNames returns the names of the figures of a weighing, one for each
 // measured element.
 func figureNames(r *paths.Result) []string {
-	profiles := r.Paths[0].Profiles
-	if len(profiles) == 1 {
+	if len(r.Own) == 1 {
 		return []string{"weigh.png"}
 	}
-	names := make([]string, len(profiles))
-	for i := range profiles {
+	names := make([]string, len(r.Own))
+	for i := range names {
 		names[i] = fmt.Sprintf("weigh-%d.png", i+1)
 	}
 	return names
 }
 
-// weighingFigure draws measured element n with every path.
+// weighingFigure draws measured element n with every path. Where the points and
+// the start are depends on what was fitted: they are those of the best path.
 func weighingFigure(r *paths.Result, n int) ([]byte, error) {
-	first := &r.Paths[0].Profiles[n]
-	e := first.Element
+	own := &r.Own[n]
 	f := figure.Weighing{
 		Title:    r.Study.Title,
-		Subject:  strings.Join(strings.Fields(e.Name+" in "+first.Crystal.Mineral+" "+first.Crystal.Name), " "),
-		Quantity: e.Name, Unit: e.Unit,
-	}
-	t := e.Traverse
-	for i := range t.Value {
-		f.Points = append(f.Points, figure.Point{At: t.Position[i], Value: t.Value[i], Sigma: t.Sigma[i]})
+		Subject:  strings.Join(strings.Fields(own.Element.Name+" in "+own.Crystal.Mineral+" "+own.Crystal.Name), " "),
+		Quantity: own.Element.Name, Unit: own.Element.Unit,
 	}
 	for _, threshold := range r.Study.Thresholds {
 		f.Thresholds = append(f.Thresholds, figure.Threshold{Name: threshold.Name, Temp: threshold.Temp})
 	}
-	best := bestPath(r)
-	for i := range r.Paths {
-		p := &r.Paths[i]
-		q := &p.Profiles[n]
-		if i == best {
-			f.Start = figure.Line{At: q.Centres, Value: q.Start}
+	if best := bestPath(r); best != nil {
+		q, t := &best.Profiles[n], own.Element.Traverse
+		f.Start = figure.Line{At: q.Centres, Value: q.Start}
+		for i := range t.Value {
+			f.Points = append(f.Points, figure.Point{At: q.At[i], Value: t.Value[i], Sigma: q.Sigma[i]})
 		}
-		f.Paths = append(f.Paths, figure.Path{
-			Name: p.Path.Name, Verdict: verdictInWords(&p.Outcome), Reproduces: p.Outcome.Verdict == paths.Reproduces,
-			Profile: figure.Line{At: q.Centres, Value: q.Final}, Model: q.Seen, Duration: p.Path.History.Duration(curveTemps(p.Path.History)),
-		})
+	}
+	for i := range r.Paths {
+		f.Paths = append(f.Paths, drawnPath(&r.Paths[i], n))
 	}
 	var picture bytes.Buffer
 	err := figure.Draw(&picture, &f)
 	return picture.Bytes(), err
+}
+
+// drawnPath is a path as it is drawn for element n; one that was not run has no
+// profile.
+func drawnPath(p *paths.PathResult, n int) figure.Path {
+	h := p.Path.History
+	drawn := figure.Path{
+		Name: p.Path.Name, Verdict: verdictInWords(p), Reproduces: p.Outcome.Verdict == paths.Reproduces,
+		Duration: h.Duration(curveTemps(h)),
+	}
+	if len(p.Profiles) > 0 {
+		q := &p.Profiles[n]
+		drawn.Profile, drawn.Model = figure.Line{At: q.Centres, Value: q.Final}, q.Seen
+	}
+	return drawn
 }
 
 // curvePoints is how many temperatures a drawn duration curve has, beside those
@@ -81,13 +89,13 @@ func curveTemps(h *thermal.History) []float64 {
 	return slices.Compact(temps)
 }
 
-// bestPath returns the path of least misfit, whose fitted plateaux make the
-// start that is drawn.
-func bestPath(r *paths.Result) int {
-	best := 0
+// bestPath returns the path of least misfit; nil if none was run.
+func bestPath(r *paths.Result) *paths.PathResult {
+	var best *paths.PathResult
 	for i := range r.Paths {
-		if r.Paths[i].Outcome.Misfit < r.Paths[best].Outcome.Misfit {
-			best = i
+		p := &r.Paths[i]
+		if len(p.Profiles) > 0 && (best == nil || p.Outcome.Misfit < best.Outcome.Misfit) {
+			best = p
 		}
 	}
 	return best

@@ -24,8 +24,10 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	for i, note := range notes {
 		fmt.Fprintf(&text, "[%d] %s\n", i+1, note)
 	}
-	fmt.Fprintf(&text, "\nVerdicts at %s confidence; D factor: what D would have to be multiplied by, with its 95 %% interval.\n"+
-		"A year is 365.25 days. %s\n", percent(r.Study.Confidence), care)
+	fmt.Fprintf(&text, "\nVerdicts at %s confidence. D factor: what D would have to be multiplied by, with its 95 %% interval.\n"+
+		"Above best: chi-square above that of each profile's own best fit. With law errors: the verdict where the laws\n"+
+		"may deviate within their errors, and by how many sigma they would have to. A year is 365.25 days.\n%s\n",
+		percent(r.Study.Confidence), care)
 	return text
 }
 
@@ -33,7 +35,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 // column refers to.
 func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	table := newTable()
-	head := []string{"path", "verdict", "D factor", "95 %", "tail", "chi-square", "life"}
+	head := []string{"path", "verdict", "D factor", "95 %", "tail", "chi-square", "above best", "with law errors", "life"}
 	for _, t := range r.Study.Thresholds {
 		head = append(head, "above "+t.Name)
 	}
@@ -42,8 +44,8 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
-		row := []string{p.Path.Name, o.Verdict.String(), number(o.Shift), intervalText(o.Shift95), tailText(o.Tail),
-			fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees), timeText(p.Life)}
+		row := append([]string{p.Path.Name, o.Verdict.String()}, findingCells(o)...)
+		row = append(row, timeText(p.Life))
 		for _, above := range p.Above {
 			row = append(row, timeText(above))
 		}
@@ -55,6 +57,27 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	}
 	table.writeTo(w)
 	return notes
+}
+
+// findingCells are the cells of a path's row that a barred path does not have.
+func findingCells(o *paths.Outcome) []string {
+	if o.Verdict == paths.Barred {
+		return make([]string, 6)
+	}
+	return []string{number(o.Shift), intervalText(o.Shift95), tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
+		number(math.Max(o.Above, 0)), leaningText(&o.WithLaws)}
+}
+
+// leaningText is the verdict with the laws' errors allowed for.
+func leaningText(l *paths.LawsAllowed) string {
+	if len(l.Leaning) == 0 {
+		return "laws without errors"
+	}
+	words := make([]string, len(l.Leaning))
+	for i, on := range l.Leaning {
+		words[i] = fmt.Sprintf("%.1f", on.Sigma)
+	}
+	return l.Verdict.String() + ", " + strings.Join(words, " and ") + " sigma"
 }
 
 // numbered is a list of notes without repeats.
@@ -84,6 +107,16 @@ func writeSentences(w io.Writer, r *paths.Result) {
 			fit = append(fit, quoted(r.Paths[i].Path.Name))
 		}
 	}
+	for i := range r.Own {
+		own := &r.Own[i]
+		for _, finding := range own.Findings {
+			fmt.Fprintf(w, "%s in %s: %s.\n", own.Element.Name, own.Crystal.Name, finding)
+		}
+		if own.Scatter > 0 {
+			fmt.Fprintf(w, "%s in %s: an extra scatter of %s %s was added to the errors.\n",
+				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Unit)
+		}
+	}
 	switch n := len(r.Paths); {
 	case len(fit) == 0:
 		fmt.Fprintf(w, "None of the %d paths reproduces what was measured.\n", n)
@@ -96,7 +129,7 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	}
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
-			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(o))
+			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
 		}
 	}
 	fmt.Fprintln(w)
@@ -105,38 +138,76 @@ func writeSentences(w io.Writer, r *paths.Result) {
 // writeFits writes, for each measured element, what the traverse decided on
 // each path and how much diffusion the path did.
 func writeFits(w io.Writer, r *paths.Result) {
-	for n := range r.Paths[0].Profiles {
-		first := &r.Paths[0].Profiles[n]
-		fmt.Fprintf(w, "%s in %s, fitted for each path:\n\n", first.Element.Name, first.Crystal.Name)
-		fits := newTable()
-		head := []string{"path"}
-		for _, f := range first.Free {
-			head = append(head, f.Name)
-		}
-		fits.row(append(head, "sqrt(2 G)", "same G at", "numerical error")...)
+	for n := range r.Own {
+		var fits *table
 		for i := range r.Paths {
-			q := &r.Paths[i].Profiles[n]
-			row := []string{r.Paths[i].Path.Name}
-			for _, f := range q.Free {
-				row = append(row, withError(f.Value, f.Sigma, q.Element.Unit))
+			if len(r.Paths[i].Profiles) == 0 {
+				continue
 			}
-			fits.row(append(row, number(math.Sqrt2*math.Exp(q.LnG/2)*1e6)+" um", celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")...)
+			q := &r.Paths[i].Profiles[n]
+			if fits == nil {
+				fmt.Fprintf(w, "%s in %s, fitted for each path:\n\n", q.Element.Name, q.Crystal.Name)
+				fits = newTable()
+				fits.row(fitHead(q)...)
+			}
+			fits.row(append([]string{r.Paths[i].Path.Name}, fitCells(q)...)...)
 		}
-		fits.writeTo(w)
-		fmt.Fprintln(w)
+		if fits != nil {
+			fits.writeTo(w)
+			fmt.Fprintln(w)
+		}
 	}
 }
 
-// verdictInWords is the verdict with how far the path misses.
-func verdictInWords(o *paths.Outcome) string {
-	switch o.Verdict {
+func fitHead(q *paths.ProfileResult) []string {
+	head := []string{"path"}
+	for _, f := range q.Free {
+		head = append(head, f.Name)
+	}
+	return append(head, "sqrt(2 G)", "same G at", "numerical error")
+}
+
+func fitCells(q *paths.ProfileResult) []string {
+	var cells []string
+	for _, f := range q.Free {
+		cells = append(cells, withError(f.Value, f.Sigma, f.Unit))
+	}
+	return append(cells, number(math.Sqrt2*math.Exp(q.LnG/2)*1e6)+" um", celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")
+}
+
+// verdictInWords is the verdict with how far the path misses, or why it was
+// not run.
+func verdictInWords(p *paths.PathResult) string {
+	switch o := &p.Outcome; o.Verdict {
 	case paths.TooSharp:
 		return fmt.Sprintf("too sharp: needs %s x more diffusion", number(o.Shift))
 	case paths.TooSmooth:
 		return fmt.Sprintf("too smooth: needs %s x less diffusion", number(1/o.Shift))
 	case paths.WrongShape:
 		return "of wrong shape: no amount of diffusion along it fits"
+	case paths.AtOdds:
+		return oddsInWords(p)
+	case paths.Barred:
+		return "barred: " + list(p.Barred)
 	default:
-		return "reproduces"
+		return o.Verdict.String()
 	}
+}
+
+// oddsInWords names the two profiles that ask for the least and the most
+// diffusion, and the ratio between them.
+func oddsInWords(p *paths.PathResult) string {
+	least, most := 0, 0
+	for i, f := range p.Outcome.Profiles {
+		if f.Shift < p.Outcome.Profiles[least].Shift {
+			least = i
+		}
+		if f.Shift > p.Outcome.Profiles[most].Shift {
+			most = i
+		}
+	}
+	name := func(i int) string { return p.Profiles[i].Element.Name + " in " + p.Profiles[i].Crystal.Name }
+	return fmt.Sprintf("at odds: %s asks for %s times as much diffusion, %s for %s times, a ratio of %s",
+		name(least), number(p.Outcome.Profiles[least].Shift), name(most), number(p.Outcome.Profiles[most].Shift),
+		number(p.Outcome.Profiles[most].Shift/p.Outcome.Profiles[least].Shift))
 }
