@@ -94,7 +94,11 @@ func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
 
 // addEdge adds what the grid does, in a diffusion integral of g, to the jump at
 // a zone boundary with an edge of the given width. Where D differs between the
-// two sides, the faster one moves what the slower one lets through.
+// two sides, the faster one moves what the slower one lets through. There an
+// edge that cells resolve has a fault of its own: the flux through it should at
+// once be its slope times the geometric mean of both D (Carslaw and Jaeger 1959,
+// section 2.15, for two media), and on the grid begins with their harmonic mean
+// until a cell has taken part.
 func (p *Plan) addEdge(err, start []float64, face int, edge, g float64) {
 	a, b := face-1, face
 	jump := start[b] - start[a]
@@ -109,9 +113,9 @@ func (p *Plan) addEdge(err, start []float64, face int, edge, g float64) {
 	err[b] += jump * 2 * ra / (ra + rb) * lagAt(db, b)
 	h := (p.width(a) + p.width(b)) / 2
 	slope := jump / h * math.Min(1, edge/edgesPerWidth/h)
-	short := slope * (ra*rb - 2*da*db/(da+db)) * g
-	err[a] -= short / p.width(a) * math.Pow(1+da*g/(h*h), -1.5)
-	err[b] += short / p.width(b) * math.Pow(1+db*g/(h*h), -1.5)
+	lacks := slope * (ra*rb - 2*da*db/(da+db)) * g
+	err[a] -= lacks / p.width(a) * math.Pow(1+da*g/(h*h), -1.5)
+	err[b] += lacks / p.width(b) * math.Pow(1+db*g/(h*h), -1.5)
 }
 
 // appendEnds appends the values of a column at both ends of the crystal, on the

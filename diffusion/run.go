@@ -20,8 +20,8 @@ type Stats struct {
 // Field is the outcome of a run. Its memory is reused by the next run into it.
 type Field struct {
 	Cols [][]float64 // cell means: the answer, then its derivative by each free value
-	// StepErr and CellErr estimate, cell by cell, what half the steps and half
-	// the cells did to each column (solution less truth). Filled by Audit.
+	// StepErr and CellErr estimate, cell by cell, what the steps and the cells
+	// did to each column: solution less truth, times safety. Filled by Audit.
 	StepErr, CellErr [][]float64
 	Stats            Stats
 

@@ -11,7 +11,9 @@ import (
 // and damped. Then each is larger than the one before by a tenth, so that
 // every wavelength has died away before the steps are long for it (growth of
 // 0.15 overshoots by 1e-11 of the range, 0.1 by less than 1e-12); the last are
-// equal, because what is seen at the end was made by them.
+// equal, because what is seen at the end was made by them. Under a rim that moves
+// the last ones shrink again and are damped too, or waves that the rim has made
+// between cells while the steps were long would still be seen.
 const (
 	firstFraction  = 1e-7 // of G, each of the damped steps
 	defaultDamped  = 8    // steps replaced by two backward-Euler half steps each
