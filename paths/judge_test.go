@@ -130,7 +130,7 @@ func TestJointVerdict(t *testing.T) {
 	}{
 		// the weights add up: the sum of two bowls of sigma 0.5 is one of 0.5/sqrt 2
 		{"agree", agree, Finding{Verdict: Reproduces, Shift: math.E, Misfit: 20 + 30 + 4 + 4, Points: 53, Degrees: 50}, []Verdict{Reproduces, Reproduces}},
-		{"differ", differ, Finding{Verdict: WrongShape, Shift: 1, Misfit: 20 + 30 + 100 + 100, Points: 53, Degrees: 50}, []Verdict{TooSmooth, TooSharp}},
+		{"differ", differ, Finding{Verdict: AtOdds, Shift: 1, Misfit: 20 + 30 + 100 + 100, Points: 53, Degrees: 50}, []Verdict{TooSmooth, TooSharp}},
 	} {
 		t.Run(test.name, func(t *testing.T) {
 			var o Outcome
