@@ -144,31 +144,3 @@ func TestCourseDoesNotAllocate(t *testing.T) {
 		t.Errorf("%g allocations a course, want none", allocated)
 	}
 }
-
-// TestSpeed holds the limits on the time of a node and step, as parts of that in
-// the reference kernel, measured in turns in this process.
-func TestSpeed(t *testing.T) {
-	if testing.Short() {
-		t.Skip("measures time")
-	}
-	p, o := benchProblem()
-	plan := newPlan(t, p, o)
-	for _, test := range []struct {
-		jobs  int
-		limit float64
-	}{{1, 0.56}, {4, 0.35}, {8, 0.35}} {
-		t.Run(fmt.Sprintf("jobs=%d", test.jobs), func(t *testing.T) {
-			jobs, dst := benchJobs(t, plan, test.jobs), make([]Field, test.jobs)
-			best := math.Inf(1)
-			for range 5 { // a busy machine can spoil a measurement, not improve it
-				if best = math.Min(best, kernelRatio(plan, dst, jobs, 3)); best <= test.limit {
-					break
-				}
-			}
-			t.Logf("%.3f of the reference kernel, limit %g", best, test.limit)
-			if !(best <= test.limit) {
-				t.Errorf("%.3f of the reference kernel, limit %g", best, test.limit)
-			}
-		})
-	}
-}
