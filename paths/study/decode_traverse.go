@@ -17,10 +17,11 @@ func (d *decoder) traverse(n *node, c *Crystal, e *Element, u *units) {
 		return
 	}
 	before := d.faults
-	d.keys(n, "file", "position", "zero", "origin", "tilt", "value", "unit", "error", "scatter", "below", "spot", "window", "skip")
+	d.keys(n, "file", "position", "zero", "origin", "tilt", "value", "unit", "error", "scatter", "overlap", "below", "spot", "window", "skip")
 	e.Tilt = d.nuisance(n.get("tilt"), tiltLatitude())
 	e.Origin = d.nuisance(n.get("origin"), originLatitude())
 	e.Scatter = d.scatter(n.get("scatter"))
+	independent := d.independent(n.get("overlap"))
 	o := d.options(n, c)
 	o.Beyond = e.Origin.outwards(o.Zero)
 	file := d.need(n, "file", `name the file, such as file = "ti.csv"`)
@@ -36,6 +37,7 @@ func (d *decoder) traverse(n *node, c *Crystal, e *Element, u *units) {
 		d.unread(n, err)
 		return
 	}
+	t.Independent = independent
 	d.component(n.get("value"), t, u, o.Value)
 	t.Notes = d.named(file, label, t.Notes)
 	d.notes = append(d.notes, t.Notes...)
@@ -86,6 +88,19 @@ func (d *decoder) scatter(n *node) bool {
 		d.report(n, "no scatter that can be stated", remedy)
 	}
 	return true
+}
+
+// independent reads whether the errors of overlapping spots have nothing in
+// common.
+func (d *decoder) independent(n *node) bool {
+	const remedy = `write overlap = "independent" for counting errors, or "shared" for those of an uneven sample`
+	if !d.is(n, textNode, remedy) {
+		return false
+	}
+	if n.text != "independent" && n.text != "shared" {
+		d.report(n, "no way in which errors overlap", remedy)
+	}
+	return n.text == "independent"
 }
 
 // below reads what becomes of values below detection.

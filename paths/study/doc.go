@@ -22,6 +22,10 @@
 // range: edge = "0.5 um", "0.8 +- 0.2 um", "free 0..2 um"; so are the tilt and the
 // origin of a traverse.
 //
+// Where spots overlap, the errors of neighbouring points are taken to be those of
+// an uneven sample and so to be correlated, unless the traverse says overlap =
+// "independent", as counting errors are.
+//
 // document.go turns the text into a tree of nodes that know their line and
 // column; each decode file reads one table of that tree; problem.go turns the
 // result into what the solver takes. To add a key, add it to the list of known

@@ -83,6 +83,9 @@ func TestNuisanceMiddle(t *testing.T) {
 }
 
 func TestScatter(t *testing.T) {
+	if e, _ := measured(t, `spot =`, `overlap = "independent", spot =`); !e.Traverse.Independent {
+		t.Error("errors not independent")
+	}
 	if e, _ := measured(t, `spot =`, `scatter = "free", spot =`); !e.Scatter {
 		t.Error("no scatter")
 	}

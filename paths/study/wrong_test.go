@@ -402,6 +402,7 @@ func wrongTraverses() []wrong {
 		{"origin free, not said where", `spot =`, `origin = @"free", spot =`, "", "crystal.element.traverse.origin", "not between which ends", "free -2..2 um"},
 		{"origin out of the crystal", `spot =`, `origin = "-5 um", spot =`, "q1.csv:2:0", "position", "beyond the rim at 120 um", "sign of the origin"},
 		{"origin with no room", `file = "q1.csv"`, `origin = "free -9..-5 um", file = @"q1.csv"`, "", "crystal.element.traverse.file", "no origin in its range", "sign of the range"},
+		{"overlap unknown", `spot =`, `overlap = @"none", spot =`, "", "crystal.element.traverse.overlap", "no way in which errors overlap", `"independent"`},
 		{"scatter stated", `spot =`, `scatter = @"2 ppm", spot =`, "", "crystal.element.traverse.scatter", "no scatter that can be stated", `"free"`},
 		{"below detection undeclared", `"q1.csv"`, `"below.csv"`, "below.csv:3:4", "Ti [ppm]", "below detection, and the study does not say", `below = "skip"`},
 		{"below detection, mistyped", `spot =`, `below = @"limits", spot =`, "", "crystal.element.traverse.below", "no way to take values below", `did you mean "limit"?`},
