@@ -44,6 +44,8 @@ type ProfileResult struct {
 	LnG     float64   // ln of the diffusion integral, m2
 	StandIn float64   // the constant temperature that gives the same G over the whole path, K; 0 where nothing diffuses
 	NumErr  float64   // largest numerical error at the data points, in sigma, of the path as it is and at its shift factor
+	Origin  float64   // by which the file's zero is off in the fit, m; see traverse.Traverse.Place
+	Tilt    float64   // of the line in the fit, rad
 	At      []float64 // where the points are in the fit, m from the crystal's centre
 	Seen    []float64 // what the instrument would have shown at the points, in the element's unit
 	Sigma   []float64 // the points' standard deviations, extra scatter included
@@ -338,8 +340,9 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		Free:   p.freeFits(at),
 		LnG:    p.runs[0].course.LnG(),
 		NumErr: p.numErr(at),
-		At:     make([]float64, len(p.fit.Obs)),
-		Seen:   at.Model, Sigma: p.fit.Sigma, Residuals: at.Residuals,
+		Origin: origin, Tilt: tilt,
+		At:   make([]float64, len(p.fit.Obs)),
+		Seen: at.Model, Sigma: p.fit.Sigma, Residuals: at.Residuals,
 		Centres: p.plan().Centres(),
 		Stats:   p.runs[0].fields[0].Stats,
 	}
