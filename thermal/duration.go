@@ -44,13 +44,20 @@ func stretch(a, b, temp, until, crossing float64) (from, to float64) {
 	return 0, 0
 }
 
+// above is the stretch between rows i and i+1 in which the temperature is above temp, s from the start of the table, no
+// later than until.
+func (r *Rows) above(i int, temp, until float64) (from, to float64) {
+	a, b, dt := r.Temp[i], r.Temp[i+1], r.Time[i+1]-r.Time[i]
+	from, to = stretch(a, b, temp, dt, dt*((temp-a)/(b-a)))
+	return r.Time[i] + from, min(r.Time[i]+to, until)
+}
+
 // timeAbove is the time above temp until the given time, s.
 func (r *Rows) timeAbove(temp, until float64) float64 {
 	sum := 0.0
 	for i := 0; i+1 < len(r.Time) && r.Time[i] < until; i++ {
-		a, b, dt := r.Temp[i], r.Temp[i+1], r.Time[i+1]-r.Time[i]
-		from, to := stretch(a, b, temp, dt, dt*((temp-a)/(b-a)))
-		sum += max(0, min(to, until-r.Time[i])-from)
+		from, to := r.above(i, temp, until)
+		sum += max(0, to-from)
 	}
 	return sum
 }

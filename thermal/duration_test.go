@@ -60,8 +60,18 @@ func TestTimeAboveAgainstBisection(t *testing.T) {
 	}
 }
 
-// bisected is the time above temp along a leg by samples that crowd towards its start, and bisection between them.
+// bisected is the time above temp along a leg, as hotParts finds it.
 func bisected(l *Leg, temp float64) float64 {
+	sum := 0.0
+	for _, part := range hotParts(l, temp) {
+		sum += part[1] - part[0]
+	}
+	return sum
+}
+
+// hotParts is the stretches of a leg above temp, start and end, by samples that crowd towards its start, and bisection
+// between them. What is above throughout may come in several pieces.
+func hotParts(l *Leg, temp float64) [][2]float64 {
 	times := []float64{}
 	for i := range 4001 {
 		x := float64(i) / 4000
@@ -70,13 +80,20 @@ func bisected(l *Leg, temp float64) float64 {
 	if l.Kind == Table { // samples at the rows, since temperature may jump there
 		times = l.Rows.Time
 	}
-	sum := 0.0
+	var parts [][2]float64
+	add := func(from, to float64) {
+		if last := len(parts) - 1; last >= 0 && parts[last][1] == from && l.Kind != Table {
+			parts[last][1] = to
+			return
+		}
+		parts = append(parts, [2]float64{from, to})
+	}
 	for i := range len(times) - 1 {
 		a, b := times[i], times[i+1]
 		hotA, hotB := l.At(a) > temp, l.before(b) > temp
 		switch {
 		case hotA && hotB:
-			sum += b - a
+			add(a, b)
 		case hotA != hotB:
 			lo, hi := a, b
 			for range 200 {
@@ -87,13 +104,13 @@ func bisected(l *Leg, temp float64) float64 {
 				}
 			}
 			if hotA {
-				sum += lo - a
+				add(a, lo)
 			} else {
-				sum += b - lo
+				add(lo, b)
 			}
 		}
 	}
-	return sum
+	return parts
 }
 
 // TestDurationFalls: the duration curve falls from the life of the path to 0 and never rises.

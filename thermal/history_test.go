@@ -185,12 +185,15 @@ func TestMoment(t *testing.T) {
 		{m: Moment{Kind: AfterStart, Offset: 150 * (1 + 1e-15)}, want: 150},
 		{m: Moment{Kind: BeforeEruption, Offset: -3}, want: 107},
 		{m: Moment{Kind: BeforeEruption, Offset: 3}, want: 113},
+		{m: Moment{Kind: BeforeEnd}, want: 150},
+		{m: Moment{Kind: BeforeEnd, Offset: -30}, want: 120},
 		{m: Moment{Kind: StartOf, Name: "wake"}, want: 100},
 		{m: Moment{Kind: EndOf, Name: "wake", Offset: 2}, want: 112},
 		{m: Moment{Kind: EndOf, Name: "wake", Offset: -2}, want: 108},
 		{m: Moment{Kind: AfterStart, Offset: 2 * Year, Text: "2 yr after start"}, problem: `"2 yr after start": 2 yr after the end of the path; want a moment within its 2.5 min`},
 		{m: Moment{Kind: StartOf, Name: "store", Offset: -1, Text: "1 s before start of store"}, problem: "1 s before the start of the path"},
 		{m: Moment{Kind: EndOf, Name: "wale", Text: "end of wale"}, problem: `"end of wale": the path has no leg "wale"; the nearest is "wake"`},
+		{m: Moment{Kind: EndOf, Name: strings.Repeat("w", 65), Text: "end of w"}, problem: `; the first that it has is "store"`},
 		{m: Moment{Kind: Added, Name: "mantle"}, problem: "zone"},
 		{m: Moment{Kind: AfterStart, Offset: math.NaN()}, problem: "not a finite time"},
 	}
@@ -270,6 +273,7 @@ func TestNoAllocation(t *testing.T) {
 		lo, hi := h.Range()
 		breaks = h.Breaks(breaks[:0])
 		sum += h.LnArrhenius(3e4, 0, 0, half) + h.LnArrhenius(-3e3, 1, half, h.Life()) + h.TimeAbove(1000) + before + after + lo + hi
+		sum += math.Exp(h.LnArrheniusAbove(3e4, 0, 1000))
 		at, err := h.Moment(Moment{Kind: AfterStart, Offset: half})
 		if err != nil {
 			t.Fatal(err)

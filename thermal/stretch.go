@@ -46,9 +46,8 @@ func (s *stretches) add(from, to float64) {
 // addRows adds the part of a table until the given time; the table begins at from on the path.
 func (s *stretches) addRows(r *Rows, from, temp, until float64) {
 	for i := 0; i+1 < len(r.Time) && r.Time[i] < until; i++ {
-		a, b, dt := r.Temp[i], r.Temp[i+1], r.Time[i+1]-r.Time[i]
-		x, y := stretch(a, b, temp, dt, dt*((temp-a)/(b-a)))
-		s.add(from+r.Time[i]+x, from+math.Min(r.Time[i]+y, until))
+		x, y := r.above(i, temp, until)
+		s.add(from+x, from+y)
 	}
 }
 
