@@ -41,11 +41,11 @@ func ExampleWeigh() {
 		return
 	}
 	for _, p := range r.Paths {
-		fmt.Printf("%s: %s, D factor %.1f\n", p.Path.Name, p.Outcome.Verdict, p.Outcome.Shift)
+		fmt.Printf("%s: %s, shift factor %.1f\n", p.Path.Name, p.Outcome.Verdict, p.Outcome.Shift)
 	}
 	// Output:
-	// 750 C for 800 yr: reproduces, D factor 1.0
-	// 690 C for 800 yr: too sharp, D factor 7.6
+	// 750 C for 800 yr: reproduces, shift factor 1.0
+	// 690 C for 800 yr: too sharp, shift factor 7.6
 }
 
 // held is a path at one temperature, K, for so many years.
@@ -69,6 +69,6 @@ func ExampleJudge() {
 	}
 	var o paths.Outcome
 	paths.Judge(&o, []paths.Curve{c}, nil, 0.95)
-	fmt.Printf("%s, D factor %.1f (%.1f to %.1f)\n", o.Verdict, o.Shift, o.Shift95[0], o.Shift95[1])
-	// Output: too sharp, D factor 10.0 (8.2 to 12.2)
+	fmt.Printf("%s, shift factor %.1f (%.1f to %.1f)\n", o.Verdict, o.Shift, o.Shift95[0], o.Shift95[1])
+	// Output: too sharp, shift factor 10.0 (8.2 to 12.2)
 }

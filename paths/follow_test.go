@@ -199,7 +199,7 @@ func TestFollowWhereNothingMoves(t *testing.T) {
 	}
 	r := weighed(t, s).Paths[0]
 	if o := r.Outcome; o.Verdict != WrongShape || o.Shift95 != [2]float64{0, math.Inf(1)} || r.Profiles[0].StandIn != 0 {
-		t.Errorf("%s, D factor %g, stand-in temperature %g", o.Verdict, o.Shift95, r.Profiles[0].StandIn)
+		t.Errorf("%s, shift factor %g, stand-in temperature %g", o.Verdict, o.Shift95, r.Profiles[0].StandIn)
 	}
 }
 

@@ -52,8 +52,8 @@ type Outcome struct {
 type LawsAllowed struct {
 	Verdict Verdict
 	Tail    float64
-	Misfit  float64   // chi-square, that of the deviations included
-	Leaning []Leaning // on each law, in the order given
+	Misfit  float64   // chi-square with the deviations fitted, and their own added
+	Leaning []Leaning // the smallest deviations with which the path passes, in the order of the laws; nil if none do
 }
 
 // Leaning is by how many standard deviations, of ln D and E together, a path
@@ -87,11 +87,29 @@ func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 	if dst.Verdict == WrongShape && len(cs) > 1 && !slices.ContainsFunc(dst.Profiles, Finding.hopeless) {
 		dst.Verdict = AtOdds
 	}
-	l := lean(cs, laws)
-	dst.WithLaws = LawsAllowed{Verdict: dst.Verdict, Misfit: l.chiSq, Tail: Tail(l.chiSq, dst.Degrees), Leaning: l.laws}
-	if dst.WithLaws.Tail >= 1-confidence {
-		dst.WithLaws.Verdict = Reproduces
+	dst.WithLaws = allow(cs, laws, &dst.Finding, confidence)
+}
+
+// allow judges the path with the laws' own errors. It passes if the smallest
+// deviations with which it does are no larger than they would be by chance at
+// the confidence, one degree of freedom a law.
+func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) LawsAllowed {
+	out := LawsAllowed{Verdict: joint.Verdict}
+	if joint.Degrees < 1 || math.IsNaN(joint.Misfit) {
+		return out
 	}
+	misfit, z := lean(cs, laws, Critical(confidence, joint.Degrees))
+	out.Misfit, out.Tail = misfit, Tail(misfit, joint.Degrees)
+	if z == nil {
+		return out
+	}
+	for k, law := range laws {
+		out.Leaning = append(out.Leaning, Leaning{law.Key, math.Hypot(z[2*k], z[2*k+1])})
+	}
+	if len(laws) > 0 && dot(z, z) <= Critical(confidence, len(laws)) {
+		out.Verdict = Reproduces
+	}
+	return out
 }
 
 // hopeless reports whether no amount of diffusion passes.

@@ -14,44 +14,78 @@ type LawPrior struct {
 	LnD, E float64
 }
 
-// leaning is the path with the laws allowed to deviate: chi-square with the
-// deviations' own priors, and each law's deviations in standard deviations.
-type leaning struct {
-	chiSq float64
-	laws  []Leaning // root of the sum of squares of both deviations
+// lean looks for deviations of the laws, z of ln D and E each in units of their
+// standard deviations, that bring the path to the data:
+//
+//	misfit(z) = sum over profiles of chi-square(shift),
+//	shift = sD zD + ByE[0] sE zE + ByE[1] (sE zE)^2 / 2.
+//
+// It returns the least of misfit + sum of z^2, the deviations taken as values
+// with a prior, and the smallest deviations with which the path alone passes,
+// misfit(z) <= pass: nil if none do.
+func lean(cs []Curve, laws []LawPrior, pass float64) (least float64, smallest []float64) {
+	l := leaning{cs, laws}
+	_, least = l.settle(1)
+	none := make([]float64, 2*len(laws))
+	if l.misfit(none) <= pass {
+		return least, none
+	}
+	// the lower the price of a deviation, the closer the path comes to the data
+	if smallest, _ = l.settle(cheapest); !(l.misfit(smallest) <= pass) {
+		return least, nil
+	}
+	low, high := math.Log(cheapest), -math.Log(cheapest)
+	for range priceSteps {
+		mid := (low + high) / 2
+		if z, _ := l.settle(math.Exp(mid)); l.misfit(z) <= pass {
+			smallest, low = z, mid
+		} else {
+			high = mid
+		}
+	}
+	return least, smallest
 }
 
-// lean minimises, over the deviations z of ln D and E of each law in units of
-// their standard deviations,
-//
-//	sum over profiles of chi-square(shift) + sum of z^2,
-//	shift = sD zD + ByE[0] sE zE + ByE[1] (sE zE)^2 / 2,
-//
-// from no deviation and from those that bring each profile to its own best.
-func lean(cs []Curve, laws []LawPrior) leaning {
-	objective := func(z []float64) float64 {
-		sum := 0.0
-		for i := range cs {
-			sum += cs[i].At(cs[i].shift(z, laws))
-		}
-		for _, v := range z {
-			sum += v * v
-		}
-		return sum
+// How far the price of a deviation is lowered, and how finely it is found.
+const (
+	cheapest   = 1e-8
+	priceSteps = 30
+)
+
+// leaning is the curves with the laws that they rest on.
+type leaning struct {
+	cs   []Curve
+	laws []LawPrior
+}
+
+func (l *leaning) misfit(z []float64) float64 {
+	sum := 0.0
+	for i := range l.cs {
+		sum += l.cs[i].At(l.cs[i].shift(z, l.laws))
 	}
-	z := make([]float64, 2*len(laws))
-	best := objective(z)
-	for _, start := range leanStarts(cs, laws) {
-		found, value := descend(objective, start)
-		if value < best {
-			z, best = found, value
+	return sum
+}
+
+// settle minimises misfit(z) + price sum of z^2, from no deviation and from
+// those that bring each profile to its own best.
+func (l *leaning) settle(price float64) (z []float64, value float64) {
+	objective := func(z []float64) float64 { return l.misfit(z) + price*dot(z, z) }
+	z = make([]float64, 2*len(l.laws))
+	value = objective(z)
+	for _, start := range leanStarts(l.cs, l.laws) {
+		if found, v := descend(objective, start); v < value {
+			z, value = found, v
 		}
 	}
-	out := leaning{chiSq: best}
-	for k, law := range laws {
-		out.laws = append(out.laws, Leaning{law.Key, math.Hypot(z[2*k], z[2*k+1])})
+	return z, value
+}
+
+func dot(a, b []float64) float64 {
+	sum := 0.0
+	for i := range a {
+		sum += float64(a[i] * b[i])
 	}
-	return out
+	return sum
 }
 
 // shift returns by how much the laws' deviations move the profile along LnM.

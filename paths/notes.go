@@ -13,7 +13,7 @@ import (
 func (o *Outcome) notes() []string {
 	var notes []string
 	if o.Ranges > 1 {
-		notes = append(notes, fmt.Sprintf("%d separate amounts of diffusion agree about equally well; the D factor is that of the best", o.Ranges))
+		notes = append(notes, fmt.Sprintf("%d separate amounts of diffusion agree about equally well; the shift factor is that of the best", o.Ranges))
 	}
 	return notes
 }
@@ -35,8 +35,10 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 		switch {
 		case math.IsInf(f.Sigma, 1):
 			notes = append(notes, fmt.Sprintf("the data do not see %s apart from the other free values", f.Name))
-		case f.Unit == r.Element.Unit && f.Value < -2*f.Sigma:
-			notes = append(notes, fmt.Sprintf("the fitted %s is negative, %.3g %s", f.Name, f.Value, r.Element.Unit))
+		case f.AtEnd && f.Unit == r.Element.Unit:
+			notes = append(notes, fmt.Sprintf("the fit would have %s below zero, where it is held: check zone widths, origin and background", f.Name))
+		case f.AtEnd:
+			notes = append(notes, fmt.Sprintf("%s is at the end of its range", f.Name))
 		}
 	}
 	if reach := r.reach(); reach > farReach {

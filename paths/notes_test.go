@@ -48,10 +48,10 @@ func TestNotesOfAProfile(t *testing.T) {
 	element.Law.Row = row
 	r.Element = &element
 	r.NumErr = 0.4
-	r.Free = []FreeFit{{Name: "core", Value: 40, Sigma: math.Inf(1)}, {Name: "mantle", Value: -9, Sigma: 1, Unit: element.Unit}}
+	r.Free = []FreeFit{{Name: "core", Value: 40, Sigma: math.Inf(1)}, {Name: "mantle", AtEnd: true, Unit: element.Unit}}
 	r.LnG = math.Log(square(r.Crystal.Size()))
 	notes := strings.Join(r.notes(&path), "\n")
-	for _, want := range append(row.Cautions(), "the data do not see core", "the fitted mantle is negative, -9 ppm",
+	for _, want := range append(row.Cautions(), "the data do not see core", "the fit would have mantle below zero",
 		"numerical error reaches 0.4 sigma", "diffusion has reached 141 %") {
 		if !strings.Contains(notes, want) {
 			t.Errorf("notes\n%s\nlack %q", notes, want)

@@ -37,7 +37,7 @@ func implied(t *testing.T, law study.Law, temp float64) float64 {
 	s.Crystals[0].Elements[0].Law = law
 	o := weighed(t, s).Paths[0].Outcome
 	if o.Shift95[0] == 0 || math.IsInf(o.Shift95[1], 1) {
-		t.Fatalf("D factor from %g to %g: the traverse bounds nothing", o.Shift95[0], o.Shift95[1])
+		t.Fatalf("shift factor from %g to %g: the traverse bounds nothing", o.Shift95[0], o.Shift95[1])
 	}
 	return life * o.Shift
 }

@@ -33,9 +33,11 @@ type profile struct {
 	runs    []variant // one an edge width between which the lens interpolates
 	lens    *lens     // nil without a traverse
 	fit     least.Problem
-	grey    bool // a scale and an offset are two more linear values
-	refined int  // how often the plan is finer than the usual one
-	counted int  // values that the points alone decide, at the path as it is
+	grey    bool    // a scale and an offset are two more linear values
+	refined int     // how often the plan is finer than the usual one
+	size    float64 // of the largest datum, error and all
+	points  int     // data that have a say, at the path as it is
+	counted int     // values that the points alone decide, at the path as it is
 }
 
 // variant is the problem with one width of the start's edges.
@@ -115,9 +117,10 @@ func (p *profile) setFit(scatter float64) error {
 	t := p.element.Traverse
 	p.fit = least.Problem{Obs: t.Value, Sigma: widened(t, scatter), Limit: t.Limit, White: overlapWhite(t), Bent: p.lens.bent()}
 	p.grey = t.Grey
-	mean, size := meanAndSize(t)
+	var mean float64
+	mean, p.size = meanAndSize(t)
 	for _, v := range p.free {
-		prior := least.Prior{Mean: mean, Sigma: wide * size}
+		prior := least.Prior{Mean: mean, Sigma: wide * p.size}
 		if v.HasPrior { // counted from its base, the middle of its prior
 			if t.Grey {
 				return p.element.Place.Error("", "relative values have no unit, so a plateau known with an error cannot be tied to them",
@@ -159,12 +162,12 @@ func (p *profile) open() int {
 
 // spent returns how many degrees of freedom the linear values without a prior
 // of the study's take: each the part of the variance of its wide prior that the
-// data have taken away, rounded in all.
+// data have taken away, rounded in all. One that is held at zero takes none.
 func (p *profile) spent(at least.Solution) int {
 	sum := 0.0
 	for j, prior := range p.fit.Linear {
 		switch {
-		case j < len(p.free) && p.free[j].HasPrior:
+		case j < len(p.free) && (p.free[j].HasPrior || p.isPinned(at, j)):
 		case math.IsInf(prior.Sigma, 1):
 			sum++
 		default:
@@ -174,6 +177,21 @@ func (p *profile) spent(at least.Solution) int {
 	}
 	return int(math.Round(sum))
 }
+
+// telling counts the data that have a say: all but the limits that the model
+// keeps clear of by three standard deviations, which add nothing to chi-square
+// whatever the truth is.
+func telling(p *least.Problem, at least.Solution) int {
+	n := len(p.Obs)
+	for i, limit := range p.Limit {
+		if limit && p.Obs[i]-at.Model[i] >= farBelow*p.Sigma[i] {
+			n--
+		}
+	}
+	return n
+}
+
+const farBelow = 3
 
 // widened returns the data's standard deviations with scatter added.
 func widened(t *traverse.Traverse, scatter float64) []float64 {
@@ -259,11 +277,13 @@ func (p *profile) starts() [][][]float64 {
 	return cols
 }
 
-// fitTo fits the values that are open to the data, for columns of cell means.
+// fitTo fits the values that are open to the data, for columns of cell means. A
+// concentration that would come out negative is held at zero, the most negative
+// one first.
 func (p *profile) fitTo(cols [][][]float64) least.Solution {
 	v := p.lens.look(cols)
 	n := 1 + len(p.free)
-	return p.fit.Solve(func(dst [][]float64, bent []float64) {
+	model := func(dst [][]float64, bent []float64) {
 		v.columns(dst[:n], bent)
 		if p.grey { // value = offset + scale (base + sum of free x columns)
 			copy(dst[n], dst[0])
@@ -272,13 +292,44 @@ func (p *profile) fitTo(cols [][][]float64) least.Solution {
 				dst[n+1][i] = 1
 			}
 		}
-	})
+	}
+	problem := p.fit
+	at := problem.Solve(model)
+	for range p.free {
+		j := p.mostNegative(at)
+		if j < 0 {
+			break
+		}
+		problem.Linear = slices.Clone(problem.Linear)
+		problem.Linear[j] = least.Prior{Sigma: pinned * p.size}
+		at = problem.Solve(model)
+	}
+	return at
 }
+
+// pinned is the standard deviation, as a part of the largest datum, with which
+// a concentration is held at zero.
+const pinned = 1e-9
+
+// mostNegative returns the free concentration that is furthest below zero; -1
+// if none is. Relative values may be negative.
+func (p *profile) mostNegative(at least.Solution) int {
+	worst, value := -1, 0.0
+	for j, v := range p.free {
+		if !v.HasPrior && !p.element.Traverse.Grey && at.Linear[j] < value && !p.isPinned(at, j) {
+			worst, value = j, at.Linear[j]
+		}
+	}
+	return worst
+}
+
+// isPinned reports whether free value j was held at zero.
+func (p *profile) isPinned(at least.Solution, j int) bool { return at.Sigma[j] <= 2*pinned*p.size }
 
 // curve scans the profile's chi-square over the multipliers.
 func (p *profile) curve(ctx context.Context) (Curve, error) {
 	chiSq := p.sampler(ctx)
-	c, err := scan(len(p.fit.Obs), p.counted, chiSq)
+	c, err := scan(p.points, p.counted, chiSq)
 	if err != nil {
 		return c, err
 	}

@@ -65,6 +65,7 @@ type FreeFit struct {
 	Value, Sigma float64 // Sigma is +Inf where the data do not see it, 0 where it is not known
 	Unit         string
 	HasPrior     bool
+	AtEnd        bool // it is at the end of the range in which it may lie
 }
 
 // Weigh runs every path of the study against every traverse and judges it.
@@ -332,7 +333,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		return nil, err
 	}
 	at := p.fitTo(p.columns(0))
-	p.counted = p.spent(at)
+	p.points, p.counted = telling(&p.fit, at), p.spent(at)
 	edge, tilt, origin := p.lens.values(at.Bent)
 	a := p.amounts(at)
 	r := &ProfileResult{
@@ -364,13 +365,14 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 func (p *profile) freeFits(at least.Solution) []FreeFit {
 	var fits []FreeFit
 	unit := p.element.Unit
-	_, size := meanAndSize(p.element.Traverse)
 	for j, v := range p.free {
 		f := FreeFit{Name: v.Name, Value: at.Linear[j], Sigma: at.Sigma[j], Unit: unit, HasPrior: v.HasPrior}
 		switch {
 		case v.HasPrior:
 			f.Value += v.Prior.Value
-		case f.Sigma > unseen*size:
+		case p.isPinned(at, j):
+			f.Value, f.Sigma, f.AtEnd = 0, 0, true
+		case f.Sigma > unseen*p.size:
 			f.Sigma = math.Inf(1)
 		}
 		fits = append(fits, f)
@@ -381,16 +383,21 @@ func (p *profile) freeFits(at least.Solution) []FreeFit {
 			FreeFit{Name: "offset", Value: at.Linear[k+1], Sigma: at.Sigma[k+1]})
 	}
 	edge, tilt, origin := p.lens.values(at.Bent)
-	add := func(n study.Nuisance, name string, value float64, unit string) {
+	add := func(n study.Nuisance, name string, value, scale float64, unit string) {
 		if !n.Fixed() {
-			fits = append(fits, FreeFit{Name: name, Value: value, Unit: unit, HasPrior: !n.Ranged()})
+			margin := endMargin * (n.Hi - n.Lo)
+			fits = append(fits, FreeFit{Name: name, Value: value * scale, Unit: unit, HasPrior: !n.Ranged(),
+				AtEnd: n.Ranged() && (value <= n.Lo+margin || value >= n.Hi-margin)})
 		}
 	}
-	add(p.lens.edge, "edge width", edge*1e6, "um")
-	add(p.lens.tilt, "tilt", tilt*180/math.Pi, "deg")
-	add(p.lens.origin, "origin", origin*1e6, "um")
+	add(p.lens.edge, "edge width", edge, 1e6, "um")
+	add(p.lens.tilt, "tilt", tilt, 180/math.Pi, "deg")
+	add(p.lens.origin, "origin", origin, 1e6, "um")
 	return fits
 }
+
+// endMargin is the part of a range within which a value is at its end.
+const endMargin = 1e-3
 
 // addScatter finds, for each traverse whose extra scatter is to be fitted, the
 // scatter with which its own best fit has a chi-square equal to its degrees of
@@ -420,7 +427,7 @@ func (p *profile) scatter(lnM float64) float64 {
 		return 0
 	}
 	cols := p.columns(0)
-	degrees := float64(len(p.fit.Obs) - p.counted - 1)
+	degrees := float64(p.points - p.counted - 1)
 	excess := func(s float64) float64 {
 		p.fit.Sigma = widened(p.element.Traverse, s)
 		return p.fitTo(cols).ChiSq - degrees
@@ -495,7 +502,7 @@ func (w *weighing) examine(n int) (OwnBest, error) {
 		return own, err
 	}
 	own.Path, own.Shift = p.path, math.Exp(lnM)
-	own.Degrees = len(p.fit.Obs) - p.counted - 1
+	own.Degrees = p.points - p.counted - 1
 	own.examine(solutions[0], w.study.Confidence)
 	own.knowing(&w.paths[i].curves[n], w.study.Confidence)
 	return own, nil

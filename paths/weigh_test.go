@@ -229,17 +229,17 @@ func TestWeighAtTheLimitsOfKnowing(t *testing.T) {
 	p := couple{core: 40, mantle: 90, reach: 0.05 * um, spot: 1 * um, sigma: 1, points: 41, window: 6 * um}
 	r := weighed(t, p.study(nil, p.path(t, "as it was", 1), p.path(t, "a thousand times as long", 1e-3)))
 	if o := &r.Paths[0].Outcome; o.Verdict != Reproduces || o.Shift95[0] != 0 || !(o.Shift95[1] > 1) || math.IsInf(o.Shift95[1], 1) {
-		t.Errorf("as it was: %s, D factor from %g to %g, want an upper limit above 1 alone", o.Verdict, o.Shift95[0], o.Shift95[1])
+		t.Errorf("as it was: %s, shift factor from %g to %g, want an upper limit above 1 alone", o.Verdict, o.Shift95[0], o.Shift95[1])
 	}
 	if o := &r.Paths[1].Outcome; o.Verdict != TooSmooth || o.Shift95[0] != 0 || !(o.Shift95[1] < 1) {
-		t.Errorf("too long: %s, D factor from %g to %g, want an upper limit below 1 alone", o.Verdict, o.Shift95[0], o.Shift95[1])
+		t.Errorf("too long: %s, shift factor from %g to %g, want an upper limit below 1 alone", o.Verdict, o.Shift95[0], o.Shift95[1])
 	}
 	near(t, "both limits are one of G", r.Paths[1].Outcome.Shift95[1]/r.Paths[0].Outcome.Shift95[1], 1e-3, 1e-5)
 	// a traverse that sees one plateau only
 	p = couple{core: 40, mantle: 40, reach: 1 * um, spot: 1 * um, sigma: 1, points: 41, window: 6 * um}
 	r = weighed(t, p.study(nil, p.path(t, "any", 1)))
 	if o := &r.Paths[0].Outcome; o.Verdict != Reproduces || o.Shift95 != [2]float64{0, math.Inf(1)} {
-		t.Errorf("no contrast: %s, D factor from %g to %g, want no information", o.Verdict, o.Shift95[0], o.Shift95[1])
+		t.Errorf("no contrast: %s, shift factor from %g to %g, want no information", o.Verdict, o.Shift95[0], o.Shift95[1])
 	}
 }
 

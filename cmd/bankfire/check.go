@@ -11,6 +11,7 @@ import (
 
 	"bankfire/paths/study"
 	"bankfire/paths/traverse"
+	"bankfire/thermal"
 )
 
 // checkCommand is `bankfire check`.
@@ -78,7 +79,7 @@ func writePathsRead(w io.Writer, s *study.Study) error {
 		if reasons := slices.Concat(p.Barred, broken); len(reasons) > 0 {
 			barred = "barred: " + strings.Join(reasons, "; ")
 		}
-		table.row(p.Name, timeText(p.Eruption), celsius(lo), celsius(hi), barred)
+		table.row(p.Name, thermal.DurationText(p.Eruption), celsius(lo), celsius(hi), barred)
 	}
 	table.writeTo(w)
 	fmt.Fprintln(w)

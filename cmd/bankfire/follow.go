@@ -160,7 +160,7 @@ func courseSummary(c *paths.Course) followed {
 // courseText is the report for people.
 func courseText(c *paths.Course) bytes.Buffer {
 	var text bytes.Buffer
-	fmt.Fprintf(&text, "path %s, %s from start to end\n", quoted(c.Path.Name), timeText(c.Path.History.Life()))
+	fmt.Fprintf(&text, "path %s, %s from start to end\n", quoted(c.Path.Name), thermal.DurationText(c.Path.History.Life()))
 	for i := range c.Elements {
 		writeElement(&text, &c.Elements[i])
 	}
@@ -186,7 +186,7 @@ func writeElement(text *bytes.Buffer, e *paths.ElementCourse) {
 	legs := newTable()
 	legs.row("leg", "duration", "part of G")
 	for _, l := range e.Legs {
-		legs.row(l.Name, timeText(l.Duration), percent(l.Share))
+		legs.row(l.Name, thermal.DurationText(l.Duration), percent(l.Share))
 	}
 	legs.writeTo(text)
 	writeProfiles(text, e)
@@ -202,7 +202,7 @@ func writeProfiles(text *bytes.Buffer, e *paths.ElementCourse) {
 	table := newTable()
 	head := []string{"from centre [um]", "start"}
 	for _, s := range e.Snapshots {
-		head = append(head, "at "+timeText(s.Time))
+		head = append(head, "at "+thermal.DurationText(s.Time))
 	}
 	table.row(append(head, "end")...)
 	every := max(1, len(e.Centres)/shownCells)

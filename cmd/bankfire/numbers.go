@@ -12,10 +12,14 @@ import (
 // number prints x with three digits, without an exponent where people would
 // not use one.
 func number(x float64) string {
-	if a := math.Abs(x); a >= 1e5 || a < 1e-3 && a > 0 {
+	if a := math.Abs(x); a >= 1e6 || a < 1e-3 && a > 0 {
 		return strconv.FormatFloat(x, 'e', 2, 64)
 	}
-	return strings.TrimSuffix(trimmed(strconv.FormatFloat(x, 'f', decimals(x, 3), 64)), ".")
+	three, err := strconv.ParseFloat(strconv.FormatFloat(x, 'e', 2, 64), 64)
+	if err != nil { // not a number
+		return strconv.FormatFloat(x, 'f', -1, 64)
+	}
+	return trimmed(strconv.FormatFloat(three, 'f', decimals(three, 3), 64))
 }
 
 // tailText prints a probability; below a thousandth nobody should read digits.
@@ -37,10 +41,10 @@ func decimals(x float64, digits int) int {
 	return max(0, digits-1-int(math.Floor(math.Log10(math.Abs(x)))))
 }
 
-// trimmed returns a decimal number without the zeros at its end.
+// trimmed returns a decimal number without the zeros, or the point, at its end.
 func trimmed(s string) string {
 	if strings.Contains(s, ".") {
-		s = strings.TrimRight(s, "0")
+		s = strings.TrimSuffix(strings.TrimRight(s, "0"), ".")
 	}
 	return s
 }
@@ -70,27 +74,6 @@ func intervalText(x [2]float64) string {
 		return "< " + number(x[1])
 	}
 	return "not bounded"
-}
-
-// timeText prints a time in the unit that suits it.
-func timeText(s float64) string {
-	units := []struct {
-		size float64
-		name string
-	}{
-		{1e6 * thermal.Year, "Myr"}, {1e4 * thermal.Year, "kyr"}, {thermal.Year, "yr"},
-		{thermal.Day, "days"}, {3600, "h"}, {60, "min"},
-	}
-	for _, u := range units {
-		if s >= u.size {
-			size := u.size
-			if u.name == "kyr" {
-				size = 1e3 * thermal.Year
-			}
-			return number(s/size) + " " + u.name
-		}
-	}
-	return number(s) + " s"
 }
 
 func celsius(temp float64) string {

@@ -60,7 +60,7 @@ func newFinding(f *paths.Finding, notes []string) finding {
 func freeValues(free []paths.FreeFit) []fittedFree {
 	out := []fittedFree{}
 	for _, f := range free {
-		out = append(out, fittedFree{f.Name, f.Value, known(f.Sigma), f.Unit, f.HasPrior})
+		out = append(out, fittedFree{f.Name, f.Value, known(f.Sigma), f.Unit, f.HasPrior, f.AtEnd})
 	}
 	return out
 }
@@ -97,6 +97,7 @@ func newWithLaws(l *paths.LawsAllowed) *withLaws {
 	for _, on := range l.Leaning {
 		out.Leaning = append(out.Leaning, lawLeaning{on.Law, on.Sigma})
 	}
+	out.Passes = l.Leaning != nil
 	return out
 }
 

@@ -92,7 +92,8 @@ type withLaws struct {
 	Verdict string       `json:"verdict"`
 	Tail    float64      `json:"tail"`
 	Misfit  float64      `json:"misfit"`
-	Leaning []lawLeaning `json:"leaning"`
+	Passes  bool         `json:"passes_with_some_error"`
+	Leaning []lawLeaning `json:"leaning"` // the smallest with which it passes
 }
 
 type lawLeaning struct {
@@ -122,4 +123,5 @@ type fittedFree struct {
 	Sigma *float64 `json:"sigma"` // null where the data do not see the value
 	Unit  string   `json:"unit"`
 	Prior bool     `json:"has_prior"`
+	AtEnd bool     `json:"at_end_of_range"`
 }

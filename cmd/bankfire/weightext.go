@@ -8,6 +8,7 @@ import (
 	"strings"
 
 	"bankfire/paths"
+	"bankfire/thermal"
 )
 
 // care is the caution that every result carries.
@@ -24,9 +25,12 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	for i, note := range notes {
 		fmt.Fprintf(&text, "[%d] %s\n", i+1, note)
 	}
-	fmt.Fprintf(&text, "\nVerdicts at %s confidence. D factor: what D would have to be multiplied by, with its 95 %% interval.\n"+
-		"Above best: chi-square above that of each profile's own best fit. With law errors: the verdict where the laws\n"+
-		"may deviate within their errors, and by how many sigma they would have to. A year is 365.25 days.\n%s\n",
+	for _, note := range portable(r.Study) {
+		fmt.Fprintf(&text, "note: %s\n", note)
+	}
+	fmt.Fprintf(&text, "\nVerdicts at %s confidence. Shift factor: what D would have to be multiplied by to agree best, with its 95 %%\n"+
+		"interval. Above best: chi-square above that of each profile's own best fit. Law off by: the smallest error of the\n"+
+		"law, in its sigma, with which the path would pass. bankfire help verdicts explains all. A year is 365.25 days.\n%s\n",
 		percent(r.Study.Confidence), care)
 	return text
 }
@@ -35,7 +39,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 // column refers to.
 func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	table := newTable()
-	head := []string{"path", "verdict", "D factor", "95 %", "tail", "chi-square", "above best", "with law errors", "life"}
+	head := []string{"path", "verdict", "shift factor", "tail", "chi-square", "above best", "law off by", "life"}
 	for _, t := range r.Study.Thresholds {
 		head = append(head, "above "+t.Name)
 	}
@@ -45,11 +49,14 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 		p := &r.Paths[i]
 		o := &p.Outcome
 		row := append([]string{p.Path.Name, o.Verdict.String()}, findingCells(o)...)
-		row = append(row, timeText(p.Life))
+		row = append(row, thermal.DurationText(p.Life))
 		for _, above := range p.Above {
-			row = append(row, timeText(above))
+			row = append(row, thermal.DurationText(above))
 		}
-		marks := notes.marks(p.Notes)
+		marks := ""
+		if p.Outcome.Verdict != paths.Barred { // its reasons stand in the sentences
+			marks = notes.marks(p.Notes)
+		}
 		for j := range p.Profiles {
 			marks += notes.marks(p.Profiles[j].Notes)
 		}
@@ -62,22 +69,26 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 // findingCells are the cells of a path's row that a barred path does not have.
 func findingCells(o *paths.Outcome) []string {
 	if o.Verdict == paths.Barred {
-		return make([]string, 6)
+		return make([]string, 5)
 	}
-	return []string{number(o.Shift), intervalText(o.Shift95), tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
+	return []string{number(o.Shift) + " (" + intervalText(o.Shift95) + ")", tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
 		number(math.Max(o.Above, 0)), leaningText(&o.WithLaws)}
 }
 
-// leaningText is the verdict with the laws' errors allowed for.
+// leaningText says by how much the laws would have to be off.
 func leaningText(l *paths.LawsAllowed) string {
-	if len(l.Leaning) == 0 {
-		return "laws without errors"
+	if l.Leaning == nil {
+		return "no error helps"
 	}
-	words := make([]string, len(l.Leaning))
-	for i, on := range l.Leaning {
-		words[i] = fmt.Sprintf("%.1f", on.Sigma)
+	var words []string
+	for _, on := range l.Leaning {
+		text := fmt.Sprintf("%.1f sigma", on.Sigma)
+		if len(l.Leaning) > 1 {
+			text += " (" + on.Law + ")"
+		}
+		words = append(words, text)
 	}
-	return l.Verdict.String() + ", " + strings.Join(words, " and ") + " sigma"
+	return list(words)
 }
 
 // numbered is a list of notes without repeats.
@@ -117,22 +128,30 @@ func writeSentences(w io.Writer, r *paths.Result) {
 				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Unit)
 		}
 	}
-	switch n := len(r.Paths); {
-	case len(fit) == 0:
-		fmt.Fprintf(w, "None of the %d paths reproduces what was measured.\n", n)
-	case len(fit) == n:
-		fmt.Fprintf(w, "All of the %d paths reproduce what was measured: the data cannot tell them apart.\n", n)
-	case len(fit) == 1:
-		fmt.Fprintf(w, "Of the %d paths, %s reproduces what was measured.\n", n, fit[0])
-	default:
-		fmt.Fprintf(w, "Of the %d paths, %s reproduce what was measured: the data cannot tell these apart.\n", n, list(fit))
-	}
+	fmt.Fprintln(w, tally(fit, len(r.Paths)))
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
 		}
 	}
 	fmt.Fprintln(w)
+}
+
+// tally says which of n paths reproduce the data.
+func tally(fit []string, n int) string {
+	switch {
+	case n == 1 && len(fit) == 1:
+		return "The path reproduces what was measured."
+	case n == 1:
+		return "The path does not reproduce what was measured."
+	case len(fit) == 0:
+		return fmt.Sprintf("None of the %d paths reproduces what was measured.", n)
+	case len(fit) == n:
+		return fmt.Sprintf("All %d paths reproduce what was measured: the data cannot tell them apart.", n)
+	case len(fit) == 1:
+		return fmt.Sprintf("Of the %d paths, %s reproduces what was measured.", n, fit[0])
+	}
+	return fmt.Sprintf("Of the %d paths, %s reproduce what was measured: the data cannot tell these apart.", n, list(fit))
 }
 
 // writeFits writes, for each measured element, what the traverse decided on
@@ -164,13 +183,17 @@ func fitHead(q *paths.ProfileResult) []string {
 	for _, f := range q.Free {
 		head = append(head, f.Name)
 	}
-	return append(head, "sqrt(2 G)", "same G at", "numerical error")
+	return append(head, "sqrt(2 G)", "stand-in temperature", "numerical error")
 }
 
 func fitCells(q *paths.ProfileResult) []string {
 	var cells []string
 	for _, f := range q.Free {
-		cells = append(cells, withError(f.Value, f.Sigma, f.Unit))
+		cell := withError(f.Value, f.Sigma, f.Unit)
+		if f.AtEnd {
+			cell += " (end of range)"
+		}
+		cells = append(cells, cell)
 	}
 	return append(cells, number(math.Sqrt2*math.Exp(q.LnG/2)*1e6)+" um", celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")
 }
@@ -188,7 +211,7 @@ func verdictInWords(p *paths.PathResult) string {
 	case paths.AtOdds:
 		return oddsInWords(p)
 	case paths.Barred:
-		return "barred: " + list(p.Barred)
+		return "barred: " + strings.Join(p.Barred, "; ")
 	default:
 		return o.Verdict.String()
 	}
