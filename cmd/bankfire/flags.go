@@ -92,7 +92,7 @@ func wanted(flag *pflag.Flag) string {
 func nearestWord(typed string, known []string) string {
 	best, least := "", 3 // more than two slips are another word
 	for _, word := range known {
-		n := slips(typed, word)
+		n := thermal.Slips(typed, word)
 		if strings.HasPrefix(word, typed) {
 			n = min(n, 1)
 		}
@@ -101,26 +101,4 @@ func nearestWord(typed string, known []string) string {
 		}
 	}
 	return best
-}
-
-// slips counts the letters to insert, delete or replace to turn a into b.
-// Source: Levenshtein (1966), Soviet Physics Doklady 10, 707-710.
-func slips(a, b string) int {
-	row := make([]int, len(b)+1)
-	for j := range row {
-		row[j] = j
-	}
-	for i := range len(a) {
-		corner := row[0]
-		row[0]++
-		for j := range len(b) {
-			change := corner
-			if a[i] != b[j] {
-				change++
-			}
-			corner = row[j+1]
-			row[j+1] = min(change, row[j]+1, corner+1)
-		}
-	}
-	return row[len(b)]
 }

@@ -38,7 +38,7 @@ func Find(key string) (*Row, error) {
 		if r.Key == key {
 			return &r, nil
 		}
-		d := distance(key, r.Key)
+		d := thermal.Slips(key, r.Key)
 		if strings.HasPrefix(r.Key, key) {
 			d = min(d, 1) // the end was left out
 		}
@@ -52,28 +52,6 @@ func Find(key string) (*Row, error) {
 		Problem: "not in the catalogue",
 		Remedy:  "nearest key is " + strconv.Quote(best),
 	}
-}
-
-// distance returns how many letters must be put in, taken out or replaced to
-// turn a into b. Source: Levenshtein (1966), Soviet Physics Doklady 10, 707-710.
-func distance(a, b string) int {
-	row := make([]int, len(b)+1)
-	for j := range row {
-		row[j] = j
-	}
-	for i := range len(a) {
-		corner := row[0]
-		row[0] = i + 1
-		for j := range len(b) {
-			change := corner
-			if a[i] != b[j] {
-				change++
-			}
-			corner = row[j+1]
-			row[j+1] = min(change, row[j]+1, row[j+1]+1)
-		}
-	}
-	return row[len(b)]
 }
 
 // record is one line of the table by column name. It keeps its first error.

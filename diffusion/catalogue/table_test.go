@@ -225,20 +225,6 @@ func TestFind(t *testing.T) {
 	}
 }
 
-func TestDistance(t *testing.T) {
-	// Textbook cases of the edit distance.
-	for _, test := range []struct {
-		a, b string
-		want int
-	}{
-		{"", "", 0}, {"", "abc", 3}, {"abc", "", 3}, {"kitten", "sitting", 3}, {"saturday", "sunday", 3}, {"ab", "ba", 2},
-	} {
-		if got := distance(test.a, test.b); got != test.want {
-			t.Errorf("%q to %q: %d, want %d", test.a, test.b, got, test.want)
-		}
-	}
-}
-
 func TestParseErrors(t *testing.T) {
 	lines := strings.Split(source, "\n")
 	head := slices.IndexFunc(lines, func(s string) bool { return strings.HasPrefix(s, "key,") })
