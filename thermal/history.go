@@ -198,6 +198,8 @@ func (h *History) event(m Moment) (float64, *InputError) {
 		return 0, nil
 	case BeforeEruption:
 		return h.eruption, nil
+	case BeforeEnd:
+		return h.Life(), nil
 	case StartOf, EndOf:
 		return h.edge(m)
 	}
@@ -224,9 +226,12 @@ func (h *History) nearestName(name string) string {
 	}
 	best, least := "", math.MaxInt
 	for _, n := range h.names {
-		if d := editDistance(name, n.Name); d < least {
+		if d := Slips(name, n.Name); d < least {
 			best, least = n.Name, d
 		}
+	}
+	if best == "" { // names too long to compare
+		return fmt.Sprintf("the first that it has is %q", h.names[0].Name)
 	}
 	return fmt.Sprintf("the nearest is %q", best)
 }

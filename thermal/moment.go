@@ -9,6 +9,7 @@ type MomentKind int
 const (
 	AfterStart     MomentKind = iota // the start of the path
 	BeforeEruption                   // the eruption
+	BeforeEnd                        // the end of the path
 	StartOf                          // the start of the leg Name
 	EndOf                            // the end of the leg Name
 	Added                            // the addition of the zone Name to the crystal
@@ -23,17 +24,49 @@ type Moment struct {
 	Text   string  // as the user wrote it
 }
 
-// momentForms is what a moment may look like.
-const momentForms = `want start, eruption, "start of LEG", "end of LEG" or "ZONE added", alone or after "3 yr after" or "3 yr before"`
+// What a moment may look like, and that of an eruption.
+const (
+	momentForms   = `want start, end, eruption, "start of LEG", "end of LEG" or "ZONE added", alone or after "3 yr after" or "3 yr before"`
+	eruptionForms = `write a moment such as "end of wake 2", "200 yr before end" or "4 kyr after start"`
+)
 
 // ParseMoment reads a moment: one of the events
 //
-//	start, eruption, start of LEG, end of LEG, ZONE added
+//	start, end, eruption, start of LEG, end of LEG, ZONE added
 //
-// alone, or a duration after or before it: "4 kyr after start", "3 yr before eruption", "3 yr after end of wake 1". The
-// name of a zone does not begin with a digit. The error is an *InputError with Value, Problem and Remedy set; a bare
-// duration is one, since it could be counted from either end.
+// alone, or a duration after or before it: "4 kyr after start", "3 yr before eruption", "3 yr after end of wake 1". "Start
+// of path" and "end of path" are start and end. The name of a zone does not begin with a digit. The error is an
+// *InputError with Value, Problem and Remedy set; a bare duration is one, since it could be counted from either end.
 func ParseMoment(text string) (Moment, error) {
+	m, refused := readMoment(text)
+	if refused != nil {
+		if refused.Problem == bareDuration {
+			refused.Remedy += ` or "` + strings.TrimSpace(text) + ` before eruption"`
+		}
+		return Moment{}, refused.of(text)
+	}
+	return m, nil
+}
+
+// ParseEruption is ParseMoment for the moment of eruption itself, which counts from the path or one of its legs.
+func ParseEruption(text string) (Moment, error) {
+	m, refused := readMoment(text)
+	switch {
+	case refused != nil && refused.Remedy == momentForms:
+		refused.Remedy = eruptionForms
+	case refused != nil:
+	case m.Kind == BeforeEruption:
+		refused = &InputError{Problem: "counts from the eruption itself", Remedy: eruptionForms}
+	case m.Kind == Added:
+		refused = &InputError{Problem: "counts from a zone", Remedy: eruptionForms}
+	}
+	if refused != nil {
+		return Moment{}, refused.of(text)
+	}
+	return m, nil
+}
+
+func readMoment(text string) (Moment, *InputError) {
 	plain := strings.TrimSpace(text)
 	read := readEvent
 	if numberStart.MatchString(plain) {
@@ -41,11 +74,14 @@ func ParseMoment(text string) (Moment, error) {
 	}
 	m, refused := read(plain)
 	if refused != nil {
-		return Moment{}, refused.of(text)
+		return Moment{}, refused
 	}
 	m.Text = text
 	return m, nil
 }
+
+// bareDuration is what is wrong with a duration in the place of a moment.
+const bareDuration = "is a duration, not a moment"
 
 // readOffset reads a duration and the event that it is counted from.
 func readOffset(text string) (Moment, *InputError) {
@@ -55,8 +91,7 @@ func readOffset(text string) (Moment, *InputError) {
 		return Moment{}, err.(*InputError)
 	}
 	if !ok {
-		return Moment{}, &InputError{Problem: "is a duration, not a moment",
-			Remedy: `write "` + text + ` after start" or "` + text + ` before eruption"`}
+		return Moment{}, &InputError{Problem: bareDuration, Remedy: `write "` + text + ` after start"`}
 	}
 	if offset < 0 {
 		return Moment{}, &InputError{Problem: "counts a negative duration", Remedy: `want "after" or "before" and a positive one`}
@@ -69,8 +104,11 @@ func readOffset(text string) (Moment, *InputError) {
 	if !later {
 		m.Offset = 0 - offset // not -0
 	}
-	if m.Kind == AfterStart && m.Offset < 0 {
+	switch {
+	case m.Kind == AfterStart && m.Offset < 0:
 		return Moment{}, &InputError{Problem: "lies before the start of the path", Remedy: `write "after start"`}
+	case m.Kind == BeforeEnd && m.Offset > 0:
+		return Moment{}, &InputError{Problem: "lies after the end of the path", Remedy: `write "before end"`}
 	}
 	return m, nil
 }
@@ -91,8 +129,10 @@ func cutOffset(text string) (duration, event string, later, ok bool) {
 // readEvent reads an event without an offset.
 func readEvent(text string) (Moment, *InputError) {
 	switch text {
-	case "start":
+	case "start", "start of path":
 		return Moment{Kind: AfterStart}, nil
+	case "end", "end of path":
+		return Moment{Kind: BeforeEnd}, nil
 	case "eruption":
 		return Moment{Kind: BeforeEruption}, nil
 	case "":

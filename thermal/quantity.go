@@ -79,7 +79,7 @@ func ParseConcentration(text string) (value Uncertain, unit string, err error) {
 func ParseRange(text string, dim Dimension) (lo, hi float64, err error) {
 	low, high, isRange := strings.Cut(text, "..")
 	if !isRange || strings.HasPrefix(high, ".") {
-		return 0, 0, &InputError{Value: text, Problem: "is no range", Remedy: `want both ends, such as "1..2 ` + dimensions[dim].usual() + `"`}
+		return 0, 0, &InputError{Value: text, Problem: "is no range", Remedy: `want both ends, such as "` + dimensions[dim].span() + `"`}
 	}
 	from, to, refused := readPair(text, low, high, dim)
 	if refused != nil {

@@ -267,6 +267,7 @@ func TestParseRangeRefuses(t *testing.T) {
 	}{
 		{"", Length, `is no range; want both ends, such as "1..2 um"`},
 		{"3 um", Length, `"3 um": is no range; want both ends, such as "1..2 um"`},
+		{"900 C", Temperature, `"900 C": is no range; want both ends, such as "700..1000 C"`},
 		{"0-2 um", Length, `"0-2 um": is no range; want both ends, such as "1..2 um"`},
 		{"0...2 um", Length, `"0...2 um": is no range; want both ends, such as "1..2 um"`},
 		{"2..0 um", Length, `"2..0 um": does not run upwards; want the smaller end first`},

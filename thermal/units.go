@@ -46,6 +46,9 @@ func UnitNames(dim Dimension) []string {
 	return names
 }
 
+// UsualUnit is the unit of dim that a petrologist is likeliest to write: "C", "yr", "um", "ppm".
+func UsualUnit(dim Dimension) string { return dimensions[dim].usual() }
+
 // UnitName is the usual spelling of a unit of dim, "wt%" for "wt. %". ok is false if dim has no such unit.
 func UnitName(name string, dim Dimension) (usual string, ok bool) {
 	u, ok := findUnit(name, dim)
@@ -80,6 +83,7 @@ type trap struct{ spellings, problem, remedy string }
 type dimension struct {
 	noun  string // with its article
 	like  string // an example
+	ends  string // an example of a range, without the unit; "" is "1..2"
 	units []unit
 	traps []trap
 }
@@ -90,12 +94,20 @@ func (d *dimension) usual() string {
 	return unit
 }
 
+// span is an example of a range.
+func (d *dimension) span() string {
+	if d.ends == "" {
+		return "1..2 " + d.usual()
+	}
+	return d.ends + " " + d.usual()
+}
+
 // age is why a, ka and Ma are refused: a path counts time forwards.
 const age = "stands for an age before present as well as for a duration"
 
 // dimensions is never changed. Besides the units that studies need, each dimension has the one in which we compute.
 var dimensions = [...]dimension{
-	Temperature: {noun: "a temperature", like: "750 C", units: []unit{
+	Temperature: {noun: "a temperature", like: "750 C", ends: "700..1000", units: []unit{
 		{name: "C", scale: 1, offset: ZeroCelsius, also: "degC,deg C,celsius,Celsius"},
 		{name: "F", scale: FahrenheitDegree, offset: ZeroFahrenheit, also: "degF,deg F,fahrenheit,Fahrenheit"},
 		{name: "K", scale: 1, also: "kelvin,Kelvin"},
@@ -236,7 +248,7 @@ func unitList(dim Dimension) string {
 }
 
 // nearestUnit is the usual spelling of the unit of dim that is written most like name, "" if none is near: at most one
-// edit in two letters, and capitals do not count.
+// slip in two letters, and capitals do not count.
 func nearestUnit(name string, dim Dimension) string {
 	nearest, least := "", len(name)/2+1
 	for _, u := range dimensions[dim].units {
@@ -244,35 +256,10 @@ func nearestUnit(name string, dim Dimension) string {
 			if spelling == "" {
 				continue
 			}
-			if edits := editDistance(strings.ToLower(name), strings.ToLower(spelling)); edits < least {
-				nearest, least = u.name, edits
+			if n := Slips(strings.ToLower(name), strings.ToLower(spelling)); n < least {
+				nearest, least = u.name, n
 			}
 		}
 	}
 	return nearest
-}
-
-// editDistance is the number of bytes to insert, delete or replace to make b of a (Levenshtein 1966). Names of more than
-// 40 bytes are infinitely far.
-func editDistance(a, b string) int {
-	if len(a) > 40 || len(b) > 40 {
-		return math.MaxInt
-	}
-	row := make([]int, len(b)+1)
-	for j := range row {
-		row[j] = j
-	}
-	for i := range len(a) {
-		diagonal := row[0]
-		row[0] = i + 1
-		for j := range len(b) {
-			replace := diagonal
-			if a[i] != b[j] {
-				replace++
-			}
-			diagonal = row[j+1]
-			row[j+1] = min(replace, diagonal+1, row[j]+1)
-		}
-	}
-	return row[len(b)]
 }

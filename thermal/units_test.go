@@ -71,6 +71,15 @@ func TestUnit(t *testing.T) {
 	}
 }
 
+// TestUsualUnit: a hint names the unit of a petrologist, not the smallest there is.
+func TestUsualUnit(t *testing.T) {
+	for dim, want := range map[Dimension]string{Temperature: "C", Duration: "yr", Length: "um", Angle: "deg", Concentration: "ppm"} {
+		if got := UsualUnit(dim); got != want {
+			t.Errorf("%v: got %q, want %q", dim, got, want)
+		}
+	}
+}
+
 func TestUnitNames(t *testing.T) {
 	if got, want := UnitNames(Duration), []string{"s", "min", "h", "day", "yr", "kyr", "Myr"}; !slices.Equal(got, want) {
 		t.Errorf("got %q, want %q", got, want)
@@ -101,23 +110,6 @@ func TestConcentrationFactor(t *testing.T) {
 		t.Run(test.from+" to "+test.to, func(t *testing.T) {
 			if got, ok := ConcentrationFactor(test.from, test.to); got != test.want || ok != test.ok {
 				t.Errorf("got %g, %v, want %g, %v", got, ok, test.want, test.ok)
-			}
-		})
-	}
-}
-
-func TestEditDistance(t *testing.T) {
-	tests := []struct {
-		a, b string
-		want int
-	}{
-		{"", "", 0}, {"", "abc", 3}, {"kyr", "kyr", 0}, {"yars", "years", 1}, {"kitten", "sitting", 3}, // the last: Levenshtein's textbook pair
-		{strings.Repeat("x", 41), "x", math.MaxInt},
-	}
-	for _, test := range tests {
-		t.Run(test.a+" to "+test.b, func(t *testing.T) {
-			if got := editDistance(test.a, test.b); got != test.want {
-				t.Errorf("got %d, want %d", got, test.want)
 			}
 		})
 	}
