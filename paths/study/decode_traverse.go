@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"strings"
 
 	"bankfire/paths/traverse"
 	"bankfire/thermal"
@@ -195,7 +194,7 @@ func (d *decoder) valueColumn(n *node, remedy string) string {
 		return header
 	}
 	name := d.concentrationUnit(unit)
-	if strings.HasSuffix(strings.TrimSpace(header), "]") {
+	if _, given := traverse.SplitHeader(header, thermal.Concentration); given != "" {
 		d.report(v, "its unit is given here and under unit", "give it once")
 	}
 	return header + " [" + name + "]"

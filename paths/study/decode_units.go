@@ -152,8 +152,8 @@ func named(header, unit string) string {
 	if unit == "Fo" || unit == "An" {
 		return unit
 	}
-	name, _, _ := strings.Cut(header, "[")
-	switch name = strings.TrimPrefix(strings.TrimSpace(name), "X"); name {
+	name, _ := traverse.SplitHeader(header, thermal.Concentration)
+	switch name = strings.TrimPrefix(name, "X"); name {
 	case "Fo", "An":
 		return name
 	}

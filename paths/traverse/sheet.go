@@ -107,7 +107,7 @@ func (s *sheet) readHeader(want []Column) error {
 		s.delim = delim
 		s.numbers.commaSeparates = delim == ','
 		problems := s.tryHeader(want)
-		if len(problems.all) == 0 {
+		if len(problems.kinds) == 0 {
 			return nil
 		}
 		if closest == nil || len(s.header) > most {
@@ -139,9 +139,9 @@ func (s *sheet) tryHeader(want []Column) *list {
 }
 
 // next moves to the next row that has as many cells as the header. It returns
-// false at the end of the text or after too many problems.
+// false at the end of the text or after maxRows rows.
 func (s *sheet) next() bool {
-	for !s.problems.full() && s.nextLine() {
+	for s.nextLine() {
 		if s.skippable() {
 			continue
 		}
@@ -153,7 +153,7 @@ func (s *sheet) next() bool {
 		if e == nil {
 			e = s.ragged()
 		}
-		if s.rows++; e == nil && s.rows > maxRows {
+		if s.rows++; s.rows > maxRows {
 			s.problems.add(s.errorAt(0, "", "", fmt.Sprintf("more than %d rows", maxRows), "thin the table, or check that it is the right file"))
 			return false
 		}

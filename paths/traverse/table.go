@@ -15,8 +15,9 @@ import (
 type Column struct {
 	// Header is the header of the column, "t [yr]". The unit in brackets may
 	// stand in the file, here, or in both if they agree; it must stand
-	// somewhere. Blanks count as one. Concentrations named Fo, An, XFo or XAn
-	// in % or mol% are in the units Fo and An.
+	// somewhere. Round brackets serve where they hold a unit of Dim: "t (yr)".
+	// Blanks count as one. Concentrations named Fo, An, XFo or XAn in % or
+	// mol% are in the units Fo and An.
 	Header string
 	Dim    thermal.Dimension
 }
@@ -145,8 +146,8 @@ type bound struct {
 // name without the unit.
 func (s *sheet) find(w Column) (bound, *thermal.InputError) {
 	same := func(c cell) bool { return squeeze(c.text) == squeeze(w.Header) }
-	name, _ := splitUnit(w.Header)
-	sameName := func(c cell) bool { n, _ := splitUnit(c.text); return n == name }
+	name, _ := SplitHeader(w.Header, w.Dim)
+	sameName := func(c cell) bool { n, _ := SplitHeader(c.text, w.Dim); return n == name }
 	for _, match := range []func(cell) bool{same, sameName} {
 		var found []int
 		for i, c := range s.header {
@@ -197,13 +198,13 @@ func (s *sheet) bind(w Column, index int) (bound, *thermal.InputError) {
 	refuse := func(problem, remedy string) (bound, *thermal.InputError) {
 		return b, s.errorAt(c.at, "column", c.text, problem, remedy)
 	}
-	name, asked := splitUnit(w.Header)
-	_, typed := splitUnit(c.text)
+	name, asked := SplitHeader(w.Header, w.Dim)
+	_, typed := SplitHeader(c.text, w.Dim)
 	if typed == "" {
 		typed = asked
 	}
 	if typed == "" {
-		return refuse("no unit", fmt.Sprintf("write, for example, %q", fmt.Sprintf("%s [%s]", c.text, thermal.UnitNames(b.dim)[0])))
+		return refuse("no unit", fmt.Sprintf("write, for example, %q", fmt.Sprintf("%s [%s]", c.text, thermal.UsualUnit(b.dim))))
 	}
 	if w.Dim == errorColumn && usualUnit(typed, w.Dim) == ofValue {
 		b.unit, b.scale = ofValue, 1
@@ -235,7 +236,10 @@ const ofValue = "% of value"
 
 // usualUnit is the usual spelling of a column's unit, "" if it has none.
 func usualUnit(name string, dim thermal.Dimension) string {
-	if dim == errorColumn {
+	switch dim {
+	case flagColumn, countColumn:
+		return ""
+	case errorColumn:
 		switch name {
 		case ofValue, "rel%", "rel %", "rel. %", "% rel", "% rel.", "%RSD", "% RSD":
 			return ofValue
@@ -270,14 +274,22 @@ func unitProblem(typed string, dim thermal.Dimension) (problem, remedy string) {
 	return "unknown unit " + strconv.Quote(typed), "want one of " + strings.Join(thermal.UnitNames(dim), ", ")
 }
 
-// splitUnit splits a header "distance [um]" into name and unit.
-func splitUnit(header string) (name, unit string) {
+// SplitHeader splits a header "distance [um]" into name and unit. So it does
+// "distance (um)" if the round brackets hold a unit of dim; else they belong to
+// the name, as in "Ti (rim)".
+func SplitHeader(header string, dim thermal.Dimension) (name, unit string) {
 	header = squeeze(header)
-	open := strings.LastIndexByte(header, '[')
-	if open < 0 || !strings.HasSuffix(header, "]") {
-		return header, ""
+	for _, brackets := range []string{"[]", "()"} {
+		open := strings.LastIndexByte(header, brackets[0])
+		if open < 0 || header[len(header)-1] != brackets[1] {
+			continue
+		}
+		name, unit = strings.TrimSpace(header[:open]), strings.TrimSpace(header[open+1:len(header)-1])
+		if brackets == "[]" || usualUnit(unit, dim) != "" {
+			return name, unit
+		}
 	}
-	return strings.TrimSpace(header[:open]), strings.TrimSpace(header[open+1 : len(header)-1])
+	return header, ""
 }
 
 // squeeze leaves single blanks between the words of a text.

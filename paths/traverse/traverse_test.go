@@ -50,6 +50,11 @@ var readings = []struct {
 			o.Position, o.Value, o.Errors = "x", "Ti", Errors{Column: "err", Sigmas: 1, Floor: Amount{3, "ppm"}}
 		},
 		want: Traverse{Unit: "wt%", Position: []float64{10e-6}, Value: []float64{0.005}, Sigma: []float64{3e-4}}, lines: []int{2}},
+	{name: "units in round brackets", text: "distance (um),Ti (rim) (wt%),2se (ppm)\n1,0.005,4\n",
+		change: func(o *Options) {
+			o.Position, o.Value, o.Errors = "distance [um]", "Ti (rim)", Errors{Column: "2se (ppm)", Sigmas: 2}
+		},
+		want: Traverse{Unit: "wt%", Position: []float64{1e-6}, Value: []float64{0.005}, Sigma: []float64{2e-4}}, lines: []int{2}},
 	{name: "unit named by the user only", text: "x,XAn\n1,0.55\n",
 		change: func(o *Options) {
 			o.Position, o.Value, o.Errors = "x [um]", "XAn [mole fraction]", Errors{Constant: Amount{0.01, "mole fraction"}}
@@ -193,7 +198,13 @@ var refusals = []struct {
 		`ti.csv:2:1: column "distance [um]": not in the header; the columns are "0", "50", "4"; lines that begin with # are comments, a header must not`,
 		`ti.csv:2:1: column "Ti [ppm]": not in the header; the columns are "0", "50", "4"; lines that begin with # are comments, a header must not`}},
 	{name: "no unit", text: "x,Ti [ppm],2se [ppm]\n1,50,2\n", change: func(o *Options) { o.Position = "x" }, want: []string{
-		`ti.csv:1:1: column "x": no unit; write, for example, "x [nm]"`}},
+		`ti.csv:1:1: column "x": no unit; write, for example, "x [um]"`}},
+	{name: "no unit but a name in brackets", text: "distance (um),Ti (rim)\n1,50\n", change: func(o *Options) { o.Value, o.Errors = "Ti (rim)", Errors{Percent: 4} }, want: []string{
+		`ti.csv:1:15: column "Ti (rim)": no unit; write, for example, "Ti (rim) [ppm]"`}},
+	{name: "unit of something else in round brackets", text: "distance (yr),Ti [ppm]\n1,50\n", change: func(o *Options) { o.Position, o.Errors = "distance (yr)", Errors{Percent: 4} }, want: []string{
+		`ti.csv:1:1: column "distance (yr)": no unit; write, for example, "distance (yr) [um]"`}},
+	{name: "two units in round brackets", text: "distance (nm),Ti [ppm]\n1,50\n", change: func(o *Options) { o.Errors = Errors{Percent: 4} }, want: []string{
+		`ti.csv:1:1: column "distance (nm)": its unit is nm, but the column asked for is in um; write the same unit in both places`}},
 	{name: "unknown unit", text: "distance [um],Ti [ppmm],2se [ppm]\n1,50,2\n", change: func(o *Options) { o.Value = "Ti" }, want: []string{
 		`ti.csv:1:15: column "Ti [ppmm]": unknown unit "ppmm"; did you mean ppm? want ppm, wt%, mole fraction, mol%, %, Fo, An or grey`}},
 	{name: "two units", text: "distance [nm],Ti [ppm],2se [ppm]\n1,50,2\n", want: []string{
@@ -309,8 +320,53 @@ func TestReadRefuses(t *testing.T) {
 	}
 }
 
+// TestReadTellsOnce: what is wrong in a whole column is told once, up to four
+// rows one by one.
+func TestReadTellsOnce(t *testing.T) {
+	rows := func(n int) string {
+		text := header + "0,50,2\n"
+		for i := range n {
+			text += fmt.Sprintf("%d,<%d,2\n", i+1, i+4)
+		}
+		return text + "90,50,none\n91,<7,2\n"
+	}
+	const why, remedy = `below detection, and the study does not say what becomes of it`, `write below = "limit" in the traverse to use it as a limit, or below = "skip" to leave such rows out`
+	const last = `2se [ppm] "none": not a number; write only the number, such as 12.5; its unit belongs in the header`
+	for _, test := range []struct {
+		name string
+		rows int
+		want []string
+	}{
+		{"few", 2, []string{
+			`ti.csv:3:3: Ti [ppm] "<4": ` + why + "; " + remedy,
+			`ti.csv:4:3: Ti [ppm] "<5": ` + why + "; " + remedy,
+			`ti.csv:5:7: ` + last,
+			`ti.csv:6:4: Ti [ppm] "<7": ` + why + "; " + remedy}},
+		{"many", 15, []string{
+			`ti.csv:3:3: Ti [ppm] "<4": ` + why + ", in 16 rows of lines 3 to 19; " + remedy,
+			`ti.csv:18:7: ` + last}},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			o := standard()
+			o.Zero, o.Size = Centre, 1e-3
+			_, err := Read("ti.csv", strings.NewReader(rows(test.rows)), o)
+			if err == nil {
+				t.Fatal("no error")
+			}
+			if diff := cmp.Diff(test.want, strings.Split(err.Error(), "\n")); diff != "" {
+				t.Errorf("wanted -, got +:\n%s", diff)
+			}
+		})
+	}
+}
+
+// TestReadStopsAtTwentyProblems: a file may have as many kinds of them as rows.
 func TestReadStopsAtTwentyProblems(t *testing.T) {
-	_, err := Read("ti.csv", strings.NewReader(header+strings.Repeat("a,b,c\n", 100)), standard())
+	text := header
+	for i := range 50 {
+		text += fmt.Sprintf("%d,50,2\n%[1]d,50,2\n", i)
+	}
+	_, err := Read("ti.csv", strings.NewReader(text), standard())
 	if n := len(strings.Split(err.Error(), "\n")); n != maxProblems {
 		t.Errorf("%d problems, want %d", n, maxProblems)
 	}
