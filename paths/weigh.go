@@ -25,7 +25,7 @@ type Result struct {
 }
 
 // PathResult is one path with its verdict. A barred path has no outcome but
-// its verdict, and no profiles.
+// its verdict, its numbers being NaN, and no profiles.
 type PathResult struct {
 	Path     *study.Path
 	Outcome  Outcome
@@ -516,12 +516,19 @@ func (w *weighing) verdict(i int) PathResult {
 		r.Above = append(r.Above, path.History.TimeAbove(t.Temp))
 	}
 	if len(p.barred) > 0 {
-		r.Outcome.Verdict, r.Notes = Barred, p.barred
+		r.Outcome.Finding, r.Notes = notRun(Barred), p.barred
 		return r
 	}
 	Judge(&r.Outcome, p.curves, w.laws, w.study.Confidence)
 	r.Notes = r.Outcome.notes()
 	return r
+}
+
+// notRun is the finding on a path that was not run.
+func notRun(v Verdict) Finding {
+	nan := math.NaN()
+	none := [2]float64{nan, nan}
+	return Finding{Verdict: v, Shift: nan, Shift68: none, Shift95: none, Tail: nan, Misfit: nan, Above: nan}
 }
 
 // standIn returns the one constant temperature, in K, at which the law gives
