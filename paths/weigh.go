@@ -128,13 +128,15 @@ func newWeighing(s *study.Study) *weighing {
 }
 
 // law returns the number of a law's prior, counted from 1; 0 where it has none.
+// Laws without a key stand with one element each and share nothing, alike as
+// their errors may be.
 func (w *weighing) law(l *study.Law) int {
 	prior := lawPrior(l)
 	if prior.LnD == 0 && prior.E == 0 {
 		return 0
 	}
 	for k := range w.laws {
-		if w.laws[k] == prior {
+		if w.laws[k] == prior && prior.Key != "" {
 			return k + 1
 		}
 	}
