@@ -61,3 +61,16 @@ func (l Law) LnIntegral(h *thermal.History, t0, t1 float64) float64 {
 	}
 	return sum
 }
+
+// LnIntegralAbove returns the logarithm of the part of the diffusion integral G
+// that the history does while it is hotter than temp, in K, from its start to
+// its end. It is -Inf where it never is, or where nothing diffuses.
+func (l Law) LnIntegralAbove(h *thermal.History, temp float64) float64 {
+	sum := math.Inf(-1)
+	for _, a := range l.Terms {
+		if !math.IsInf(a.LnA, -1) {
+			sum = numeric.LnAdd(sum, a.LnA+h.LnArrheniusAbove(a.E, 0, temp))
+		}
+	}
+	return sum
+}

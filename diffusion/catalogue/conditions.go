@@ -130,6 +130,27 @@ func (r *Row) Needs() []string {
 	return names
 }
 
+// Command returns the command line that shows the law under conditions, with an
+// example of each that it needs:
+//
+//	bankfire laws olivine-ca-coogan2005-a --fO2 "1e-7 Pa"
+func (r *Row) Command() string {
+	line := "bankfire laws " + r.Key
+	needs := r.Needs()
+	for _, b := range limits() {
+		if !slices.Contains(needs, b.name) {
+			continue
+		}
+		line += " --" + b.name + " "
+		if b.unit == "" {
+			line += b.example
+		} else {
+			line += strconv.Quote(b.example)
+		}
+	}
+	return line
+}
+
 // Law returns the law under the conditions, which may hold more than the row
 // needs:
 //

@@ -124,3 +124,17 @@ func TestMiddle(t *testing.T) {
 		t.Error("a middle without a range")
 	}
 }
+
+func TestCommand(t *testing.T) {
+	for _, test := range []struct{ key, want string }{
+		{"quartz-ti-cherniak2007", "bankfire laws quartz-ti-cherniak2007"},
+		{"plagioclase-sr-giletti1994", "bankfire laws plagioclase-sr-giletti1994 --XAn 0.5"},
+		{"olivine-femg-dohmen2007-tamed", `bankfire laws olivine-femg-dohmen2007-tamed --pressure "2 kbar" --fO2 "1e-7 Pa" --XFe 0.1`},
+	} {
+		t.Run(test.key, func(t *testing.T) {
+			if got := find(t, test.key).Command(); got != test.want {
+				t.Errorf("got %s, want %s", got, test.want)
+			}
+		})
+	}
+}
