@@ -53,7 +53,7 @@ type LawsAllowed struct {
 	Verdict Verdict
 	Tail    float64
 	Misfit  float64   // chi-square with the deviations fitted, and their own added
-	Leaning []Leaning // the smallest deviations with which the path passes, in the order of the laws; nil if none do
+	Leaning []Leaning // the smallest deviations with which the path passes, in the order of the laws, empty if there are none; nil if it does not pass
 }
 
 // Leaning is by how many standard deviations, of ln D and E together, a path
@@ -103,6 +103,7 @@ func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) Laws
 	if z == nil {
 		return out
 	}
+	out.Leaning = []Leaning{}
 	for k, law := range laws {
 		out.Leaning = append(out.Leaning, Leaning{law.Key, math.Hypot(z[2*k], z[2*k+1])})
 	}

@@ -48,7 +48,7 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
-		row := append([]string{p.Path.Name, o.Verdict.String()}, findingCells(o)...)
+		row := append([]string{p.Path.Name, o.Verdict.String()}, findingCells(o, len(r.Laws))...)
 		row = append(row, thermal.DurationText(p.Life))
 		for _, above := range p.Above {
 			row = append(row, thermal.DurationText(above))
@@ -67,17 +67,21 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 }
 
 // findingCells are the cells of a path's row that a barred path does not have.
-func findingCells(o *paths.Outcome) []string {
+func findingCells(o *paths.Outcome, laws int) []string {
 	if o.Verdict == paths.Barred {
 		return make([]string, 5)
 	}
 	return []string{number(o.Shift) + " (" + intervalText(o.Shift95) + ")", tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
-		number(math.Max(o.Above, 0)), leaningText(&o.WithLaws)}
+		number(math.Max(o.Above, 0)), leaningText(&o.WithLaws, laws)}
 }
 
-// leaningText says by how much the laws would have to be off.
-func leaningText(l *paths.LawsAllowed) string {
-	if l.Leaning == nil {
+// leaningText says by how much the laws, so many as have errors, would have to
+// be off.
+func leaningText(l *paths.LawsAllowed, laws int) string {
+	switch {
+	case laws == 0:
+		return "no error stated"
+	case l.Leaning == nil:
 		return "no error helps"
 	}
 	var words []string
