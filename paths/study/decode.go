@@ -95,8 +95,11 @@ func shorten(text string) string {
 	return string([]rune(text)[:longest]) + "..."
 }
 
-// keys reports every key of the table n that is not among the known ones.
-func (d *decoder) keys(n *node, known ...string) {
+// keys reports every key of the table n that its kind does not have.
+func (d *decoder) keys(n *node, kind tableKind) { d.known(n, tables[kind].Keys) }
+
+// known reports every key of the table n that is not among the known ones.
+func (d *decoder) known(n *node, known []string) {
 	for i := range n.keys {
 		k := &n.keys[i]
 		if slices.Contains(known, k.name) {

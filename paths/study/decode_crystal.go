@@ -2,9 +2,12 @@ package study
 
 import (
 	"fmt"
+	"slices"
 	"strconv"
+	"strings"
 
 	"bankfire/diffusion"
+	"bankfire/diffusion/catalogue"
 )
 
 // maxZones bounds the zones of a crystal and the rims of an end. Each may become
@@ -40,7 +43,7 @@ func (d *decoder) crystals(root *node) []Crystal {
 }
 
 func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
-	d.keys(n, "name", "mineral", "shape", "inner", "zones", "element")
+	d.keys(n, crystalTable)
 	c := Crystal{Place: d.place(n)}
 	if v := d.need(n, "name", `write a name, such as name = "HF-12"`); v != nil {
 		var ok bool
@@ -48,12 +51,34 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 			d.unique(v, c.Name, seen)
 		}
 	}
-	c.Mineral, _ = d.name(d.need(n, "mineral", `write the mineral, such as mineral = "quartz"`), `write it like "quartz"`)
+	c.Mineral = d.mineral(n, c.Name)
 	c.Shape = d.shape(d.need(n, "shape", `write shape = "slab", "cylinder" or "ball"`))
 	c.Zones = d.zones(n)
 	inner := d.inner(n.get("inner"), &c)
 	d.elements(n, &c, inner)
 	return c
+}
+
+// mineral reads the mineral of a crystal and notes one that looks like another
+// that the catalogue has laws for.
+func (d *decoder) mineral(n *node, crystal string) string {
+	v := d.need(n, "mineral", `write the mineral, such as mineral = "quartz"`)
+	name, ok := d.name(v, `write it like "quartz"`)
+	if near := nearest(name, minerals()); ok && near != "" && !strings.EqualFold(near, name) {
+		d.note("%s: the catalogue has no laws for %q; did you mean %q?", crystal, name, near)
+	}
+	return name
+}
+
+// minerals returns those of the catalogue's laws.
+func minerals() []string {
+	var names []string
+	for _, row := range catalogue.All() {
+		if !slices.Contains(names, row.Mineral) {
+			names = append(names, row.Mineral)
+		}
+	}
+	return names
 }
 
 func (d *decoder) shape(n *node) diffusion.Shape {
@@ -107,7 +132,7 @@ func (d *decoder) tooMany(n *node, things string) bool {
 }
 
 func (d *decoder) zone(n *node, seen map[string]int) Zone {
-	d.keys(n, "name", "width", "times")
+	d.keys(n, zoneTable)
 	z := Zone{Times: 1}
 	if v := d.need(n, "name", `write a name, such as name = "core"`); v != nil {
 		z.Name = d.zoneName(v, seen)
@@ -152,7 +177,7 @@ func (d *decoder) inner(n *node, c *Crystal) *node {
 	if !d.is(n, tableNode, example) {
 		return nil
 	}
-	d.keys(n, "radius", "rim")
+	d.keys(n, innerTable)
 	if v := n.get("radius"); v != nil {
 		var ok bool
 		if c.R0, ok = d.quantity(v, edgeWidth); !ok {

@@ -10,7 +10,7 @@ import (
 // in until the unit of the element is known: that of its traverse, else of the
 // first value given.
 func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int) Element {
-	d.keys(n, "name", "law", "start", "rim", "traverse")
+	d.keys(n, elementTable)
 	e := Element{Place: d.place(n)}
 	if v := d.need(n, "name", `write the element, such as name = "Ti"`); v != nil {
 		var ok bool
@@ -36,9 +36,7 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 
 // assumed notes what was taken because the study does not say.
 func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
-	if e.Law.Row != nil && c.Mineral != "" && !strings.EqualFold(e.Law.Row.Mineral, c.Mineral) {
-		d.note("%s: the law %s is one of %s, the crystal is %s", e.Name, e.Law.Key, e.Law.Row.Mineral, c.Mineral)
-	}
+	d.otherMineral(c, e)
 	if n.get("start").get("edge") == nil && len(c.Zones) > 1 {
 		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)
 	}
@@ -50,6 +48,19 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 		e.Rims = []Rim{tied(last, d.place(n))}
 		d.note("%s: no rim given, held at the plateau of its outermost zone, %s", e.Name, c.Zones[last].Name)
 	}
+}
+
+// otherMineral notes a law that is for another mineral than the crystal's, unless
+// that is mistyped.
+func (d *decoder) otherMineral(c *Crystal, e *Element) {
+	if e.Law.Row == nil || c.Mineral == "" {
+		return
+	}
+	of := e.Law.Row.Mineral
+	if strings.EqualFold(of, c.Mineral) || nearest(c.Mineral, minerals()) == of {
+		return
+	}
+	d.note("%s: law %s is for %s, but the crystal %s is %s: is the law the right one?", e.Name, e.Law.Key, of, c.Name, c.Mineral)
 }
 
 func allSealed(rims []Rim) bool {

@@ -19,7 +19,7 @@ func (d *decoder) ownLaws(n *node) {
 	}
 	seen := map[string]int{}
 	for _, t := range d.tables(n, `begin each law with "[[law]]"`) {
-		law := d.ownLaw(t, "name")
+		law := d.ownLaw(t, ownLawTable)
 		v := d.need(t, "name", `write a name, such as name = "mine"`)
 		name, ok := "", false
 		if v != nil {
@@ -38,8 +38,8 @@ func (d *decoder) ownLaws(n *node) {
 }
 
 // ownLaw reads a law written in the study.
-func (d *decoder) ownLaw(n *node, more ...string) Law {
-	d.keys(n, append(more, "D0", "E", "sigma", "range", "citation")...)
+func (d *decoder) ownLaw(n *node, kind tableKind) Law {
+	d.keys(n, kind)
 	var law Law
 	const example = `write D0 = "7e-8 m2/s" and E = "273 kJ/mol"`
 	d0, ok0 := d.quantity(d.need(n, "D0", example), frequency)
@@ -55,6 +55,9 @@ func (d *decoder) ownLaw(n *node, more ...string) Law {
 	}
 	if v := n.get("citation"); v != nil {
 		law.Citation, _ = d.text(v, "write where the law was published")
+	}
+	if v := n.get("caution"); v != nil {
+		law.Caution, _ = d.text(v, "write what belongs beside every verdict that rests on the law")
 	}
 	return law
 }
@@ -87,7 +90,7 @@ func (d *decoder) law(n *node) Law {
 		return Law{}
 	}
 	if n.kind == tableNode {
-		return d.ownLaw(n)
+		return d.ownLaw(n, lawTable)
 	}
 	key, ok := d.text(n, example)
 	if !ok {
@@ -116,8 +119,8 @@ func (d *decoder) unknownLaw(n *node, key string, err error) {
 func (d *decoder) published(n *node, row *catalogue.Row) Law {
 	law := Law{Key: row.Key, Row: row, Sigma: row.SigmaMid.Value, TMin: row.TMin, TMax: row.TMax, Citation: row.Citation}
 	if needs := row.Needs(); len(needs) > 0 {
-		d.report(n, "this law depends on "+strings.Join(needs, " and ")+", which this version of the study file cannot give",
-			`write the law for your conditions as { D0 = "...", E = "..." }, or choose another`)
+		d.report(n, "this law depends on "+strings.Join(needs, ", ")+", which a study cannot give yet",
+			"run "+row.Command()+" with your values, and paste the line that it prints")
 		return law
 	}
 	var err error

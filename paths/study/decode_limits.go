@@ -14,12 +14,12 @@ func (d *decoder) limits(n *node, thresholds []Threshold) Limits {
 		return l
 	}
 	l.Place = d.place(n)
-	d.keys(n, "life", "lowest", "highest", "above", "between")
+	d.keys(n, limitsTable)
 	if len(n.keys) == 0 {
 		d.report(n, "no limit", example)
 	}
 	if v := n.get("life"); d.is(v, tableNode, `write life = { shortest = "1 kyr", longest = "300 kyr" }`) {
-		d.keys(v, "shortest", "longest")
+		d.keys(v, lifeTable)
 		l.Life[0], l.Life[1] = d.spans(v, duration)
 		if math.IsInf(l.Life[1], 1) {
 			l.Life[1] = 0
@@ -70,7 +70,7 @@ func (d *decoder) timeLimits(n *node, thresholds []Threshold) []TimeLimit {
 	}
 	var out []TimeLimit
 	for _, t := range d.tables(n, example) {
-		d.keys(t, "threshold", "temperature", "shortest", "longest", "counts")
+		d.keys(t, aboveTable)
 		l := TimeLimit{Place: d.place(t)}
 		d.limitTemperature(t, &l, thresholds)
 		l.Least, l.Most = d.spans(t, pause)
@@ -137,7 +137,7 @@ func (d *decoder) intervals(n *node) []Interval {
 	}
 	var out []Interval
 	for _, t := range d.tables(n, example) {
-		d.keys(t, "from", "to", "shortest", "longest")
+		d.keys(t, betweenTable)
 		l := Interval{Place: d.place(t)}
 		from, ok1 := d.pathMoment(d.need(t, "from", example))
 		to, ok2 := d.pathMoment(d.need(t, "to", example))

@@ -2,6 +2,7 @@ package study
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"bankfire/thermal"
@@ -26,9 +27,11 @@ func legKinds() []legKind {
 		{thermal.SpecReheat, []string{"reheat", "efold"}, []string{"name", "from", "rise", "dwell", "for"}},
 		{thermal.SpecSheet, []string{"sheet", "host", "thickness", "position", "kappa", "for"}, []string{"name"}},
 		{thermal.SpecTable, []string{"table", "time", "temperature"}, []string{"name", "counts"}},
-		{thermal.SpecRepeat, []string{"repeat", "legs"}, nil},
+		{thermal.SpecRepeat, []string{"repeat", "legs"}, []string{"name"}},
 	}
 }
+
+func (k legKind) keys() []string { return slices.Concat(k.needs, k.options) }
 
 // paths reads every [[path]]. The eruption of the study's top level holds for
 // those that have none of their own.
@@ -43,7 +46,7 @@ func (d *decoder) paths(root *node) []Path {
 }
 
 func (d *decoder) path(n, eruption *node, seen map[string]int) Path {
-	d.keys(n, "name", "legs", "eruption")
+	d.keys(n, pathTable)
 	p := Path{Place: d.place(n)}
 	if v := d.need(n, "name", `write a name, such as name = "kept warm"`); v != nil {
 		var ok bool
@@ -104,7 +107,7 @@ func (d *decoder) leg(n *node) thermal.Spec {
 		return spec
 	}
 	spec.Kind = kind.kind
-	d.keys(n, append(kind.needs, kind.options...)...)
+	d.known(n, kind.keys())
 	for _, name := range kind.needs {
 		d.need(n, name, "a "+kind.needs[0]+" leg needs "+strings.Join(kind.needs, ", "))
 	}
@@ -112,6 +115,8 @@ func (d *decoder) leg(n *node) thermal.Spec {
 		d.legValue(&spec, k.name, k.value)
 	}
 	switch kind.kind {
+	case thermal.SpecReheat:
+		d.reheat(n, &spec)
 	case thermal.SpecSheet:
 		spec.Sheet = d.sheet(n, spec.Temp)
 	case thermal.SpecTable:
@@ -172,9 +177,25 @@ func (d *decoder) legValue(spec *thermal.Spec, name string, v *node) {
 	case "dwell":
 		spec.Dwell, _ = d.quantity(v, pause)
 	case "name":
-		spec.Name, _ = d.name(v, `write a name, such as "wake 1"`)
+		spec.Name = d.legName(v)
 	case "repeat":
 		spec.Times = d.times(v)
+	}
+}
+
+// legName reads the name of a leg, with which moments name it.
+func (d *decoder) legName(n *node) string {
+	name, _ := d.name(n, `write a name, such as "wake 1"`)
+	if name == "path" {
+		d.report(n, `a leg cannot have this name: "end of path" is that of the whole path`, `write "wake 1", say`)
+	}
+	return name
+}
+
+// reheat reports one that ends before it relaxes.
+func (d *decoder) reheat(n *node, spec *thermal.Spec) {
+	if hot := spec.Rise + spec.Dwell; spec.For > 0 && spec.For < hot {
+		d.report(n.get("for"), "shorter than rise and dwell together, "+span(hot), "for counts the whole reheat: write more, or leave it out")
 	}
 }
 
@@ -209,18 +230,15 @@ func (d *decoder) erupt(h *thermal.History, v *node) {
 	if v == nil {
 		return
 	}
-	m, ok := d.moment(v)
-	switch {
-	case !ok:
-		return
-	case m.Kind == thermal.BeforeEruption:
-		d.report(v, "counts from the eruption itself", `write a moment such as "end of wake 2" or "4 kyr after start"`)
-		return
-	case m.Kind == thermal.Added:
-		d.report(v, "counts from a zone", `write a moment such as "end of wake 2" or "4 kyr after start"`)
+	text, ok := d.text(v, `write a moment, such as "end of wake 2" or "4 kyr after start"`)
+	if !ok {
 		return
 	}
-	t, err := h.Moment(*m)
+	m, err := thermal.ParseEruption(text)
+	t := 0.0
+	if err == nil {
+		t, err = h.Moment(m)
+	}
 	if err == nil {
 		err = h.SetEruption(t)
 	}

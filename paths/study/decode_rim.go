@@ -2,12 +2,20 @@ package study
 
 import (
 	"fmt"
+	"slices"
 
 	"bankfire/diffusion"
 	"bankfire/thermal"
 )
 
-const rimExample = `write rim = { held = "skin" }, { held = "90 ppm" }, "sealed" or { given = "rim.csv", time = "t [yr]", value = "Ti [ppm]" }`
+// rimExample says what to write for a rim of the crystal.
+func rimExample(c *Crystal, u *units) string {
+	zone := "core"
+	if n := len(c.Zones); n > 0 && c.Zones[n-1].Name != "" {
+		zone = c.Zones[n-1].Name
+	}
+	return fmt.Sprintf(`write rim = { held = %q }, { held = "90 ppm" }, "sealed" or { given = "rim.csv", time = "t [yr]", value = "%s [ppm]" }`, zone, u.element)
+}
 
 // tied returns a rim held at the plateau of a zone.
 func tied(zone int, at thermal.Place) Rim {
@@ -24,7 +32,7 @@ func (d *decoder) rims(n *node, c *Crystal, u *units) []Rim {
 		return []Rim{d.rim(n, c, u, true)}
 	}
 	if len(n.items) == 0 {
-		d.report(n, "an empty list", rimExample)
+		d.report(n, "an empty list", rimExample(c, u))
 	}
 	if d.tooMany(n, "rims") {
 		return nil
@@ -44,33 +52,49 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 		}
 		return r
 	}
-	if !d.is(n, tableNode, rimExample) {
+	if !d.is(n, tableNode, rimExample(c, u)) {
 		return r
 	}
 	switch {
 	case n.get("following") != nil || n.get("transfer") != nil:
-		d.report(n, "a rim that follows conditions or exchanges by transfer is not known in this version", rimExample)
+		d.report(n, "a rim that follows conditions or exchanges by transfer is not known in this version", rimExample(c, u))
 	case n.get("held") != nil:
-		d.keys(n, "held", "unit", "from")
+		d.keys(n, heldTable)
 		d.held(n, &r, c, u)
 	case n.get("given") != nil:
-		d.keys(n, "given", "time", "value", "counts", "unit", "from")
+		d.keys(n, givenTable)
 		r.Kind = diffusion.Prescribed
 		r.Given = d.series(n, u)
 	case n.get("sealed") != nil:
-		d.keys(n, "sealed", "from")
+		d.keys(n, sealedTable)
 		if v := n.get("sealed"); d.is(v, boolNode, "write sealed = true") && v.text != "true" {
-			d.report(v, "a rim that is not sealed is held or given", rimExample)
+			d.report(v, "a rim that is not sealed is held or given", rimExample(c, u))
 		}
 	default:
-		d.keys(n, "held", "given", "sealed", "time", "value", "counts", "unit", "from")
-		d.report(n, "a rim of no kind", rimExample)
+		d.noRim(n, rimExample(c, u))
 	}
 	if v := n.get("from"); v != nil {
 		r.Place = d.place(v)
 	}
 	r.From = d.from(n, first)
 	return r
+}
+
+// noRim reports a table that is no kind of rim, by the key that is wrong in it if
+// there is one.
+func (d *decoder) noRim(n *node, example string) {
+	var known []string
+	for _, kind := range []tableKind{heldTable, givenTable, sealedTable} {
+		for _, key := range tables[kind].Keys {
+			if !slices.Contains(known, key) {
+				known = append(known, key)
+			}
+		}
+	}
+	before := d.faults
+	if d.known(n, known); d.faults == before {
+		d.report(n, "says neither what it is held at, nor that it is given or sealed", example)
+	}
 }
 
 // from reads the moment from which a rim holds.

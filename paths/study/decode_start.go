@@ -20,7 +20,7 @@ func (d *decoder) start(element *node, c *Crystal, u *units) Start {
 		d.report(n, "alternatives of a start are not known in this version", example)
 		return s
 	case d.is(n, tableNode, example):
-		d.keys(n, "zones", "edge", "unit")
+		d.keys(n, startTable)
 	}
 	if zones := n.get("zones"); zones != nil {
 		d.plateaux(zones, s.Zones, c, u, d.concentrationUnit(n.get("unit")))

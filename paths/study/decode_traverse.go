@@ -16,7 +16,7 @@ func (d *decoder) traverse(n *node, c *Crystal, e *Element, u *units) {
 		return
 	}
 	before := d.faults
-	d.keys(n, "file", "position", "zero", "origin", "tilt", "value", "unit", "error", "scatter", "overlap", "below", "spot", "window", "skip")
+	d.keys(n, traverseTable)
 	e.Tilt = d.nuisance(n.get("tilt"), tiltLatitude())
 	e.Origin = d.nuisance(n.get("origin"), originLatitude())
 	e.Scatter = d.scatter(n.get("scatter"))
@@ -276,7 +276,7 @@ func (d *decoder) errorText(n *node, remedy string) traverse.Errors {
 }
 
 func (d *decoder) errorTable(n *node, remedy string) traverse.Errors {
-	d.keys(n, "column", "sigmas", "analyses", "size", "floor")
+	d.keys(n, errorTable)
 	var e traverse.Errors
 	column, size := n.get("column"), n.get("size")
 	switch {

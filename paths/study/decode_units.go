@@ -39,7 +39,11 @@ func (d *decoder) amount(n *node, u *units, beside string) Plateau {
 		return Plateau{}
 	}
 	value, unit, err := thermal.ParseConcentration(text)
-	if err != nil {
+	switch {
+	case !looksLikeValue(strings.TrimSpace(text)):
+		d.reportWord(n, "neither a value nor free", []string{"free"}, example)
+		return Plateau{}
+	case err != nil:
 		d.reportError(n, err)
 		return Plateau{}
 	}

@@ -28,6 +28,7 @@
 //
 // document.go turns the text into a tree of nodes that know their line and
 // column; each decode file reads one table of that tree; problem.go turns the
-// result into what the solver takes. To add a key, add it to the list of known
-// keys where its table is read, and to testdata/every-key/study.toml.
+// result into what the solver takes. To add a key, add it to its table in keys.go
+// or decode_path.go, to testdata/every-key/study.toml, and to the page that
+// bankfire help study prints, which a test compares with [Tables].
 package study

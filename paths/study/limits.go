@@ -4,13 +4,15 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"bankfire/thermal"
 )
 
 // Barred returns in words every limit that the path breaks, naming the leg where
-// one leg breaks it; none if it keeps them all. A path that does not have both
-// moments of an Interval, or has them the other way round, breaks it. The error
+// one leg breaks it; none if it keeps them all. An Interval does not concern a
+// path without its legs; a path that has its moments the other way round, or has
+// one beyond its ends, breaks it. The error
 // is an *thermal.InputError about a moment that is no path's: the addition of a
 // zone.
 func (l *Limits) Barred(h *thermal.History) (reasons []string, err error) {
@@ -107,6 +109,9 @@ func (l *TimeLimit) temperature() string {
 
 // broken says how the path breaks the limit, if it does.
 func (l *Interval) broken(h *thermal.History) ([]string, error) {
+	if !l.concerns(h) {
+		return nil, nil
+	}
 	var at [2]float64
 	for i, m := range []thermal.Moment{l.From, l.To} {
 		if m.Kind == thermal.Added {
@@ -129,6 +134,17 @@ func (l *Interval) broken(h *thermal.History) ([]string, error) {
 		return []string{fmt.Sprintf("%s it takes %s, longer than %s", which, span(time), span(l.Most))}, nil
 	}
 	return nil, nil
+}
+
+// concerns reports whether the path has the legs that the moments count from.
+func (l *Interval) concerns(h *thermal.History) bool {
+	for _, m := range []thermal.Moment{l.From, l.To} {
+		of := m.Kind == thermal.StartOf || m.Kind == thermal.EndOf
+		if of && !slices.ContainsFunc(h.Names(), func(n thermal.Named) bool { return n.Name == m.Name }) {
+			return false
+		}
+	}
+	return true
 }
 
 // within is " in NAME" with the shortest named stretch of the path that holds

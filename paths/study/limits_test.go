@@ -66,6 +66,8 @@ func TestLimits(t *testing.T) {
 			[]string{`from "start" to "start of wake 2" it takes 990 yr, longer than 1 yr`}},
 		{"between, the other way round", `between = [ { from = "end of wake 2", to = "start of wake 1", longest = "1 yr" } ]`,
 			[]string{`"end of wake 2" comes 500 yr after "start of wake 1"`}},
+		{"between, to the end", `between = [ { from = "eruption", to = "end", shortest = "2 yr" } ]`,
+			[]string{`from "eruption" to "end" it takes 1 yr, shorter than 2 yr`}},
 		{"several", "life = { longest = \"1 yr\" }\nlowest = \"710 C\"",
 			[]string{"its life is 1 kyr, longer than 1 yr", `it is as cold as 700 C in "store 1", colder than 710 C`}},
 	} {
@@ -104,7 +106,8 @@ func TestLimitOfZone(t *testing.T) {
 	}
 }
 
-// TestBarredPaths: a moment that one path lacks bars that path alone.
+// TestBarredPaths: a moment of a rim that one path lacks bars that path alone;
+// a limit between legs does not concern it.
 func TestBarredPaths(t *testing.T) {
 	text := strings.Replace(sound, "[[crystal]]\n", `[[path]]
 name = "short"
@@ -115,7 +118,10 @@ name = "no wake"
 legs = [ { hold = "750 C", for = "900 yr" } ]
 
 [limits]
-between = [ { from = "end of wake", to = "eruption", longest = "1 yr" } ]
+between = [
+  { from = "end of store", to = "end of wake", longest = "1 yr" },
+  { from = "start", to = "700 yr after start", longest = "1 kyr" },
+]
 
 [[crystal]]
 `, 1)
@@ -135,8 +141,14 @@ between = [ { from = "end of wake", to = "eruption", longest = "1 yr" } ]
 			t.Errorf("%s: barred %q, want %q", p.Name, p.Barred, want[i])
 		}
 	}
-	got, err := s.Limits.Barred(s.Paths[2].History)
-	if err != nil || !slices.Equal(got, []string{`"end of wake": the path has no leg "wake"`}) {
-		t.Errorf("limits: %q, %v", got, err)
+	for i, want := range [][]string{{`from "end of store" to "end of wake" it takes 5 yr, longer than 1 yr`}, {`"700 yr after start": 610 yr after the end of the path`}, nil} {
+		got, err := s.Limits.Barred(s.Paths[i].History)
+		if err != nil || !slices.Equal(got, want) {
+			t.Errorf("%s: limits say %q, %v, want %q", s.Paths[i].Name, got, err, want)
+		}
+	}
+	const note = `the limit from "end of store" to "end of wake" concerns 1 of the 3 paths: the others do not have its legs`
+	if !slices.Contains(s.Notes, note) {
+		t.Errorf("notes %q", s.Notes)
 	}
 }

@@ -52,7 +52,7 @@ func parse(file string, data []byte, load loader) (*Study, error) {
 
 // study reads the top level.
 func (d *decoder) study(root *node) *Study {
-	d.keys(root, "title", "confidence", "eruption", "threshold", "limits", "law", "path", "crystal")
+	d.keys(root, topTable)
 	s := &Study{File: d.file, Confidence: defaultConfidence}
 	s.Title = strings.TrimSuffix(filepath.Base(d.file), filepath.Ext(d.file))
 	if v := root.get("title"); v != nil {
@@ -98,7 +98,7 @@ func (d *decoder) thresholds(n *node) []Threshold {
 	var out []Threshold
 	seen := map[string]int{}
 	for _, t := range d.tables(n, `begin each threshold with "[[threshold]]"`) {
-		d.keys(t, "name", "temperature")
+		d.keys(t, thresholdTable)
 		var th Threshold
 		if v := d.need(t, "name", `write a name, such as name = "lock-up"`); v != nil {
 			var ok bool

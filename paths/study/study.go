@@ -63,8 +63,9 @@ type TimeLimit struct {
 	Place   thermal.Place
 }
 
-// Interval bounds the time between two moments of a path. A path that does not
-// have both, or has them the other way round, is barred.
+// Interval bounds the time between two moments of a path. It does not concern a
+// path without the legs that they count from; one that has them the other way
+// round is barred.
 type Interval struct {
 	From, To thermal.Moment
 	Least    float64 // s, 0 is none
@@ -135,6 +136,19 @@ type Law struct {
 	Sigma      float64 // standard deviation of log10 D at mid-range; 0 if the study does not say
 	TMin, TMax float64 // calibrated range, K; both 0 if the study does not say
 	Citation   string
+	Caution    string // what the study says belongs beside every verdict that rests on the law; "" is nothing
+}
+
+// Cautions returns the sentences that belong beside every verdict that rests on
+// the law: those of the catalogue, or that of the study.
+func (l *Law) Cautions() []string {
+	switch {
+	case l.Row != nil:
+		return l.Row.Cautions()
+	case l.Caution != "":
+		return []string{l.Caution}
+	}
+	return nil
 }
 
 // Plateau is a value before the measured traverse has been looked at.

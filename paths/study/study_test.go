@@ -77,7 +77,7 @@ func TestEveryKeyPaths(t *testing.T) {
 	near(t, "eruption of the first, from the top level", first.Eruption, (6000+80+100+5)*yr)
 	near(t, "life of the second", second.History.Life(), (400+3*(5+2*50)+30)*yr+86400)
 	near(t, "eruption of the second, its own", second.Eruption, (400+2*(5+2*50)+3)*yr)
-	if p := first.Place; p.Line != 32 || p.Col != 3 || p.File != s.File {
+	if p := first.Place; p.Line != 33 || p.Col != 3 || p.File != s.File {
 		t.Errorf("the first path is at %+v", p)
 	}
 	for _, test := range []struct {
@@ -127,7 +127,8 @@ func TestEveryKeyElement(t *testing.T) {
 	if e.Name != "Ti" || e.Unit != "ppm" {
 		t.Errorf("element %q in %q", e.Name, e.Unit)
 	}
-	if l := e.Law; l.Key != "mine" || l.Row != nil || l.Sigma != 0.3 || l.Citation != "invented for this test" {
+	if l := e.Law; l.Key != "mine" || l.Row != nil || l.Sigma != 0.3 || l.Citation != "invented for this test" ||
+		!slices.Equal(l.Cautions(), []string{"no crystal has it"}) {
 		t.Errorf("law %+v", l)
 	}
 	near(t, "TMin", e.Law.TMin, 700+zc)
@@ -245,11 +246,44 @@ func TestDefaults(t *testing.T) {
 	}
 	near(t, "eruption", s.Paths[0].Eruption, 805*yr)
 	notes := strings.Join(s.Notes, "\n")
-	for _, want := range []string{"no edge given", "no rim given, held at the plateau of its outermost zone, skin", "one of quartz, the crystal is zircon"} {
+	for _, want := range []string{"no edge given", "no rim given, held at the plateau of its outermost zone, skin", "law quartz-ti-cherniak2007 is for quartz, but the crystal Q1 is zircon"} {
 		if !strings.Contains(notes, want) {
 			t.Errorf("notes %q do not say %q", s.Notes, want)
 		}
 	}
+}
+
+// TestMinerals: a mineral that looks like one of the catalogue's is noted, and
+// not once more as that of another law.
+func TestMinerals(t *testing.T) {
+	for _, test := range []struct {
+		mineral string
+		want    []string
+	}{
+		{"quartz", nil},
+		{"Quartz", nil},
+		{"Quarz", []string{`Q1: the catalogue has no laws for "Quarz"; did you mean "quartz"?`}},
+		{"leucite", []string{"Ti: law quartz-ti-cherniak2007 is for quartz, but the crystal Q1 is leucite: is the law the right one?"}},
+	} {
+		t.Run(test.mineral, func(t *testing.T) {
+			_, notes := measured(t, `mineral = "quartz"`, fmt.Sprintf("mineral = %q", test.mineral))
+			if !slices.Equal(notes, test.want) {
+				t.Errorf("notes %q, want %q", notes, test.want)
+			}
+		})
+	}
+}
+
+// TestNamedRepeat: the name of a repeat is that of all its legs together.
+func TestNamedRepeat(t *testing.T) {
+	text := strings.Replace(sound, `{ name = "store", hold = "750 C", for = "800 yr" },`,
+		`{ name = "wakes", repeat = 3, legs = [ { name = "store", hold = "750 C", for = "100 yr" } ] },`, 1)
+	text = strings.Replace(text, "[[path]]\n", "[[path]]\neruption = \"end of wakes\"\n", 1)
+	s, err := parse("s.toml", []byte(text), memory(soundFiles()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	near(t, "eruption", s.Paths[0].Eruption, 300*yr)
 }
 
 // TestGrammarOfThePage reads what this version knows of the study that the

@@ -21,13 +21,32 @@ func (d *decoder) together(s *Study) {
 		}
 	}
 	for i := range s.Limits.Between {
-		l := &s.Limits.Between[i]
-		for _, m := range []thermal.Moment{l.From, l.To} {
-			d.lacking(s.Paths, func(p *Path) *thermal.InputError {
-				_, err := p.History.Moment(m)
-				return inputError(err, l.Place)
-			})
+		d.interval(s.Paths, &s.Limits.Between[i])
+	}
+}
+
+// interval notes how many paths a limit between two moments concerns. One that
+// concerns none is a problem.
+func (d *decoder) interval(paths []Path, l *Interval) {
+	before := d.faults
+	for _, m := range []thermal.Moment{l.From, l.To} {
+		d.lacking(paths, func(p *Path) *thermal.InputError {
+			_, err := p.History.Moment(m)
+			return inputError(err, l.Place)
+		})
+	}
+	concerned := 0
+	for i := range paths {
+		if l.concerns(paths[i].History) {
+			concerned++
 		}
+	}
+	switch {
+	case d.faults > before || concerned == len(paths):
+	case concerned == 0:
+		d.add(l.Place.Error("", fmt.Sprintf("no path has the legs of both %q and %q", l.From.Text, l.To.Text), "check the names of the legs"))
+	default:
+		d.note("the limit from %q to %q concerns %d of the %d paths: the others do not have its legs", l.From.Text, l.To.Text, concerned, len(paths))
 	}
 }
 

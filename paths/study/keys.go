@@ -1,0 +1,77 @@
+package study
+
+import "slices"
+
+// Table is one kind of table of a study file.
+type Table struct {
+	// Name is the dotted key under which it stands, "crystal.element.traverse";
+	// where tables of several kinds may stand, the key that tells them apart
+	// follows: "path.legs hold". The top level is "".
+	Name string
+	Keys []string // all that it may have, in the order in which messages list them
+}
+
+// Tables returns every kind of table that a study may have, those inside others
+// after them.
+func Tables() []Table {
+	var all []Table
+	for _, t := range tables {
+		all = append(all, Table{t.Name, slices.Clone(t.Keys)})
+		if t.Name == tables[pathTable].Name {
+			for _, kind := range legKinds() {
+				all = append(all, Table{"path.legs " + kind.needs[0], kind.keys()})
+			}
+		}
+	}
+	return all
+}
+
+// tableKind tells the kinds of table apart, but for legs; see legKinds.
+type tableKind int
+
+const (
+	topTable tableKind = iota
+	thresholdTable
+	limitsTable
+	lifeTable
+	aboveTable
+	betweenTable
+	ownLawTable
+	pathTable
+	crystalTable
+	zoneTable
+	innerTable
+	elementTable
+	lawTable
+	startTable
+	heldTable
+	givenTable
+	sealedTable
+	traverseTable
+	errorTable
+)
+
+// tables are the kinds of table with the keys that the decoder knows. It is
+// never changed.
+var tables = [...]Table{
+	topTable:       {"", []string{"title", "confidence", "eruption", "threshold", "limits", "law", "path", "crystal"}},
+	thresholdTable: {"threshold", []string{"name", "temperature"}},
+	limitsTable:    {"limits", []string{"life", "lowest", "highest", "above", "between"}},
+	lifeTable:      {"limits.life", []string{"shortest", "longest"}},
+	aboveTable:     {"limits.above", []string{"threshold", "temperature", "shortest", "longest", "counts"}},
+	betweenTable:   {"limits.between", []string{"from", "to", "shortest", "longest"}},
+	ownLawTable:    {"law", []string{"name", "D0", "E", "sigma", "range", "citation", "caution"}},
+	pathTable:      {"path", []string{"name", "legs", "eruption"}},
+	crystalTable:   {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "element"}},
+	zoneTable:      {"crystal.zones", []string{"name", "width", "times"}},
+	innerTable:     {"crystal.inner", []string{"radius", "rim"}},
+	elementTable:   {"crystal.element", []string{"name", "law", "start", "rim", "traverse"}},
+	lawTable:       {"crystal.element.law", []string{"D0", "E", "sigma", "range", "citation", "caution"}},
+	startTable:     {"crystal.element.start", []string{"zones", "edge", "unit"}},
+	heldTable:      {"crystal.element.rim held", []string{"held", "unit", "from"}},
+	givenTable:     {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},
+	sealedTable:    {"crystal.element.rim sealed", []string{"sealed", "from"}},
+	traverseTable: {"crystal.element.traverse", []string{"file", "position", "zero", "origin", "tilt", "value", "unit", "error",
+		"scatter", "overlap", "below", "spot", "window", "skip"}},
+	errorTable: {"crystal.element.traverse.error", []string{"column", "sigmas", "analyses", "size", "floor"}},
+}
