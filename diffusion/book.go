@@ -31,7 +31,10 @@ func (b *book) see(value float64) {
 
 // enter books one solve from the values of the first and last cell before and
 // after it. Crank-Nicolson sees the mean of both, over twice the length.
-func (b *book) enter(e ends, euler bool, first0, last0, first1, last1 float64) {
+func (b *book) enter(op *operator, e ends, euler bool, first0, last0, first1, last1 float64) {
+	if n := len(op.k); n > 0 { // what drives the flux is C/K
+		first0, first1, last0, last1 = first0/op.k[0], first1/op.k[0], last0/op.k[n-1], last1/op.k[n-1]
+	}
 	if e.kIn != 0 {
 		b.see(e.vIn)
 		b.flow(e.kIn, e.vIn, first0, first1, euler)
@@ -62,7 +65,7 @@ func (b *book) close(s *Stats, p *Plan, c []float64) {
 	if b.scale > 0 {
 		s.MassDrift = math.Max(0, math.Abs(content-b.start-b.inflow)-b.noise) / b.scale
 	}
-	if b.hi > b.lo {
+	if b.hi > b.lo && p.host == nil {
 		s.Overshoot = worst / (b.hi - b.lo)
 	}
 }

@@ -22,14 +22,25 @@ type Course struct {
 type span struct {
 	lnG          float64 // ln of the integral of D dt, m2
 	inner, outer ending
+	coldness     means // of 1/T, 1/K, over each step, weighted by D; for coupled problems only
+}
+
+// means are the means of a value over the steps of a span, weighted by D, and
+// over those of the rough schedule.
+type means struct{ fine, rough []float64 }
+
+func (m *means) of(rough bool) []float64 {
+	if rough {
+		return m.rough
+	}
+	return m.fine
 }
 
 // ending is what holds at one end during a span.
 type ending struct {
-	open   bool
-	rim    int       // index into Problem.Inner or Outer
-	values []float64 // mean of a prescribed rim over each step, weighted by D; nil if held
-	rough  []float64 // the same over the steps of the rough schedule
+	open  bool
+	rim   int   // index into Problem.Inner or Outer
+	value means // of a prescribed rim
 }
 
 // most is a diffusion integral, m2, beyond which no crystal changes any more.
@@ -80,15 +91,19 @@ func (p *Plan) span(h *thermal.History, t0, t1 float64) span {
 	}
 	prescribed := func(e ending, rims []Rim) bool { return e.open && rims[e.rim].Kind == Prescribed }
 	in, out := prescribed(s.inner, p.problem.Inner), prescribed(s.outer, p.problem.Outer)
-	if math.IsInf(s.lnG, -1) || !in && !out {
+	coupled := p.problem.LnK != nil
+	if math.IsInf(s.lnG, -1) || !in && !out && !coupled {
 		return s
 	}
 	times := p.stepTimes(h, t0, t1, s.lnG)
 	if in {
-		s.inner.average(p, h, p.problem.Inner[s.inner.rim].Given, times)
+		s.inner.value = p.leadEnds(p.average(h, p.problem.Inner[s.inner.rim].Given, times))
 	}
 	if out {
-		s.outer.average(p, h, p.problem.Outer[s.outer.rim].Given, times)
+		s.outer.value = p.leadEnds(p.average(h, p.problem.Outer[s.outer.rim].Given, times))
+	}
+	if coupled {
+		s.coldness = p.average(h, coldnessOf(h), times)
 	}
 	return s
 }
@@ -152,21 +167,29 @@ func pieces(breaks []float64, t0, t1 float64) []float64 {
 	return slices.Compact(in)
 }
 
-// average fills the ending with the means of the given value over the steps,
+// average returns the means of the given value over the steps,
 //
-//	integral of v dG / integral of dG,
-//
-// and with the same over the steps of the rough schedule.
-func (e *ending) average(p *Plan, h *thermal.History, v *Given, times []float64) {
+//	integral of v dG / integral of dG.
+func (p *Plan) average(h *thermal.History, v *Given, times []float64) means {
 	breaks := slices.Concat(h.Breaks(nil), v.Breaks, v.Jumps)
 	slices.Sort(breaks)
-	e.values = make([]float64, len(p.steps))
-	for i := range e.values {
-		e.values[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
+	fine := make([]float64, len(p.steps))
+	for i := range fine {
+		fine[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
 	}
-	e.rough = p.steps.mergedMeans(e.values)
-	p.steps.leadEnd(e.values)
-	p.rough.leadEnd(e.rough)
+	return means{fine, p.steps.mergedMeans(fine)}
+}
+
+// leadEnds makes the means those of a rim that the damped last steps see.
+func (p *Plan) leadEnds(m means) means {
+	p.steps.leadEnd(m.fine)
+	p.rough.leadEnd(m.rough)
+	return m
+}
+
+// coldnessOf is 1/T along the history.
+func coldnessOf(h *thermal.History) *Given {
+	return &Given{At: func(t float64) float64 { temp, _ := h.At(t); return 1 / temp }}
 }
 
 // meanOver returns the mean of v between ta and tb weighted by D.

@@ -46,7 +46,7 @@ func TestRimMeans(t *testing.T) {
 			given := &Given{At: func(at float64) float64 { temp, _ := h.At(at); return math.Exp(a - b/temp) }}
 			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: []Rim{{Kind: Prescribed, Given: given}}}
 			plan := newPlan(t, p, Options{})
-			got := newCourse(t, plan, h).spans[0].outer.values
+			got := newCourse(t, plan, h).spans[0].outer.value.fine
 			times := plan.stepTimes(h, 0, h.Life(), testLaw.LnIntegral(h, 0, h.Life()))
 			for i := range got {
 				if i+1 < len(got) && times[i+1] <= times[i] || plan.steps[i].euler && i > len(got)/2 {
@@ -104,7 +104,7 @@ func TestBreaksAreNotAsked(t *testing.T) {
 			}
 			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: []Rim{{Kind: Prescribed, Given: given}}}
 			for _, span := range newCourse(t, newPlan(t, p, Options{}), h).spans {
-				if i, v := 0, span.outer.values; len(v) == 0 || rangeOf(v) > 1 || math.IsNaN(v[i]) {
+				if i, v := 0, span.outer.value.fine; len(v) == 0 || rangeOf(v) > 1 || math.IsNaN(v[i]) {
 					t.Errorf("values %v", v)
 				}
 			}

@@ -241,13 +241,17 @@ func (p *Problem) halfCell(face, far float64) float64 {
 
 // factor returns D at r divided by the law's.
 func (p *Problem) factor(r float64) float64 {
-	i := sort.Search(len(p.Zones)-1, func(i int) bool { return r < p.Zones[i].Outer })
 	d := 1.0
-	if p.Zones[i].Times != 0 {
-		d = p.Zones[i].Times
+	if z := p.Zones[p.zone(r)]; z.Times != 0 {
+		d = z.Times
 	}
 	if p.Spread != nil {
 		d *= p.Spread(r)
 	}
 	return d
+}
+
+// zone returns the zone that r lies in.
+func (p *Problem) zone(r float64) int {
+	return sort.Search(len(p.Zones)-1, func(i int) bool { return r < p.Zones[i].Outer })
 }

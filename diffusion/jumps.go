@@ -154,7 +154,7 @@ func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, out
 			was, sealed = f.atSpan[(i*len(f.Cols)+j)*2+side], false
 		}
 		for k, st := range p.steps {
-			e := p.ends(sp, j, k, 1, false)
+			e := p.ends(&p.still, sp, j, k, 1, false)
 			if v := [...]float64{e.vIn, e.vOut}[side]; v != was {
 				err[cell] -= 2 * (v - was) * lag(0, perG*left)
 				was = v

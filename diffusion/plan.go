@@ -25,7 +25,8 @@ const defaultFinest = 1.0 / 50
 type Plan struct {
 	problem *Problem
 	grid    *grid
-	cond    []float64   // conductance of each face at unit D
+	still   operator    // without coupling: the same in every solve
+	host    *hostGrid   // nil without coupling
 	starts  [][]float64 // cell means: the answer, then one column per free value
 	steps   schedule    // between two events
 	events  []float64   // s, ascending: times after 0 at which the solution is damped anew
@@ -60,12 +61,15 @@ func Compile(p *Problem, o Options) (*Plan, error) {
 
 func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 	g := newGrid(p.Shape, faces)
-	plan := &Plan{problem: p, grid: g, cond: p.conductances(g), steps: steps, rough: steps.merged(), events: p.events()}
-	for i, k := range plan.cond {
+	plan := &Plan{problem: p, grid: g, still: operator{vol: g.volumes, cond: p.conductances(g)}, steps: steps, rough: steps.merged(), events: p.events()}
+	for i, k := range plan.still.cond {
 		centre := i == 0 && p.R0 == 0 && p.Shape != Slab
 		if !(k > 0 || centre) || math.IsInf(k, 0) {
 			return nil, fmt.Errorf("diffusion: D is not a positive number near %g m", faces[i])
 		}
+	}
+	if p.LnK != nil {
+		plan.host = p.layHost(g)
 	}
 	plan.starts = append(plan.starts, p.startMeans(g))
 	for _, b := range p.Free {
@@ -166,6 +170,9 @@ func everySecond(p *Problem, faces []float64) []float64 {
 
 // moving reports whether a rim value changes with time other than by jumps.
 func (p *Problem) moving() bool {
+	if p.LnK != nil {
+		return true
+	}
 	isPrescribed := func(r Rim) bool { return r.Kind == Prescribed }
 	return slices.ContainsFunc(p.Inner, isPrescribed) || slices.ContainsFunc(p.Outer, isPrescribed)
 }
@@ -218,6 +225,9 @@ func (p *Plan) Start(j int) []float64 { return p.starts[j] }
 // diffusion integral alone, and why or why not. It is decided from the kinds
 // of rim, never by trial.
 func (p *Plan) GEnough() (why string, ok bool) {
+	if p.host != nil {
+		return "in a zoned host the element's equilibrium moves with temperature", false
+	}
 	if len(p.events) > 0 {
 		return "a rim changes along the path", false
 	}

@@ -29,6 +29,7 @@ type Zone struct {
 	Start float64 // plateau value before diffusion, in the element's unit
 	Edge  float64 // width w of the edge at its outer boundary, m: an error function of standard deviation w/4; 0 is a jump
 	Times float64 // factor on D in this zone; 0 is read as 1
+	Host  float64 // composition of the host in this zone, in the unit that LnK asks for
 }
 
 // RimKind says what holds at an end of the crystal.
@@ -73,6 +74,12 @@ type Problem struct {
 	Profile func(r float64) float64 // added to the zones' start, nil is nothing
 	Law     Law
 	Spread  func(r float64) float64 // D(r, t) = Law(T) Times Spread(r); nil is 1; must be positive
+	// LnK makes the element one that is coupled to a zoned host: the logarithm of
+	// its crystal/melt partition coefficient in a host of composition x at a
+	// temperature, K. The flux is then -D (dC/dr - C d(ln K)/dr), and an element at
+	// rest is proportional to K, not flat. nil is no coupling.
+	LnK  func(x, temp float64) float64
+	Host func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
 	Inner   []Rim                   // nil is sealed (at the centre, symmetry)
 	Outer   []Rim                   // nil is sealed
 	Free    []Basis
@@ -103,6 +110,9 @@ func (p *Problem) check() error {
 		return err
 	}
 	if err := p.checkRims("outer", p.Outer); err != nil {
+		return err
+	}
+	if err := p.checkHost(); err != nil {
 		return err
 	}
 	return p.checkFree()

@@ -14,7 +14,7 @@ type Job struct {
 type Stats struct {
 	Steps     int     // solves
 	MassDrift float64 // content not accounted for by start and rims, as a part of all that was there or came
-	Overshoot float64 // by how much the answer leaves the range of start and rim values, as a part of that range
+	Overshoot float64 // by how much the answer leaves the range of start and rim values, as a part of that range; 0 if coupled: it may
 }
 
 // Field is the outcome of a run. Its memory is reused by the next run into it.
@@ -26,6 +26,8 @@ type Field struct {
 	Stats            Stats
 
 	lane   lane
+	op     operator  // of the solve in hand, of a coupled problem
+	u      []float64 // C/K
 	lane4  lane4
 	cols4  [][]four
 	atSpan []float64 // of each span and column, the values at both ends when it begins
@@ -43,6 +45,12 @@ func (p *Plan) Run(dst []Field, jobs []Job) error {
 	}
 	if err := p.checkJobs(jobs); err != nil {
 		return err
+	}
+	if p.host != nil {
+		for k := range jobs {
+			p.runOne(&dst[k], jobs[k], false)
+		}
+		return nil
 	}
 	for ; len(jobs) > 1; dst, jobs = dst[min(lanes, len(dst)):], jobs[min(lanes, len(jobs)):] {
 		n := min(lanes, len(jobs))
@@ -93,7 +101,9 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 	p.halved.runOne(dst.other, job, false)
 	for j, c := range dst.Cols {
 		p.cellError(dst.CellErr[j], c, dst.other.Cols[j])
-		p.addJumps(dst.CellErr[j], dst, job, j)
+		if p.host == nil {
+			p.addJumps(dst.CellErr[j], dst, job, j)
+		}
 		for i := range dst.CellErr[j] {
 			dst.CellErr[j][i] *= safety
 		}
@@ -143,23 +153,48 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 			continue
 		}
 		for k, st := range p.solves(rough) {
+			op := &p.still
+			if p.host != nil {
+				op = f.couple(p, 1/sp.coldness.of(rough)[k])
+			}
 			s := st.length(g)
-			for j, c := range f.Cols {
-				e := p.ends(sp, j, k, s, rough)
-				if j > 0 {
-					f.lane.forward(e, c)
-					f.lane.substitute(c, st.euler)
-					continue
+			for j := range f.Cols {
+				e := p.ends(op, sp, j, k, s, rough)
+				first, last := f.solve(op, s, e, j, st.euler)
+				if c := f.Cols[j]; j == 0 {
+					book.enter(op, e, st.euler, first, last, c[0], c[len(c)-1])
 				}
-				first, last := c[0], c[len(c)-1]
-				p.eliminate(&f.lane, s, e, c)
-				f.lane.substitute(c, st.euler)
-				book.enter(e, st.euler, first, last, c[0], c[len(c)-1])
 			}
 		}
 		f.Stats.Steps += len(p.solves(rough))
 	}
 	book.close(&f.Stats, p, f.Cols[0])
+}
+
+// solve advances column j by one solve and returns its first and last value
+// before.
+func (f *Field) solve(op *operator, s float64, e ends, j int, euler bool) (first, last float64) {
+	c := f.Cols[j]
+	first, last = c[0], c[len(c)-1]
+	u := c
+	if op.k != nil {
+		u = f.potential(op, c)
+	}
+	if j == 0 {
+		f.lane.eliminate(op, s, e, u)
+	} else {
+		f.lane.forward(e, u)
+	}
+	if op.k == nil {
+		f.lane.substitute(c, euler)
+		return first, last
+	}
+	clear(u)
+	f.lane.substitute(u, euler)
+	for i, d := range u {
+		c[i] += float64(op.k[i] * d)
+	}
+	return first, last
 }
 
 func (p *Plan) solves(rough bool) schedule {
@@ -179,33 +214,32 @@ func (s step) length(g float64) float64 {
 }
 
 // ends returns what the ends of column j are in solve k of a span, s long.
-func (p *Plan) ends(sp *span, j, k int, s float64, rough bool) ends {
+func (p *Plan) ends(op *operator, sp *span, j, k int, s float64, rough bool) ends {
 	var e ends
 	if sp.inner.open {
-		e.kIn = float64(s * p.cond[0])
-		if e.vIn = sp.inner.value(p.problem.Inner, k, rough); j > 0 {
+		e.kIn = float64(s * op.cond[0])
+		if e.vIn = sp.inner.behind(p.problem.Inner, k, rough); j > 0 {
 			e.vIn = at(p.problem.Free[j-1].Inner, sp.inner.rim)
 		}
 	}
 	if sp.outer.open {
-		e.kOut = float64(s * p.cond[len(p.cond)-1])
-		if e.vOut = sp.outer.value(p.problem.Outer, k, rough); j > 0 {
+		e.kOut = float64(s * op.cond[len(op.cond)-1])
+		if e.vOut = sp.outer.behind(p.problem.Outer, k, rough); j > 0 {
 			e.vOut = at(p.problem.Free[j-1].Outer, sp.outer.rim)
 		}
+	}
+	if op.k != nil {
+		e.vIn, e.vOut = e.vIn/op.kIn, e.vOut/op.kOut
 	}
 	return e
 }
 
-// value returns what is behind an open end in solve k of its span.
-func (e *ending) value(rims []Rim, k int, rough bool) float64 {
-	switch {
-	case rims[e.rim].Kind == Held:
+// behind returns what is behind an open end in solve k of its span.
+func (e *ending) behind(rims []Rim, k int, rough bool) float64 {
+	if rims[e.rim].Kind == Held {
 		return rims[e.rim].Value
-	case rough:
-		return e.rough[k]
-	default:
-		return e.values[k]
 	}
+	return e.value.of(rough)[k]
 }
 
 // at returns slopes[i], or 0 where there are none.

@@ -83,7 +83,7 @@ func (cr *crew) step(i, n int) {
 		for k := range cr.dst {
 			if cr.g[k] != 0 {
 				one := ends{e.kIn[k], e.kOut[k], e.vIn[k], e.vOut[k]}
-				cr.books[k].enter(one, st.euler, first0[k], last0[k], c[0][k], c[last][k])
+				cr.books[k].enter(&p.still, one, st.euler, first0[k], last0[k], c[0][k], c[last][k])
 			}
 		}
 	}
@@ -93,7 +93,7 @@ func (cr *crew) ends(i, j, n int, s *four) ends4 {
 	var e ends4
 	for k := range cr.dst {
 		if cr.g[k] != 0 {
-			one := cr.plan.ends(&cr.jobs[k].Course.spans[i], j, n, s[k], false)
+			one := cr.plan.ends(&cr.plan.still, &cr.jobs[k].Course.spans[i], j, n, s[k], false)
 			e.kIn[k], e.kOut[k], e.vIn[k], e.vOut[k] = one.kIn, one.kOut, one.vIn, one.vOut
 		}
 	}

@@ -43,10 +43,10 @@ func (l *lane) resize(n int) {
 }
 
 // eliminate reduces the matrix for a step s, and the right-hand side of c.
-func (p *Plan) eliminate(l *lane, s float64, e ends, c []float64) {
+func (l *lane) eliminate(op *operator, s float64, e ends, c []float64) {
 	n := len(c)
 	m := n / 2
-	vol, cond := p.grid.volumes[:n], p.cond[:n+1]
+	vol, cond := op.vol[:n], op.cond[:n+1]
 	factor, inverse, series, rhs := l.factor[:n], l.inverse[:n], l.series[:n], l.rhs[:n]
 	// handed on from the left and right: conductance and right-hand side
 	x, f := e.kIn, float64(e.kIn*(e.vIn-c[0]))

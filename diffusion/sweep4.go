@@ -32,7 +32,7 @@ func (l *lane4) resize(n int) {
 func (p *Plan) eliminate4(l *lane4, s *four, e *ends4, c []four) {
 	n := len(c)
 	m := n / 2
-	vol, cond := p.grid.volumes[:n], p.cond[:n+1]
+	vol, cond := p.still.vol[:n], p.still.cond[:n+1]
 	x, f := &e.kIn, inflow4(&e.kIn, &e.vIn, &c[0])
 	y, g := &e.kOut, inflow4(&e.kOut, &e.vOut, &c[n-1])
 	i, j := 0, n-1
