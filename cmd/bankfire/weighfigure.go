@@ -9,6 +9,7 @@ import (
 
 	"bankfire/cmd/bankfire/internal/figure"
 	"bankfire/paths"
+	"bankfire/paths/traverse"
 	"bankfire/thermal"
 )
 
@@ -25,31 +26,43 @@ func figureNames(r *paths.Result) []string {
 	return names
 }
 
-// weighingFigure draws measured element n with every path. Where the points and
-// the start are depends on what was fitted: they are those of the best path.
+// weighingFigure draws measured element n with every path.
 func weighingFigure(r *paths.Result, n int) ([]byte, error) {
+	var picture bytes.Buffer
+	err := figure.Draw(&picture, drawnWeighing(r, n))
+	return picture.Bytes(), err
+}
+
+// drawnWeighing is what is drawn of measured element n. Everything lies at the
+// positions that were measured: the origin and the tilt that a path was fitted
+// with move its curves. The start is that of the best path.
+func drawnWeighing(r *paths.Result, n int) *figure.Weighing {
 	own := &r.Own[n]
-	f := figure.Weighing{
+	t := own.Element.Traverse
+	f := &figure.Weighing{
 		Title:    r.Study.Title,
 		Subject:  strings.Join(strings.Fields(own.Element.Name+" in "+own.Crystal.Mineral+" "+own.Crystal.Name), " "),
-		Quantity: own.Element.Name, Unit: own.Element.Unit,
+		Quantity: own.Element.Name, Unit: t.Unit,
+		Cut: !own.Crystal.Mirrored(own.Element), Inner: own.Crystal.R0,
 	}
 	for _, threshold := range r.Study.Thresholds {
 		f.Thresholds = append(f.Thresholds, figure.Threshold{Name: threshold.Name, Temp: threshold.Temp})
 	}
-	if best := bestPath(r); best != nil {
-		q, t := &best.Profiles[n], own.Element.Traverse
-		f.Start = figure.Line{At: q.Centres, Value: q.Start}
-		for i := range t.Value {
-			f.Points = append(f.Points, figure.Point{At: q.At[i], Value: t.Value[i], Sigma: q.Sigma[i]})
+	sigma := t.Sigma
+	if best := bestPath(r); best >= 0 {
+		q := &r.Paths[best].Profiles[n]
+		f.Start, sigma = drawnLine(q, q.Start), q.Sigma
+		if len(q.Free) > 0 && ran(r) > 1 {
+			f.StartOf = best + 1
 		}
+	}
+	for i, at := range t.Position {
+		f.Points = append(f.Points, figure.Point{At: at, Value: t.Value[i], Sigma: sigma[i], Limit: t.Limit != nil && t.Limit[i]})
 	}
 	for i := range r.Paths {
 		f.Paths = append(f.Paths, drawnPath(&r.Paths[i], n))
 	}
-	var picture bytes.Buffer
-	err := figure.Draw(&picture, &f)
-	return picture.Bytes(), err
+	return f
 }
 
 // drawnPath is a path as it is drawn for element n; one that was not run has no
@@ -57,14 +70,49 @@ func weighingFigure(r *paths.Result, n int) ([]byte, error) {
 func drawnPath(p *paths.PathResult, n int) figure.Path {
 	h := p.Path.History
 	drawn := figure.Path{
-		Name: p.Path.Name, Verdict: verdictInWords(p), Reproduces: p.Outcome.Verdict == paths.Reproduces,
+		Name: p.Path.Name, Verdict: verdictInWords(p),
+		Reproduces: p.Outcome.Verdict == paths.Reproduces, Barred: p.Outcome.Verdict == paths.Barred,
 		Duration: h.Duration(curveTemps(h)),
 	}
 	if len(p.Profiles) > 0 {
 		q := &p.Profiles[n]
-		drawn.Profile, drawn.Model = figure.Line{At: q.Centres, Value: q.Final}, q.Seen
+		drawn.Profile, drawn.Residuals = drawnLine(q, q.Final), q.Residuals
 	}
 	return drawn
+}
+
+// drawnLine is a profile of cell values where the traverse measured it. It goes
+// on beyond a centre of symmetry if the traverse does.
+func drawnLine(q *paths.ProfileResult, values []float64) figure.Line {
+	at, t := q.Centres, q.Element.Traverse
+	if q.Crystal.Mirrored(q.Element) && slices.Min(q.At) < at[0] {
+		at, values = mirrored(at, -1), mirrored(values, 1)
+	}
+	return figure.Line{At: asMeasured(t, at, q.Origin, q.Tilt), Value: values}
+}
+
+// mirrored returns the values with their mirror image, times sign, before them.
+func mirrored(values []float64, sign float64) []float64 {
+	both := make([]float64, 0, 2*len(values))
+	for _, v := range slices.Backward(values) {
+		both = append(both, sign*v)
+	}
+	return append(both, values...)
+}
+
+// asMeasured returns the positions, m, at which the traverse has what is truly at
+// the given ones if its zero is off by origin, m, and its line slanted by tilt,
+// rad: the inverse of [traverse.Traverse.Place].
+func asMeasured(t *traverse.Traverse, at []float64, origin, tilt float64) []float64 {
+	out := make([]float64, len(at))
+	for i, x := range at {
+		if t.Zero == traverse.Rim {
+			out[i] = t.Size - ((t.Size-x)/math.Cos(tilt) - origin)
+		} else {
+			out[i] = x/math.Cos(tilt) - origin
+		}
+	}
+	return out
 }
 
 // curvePoints is how many temperatures a drawn duration curve has, beside those
@@ -89,14 +137,25 @@ func curveTemps(h *thermal.History) []float64 {
 	return slices.Compact(temps)
 }
 
-// bestPath returns the path of least misfit; nil if none was run.
-func bestPath(r *paths.Result) *paths.PathResult {
-	var best *paths.PathResult
+// bestPath returns the number of the path of least misfit; -1 if none was run.
+func bestPath(r *paths.Result) int {
+	best := -1
 	for i := range r.Paths {
 		p := &r.Paths[i]
-		if len(p.Profiles) > 0 && (best == nil || p.Outcome.Misfit < best.Outcome.Misfit) {
-			best = p
+		if len(p.Profiles) > 0 && (best < 0 || p.Outcome.Misfit < r.Paths[best].Outcome.Misfit) {
+			best = i
 		}
 	}
 	return best
+}
+
+// ran counts the paths that were run.
+func ran(r *paths.Result) int {
+	n := 0
+	for i := range r.Paths {
+		if len(r.Paths[i].Profiles) > 0 {
+			n++
+		}
+	}
+	return n
 }

@@ -84,6 +84,15 @@ func (d *drawing) ring(at point, radius float64, fill color.RGBA, p pen) {
 	d.marks = append(d.marks, mark{kind: ring, at: []point{at}, radius: radius, fill: fill, pen: p})
 }
 
+// hang draws an open triangle, half as wide as told, that points down from a level, and
+// returns how far down its middle is.
+func (d *drawing) hang(at point, half float64, p pen) float64 {
+	a, b, tip := point{at.x - half, at.y}, point{at.x + half, at.y}, point{at.x, at.y + 1.7*half}
+	d.polygon(paper, a, b, tip)
+	d.marks = append(d.marks, mark{kind: stroke, at: []point{a, b, tip, a, b}, pen: p}) // once more along the top for round corners
+	return 0.85 * half
+}
+
 func (d *drawing) write(at point, text string, h hand) {
 	if text != "" {
 		d.marks = append(d.marks, mark{kind: words, at: []point{at}, text: text, hand: h})

@@ -2,8 +2,6 @@ package figure
 
 import (
 	"math"
-	"slices"
-	"strings"
 
 	"bankfire/thermal"
 )
@@ -16,6 +14,9 @@ const (
 	leastDecades = 1.5
 )
 
+// labelWidth is what a label of the time axis needs, with a gap, in printer's points.
+const labelWidth = 25.0
+
 // durations draws the duration curves: temperature upwards, years to the right on a
 // logarithmic axis, thresholds as thin level lines.
 func (p *page) durations() {
@@ -25,7 +26,7 @@ func (p *page) durations() {
 	if !p.anyDuration() {
 		p.vacant(p.right, "no duration curves")
 	} else {
-		p.bottom(p.right, x, decadeTicks(x.span, 7), "time spent above the temperature")
+		p.bottom(p.right, x, decadeTicks(x.span, int(p.right.w()/labelWidth)), "time spent above the temperature")
 	}
 	if temps.empty() {
 		return
@@ -133,34 +134,4 @@ func durationCurve(path *Path, x, y axis) []point {
 		}
 	}
 	return at
-}
-
-// thresholds draws the named temperatures, each with its name above or below the line.
-func (p *page) thresholds(c *crowd, y axis) {
-	var named []Threshold
-	for _, t := range p.f.Thresholds {
-		if usable(t.Temp) {
-			named = append(named, t)
-			line := p.level(y, t)
-			p.d.polyline(line, p.right, pen{width: 0.4, ink: mist})
-			c.things = append(c.things, sample(line, 4)...)
-		}
-	}
-	h := hand{size: smallSize, ink: iron, anchor: 0.5}
-	for _, t := range named {
-		name := p.d.fonts.cut(strings.Join(printable(t.Name), " "), h, 0.6*p.right.w())
-		w, high := p.d.fonts.width(name, h), capHeight*h.size
-		line := p.level(y, t)
-		slices.Reverse(line) // the right end is tried first
-		pl, ok := c.put(tag{curve: sample(line, 3), w: w, h: high, offsets: []point{{0, -5}, {0, 5}}}, -1)
-		if ok {
-			p.d.write(point{pl.at.middle().x, pl.at.y1}, name, h)
-		}
-	}
-}
-
-// level is the line of a threshold across the panel.
-func (p *page) level(y axis, t Threshold) []point {
-	v := y.at(celsius(t.Temp))
-	return []point{{p.right.x0, v}, {p.right.x1, v}}
 }

@@ -16,8 +16,8 @@ func ExampleDraw() {
 		Start:  figure.Line{At: []float64{130e-6, 150e-6, 150e-6, 170e-6}, Value: []float64{94, 94, 58, 58}},
 		Paths: []figure.Path{{
 			Name: "kept warm", Verdict: "reproduces", Reproduces: true,
-			Profile: figure.Line{At: []float64{130e-6, 150e-6, 170e-6}, Value: []float64{93, 76, 58}},
-			Model:   []float64{91, 76, 60},
+			Profile:   figure.Line{At: []float64{130e-6, 150e-6, 170e-6}, Value: []float64{93, 76, 58}},
+			Residuals: []float64{0.5, -0.5, -0.5},
 			Duration: []thermal.DurationPoint{
 				{Temp: 900, Time: 800 * thermal.Year}, {Temp: 1023.15, Time: 800 * thermal.Year}, {Temp: 1023.15, Time: 0},
 			},

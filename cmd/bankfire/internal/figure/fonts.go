@@ -133,14 +133,23 @@ func printable(text string) []string {
 	}, text))
 }
 
-// cut shortens one line to a width.
+// cut shortens one line to a width: behind a word unless that leaves less than half of what
+// there is room for.
 func (f *fonts) cut(text string, h hand, width float64) string {
 	if f.width(text, h) <= width {
 		return text
 	}
 	letters := []rune(text)
-	for len(letters) > 0 && f.width(string(letters)+"…", h) > width {
-		letters = letters[:len(letters)-1]
+	n := len(letters)
+	for n > 0 && f.width(string(letters[:n])+"…", h) > width {
+		n--
 	}
-	return strings.TrimRight(string(letters), " ") + "…"
+	word := n
+	for word > 0 && letters[word] != ' ' {
+		word--
+	}
+	if 2*word >= n {
+		n = word
+	}
+	return strings.TrimRight(string(letters[:n]), " ,;:") + "…"
 }

@@ -18,6 +18,7 @@ func TestWrap(t *testing.T) {
 		{"wraps", "a dozen letters and more", 2, []string{"a dozen letters", "and more"}},
 		{"white space", "  a\n\tdozen \x00 letters ", 2, []string{"a dozen letters"}},
 		{"empty", " ", 2, nil},
+		{"cut behind a word", "a dozen letters, and more", 1, []string{"a dozen…"}},
 	}
 	for _, test := range tests {
 		t.Run(test.name, func(t *testing.T) {

@@ -27,7 +27,7 @@ func invented(paths int) *Weighing {
 	noise := rand.New(rand.NewPCG(7, 11))
 	for um := 90.0; um <= 197; um += 2.5 {
 		v := blurred(um*1e-6, 7e-6)
-		f.Points = append(f.Points, Point{um * 1e-6, v + 1.6*noise.NormFloat64(), 1.6})
+		f.Points = append(f.Points, Point{At: um * 1e-6, Value: v + 1.6*noise.NormFloat64(), Sigma: 1.6})
 	}
 	names := []string{"kept warm", "kept cold", "cold, woken ten times", "cold, for ten times longer"}
 	words := []string{"too smooth: needs 0.083 x the diffusion", "too sharp: needs 3.2 x more diffusion", "reproduces",
@@ -56,7 +56,7 @@ func (p *Path) fill(f *Weighing, length float64) {
 		p.Profile.Value = append(p.Profile.Value, blurred(um*1e-6, length))
 	}
 	for _, q := range f.Points {
-		p.Model = append(p.Model, blurred(q.At, length))
+		p.Residuals = append(p.Residuals, (q.Value-blurred(q.At, length))/q.Sigma)
 	}
 }
 

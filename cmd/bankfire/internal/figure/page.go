@@ -19,7 +19,9 @@ const (
 	underPanel = 26.0  // labels and title below a panel
 	headRoom   = 16.0  // heading above a panel
 	rowHigh    = 31.0
-	rowLow     = 25.0 // when there are more than six paths
+	rowLow     = 25.0  // when there are more than six paths
+	rowGap     = 3.0   // between rows
+	mostRows   = 480.0 // for all rows, so that the figure fits a printed page
 	tickLength = 3.0
 	overhang   = 6.0 // of the last label of an axis
 )
@@ -30,9 +32,11 @@ type page struct {
 	d     *drawing
 	looks []pen
 	title []string
-	left  box   // the profile panel
-	right box   // the duration panel
-	strip []box // one a path, for its residuals
+	left  box       // the profile panel
+	right box       // the duration panel
+	names []label   // of the thresholds, right of the duration panel
+	said  []verdict // one a path
+	strip []box     // one a path, for its residuals
 }
 
 // newPage measures everything out for the paths of f.
@@ -44,17 +48,31 @@ func newPage(f *Weighing) *page {
 	middle := pageWidth * 0.515
 	p.left = box{margin + axisRoom, top, middle, top + topHeight}
 	p.right = box{middle + gutter, top, pageWidth - margin - overhang, top + topHeight}
-	y := p.left.y1 + underPanel + headRoom + 4
-	high := rowHigh
-	if len(f.Paths) > 6 {
-		high = rowLow
-	}
-	for range max(1, len(f.Paths)) {
-		p.strip = append(p.strip, box{p.left.x0, y, p.left.x1, y + high - 3})
-		y += high
-	}
+	p.nameThresholds()
+	y := p.stack(p.left.y1 + underPanel + headRoom + 4)
 	d.h = y + underPanel + 2*smallSize + margin
 	return p
+}
+
+// stack puts the rows of the paths below y and returns where they end. Every strip of
+// residuals is as high as the others, in the middle of a row that holds the verdict.
+func (p *page) stack(y float64) float64 {
+	low := rowHigh
+	if len(p.f.Paths) > 6 {
+		low = rowLow
+	}
+	if len(p.f.Paths) == 0 {
+		p.strip = []box{{p.left.x0, y, p.left.x1, y + low - rowGap}}
+		return y + low
+	}
+	p.said = p.verdicts(low)
+	for _, v := range p.said {
+		high := v.row(low)
+		top := y + (high-low)/2
+		p.strip = append(p.strip, box{p.left.x0, top, p.left.x1, top + low - rowGap})
+		y += high
+	}
+	return y
 }
 
 // heads writes the title and the heading of each panel.
@@ -64,17 +82,34 @@ func (p *page) heads() {
 	if subject == "" {
 		subject = p.f.Quantity
 	}
-	p.head(p.left.x0-axisRoom, p.left.y0, p.left.x1, "a", subject+": measured"+p.bars()+" and modelled")
+	end, residuals := p.left.x1, "Residuals in σ, band ±2σ"
+	if p.f.limited() {
+		end = p.limitKey() - 6
+		residuals += "; of limits −√(−2 ln likelihood)"
+	}
+	p.head(p.left.x0-axisRoom, p.left.y0, end, "a", subject+": measured"+p.bars()+" and modelled")
 	p.head(p.right.x0-axisRoom, p.right.y0, p.right.x1, "b", "Time above each temperature")
-	y := p.strip[0].y0 - 3
-	p.head(p.left.x0-axisRoom, y, p.left.x1, "c", "Residuals in σ, band ±2σ")
+	y := p.left.y1 + underPanel + headRoom + 1
+	p.head(p.left.x0-axisRoom, y, p.left.x1, "c", residuals)
 	p.head(p.right.x0-axisRoom, y, p.right.x1, "d", "Verdicts")
+}
+
+// limitKey says at the end of the first heading what the triangles are, and returns where
+// it begins.
+func (p *page) limitKey() float64 {
+	const text, half = "below detection", 1.8
+	h := hand{size: smallSize, ink: iron, anchor: 1}
+	at := point{p.left.x1, p.left.y0 - 6}
+	p.d.write(at, text, h)
+	x := at.x - p.d.fonts.width(text, h) - half - 3
+	p.d.hang(point{x, at.y - capHeight*smallSize/2 - 0.85*half}, half, pen{width: 0.5, ink: ink})
+	return x - half
 }
 
 // bars says what the error bars are.
 func (p *page) bars() string {
 	for _, q := range p.f.Points {
-		if q.usable() && q.hasError() {
+		if q.usable() && q.hasBar() {
 			return " ±1σ"
 		}
 	}

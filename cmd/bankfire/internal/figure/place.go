@@ -7,7 +7,6 @@ type tag struct {
 	curve   []point // of the page, clipped; points on it may anchor the tag
 	w, h    float64 // size of the text
 	offsets []point // from the anchor to the middle of the text, in order of preference
-	alone   bool    // the anchor should lie where other curves are far
 }
 
 // place is where a tag went.
@@ -43,15 +42,13 @@ func (c *crowd) add(in box, curves ...[]point) {
 	}
 }
 
-// put finds the place of least cost for the tag of the curve with number own (-1: a line of
-// no owner) and remembers it. ok is false if nothing lies within the bounds.
+// put finds the place of least cost for the tag of the curve with number own and remembers
+// it. ok is false if nothing lies within the bounds. An anchor should lie where other curves
+// are far.
 func (c *crowd) put(t tag, own int) (best place, ok bool) {
 	least := math.Inf(1)
 	for _, a := range t.curve {
-		lonely := 0.0
-		if t.alone {
-			lonely = c.lonely(a, own)
-		}
+		lonely := c.lonely(a, own)
 		near := c.near(t.reach(a))
 		for rank, o := range t.offsets {
 			p := place{a, boxAround(point{a.x + o.x, a.y + o.y}, t.w, t.h)}

@@ -8,7 +8,7 @@ import (
 func TestPut(t *testing.T) {
 	level := func(y float64) []point { return sample([]point{{0, y}, {100, y}}, 2) }
 	numeral := func(curve []point) tag {
-		return tag{curve: curve, w: 6, h: 5, offsets: around(6, 5), alone: true}
+		return tag{curve: curve, w: 6, h: 5, offsets: around(6, 5)}
 	}
 	t.Run("free", func(t *testing.T) {
 		c := crowd{bounds: box{0, 0, 100, 100}, curves: [][]point{level(50)}}

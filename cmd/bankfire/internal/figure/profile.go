@@ -1,5 +1,11 @@
 package figure
 
+import (
+	"fmt"
+	"math"
+	"strconv"
+)
+
 const micrometre = 1e-6 // m
 
 // profile draws the traverse with the start and the modelled profiles.
@@ -12,7 +18,7 @@ func (p *page) profile() {
 	x := axis{across.padded(0.03), p.left.x0, p.left.x1}
 	y := axis{p.heights(x.span).padded(0.08), p.left.y1, p.left.y0}
 	xt, xp := roundTicks(x.span, 7)
-	p.bottom(p.left, x, xt, distanceTitle(xp))
+	p.bottom(p.left, x, xt, p.distanceTitle(xp))
 	yt, yp := roundTicks(y.span, 6)
 	p.side(p.left, y, yt, inUnit(p.f.Quantity, p.f.Unit, yp))
 	c := &crowd{bounds: p.left.inset(1)}
@@ -27,21 +33,40 @@ func (p *page) profile() {
 	p.curves(p.left, curves)
 	c.add(p.left, append(curves, start)...)
 	p.tags(c)
-	p.tag(c, len(curves), "start", hand{size: smallSize, ink: ink, anchor: 0.5})
+	p.tag(c, len(curves), p.f.startName(), hand{size: smallSize, ink: ink, anchor: 0.5})
 }
 
-// curves draws a curve a path. The thick embers come first: what lies on them stays visible.
+// startName says which start is drawn: one of many that were fitted, or the only one.
+func (f *Weighing) startName() string {
+	if f.StartOf == 0 {
+		return "start"
+	}
+	return fmt.Sprintf("start of path %d", f.StartOf)
+}
+
+// curves draws a curve a path. The light barred ones lie lowest, then the thick embers: what
+// lies on them stays visible.
 func (p *page) curves(in box, curves [][]point) {
-	for _, ember := range []bool{true, false} {
+	for _, kind := range []fate{barred, reproduces, fails} {
 		for i, at := range curves {
-			if p.f.Paths[i].Reproduces == ember {
+			if p.f.Paths[i].fate() == kind {
 				p.d.polyline(at, in, p.looks[i])
 			}
 		}
 	}
 }
 
-func distanceTitle(power int) string { return inUnit("distance from the centre", "µm", power) }
+// distanceTitle is that of the axis of positions, um times 10^power.
+func (p *page) distanceTitle(power int) string {
+	name := "distance from the centre"
+	switch inner := p.f.Inner / micrometre; {
+	case p.f.Cut && inner == 0:
+		name = "distance from the inner end"
+	case p.f.Cut && usable(inner):
+		name += ", inner end at " + strconv.FormatFloat(inner/math.Pow10(power), 'g', 5, 64)
+	}
+	return inUnit(name, "µm", power)
+}
 
 // window is the range of positions, um: that of the points or, without points, of the lines.
 func (p *page) window() span {
@@ -79,7 +104,7 @@ func (p *page) heights(across span) span {
 	for _, q := range p.f.Points {
 		if q.usable() {
 			s.take(q.Value)
-			if q.hasError() {
+			if q.hasBar() {
 				s.take(q.Value-q.Sigma, q.Value+q.Sigma)
 			}
 		}
@@ -98,26 +123,34 @@ func (p *page) heights(across span) span {
 	return s
 }
 
-// points draws the traverse and tells the crowd where it is.
+// points draws the traverse and tells the crowd where it is: rings with bars, and a
+// triangle that hangs from the limit for a value below detection.
 func (p *page) points(c *crowd, x, y axis) {
-	radius := min(1.5, max(0.6, 70/float64(len(p.f.Points))))
-	pn := pen{width: 0.5, ink: ink}
+	radius, pn := min(1.5, max(0.6, 70/float64(len(p.f.Points)))), pen{width: 0.5, ink: ink}
 	for _, q := range p.f.Points {
 		if !q.usable() {
 			continue
 		}
 		m := point{x.at(q.At / micrometre), y.at(q.Value)}
-		if q.hasError() {
-			bar := []point{{m.x, y.at(q.Value - q.Sigma)}, {m.x, y.at(q.Value + q.Sigma)}}
-			for _, piece := range clip(bar, p.left) {
-				p.d.line(piece[0], piece[1], pen{width: 0.5, ink: mist})
-				c.things = append(c.things, sample(piece, 2)...)
-			}
+		if q.hasBar() {
+			p.bar(c, []point{{m.x, y.at(q.Value - q.Sigma)}, {m.x, y.at(q.Value + q.Sigma)}})
 		}
-		p.d.ring(m, radius, paper, pn)
+		if q.Limit {
+			m.y += p.d.hang(m, 1.2*radius, pn)
+		} else {
+			p.d.ring(m, radius, paper, pn)
+		}
 		c.things = append(c.things, m)
 	}
 	c.things = thin(c.things, mostThings)
+}
+
+// bar draws the error of a point as far as it lies in the panel.
+func (p *page) bar(c *crowd, ends []point) {
+	for _, piece := range clip(ends, p.left) {
+		p.d.line(piece[0], piece[1], pen{width: 0.5, ink: mist})
+		c.things = append(c.things, sample(piece, 2)...)
+	}
 }
 
 // curve puts a line on the page.
@@ -141,7 +174,7 @@ func (p *page) tags(c *crowd) {
 // tag writes a text beside curve own of the crowd, with a leader to it.
 func (p *page) tag(c *crowd, own int, text string, h hand) {
 	w, high := p.d.fonts.width(text, h), capHeight*h.size
-	t := tag{curve: thin(c.curves[own], 60), w: w, h: high, offsets: around(w, high), alone: true}
+	t := tag{curve: thin(c.curves[own], 60), w: w, h: high, offsets: around(w, high)}
 	pl, ok := c.put(t, own)
 	if !ok {
 		return

@@ -31,7 +31,7 @@ func (p *page) rows() {
 	}
 	xt, xp := roundTicks(x.span, 7)
 	last := p.strip[len(p.strip)-1]
-	p.bottom(box{last.x0, last.y0, last.x1, last.y1 + 2}, x, xt, distanceTitle(xp))
+	p.bottom(box{last.x0, last.y0, last.x1, last.y1 + 2}, x, xt, p.distanceTitle(xp))
 }
 
 // limit is the half-width of the residual axes, one for all paths.
@@ -73,7 +73,7 @@ func (p *page) residuals(i int, x axis, limit float64) bool {
 	dot := min(1.1, max(0.5, 60/float64(n)))
 	for k, q := range p.f.Points {
 		if r, ok := p.f.residual(&p.f.Paths[i], k); ok {
-			p.residual(point{x.at(q.At / micrometre), y.at(r)}, b, dot, p.looks[i].ink)
+			p.residual(point{x.at(q.At / micrometre), y.at(r)}, b, dot, p.looks[i].ink, q.Limit)
 		}
 	}
 	if math.Abs(worst) > limit {
@@ -83,14 +83,17 @@ func (p *page) residuals(i int, x axis, limit float64) bool {
 	return true
 }
 
-// residual draws a dot or, at the edge of the strip, an arrowhead that points to where
-// the dot would be.
-func (p *page) residual(at point, b box, r float64, c color.RGBA) {
+// residual draws a dot, an open triangle for a limit or, at the edge of the strip, an
+// arrowhead that points to where it would be.
+func (p *page) residual(at point, b box, r float64, c color.RGBA, limit bool) {
 	switch {
 	case at.y < b.y0:
 		p.d.polygon(c, point{at.x - 1.4, b.y0 + 2.8}, point{at.x + 1.4, b.y0 + 2.8}, point{at.x, b.y0})
 	case at.y > b.y1:
 		p.d.polygon(c, point{at.x - 1.4, b.y1 - 2.8}, point{at.x + 1.4, b.y1 - 2.8}, point{at.x, b.y1})
+	case limit:
+		half := 1.2 * r
+		p.d.hang(point{at.x, at.y - 0.85*half}, half, pen{width: 0.5, ink: c})
 	default:
 		p.d.ring(at, r, c, pen{width: 0.2, ink: c})
 	}
@@ -111,32 +114,75 @@ func sigmas(r float64) string {
 // whyNoResiduals says what is wanting.
 func (p *page) whyNoResiduals(i int) string {
 	switch {
-	case len(p.f.Paths[i].Model) == 0:
-		return "no modelled values"
+	case p.f.Paths[i].Barred:
+		return "barred: not run"
+	case len(p.f.Paths[i].Residuals) == 0:
+		return "no residuals"
 	case p.bars() == "":
 		return "no errors given, so no residuals in σ"
 	}
 	return "no finite residuals"
 }
 
-// verdict writes what became of path i beside its strip: three lines of text at most.
+// verdict is what is written beside the strip of a path.
+type verdict struct{ names, words []string }
+
+// Lines of text in a row: what every row has room for, and what it may grow to.
+const (
+	leastLines = 3
+	mostLines  = 7
+)
+
+// verdicts wraps the names and verdicts of all paths into as many lines a row as the page
+// has room for; low is the height of a row of three lines.
+func (p *page) verdicts(low float64) []verdict {
+	for most := mostLines; ; most-- {
+		all, high := make([]verdict, len(p.f.Paths)), 0.0
+		for i := range p.f.Paths {
+			all[i] = p.wrapped(&p.f.Paths[i], most)
+			high += all[i].row(low)
+		}
+		if high <= mostRows || most == leastLines {
+			return all
+		}
+	}
+}
+
+// wrapped breaks the verdict of a path and its name into so many lines.
+func (p *page) wrapped(path *Path, most int) verdict {
+	width := pageWidth - margin - p.verdictAt()
+	words := p.d.fonts.wrap(path.Verdict, hand{size: textSize}, width, most-1)
+	names := p.d.fonts.wrap(path.Name, hand{size: textSize, bold: true}, width, min(2, most-max(1, len(words))))
+	return verdict{names, words}
+}
+
+// verdictAt is where the names and verdicts begin.
+func (p *page) verdictAt() float64 { return p.right.x0 + 16 }
+
+// high is the height of the text from the first cap height to the last base line.
+func (v *verdict) high() float64 {
+	return leading*textSize*float64(len(v.names)+len(v.words)-1) + capHeight*textSize
+}
+
+// row is the height of a row for the text, at least low.
+func (v *verdict) row(low float64) float64 { return max(low, v.high()+2.5*rowGap) }
+
+// verdict writes what became of path i beside its strip.
 func (p *page) verdict(i int) {
-	path, mid := &p.f.Paths[i], p.strip[i].middle().y
+	v, mid := &p.said[i], p.strip[i].middle().y
 	digits := hand{size: textSize, bold: true, ink: deep(p.looks[i].ink), anchor: 0.5}
 	p.d.line(point{p.right.x0 - 24, mid}, point{p.right.x0, mid}, p.looks[i])
 	p.d.write(point{p.right.x0 + 8, mid + capHeight*textSize/2}, pathNumber(i), digits)
 
 	name, say := hand{size: textSize, bold: true, ink: ink}, hand{size: textSize, ink: ink}
-	if path.Reproduces {
+	switch p.f.Paths[i].fate() {
+	case reproduces:
 		say.ink = embers[0]
+	case barred:
+		name.ink, say.ink = iron, iron
 	}
-	x := p.right.x0 + 16
-	width := p.right.x1 + overhang - x
-	verdict := p.d.fonts.wrap(path.Verdict, say, width, 2)
-	names := p.d.fonts.wrap(path.Name, name, width, 3-max(1, len(verdict)))
-	high := leading*textSize*float64(len(names)+len(verdict)-1) + capHeight*textSize
-	y := p.d.paragraph(point{x, mid - high/2 + capHeight*textSize}, names, name)
-	p.d.paragraph(point{x, y}, verdict, say)
+	y := p.d.paragraph(point{p.verdictAt(), mid - v.high()/2 + capHeight*textSize}, v.names, name)
+	p.d.paragraph(point{p.verdictAt(), y}, v.words, say)
 }
 
 // pathNumber is the number of a path on the page.

@@ -18,17 +18,25 @@ type Weighing struct {
 	Unit       string  // of every value: "ppm"; may be empty
 	Points     []Point // the traverse, in any order
 	Start      Line    // the profile before diffusion; may be empty
+	StartOf    int     // number, from 1, of the path with which Start was fitted; 0 = all paths have this one
+	Cut        bool    // the inner end is not the crystal's centre
+	Inner      float64 // position of such an inner end, m; 0 = positions count from it
 	Paths      []Path  // in the order of the report; those beyond the first 16 are only counted
 	Thresholds []Threshold
 }
 
-// Point is one analysis: position in metres from the crystal's centre, value and
-// its error (one sigma) in the unit of the figure. A Sigma that is not above zero
-// means that no error was given: the point gets no bar and no residual.
-type Point struct{ At, Value, Sigma float64 }
+// Point is one analysis: position as measured, in metres from the crystal's centre
+// or from the inner end of a piece, value and its error (one sigma) in the unit of
+// the figure. A Sigma that is not above zero means that no error was given: the
+// point gets no bar and no residual. A Limit is a value below detection, known
+// only to be less than Value: it gets no bar either.
+type Point struct {
+	At, Value, Sigma float64
+	Limit            bool
+}
 
-// Line is a profile: values at positions, m, in ascending order. Equal positions
-// make a step. At and Value have one length.
+// Line is a profile: values at positions like those of the points, m, in ascending
+// order. Equal positions make a step. At and Value have one length.
 type Line struct{ At, Value []float64 }
 
 // Path is one path with what became of it.
@@ -36,8 +44,9 @@ type Path struct {
 	Name       string
 	Verdict    string                  // in words: "too sharp: needs 3.2 x more diffusion"
 	Reproduces bool                    // draws the path as an ember, else as slate
+	Barred     bool                    // ruled out before it was run: draws it thin and light, in dots
 	Profile    Line                    // modelled, after the spot
-	Model      []float64               // modelled value at each of the Points; empty if there is none
+	Residuals  []float64               // (measured - modelled)/sigma of each of the Points, of a limit as it was judged; empty if there are none
 	Duration   []thermal.DurationPoint // time spent above each temperature, temperatures ascending; equal ones make a jump
 }
 
@@ -60,7 +69,7 @@ var errNothing = errors.New("figure: nothing to draw: no finite point, profile, 
 // Draw writes the figure to w as a PNG, 180 mm wide at 300 dots an inch; its height
 // grows with the number of paths. Equal data give equal bytes. Draw returns an error
 // when the data hold nothing that can be drawn or when w fails. It panics when the
-// two slices of a Line differ in length, or a Model and the Points.
+// two slices of a Line differ in length, or Residuals and the Points.
 func Draw(w io.Writer, f *Weighing) error {
 	d, err := compose(f)
 	if err != nil {
@@ -97,8 +106,8 @@ func (f *Weighing) mustFit() {
 	for i := range f.Paths {
 		p := &f.Paths[i]
 		p.Profile.mustFit(p.Name)
-		if n := len(p.Model); n != 0 && n != len(f.Points) {
-			panic(fmt.Sprintf("figure: path %q: len(Model) %d != len(Points) %d", p.Name, n, len(f.Points)))
+		if n := len(p.Residuals); n != 0 && n != len(f.Points) {
+			panic(fmt.Sprintf("figure: path %q: len(Residuals) %d != len(Points) %d", p.Name, n, len(f.Points)))
 		}
 	}
 }
@@ -131,6 +140,8 @@ func (p Point) usable() bool { return usable(p.At/micrometre) && usable(p.Value)
 
 func (p Point) hasError() bool { return p.Sigma > 0 && usable(p.Sigma) }
 
+func (p Point) hasBar() bool { return p.hasError() && !p.Limit }
+
 // drawable reports whether at least two neighbours can be joined.
 func (l *Line) drawable() bool {
 	for i := 1; i < len(l.At); i++ {
@@ -155,13 +166,21 @@ func lasting(q thermal.DurationPoint) bool {
 	return usable(q.Temp) && usable(q.Time) && q.Time > 0
 }
 
-// residual is (measured - modelled)/sigma of point i; ok is false where the point,
-// its error or the model is wanting.
+// limited reports whether a value below detection is drawn.
+func (f *Weighing) limited() bool {
+	for _, p := range f.Points {
+		if p.Limit && p.usable() {
+			return true
+		}
+	}
+	return false
+}
+
+// residual is that of point i; ok is false where the point, its error or the
+// residual is wanting.
 func (f *Weighing) residual(p *Path, i int) (r float64, ok bool) {
-	q := f.Points[i]
-	if len(p.Model) == 0 || !q.usable() || !q.hasError() {
+	if q := f.Points[i]; len(p.Residuals) == 0 || !q.usable() || !q.hasError() {
 		return 0, false
 	}
-	r = (q.Value - p.Model[i]) / q.Sigma
-	return r, usable(r)
+	return p.Residuals[i], usable(p.Residuals[i])
 }

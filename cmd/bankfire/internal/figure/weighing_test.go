@@ -50,9 +50,138 @@ func TestDrawSize(t *testing.T) {
 	if heights[1] >= heights[4] || heights[4] >= heights[mostPaths+5] {
 		t.Errorf("heights by number of paths %v: want rising", heights)
 	}
-	const a4 = 297 / 25.4 * dotsPerInch
-	if float64(heights[mostPaths+5]) > a4 {
-		t.Errorf("many paths are %d pixels high, more than a printed page", heights[mostPaths+5])
+}
+
+// However much there is to say, the figure fits a printed page.
+func TestFitsPage(t *testing.T) {
+	f := invented(mostPaths + 5)
+	f.Title = strings.Repeat("a long title ", 20)
+	for i := range f.Paths {
+		f.Paths[i].Verdict = strings.Repeat("many words ", 60)
+	}
+	d, err := compose(f)
+	if err != nil {
+		t.Fatal(err)
+	}
+	const a4 = 297 / 25.4 * 72 // pt
+	if d.h > a4 {
+		t.Errorf("the page is %.0f pt high, more than %.0f", d.h, a4)
+	}
+	checkTexts(t, d)
+}
+
+// A sentence of a usual length is there to its end.
+func TestVerdictIsWhole(t *testing.T) {
+	f := invented(4)
+	f.Paths[1].Verdict = "at odds: Ti in HF-12 asks for 0.083 times as much diffusion, Sr in HF-P3 for 3.2 times, a ratio of 38.6"
+	f.Paths[2].Verdict = "barred: it is above lock-up (730 C) for 9 kyr without a break, 3 kyr of it within wake 3, longer than 3 kyr; " +
+		"its life is 900 yr, shorter than 1 kyr, and it ends before zone mantle"
+	d, err := compose(f)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, end := range []string{"of 38.6", "mantle"} {
+		if !says(d, end) {
+			t.Errorf("no line ends in %q", end)
+		}
+	}
+	checkTexts(t, d)
+}
+
+// A value below detection is a triangle at its limit, without a bar, and says so.
+func TestLimits(t *testing.T) {
+	f := invented(1)
+	f.Points = []Point{{At: 100e-6, Value: 90, Sigma: 2}, {At: 190e-6, Value: 60, Sigma: 20, Limit: true}}
+	f.Paths[0].Residuals = []float64{0, -1.5}
+	d, err := compose(f)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var rings, triangles, bars int
+	p := newPage(f)
+	for i := range d.marks {
+		switch m := &d.marks[i]; {
+		case m.kind == ring:
+			rings++
+		case m.kind == stroke && len(m.at) == 5 && m.at[0] == m.at[3]:
+			triangles++
+			if !(m.at[2].y > m.at[0].y && m.at[0].y == m.at[1].y) {
+				t.Errorf("the triangle %v does not point down", m.at)
+			}
+		case m.kind == stroke && len(m.at) == 2 && m.at[0].x == m.at[1].x && p.left.inset(1).holds(d.reach(m)) && m.pen.ink == mist:
+			bars++
+		}
+	}
+	if rings != 2 || triangles != 3 || bars != 1 { // point and residual; the same and the key; one
+		t.Errorf("%d rings, %d triangles, %d bars", rings, triangles, bars)
+	}
+	if !says(d, "below detection") || !says(d, "of limits") {
+		t.Error("the figure does not say what the triangles are")
+	}
+	if f.Points[1].Limit = false; says(mustCompose(t, f), "below detection") {
+		t.Error("the figure speaks of limits where there are none")
+	}
+}
+
+func mustCompose(t *testing.T, f *Weighing) *drawing {
+	t.Helper()
+	d, err := compose(f)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return d
+}
+
+// A barred path is thin and light, lies below the others, and has no residuals.
+func TestBarred(t *testing.T) {
+	f := invented(4)
+	f.Paths[3].Barred, f.Paths[3].Residuals, f.Paths[3].Profile = true, nil, Line{}
+	p, im := laidOut(t, f)
+	if look := p.looks[3]; look.ink != ghost || look.width >= p.looks[0].width {
+		t.Errorf("the barred path is drawn with %v, another with %v", look, p.looks[0])
+	}
+	if n := count(im, p.right, ghost); n < 20 {
+		t.Errorf("%d pixels of the barred path in the duration panel", n)
+	}
+	d, last := mustCompose(t, f), -1
+	for i := range d.marks {
+		switch m := &d.marks[i]; {
+		case m.kind != stroke || !p.right.holds(d.reach(m)):
+		case m.pen.ink == ghost:
+			last = i
+		case m.pen.ink == embers[0] && i < last:
+			t.Error("the barred path lies on another")
+		}
+	}
+	if !says(d, "barred: not run") {
+		t.Error("the figure does not say why there are no residuals")
+	}
+}
+
+func TestNamesOfLines(t *testing.T) {
+	tests := []struct {
+		name  string
+		spoil func(f *Weighing)
+		want  string
+	}{
+		{"start of all", func(*Weighing) {}, "start"},
+		{"start of one", func(f *Weighing) { f.StartOf = 3 }, "start of path 3"},
+		{"half crystal", func(*Weighing) {}, "distance from the centre (µm)"},
+		{"piece from zero", func(f *Weighing) { f.Cut = true }, "distance from the inner end (µm)"},
+		{"piece of a crystal", func(f *Weighing) { f.Cut, f.Inner = true, 52.5e-6 }, "distance from the centre, inner end at 52.5 (µm)"},
+		{"no such end", func(f *Weighing) { f.Cut, f.Inner = true, math.NaN() }, "distance from the centre (µm)"},
+	}
+	for _, test := range tests {
+		t.Run(test.name, func(t *testing.T) {
+			f := invented(3)
+			test.spoil(f)
+			for _, m := range mustCompose(t, f).marks {
+				if m.text == test.want {
+					return
+				}
+			}
+			t.Errorf("no text is %q", test.want)
+		})
 	}
 }
 
@@ -190,8 +319,10 @@ func TestPoorData(t *testing.T) {
 	}{
 		{"nothing", func(f *Weighing) { *f = Weighing{} }, ""},
 		{"only names", func(f *Weighing) { *f = Weighing{Title: "t", Paths: []Path{{Name: "p", Verdict: "barred"}}} }, ""},
-		{"only NaN", func(f *Weighing) { *f = Weighing{Points: []Point{{nan, 1, 1}, {1, nan, 1}}} }, ""},
-		{"no points", func(f *Weighing) { f.Points = nil; f.unmodel() }, "no modelled values"},
+		{"only NaN", func(f *Weighing) {
+			*f = Weighing{Points: []Point{{At: nan, Value: 1, Sigma: 1}, {At: 1, Value: nan, Sigma: 1}}}
+		}, ""},
+		{"no points", func(f *Weighing) { f.Points = nil; f.unmodel() }, "no residuals"},
 		{"no profiles either", func(f *Weighing) {
 			f.Points, f.Start = nil, Line{}
 			f.unmodel()
@@ -203,19 +334,19 @@ func TestPoorData(t *testing.T) {
 				f.Points[i].Sigma = [...]float64{0, nan, -1, math.Inf(1)}[i%4]
 			}
 		}, "no errors given"},
-		{"NaN models", func(f *Weighing) {
-			for i := range f.Paths[0].Model {
-				f.Paths[0].Model[i] = nan
+		{"NaN residuals", func(f *Weighing) {
+			for i := range f.Paths[0].Residuals {
+				f.Paths[0].Residuals[i] = nan
 			}
 		}, "no finite residuals"},
 		{"one point", func(f *Weighing) {
 			f.Points = f.Points[:1]
 			for i := range f.Paths {
-				f.Paths[i].Model = f.Paths[i].Model[:1]
+				f.Paths[i].Residuals = f.Paths[i].Residuals[:1]
 			}
 		}, "±1σ"},
 		{"only thresholds", func(f *Weighing) { *f = Weighing{Thresholds: f.Thresholds} }, "lock-up"},
-		{"far residual", func(f *Weighing) { f.Paths[0].Model[3] = 1e9 }, "to −10⁸σ"},
+		{"far residual", func(f *Weighing) { f.Paths[0].Residuals[3] = -2e8 }, "to −10⁸σ"},
 		{"tiny values", func(f *Weighing) { f.scale(1e-7) }, "Ti (10⁻⁵ ppm)"},
 		{"huge values", func(f *Weighing) { f.scale(1e60) }, "Ti (10⁶² ppm)"},
 		{"all zero", func(f *Weighing) { f.scale(0) }, "kept warm"},
@@ -242,7 +373,7 @@ func TestPoorData(t *testing.T) {
 
 func (f *Weighing) unmodel() {
 	for i := range f.Paths {
-		f.Paths[i].Profile, f.Paths[i].Model = Line{}, nil
+		f.Paths[i].Profile, f.Paths[i].Residuals = Line{}, nil
 	}
 }
 
@@ -255,7 +386,6 @@ func (f *Weighing) scale(by float64) {
 	times(f.Start.Value)
 	for i := range f.Paths {
 		times(f.Paths[i].Profile.Value)
-		times(f.Paths[i].Model)
 	}
 	for i := range f.Points {
 		f.Points[i].Value *= by
@@ -275,6 +405,10 @@ func TestRandomDataStayOnThePage(t *testing.T) {
 			}
 		}
 		f := invented(3)
+		for i := range f.Points {
+			f.Points[i].Limit = random.IntN(4) == 0
+		}
+		f.Paths[random.IntN(3)].Barred = random.IntN(2) == 0
 		f.spoil(spoil)
 		d, err := compose(f)
 		if err != nil {
@@ -303,6 +437,7 @@ func (f *Weighing) spoil(each func(x *float64)) {
 			each(&values[i])
 		}
 	}
+	each(&f.Inner)
 	for i := range f.Points {
 		each(&f.Points[i].At)
 		each(&f.Points[i].Value)
@@ -314,7 +449,7 @@ func (f *Weighing) spoil(each func(x *float64)) {
 		p := &f.Paths[k]
 		all(p.Profile.At)
 		all(p.Profile.Value)
-		all(p.Model)
+		all(p.Residuals)
 		for i := range p.Duration {
 			each(&p.Duration[i].Temp)
 			each(&p.Duration[i].Time)
@@ -331,7 +466,7 @@ func TestMismatchPanics(t *testing.T) {
 		spoil func(f *Weighing)
 		want  string
 	}{
-		{"model", func(f *Weighing) { f.Paths[0].Model = []float64{1} }, `figure: path "kept warm": len(Model) 1 != len(Points) 43`},
+		{"residuals", func(f *Weighing) { f.Paths[0].Residuals = []float64{1} }, `figure: path "kept warm": len(Residuals) 1 != len(Points) 43`},
 		{"profile", func(f *Weighing) { f.Start.At = nil }, `figure: profile "start": len(At) 0 != len(Value) 4`},
 	}
 	for _, test := range tests {
