@@ -279,18 +279,24 @@ func (p *profile) starts() [][][]float64 {
 
 // fitTo fits the values that are open to the data, for columns of cell means. A
 // concentration that would come out negative is held at zero, the most negative
-// one first.
+// one first. To relative data the fit is
+//
+//	value = offset + scale base + sum of x column,
+//
+// each x being scale times the concentration that it stands for.
 func (p *profile) fitTo(cols [][][]float64) least.Solution {
+	return p.fitAbout(cols, make([]float64, len(p.free)))
+}
+
+// fitAbout is fitTo, for relative data with the free values counted from those
+// of about, in the element's unit.
+func (p *profile) fitAbout(cols [][][]float64, about []float64) least.Solution {
 	v := p.lens.look(cols)
 	n := 1 + len(p.free)
 	model := func(dst [][]float64, bent []float64) {
 		v.columns(dst[:n], bent)
-		if p.grey { // value = offset + scale (base + sum of free x columns)
-			copy(dst[n], dst[0])
-			clear(dst[0])
-			for i := range dst[n+1] {
-				dst[n+1][i] = 1
-			}
+		if p.grey {
+			p.relative(dst, about)
 		}
 	}
 	problem := p.fit
@@ -305,6 +311,22 @@ func (p *profile) fitTo(cols [][][]float64) least.Solution {
 		at = problem.Solve(model)
 	}
 	return at
+}
+
+// relative turns the columns of an element into those of relative data: of the
+// scale, the base with the given amounts of the free columns, and of the offset.
+func (p *profile) relative(dst [][]float64, about []float64) {
+	n := 1 + len(p.free)
+	copy(dst[n], dst[0])
+	clear(dst[0])
+	for i := range dst[n+1] {
+		dst[n+1][i] = 1
+	}
+	for j, x := range about {
+		for i, c := range dst[1+j] {
+			dst[n][i] += x * c
+		}
+	}
 }
 
 // pinned is the standard deviation, as a part of the largest datum, with which
@@ -356,7 +378,8 @@ func (p *profile) full(chiSq sampler) (float64, error) {
 	return values[0], nil
 }
 
-// amounts are the values that make one profile of the columns,
+// amounts are the values that make one profile of the columns, as the traverse
+// measures it,
 //
 //	profile = offset + scale answer + sum of value x derivative;
 //
@@ -372,6 +395,18 @@ func (p *profile) amounts(at least.Solution) amounts {
 		return amounts{at.Linear[k+1], at.Linear[k], at.Linear[:k]}
 	}
 	return amounts{0, 1, at.Linear}
+}
+
+// stated returns the amounts that make the profile in the element's unit, not in
+// that of relative data. All free values are 0 where no scale was found.
+func (a amounts) stated() amounts {
+	out := amounts{scale: 1, values: make([]float64, len(a.values))}
+	for j, x := range a.values {
+		if a.scale != 0 {
+			out.values[j] = x / a.scale
+		}
+	}
+	return out
 }
 
 // of returns the profile that the amounts make of the columns.

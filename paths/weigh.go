@@ -47,7 +47,7 @@ type ProfileResult struct {
 	Origin  float64   // by which the file's zero is off in the fit, m; see traverse.Traverse.Place
 	Tilt    float64   // of the line in the fit, rad
 	At      []float64 // where the points are in the fit, m from the crystal's centre
-	Seen    []float64 // what the instrument would have shown at the points, in the element's unit
+	Seen    []float64 // what the instrument would have shown at the points, in the traverse's unit
 	Sigma   []float64 // the points' standard deviations, extra scatter included
 	// Residuals are (measured - modelled)/sigma; of a value below detection minus
 	// the root of -2 ln of its likelihood.
@@ -366,23 +366,10 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 // freeFits names the fitted values.
 func (p *profile) freeFits(at least.Solution) []FreeFit {
 	var fits []FreeFit
-	unit := p.element.Unit
-	for j, v := range p.free {
-		f := FreeFit{Name: v.Name, Value: at.Linear[j], Sigma: at.Sigma[j], Unit: unit, HasPrior: v.HasPrior}
-		switch {
-		case v.HasPrior:
-			f.Value += v.Prior.Value
-		case p.isPinned(at, j):
-			f.Value, f.Sigma, f.AtEnd = 0, 0, true
-		case f.Sigma > unseen*p.size:
-			f.Sigma = math.Inf(1)
-		}
-		fits = append(fits, f)
-	}
 	if p.grey {
-		k := len(p.free)
-		fits = append(fits, FreeFit{Name: "scale", Value: at.Linear[k], Sigma: at.Sigma[k]},
-			FreeFit{Name: "offset", Value: at.Linear[k+1], Sigma: at.Sigma[k+1]})
+		fits = p.greyFits(at)
+	} else {
+		fits = p.plainFits(at)
 	}
 	edge, tilt, origin := p.lens.values(at.Bent)
 	add := func(n study.Nuisance, name string, value, scale float64, unit string) {
@@ -396,6 +383,45 @@ func (p *profile) freeFits(at least.Solution) []FreeFit {
 	add(p.lens.tilt, "tilt", tilt, 180/math.Pi, "deg")
 	add(p.lens.origin, "origin", origin, 1e6, "um")
 	return fits
+}
+
+// plainFits names the fitted plateaux and rim values.
+func (p *profile) plainFits(at least.Solution) []FreeFit {
+	var fits []FreeFit
+	for j, v := range p.free {
+		f := FreeFit{Name: v.Name, Value: at.Linear[j], Sigma: at.Sigma[j], Unit: p.element.Unit, HasPrior: v.HasPrior}
+		switch {
+		case v.HasPrior:
+			f.Value += v.Prior.Value
+		case p.isPinned(at, j):
+			f.Value, f.Sigma, f.AtEnd = 0, 0, true
+		case f.Sigma > unseen*p.size:
+			f.Sigma = math.Inf(1)
+		}
+		fits = append(fits, f)
+	}
+	return fits
+}
+
+// greyFits names the values fitted to relative data, in the element's unit, with
+// the scale and offset between. Of a value v the fit knows x = scale v; its
+// error comes from a fit about v, in which x and with it what the error of the
+// scale would add is 0.
+func (p *profile) greyFits(at least.Solution) []FreeFit {
+	var fits []FreeFit
+	k := len(p.free)
+	scale := at.Linear[k]
+	values := p.amounts(at).stated().values
+	about := p.fitAbout(p.columns(0), values)
+	for j, v := range p.free {
+		f := FreeFit{Name: v.Name, Value: values[j], Sigma: about.Sigma[j] / math.Abs(scale), Unit: p.element.Unit}
+		if !(about.Sigma[j] <= unseen*p.size) || scale == 0 {
+			f.Sigma = math.Inf(1)
+		}
+		fits = append(fits, f)
+	}
+	return append(fits, FreeFit{Name: "scale", Value: scale, Sigma: at.Sigma[k]},
+		FreeFit{Name: "offset", Value: at.Linear[k+1], Sigma: at.Sigma[k+1], Unit: p.element.Traverse.Unit})
 }
 
 // endMargin is the part of a range within which a value is at its end.

@@ -114,7 +114,7 @@ func profilesTable(w io.Writer, r *paths.Result) error {
 	table.row("crystal", "element", "path", "from centre [um]", "unit", "start", "end")
 	for q, path := range profiles(r) {
 		for k, x := range q.Centres {
-			table.row(q.Crystal.Name, q.Element.Name, path, cell(x*1e6), q.Element.Unit, cell(q.Start[k]), cell(q.Final[k]))
+			table.row(q.Crystal.Name, q.Element.Name, path, cell(x*1e6), q.Element.Traverse.Unit, cell(q.Start[k]), cell(q.Final[k]))
 		}
 	}
 	return table.end()
@@ -129,7 +129,7 @@ func pointsTable(w io.Writer, r *paths.Result) error {
 	for q, path := range profiles(r) {
 		t := q.Element.Traverse
 		for k, x := range q.At {
-			table.row(q.Crystal.Name, q.Element.Name, path, strconv.Itoa(t.Line[k]), cell(x*1e6), q.Element.Unit,
+			table.row(q.Crystal.Name, q.Element.Name, path, strconv.Itoa(t.Line[k]), cell(x*1e6), t.Unit,
 				cell(t.Value[k]), cell(q.Sigma[k]), cell(q.Seen[k]), cell(q.Residuals[k]))
 		}
 	}

@@ -189,3 +189,20 @@ func TestTableOnFullDisk(t *testing.T) {
 		})
 	}
 }
+
+// TestTablesOfRelativeValues has what the instrument shows in its own unit, and what was fitted in the element's.
+func TestTablesOfRelativeValues(t *testing.T) {
+	r := smallResult(t)
+	q := &r.Paths[0].Profiles[0]
+	element, line := *q.Element, *q.Element.Traverse
+	line.Unit, line.Grey = "grey", true
+	element.Traverse, q.Element = &line, &element
+	for name, write := range map[string]func(io.Writer, *paths.Result) error{"points": pointsTable, "profiles": profilesTable} {
+		if row := readTable(t, r, write)[0]; row["unit"] != "grey" {
+			t.Errorf("%s in %q", name, row["unit"])
+		}
+	}
+	if row := readTable(t, r, pathsTable)[0]; row["Ti in HF-1: core [ppm]"] == "" {
+		t.Errorf("no core in ppm: %q", row)
+	}
+}

@@ -129,7 +129,7 @@ func writeSentences(w io.Writer, r *paths.Result) {
 		}
 		if own.Scatter > 0 {
 			fmt.Fprintf(w, "%s in %s: an extra scatter of %s %s was added to the errors.\n",
-				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Unit)
+				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Traverse.Unit)
 		}
 	}
 	fmt.Fprintln(w, tally(fit, len(r.Paths)))
