@@ -78,11 +78,11 @@ type Problem struct {
 	// its crystal/melt partition coefficient in a host of composition x at a
 	// temperature, K. The flux is then -D (dC/dr - C d(ln K)/dr), and an element at
 	// rest is proportional to K, not flat. nil is no coupling.
-	LnK  func(x, temp float64) float64
-	Host func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
-	Inner   []Rim                   // nil is sealed (at the centre, symmetry)
-	Outer   []Rim                   // nil is sealed
-	Free    []Basis
+	LnK   func(x, temp float64) float64
+	Host  func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
+	Inner []Rim                   // nil is sealed (at the centre, symmetry)
+	Outer []Rim                   // nil is sealed
+	Free  []Basis
 }
 
 // size returns the outer radius of the crystal, m.
