@@ -63,8 +63,9 @@ func (c *Course) LnG() float64 {
 }
 
 // Course prepares the history up to the time until, in s, for the plan and
-// writes it to dst, whose memory is reused. It returns an error if until lies
-// outside the history.
+// writes it to dst, whose list of spans is reused; the means of a rim that is
+// given need memory of their own. It returns an error if until lies outside the
+// history.
 func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 	if !(until >= 0) || until > h.Life() {
 		return fmt.Errorf("diffusion: the path has no time %g s; it lasts %g s", until, h.Life())

@@ -9,7 +9,9 @@
 //	fmt.Println(r.Paths[0].Outcome.Verdict, r.Paths[0].Outcome.Shift)
 //
 // weigh.go takes a path through every element; profile.go is one element on one
-// path, solved and audited; fit.go fits its free values; curve.go scans and reads
-// chi-square; judge.go gives verdicts; notes.go says what goes with them.
-// Sub-packages read studies and traverses.
+// path, solved, audited and fitted; lens.go is how its traverse sees it; curve.go
+// scans and reads chi-square; judge.go gives verdicts, lean.go what the laws'
+// errors would change of them, and ownbest.go what no path can be blamed for;
+// notes.go says what goes with them. Sub-packages read studies and traverses, and
+// fit by least squares.
 package paths
