@@ -35,11 +35,13 @@ type ElementCourse struct {
 	Notes     []string
 }
 
-// LegShare is how much of the diffusion one leg did.
+// LegShare is how much of the diffusion one leg, or one named stretch of several,
+// did, and at which temperatures.
 type LegShare struct {
-	Name     string
-	Duration float64 // s
-	Share    float64 // of G
+	Name                 string
+	Start, Duration      float64 // s, Start from that of the path
+	First, Highest, Last float64 // temperatures, K
+	Share                float64 // of G
 }
 
 // Snapshot is the profile at one time.
@@ -77,7 +79,10 @@ func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) 
 		out.Free, out.Notes = result.Free, result.notes(path)
 		fitted := p.fitTo(p.columns(0))
 		edge, _, _ = p.lens.values(fitted.Bent)
-		amounts = p.amounts(fitted)
+		amounts = p.amounts(fitted).stated()
+	}
+	if result == nil {
+		out.Notes = append(lawNotes(e, path.History), reachNotes(c, out.LnG)...)
 	}
 	out.WhyG, out.GEnough = p.plan().GEnough()
 	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))
@@ -133,8 +138,18 @@ func (p *profile) until(t float64) ([][][]float64, error) {
 func legShares(h *thermal.History, law diffusion.Law) []LegShare {
 	total := law.LnIntegral(h, 0, h.Life())
 	var shares []LegShare
+	next := 0
 	for _, n := range spans(h) {
-		share := LegShare{Name: n.Name, Duration: n.End - n.Start}
+		share := LegShare{Name: n.Name, Start: n.Start, Duration: n.End - n.Start}
+		_, share.First = h.At(n.Start)
+		share.Last, _ = h.At(n.End)
+		share.Highest = math.Max(share.First, share.Last)
+		for ; next < len(h.Legs()) && h.Start(next) < n.End; next++ {
+			if leg := &h.Legs()[next]; leg.For > 0 {
+				_, highest := leg.Range()
+				share.Highest = math.Max(share.Highest, highest)
+			}
+		}
 		if !math.IsInf(total, -1) {
 			share.Share = math.Exp(law.LnIntegral(h, n.Start, n.End) - total)
 		}

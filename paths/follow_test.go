@@ -87,6 +87,37 @@ func TestFollowThroughAReheat(t *testing.T) {
 	}
 }
 
+// The temperatures of legs and of stretches of several legs, by hand.
+func TestTemperaturesOfLegs(t *testing.T) {
+	h := built(t, []thermal.Spec{
+		{Kind: thermal.SpecHold, Name: "store", Temp: cold, For: 100 * year},
+		{Kind: thermal.SpecReheat, Name: "wake", Temp: hot, Rise: year, Dwell: 3 * year, Efold: 5 * year, For: 14 * year},
+		{Kind: thermal.SpecRamp, From: 1000, Temp: 900, For: 50 * year},
+		{Kind: thermal.SpecHold, Temp: 800, For: 6 * year},
+	})
+	want := []LegShare{
+		{Name: "store", Duration: 100 * year, First: cold, Highest: cold, Last: cold},
+		{Name: "wake", Start: 100 * year, Duration: 14 * year, First: cold, Highest: hot, Last: cold + (hot-cold)*math.Exp(-2)},
+		{Name: "leg 5 (ramp)", Start: 114 * year, Duration: 50 * year, First: 1000, Highest: 1000, Last: 900},
+		{Name: "leg 6 (hold)", Start: 164 * year, Duration: 6 * year, First: 800, Highest: 800, Last: 800},
+	}
+	got := legShares(h, law())
+	if len(got) != len(want) {
+		t.Fatalf("%d legs, want %d", len(got), len(want))
+	}
+	for i, w := range want {
+		g := got[i]
+		if g.Name != w.Name {
+			t.Errorf("leg %d is %q, want %q", i, g.Name, w.Name)
+		}
+		near(t, w.Name+" starts", g.Start/year, w.Start/year, 1e-9)
+		near(t, w.Name+" lasts", g.Duration/year, w.Duration/year, 1e-9)
+		near(t, w.Name+" first", g.First, w.First, 1e-9)
+		near(t, w.Name+" highest", g.Highest, w.Highest, 1e-9)
+		near(t, w.Name+" last", g.Last, w.Last, 1e-9)
+	}
+}
+
 // What the traverse leaves free is what Weigh found.
 func TestFollowFitsAsWeighDoes(t *testing.T) {
 	path := woken(t)
@@ -218,6 +249,9 @@ func TestFollowWithoutATraverse(t *testing.T) {
 	model := couple{core: 40, mantle: 90, reach: math.Sqrt(2 * grown(path.History.Life()))}
 	for k, r := range got.Centres {
 		near(t, fmt.Sprintf("at %g um", r/um), got.Final[k], model.seen(r), 0.06)
+	}
+	if notes := strings.Join(got.Notes, "; "); notes != strings.Join(lawNotes(e, path.History), "; ") {
+		t.Errorf("notes %q", notes)
 	}
 	if len(got.Free) != 0 || !got.GEnough || got.WhyG == "" {
 		t.Errorf("free values %v, G enough %v: %q", got.Free, got.GEnough, got.WhyG)

@@ -3,8 +3,8 @@ package paths
 import (
 	"fmt"
 	"math"
-	"strings"
 
+	"bankfire/diffusion"
 	"bankfire/paths/study"
 	"bankfire/thermal"
 )
@@ -24,13 +24,7 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 	if r.NumErr > errorAim {
 		notes = append(notes, fmt.Sprintf("the numerical error reaches %.2g sigma at a point, after refining", r.NumErr))
 	}
-	lo, hi := path.History.Range()
-	notes = append(notes, outOfRange(&r.Element.Law, lo, hi)...)
-	if row := r.Element.Law.Row; row != nil {
-		for _, caution := range row.Cautions() {
-			notes = append(notes, row.Key+": "+caution)
-		}
-	}
+	notes = append(notes, lawNotes(r.Element, path.History)...)
 	for _, f := range r.Free {
 		switch {
 		case math.IsInf(f.Sigma, 1):
@@ -41,8 +35,15 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 			notes = append(notes, fmt.Sprintf("%s is at the end of its range", f.Name))
 		}
 	}
-	if reach := r.reach(); reach > farReach {
-		notes = append(notes, fmt.Sprintf("diffusion has reached %.0f %% of the crystal's size; where other faces are as near, one dimension is not enough", 100*reach))
+	return append(notes, reachNotes(r.Crystal, r.LnG)...)
+}
+
+// lawNotes says what about the law, used along the history, the reader must
+// know.
+func lawNotes(e *study.Element, h *thermal.History) []string {
+	notes := outOfRange(e, h)
+	for _, caution := range e.Law.Cautions() {
+		notes = append(notes, lawName(e)+": "+caution)
 	}
 	return notes
 }
@@ -51,31 +52,36 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 // stops being enough.
 const farReach = 0.2
 
-// reach returns the distance sqrt(2 G) as a part of the crystal's size.
-func (r *ProfileResult) reach() float64 {
-	return math.Sqrt(2) * math.Exp(r.LnG/2) / (r.Crystal.Size() - r.Crystal.R0)
+// reachNotes says that diffusion, with the integral exp(lnG) in m2, has gone far
+// enough for faces that are not in the model to matter. A ball has none.
+func reachNotes(c *study.Crystal, lnG float64) []string {
+	var other string
+	switch c.Shape {
+	case diffusion.Slab:
+		other = "another face of the crystal"
+	case diffusion.Cylinder:
+		other = "an end of the cylinder"
+	default:
+		return nil
+	}
+	gone, size := math.Sqrt2*math.Exp(lnG/2), c.Size()-c.R0
+	if !(gone > farReach*size) {
+		return nil
+	}
+	return []string{fmt.Sprintf("diffusion has gone %s, %.0f %% of the %s that are modelled; if %s is nearer to the traverse than %s, one dimension is not enough",
+		lengthText(gone), 100*gone/size, lengthText(size), other, lengthText(gone/farReach))}
 }
 
-// outOfRange says how far temperatures between lo and hi, in K, leave the
-// law's calibrated range, if by half a degree or more.
-func outOfRange(law *study.Law, lo, hi float64) []string {
-	if law.TMin == 0 && law.TMax == 0 {
-		return nil
+// lengthText prints a length, m, in micrometres or millimetres.
+func lengthText(x float64) string {
+	switch um := x * 1e6; {
+	case um < 10:
+		return fmt.Sprintf("%.1f um", um)
+	case um < 1e3:
+		return fmt.Sprintf("%.0f um", um)
+	case um < 1e4:
+		return fmt.Sprintf("%.1f mm", um/1e3)
+	default:
+		return fmt.Sprintf("%.0f mm", um/1e3)
 	}
-	name := law.Key
-	if name == "" {
-		name = "the law"
-	}
-	var how []string
-	if law.TMin-lo >= 0.5 {
-		how = append(how, fmt.Sprintf("%.0f C below", law.TMin-lo))
-	}
-	if hi-law.TMax >= 0.5 {
-		how = append(how, fmt.Sprintf("%.0f C above", hi-law.TMax))
-	}
-	if len(how) == 0 {
-		return nil
-	}
-	return []string{fmt.Sprintf("%s is used up to %s its calibrated range of %.0f to %.0f C",
-		name, strings.Join(how, " and "), law.TMin-thermal.ZeroCelsius, law.TMax-thermal.ZeroCelsius)}
 }

@@ -5,32 +5,37 @@ import (
 	"strings"
 	"testing"
 
+	"bankfire/diffusion"
 	"bankfire/diffusion/catalogue"
 	"bankfire/paths/study"
-	"bankfire/thermal"
 )
 
-func TestOutOfRange(t *testing.T) {
-	celsius := func(temp float64) float64 { return temp + thermal.ZeroCelsius }
-	known := study.Law{Key: "mine", TMin: celsius(700), TMax: celsius(1150)}
+// A face that the model does not have matters to a slab and to the ends of a
+// cylinder, once diffusion has gone a fifth of the modelled size; a ball is all
+// there is.
+func TestReachNotes(t *testing.T) {
+	crystal := func(shape diffusion.Shape) *study.Crystal {
+		return &study.Crystal{Shape: shape, Zones: []study.Zone{{Width: 140 * um}, {Width: 60 * um}}}
+	}
+	core := crystal(diffusion.Slab)
+	core.R0 = 100 * um
 	for _, test := range []struct {
-		name   string
-		law    study.Law
-		lo, hi float64 // C
-		want   string
+		name    string
+		crystal *study.Crystal
+		gone    float64 // um
+		want    string
 	}{
-		{"inside", known, 700, 1150, ""},
-		{"at its ends but for round-off", known, 699.9999, 1150.0001, ""},
-		{"below", known, 650, 760, "mine is used up to 50 C below its calibrated range of 700 to 1150 C"},
-		{"above", known, 700, 1200, "mine is used up to 50 C above its calibrated range of 700 to 1150 C"},
-		{"on both sides", known, 640, 1151, "mine is used up to 60 C below and 1 C above its calibrated range of 700 to 1150 C"},
-		{"without a name", study.Law{TMin: celsius(700), TMax: celsius(1150)}, 600, 800,
-			"the law is used up to 100 C below its calibrated range of 700 to 1150 C"},
-		{"range not known", study.Law{Key: "mine"}, 20, 3000, ""},
+		{"a slab", crystal(diffusion.Slab), 76,
+			"diffusion has gone 76 um, 38 % of the 200 um that are modelled; if another face of the crystal is nearer to the traverse than 380 um, one dimension is not enough"},
+		{"a cylinder", crystal(diffusion.Cylinder), 400,
+			"diffusion has gone 400 um, 200 % of the 200 um that are modelled; if an end of the cylinder is nearer to the traverse than 2.0 mm, one dimension is not enough"},
+		{"a ball", crystal(diffusion.Ball), 400, ""},
+		{"a piece of a slab", core, 44,
+			"diffusion has gone 44 um, 22 % of the 200 um that are modelled; if another face of the crystal is nearer to the traverse than 220 um, one dimension is not enough"},
+		{"not so far", crystal(diffusion.Slab), 39.9, ""},
 	} {
 		t.Run(test.name, func(t *testing.T) {
-			got := strings.Join(outOfRange(&test.law, celsius(test.lo), celsius(test.hi)), "; ")
-			if got != test.want {
+			if got := strings.Join(reachNotes(test.crystal, math.Log(square(test.gone*um)/2)), "; "); got != test.want {
 				t.Errorf("got %q, want %q", got, test.want)
 			}
 		})
@@ -52,7 +57,7 @@ func TestNotesOfAProfile(t *testing.T) {
 	r.LnG = math.Log(square(r.Crystal.Size()))
 	notes := strings.Join(r.notes(&path), "\n")
 	for _, want := range append(row.Cautions(), "the data do not see core", "the fit would have mantle below zero",
-		"numerical error reaches 0.4 sigma", "diffusion has reached 141 %") {
+		"numerical error reaches 0.4 sigma", "diffusion has gone 170 um, 141 % of the 120 um") {
 		if !strings.Contains(notes, want) {
 			t.Errorf("notes\n%s\nlack %q", notes, want)
 		}
