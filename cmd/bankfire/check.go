@@ -110,18 +110,21 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 
 // lawText names a law with how far its constants can be trusted.
 func lawText(l *study.Law) string {
+	text := "a law of this study"
 	switch {
 	case l.Row != nil:
-		known, _, _ := strings.Cut(l.Row.Confidence, ":")
-		text := l.Key + ", " + l.Row.Citation + "; constants known: " + known
-		for _, c := range l.Row.Cautions() {
-			text += "; " + c
+		text = l.Key + ", " + l.Row.Citation
+		if l.Row.Checked() {
+			known, _, _ := strings.Cut(l.Row.Confidence, ":")
+			text += "; constants known: " + known
 		}
-		return text
 	case l.Key != "":
-		return l.Key + ", a law of this study"
+		text = l.Key + ", " + text
 	}
-	return "a law of this study"
+	for _, caution := range l.Cautions() {
+		text += "; " + caution
+	}
+	return text
 }
 
 // traverseText says what there is of a traverse.

@@ -2,10 +2,14 @@ package main
 
 import (
 	"bytes"
+	"cmp"
 	"context"
 	"errors"
 	"fmt"
 	"math"
+	"slices"
+	"strconv"
+	"strings"
 
 	"github.com/spf13/pflag"
 
@@ -55,9 +59,9 @@ func followCommand() *command {
 				return err
 			}
 			if asJSON {
-				return writeJSON(s.out, courseSummary(course))
+				return writeJSON(s.out, courseSummary(course, moments))
 			}
-			text := courseText(course)
+			text := courseText(course, moments)
 			_, err = s.out.Write(text.Bytes())
 			return err
 		},
@@ -106,6 +110,8 @@ func resolveMoments(h *thermal.History, moments []string) ([]float64, error) {
 type followed struct {
 	Schema   int               `json:"schema"`
 	Path     string            `json:"path"`
+	Life     float64           `json:"duration_s"` // from start to end
+	Eruption float64           `json:"eruption_s"` // from the start
 	Elements []followedElement `json:"elements"`
 }
 
@@ -127,17 +133,27 @@ type followedElement struct {
 
 type legDone struct {
 	Name     string  `json:"name"`
+	Start    float64 `json:"start_s"`
 	Duration float64 `json:"duration_s"`
+	First    float64 `json:"start_temperature_K"`
+	Highest  float64 `json:"highest_temperature_K"`
+	Last     float64 `json:"end_temperature_K"`
 	Share    float64 `json:"share_of_g"`
 }
 
 type snapshot struct {
-	Time  float64   `json:"time_s"`
-	Value []float64 `json:"value"`
+	Moment string    `json:"moment"` // as typed
+	Time   float64   `json:"time_s"`
+	Value  []float64 `json:"value"`
 }
 
-func courseSummary(c *paths.Course) followed {
-	out := followed{Schema: summarySchema, Path: c.Path.Name, Elements: []followedElement{}}
+// courseSummary returns the summary. The snapshots are those of the moments, in
+// their order.
+func courseSummary(c *paths.Course, moments []string) followed {
+	out := followed{
+		Schema: summarySchema, Path: c.Path.Name, Life: c.Path.History.Life(), Eruption: c.Path.History.Eruption(),
+		Elements: []followedElement{},
+	}
 	for i := range c.Elements {
 		e := &c.Elements[i]
 		f := followedElement{
@@ -147,10 +163,10 @@ func courseSummary(c *paths.Course) followed {
 			Legs: []legDone{}, Snapshots: []snapshot{}, FreeValues: freeValues(e.Free), Notes: filled(e.Notes),
 		}
 		for _, l := range e.Legs {
-			f.Legs = append(f.Legs, legDone{l.Name, l.Duration, l.Share})
+			f.Legs = append(f.Legs, legDone{l.Name, l.Start, l.Duration, l.First, l.Highest, l.Last, l.Share})
 		}
-		for _, s := range e.Snapshots {
-			f.Snapshots = append(f.Snapshots, snapshot{s.Time, s.Value})
+		for k, s := range e.Snapshots {
+			f.Snapshots = append(f.Snapshots, snapshot{moments[k], s.Time, s.Value})
 		}
 		out.Elements = append(out.Elements, f)
 	}
@@ -158,17 +174,17 @@ func courseSummary(c *paths.Course) followed {
 }
 
 // courseText is the report for people.
-func courseText(c *paths.Course) bytes.Buffer {
+func courseText(c *paths.Course, moments []string) bytes.Buffer {
 	var text bytes.Buffer
 	fmt.Fprintf(&text, "path %s, %s from start to end\n", quoted(c.Path.Name), thermal.DurationText(c.Path.History.Life()))
 	for i := range c.Elements {
-		writeElement(&text, &c.Elements[i])
+		writeElement(&text, c, &c.Elements[i], moments)
 	}
 	fmt.Fprintf(&text, "\nA year is 365.25 days. %s\n", care)
 	return text
 }
 
-func writeElement(text *bytes.Buffer, e *paths.ElementCourse) {
+func writeElement(text *bytes.Buffer, c *paths.Course, e *paths.ElementCourse, moments []string) {
 	fmt.Fprintf(text, "\n%s in %s: G = %s m2, sqrt(2 G) = %s um\n", e.Element.Name, e.Crystal.Name,
 		number(math.Exp(e.LnG)), number(math.Sqrt2*math.Exp(e.LnG/2)*1e6))
 	if e.GEnough {
@@ -183,35 +199,115 @@ func writeElement(text *bytes.Buffer, e *paths.ElementCourse) {
 		fmt.Fprintf(text, "note: %s\n", note)
 	}
 	fmt.Fprintln(text)
-	legs := newTable()
-	legs.row("leg", "duration", "part of G")
-	for _, l := range e.Legs {
-		legs.row(l.Name, thermal.DurationText(l.Duration), percent(l.Share))
-	}
-	legs.writeTo(text)
-	writeProfiles(text, e)
+	writeLegs(text, e.Legs, c.Path.History)
+	writeProfiles(text, e, moments)
 }
+
+// writeLegs prints what each leg did, and where among them the eruption is.
+func writeLegs(text *bytes.Buffer, legs []paths.LegShare, h *thermal.History) {
+	table := newTable()
+	table.row("leg", "begins after", "duration", "start [C]", "highest [C]", "end [C]", "part of G")
+	eruption, told := h.Eruption(), false
+	for i, l := range legs {
+		table.row(l.Name, thermal.DurationText(l.Start), thermal.DurationText(l.Duration),
+			degrees(l.First), degrees(l.Highest), degrees(l.Last), shareText(l.Share))
+		end := h.Life()
+		if i+1 < len(legs) {
+			end = legs[i+1].Start
+		}
+		if !told && eruption <= end {
+			told = true
+			table.row(eruptionCells(h, l.Name, eruption < end)...)
+		}
+	}
+	table.writeTo(text)
+}
+
+// eruptionCells is the row of the eruption in the table of legs.
+func eruptionCells(h *thermal.History, leg string, within bool) []string {
+	what := "-- eruption --"
+	if within {
+		what = "-- eruption, within " + leg + " --"
+	}
+	temp, _ := h.At(h.Eruption())
+	return []string{what, thermal.DurationText(h.Eruption()), "", "", "", degrees(temp), ""}
+}
+
+// shareText prints a share to a hundredth of a per cent.
+func shareText(x float64) string {
+	if x > 0 && x < 0.00005 {
+		return "< 0.01 %"
+	}
+	return fmt.Sprintf("%.2f %%", 100*x)
+}
+
+// degrees prints a temperature, K, in whole C.
+func degrees(temp float64) string { return fmt.Sprintf("%.0f", temp-thermal.ZeroCelsius) }
 
 // shownCells is about how many cells of a profile the report prints.
 const shownCells = 25
 
-// writeProfiles prints start, snapshots and end side by side, at some of the
-// cells.
-func writeProfiles(text *bytes.Buffer, e *paths.ElementCourse) {
+// writeProfiles prints start, snapshots in the order of time and end side by
+// side, at some of the cells.
+func writeProfiles(text *bytes.Buffer, e *paths.ElementCourse, moments []string) {
 	fmt.Fprintf(text, "\nprofiles in %s, numerical error up to %s; --json has every cell\n\n", e.Element.Unit, number(e.NumErr))
-	table := newTable()
-	head := []string{"from centre [um]", "start"}
-	for _, s := range e.Snapshots {
-		head = append(head, "at "+thermal.DurationText(s.Time))
+	heads, columns := []string{"start"}, [][]float64{e.Start}
+	for _, k := range inTime(e.Snapshots) {
+		heads, columns = append(heads, moments[k]), append(columns, e.Snapshots[k].Value)
 	}
-	table.row(append(head, "end")...)
+	heads, columns = append(heads, "end"), append(columns, e.Final)
+	value := alike(columns)
+	table := newTable()
+	table.row(append([]string{"from centre [um]"}, heads...)...)
 	every := max(1, len(e.Centres)/shownCells)
 	for i := every / 2; i < len(e.Centres); i += every {
-		row := []string{fmt.Sprintf("%.2f", e.Centres[i]*1e6), number(e.Start[i])}
-		for _, s := range e.Snapshots {
-			row = append(row, number(s.Value[i]))
+		row := []string{fmt.Sprintf("%.2f", e.Centres[i]*1e6)}
+		for _, column := range columns {
+			row = append(row, value(column[i]))
 		}
-		table.row(append(row, number(e.Final[i]))...)
+		table.row(row...)
 	}
 	table.writeTo(text)
 }
+
+// inTime returns the numbers of the snapshots in the order of their times.
+func inTime(snapshots []paths.Snapshot) []int {
+	order := make([]int, len(snapshots))
+	for k := range order {
+		order[k] = k
+	}
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(snapshots[a].Time, snapshots[b].Time) })
+	return order
+}
+
+// alike returns a way to print the numbers of the columns, all with the same
+// decimals: three digits of the range that they span, or of the largest where
+// they span none.
+func alike(columns [][]float64) func(float64) string {
+	lowest, highest := math.Inf(1), math.Inf(-1)
+	for _, column := range columns {
+		lowest, highest = math.Min(lowest, slices.Min(column)), math.Max(highest, slices.Max(column))
+	}
+	span, largest := highest-lowest, math.Max(highest, -lowest)
+	if span <= roundOff*largest {
+		span = largest
+	}
+	n := decimals(span, 3)
+	if n > mostDecimals {
+		return func(x float64) string { return strconv.FormatFloat(x, 'e', 2, 64) }
+	}
+	return func(x float64) string {
+		text := strconv.FormatFloat(x, 'f', n, 64)
+		if strings.Trim(text, "-0.") == "" { // no zero below zero
+			text = strings.TrimPrefix(text, "-")
+		}
+		return text
+	}
+}
+
+// roundOff is the part of a value below which a difference is none; numbers with
+// more than mostDecimals are printed with an exponent.
+const (
+	roundOff     = 1e-9
+	mostDecimals = 7
+)

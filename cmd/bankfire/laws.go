@@ -10,6 +10,7 @@ import (
 	"strconv"
 	"strings"
 	"unicode"
+	"unicode/utf8"
 
 	"github.com/spf13/pflag"
 
@@ -28,11 +29,13 @@ func lawsCommand() *command {
 		long: "Without a KEY, lists the laws of the catalogue. With one, shows its citation, calibrated range,\n" +
 			"uncertainty and how its constants are known, and D at the temperatures given by --at, or by --from,\n" +
 			"--to and --step. With --compare and several, shows them side by side at those temperatures. A law\n" +
-			"that depends on pressure, fO2, composition or activity asks for the flag of that name.",
+			"that depends on pressure, fO2, composition or activity asks for the flag of that name, and prints\n" +
+			"the line that stands for it in a study, which cannot give them yet.",
 		examples: []example{
 			{"bankfire laws --mineral quartz --species Ti", "list the laws of Ti in quartz"},
 			{`bankfire laws quartz-ti-jollands2020 --at "700 C, 750 C"`, "show one law and D at two temperatures"},
 			{`bankfire laws plagioclase-sr-giletti1994 --at "800 C" --XAn 0.4`, "the same for a law that depends on composition"},
+			{"bankfire laws plagioclase-sr-giletti1994 --XAn 0.4", "a line for a study: this law at one composition"},
 			{`bankfire laws quartz-ti-cherniak2007 --at "750 C" --json`, "print D for another program"},
 			{
 				`bankfire laws --compare quartz-ti-cherniak2007 quartz-ti-jollands2020 --from "600 C" --to "900 C"`,
@@ -299,7 +302,7 @@ func (f *lawsFlags) conditions() (catalogue.Conditions, error) {
 		parse       func(string) (float64, error)
 	}{
 		{catalogue.Pressure, f.pressure, parsePressure},
-		{catalogue.FO2, f.fO2, parsePressure},
+		{catalogue.FO2, f.fO2, parseFugacity},
 		{catalogue.XAn, f.xAn, parseNumber},
 		{catalogue.XFe, f.xFe, parseNumber},
 		{catalogue.ASiO2, f.aSiO2, parseNumber},
@@ -321,6 +324,21 @@ func parsePressure(text string) (float64, error) {
 	return thermal.ParseQuantity(text, thermal.Pressure)
 }
 
+// parseFugacity reads an oxygen fugacity, Pa. What begins with a letter is a buffer.
+func parseFugacity(text string) (float64, error) {
+	x, err := parsePressure(text)
+	var in *thermal.InputError
+	if !errors.As(err, &in) {
+		return x, err
+	}
+	there := *in
+	if first, _ := utf8.DecodeRuneInString(strings.TrimSpace(text)); unicode.IsLetter(first) {
+		there.Problem = "buffers are not known here yet"
+	}
+	there.Remedy = `want a pressure such as "1e-7 Pa"`
+	return 0, &there
+}
+
 func parseNumber(text string) (float64, error) {
 	x, err := strconv.ParseFloat(text, 64)
 	if err != nil {
@@ -336,13 +354,13 @@ type lawCurve struct {
 }
 
 // curves returns the laws of the keys. One that only is to be shown, at no
-// temperature, needs no conditions and stays empty.
+// temperature and under no conditions, stays empty if it needs some.
 func (opt *lawsOptions) curves() ([]lawCurve, error) {
 	curves := make([]lawCurve, len(opt.rows))
 	var errs []error
 	for i, row := range opt.rows {
 		curves[i].row = row
-		if len(opt.temps) > 0 {
+		if len(opt.temps) > 0 || len(opt.conditions) > 0 || len(row.Needs()) == 0 {
 			law, err := row.Law(opt.conditions)
 			curves[i].law = law
 			errs = append(errs, missingFlag(err))

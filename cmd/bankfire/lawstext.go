@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"regexp"
 	"slices"
 	"strconv"
 	"strings"
@@ -31,7 +32,7 @@ func listLaws(out io.Writer, filter lawsFilter) error {
 	fmt.Fprintln(tab, "key\tmineral\tspecies\ttag\tcalibrated\tdepends on\tchecked")
 	for _, r := range rows {
 		fmt.Fprintf(tab, "%s\t%s\t%s\t%s\t%s\t%s\t%s\n",
-			r.Key, r.Mineral, r.Species, r.Tag, calibratedText(&r), dependsText(&r), yesNo(r.Checked()))
+			r.Key, r.Mineral, r.Species, r.Tag, calibratedText(&r), dependsText(&r)+conditionMark(&r), yesNo(r.Checked()))
 	}
 	tab.Flush()
 	fmt.Fprintf(&text, "\n%s.", countText(len(rows)))
@@ -39,8 +40,21 @@ func listLaws(out io.Writer, filter lawsFilter) error {
 		fmt.Fprintf(&text, " checked no: %s.", catalogue.NotChecked)
 	}
 	fmt.Fprintln(&text)
+	if slices.ContainsFunc(rows, func(r catalogue.Row) bool { return conditionMark(&r) != "" }) {
+		fmt.Fprintln(&text, "* cannot be named in a study yet: bankfire laws KEY, with a flag for each thing but T that the law\n"+
+			"  depends on, prints the line to write there instead.")
+	}
 	_, err := out.Write(text.Bytes())
 	return err
+}
+
+// conditionMark is the sign of a law that a study cannot name, since it needs
+// conditions.
+func conditionMark(r *catalogue.Row) string {
+	if len(r.Needs()) > 0 {
+		return " *"
+	}
+	return ""
 }
 
 // noLaw says what a filter that lets nothing through could have asked for.
@@ -112,16 +126,13 @@ func showLaw(out io.Writer, c lawCurve, opt *lawsOptions) error {
 	if len(opt.temps) > 0 {
 		fmt.Fprintf(&text, "\n%s", valuesText(c, opt))
 	}
+	fmt.Fprintf(&text, "\n%s", studyText(c, opt.conditions))
 	_, err := out.Write(text.Bytes())
 	return err
 }
 
 // lawLines returns the lines of a law's description: a word and its text.
 func lawLines(r *catalogue.Row) [][2]string {
-	known := r.Confidence
-	if !r.Checked() {
-		known = catalogue.NotChecked + " (" + known + ")"
-	}
 	return [][2]string{
 		{"citation", r.Citation},
 		{"law", formulaText(r)},
@@ -133,16 +144,32 @@ func lawLines(r *catalogue.Row) [][2]string {
 		{"uncertainty", uncertaintyText(r)},
 		{"error of E", fmt.Sprintf("%.4g kJ/mol (%s)", r.SigmaE.Value/1e3, r.SigmaE.Origin)},
 		{"as printed", printedText(r)},
-		{"known from", known},
+		{"known from", knownText(r)},
 		{"remark", r.Remark},
 	}
+}
+
+// memory is how the catalogue begins what it says of a row that was not checked.
+var memory = regexp.MustCompile(`^memory: [a-z]+( \(constants\))?`)
+
+// knownText says how the constants are known: where they were seen, or that they
+// were not checked and what else there is to say of them.
+func knownText(r *catalogue.Row) string {
+	text := strings.NewReplacer("are memory (strong)", "were not checked", "are memory", "were not checked").Replace(r.Confidence)
+	if r.Checked() {
+		return text
+	}
+	if said := memory.FindString(text); said != "" {
+		return catalogue.NotChecked + text[len(said):]
+	}
+	return catalogue.NotChecked + "; " + text
 }
 
 // formulaText is the law in words of the program.
 func formulaText(r *catalogue.Row) string {
 	energy := fmt.Sprintf("%.6g kJ/mol", r.E/1e3)
 	if r.DV != 0 {
-		energy = fmt.Sprintf("(%s + (pressure - %g Pa) %.3g cm3/mol)", energy, r.PRef, r.DV*1e6)
+		energy = fmt.Sprintf("(%s + %s %.3g cm3/mol)", energy, above(catalogue.Pressure, r.PRef, pressureText(r.PRef)), r.DV*1e6)
 	}
 	return fmt.Sprintf("log10 D = %.6g - %s / (ln(10) R T)", r.Log10D0, energy) + termText(r.Composition) + termText(r.FO2) + ", D in m2/s"
 }
@@ -150,11 +177,53 @@ func formulaText(r *catalogue.Row) string {
 func termText(t catalogue.Term) string {
 	switch t.Form {
 	case catalogue.Linear:
-		return fmt.Sprintf(" %s (%s - %g)", slopeText(t.Slope), t.Variable, t.Reference)
+		return fmt.Sprintf(" %s %s", slopeText(t.Slope), above(t.Variable, t.Reference, fmt.Sprintf("%g", t.Reference)))
 	case catalogue.Power:
-		return fmt.Sprintf(" %s log10(%s / %g)", slopeText(t.Slope), t.Variable, t.Reference)
+		return fmt.Sprintf(" %s log10(%s)", slopeText(t.Slope), over(t.Variable, t.Reference))
 	}
 	return ""
+}
+
+// above is "(XFe - 0.1)", or "XFe" where the reference is 0.
+func above(variable string, reference float64, text string) string {
+	if reference == 0 {
+		return variable
+	}
+	return "(" + variable + " - " + text + ")"
+}
+
+// over is "fO2 / 1e-7 Pa", or "aSiO2" where the reference is the number 1.
+func over(variable string, reference float64) string {
+	if reference == 1 && variable != catalogue.FO2 {
+		return variable
+	}
+	return variable + " / " + conditionText(variable, reference)
+}
+
+// conditionText is the value of a condition with its unit.
+func conditionText(name string, x float64) string {
+	switch name {
+	case catalogue.Pressure:
+		return pressureText(x)
+	case catalogue.FO2:
+		return tidy(fmt.Sprintf("%.6g", x)) + " Pa"
+	}
+	return tidy(fmt.Sprintf("%.6g", x))
+}
+
+// pressureText prints a pressure, Pa, in the unit in which it is best read.
+func pressureText(p float64) string {
+	for _, unit := range []string{"kbar", "bar"} {
+		if size, _, _ := thermal.Unit(unit, thermal.Pressure); p >= size {
+			return tidy(fmt.Sprintf("%.6g", p/size)) + " " + unit
+		}
+	}
+	return tidy(fmt.Sprintf("%.6g", p)) + " Pa"
+}
+
+// tidy takes the zeros and the plus out of an exponent: 1e-7 for 1e-07.
+func tidy(number string) string {
+	return strings.NewReplacer("e-0", "e-", "e+0", "e", "e+", "e").Replace(number)
 }
 
 // slopeText is "+ 3" or "- 4.1".
@@ -213,18 +282,19 @@ func trimLines(text *bytes.Buffer) {
 
 // givenText is " At XAn 0.5." for the conditions the law depends on.
 func givenText(r *catalogue.Row, given catalogue.Conditions) string {
+	if at := conditionsText(r, given); at != "" {
+		return " At " + at + "."
+	}
+	return ""
+}
+
+// conditionsText is "pressure 5 kbar, XFe 0.1": the conditions the law depends on.
+func conditionsText(r *catalogue.Row, given catalogue.Conditions) string {
 	var parts []string
 	for _, name := range r.Needs() {
-		unit := ""
-		if name == catalogue.Pressure || name == catalogue.FO2 {
-			unit = " Pa"
-		}
-		parts = append(parts, fmt.Sprintf("%s %.6g%s", name, given[name], unit))
+		parts = append(parts, name+" "+conditionText(name, given[name]))
 	}
-	if len(parts) == 0 {
-		return ""
-	}
-	return " At " + strings.Join(parts, ", ") + "."
+	return strings.Join(parts, ", ")
 }
 
 // beyondText says how far temp, K, is outside the calibrated range.

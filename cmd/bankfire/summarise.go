@@ -125,7 +125,10 @@ func lawsUsed(s *study.Study) []lawUsed {
 
 // confidence says how sure the constants of a law are.
 func confidence(l *study.Law) string {
-	if l.Row == nil {
+	switch {
+	case l.Row == nil && l.Caution != "":
+		return "as given in the study: " + l.Caution
+	case l.Row == nil:
 		return "as given in the study"
 	}
 	return l.Row.Confidence

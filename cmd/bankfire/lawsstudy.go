@@ -1,0 +1,63 @@
+package main
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+
+	"bankfire/diffusion/catalogue"
+	"bankfire/thermal"
+)
+
+// studyText says how the law is written in a study.
+func studyText(c lawCurve, given catalogue.Conditions) string {
+	r := c.row
+	needs := r.Needs()
+	switch {
+	case len(needs) == 0:
+		return fmt.Sprintf("In a study:\n\nlaw = %q\n", r.Key)
+	case c.law.Terms == nil:
+		return fmt.Sprintf("A study cannot name this law yet, since it depends on %s. With your values,\n\n  %s\n\nprints a line for it.\n",
+			list(needs), r.Command())
+	}
+	line, ok := studyLine(c, given)
+	if !ok {
+		return "A study cannot give this law under these conditions.\n"
+	}
+	return fmt.Sprintf("In a study, at %s:\n\n%s\n", conditionsText(r, given), line)
+}
+
+// studyLine returns the law under the conditions as a line for a study, good to
+// six digits of D. ok is false if it is not one Arrhenius term with a D0 that
+// can be written.
+func studyLine(c lawCurve, given catalogue.Conditions) (line string, ok bool) {
+	r := c.row
+	if len(c.law.Terms) != 1 {
+		return "", false
+	}
+	a := c.law.Terms[0]
+	d0 := math.Exp(a.LnA)
+	if d0 == 0 || math.IsInf(d0, 0) {
+		return "", false
+	}
+	// ln D of rocks holds E/(R T) some thirty times, so E needs two digits more than D0.
+	parts := []string{
+		fmt.Sprintf(`D0 = "%s m2/s"`, tidy(fmt.Sprintf("%.7g", d0))),
+		fmt.Sprintf(`E = "%.9g kJ/mol"`, a.E*thermal.GasConstant/1e3),
+		fmt.Sprintf("sigma = %.6g", r.SigmaMid.Value),
+	}
+	if r.RangeKnown() {
+		parts = append(parts, fmt.Sprintf(`range = "%s..%s C"`, celsiusText(r.TMin), celsiusText(r.TMax)))
+	}
+	parts = append(parts, "citation = "+strconv.Quote(fmt.Sprintf("%s (%s at %s)", r.Citation, r.Key, conditionsText(r, given))))
+	cautions := r.Cautions()
+	if slices.Contains(r.Needs(), catalogue.FO2) { // in nature a buffer follows the temperature
+		cautions = append(cautions, "fO2 held at "+conditionText(catalogue.FO2, given[catalogue.FO2])+" at every temperature")
+	}
+	if len(cautions) > 0 {
+		parts = append(parts, "caution = "+strconv.Quote(strings.Join(cautions, "; ")))
+	}
+	return "law = { " + strings.Join(parts, ", ") + " }", true
+}
