@@ -69,26 +69,13 @@ func (d *decoder) inUnit(n *node, u *units, v thermal.Uncertain, unit string) Pl
 		d.report(n, fmt.Sprintf("in %s, but line %d has %s", unit, u.from.line, u.unit), "give both in one unit")
 	case v.Value < 0:
 		d.report(n, "below zero", "a value is zero or more")
-	case v.Value*factor > maxAmount(u.unit):
-		d.report(n, fmt.Sprintf("more than all there is, %.0f %s", maxAmount(u.unit), u.unit), "check the unit")
-	case v.Sigma*factor > maxAmount(u.unit):
-		d.report(n, fmt.Sprintf("its error is more than all there is, %.0f %s", maxAmount(u.unit), u.unit), "check the unit")
+	case v.Value*factor > traverse.Whole(u.unit):
+		d.report(n, fmt.Sprintf("more than all there is, %.0f %s", traverse.Whole(u.unit), u.unit), "check the unit")
+	case v.Sigma*factor > traverse.Whole(u.unit):
+		d.report(n, fmt.Sprintf("its error is more than all there is, %.0f %s", traverse.Whole(u.unit), u.unit), "check the unit")
 	}
 	u.known[v.Value*factor] = true
 	return Plateau{Value: v.Value * factor, Sigma: v.Sigma * factor}
-}
-
-// maxAmount returns the value of a unit that is everything.
-func maxAmount(unit string) float64 {
-	switch unit {
-	case "ppm":
-		return 1e6
-	case "wt%", "%", "mol%":
-		return 100
-	case greyLevels:
-		return 1e9 // no detector counts more
-	}
-	return 1
 }
 
 // concentrationUnit reads the unit that stands beside bare numbers, "" if none
@@ -110,7 +97,6 @@ func (d *decoder) concentrationUnit(n *node) string {
 const (
 	moleFraction = "mole fraction"
 	percent      = "%"
-	greyLevels   = "grey"
 )
 
 // component is what a value of Fo or An is of an element: its mole fraction is
@@ -173,7 +159,7 @@ func (d *decoder) moles(n *node, u *units, header, unit string, values, sigmas [
 	}
 	of, ok := u.of(name, unit)
 	switch {
-	case unit == "ppm" || unit == "wt%" || unit == greyLevels:
+	case unit == "ppm" || unit == "wt%" || unit == traverse.Grey:
 		d.report(n, fmt.Sprintf("%s in %s, but it counts moles", name, unit), fmt.Sprintf("write [mol%%] or [%s]", name))
 		return unit, component{}
 	case !ok:
@@ -209,8 +195,8 @@ func (d *decoder) grey(n *node, e *Element, u *units) {
 	switch {
 	case u.unit == "":
 		d.note("%s: no value is stated, so all are fitted in grey levels", e.Name)
-		u.unit, e.Traverse.Grey = greyLevels, false
-	case u.unit == greyLevels:
+		u.unit, e.Traverse.Grey = traverse.Grey, false
+	case u.unit == traverse.Grey:
 		e.Traverse.Grey = false
 	case len(u.known) < 2:
 		d.report(n, "measured in grey levels, and one stated value does not tell their scale and offset",

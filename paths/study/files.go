@@ -12,11 +12,9 @@ import (
 	"path/filepath"
 	"strings"
 
+	"bankfire/paths/traverse"
 	"bankfire/thermal"
 )
-
-// maxDataBytes bounds the files that a study names.
-const maxDataBytes = 64 << 20
 
 // loader reads a whole file that must not be larger than limit bytes. Its
 // errors are *thermal.InputError without a place.
@@ -97,7 +95,7 @@ func (f *files) read(name string) ([]byte, error) {
 	if data, known := f.known[path]; known {
 		return data, nil
 	}
-	data, err := f.load(path, maxDataBytes)
+	data, err := f.load(path, traverse.MaxBytes)
 	var in *thermal.InputError
 	if errors.As(err, &in) && path != name {
 		at := *in

@@ -426,7 +426,7 @@ func TestReadFiles(t *testing.T) {
 		t.Fatal(err)
 	}
 	data := write("large.csv", "")
-	if err := os.Truncate(data, maxDataBytes+1); err != nil {
+	if err := os.Truncate(data, traverse.MaxBytes+1); err != nil {
 		t.Fatal(err)
 	}
 	tests := []struct{ name, file, problem string }{

@@ -44,7 +44,7 @@ func (d *reader) limit(text string) (float64, bool) {
 		d.refuse(valueColumn, f.problem, `write the limit as a number, such as "<5"`)
 		return 0, false
 	}
-	most := whole(d.t.Unit)
+	most := Whole(d.t.Unit)
 	if !(v/sigmasOfLimit >= leastError*most && v <= most) {
 		d.refuse(valueColumn, fmt.Sprintf("not a limit between zero and the whole, which is %g %s", most, d.t.Unit), `write the limit of detection, such as "<5"`)
 		return 0, false

@@ -122,7 +122,7 @@ func (d *reader) bindErrors() error {
 // percentIsOfValue reports whether an error in "%" can only be one of each
 // value, the values being in no kind of per cent.
 func percentIsOfValue(unit string) bool {
-	return unit == "ppm" || unit == "mole fraction" || unit == greyUnit
+	return unit == "ppm" || unit == "mole fraction" || unit == Grey
 }
 
 // errorFactor converts an error to the unit of the values: where that is Fo or
@@ -216,7 +216,7 @@ func (d *reader) analyses(k int) (float64, bool) {
 }
 
 func (d *reader) usable(sigma float64) bool {
-	return sigma >= leastError*whole(d.t.Unit) && finite(sigma)
+	return sigma >= leastError*Whole(d.t.Unit) && finite(sigma)
 }
 
 func (d *reader) noteErrors() {
@@ -227,7 +227,7 @@ func (d *reader) noteErrors() {
 	if d.relative {
 		d.note("column %q is taken as per cent of each value", e.Column)
 	}
-	cent := whole(d.t.Unit) == 100 && d.t.Unit != "wt%"
+	cent := Whole(d.t.Unit) == 100 && d.t.Unit != "wt%"
 	if e.Column != "" && !d.relative && d.t.Unit == "%" {
 		d.note("column %q is taken as per cent of the whole, like the values", e.Column)
 	}

@@ -88,8 +88,8 @@ func (s *sheet) quantity(k int) (float64, bool) {
 		s.refuse(k, "too large for a number", "check the exponent and the unit")
 	case b.dim == thermal.Temperature && v < coldest:
 		s.refuse(k, "not above absolute zero", "check the sign and the unit")
-	case b.dim == thermal.Concentration && b.unit != ofValue && math.Abs(v) > tooMuch*whole(b.unit):
-		s.refuse(k, fmt.Sprintf("more than the whole, which is %g %s", whole(b.unit), b.unit), "check the number and the unit")
+	case b.dim == thermal.Concentration && b.unit != ofValue && math.Abs(v) > tooMuch*Whole(b.unit):
+		s.refuse(k, fmt.Sprintf("more than the whole, which is %g %s", Whole(b.unit), b.unit), "check the number and the unit")
 	default:
 		return v, true
 	}
@@ -103,22 +103,23 @@ const coldest = 1e-9
 // error, so the number or its unit is wrong.
 const tooMuch = 1.5
 
-// whole returns how much of a unit of concentration is everything.
-func whole(unit string) float64 {
+// Whole returns how much of a unit of concentration, in its usual spelling, is
+// everything: 100 of wt%, and of grey levels more than any detector counts.
+func Whole(unit string) float64 {
 	if ppm, ok := thermal.ConcentrationFactor("ppm", unit); ok {
 		return 1e6 * ppm
 	}
 	switch unit {
 	case "%", "mol%", "Fo", "An":
 		return 100
-	case greyUnit:
-		return 1e9 // no detector counts more
+	case Grey:
+		return 1e9
 	}
 	return 1
 }
 
-// greyUnit is the unit of relative values: grey levels, counts.
-const greyUnit = "grey"
+// Grey is the usual spelling of the unit of relative values: grey levels, counts.
+const Grey = "grey"
 
 func finite(x float64) bool { return x-x == 0 }
 

@@ -120,7 +120,7 @@ func Read(name string, r io.Reader, o Options) (*Traverse, error) {
 	}
 	unit := s.columns[valueColumn].unit
 	d := reader{sheet: s, o: o, lines: map[float64]int{},
-		t: &Traverse{Name: name, Unit: unit, Grey: unit == greyUnit, Spot: o.Spot, Zero: o.Zero, Size: o.Size}}
+		t: &Traverse{Name: name, Unit: unit, Grey: unit == Grey, Spot: o.Spot, Zero: o.Zero, Size: o.Size}}
 	if err := d.bindErrors(); err != nil {
 		return nil, err
 	}

@@ -156,7 +156,6 @@ const roundOff = 1e-9
 // clamp returns x, moved onto the end of the crystal where it is beyond it by
 // no more than round-off, and whether it is inside.
 func (g *grid) clamp(x float64) (float64, bool) {
-
 	first, last := g.faces[0], g.faces[len(g.faces)-1]
 	slack := roundOff * (last - first)
 	if !(x >= first-slack && x <= last+slack) {
