@@ -33,25 +33,34 @@ func All() []Row { return slices.Clone(table()) }
 // Find returns a copy of the row with the key. If there is none the error is a
 // *thermal.InputError that suggests the nearest key.
 func Find(key string) (*Row, error) {
-	best, least := "", math.MaxInt
+	var keys []string
 	for _, r := range table() {
 		if r.Key == key {
 			return &r, nil
 		}
-		d := thermal.Slips(key, r.Key)
-		if strings.HasPrefix(r.Key, key) {
-			d = min(d, 1) // the end was left out
-		}
-		if d < least {
-			best, least = r.Key, d
-		}
+		keys = append(keys, r.Key)
 	}
 	return nil, &thermal.InputError{
 		Field:   "law",
 		Value:   key,
 		Problem: "not in the catalogue",
-		Remedy:  "nearest key is " + strconv.Quote(best),
+		Remedy:  "nearest key is " + strconv.Quote(nearestKey(key, keys)),
 	}
+}
+
+// nearestKey returns the key that is closest to a mistyped one.
+func nearestKey(key string, keys []string) string {
+	best, least := "", math.MaxInt
+	for _, k := range keys {
+		d := thermal.Slips(key, k)
+		if strings.HasPrefix(k, key) {
+			d = min(d, 1) // the end was left out
+		}
+		if d < least {
+			best, least = k, d
+		}
+	}
+	return best
 }
 
 // record is one line of the table by column name. It keeps its first error.
