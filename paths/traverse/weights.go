@@ -7,6 +7,7 @@ import (
 	"strconv"
 
 	"bankfire/thermal"
+	"bankfire/thermal/numeric"
 )
 
 // Sparse is one row of weights: the cells that a point sees, ascending, and
@@ -309,26 +310,12 @@ func (s Spot) moments(x, origin, a, b float64) (m moments) {
 	}
 	h := (b - a) / float64(panels)
 	for p := range panels {
-		mid := a + (float64(p)+0.5)*h
-		for k, node := range gaussNodes {
-			y := mid + node*h/2
-			w := gaussWeights[k] * h / 2 * s.density(y-x)
+		for _, n := range numeric.Gauss5() {
+			y := a + (float64(p)+n.X)*h
+			w := n.W * h * s.density(y-x)
 			u := y - origin
 			m = m.plus(moments{w, w * u, w * u * u})
 		}
 	}
 	return m
 }
-
-// The rule of Gauss and Legendre with five points on -1 .. 1:
-//
-//	nodes    0, sqrt(5 -+ 2 sqrt(10/7))/3
-//	weights  128/225, (322 +- 13 sqrt 70)/900
-//
-// Source: Abramowitz and Stegun (1964), table 25.4.
-var (
-	gaussNodes = [5]float64{
-		-0.906179845938663993, -0.538469310105683091, 0, 0.538469310105683091, 0.906179845938663993}
-	gaussWeights = [5]float64{
-		0.236926885056189088, 0.478628670499366468, 0.568888888888888889, 0.478628670499366468, 0.236926885056189088}
-)
