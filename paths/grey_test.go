@@ -53,3 +53,21 @@ func TestWeighOfGreyLevels(t *testing.T) {
 	near(t, q.Free[2].Name, q.Free[2].Value, 20, 1e-2)
 	near(t, "what was seen of the mantle", q.Seen[7], 20+scale*90, 1e-2)
 }
+
+// What is told of a path measured in grey levels is told in the element's unit.
+func TestFollowOfGreyLevels(t *testing.T) {
+	s := greyStudy(t)
+	c, err := Follow(s, &s.Paths[0], []float64{0})
+	if err != nil {
+		t.Fatal(err)
+	}
+	e := &c.Elements[0]
+	for i, r := range e.Centres {
+		if math.Abs(r-80*um) < 5*um {
+			near(t, "start", e.Start[i], 90, 1e-2)
+			near(t, "end", e.Final[i], 90, 1e-2)
+			near(t, "snapshot", e.Snapshots[0].Value[i], 90, 1e-2)
+		}
+	}
+	near(t, "fitted mantle", e.Free[0].Value, 90, 1e-2)
+}
