@@ -2,8 +2,6 @@ package main
 
 import (
 	"math"
-	"path/filepath"
-	"strings"
 
 	"bankfire/paths"
 	"bankfire/paths/study"
@@ -16,7 +14,7 @@ func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
 		Inputs: []input{}, Laws: lawsUsed(r.Study), Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
-		Notes: portable(r.Study), Files: []string{},
+		Notes: filled(r.Study.Notes), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {
 		w.Inputs = append(w.Inputs, input{in.Name, in.SHA256})
@@ -132,23 +130,6 @@ func confidence(l *study.Law) string {
 		return "as given in the study"
 	}
 	return l.Row.Confidence
-}
-
-// portable returns the notes of the study with the files that they begin with
-// named as among its inputs, wherever the study was read from.
-func portable(s *study.Study) []string {
-	notes := []string{}
-	for _, note := range s.Notes {
-		file, rest, found := strings.Cut(note, ": ")
-		for _, in := range s.Inputs {
-			written := filepath.Join(filepath.Dir(s.File), filepath.FromSlash(in.Name)) == file
-			if found && (written || filepath.IsAbs(file) && filepath.Base(file) == in.Name) {
-				note = in.Name + ": " + rest
-			}
-		}
-		notes = append(notes, note)
-	}
-	return notes
 }
 
 // ends returns an interval with its open ends nil.

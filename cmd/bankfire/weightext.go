@@ -25,7 +25,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	for i, note := range notes {
 		fmt.Fprintf(&text, "[%d] %s\n", i+1, note)
 	}
-	for _, note := range portable(r.Study) {
+	for _, note := range r.Study.Notes {
 		fmt.Fprintf(&text, "note: %s\n", note)
 	}
 	fmt.Fprintf(&text, "\nVerdicts at %s confidence. Shift factor: what D would have to be multiplied by to agree best, with its 95 %%\n"+
