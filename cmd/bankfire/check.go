@@ -22,7 +22,7 @@ func checkCommand() *command {
 		short: "read a study and its data and say what is wrong with them",
 		long: "Reads the study and every file that it names and computes nothing. What is wrong is reported\n" +
 			"with file, line, what was typed and what to write instead, up to 20 problems at a time; if\n" +
-			"nothing is, says in a few lines what was understood.",
+			"nothing is, says in a few lines what was understood. bankfire help study explains every key.",
 		examples: []example{{"bankfire check study.toml", "find mistakes before a long run"}},
 		least:    1, most: 1,
 		run: func(_ context.Context, s streams, operands []string) error {

@@ -42,7 +42,7 @@ type command struct {
 
 	// words are the values that completion offers, by the name of an operand or
 	// of a flag's value. It needs none for STUDY (study files), DIR (directories)
-	// and COMMAND.
+	// and TOPIC (what help explains).
 	words map[string][]string
 
 	// run does the work. An error that is or wraps an *thermal.InputError ends
@@ -150,11 +150,16 @@ func find(all []*command, name string) (*command, error) {
 			return c, nil
 		}
 	}
-	err := &thermal.InputError{Field: "command", Value: name, Problem: "there is none of this name"}
-	if near := nearestWord(name, names(all)); near != "" {
+	return nil, notFound("command", name, names(all))
+}
+
+// notFound is the error about a name that none of the known things has.
+func notFound(thing, name string, known []string) error {
+	err := &thermal.InputError{Field: thing, Value: name, Problem: "there is none of this name"}
+	if near := nearestWord(name, known); near != "" {
 		err.Remedy = "the nearest is " + near
 	}
-	return nil, hinted{err, "bankfire help lists the commands"}
+	return hinted{err, "bankfire help lists the commands"}
 }
 
 func names(all []*command) []string {

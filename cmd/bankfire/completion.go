@@ -67,8 +67,8 @@ func completeAll(all []*command) []completed {
 	for i, c := range all {
 		offerFor := func(value string) offer {
 			switch value {
-			case "COMMAND":
-				return offer{words: names(all)}
+			case "TOPIC":
+				return offer{words: explained(all)}
 			case "STUDY":
 				return offer{studies: true}
 			case "DIR":

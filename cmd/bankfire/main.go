@@ -2,10 +2,11 @@
 // was measured in its crystals: which paths reproduce the diffusion profiles,
 // which cannot, in which direction they miss and by how much.
 //
-// bankfire help lists the commands, and bankfire help COMMAND explains one with
-// examples. Results go to the standard output, everything else to the standard
-// error. The status is 0 if done, 1 if it failed, and 2 if the command line or
-// the study is wrong; that no path reproduces the data is a finding, status 0.
+// bankfire help lists commands and topics, and bankfire help NAME explains one;
+// the topic study is the reference of the study file. Results go to the standard
+// output, everything else to the standard error. The status is 0 if done, 1 if it
+// failed, and 2 if the command line or the study is wrong; that no path reproduces
+// the data is a finding, status 0.
 package main
 
 import (
