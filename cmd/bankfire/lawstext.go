@@ -9,7 +9,6 @@ import (
 	"slices"
 	"strconv"
 	"strings"
-	"text/tabwriter"
 
 	"bankfire/diffusion/catalogue"
 	"bankfire/thermal"
@@ -18,8 +17,8 @@ import (
 // lineWidth is where running text breaks, characters.
 const lineWidth = 100
 
-// lawTable returns a writer that lines up columns, to be flushed.
-func lawTable(w io.Writer) *tabwriter.Writer { return tabwriter.NewWriter(w, 0, 0, 2, ' ', 0) }
+// lawTable is a table with columns close together, of which laws have many.
+func lawTable() *table { return spacedTable(2) }
 
 // listLaws prints the rows the filter lets through, one a line.
 func listLaws(out io.Writer, filter lawsFilter) error {
@@ -28,13 +27,12 @@ func listLaws(out io.Writer, filter lawsFilter) error {
 		return noLaw(filter)
 	}
 	var text bytes.Buffer
-	tab := lawTable(&text)
-	fmt.Fprintln(tab, "key\tmineral\tspecies\ttag\tcalibrated\tdepends on\tchecked")
+	tab := lawTable()
+	tab.row("key", "mineral", "species", "tag", "calibrated", "depends on", "checked")
 	for _, r := range rows {
-		fmt.Fprintf(tab, "%s\t%s\t%s\t%s\t%s\t%s\t%s\n",
-			r.Key, r.Mineral, r.Species, r.Tag, calibratedText(&r), dependsText(&r)+conditionMark(&r), yesNo(r.Checked()))
+		tab.row(r.Key, r.Mineral, r.Species, string(r.Tag), calibratedText(&r), dependsText(&r)+conditionMark(&r), yesNo(r.Checked()))
 	}
-	tab.Flush()
+	tab.writeTo(&text)
 	fmt.Fprintf(&text, "\n%s.", countText(len(rows)))
 	if slices.ContainsFunc(rows, func(r catalogue.Row) bool { return !r.Checked() }) {
 		fmt.Fprintf(&text, " checked no: %s.", catalogue.NotChecked)
@@ -252,32 +250,20 @@ func printedText(r *catalogue.Row) string {
 // valuesText is the table of D at the temperatures, with what the law rests on.
 func valuesText(c lawCurve, opt *lawsOptions) string {
 	var text bytes.Buffer
-	tab := lawTable(&text)
-	fmt.Fprintln(tab, "T [C]\tD [m2/s]\tlog10 D [m2/s]\tD [um2/yr]\t")
+	tab := lawTable()
+	tab.row("T [C]", "D [m2/s]", "log10 D [m2/s]", "D [um2/yr]", "")
 	for _, temp := range opt.temps {
 		lnD := c.law.LnD(temp)
 		perYear := math.Exp(lnD) * thermal.Year * 1e12
-		fmt.Fprintf(tab, "%s\t%.4g\t%.3f\t%.4g\t%s\n",
-			celsiusText(temp), math.Exp(lnD), lnD/math.Ln10, perYear, beyondText(c.row, temp))
+		tab.row(celsiusText(temp), fmt.Sprintf("%.4g", math.Exp(lnD)), fmt.Sprintf("%.3f", lnD/math.Ln10),
+			fmt.Sprintf("%.4g", perYear), beyondText(c.row, temp))
 	}
-	tab.Flush()
-	trimLines(&text)
+	tab.writeTo(&text)
 	fmt.Fprintf(&text, "\nA year is 365.25 d.%s\n", givenText(c.row, opt.conditions))
 	for _, caution := range c.row.Cautions() {
 		fmt.Fprintf(&text, "Caution: %s.\n", caution)
 	}
 	return text.String()
-}
-
-// trimLines takes the spaces from the ends of lines, which the table leaves
-// where a last cell is empty.
-func trimLines(text *bytes.Buffer) {
-	lines := strings.Split(text.String(), "\n")
-	text.Reset()
-	for i, line := range lines {
-		lines[i] = strings.TrimRight(line, " ")
-	}
-	text.WriteString(strings.Join(lines, "\n"))
 }
 
 // givenText is " At XAn 0.5." for the conditions the law depends on.
@@ -320,12 +306,12 @@ func compareLaws(out io.Writer, curves []lawCurve, opt *lawsOptions) error {
 		fmt.Fprintf(&text, "%d  %s\n", i+1, wrap(about, 3))
 	}
 	fmt.Fprintln(&text)
-	tab := lawTable(&text)
-	fmt.Fprintln(tab, strings.Join(compareHeader(len(curves)), "\t"))
+	tab := lawTable()
+	tab.row(compareHeader(len(curves))...)
 	for _, temp := range opt.temps {
-		fmt.Fprintln(tab, strings.Join(compareLine(curves, temp), "\t"))
+		tab.row(compareLine(curves, temp)...)
 	}
-	tab.Flush()
+	tab.writeTo(&text)
 	fmt.Fprintf(&text, "\nD in m2/s. Parentheses: outside the calibrated range, or range not known.\n")
 	for i, c := range curves {
 		if at := givenText(c.row, opt.conditions); at != "" {

@@ -14,9 +14,12 @@ type table struct {
 	aligned *tabwriter.Writer
 }
 
-func newTable() *table {
+func newTable() *table { return spacedTable(3) }
+
+// spacedTable is newTable with so many blanks between columns.
+func spacedTable(blanks int) *table {
 	t := new(table)
-	t.aligned = tabwriter.NewWriter(&t.text, 0, 0, 3, ' ', 0)
+	t.aligned = tabwriter.NewWriter(&t.text, 0, 0, blanks, ' ', 0)
 	return t
 }
 
