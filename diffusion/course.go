@@ -23,6 +23,8 @@ type span struct {
 	lnG          float64 // ln of the integral of D dt, m2
 	inner, outer ending
 	coldness     means // of 1/T, 1/K, over each step, weighted by D; for coupled problems only
+	middles      means // middle of each step, s, and
+	widths       means // its duration, s; where there is a source only
 }
 
 // means are the means of a value over the steps of a span, weighted by D, and
@@ -38,9 +40,10 @@ func (m *means) of(rough bool) []float64 {
 
 // ending is what holds at one end during a span.
 type ending struct {
-	open  bool
-	rim   int   // index into Problem.Inner or Outer
-	value means // of a prescribed rim
+	open     bool
+	rim      int   // index into Problem.Inner or Outer
+	value    means // of a rim that is given as a function of time
+	exchange means // integrals of k dt, m, of mass transfer
 }
 
 // most is a diffusion integral, m2, beyond which no crystal changes any more.
@@ -90,23 +93,40 @@ func (p *Plan) span(h *thermal.History, t0, t1 float64) span {
 		inner: endingAt(p.problem.Inner, t0),
 		outer: endingAt(p.problem.Outer, t0),
 	}
-	prescribed := func(e ending, rims []Rim) bool { return e.open && rims[e.rim].Kind == Prescribed }
-	in, out := prescribed(s.inner, p.problem.Inner), prescribed(s.outer, p.problem.Outer)
 	coupled := p.problem.LnK != nil
-	if math.IsInf(s.lnG, -1) || !in && !out && !coupled {
+	if math.IsInf(s.lnG, -1) || !s.inner.follows(p.problem.Inner) && !s.outer.follows(p.problem.Outer) &&
+		!coupled && p.problem.source == nil {
 		return s
 	}
 	times := p.stepTimes(h, t0, t1, s.lnG)
-	if in {
-		s.inner.value = p.leadEnds(p.average(h, p.problem.Inner[s.inner.rim].Given, times))
-	}
-	if out {
-		s.outer.value = p.leadEnds(p.average(h, p.problem.Outer[s.outer.rim].Given, times))
-	}
+	p.attend(&s.inner, p.problem.Inner, h, times)
+	p.attend(&s.outer, p.problem.Outer, h, times)
 	if coupled {
 		s.coldness = p.average(h, coldnessOf(h), times)
 	}
+	if p.problem.source != nil {
+		s.middles, s.widths = p.clock(times)
+	}
 	return s
+}
+
+// follows reports whether what holds at the end changes within the span.
+func (e *ending) follows(rims []Rim) bool {
+	return e.open && (rims[e.rim].Kind == Prescribed || rims[e.rim].Kind == Transfer)
+}
+
+// attend averages what changes at one end over the steps of a span.
+func (p *Plan) attend(e *ending, rims []Rim, h *thermal.History, times []float64) {
+	if !e.follows(rims) {
+		return
+	}
+	r := rims[e.rim]
+	if r.Given != nil {
+		e.value = p.leadEnds(p.average(h, r.Given, times))
+	}
+	if r.Kind == Transfer {
+		e.exchange = p.exchange(h, r.Rate, times)
+	}
 }
 
 // endingAt finds the rim in force from t on.
@@ -186,6 +206,20 @@ func (p *Plan) leadEnds(m means) means {
 	p.steps.leadEnd(m.fine)
 	p.rough.leadEnd(m.rough)
 	return m
+}
+
+// clock returns the middles and the durations of the steps, s.
+func (p *Plan) clock(times []float64) (middles, widths means) {
+	for i := range p.steps {
+		middles.fine = append(middles.fine, (times[i]+times[i+1])/2)
+		widths.fine = append(widths.fine, times[i+1]-times[i])
+	}
+	for j := 0; j < len(p.steps); j += p.steps.pair(j) {
+		end := j + p.steps.pair(j)
+		middles.rough = append(middles.rough, (times[j]+times[end])/2)
+		widths.rough = append(widths.rough, times[end]-times[j])
+	}
+	return middles, widths
 }
 
 // coldnessOf is 1/T along the history.

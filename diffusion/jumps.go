@@ -146,7 +146,7 @@ func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, out
 	for i := range job.Course.spans {
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)
-		if end := [...]ending{sp.inner, sp.outer}[side]; !end.open || g == 0 {
+		if end := [...]ending{sp.inner, sp.outer}[side]; !end.open || end.exchange.fine != nil || g == 0 {
 			left, sealed = math.Max(left-g, 0), !end.open
 			continue
 		}
@@ -154,7 +154,7 @@ func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, out
 			was, sealed = f.atSpan[(i*len(f.Cols)+j)*2+side], false
 		}
 		for k, st := range p.steps {
-			e := p.ends(&p.still, sp, j, k, 1, false)
+			e := p.ends(&p.still, sp, j, k, st, g, false)
 			if v := [...]float64{e.vIn, e.vOut}[side]; v != was {
 				err[cell] -= 2 * (v - was) * lag(0, perG*left)
 				was = v

@@ -173,8 +173,8 @@ func (p *Problem) moving() bool {
 	if p.LnK != nil {
 		return true
 	}
-	isPrescribed := func(r Rim) bool { return r.Kind == Prescribed }
-	return slices.ContainsFunc(p.Inner, isPrescribed) || slices.ContainsFunc(p.Outer, isPrescribed)
+	moves := func(r Rim) bool { return r.Given != nil || r.Kind == Transfer }
+	return slices.ContainsFunc(p.Inner, moves) || slices.ContainsFunc(p.Outer, moves)
 }
 
 // events returns the times after 0 at which a rim changes its kind or jumps.
@@ -187,7 +187,7 @@ func (p *Problem) events() []float64 {
 			if i+1 < len(rims) {
 				until = rims[i+1].From
 			}
-			if r.Kind == Prescribed {
+			if r.Given != nil {
 				at = append(at, within(r.Given.Jumps, r.From, until)...)
 			}
 		}
@@ -232,7 +232,7 @@ func (p *Plan) GEnough() (why string, ok bool) {
 		return "a rim changes along the path", false
 	}
 	if p.problem.moving() {
-		return "a rim value follows time", false
+		return "a rim follows time, or exchanges at a rate of its own", false
 	}
 	return "D only scales with temperature and every end is sealed or held throughout", true
 }

@@ -40,15 +40,17 @@ const (
 	Sealed     RimKind = iota // nothing passes
 	Held                      // the value is kept at Rim.Value
 	Prescribed                // the value is given as a function of time
+	Transfer                  // the surface exchanges with a value outside at a finite rate
 )
 
 // Rim is what holds at one end of the crystal from a time on, until the next
 // rim in the list.
 type Rim struct {
 	Kind  RimKind
-	From  float64 // s from the start of the path; the first of a list must not be later than 0
-	Value float64 // of a held rim, in the element's unit
-	Given *Given  // of a prescribed rim
+	From  float64   // s from the start of the path; the first of a list must not be later than 0
+	Value float64   // of a held rim, in the element's unit; of transfer, the value in equilibrium with what is outside
+	Given *Given    // of a prescribed rim; of transfer, instead of Value unless nil
+	Rate  Arrhenius // of transfer: the coefficient k = exp(LnA - E/T), LnA ln(m/s), E in K
 }
 
 // Given is a rim value known as a function of time. At must be smooth between
@@ -78,11 +80,13 @@ type Problem struct {
 	// its crystal/melt partition coefficient in a host of composition x at a
 	// temperature, K. The flux is then -D (dC/dr - C d(ln K)/dr), and an element at
 	// rest is proportional to K, not flat. nil is no coupling.
-	LnK   func(x, temp float64) float64
-	Host  func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
-	Inner []Rim                   // nil is sealed (at the centre, symmetry)
-	Outer []Rim                   // nil is sealed
-	Free  []Basis
+	LnK    func(x, temp float64) float64
+	Host   func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
+	Own    func(c float64) float64 // factor on D at the element's own value c, never negative; nil is 1; leaves no value free
+	Inner  []Rim                   // nil is sealed (at the centre, symmetry)
+	Outer  []Rim                   // nil is sealed
+	Free   []Basis
+	source func(r, t float64) float64 // dC/dt beside diffusion, per s, for manufactured solutions; set by tests only, with Own
 }
 
 // size returns the outer radius of the crystal, m.
@@ -143,7 +147,9 @@ func (p *Problem) checkRims(end string, rims []Rim) error {
 			return fmt.Errorf("diffusion: %s rim %d is held at %g", end, i, r.Value)
 		case r.Kind == Prescribed && (r.Given == nil || r.Given.At == nil):
 			return fmt.Errorf("diffusion: %s rim %d is prescribed without a function", end, i)
-		case r.Kind < Sealed || r.Kind > Prescribed:
+		case r.Kind == Transfer && !(finite(r.Value) && finite(r.Rate.LnA) && finite(r.Rate.E) && (r.Given == nil || r.Given.At != nil)):
+			return fmt.Errorf("diffusion: %s rim %d exchanges with %g at exp(%g - %g K/T) m/s", end, i, r.Value, r.Rate.LnA, r.Rate.E)
+		case r.Kind < Sealed || r.Kind > Transfer:
 			return fmt.Errorf("diffusion: %s rim %d is of no known kind", end, i)
 		}
 	}
@@ -158,6 +164,9 @@ func (p *Problem) checkRims(end string, rims []Rim) error {
 }
 
 func (p *Problem) checkFree() error {
+	if p.Own != nil && len(p.Free) > 0 {
+		return fmt.Errorf("diffusion: where D depends on the element itself the solution is not linear in %d free values", len(p.Free))
+	}
 	for i, b := range p.Free {
 		if len(b.Start) != len(p.Zones) ||
 			b.Inner != nil && len(b.Inner) != len(p.Inner) ||

@@ -28,6 +28,7 @@ type Field struct {
 	lane   lane
 	op     operator  // of the solve in hand, of a coupled problem
 	u      []float64 // C/K
+	newton newton    // of a nonlinear step
 	lane4  lane4
 	cols4  [][]four
 	atSpan []float64 // of each span and column, the values at both ends when it begins
@@ -46,7 +47,7 @@ func (p *Plan) Run(dst []Field, jobs []Job) error {
 	if err := p.checkJobs(jobs); err != nil {
 		return err
 	}
-	if p.host != nil {
+	if p.host != nil || p.problem.Own != nil {
 		for k := range jobs {
 			p.runOne(&dst[k], jobs[k], false)
 		}
@@ -153,14 +154,14 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 			continue
 		}
 		for k, st := range p.solves(rough) {
-			op := &p.still
-			if p.host != nil {
-				op = f.couple(p, 1/sp.coldness.of(rough)[k])
+			if p.problem.Own != nil {
+				p.nonlinear(f, sp, k, st, g, rough, &book)
+				continue
 			}
-			s := st.length(g)
+			op := p.operator(f, sp, k, rough)
 			for j := range f.Cols {
-				e := p.ends(op, sp, j, k, s, rough)
-				first, last := f.solve(op, s, e, j, st.euler)
+				e := p.ends(op, sp, j, k, st, g, rough)
+				first, last := f.solve(op, st.length(g), e, j, st.euler)
 				if c := f.Cols[j]; j == 0 {
 					book.enter(op, e, st.euler, first, last, c[0], c[len(c)-1])
 				}
@@ -169,6 +170,20 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 		f.Stats.Steps += len(p.solves(rough))
 	}
 	book.close(&f.Stats, p, f.Cols[0])
+}
+
+// operator returns what solve k of a span needs of the grid: the plan's own, or
+// one made for it in the field.
+func (p *Plan) operator(f *Field, sp *span, k int, rough bool) *operator {
+	switch {
+	case p.host != nil:
+		return f.couple(p, 1/sp.coldness.of(rough)[k])
+	case p.problem.Own != nil:
+		f.op.vol = p.still.vol
+		f.op.cond = append(f.op.cond[:0], p.still.cond...)
+		return &f.op
+	}
+	return &p.still
 }
 
 // solve advances column j by one solve and returns its first and last value
@@ -213,30 +228,36 @@ func (s step) length(g float64) float64 {
 	return s.df * g / 2
 }
 
-// ends returns what the ends of column j are in solve k of a span, s long.
-func (p *Plan) ends(op *operator, sp *span, j, k int, s float64, rough bool) ends {
+// ends returns what the ends of column j are in solve k of a span whose whole
+// integral is g.
+func (p *Plan) ends(op *operator, sp *span, j, k int, st step, g float64, rough bool) ends {
 	var e ends
+	s := st.length(g)
+	shape, inside, outside := p.problem.Shape, p.grid.faces[0], p.grid.faces[len(p.grid.faces)-1]
+	kIn, kOut := 1.0, 1.0
+	if op.k != nil {
+		kIn, kOut = op.kIn, op.kOut
+	}
 	if sp.inner.open {
-		e.kIn = float64(s * op.cond[0])
+		e.kIn = sp.inner.through(op.cond[0], s, shape.area(inside)*kIn, st, k, rough)
 		if e.vIn = sp.inner.behind(p.problem.Inner, k, rough); j > 0 {
 			e.vIn = at(p.problem.Free[j-1].Inner, sp.inner.rim)
 		}
+		e.vIn /= kIn
 	}
 	if sp.outer.open {
-		e.kOut = float64(s * op.cond[len(op.cond)-1])
+		e.kOut = sp.outer.through(op.cond[len(op.cond)-1], s, shape.area(outside)*kOut, st, k, rough)
 		if e.vOut = sp.outer.behind(p.problem.Outer, k, rough); j > 0 {
 			e.vOut = at(p.problem.Free[j-1].Outer, sp.outer.rim)
 		}
-	}
-	if op.k != nil {
-		e.vIn, e.vOut = e.vIn/op.kIn, e.vOut/op.kOut
+		e.vOut /= kOut
 	}
 	return e
 }
 
 // behind returns what is behind an open end in solve k of its span.
 func (e *ending) behind(rims []Rim, k int, rough bool) float64 {
-	if rims[e.rim].Kind == Held {
+	if e.value.fine == nil {
 		return rims[e.rim].Value
 	}
 	return e.value.of(rough)[k]

@@ -71,7 +71,7 @@ func (cr *crew) step(i, n int) {
 	}
 	last := len(p.grid.centres) - 1
 	for j, c := range f.cols4 {
-		e := cr.ends(i, j, n, &s)
+		e := cr.ends(i, j, n)
 		if j > 0 {
 			f.lane4.forward(&e, c)
 			f.lane4.substitute(c, st.euler)
@@ -89,11 +89,11 @@ func (cr *crew) step(i, n int) {
 	}
 }
 
-func (cr *crew) ends(i, j, n int, s *four) ends4 {
+func (cr *crew) ends(i, j, n int) ends4 {
 	var e ends4
 	for k := range cr.dst {
 		if cr.g[k] != 0 {
-			one := cr.plan.ends(&cr.plan.still, &cr.jobs[k].Course.spans[i], j, n, s[k], false)
+			one := cr.plan.ends(&cr.plan.still, &cr.jobs[k].Course.spans[i], j, n, cr.plan.steps[n], cr.g[k], false)
 			e.kIn[k], e.kOut[k], e.vIn[k], e.vOut[k] = one.kIn, one.kOut, one.vIn, one.vOut
 		}
 	}
