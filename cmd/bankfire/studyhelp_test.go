@@ -149,7 +149,7 @@ type frame struct {
 }
 
 const (
-	shownLegs     = `[ { hold = "750 C", for = "800 yr" } ]`
+	shownLegs     = `[ { hold = "750 C", for = "6 kyr" } ]`
 	shownZones    = `{ name = "core", width = "140 um" }`
 	shownLaw      = `law = "quartz-ti-cherniak2007"`
 	shownStart    = `{ zones = ["free", "free"], edge = "0 um" }`
@@ -158,7 +158,7 @@ const (
 	shownPath     = "name = \"kept warm\"\nlegs = " + shownLegs + "\n"
 	shownCrystal  = "name = \"HF-12\"\nmineral = \"quartz\"\nshape = \"slab\"\nzones = [ " + shownZones + ", { name = \"mantle\", width = \"60 um\" } ]\n"
 	shownElement  = "name = \"Ti\"\n" + shownLaw + "\nstart = " + shownStart + "\nrim = " + shownRim + "\n"
-	shownTraverse = "file = \"ti.csv\"\nposition = \"distance [um]\"\nzero = \"rim\"\nvalue = \"Ti [ppm]\"\nerror = \"4 %\"\nspot = \"0.8 um fwhm\"\n"
+	shownTraverse = "file = \"ti.csv\"\nposition = \"distance [um]\"\nzero = \"rim\"\nvalue = \"Ti [ppm]\"\nerror = \"3 %\"\nspot = \"0.8 um fwhm\"\n"
 )
 
 func lines(text string) []string { return strings.Split(strings.TrimSpace(text), "\n") }
@@ -201,7 +201,7 @@ func frames() []frame {
 		rim("given", `given = "rim.csv"`, `time = "t [yr]"`, `value = "Ti [ppm]"`),
 		rim("sealed", `sealed = true`),
 		{"crystal.element.traverse", shownTraverse, "%s\n", false, lines(shownTraverse)},
-		{"crystal.element.traverse.error", `"4 %"`, "%s", true, []string{`column = "2se [ppm]"`, "sigmas = 2"}},
+		{"crystal.element.traverse.error", `"3 %"`, "%s", true, []string{`column = "2se [ppm]"`, "sigmas = 2"}},
 	}
 }
 
