@@ -150,6 +150,8 @@ func tally(fit []string, n int) string {
 		return "The path does not reproduce what was measured."
 	case len(fit) == 0:
 		return fmt.Sprintf("None of the %d paths reproduces what was measured.", n)
+	case len(fit) == 2 && n == 2:
+		return "Both paths reproduce what was measured: the data cannot tell them apart."
 	case len(fit) == n:
 		return fmt.Sprintf("All %d paths reproduce what was measured: the data cannot tell them apart.", n)
 	case len(fit) == 1:
