@@ -287,10 +287,10 @@ func (w *weighted) addPiece(law *Law, h *thermal.History, v *Given, a, b float64
 		return
 	}
 	inside := weighted{lnWeight: math.Inf(-1)}
-	for i, x := range gaussNodes {
-		t := a + (b-a)*x
+	for _, n := range numeric.Gauss5() {
+		t := a + (b-a)*n.X
 		temp, _ := h.At(t)
-		inside.add(v.At(t), math.Log(gaussWeights[i])+law.LnD(temp))
+		inside.add(v.At(t), math.Log(n.W)+law.LnD(temp))
 	}
 	misses := math.Abs(inside.lnWeight + math.Log(b-a) - exact)
 	if m := a + (b-a)/2; w.halvings > 0 && a < m && m < b && !(misses <= resolved+ulps*b/(b-a)) {
@@ -301,16 +301,3 @@ func (w *weighted) addPiece(law *Law, h *thermal.History, v *Given, a, b float64
 	}
 	w.add(inside.mean, exact)
 }
-
-// Gauss-Legendre nodes and weights of five points on [0, 1] (Abramowitz and
-// Stegun 1964, table 25.4).
-var (
-	gaussNodes = [...]float64{
-		0.5 - 0.906179845938664/2, 0.5 - 0.538469310105683/2, 0.5,
-		0.5 + 0.538469310105683/2, 0.5 + 0.906179845938664/2,
-	}
-	gaussWeights = [...]float64{
-		0.236926885056189 / 2, 0.478628670499366 / 2, 0.568888888888889 / 2,
-		0.478628670499366 / 2, 0.236926885056189 / 2,
-	}
-)
