@@ -37,8 +37,7 @@ func TestWeightsAt(t *testing.T) {
 	faces := []float64{0, 1e-6, 2e-6, 3e-6, 4e-6, 5e-6}
 	for _, spot := range []Spot{{}, {TopHat, 0.7e-6}, {Gaussian, 0.4e-6}} {
 		moved := Traverse{Position: []float64{4.5e-6, 1e-6}, Spot: spot, Zero: Rim, Size: 5e-6}
-		typed := Traverse{Position: []float64{5e-6, 2e-6}, Spot: spot, Line: []int{1, 2}}
-		want, err := typed.Weights(faces, true)
+		want, err := NewWeights(faces, true, spot, []float64{5e-6, 2e-6})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -53,8 +52,8 @@ func TestWeightsAt(t *testing.T) {
 // through one shrunk along it does: at 60 deg, by half.
 func TestWeightsAtSlant(t *testing.T) {
 	faces, wide := []float64{0, 1e-6, 2e-6, 3e-6, 4e-6, 5e-6}, []float64{0, 2e-6, 4e-6, 6e-6, 8e-6, 10e-6}
-	slanted := Traverse{Position: []float64{2.5e-6, 9e-6}, Spot: Spot{Gaussian, 1e-6}, Line: []int{1, 2}}
-	want, err := slanted.Weights(wide, true)
+	slanted := Traverse{Position: []float64{2.5e-6, 9e-6}, Spot: Spot{Gaussian, 1e-6}}
+	want, err := NewWeights(wide, true, slanted.Spot, slanted.Position)
 	if err != nil {
 		t.Fatal(err)
 	}

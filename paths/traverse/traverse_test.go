@@ -447,21 +447,6 @@ func TestReadPanics(t *testing.T) {
 	}
 }
 
-// TestTraverseWeights: a position outside the crystal is reported with its line.
-func TestTraverseWeights(t *testing.T) {
-	tr, err := Read("ti.csv", strings.NewReader(header+"1,50,2\n4,50,2\n"), standard())
-	if err != nil {
-		t.Fatal(err)
-	}
-	faces := []float64{0, 1e-6, 2e-6, 3e-6}
-	if _, err = tr.Weights(faces, true); err == nil || !strings.HasPrefix(err.Error(), `ti.csv:3: position "4 um": outside the crystal`) {
-		t.Errorf("got %v", err)
-	}
-	if w, err := tr.Weights([]float64{0, 1e-6, 2e-6, 4e-6}, true); err != nil || len(w.Row) != 2 {
-		t.Errorf("got %v, %v", w, err)
-	}
-}
-
 func TestReadColumns(t *testing.T) {
 	columns := []Column{{"t [yr]", thermal.Duration}, {"T [C]", thermal.Temperature}}
 	got, err := ReadColumns("tt.csv", strings.NewReader("T [C];t [kyr]\n700;0\n750;0\n690;2\n"), []Column{{"t", thermal.Duration}, columns[1]})

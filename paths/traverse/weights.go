@@ -85,26 +85,8 @@ func (w *Weights) Apply(dst, cells []float64) {
 	}
 }
 
-// Weights returns the weights of the traverse's spot at its positions over the
-// cells between faces, see [NewWeights]. A position outside the crystal is
-// reported with the file and line it was read from.
-func (t *Traverse) Weights(faces []float64, mirrored bool) (*Weights, error) {
-	g := newGrid(faces, mirrored)
-	var l list
-	for i, x := range t.Position {
-		if _, ok := g.clamp(x); !ok {
-			e := g.outside(x)
-			e.File, e.Line = t.Name, t.Line[i]
-			l.add(e)
-		}
-	}
-	if err := l.err(); err != nil {
-		return nil, err
-	}
-	return NewWeights(faces, mirrored, t.Spot, t.Position)
-}
-
-// WeightsAt is Weights for the positions that [Traverse.Place] gives for an
+// WeightsAt returns the weights of the traverse's spot over the cells between
+// faces, see [NewWeights], at the positions that [Traverse.Place] gives for an
 // origin, m, and a tilt, rad; the spot lies along the same line and shrinks with
 // it. A position that these move out of the crystal is taken at the end that it
 // left by: it was measured in the crystal.
