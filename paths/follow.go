@@ -82,7 +82,7 @@ func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) 
 		amounts = p.amounts(fitted).stated()
 	}
 	if result == nil {
-		out.Notes = append(lawNotes(e, path.History), reachNotes(c, out.LnG)...)
+		out.Notes = append(lawNotes(e, path.History), reachNotes(c, out.LnG+fastest(c, e))...)
 	}
 	out.WhyG, out.GEnough = p.plan().GEnough()
 	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))

@@ -35,15 +35,20 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 			notes = append(notes, fmt.Sprintf("%s is at the end of its range", f.Name))
 		}
 	}
-	return append(notes, reachNotes(r.Crystal, r.LnG)...)
+	return append(notes, reachNotes(r.Crystal, r.LnG+fastest(r.Crystal, r.Element))...)
 }
 
-// lawNotes says what about the law, used along the history, the reader must
-// know.
+// lawNotes says what about the law and the partition relation, used along the
+// history, the reader must know.
 func lawNotes(e *study.Element, h *thermal.History) []string {
 	notes := outOfRange(e, h)
 	for _, caution := range e.Law.Cautions() {
 		notes = append(notes, lawName(e)+": "+caution)
+	}
+	if p := e.Partition; p != nil {
+		for _, caution := range p.Cautions() {
+			notes = append(notes, "partition "+p.Key+": "+caution)
+		}
 	}
 	return notes
 }
@@ -51,6 +56,13 @@ func lawNotes(e *study.Element, h *thermal.History) []string {
 // farReach is the part of the way to another face beyond which one dimension
 // stops being enough.
 const farReach = 0.2
+
+// fastest is ln of the factor by which D exceeds the element's law in the zone
+// where it is largest.
+func fastest(c *study.Crystal, e *study.Element) float64 {
+	_, most := c.Factors(e)
+	return math.Log(most)
+}
 
 // reachNotes says that diffusion, with the integral exp(lnG) in m2, has gone far
 // enough for faces that are not in the model to matter. A ball has none.

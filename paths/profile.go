@@ -371,7 +371,8 @@ func (p *profile) full(chiSq sampler) (float64, error) {
 		return p.fitTo(p.starts()).ChiSq, nil
 	}
 	size := p.crystal.Size() - p.crystal.R0
-	values, err := chiSq([]float64{math.Log(equilibrated*size*size) - lnG})
+	slowest, _ := p.crystal.Factors(p.element)
+	values, err := chiSq([]float64{math.Log(equilibrated*size*size/slowest) - lnG})
 	if err != nil {
 		return 0, err
 	}

@@ -55,6 +55,9 @@ func checkText(s *study.Study) (*bytes.Buffer, error) {
 	if err := writePathsRead(text, s); err != nil {
 		return nil, err
 	}
+	if at := s.Conditions.Typed; len(at) > 0 {
+		fmt.Fprintf(text, "conditions: %s\n\n", strings.Join(at, ", "))
+	}
 	for i := range s.Crystals {
 		writeCrystal(text, &s.Crystals[i], filepath.Dir(s.File))
 	}
@@ -91,12 +94,19 @@ func writePathsRead(w io.Writer, s *study.Study) error {
 func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 	var zones []string
 	for _, z := range c.Zones {
-		zones = append(zones, z.Name+" "+micrometres(z.Width))
+		zone := z.Name + " " + micrometres(z.Width)
+		if c.Hosted {
+			zone += fmt.Sprintf(" in host %g", z.Host)
+		}
+		zones = append(zones, zone)
 	}
 	fmt.Fprintf(w, "%s, %s, %s from %s to %s: %s\n", c.Name, c.Mineral, c.Shape, micrometres(c.R0), micrometres(c.Size()), list(zones))
 	for i := range c.Elements {
 		e := &c.Elements[i]
 		fmt.Fprintf(w, "  %s by %s\n", e.Name, lawText(&e.Law))
+		if p := e.Partition; p != nil {
+			fmt.Fprintf(w, "  %s follows the host by partition %s\n", e.Name, partitionText(p))
+		}
 		if t := e.Traverse; t != nil {
 			name, err := filepath.Rel(folder, t.Name)
 			if err != nil {
@@ -121,7 +131,23 @@ func lawText(l *study.Law) string {
 	case l.Key != "":
 		text = l.Key + ", " + text
 	}
+	if l.HostSlope != 0 {
+		text += "; D depends on the host"
+	}
 	for _, caution := range l.Cautions() {
+		text += "; " + caution
+	}
+	return text
+}
+
+// partitionText names a partition relation with how far it can be trusted.
+func partitionText(p *study.Partition) string {
+	text := fmt.Sprintf("%s, R T ln K = %s X + %s kJ/mol", p.Key, plain(p.A/1e3), plain(p.B/1e3))
+	if p.Row == nil {
+		return text + ", a relation of this study"
+	}
+	text += ", " + p.Row.Citation
+	for _, caution := range p.Cautions() {
 		text += "; " + caution
 	}
 	return text

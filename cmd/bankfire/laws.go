@@ -30,7 +30,8 @@ func lawsCommand() *command {
 			"uncertainty and how its constants are known, and D at the temperatures given by --at, or by --from,\n" +
 			"--to and --step. With --compare and several, shows them side by side at those temperatures. A law\n" +
 			"that depends on pressure, fO2, composition or activity asks for the flag of that name, and prints\n" +
-			"the line that stands for it in a study, which cannot give them yet.",
+			"the line that stands for it in a study. A study that gives them can name the law itself, unless\n" +
+			"it depends on XFe, which changes as it diffuses.",
 		examples: []example{
 			{"bankfire laws --mineral quartz --species Ti", "list the laws of Ti in quartz"},
 			{`bankfire laws quartz-ti-jollands2020 --at "700 C, 750 C"`, "show one law and D at two temperatures"},

@@ -18,6 +18,9 @@ func studyText(c lawCurve, given catalogue.Conditions) string {
 	switch {
 	case len(needs) == 0:
 		return fmt.Sprintf("In a study:\n\nlaw = %q\n", r.Key)
+	case c.law.Terms == nil && !r.OwnComposition():
+		return fmt.Sprintf("In a study %s:\n\nlaw = %q\n\nWith values that stay the same all along instead,\n\n  %s\n\nprints a line for it.\n",
+			givingText(r), r.Key, r.Command())
 	case c.law.Terms == nil:
 		return fmt.Sprintf("A study cannot name this law yet, since it depends on %s. With your values,\n\n  %s\n\nprints a line for it.\n",
 			list(needs), r.Command())
@@ -27,6 +30,21 @@ func studyText(c lawCurve, given catalogue.Conditions) string {
 		return "A study cannot give this law under these conditions.\n"
 	}
 	return fmt.Sprintf("In a study, at %s:\n\n%s\n", conditionsText(r, given), line)
+}
+
+// givingText says what a study must give for the law to be named in it: "with
+// fO2 and pressure in its [conditions]".
+func givingText(r *catalogue.Row) string {
+	host, on := r.OnHost()
+	rest := slices.DeleteFunc(r.Needs(), func(name string) bool { return on && name == host.Variable })
+	var parts []string
+	if on {
+		parts = append(parts, "that gives "+host.Variable+" of every zone, such as host = 0.55")
+	}
+	if len(rest) > 0 {
+		parts = append(parts, "with "+list(rest)+" in its [conditions]")
+	}
+	return strings.Join(parts, ", ")
 }
 
 // studyLine returns the law under the conditions as a line for a study, good to

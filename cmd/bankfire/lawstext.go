@@ -46,10 +46,10 @@ func listLaws(out io.Writer, filter lawsFilter) error {
 	return err
 }
 
-// conditionMark is the sign of a law that a study cannot name, since it needs
-// conditions.
+// conditionMark is the sign of a law that a study cannot name, since it depends
+// on what diffuses.
 func conditionMark(r *catalogue.Row) string {
-	if len(r.Needs()) > 0 {
+	if r.OwnComposition() {
 		return " *"
 	}
 	return ""

@@ -35,8 +35,8 @@ func TestTopics(t *testing.T) {
 type entry struct{ key, example string }
 
 var (
-	tableHead = regexp.MustCompile(`^(top level|\[+[a-z.]+\]+|path\.legs [a-z]+|limits\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
-	entryLine = regexp.MustCompile(`^  ([A-Za-z0-9]+)(?: = (.*?))?(?:  .*)?$`)
+	tableHead = regexp.MustCompile(`^(top level|\[+[a-z.]+\]+|path\.legs [a-z]+|(?:limits|law)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
+	entryLine = regexp.MustCompile(`^  ([A-Za-z0-9_]+)(?: = (.*?))?(?:  .*)?$`)
 )
 
 // entries returns the keys that the page has for each table.
@@ -87,7 +87,7 @@ func TestStudyHelpHasEveryKey(t *testing.T) {
 // TestStudyHelpHasEveryUnit: a unit that a study may use is on the page.
 func TestStudyHelpHasEveryUnit(t *testing.T) {
 	for _, dim := range []thermal.Dimension{
-		thermal.Temperature, thermal.Duration, thermal.Length, thermal.Angle, thermal.MolarEnergy, thermal.Diffusivity, thermal.Concentration,
+		thermal.Temperature, thermal.Duration, thermal.Length, thermal.Angle, thermal.MolarEnergy, thermal.Diffusivity, thermal.Pressure, thermal.Concentration,
 	} {
 		if list := strings.Join(thermal.UnitNames(dim), ", "); !strings.Contains(studyHelp, list) {
 			t.Errorf("the page does not list %s", list)
@@ -178,11 +178,14 @@ func frames() []frame {
 	return []frame{
 		{"", shownTitle, "%s\n", false, nil},
 		{"threshold", "name = \"lock-up\"\ntemperature = \"730 C\"\n", "%s\n", false, []string{`name = "lock-up"`, `temperature = "730 C"`}},
+		{"conditions", "[[threshold]]", "[conditions]\n%s\n\n[[threshold]]", false, nil},
 		{"limits", "[[threshold]]", "[limits]\n%s\n\n[[threshold]]", false, nil},
 		inLimits("life", "", ""),
 		inLimits("above", "[ ", " ]", `threshold = "lock-up"`, `longest = "3 yr"`),
 		inLimits("between", "[ ", " ]", `from = "start"`, `to = "eruption"`, `longest = "1 Myr"`),
 		{"law", "[[threshold]]", "[[law]]\n%s\n\n[[threshold]]", false, append(law, `name = "mine"`)},
+		{"law.host", "[[threshold]]", "[[law]]\nname = \"mine\"\n" + strings.Join(law, "\n") + "\nhost = %s\n\n[[threshold]]", true, []string{`ln_slope = 1`}},
+		{"partition", "[[threshold]]", "[[partition]]\n%s\n\n[[threshold]]", false, []string{`name = "kx"`, `A = "1 kJ/mol"`, `B = "1 kJ/mol"`}},
 		{"path", shownPath, "%s\n", false, lines(shownPath)},
 		leg("hold", `hold = "750 C"`, `for = "1 yr"`),
 		leg("ramp", `ramp = "750 C"`, `for = "1 yr"`),
@@ -196,6 +199,7 @@ func frames() []frame {
 		{"crystal.inner", "shape = \"slab\"\n", "shape = \"slab\"\ninner = %s\n", true, nil},
 		{"crystal.element", shownElement, "%s\n", false, lines(shownElement)},
 		{"crystal.element.law", shownLaw, "law = %s", true, law},
+		{"crystal.element.law.host", shownLaw, "law = { " + strings.Join(law, ", ") + ", host = %s }", true, []string{`ln_slope = 1`}},
 		{"crystal.element.start", shownStart, "%s", true, nil},
 		rim("held", `held = "90 ppm"`),
 		rim("given", `given = "rim.csv"`, `time = "t [yr]"`, `value = "Ti [ppm]"`),
@@ -214,6 +218,13 @@ var beside = map[string][]string{
 	"crystal.element.rim given unit":      {"value", `value = "Ti"`},
 	"crystal.element.traverse.error size": {"column", "", "sigmas", ""},
 }
+
+// onHost are keys for which the crystal needs a host in every zone.
+var onHost = []string{"crystal.zones host", "crystal.element partition", "crystal.element.law host",
+	"crystal.element.law.host ln_slope", "crystal.element.law.host at"}
+
+// hosts gives a host to the zones that have none.
+var hosts = strings.NewReplacer(`"140 um" }`, `"140 um", host = 0.5 }`, `"60 um" }`, `"60 um", host = 0.4 }`)
 
 // with returns the keys of the frame with the one that is tried.
 func (f *frame) with(e entry) string {
@@ -264,6 +275,9 @@ func TestStudyHelpEntries(t *testing.T) {
 			}
 			t.Run(f.table+" "+e.key, func(t *testing.T) {
 				text := strings.Replace(sound, f.old, strings.Replace(f.new, "%s", f.with(e), 1), 1)
+				if slices.Contains(onHost, f.table+" "+e.key) {
+					text = hosts.Replace(text)
+				}
 				writeFile(t, folder, "tried.toml", text)
 				if _, err := study.Read(filepath.Join(folder, "tried.toml")); err != nil {
 					t.Errorf("%v\n%s", err, text)

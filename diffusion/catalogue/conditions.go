@@ -130,6 +130,16 @@ func (r *Row) Needs() []string {
 	return names
 }
 
+// OwnComposition reports whether the law depends on the very composition that
+// diffuses.
+func (r *Row) OwnComposition() bool { return r.Composition.Variable == XFe }
+
+// OnHost returns what the composition of the host, which stays as it is, adds to
+// log10 D; ok is false if the law does not depend on it.
+func (r *Row) OnHost() (t Term, ok bool) {
+	return r.Composition, r.Composition.Variable == XAn
+}
+
 // Command returns the command line that shows the law under conditions, with an
 // example of each that it needs:
 //

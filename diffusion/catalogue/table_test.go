@@ -79,6 +79,9 @@ func checkNumbers(t *testing.T, r *Row) {
 
 func checkTerms(t *testing.T, r *Row) {
 	t.Helper()
+	if term, on := r.OnHost(); on && (term.Form != Linear || r.OwnComposition()) {
+		t.Errorf("a term of the host is %s, want linear: it becomes a factor by zone", term.Form)
+	}
 	for _, term := range r.terms() {
 		if term.Slope == 0 {
 			t.Errorf("no slope by %s", term.Variable)

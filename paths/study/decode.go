@@ -21,14 +21,17 @@ const (
 // a table, return what they could read and report what is wrong; nothing that
 // they return is used once a problem was reported.
 type decoder struct {
-	file   string // the study as the user named it
-	files  *files
-	laws   map[string]Law // the study's own, by name
-	notes  []string
-	meant  map[string]bool // dotted keys, with the place of their table, that a mistyped key stands for
-	legs   int             // of all paths so far
-	found  []*thermal.InputError
-	faults int // all found, kept or not
+	file       string // the study as the user named it
+	files      *files
+	at         Conditions
+	used       map[string]bool      // conditions that a law depends on
+	laws       map[string]Law       // the study's own, by name
+	partitions map[string]Partition // the same
+	notes      []string
+	meant      map[string]bool // dotted keys, with the place of their table, that a mistyped key stands for
+	legs       int             // of all paths so far
+	found      []*thermal.InputError
+	faults     int // all found, kept or not
 }
 
 func (d *decoder) add(e *thermal.InputError) {

@@ -53,9 +53,10 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	}
 	c.Mineral = d.mineral(n, c.Name)
 	c.Shape = d.shape(d.need(n, "shape", `write shape = "slab", "cylinder" or "ball"`))
-	c.Zones = d.zones(n)
+	c.Zones, c.Hosted = d.zones(n)
 	inner := d.inner(n.get("inner"), &c)
 	d.elements(n, &c, inner)
+	d.noteHost(&c)
 	return c
 }
 
@@ -107,19 +108,21 @@ func (d *decoder) reportWord(n *node, problem string, known []string, remedy str
 	d.report(n, problem, remedy)
 }
 
-// zones reads the zones of a crystal, from the inside outwards.
-func (d *decoder) zones(n *node) []Zone {
+// zones reads the zones of a crystal, from the inside outwards, and reports
+// whether they have a host.
+func (d *decoder) zones(n *node) ([]Zone, bool) {
 	const example = `write zones = [ { name = "core", width = "140 um" } ], from the centre outwards`
 	var out []Zone
 	seen := map[string]int{}
 	list := d.need(n, "zones", example)
 	if d.tooMany(list, "zones") {
-		return nil
+		return nil, false
 	}
-	for _, z := range d.tables(list, example) {
+	tables := d.tables(list, example)
+	for _, z := range tables {
 		out = append(out, d.zone(z, seen))
 	}
-	return out
+	return out, d.hosted(list, tables)
 }
 
 // tooMany reports a list of more than maxZones things.
@@ -141,6 +144,9 @@ func (d *decoder) zone(n *node, seen map[string]int) Zone {
 	z.Width, _ = d.quantity(w, width)
 	if 0 < z.Width && z.Width < atom {
 		d.report(w, "thinner than an atom", "check the unit")
+	}
+	if v := n.get("host"); v != nil {
+		z.Host = d.host(v)
 	}
 	if v := n.get("times"); v != nil {
 		z.Times, _ = d.number(v, "write the factor on the diffusivity as a number, such as times = 0.1")

@@ -18,9 +18,10 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 			d.unique(v, e.Name, seen)
 		}
 	}
-	e.Law = d.law(d.need(n, "law", `write a key of the catalogue, such as law = "quartz-ti-cherniak2007"`))
+	e.Law = d.law(d.need(n, "law", `write a key of the catalogue, such as law = "quartz-ti-cherniak2007"`), c)
 	u := &units{element: e.Name, measured: n.get("traverse") != nil, known: map[float64]bool{}}
 	d.traverse(n.get("traverse"), c, &e, u)
+	e.Partition = d.partition(n.get("partition"), c, &e)
 	e.Start = d.start(n, c, u)
 	e.Rims = d.rims(n.get("rim"), c, u)
 	if e.Inner = d.rims(inner, c, u); allSealed(e.Inner) {

@@ -3,6 +3,7 @@ package study
 import (
 	"fmt"
 	"maps"
+	"math"
 	"slices"
 	"strings"
 
@@ -47,6 +48,13 @@ func (d *decoder) ownLaw(n *node, kind tableKind) Law {
 	if ok0 && okE {
 		law.Law = diffusion.NewLaw(d0, e)
 	}
+	if v := n.get("host"); v != nil {
+		host := ownLawHostTable
+		if kind == lawTable {
+			host = lawHostTable
+		}
+		d.lawHost(v, host, &law)
+	}
 	if v := n.get("sigma"); v != nil {
 		law.Sigma, _ = d.number(v, "write the standard deviation of log10 D at mid-range as a number, such as sigma = 0.2")
 	}
@@ -80,7 +88,7 @@ func (d *decoder) calibrated(n *node) (lo, hi float64) {
 
 // law reads the law of an element: a key of the catalogue, the name of a
 // [[law]], or the constants themselves.
-func (d *decoder) law(n *node) Law {
+func (d *decoder) law(n *node, c *Crystal) Law {
 	const example = `write a key that "bankfire laws" lists, the name of a [[law]], or { D0 = "7e-8 m2/s", E = "273 kJ/mol" }`
 	if n == nil {
 		return Law{}
@@ -90,21 +98,29 @@ func (d *decoder) law(n *node) Law {
 		return Law{}
 	}
 	if n.kind == tableNode {
-		return d.ownLaw(n, lawTable)
+		return d.onHost(n, d.ownLaw(n, lawTable), c)
 	}
 	key, ok := d.text(n, example)
 	if !ok {
 		return Law{}
 	}
 	if law, own := d.laws[key]; own {
-		return law
+		return d.onHost(n, law, c)
 	}
 	row, err := catalogue.Find(key)
 	if err != nil {
 		d.unknownLaw(n, key, err)
 		return Law{}
 	}
-	return d.published(n, row)
+	return d.published(n, row, c)
+}
+
+// onHost reports a law of the study that depends on a host that is not given.
+func (d *decoder) onHost(n *node, law Law, c *Crystal) Law {
+	if law.HostSlope != 0 && !c.Hosted && len(c.Zones) > 0 {
+		d.report(n, "this law depends on the host's composition", hostRemedy)
+	}
+	return law
 }
 
 func (d *decoder) unknownLaw(n *node, key string, err error) {
@@ -115,17 +131,78 @@ func (d *decoder) unknownLaw(n *node, key string, err error) {
 	d.reportError(n, err)
 }
 
-// published returns the law of a row of the catalogue.
-func (d *decoder) published(n *node, row *catalogue.Row) Law {
+// published returns the law of a row of the catalogue under the study's
+// conditions. Where it depends on the host it is that of its reference
+// composition, and the zones have the factor of their own.
+func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal) Law {
 	law := Law{Key: row.Key, Row: row, Sigma: row.SigmaMid.Value, TMin: row.TMin, TMax: row.TMax, Citation: row.Citation}
-	if needs := row.Needs(); len(needs) > 0 {
-		d.report(n, "this law depends on "+strings.Join(needs, ", ")+", which a study cannot give yet",
-			"run "+row.Command()+" with your values, and paste the line that it prints")
+	if !d.givesAll(n, row, c) {
 		return law
 	}
+	at := maps.Clone(d.at.Given)
+	if term, on := row.OnHost(); on {
+		at[term.Variable] = term.Reference
+		law.HostSlope, law.HostAt = math.Ln10*term.Slope, term.Reference
+	}
+	needs := row.Needs()
+	for _, name := range needs {
+		d.used[name] = true
+	}
 	var err error
-	if law.Law, err = row.Law(nil); err != nil {
+	switch fO2 := slices.Contains(needs, catalogue.FO2); {
+	case fO2 && d.at.Buffer != nil:
+		law.Buffer = d.at.Buffer
+		law.Law, err = row.LawAlong(at, d.at.Fugacity())
+	default:
+		law.Law, err = row.Law(at)
+		if fO2 {
+			law.Caution = fmt.Sprintf("fO2 held at %.3g Pa at every temperature", at[catalogue.FO2])
+		}
+	}
+	if err != nil {
 		d.reportError(n, err)
 	}
 	return law
+}
+
+// givesAll reports every condition of the law that the study does not give.
+func (d *decoder) givesAll(n *node, row *catalogue.Row, c *Crystal) bool {
+	if row.OwnComposition() {
+		d.report(n, "this law depends on "+strings.Join(row.Needs(), ", ")+", and "+row.Composition.Variable+" changes as it diffuses, which is not known in this version",
+			"run "+row.Command()+" with your values, and paste the line that it prints")
+		return false
+	}
+	var missing, conditions []string
+	remedy := ""
+	_, onHost := row.OnHost()
+	for _, name := range row.Needs() {
+		switch {
+		case onHost && name == row.Composition.Variable:
+			if !c.Hosted && len(c.Zones) > 0 {
+				missing, remedy = append(missing, name), hostRemedy+"; or "
+			}
+		case !d.at.gives(name):
+			missing, conditions = append(missing, name), append(conditions, name+" = "+conditionExample(name))
+		}
+	}
+	if len(missing) == 0 {
+		return true
+	}
+	if len(conditions) > 0 {
+		remedy = "write [conditions] and below it " + strings.Join(conditions, ", ") + "; or "
+	}
+	d.report(n, "this law depends on "+strings.Join(missing, ", ")+", not given in this study",
+		remedy+"run "+row.Command()+" with your values, and paste the line that it prints")
+	return false
+}
+
+// conditionExample is how a condition is written in a study.
+func conditionExample(name string) string {
+	switch name {
+	case catalogue.Pressure:
+		return `"2 kbar"`
+	case catalogue.FO2:
+		return `"NNO+0.3"`
+	}
+	return "0.6"
 }

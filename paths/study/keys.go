@@ -36,13 +36,17 @@ const (
 	lifeTable
 	aboveTable
 	betweenTable
+	conditionsTable
 	ownLawTable
+	ownLawHostTable
+	partitionTable
 	pathTable
 	crystalTable
 	zoneTable
 	innerTable
 	elementTable
 	lawTable
+	lawHostTable
 	startTable
 	heldTable
 	givenTable
@@ -54,23 +58,27 @@ const (
 // tables are the kinds of table with the keys that the decoder knows. It is
 // never changed.
 var tables = [...]Table{
-	topTable:       {"", []string{"title", "confidence", "eruption", "threshold", "limits", "law", "path", "crystal"}},
-	thresholdTable: {"threshold", []string{"name", "temperature"}},
-	limitsTable:    {"limits", []string{"life", "lowest", "highest", "above", "between"}},
-	lifeTable:      {"limits.life", []string{"shortest", "longest"}},
-	aboveTable:     {"limits.above", []string{"threshold", "temperature", "shortest", "longest", "counts"}},
-	betweenTable:   {"limits.between", []string{"from", "to", "shortest", "longest"}},
-	ownLawTable:    {"law", []string{"name", "D0", "E", "sigma", "range", "citation", "caution"}},
-	pathTable:      {"path", []string{"name", "legs", "eruption"}},
-	crystalTable:   {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "element"}},
-	zoneTable:      {"crystal.zones", []string{"name", "width", "times"}},
-	innerTable:     {"crystal.inner", []string{"radius", "rim"}},
-	elementTable:   {"crystal.element", []string{"name", "law", "start", "rim", "traverse"}},
-	lawTable:       {"crystal.element.law", []string{"D0", "E", "sigma", "range", "citation", "caution"}},
-	startTable:     {"crystal.element.start", []string{"zones", "edge", "unit"}},
-	heldTable:      {"crystal.element.rim held", []string{"held", "unit", "from"}},
-	givenTable:     {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},
-	sealedTable:    {"crystal.element.rim sealed", []string{"sealed", "from"}},
+	topTable:        {"", []string{"title", "confidence", "eruption", "conditions", "threshold", "limits", "law", "partition", "path", "crystal"}},
+	thresholdTable:  {"threshold", []string{"name", "temperature"}},
+	limitsTable:     {"limits", []string{"life", "lowest", "highest", "above", "between"}},
+	lifeTable:       {"limits.life", []string{"shortest", "longest"}},
+	aboveTable:      {"limits.above", []string{"threshold", "temperature", "shortest", "longest", "counts"}},
+	betweenTable:    {"limits.between", []string{"from", "to", "shortest", "longest"}},
+	conditionsTable: {"conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
+	ownLawTable:     {"law", []string{"name", "D0", "E", "host", "sigma", "range", "citation", "caution"}},
+	ownLawHostTable: {"law.host", []string{"ln_slope", "at"}},
+	partitionTable:  {"partition", []string{"name", "A", "B"}},
+	pathTable:       {"path", []string{"name", "legs", "eruption"}},
+	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "element"}},
+	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
+	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
+	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
+	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "sigma", "range", "citation", "caution"}},
+	lawHostTable:    {"crystal.element.law.host", []string{"ln_slope", "at"}},
+	startTable:      {"crystal.element.start", []string{"zones", "edge", "unit"}},
+	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
+	givenTable:      {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},
+	sealedTable:     {"crystal.element.rim sealed", []string{"sealed", "from"}},
 	traverseTable: {"crystal.element.traverse", []string{"file", "position", "zero", "origin", "tilt", "value", "unit", "error",
 		"scatter", "overlap", "below", "spot", "window", "skip"}},
 	errorTable: {"crystal.element.traverse.error", []string{"column", "sigmas", "analyses", "size", "floor"}},

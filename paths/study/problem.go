@@ -27,6 +27,9 @@ import (
 func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, []FreeValue, error) {
 	b := builder{c: c, e: e, h: h}
 	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law}
+	if e.Partition != nil {
+		out.LnK = e.Partition.LnK
+	}
 	var err error
 	if out.Inner, err = b.rims(e.Inner); err != nil {
 		return nil, nil, err
@@ -65,7 +68,7 @@ func (b *builder) zones() []diffusion.Zone {
 	r := b.c.R0
 	for i, z := range b.c.Zones {
 		r += z.Width
-		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: z.Times}
+		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: b.c.Factor(b.e, i), Host: z.Host}
 		if i < len(zones)-1 {
 			zones[i].Edge = b.e.Start.Edge.Middle()
 		}

@@ -41,7 +41,7 @@ func parse(file string, data []byte, load loader) (*Study, error) {
 		}
 		return nil, err
 	}
-	d := &decoder{file: file, files: newFiles(file, data, load), laws: map[string]Law{}, meant: map[string]bool{}}
+	d := &decoder{file: file, files: newFiles(file, data, load), used: map[string]bool{}, laws: map[string]Law{}, partitions: map[string]Partition{}, meant: map[string]bool{}}
 	s := d.study(root)
 	if err := d.err(); err != nil {
 		return nil, err
@@ -61,11 +61,15 @@ func (d *decoder) study(root *node) *Study {
 	if v := root.get("confidence"); v != nil {
 		s.Confidence = d.confidence(v)
 	}
+	d.at = d.conditions(root.get("conditions"))
+	s.Conditions = d.at
 	d.ownLaws(root.get("law"))
+	d.ownPartitions(root.get("partition"))
 	s.Thresholds = d.thresholds(root.get("threshold"))
 	s.Limits = d.limits(root.get("limits"), s.Thresholds)
 	s.Paths = d.paths(root)
 	s.Crystals = d.crystals(root)
+	d.noteUnused()
 	if d.faults == 0 {
 		d.together(s)
 	}

@@ -1,6 +1,8 @@
 package study
 
 import (
+	"math"
+
 	"bankfire/diffusion"
 	"bankfire/diffusion/catalogue"
 	"bankfire/paths/traverse"
@@ -14,6 +16,7 @@ type Study struct {
 	File       string  // the study file as the user named it
 	Confidence float64 // of the verdicts, 0 to 1; 0.95 where the study says nothing
 	Thresholds []Threshold
+	Conditions Conditions
 	Limits     Limits
 	Paths      []Path // at least one, names differ
 	Crystals   []Crystal
@@ -79,6 +82,7 @@ type Crystal struct {
 	Shape         diffusion.Shape
 	R0            float64   // inner radius, m; 0 is the centre
 	Zones         []Zone    // at least one, from the inside outwards
+	Hosted        bool      // every zone has a Host
 	Elements      []Element // at least one
 	Place         thermal.Place
 }
@@ -89,6 +93,7 @@ type Zone struct {
 	Name  string
 	Width float64 // m, above 0
 	Times float64 // factor on D, above 0; 1 where the study says nothing
+	Host  float64 // composition of the host, a mole fraction, if the crystal is Hosted
 }
 
 // Element is one element of a crystal: how it moves, what it started from,
@@ -96,6 +101,7 @@ type Zone struct {
 type Element struct {
 	Name, Unit string // Unit is that of every value below and of the traverse
 	Law        Law
+	Partition  *Partition // couples it to the host; nil is no coupling
 	Start      Start
 	Inner      []Rim              // nil is sealed: at the centre, symmetry
 	Rims       []Rim              // at least one
@@ -136,19 +142,67 @@ type Law struct {
 	Sigma      float64 // standard deviation of log10 D at mid-range; 0 if the study does not say
 	TMin, TMax float64 // calibrated range, K; both 0 if the study does not say
 	Citation   string
-	Caution    string // what the study says belongs beside every verdict that rests on the law; "" is nothing
+	Caution    string // what else belongs beside every verdict that rests on the law; "" is nothing
+	// In a host of composition X, D has the factor exp(HostSlope (X - HostAt)).
+	HostSlope, HostAt float64
+	Buffer            *catalogue.Buffer // along which Law goes; nil is none
 }
 
 // Cautions returns the sentences that belong beside every verdict that rests on
-// the law: those of the catalogue, or that of the study.
+// the law: those of the catalogue, and what the study says of it.
 func (l *Law) Cautions() []string {
-	switch {
-	case l.Row != nil:
-		return l.Row.Cautions()
-	case l.Caution != "":
-		return []string{l.Caution}
+	var out []string
+	if l.Row != nil {
+		out = l.Row.Cautions()
 	}
-	return nil
+	if l.Buffer != nil {
+		out = append(out, l.Buffer.Cautions()...)
+	}
+	if l.Caution != "" {
+		out = append(out, l.Caution)
+	}
+	return out
+}
+
+// Conditions are what the study says held all along every path.
+type Conditions struct {
+	Given  catalogue.Conditions // pressure, aSiO2 and an fO2 that stays the same, as far as given
+	Buffer *catalogue.Buffer    // that fO2 follows; nil is none
+	Offset float64              // of fO2 from the buffer, log10 units
+	ATiO2  float64              // 0 is not given
+	Typed  []string             // all of them as the study has them: "pressure 2 kbar"
+}
+
+// Fugacity returns the oxygen fugacity along the buffer, at 1 bar where no
+// pressure is given.
+func (c *Conditions) Fugacity() catalogue.Fugacity {
+	p, given := c.Given[catalogue.Pressure]
+	if !given {
+		p = 1e5
+	}
+	return c.Buffer.Fugacity(c.Offset, p)
+}
+
+// Partition is a crystal/melt partition relation, R T ln K = A X + B.
+type Partition struct {
+	Key  string               // key in the catalogue, or name of a [[partition]]
+	Row  *catalogue.Partition // nil unless it is from the catalogue
+	A, B float64              // J/mol
+}
+
+// LnK returns the logarithm of the partition coefficient in a host of
+// composition x at temp, K.
+func (p *Partition) LnK(x, temp float64) float64 {
+	return (float64(p.A*x) + p.B) / (thermal.GasConstant * temp)
+}
+
+// Cautions returns the sentences that belong beside every verdict that rests on
+// the relation.
+func (p *Partition) Cautions() []string {
+	if p.Row == nil {
+		return nil
+	}
+	return p.Row.Cautions()
 }
 
 // Plateau is a value before the measured traverse has been looked at.
@@ -202,3 +256,22 @@ func (c *Crystal) Size() float64 {
 // Mirrored reports whether the inner end of the crystal is a centre of
 // symmetry for the element, so that what lies beyond it is its mirror image.
 func (c *Crystal) Mirrored(e *Element) bool { return c.R0 == 0 && e.Inner == nil }
+
+// Factor is the factor on D of the element's law in zone i.
+func (c *Crystal) Factor(e *Element, i int) float64 {
+	z := &c.Zones[i]
+	if e.Law.HostSlope == 0 {
+		return z.Times
+	}
+	return z.Times * math.Exp(e.Law.HostSlope*(z.Host-e.Law.HostAt))
+}
+
+// Factors are the least and the largest Factor of all zones.
+func (c *Crystal) Factors(e *Element) (least, most float64) {
+	least, most = math.Inf(1), 0
+	for i := range c.Zones {
+		f := c.Factor(e, i)
+		least, most = min(least, f), max(most, f)
+	}
+	return least, most
+}

@@ -109,7 +109,7 @@ func TestEveryKeyCrystal(t *testing.T) {
 	}
 	near(t, "inner radius", c.R0, 40*um)
 	near(t, "size", c.Size(), 212*um)
-	want := []Zone{{"core", 100 * um, 1}, {"mantle", 60 * um, 0.1}, {"skin", 12 * um, 1}}
+	want := []Zone{{Name: "core", Width: 100 * um, Times: 1}, {Name: "mantle", Width: 60 * um, Times: 0.1}, {Name: "skin", Width: 12 * um, Times: 1}}
 	for i, z := range c.Zones {
 		if z.Name != want[i].Name {
 			t.Errorf("zone %d is %q", i, z.Name)

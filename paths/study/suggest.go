@@ -28,9 +28,8 @@ func later(field string) bool {
 		field = strings.ReplaceAll(field, ".legs.legs.", ".legs.")
 	}
 	switch field {
-	case "conditions", "partition", "family", "law.own", "law.host", "law.times", "path.legs.conditions",
-		"crystal.host", "crystal.zones.host", "crystal.zones.added",
-		"crystal.element.rivals", "crystal.element.partition",
+	case "family", "law.own", "law.times", "path.legs.conditions",
+		"crystal.host", "crystal.zones.added", "crystal.element.rivals",
 		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled":
 		return true
 	}

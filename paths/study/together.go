@@ -3,6 +3,7 @@ package study
 import (
 	"errors"
 	"fmt"
+	"math"
 
 	"bankfire/thermal"
 )
@@ -112,6 +113,7 @@ func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
 		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
 		d.add(&on)
 	}
+	d.cold(c, e, p)
 	legs := p.History.Legs()
 	for i := range legs {
 		if legs[i].Kind != thermal.Table {
@@ -128,5 +130,23 @@ func (d *decoder) coarse(e *Element, p *Path, rows *thermal.Rows, energy float64
 	if step, ratio, coarse := rows.Coarse(energy); coarse {
 		d.note("path %q: its table is coarse: straight lines between its rows may put the diffusion of %s off by a factor of %.3g, most from %s to %s after its first row",
 			p.Name, e.Name, ratio, years(rows.Time[step]), years(rows.Time[step+1]))
+	}
+}
+
+// maxLnK bounds ln K along a path.
+const maxLnK = 200
+
+// cold reports a path that is so cold that K of an element is out of all bounds.
+func (d *decoder) cold(c *Crystal, e *Element, p *Path) {
+	if e.Partition == nil {
+		return
+	}
+	lowest, _ := p.History.Range()
+	for _, z := range c.Zones {
+		if lnK := e.Partition.LnK(z.Host, lowest); !(math.Abs(lnK) <= maxLnK) {
+			d.add(e.Place.Error("", fmt.Sprintf("its partition relation gives K = exp(%.3g) in zone %s at the coldest of path %q", lnK, z.Name, p.Name),
+				"check A and B, or leave the coldest leg out"))
+			return
+		}
 	}
 }

@@ -1,0 +1,147 @@
+package study
+
+import (
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+
+	"bankfire/diffusion/catalogue"
+	"bankfire/thermal"
+)
+
+var (
+	pressure = bound{thermal.Pressure, true, 1e12, "1e12 Pa", "2 kbar"}
+	fugacity = bound{thermal.Pressure, false, 1e12, "1e12 Pa", "1e-7 Pa"}
+)
+
+// conditions reads [conditions]. A value that is wrong is taken as 1, so that no
+// law misses it.
+func (d *decoder) conditions(n *node) Conditions {
+	c := Conditions{Given: catalogue.Conditions{}}
+	if !d.is(n, tableNode, `write [conditions] and below it pressure = "2 kbar"`) {
+		return c
+	}
+	d.keys(n, conditionsTable)
+	if v := n.get("pressure"); v != nil {
+		c.Given[catalogue.Pressure], _ = d.quantity(v, pressure)
+		c.Typed = append(c.Typed, "pressure "+v.text)
+	}
+	if v := n.get("fO2"); v != nil {
+		d.fugacity(v, &c)
+		c.Typed = append(c.Typed, "fO2 "+v.text)
+	}
+	if v := n.get("aTiO2"); v != nil {
+		c.ATiO2 = d.activity(v)
+		c.Typed = append(c.Typed, "aTiO2 "+v.text)
+	}
+	if v := n.get("aSiO2"); v != nil {
+		c.Given[catalogue.ASiO2] = d.activity(v)
+		c.Typed = append(c.Typed, "aSiO2 "+v.text)
+	}
+	return c
+}
+
+// maxActivity is far above any in a magma, whose melts are hardly supersaturated.
+const maxActivity = 10
+
+func (d *decoder) activity(n *node) float64 {
+	const remedy = "write an activity as a number above 0, such as 0.6; 1 is saturation"
+	if !d.is(n, numberNode, remedy) {
+		return 1
+	}
+	if !(n.number >= leastNumber && n.number <= maxActivity) {
+		d.report(n, fmt.Sprintf("not above 0 and up to %d", maxActivity), remedy)
+		return 1
+	}
+	return n.number
+}
+
+// fugacity reads fO2: a buffer with an offset in log10 units, or a value that
+// stays the same.
+func (d *decoder) fugacity(n *node, c *Conditions) {
+	c.Given[catalogue.FO2] = 1
+	const remedy = `write a buffer with an offset, such as "NNO+0.3", or a pressure, such as "1e-7 Pa"`
+	if n.kind == numberNode {
+		d.report(n, "a number without a unit", remedy)
+		return
+	}
+	text, ok := d.text(n, remedy)
+	if !ok {
+		return
+	}
+	if looksLikeValue(strings.TrimSpace(text)) {
+		if x, ok := d.quantity(n, fugacity); ok {
+			c.Given[catalogue.FO2] = x
+			d.note("fO2 is held at %s at every temperature; in nature a buffer follows the temperature, as fO2 = \"NNO\" does", text)
+		}
+		return
+	}
+	name, offset, ok := cutOffset(text)
+	buffer, known := catalogue.FindBuffer(name)
+	switch {
+	case !known:
+		d.reportBuffer(n, name)
+	case !ok:
+		d.report(n, "its offset is no number of log10 units", remedy)
+	case !(math.Abs(offset) <= maxOffset):
+		d.report(n, fmt.Sprintf("more than %d log10 units off the buffer", maxOffset), remedy)
+	default:
+		c.Buffer, c.Offset = buffer, offset
+		delete(c.Given, catalogue.FO2)
+	}
+}
+
+// maxOffset is beyond what any magma has.
+const maxOffset = 10
+
+// cutOffset takes "NNO + 0.3" apart. ok is false if what follows the name is no
+// number.
+func cutOffset(text string) (name string, offset float64, ok bool) {
+	text = strings.NewReplacer(" ", "", "\u2212", "-").Replace(text)
+	i := strings.IndexAny(text, "+-")
+	if i < 0 {
+		return text, 0, true
+	}
+	offset, err := strconv.ParseFloat(text[i:], 64)
+	return text[:i], offset, err == nil
+}
+
+func (d *decoder) reportBuffer(n *node, name string) {
+	var names []string
+	for _, b := range catalogue.Buffers() {
+		names = append(names, b.Names...)
+	}
+	remedy := fmt.Sprintf(`known are %s; or write fO2 as a pressure, such as "1e-7 Pa"`, strings.Join(names, ", "))
+	if near := nearest(name, names); near != "" {
+		remedy = fmt.Sprintf("did you mean %q?", near)
+	}
+	d.report(n, "no known buffer of oxygen fugacity", remedy)
+}
+
+// gives reports whether the study gives a condition of a law.
+func (c *Conditions) gives(name string) bool {
+	_, given := c.Given[name]
+	return given || name == catalogue.FO2 && c.Buffer != nil
+}
+
+// noteUnused notes the conditions that no law of the study depends on, and a
+// buffer that is taken at a pressure of 1 bar.
+func (d *decoder) noteUnused() {
+	c := &d.at
+	if c.Buffer != nil && d.used[catalogue.FO2] {
+		if c.gives(catalogue.Pressure) {
+			d.used[catalogue.Pressure] = true
+		} else {
+			d.note("no pressure given: the %s buffer is taken at 1 bar", c.Buffer.Names[0])
+		}
+	}
+	for _, name := range []string{catalogue.Pressure, catalogue.FO2, catalogue.ASiO2} {
+		if c.gives(name) && !d.used[name] {
+			d.note("conditions: no law of this study depends on %s", name)
+		}
+	}
+	if c.ATiO2 != 0 {
+		d.note("conditions: nothing in this study depends on aTiO2")
+	}
+}

@@ -1,0 +1,137 @@
+package study
+
+import (
+	"fmt"
+	"maps"
+	"slices"
+	"strings"
+	"unicode"
+
+	"bankfire/diffusion/catalogue"
+	"bankfire/thermal"
+)
+
+// maxPartition bounds A and B of a partition relation, J/mol: at 1000 K it is
+// K = e^60.
+const maxPartition = 5e5
+
+// ownPartitions reads every [[partition]] of the study.
+func (d *decoder) ownPartitions(n *node) {
+	if n == nil {
+		return
+	}
+	seen := map[string]int{}
+	for _, t := range d.tables(n, `begin each partition relation with "[[partition]]"`) {
+		d.keys(t, partitionTable)
+		const example = `write R T ln K = A X + B as A = "-26.7 kJ/mol" and B = "26.7 kJ/mol"`
+		p := Partition{
+			A: d.signedEnergy(d.need(t, "A", example), example),
+			B: d.signedEnergy(d.need(t, "B", example), example),
+		}
+		v := d.need(t, "name", `write a name, such as name = "kx"`)
+		if v == nil {
+			continue
+		}
+		name, ok := d.name(v, `write a name, such as "kx"`)
+		if !ok {
+			continue
+		}
+		if _, err := catalogue.FindPartition(name); err == nil {
+			d.report(v, "a partition relation of the catalogue has this key", "choose another name")
+		}
+		d.unique(v, name, seen)
+		p.Key = name
+		d.partitions[name] = p
+	}
+}
+
+// signedEnergy reads a molar energy of either sign, J/mol.
+func (d *decoder) signedEnergy(n *node, remedy string) float64 {
+	if n == nil {
+		return 0
+	}
+	if n.kind == numberNode {
+		d.report(n, "a number without a unit", remedy)
+		return 0
+	}
+	if !d.is(n, textNode, remedy) {
+		return 0
+	}
+	x, err := thermal.ParseQuantity(n.text, thermal.MolarEnergy)
+	switch {
+	case err != nil:
+		d.reportError(n, err)
+		return 0
+	case !(x >= -maxPartition && x <= maxPartition):
+		d.report(n, fmt.Sprintf("more than %g kJ/mol", maxPartition/1e3), "check the unit")
+		return 0
+	}
+	return x
+}
+
+// partition reads the partition relation of an element: a key of the catalogue or
+// the name of a [[partition]]. It is nil if there is none.
+func (d *decoder) partition(n *node, c *Crystal, e *Element) *Partition {
+	if n == nil {
+		return nil
+	}
+	key, ok := d.text(n, `write a key such as "sr-blundy1991", or the name of a [[partition]]`)
+	if !ok {
+		return nil
+	}
+	p, own := d.partitions[key]
+	if !own {
+		row, err := catalogue.FindPartition(key)
+		if err != nil {
+			d.unknownPartition(n, key, err)
+			return nil
+		}
+		p = Partition{Key: key, Row: row, A: row.A, B: row.B}
+	}
+	switch {
+	case !c.Hosted && len(c.Zones) > 0:
+		d.report(n, "a partition relation needs the host's composition", hostRemedy)
+	case e.Traverse != nil && e.Traverse.Grey:
+		d.report(n, "relative values have no zero, which an element that follows its host must have", "give the traverse in a unit of concentration, or leave partition out")
+	}
+	d.notePartition(&p, c, e)
+	return &p
+}
+
+// hostRemedy says how a host is given.
+const hostRemedy = "give every zone of the crystal its host, such as host = 0.55"
+
+func (d *decoder) unknownPartition(n *node, key string, err error) {
+	if near := nearest(key, slices.Sorted(maps.Keys(d.partitions))); near != "" {
+		d.report(n, "neither in the catalogue nor a [[partition]] of this study", fmt.Sprintf("did you mean %q?", near))
+		return
+	}
+	d.reportError(n, err)
+}
+
+// notePartition notes a relation of the catalogue that is used for what it was
+// not made for.
+func (d *decoder) notePartition(p *Partition, c *Crystal, e *Element) {
+	if p.Row == nil {
+		return
+	}
+	if !startsWithSymbol(e.Name, p.Row.Element) {
+		d.note("%s: partition %s is for %s: is it the right one?", e.Name, p.Key, p.Row.Element)
+	}
+	if !strings.EqualFold(p.Row.Mineral, c.Mineral) && nearest(c.Mineral, minerals()) != p.Row.Mineral {
+		d.note("%s: partition %s is for %s, but the crystal %s is %s: is it the right one?", e.Name, p.Key, p.Row.Mineral, c.Name, c.Mineral)
+	}
+	for _, z := range c.Zones {
+		if p.Row.RangeKnown() && (z.Host < p.Row.XMin || z.Host > p.Row.XMax) {
+			d.note("%s: partition %s was calibrated for %s %g to %g, but zone %s has %g",
+				e.Name, p.Key, p.Row.Host, p.Row.XMin, p.Row.XMax, z.Name, z.Host)
+		}
+	}
+}
+
+// startsWithSymbol reports whether a name begins with the symbol of an element:
+// "Sr", "Sr (LA)" and "87Sr", but not "Srx", with Sr.
+func startsWithSymbol(name, symbol string) bool {
+	rest, ok := strings.CutPrefix(strings.TrimLeftFunc(name, unicode.IsDigit), symbol)
+	return ok && !(rest != "" && unicode.IsLower([]rune(rest)[0]))
+}
