@@ -2,6 +2,7 @@ package main
 
 import (
 	"math"
+	"slices"
 
 	"bankfire/paths"
 	"bankfire/paths/study"
@@ -13,7 +14,8 @@ import (
 func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
-		Inputs: []input{}, Laws: lawsUsed(r.Study), Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
+		Inputs: []input{}, Conditions: conditionsUsed(&r.Study.Conditions), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study),
+		Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
 		Notes: filled(r.Study.Notes), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {
@@ -119,6 +121,43 @@ func lawsUsed(s *study.Study) []lawUsed {
 		}
 	}
 	return laws
+}
+
+// partitionsUsed lists the partition relations of the measured elements in their
+// order, once each.
+func partitionsUsed(s *study.Study) []lawUsed {
+	relations := []lawUsed{}
+	known := map[string]int{}
+	for _, c := range s.Crystals {
+		for _, e := range c.Elements {
+			p := e.Partition
+			if p == nil || e.Traverse == nil {
+				continue
+			}
+			i, is := known[p.Key]
+			if !is {
+				i = len(relations)
+				known[p.Key] = i
+				used := lawUsed{Key: p.Key, Confidence: "as given in the study"}
+				if p.Row != nil {
+					used.Citation, used.Confidence = p.Row.Citation, p.Row.Confidence
+				}
+				relations = append(relations, used)
+			}
+			relations[i].Elements = append(relations[i].Elements, elementKey{c.Name, e.Name})
+		}
+	}
+	return relations
+}
+
+// conditionsUsed are the conditions as the study has them, a buffer with its
+// source.
+func conditionsUsed(c *study.Conditions) []string {
+	all := filled(slices.Clone(c.Typed))
+	if b := c.Buffer; b != nil {
+		all = append(all, b.Names[0]+": "+b.Citation+" ("+b.Confidence+")")
+	}
+	return all
 }
 
 // confidence says how sure the constants of a law are.

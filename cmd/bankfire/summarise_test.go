@@ -7,6 +7,7 @@ import (
 	"reflect"
 	"testing"
 
+	"bankfire/diffusion/catalogue"
 	"bankfire/paths/study"
 	"bankfire/paths/traverse"
 )
@@ -29,6 +30,43 @@ func TestLawsUsed(t *testing.T) {
 	}
 	if got := lawsUsed(s); !reflect.DeepEqual(got, want) {
 		t.Errorf("got  %+v\nwant %+v", got, want)
+	}
+}
+
+func TestPartitionsUsed(t *testing.T) {
+	row, err := catalogue.FindPartition("sr-bindeman1998")
+	if err != nil {
+		t.Fatal(err)
+	}
+	measured := new(traverse.Traverse)
+	published, own := &study.Partition{Key: row.Key, Row: row}, &study.Partition{Key: "kx"}
+	s := &study.Study{Crystals: []study.Crystal{
+		{Name: "A", Elements: []study.Element{
+			{Name: "Sr", Partition: published, Traverse: measured}, {Name: "Ti", Traverse: measured}, {Name: "Ba", Partition: own}}},
+		{Name: "B", Elements: []study.Element{
+			{Name: "Sr", Partition: published, Traverse: measured}, {Name: "Ba", Partition: own, Traverse: measured}}},
+	}}
+	want := []lawUsed{
+		{row.Key, row.Citation, row.Confidence, []elementKey{{"A", "Sr"}, {"B", "Sr"}}},
+		{"kx", "", "as given in the study", []elementKey{{"B", "Ba"}}},
+	}
+	if got := partitionsUsed(s); !reflect.DeepEqual(got, want) {
+		t.Errorf("got  %+v\nwant %+v", got, want)
+	}
+}
+
+func TestConditionsUsed(t *testing.T) {
+	buffer, _ := catalogue.FindBuffer("QFM")
+	for _, test := range []struct {
+		of   study.Conditions
+		want []string
+	}{
+		{study.Conditions{}, []string{}},
+		{study.Conditions{Typed: []string{"fO2 QFM"}, Buffer: buffer}, []string{"fO2 QFM", "QFM: " + buffer.Citation + " (memory: strong)"}},
+	} {
+		if got := conditionsUsed(&test.of); !reflect.DeepEqual(got, test.want) {
+			t.Errorf("got %q, want %q", got, test.want)
+		}
 	}
 }
 

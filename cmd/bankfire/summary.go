@@ -16,7 +16,9 @@ type weighing struct {
 	Year       float64       `json:"year_s"`     // what a year is taken for
 	Seed       *uint64       `json:"seed"`       // of what was drawn at random
 	Inputs     []input       `json:"inputs"`     // the study, then the files it names
+	Conditions []string      `json:"conditions"` // as the study has them, buffers with their sources
 	Laws       []lawUsed     `json:"laws"`
+	Partitions []lawUsed     `json:"partitions"`
 	Own        []ownBest     `json:"own_best"` // one a measured element
 	Paths      []weighedPath `json:"paths"`
 	Families   []struct{}    `json:"families"`
@@ -36,9 +38,10 @@ type input struct {
 	SHA256 string `json:"sha256"`
 }
 
-// lawUsed is a law that a measured element diffused by.
+// lawUsed is a law that a measured element diffused by, or the partition relation
+// by which it followed its host.
 type lawUsed struct {
-	Key        string       `json:"key"` // of the catalogue or a [[law]]; "" if it stands with its element
+	Key        string       `json:"key"` // of the catalogue, a [[law]] or a [[partition]]; "" if the law stands with its element
 	Citation   string       `json:"citation"`
 	Confidence string       `json:"confidence"` // in its constants
 	Elements   []elementKey `json:"elements"`
