@@ -1,7 +1,8 @@
 // Package numeric holds the special functions and the root finder that the closed forms of histories and profiles need:
-// exponential integrals, repeated integrals of the error function, sums of logarithms, a bracketed root.
+// the exponential integral, the complementary error function and its integral, sums of logarithms, a rule of quadrature,
+// a bracketed root.
 //
-// Where a result would under- or overflow, a scaled form is offered beside it. So the mean of exp(-20/T) over a ramp
+// Where a result would under- or overflow, it is its scaled form that is offered. So the mean of exp(-20/T) over a ramp
 // from T = 1 to T = 2 is, with u = 20/T and the antiderivative T exp(-u) (1 - u e^u E1(u)),
 //
 //	at := func(T float64) float64 { u := 20 / T; return T * math.Exp(-u) * (1 - u*numeric.E1Scaled(u)) }

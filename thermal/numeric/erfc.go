@@ -2,8 +2,8 @@ package numeric
 
 import "math"
 
-// fractionFrom is where the repeated integrals of erfc change from their closed forms, which lose 2 x^2 of an ulp each
-// by cancellation, to the continued fraction, which needs some 250/x^2 terms.
+// fractionFrom is where ErfcScaled and Ierfc change from their closed forms, of which Ierfc loses 2 x^2 of an ulp by
+// cancellation, to the continued fraction, which needs some 250/x^2 terms.
 const fractionFrom = 1.5
 
 // ErfcScaled is exp(x^2) erfc(x), which falls like 1/(x sqrt(pi)); +Inf below x = -26.6.
@@ -30,19 +30,7 @@ func Ierfc(x float64) float64 {
 	return 2 / math.SqrtPi * expMinusSquare(x) * ratioProduct(x, 1)
 }
 
-// I2erfc is the second integral of the complementary error function,
-//
-//	i2erfc(x) = int_x^inf ierfc(u) du = (erfc(x) - 2 x ierfc(x))/4.
-//
-// Source: as Ierfc.
-func I2erfc(x float64) float64 {
-	if !(x >= fractionFrom) { // NaN too
-		return (math.Erfc(x) - 2*x*Ierfc(x)) / 4
-	}
-	return 2 / math.SqrtPi * expMinusSquare(x) * ratioProduct(x, 2)
-}
-
-// ratioProduct is i^n erfc(x) / i^-1 erfc(x) for x >= fractionFrom and n = 0, 1, 2, the product of the ratios
+// ratioProduct is i^n erfc(x) / i^-1 erfc(x) for x >= fractionFrom and n = 0, 1, the product of the ratios
 //
 //	r_k = i^k erfc(x) / i^(k-1) erfc(x) = 1/(2 x + 2 (k+1) r_(k+1)),
 //

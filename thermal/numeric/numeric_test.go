@@ -13,7 +13,7 @@ import (
 const referenceTol = 4e-15
 
 var functions = map[string]func(float64) float64{
-	"E1": E1, "E1Scaled": E1Scaled, "Ei": Ei, "ErfcScaled": ErfcScaled, "Ierfc": Ierfc, "I2erfc": I2erfc,
+	"E1Scaled": E1Scaled, "ErfcScaled": ErfcScaled, "Ierfc": Ierfc,
 }
 
 // TestReference compares with testdata/reference.csv: 20 digits by mpmath 1.3 at 60 to 1200 digits, at arguments on both
@@ -52,8 +52,8 @@ func readReference(t *testing.T) []reference {
 	for _, row := range rows[1:] {
 		refs = append(refs, reference{row[0], row[1], parse(t, row[1]), parse(t, row[2])})
 	}
-	if len(refs) < 200 {
-		t.Fatalf("testdata/reference.csv has %d rows, want at least 200", len(refs))
+	if len(refs) < 100 {
+		t.Fatalf("testdata/reference.csv has %d rows, want at least 100", len(refs))
 	}
 	return refs
 }
@@ -74,15 +74,11 @@ func TestEdges(t *testing.T) {
 		name      string
 		got, want float64
 	}{
-		{"E1(0)", E1(0), inf}, {"E1(Inf)", E1(inf), 0}, {"E1(-1)", E1(-1), nan}, {"E1(NaN)", E1(nan), nan},
 		{"E1Scaled(0)", E1Scaled(0), inf}, {"E1Scaled(Inf)", E1Scaled(inf), 0}, {"E1Scaled(-1)", E1Scaled(-1), nan},
 		{"E1Scaled(NaN)", E1Scaled(nan), nan},
-		{"Ei(0)", Ei(0), -inf}, {"Ei(Inf)", Ei(inf), inf}, {"Ei(-Inf)", Ei(-inf), 0}, {"Ei(NaN)", Ei(nan), nan},
-		{"Ei(-1)", Ei(-1), -E1(1)}, {"Ei(717)", Ei(717), inf},
 		{"ErfcScaled(Inf)", ErfcScaled(inf), 0}, {"ErfcScaled(-Inf)", ErfcScaled(-inf), inf}, {"ErfcScaled(NaN)", ErfcScaled(nan), nan},
 		{"Ierfc(Inf)", Ierfc(inf), 0}, {"Ierfc(-Inf)", Ierfc(-inf), inf}, {"Ierfc(NaN)", Ierfc(nan), nan},
-		{"I2erfc(Inf)", I2erfc(inf), 0}, {"I2erfc(-Inf)", I2erfc(-inf), inf}, {"I2erfc(NaN)", I2erfc(nan), nan},
-		{"I2erfc(1e300)", I2erfc(1e300), 0},
+		{"Ierfc(1e300)", Ierfc(1e300), 0},
 		{"LnAdd of nothing", LnAdd(-inf, -inf), -inf}, {"LnAdd to nothing", LnAdd(-inf, 3), 3}, {"LnAdd Inf", LnAdd(inf, 3), inf},
 		{"LnAdd two Inf", LnAdd(inf, inf), inf}, {"LnAdd both ends", LnAdd(-inf, inf), inf}, {"LnAdd NaN", LnAdd(nan, 0), nan},
 	}
@@ -92,15 +88,6 @@ func TestEdges(t *testing.T) {
 				t.Errorf("got %g, want %g", test.got, test.want)
 			}
 		})
-	}
-}
-
-// TestEiBelowOverflow: Ei is finite up to x = 716, though exp(x) is so only up to 709.
-func TestEiBelowOverflow(t *testing.T) {
-	const want = 4.643625670370571100e307 // mpmath 1.3, 40 digits
-	const tol = 1e-13                     // of want: exp loses half of 715 ulps
-	if got := Ei(715); !(math.Abs(got-want) <= tol*want) {
-		t.Errorf("Ei(715) = %g, want %g", got, want)
 	}
 }
 
