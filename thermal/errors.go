@@ -3,6 +3,7 @@ package thermal
 import (
 	"strconv"
 	"strings"
+	"unicode/utf8"
 )
 
 // Place is where in a user's file a value stands, for errors. Lines and columns count from 1; 0 means none.
@@ -77,4 +78,13 @@ func joinFilled(sep string, parts ...string) string {
 		}
 	}
 	return strings.Join(filled, sep)
+}
+
+// Shorten cuts a text that is too long to be quoted in an error to 60 characters, the last three of them dots.
+func Shorten(text string) string {
+	const longest = 60
+	if utf8.RuneCountInString(text) <= longest {
+		return text
+	}
+	return string([]rune(text)[:longest-3]) + "..."
 }

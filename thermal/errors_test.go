@@ -1,6 +1,9 @@
 package thermal
 
-import "testing"
+import (
+	"strings"
+	"testing"
+)
 
 func TestInputError(t *testing.T) {
 	tests := []struct {
@@ -39,5 +42,18 @@ func TestPlace(t *testing.T) {
 	}
 	if bare.File != "" {
 		t.Errorf("At changed its receiver")
+	}
+}
+
+func TestShorten(t *testing.T) {
+	for name, test := range map[string]struct{ text, want string }{
+		"what fits": {strings.Repeat("µ", 60), strings.Repeat("µ", 60)},
+		"too long":  {strings.Repeat("µ", 61), strings.Repeat("µ", 57) + "..."},
+	} {
+		t.Run(name, func(t *testing.T) {
+			if got := Shorten(test.text); got != test.want {
+				t.Errorf("got  %s\nwant %s", got, test.want)
+			}
+		})
 	}
 }

@@ -44,7 +44,7 @@ func (d *decoder) add(e *thermal.InputError) {
 func (d *decoder) report(n *node, problem, remedy string) {
 	value := ""
 	if n.kind != tableNode && n.kind != arrayNode {
-		value = shorten(n.text)
+		value = thermal.Shorten(n.text)
 	}
 	d.add(d.place(n).Error(value, problem, remedy))
 }
@@ -74,7 +74,7 @@ func (d *decoder) reportError(n *node, err error) {
 		if at.Value == "" && n.kind == textNode {
 			at.Value = n.text
 		}
-		at.Value = shorten(at.Value)
+		at.Value = thermal.Shorten(at.Value)
 		d.add(at)
 	default:
 		d.add(in)
@@ -87,15 +87,6 @@ func (d *decoder) place(n *node) thermal.Place {
 
 func (d *decoder) note(format string, args ...any) {
 	d.notes = append(d.notes, fmt.Sprintf(format, args...))
-}
-
-// shorten cuts a value that is too long for a line of a message.
-func shorten(text string) string {
-	const longest = 60
-	if utf8.RuneCountInString(text) <= longest {
-		return text
-	}
-	return string([]rune(text)[:longest]) + "..."
 }
 
 // keys reports every key of the table n that its kind does not have.

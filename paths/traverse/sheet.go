@@ -189,7 +189,7 @@ func (s *sheet) ragged() *thermal.InputError {
 	if s.delim == ',' && len(s.cells) > len(s.header) {
 		remedy += "; if the commas are decimal, separate the columns by semicolons or tabs"
 	}
-	return s.errorAt(0, "", shorten(s.text),
+	return s.errorAt(0, "", thermal.Shorten(s.text),
 		fmt.Sprintf("%s where the header has %d", plural(len(s.cells), "cell"), len(s.header)), remedy)
 }
 
@@ -205,7 +205,7 @@ func (s *sheet) split(dst []cell) ([]cell, *thermal.InputError) {
 		}
 		c, end, f := s.cellFrom(at)
 		if f != nil {
-			return dst, s.errorAt(c.at, "", shorten(s.text[c.at:]), f.problem, f.remedy)
+			return dst, s.errorAt(c.at, "", thermal.Shorten(s.text[c.at:]), f.problem, f.remedy)
 		}
 		dst = append(dst, c)
 		if end == len(s.text) {
@@ -287,7 +287,7 @@ func (s *sheet) refuse(k int, problem, remedy string) {
 func (s *sheet) problemIn(k int, problem, remedy string) *thermal.InputError {
 	b := s.columns[k]
 	c := s.cells[b.index]
-	return s.errorAt(c.at, b.title, shorten(c.text), problem, remedy)
+	return s.errorAt(c.at, b.title, thermal.Shorten(c.text), problem, remedy)
 }
 
 // errorAt returns an error about what stands at an offset of the current line.
@@ -312,15 +312,6 @@ func (s *sheet) finish() error {
 		s.note("%s skipped, the first on line %d", plural(len(s.comments), "comment line"), s.comments[0])
 	}
 	return nil
-}
-
-// shorten cuts a text that is too long to quote.
-func shorten(text string) string {
-	const longest = 60
-	if utf8.RuneCountInString(text) <= longest {
-		return text
-	}
-	return string([]rune(text)[:longest-3]) + "..."
 }
 
 // plural is a count with its noun.

@@ -171,7 +171,7 @@ func (s *sheet) missingRemedy() string {
 	const most = 12
 	var titles []string
 	for _, c := range s.header[:min(len(s.header), most)] {
-		titles = append(titles, fmt.Sprintf("%q", shorten(c.text)))
+		titles = append(titles, fmt.Sprintf("%q", thermal.Shorten(c.text)))
 	}
 	if len(s.header) > most {
 		titles = append(titles, "...")
