@@ -196,6 +196,8 @@ func frames() []frame {
 		leg("repeat", `repeat = 2`, `legs = [ { hold = "700 C", for = "1 yr" } ]`),
 		{"crystal", shownCrystal, "%s\n", false, lines(shownCrystal)},
 		{"crystal.zones", shownZones, "%s", true, []string{`name = "core"`, `width = "140 um"`}},
+		{"crystal.host", "shape = \"slab\"\n", "shape = \"slab\"\nhost = %s\n", true,
+			[]string{`file = "an.csv"`, `position = "distance [um]"`, `zero = "rim"`, `value = "XAn [mole fraction]"`, `smooth = "steps"`}},
 		{"crystal.inner", "shape = \"slab\"\n", "shape = \"slab\"\ninner = %s\n", true, nil},
 		{"crystal.element", shownElement, "%s\n", false, lines(shownElement)},
 		{"crystal.element.law", shownLaw, "law = %s", true, law},
@@ -216,6 +218,7 @@ var beside = map[string][]string{
 	"limits.between shortest":             {"longest"},
 	"crystal.element.traverse unit":       {"value", `value = "Ti"`},
 	"crystal.element.rim given unit":      {"value", `value = "Ti"`},
+	"crystal.host unit":                   {"value", `value = "bare"`},
 	"crystal.element.traverse.error size": {"column", "", "sigmas", ""},
 }
 
@@ -264,6 +267,7 @@ func TestStudyHelpEntries(t *testing.T) {
 	writeFile(t, folder, "ti.csv", "distance [um],Ti [ppm],2se [ppm],crack\n50,58,4,\n60,75,4,x\n64,91,4,\n")
 	writeFile(t, folder, "tt.csv", "t [yr],T [C]\n90,690\n50,750\n0,700\n")
 	writeFile(t, folder, "rim.csv", "t [yr],Ti [ppm]\n0,60\n1e5,70\n")
+	writeFile(t, folder, "an.csv", "distance [um],XAn [mole fraction],bare\n50,0.4,0.4\n90,0.5,0.5\n")
 	found := entries(studyHelp)
 	for _, f := range frames() {
 		if strings.Count(sound, f.old) != 1 {

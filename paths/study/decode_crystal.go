@@ -55,6 +55,7 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	c.Shape = d.shape(d.need(n, "shape", `write shape = "slab", "cylinder" or "ball"`))
 	c.Zones, c.Hosted = d.zones(n)
 	inner := d.inner(n.get("inner"), &c)
+	d.hostFile(n.get("host"), &c)
 	d.elements(n, &c, inner)
 	d.noteHost(&c)
 	return c

@@ -9,7 +9,7 @@ import (
 func (d *decoder) host(n *node) float64 {
 	const remedy = "write a mole fraction as a number from 0 to 1, such as host = 0.55 for An55"
 	if n.kind == tableNode {
-		d.report(n, "a host from a file is not known in this version", remedy)
+		d.report(n, "a table, not the host of one zone", "write a file of the host once for the crystal: host = { ... } beside zones")
 		return 0
 	}
 	if !d.is(n, numberNode, remedy) {

@@ -65,7 +65,7 @@ func seeds(f *testing.F) []string {
 // seedFiles returns the files that the seeds name.
 func seedFiles(f *testing.F) map[string]string {
 	files := soundFiles()
-	for _, name := range []string{"every-key/ti.csv", "every-key/tt.csv", "every-key/rim.csv", "harrow/hf12-ti.csv"} {
+	for _, name := range []string{"every-key/ti.csv", "every-key/tt.csv", "every-key/rim.csv", "every-key/an.csv", "harrow/hf12-ti.csv"} {
 		data, err := os.ReadFile(filepath.Join("testdata", name))
 		if err != nil {
 			f.Fatal(err)

@@ -167,6 +167,7 @@ func TestWrongHosts(t *testing.T) {
 	const law, skin, core = `law = "quartz-ti-cherniak2007"`, `{ name = "skin", width = "20 um" }`, `{ name = "core", width = "100 um" }`
 	const threshold = "[[threshold]]"
 	given := func(line string) string { return "[conditions]\n" + line + "\n" + threshold }
+	const slab = `shape = "slab"`
 	const zones = core + ",\n  " + skin
 	hosts := func(x string) string {
 		return `{ name = "core", width = "100 um", host = ` + x + " },\n" + `{ name = "skin", width = "20 um", host = 0.3 }`
@@ -184,8 +185,16 @@ func TestWrongHosts(t *testing.T) {
 		{"host in one zone", skin, `{ name = "skin", width = "20 um", host = 0.3 }`, "s.toml:24:9", "crystal.zones", "no host in core, but in skin", "every zone"},
 		{"host in per cent", zones, hosts(`@55`), "", "crystal.zones.host", "not from 0 to 1", "host = 0.55 for An55"},
 		{"host in quotes", zones, hosts(`@"0.55"`), "", "crystal.zones.host", "a text, not a number", "host = 0.55"},
-		{"host from a file", zones, hosts(`@{ file = "an.csv" }`), "", "crystal.zones.host", "a host from a file is not known in this version", "host = 0.55"},
-		{"host of the crystal", `shape = "slab"`, "shape = \"slab\"\n@host = { file = \"an.csv\" }", "", "crystal.host", "not known in this version", "leave it out"},
+		{"host of a zone from a file", zones, hosts(`@{ file = "an.csv" }`), "", "crystal.zones.host", "a table, not the host of one zone", "once for the crystal"},
+		{"host in two ways", "shape = \"slab\"\nzones = [\n  " + zones, "shape = \"slab\"\nhost = " + hostFile("@", "", "") + "\nzones = [\n" + hosts("0.5"), "", "crystal.host", "have a host already", "one way"},
+		{"host not smoothed", slab, slab + "\nhost = @" + strings.Replace(hostFile("", "", ""), `, smooth = "steps"`, "", 1), "", "crystal.host.smooth", "missing", "steps"},
+		{"host by a spline", slab, slab + "\nhost = " + hostFile("", `"steps"`, `@"spline"`), "", "crystal.host.smooth", "a spline is not known", "steps"},
+		{"host smoothed otherwise", slab, slab + "\nhost = " + hostFile("", `"steps"`, `@"step"`), "", "crystal.host.smooth", "no way to smooth", `did you mean "steps"?`},
+		{"host in weight", slab, slab + "\nhost = " + hostFile("", `"XAn [mole fraction]"`, `@"An wt [wt%]"`), "", "crystal.host.value", "a host is a mole fraction", "mol%"},
+		{"host of no file", slab, slab + "\nhost = " + hostFile("", `"an.csv"`, `@"none.csv"`), "", "crystal.host.file", "no such file", ""},
+		{"host beyond the rim", slab, slab + "\nhost = " + hostFile("", `"an.csv"`, `"far.csv"`), "far.csv:3:0", "position", "outside the crystal", "widths"},
+		{"host above one", slab, slab + "\nhost = " + hostFile("", `"an.csv"`, `"much.csv"`), "much.csv:2:0", "value", "no mole fraction", "unit"},
+		{"host in one zone only", slab, slab + "\nhost = " + hostFile("", `"an.csv"`, `@"few.csv"`), "", "crystal.host.file", "no point of the host lies in zone core", "by hand"},
 		{"partition without B", threshold, "[[@partition]]\nname = \"kx\"\nA = \"-1 kJ/mol\"\n" + threshold, "", "partition.B", "missing", "26.7 kJ/mol"},
 		{"partition without a unit", threshold, "[[partition]]\nname = \"kx\"\nA = @-26.7\nB = \"0 kJ/mol\"\n" + threshold, "", "partition.A", "without a unit", "-26.7 kJ/mol"},
 		{"partition beyond bounds", threshold, "[[partition]]\nname = \"kx\"\nA = @\"-26.7e3 kJ/mol\"\nB = \"0 kJ/mol\"\n" + threshold, "", "partition.A", "more than 500 kJ/mol", "check the unit"},
@@ -208,6 +217,40 @@ func TestWrongHosts(t *testing.T) {
 	}
 	for _, w := range list {
 		t.Run(w.name, func(t *testing.T) { w.check(t) })
+	}
+}
+
+// hostFile is a host from a file with a mark before it and one thing changed.
+func hostFile(mark, old, new string) string {
+	const sound = `{ file = "an.csv", position = "x [um]", zero = "rim", value = "XAn [mole fraction]", smooth = "steps" }`
+	return mark + strings.Replace(sound, old, new, 1)
+}
+
+// TestHostFile: each zone has the median of the points in it, counted from either
+// end and in either unit.
+func TestHostFile(t *testing.T) {
+	for name, host := range map[string]string{
+		"from the rim":    hostFile("", "", ""),
+		"in mol%":         hostFile("", `"XAn [mole fraction]"`, `"An [mol%]"`),
+		"unit beside":     hostFile("", `"XAn [mole fraction]"`, `"bare", unit = "mole fraction"`),
+		"from the centre": hostFile("", `"x [um]", zero = "rim"`, `"from middle [um]", zero = "centre"`),
+	} {
+		t.Run(name, func(t *testing.T) {
+			text := strings.NewReplacer(`, host = 0.55`, "", `, host = 0.35`, "", `shape = "slab"`, "shape = \"slab\"\nhost = "+host).Replace(hostedStudy())
+			s, err := parse("s.toml", []byte(text), memory(soundFiles()))
+			if err != nil {
+				t.Fatal(err)
+			}
+			c := s.Crystals[0]
+			if !c.Hosted || len(s.Inputs) != 3 {
+				t.Errorf("hosted %v, %d inputs", c.Hosted, len(s.Inputs))
+			}
+			near(t, "core, the median of four", c.Zones[0].Host, 0.545)
+			near(t, "skin, the median of three", c.Zones[1].Host, 0.36)
+			if want := "Q1: host of zone core is 0.545, the median of 4 points from 0.41 to 0.56"; !slices.Contains(s.Notes, want) {
+				t.Errorf("notes %q lack %q", s.Notes, want)
+			}
+		})
 	}
 }
 

@@ -43,6 +43,7 @@ const (
 	pathTable
 	crystalTable
 	zoneTable
+	hostTable
 	innerTable
 	elementTable
 	lawTable
@@ -69,8 +70,9 @@ var tables = [...]Table{
 	ownLawHostTable: {"law.host", []string{"ln_slope", "at"}},
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
-	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "element"}},
+	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
+	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth"}},
 	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
 	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "sigma", "range", "citation", "caution"}},

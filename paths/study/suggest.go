@@ -29,7 +29,7 @@ func later(field string) bool {
 	}
 	switch field {
 	case "family", "law.own", "law.times", "path.legs.conditions",
-		"crystal.host", "crystal.zones.added", "crystal.element.rivals",
+		"crystal.zones.added", "crystal.element.rivals",
 		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled":
 		return true
 	}

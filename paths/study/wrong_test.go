@@ -104,6 +104,10 @@ func soundFiles() map[string]string {
 		"mole.csv":    "t [yr],Ti [mole fraction]\n0,0.1\n900,0.1\n",
 		"hot.csv":     "t [yr],T [C]\n0,700\n900,75000\n",
 		"below.csv":   "x [um],Ti [ppm]\n1,58\n30,<5\n",
+		"an.csv":      "x [um],from middle [um],XAn [mole fraction],An [mol%],An wt [wt%],bare\n2,118,0.35,35,35,0.35\n10,110,0.36,36,36,0.36\n18,102,0.4,40,40,0.4\n22,98,0.41,41,41,0.41\n40,80,0.54,54,54,0.54\n60,60,0.56,56,56,0.56\n100,20,0.55,55,55,0.55\n",
+		"far.csv":     "x [um],XAn [mole fraction]\n1,0.5\n130,0.5\n",
+		"much.csv":    "x [um],XAn [mole fraction]\n1,1.2\n30,0.5\n",
+		"few.csv":     "x [um],XAn [mole fraction]\n1,0.5\n2,0.5\n",
 		"moles.csv":   "x [um],Fo [mol%],An [wt%],BSE\n1,88,50,120\n30,85,40,130\n",
 	}
 }
