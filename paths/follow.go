@@ -106,9 +106,9 @@ func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) 
 // nil.
 func run(c *study.Crystal, e *study.Element, path *study.Path) (*profile, *ProfileResult, error) {
 	if e.Traverse != nil {
-		return audited(c, e, path, 0, 0)
+		return audited(&element{crystal: c, element: e}, path, 0)
 	}
-	p, err := newProfile(c, e, path, 0, 0)
+	p, err := newProfile(&element{crystal: c, element: e}, path, 0)
 	if err != nil {
 		return nil, nil, err
 	}

@@ -273,7 +273,7 @@ func TestByEOfALawOfUnknownRange(t *testing.T) {
 	p := sharp()
 	s := p.study(nil, p.path(t, "as it was", 1))
 	c := &s.Crystals[0]
-	q, err := newProfile(c, &c.Elements[0], &s.Paths[0], 0, 0)
+	q, err := newProfile(&element{crystal: c, element: &c.Elements[0]}, &s.Paths[0], 0)
 	if err != nil {
 		t.Fatal(err)
 	}

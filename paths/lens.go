@@ -25,22 +25,23 @@ type lens struct {
 }
 
 // The nodes of interpolation. Between six Chebyshev nodes a profile seen
-// through its spot is right to a few 1e-4 of its range even where the free
-// width of an edge goes to six times the spot's standard deviation; the
-// spot's width, which a tilt shrinks, bends it far less.
+// through its spot is right to a few 1e-4 of its range where the free width of
+// an edge goes to six times the spot's standard deviation; wider ranges and
+// points take more, see layEdges. The spot's width, which a tilt shrinks, bends
+// it far less.
 const (
-	edgeNodes   = 6
-	cosineNodes = 3
-	gaussianFar = 4    // standard deviations of a known value that are looked at
-	steepest    = 1.45 // rad, beyond which a tilt makes no sense
+	edgeNodes     = 6
+	mostEdgeNodes = 24
+	cosineNodes   = 3
+	gaussianFar   = 4    // standard deviations of a known value that are looked at
+	steepest      = 1.45 // rad, beyond which a tilt makes no sense
 )
 
-func newLens(c *study.Crystal, e *study.Element, faces []float64) (*lens, error) {
+func newLens(c *study.Crystal, e *study.Element, faces, edges []float64) (*lens, error) {
 	l := &lens{
 		t: e.Traverse, edge: e.Start.Edge, tilt: e.Tilt, origin: e.Origin,
-		mirrored: c.Mirrored(e), faces: faces, places: make([]float64, len(e.Traverse.Position)),
+		mirrored: c.Mirrored(e), faces: faces, edges: edges, places: make([]float64, len(e.Traverse.Position)),
 	}
-	l.edges = nodes(l.edge, 0, math.Inf(1), edgeNodes)
 	for _, tilt := range nodes(l.tilt, 0, steepest, cosineNodes) {
 		l.cosines = append(l.cosines, math.Cos(tilt))
 	}

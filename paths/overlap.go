@@ -1,8 +1,10 @@
 package paths
 
 import (
+	"fmt"
 	"math"
 
+	"bankfire/paths/study"
 	"bankfire/paths/traverse"
 	"gonum.org/v1/gonum/mat"
 )
@@ -21,11 +23,17 @@ const ownPart = 0.1
 // on a scale finer than the spot does. It is nil where the full width of the
 // spot is no larger than the least spacing, and where the study says that the
 // errors are independent. Values below detection have no correlation.
-func overlapWhite(t *traverse.Traverse) *mat.TriDense {
+// More than mostOverlapping points are refused: the work grows with their cube.
+func overlapWhite(e *study.Element) (*mat.TriDense, error) {
+	t := e.Traverse
 	if t.Independent || !overlapping(t) {
-		return nil
+		return nil, nil
 	}
 	n := len(t.Position)
+	if n > mostOverlapping {
+		return nil, e.Place.Error(fmt.Sprint(n), fmt.Sprintf("more than %d points whose spots overlap", mostOverlapping),
+			`choose a window, or write overlap = "independent" in the traverse`)
+	}
 	corr := mat.NewSymDense(n, nil)
 	for i := range n {
 		corr.SetSym(i, i, 1)
@@ -45,8 +53,10 @@ func overlapWhite(t *traverse.Traverse) *mat.TriDense {
 	if err := white.InverseTri(&lower); err != nil {
 		panic("paths: " + err.Error()) // ownPart bounds the condition number
 	}
-	return white
+	return white, nil
 }
+
+const mostOverlapping = 1000
 
 // overlapping reports whether neighbouring spots cover the same ground.
 func overlapping(t *traverse.Traverse) bool {

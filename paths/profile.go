@@ -48,9 +48,9 @@ type variant struct {
 }
 
 // newProfile compiles the element for the path with a plan that is refined so
-// many times: each time twice the cells and half the steps' growth. scatter is
-// added to the data's errors in quadrature.
-func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined int, scatter float64) (*profile, error) {
+// many times: each time twice the cells and half the steps' growth.
+func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
+	c, e := m.crystal, m.element
 	problem, free, err := c.Problem(e, path.History)
 	if err != nil {
 		return nil, err
@@ -60,36 +60,79 @@ func newProfile(c *study.Crystal, e *study.Element, path *study.Path, refined in
 	if refined > 0 {
 		options.Cells, options.Growth = usualCells<<refined, usualGrowth/float64(int(1)<<refined)
 	}
-	edges := []float64{e.Start.Edge.Middle()}
-	if e.Traverse != nil {
-		edges = nodes(e.Start.Edge, 0, math.Inf(1), edgeNodes)
-	}
-	for _, edge := range edges {
-		if err := p.addRun(problem, edge, &options); err != nil {
-			return nil, err
-		}
-	}
 	if e.Traverse == nil {
-		return p, nil
+		return p, p.addRun(problem, e.Start.Edge.Middle(), &options)
 	}
-	if p.lens, err = newLens(c, e, p.plan().Faces()); err != nil {
+	if err := p.layEdges(problem, &options); err != nil {
 		return nil, err
 	}
-	if err := p.setFit(scatter); err != nil {
-		return nil, err
-	}
-	return p, nil
+	return p, p.setFit(m)
 }
 
-// addRun adds the problem with the given width of its edges. All runs share
-// the faces of the first, which are left in the options.
-func (p *profile) addRun(problem *diffusion.Problem, edge float64, options *diffusion.Options) error {
+// layEdges adds a run for each edge width between which the lens interpolates:
+// the one that is known, or as many as it takes to foretell, between them, what
+// a start that has not diffused looks like.
+func (p *profile) layEdges(problem *diffusion.Problem, options *diffusion.Options) error {
+	for count := edgeNodes; ; count *= 2 {
+		p.runs = p.runs[:0]
+		widths := nodes(p.element.Start.Edge, 0, math.Inf(1), count)
+		for _, edge := range widths {
+			if err := p.addRun(problem, edge, options); err != nil {
+				return err
+			}
+		}
+		var err error
+		if p.lens, err = newLens(p.crystal, p.element, p.plan().Faces(), widths); err != nil || len(widths) == 1 {
+			return err
+		}
+		missed, err := p.missedStarts(problem, options)
+		if err != nil || missed <= errorAim || count >= mostEdgeNodes {
+			return err
+		}
+	}
+}
+
+// missedStarts returns by how much, in sigma of the data, the start half way
+// between the edge widths is missed by interpolation, where free values are as
+// large as the range of the data.
+func (p *profile) missedStarts(problem *diffusion.Problem, options *diffusion.Options) (float64, error) {
+	t := p.element.Traverse
+	size := (slices.Max(t.Value) - slices.Min(t.Value)) / slices.Min(t.Sigma)
+	worst := 0.0
+	for k := 1; k < len(p.lens.edges); k++ {
+		edge := (p.lens.edges[k-1] + p.lens.edges[k]) / 2
+		plan, err := diffusion.Compile(withEdges(problem, edge), *options)
+		if err != nil {
+			return 0, err
+		}
+		for j, mixed := range p.mix(p.starts(), edge) {
+			amount := size
+			if j == 0 {
+				amount = 1 / slices.Min(t.Sigma)
+			}
+			seen, exact := p.lens.through(mixed, 0, 0), p.lens.through(plan.Start(j), 0, 0)
+			for i := range seen {
+				worst = math.Max(worst, amount*math.Abs(seen[i]-exact[i]))
+			}
+		}
+	}
+	return worst, nil
+}
+
+// withEdges returns the problem with all its edges of one width.
+func withEdges(problem *diffusion.Problem, edge float64) *diffusion.Problem {
 	this := *problem
 	this.Zones = slices.Clone(problem.Zones)
 	for i := range len(this.Zones) - 1 {
 		this.Zones[i].Edge = edge
 	}
-	plan, err := diffusion.Compile(&this, *options)
+	return &this
+}
+
+// addRun adds the problem with the given width of its edges. All runs share
+// the faces of the first, which are left in the options.
+func (p *profile) addRun(problem *diffusion.Problem, edge float64, options *diffusion.Options) error {
+	plan, err := diffusion.Compile(withEdges(problem, edge), *options)
 	if err != nil {
 		return err
 	}
@@ -113,9 +156,9 @@ const (
 )
 
 // setFit says what is to be fitted to what.
-func (p *profile) setFit(scatter float64) error {
+func (p *profile) setFit(m *element) error {
 	t := p.element.Traverse
-	p.fit = least.Problem{Obs: t.Value, Sigma: widened(t, scatter), Limit: t.Limit, White: overlapWhite(t), Bent: p.lens.bent()}
+	p.fit = least.Problem{Obs: t.Value, Sigma: widened(t, m.scatter), Limit: t.Limit, White: m.white, Bent: p.lens.bent()}
 	p.grey = t.Grey
 	var mean float64
 	mean, p.size = meanAndSize(t)

@@ -14,6 +14,7 @@ import (
 	"bankfire/paths/traverse"
 	"bankfire/thermal"
 	"bankfire/thermal/numeric"
+	"gonum.org/v1/gonum/mat"
 )
 
 // Result is a study weighed: what became of every path, in the study's order.
@@ -74,7 +75,10 @@ type FreeFit struct {
 // path is weighed, else those of up to 20 paths, each with the path's name,
 // joined.
 func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
-	w := newWeighing(s)
+	w, err := newWeighing(s)
+	if err != nil {
+		return nil, err
+	}
 	if len(w.elements) == 0 {
 		return nil, thermal.Place{File: s.File, Field: "crystal.element.traverse"}.
 			Error("", "no element has a traverse, so there is nothing to weigh against",
@@ -104,7 +108,8 @@ type element struct {
 	crystal *study.Crystal
 	element *study.Element
 	law     int
-	scatter float64 // extra scatter of its traverse, in its unit
+	white   *mat.TriDense // makes the errors of overlapping spots independent; nil if they are
+	scatter float64       // extra scatter of its traverse, in its unit
 }
 
 // weighedPath is what the solver said of one path.
@@ -115,16 +120,20 @@ type weighedPath struct {
 	curves   []Curve
 }
 
-func newWeighing(s *study.Study) *weighing {
+func newWeighing(s *study.Study) (*weighing, error) {
 	w := &weighing{study: s, paths: make([]weighedPath, len(s.Paths))}
 	for i := range s.Crystals {
 		for j := range s.Crystals[i].Elements {
 			if e := &s.Crystals[i].Elements[j]; e.Traverse != nil {
-				w.elements = append(w.elements, element{&s.Crystals[i], e, w.law(&e.Law), 0})
+				white, err := overlapWhite(e)
+				if err != nil {
+					return nil, err
+				}
+				w.elements = append(w.elements, element{&s.Crystals[i], e, w.law(&e.Law), white, 0})
 			}
 		}
 	}
-	return w
+	return w, nil
 }
 
 // law returns the number of a law's prior, counted from 1; 0 where it has none.
@@ -215,7 +224,7 @@ func (w *weighing) path(ctx context.Context, i int) error {
 // diffuses says nothing of the error there.
 func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws []LawPrior) error {
 	for refined := 0; ; {
-		p, result, err := audited(e.crystal, e.element, path, refined, e.scatter)
+		p, result, err := audited(&e, path, refined)
 		if err != nil {
 			return err
 		}
@@ -253,9 +262,9 @@ func (w *weighedPath) sharpen(ctx context.Context) error {
 
 // audited compiles the element for the path, with a plan at least so often
 // refined and fine enough for the path as it is, and runs that.
-func audited(c *study.Crystal, e *study.Element, path *study.Path, refined int, scatter float64) (*profile, *ProfileResult, error) {
+func audited(e *element, path *study.Path, refined int) (*profile, *ProfileResult, error) {
 	for {
-		p, err := newProfile(c, e, path, refined, scatter)
+		p, err := newProfile(e, path, refined)
 		if err != nil {
 			return nil, nil, err
 		}
