@@ -115,6 +115,7 @@ func TestSchemaRefuses(t *testing.T) {
 		{"field missing in a profile", func(_, _, q map[string]any) { delete(q, "unit"); delete(q, "crystal") }},
 		{"number as text", func(_, p, _ map[string]any) { p["misfit"] = "3" }},
 		{"number null though the path was run", func(_, p, _ map[string]any) { p["shift_factor"] = nil }},
+		{"own best null though a path was run", func(s, _, _ map[string]any) { s["own_best"].([]any)[0].(map[string]any)["tail"] = nil }},
 		{"unknown verdict", func(_, p, _ map[string]any) { p["verdict"] = "fine" }},
 		{"interval with one end", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0} }},
 		{"interval with three", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0, 2.0, 3.0} }},

@@ -64,10 +64,11 @@ func smallResult(t *testing.T) *paths.Result {
 	return &paths.Result{Study: &s, Own: slices.Clone(r.Own), Paths: []paths.PathResult{p}}
 }
 
-// notRun makes the first path of the result one that was not run; its verdict does not
+// notRun makes the only path of the result one that was not run; its verdict does not
 // matter to the tests that use it.
 func notRun(r *paths.Result) {
 	nan := math.NaN()
+	r.Own[0] = paths.OwnBest{Crystal: r.Own[0].Crystal, Element: r.Own[0].Element, Outlier: -1}
 	r.Paths[0].Profiles, r.Paths[0].Notes = nil, []string{"lives longer than 1 kyr"}
 	r.Paths[0].Outcome = paths.Outcome{Finding: paths.Finding{
 		Verdict: paths.WrongShape, Shift: nan, Shift68: [2]float64{0, math.Inf(1)}, Shift95: [2]float64{0, math.Inf(1)}, Tail: nan, Misfit: nan}}

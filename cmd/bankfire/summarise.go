@@ -78,11 +78,12 @@ func ownBests(r *paths.Result) []ownBest {
 	for i := range r.Own {
 		o := &r.Own[i]
 		own := ownBest{
-			elementKey: elementKey{o.Crystal.Name, o.Element.Name}, ShiftFactor: positive(o.Shift), Misfit: o.ChiSq,
-			Degrees: o.Degrees, Tail: o.Tail, Runs: o.Runs, Scatter: o.Scatter, Findings: filled(o.Findings),
+			elementKey: elementKey{o.Crystal.Name, o.Element.Name}, ShiftFactor: positive(o.Shift),
+			Degrees: o.Degrees, Scatter: o.Scatter, Findings: filled(o.Findings),
 		}
 		if o.Path != nil {
 			own.Path = o.Path.Name
+			own.Misfit, own.Tail, own.Runs = bounded(o.ChiSq), bounded(o.Tail), bounded(o.Runs)
 		}
 		if o.Outlier >= 0 {
 			own.OutlierLine = &o.Element.Traverse.Line[o.Outlier]

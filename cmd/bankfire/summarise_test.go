@@ -70,6 +70,18 @@ func TestConditionsUsed(t *testing.T) {
 	}
 }
 
+// Where every path is barred no profile has a best fit, and so no numbers of one.
+func TestOwnBestOfNoPath(t *testing.T) {
+	r := smallResult(t)
+	if own := ownBests(r)[0]; own.Path == "" || own.Misfit == nil || own.Tail == nil || own.Runs == nil {
+		t.Errorf("a path was run: %+v", own)
+	}
+	notRun(r)
+	if own := ownBests(r)[0]; own.Path != "" || own.ShiftFactor != nil || own.Misfit != nil || own.Tail != nil || own.Runs != nil {
+		t.Errorf("no path was run: %+v", own)
+	}
+}
+
 func TestBuild(t *testing.T) {
 	name, err := os.Executable()
 	if err != nil {

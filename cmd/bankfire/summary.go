@@ -76,15 +76,16 @@ type weighedPath struct {
 	Profiles []weighedProfile `json:"profiles"`
 }
 
-// ownBest is the best fit of one profile by itself.
+// ownBest is the best fit of one profile by itself; its numbers are null if no
+// path was run.
 type ownBest struct {
 	elementKey
 	Path        string   `json:"path"` // along which it was found, "" if no path was run
 	ShiftFactor *float64 `json:"shift_factor"`
-	Misfit      float64  `json:"misfit"`
+	Misfit      *float64 `json:"misfit"`
 	Degrees     int      `json:"degrees_of_freedom"`
-	Tail        float64  `json:"tail"`
-	Runs        float64  `json:"runs_probability"`
+	Tail        *float64 `json:"tail"`
+	Runs        *float64 `json:"runs_probability"`
 	Scatter     float64  `json:"extra_scatter"` // in the element's unit
 	OutlierLine *int     `json:"outlier_line"`
 	Findings    []string `json:"findings"`
