@@ -14,7 +14,7 @@ type Verdict int
 // The verdicts, in the order in which Judge looks for them, and the one it
 // does not give: Barred is for a path that breaks a limit of the user's.
 const (
-	Unjudged   Verdict = iota // none: what was never judged does not pass
+	Unjudged   Verdict = iota // none, since no degrees of freedom are left, or it was never judged: does not pass
 	Reproduces                // the path passes as it is
 	TooSharp                  // it would pass with more diffusion
 	TooSmooth                 // it would pass with less diffusion
@@ -33,7 +33,7 @@ type Finding struct {
 	Shift   float64    // the multiplier on D that agrees best
 	Shift68 [2]float64 // its 68 % interval; 0 or +Inf at a side the data leave open
 	Shift95 [2]float64 // its 95 % interval
-	Tail    float64    // probability of a larger chi-square, were the path true
+	Tail    float64    // probability of a larger chi-square, were the path true; NaN if not judged
 	Misfit  float64    // chi-square of the path as it is
 	Above   float64    // Misfit less chi-square of each profile's own best fit
 	Points  int        // data points
@@ -48,7 +48,8 @@ type Outcome struct {
 	WithLaws LawsAllowed // the same with the laws' own errors allowed for
 }
 
-// LawsAllowed is the verdict when the laws may deviate within their errors.
+// LawsAllowed is the verdict when the laws may deviate within their errors. Its
+// numbers are NaN where there is none.
 type LawsAllowed struct {
 	Verdict Verdict
 	Tail    float64
@@ -67,6 +68,7 @@ type Leaning struct {
 // share one multiplier m on D, at the given confidence (0.95, say). With
 // p(m) the chi-square tail, at m degrees less one where m was chosen,
 //
+//	no degrees are left              not judged
 //	p(1) passes                      reproduces
 //	p(m*) passes at the best m*      too sharp (m* > 1) or too smooth (m* < 1)
 //	each p(m*) at its own m*         at odds
@@ -94,7 +96,7 @@ func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 // deviations with which it does are no larger than they would be by chance at
 // the confidence, one degree of freedom a law.
 func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) LawsAllowed {
-	out := LawsAllowed{Verdict: joint.Verdict}
+	out := LawsAllowed{Verdict: joint.Verdict, Tail: math.NaN(), Misfit: math.NaN()}
 	if joint.Degrees < 1 || math.IsNaN(joint.Misfit) {
 		return out
 	}
@@ -113,14 +115,16 @@ func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) Laws
 	return out
 }
 
-// hopeless reports whether no amount of diffusion passes.
-func (f Finding) hopeless() bool { return f.Verdict == WrongShape }
+// hopeless reports whether no amount of diffusion passes, as far as is known.
+func (f Finding) hopeless() bool { return f.Verdict == WrongShape || f.Verdict == Unjudged }
 
 // find reads one curve.
 func find(c *Curve, confidence float64) Finding {
 	f := Finding{Points: c.Points, Degrees: c.Points - c.Free, Misfit: c.At(0)}
 	f.Above = f.Misfit - c.Best
-	f.Tail = Tail(f.Misfit, f.Degrees)
+	if f.Tail = math.NaN(); f.Degrees > 0 {
+		f.Tail = Tail(f.Misfit, f.Degrees)
+	}
 	lnM, best := c.Lowest()
 	f.Shift = math.Exp(lnM)
 	f.Shift68 = interval(c, best+Critical(0.68, 1))
@@ -128,9 +132,11 @@ func find(c *Curve, confidence float64) Finding {
 	f.Ranges = c.Ranges(best + Critical(0.95, 1))
 	passes := func(tail float64) bool { return tail >= 1-confidence } // false for NaN
 	switch {
+	case f.Degrees < 1:
+		f.Verdict = Unjudged
 	case passes(f.Tail):
 		f.Verdict = Reproduces
-	case f.Degrees < 1 || !passes(Tail(best, max(f.Degrees-1, 1))):
+	case !passes(Tail(best, max(f.Degrees-1, 1))):
 		f.Verdict = WrongShape
 	case lnM > 0:
 		f.Verdict = TooSharp

@@ -51,7 +51,9 @@ func TestVerdicts(t *testing.T) {
 		// if the shift spent it and yet something is left, a bound was met and the degree is back
 		{"one degree: the shift leaves a little", bowl(1e-3, 2, 1, 3, 2), 0.95, TooSharp},
 		{"one degree: the shift leaves too much", bowl(4, 2, 1, 3, 2), 0.95, WrongShape},
-		{"no degree: nothing can be judged", bowl(0.5, 0, 1, 2, 2), 0.95, WrongShape},
+		{"no degree: nothing can be judged", bowl(0.5, 0, 1, 2, 2), 0.95, Unjudged},
+		{"no degree, met exactly", bowl(0, 0, 1, 2, 2), 0.95, Unjudged},
+		{"fewer points than values", bowl(0, 0, 1, 2, 3), 0.95, Unjudged},
 	} {
 		t.Run(test.name, func(t *testing.T) {
 			var o Outcome
@@ -62,8 +64,11 @@ func TestVerdicts(t *testing.T) {
 			if want := test.c.Points - test.c.Free; o.Degrees != want || o.Points != test.c.Points {
 				t.Errorf("%d degrees of %d points, want %d of %d", o.Degrees, o.Points, want, test.c.Points)
 			}
-			if len(o.Profiles) != 1 || o.Profiles[0] != o.Finding {
-				t.Errorf("the only profile %+v is not the joint finding %+v", o.Profiles, o.Finding)
+			if got, want := fmt.Sprintf("%+v", o.Profiles), fmt.Sprintf("%+v", []Finding{o.Finding}); got != want { // NaN equals NaN
+				t.Errorf("the only profile %s is not the joint finding %s", got, want)
+			}
+			if judged := o.Verdict != Unjudged; judged == math.IsNaN(o.Tail) || judged == math.IsNaN(o.WithLaws.Tail) || o.WithLaws.Verdict != o.Verdict {
+				t.Errorf("%s has tail %g, with laws %+v", o.Verdict, o.Tail, o.WithLaws)
 			}
 		})
 	}
@@ -144,6 +149,27 @@ func TestJointVerdict(t *testing.T) {
 				if o.Profiles[i].Verdict != want {
 					t.Errorf("profile %d: %s, want %s", i, o.Profiles[i].Verdict, want)
 				}
+			}
+		})
+	}
+}
+
+// A profile that cannot be judged by itself has its part in the joint verdict,
+// and is no proof that each would pass alone.
+func TestJointVerdictWithoutDegrees(t *testing.T) {
+	for _, test := range []struct {
+		name string
+		with Curve
+		want Verdict
+	}{
+		{"agrees", bowl(20, 0, 0.5, 22, 2), Reproduces},
+		{"differs", bowl(20, 5, 0.1, 22, 2), WrongShape},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			var o Outcome
+			Judge(&o, []Curve{bowl(0, 0, 0.1, 2, 2), test.with}, nil, 0.95)
+			if o.Verdict != test.want || o.Profiles[0].Verdict != Unjudged {
+				t.Errorf("jointly %s, the first %s, want %s and %s", o.Verdict, o.Profiles[0].Verdict, test.want, Unjudged)
 			}
 		})
 	}

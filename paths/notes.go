@@ -12,6 +12,9 @@ import (
 // notes says what about the verdict the reader must know.
 func (o *Outcome) notes() []string {
 	var notes []string
+	if o.Verdict == Unjudged {
+		notes = append(notes, "no degrees of freedom are left: as many values are fitted as there are points that say anything")
+	}
 	if o.Ranges > 1 {
 		notes = append(notes, fmt.Sprintf("%d separate amounts of diffusion agree about equally well; the shift factor is that of the best", o.Ranges))
 	}

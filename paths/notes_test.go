@@ -67,7 +67,8 @@ func TestNotesOfAProfile(t *testing.T) {
 	}
 }
 
-// Two minima that agree about equally well are told apart from one.
+// Two minima that agree about equally well are told apart from one, and why
+// nothing is judged is said.
 func TestNotesOfAnOutcome(t *testing.T) {
 	c, _ := scanned(t, func(x float64) float64 { return 10 + well(500, -3)(x) + well(501, 4)(x) })
 	var o Outcome
@@ -78,5 +79,9 @@ func TestNotesOfAnOutcome(t *testing.T) {
 	Judge(&o, []Curve{bowl(19, 0, 1, 22, 2)}, nil, 0.95)
 	if notes := o.notes(); len(notes) > 0 {
 		t.Errorf("one range, notes %q", notes)
+	}
+	Judge(&o, []Curve{bowl(0, 0, 1, 2, 2)}, nil, 0.95)
+	if notes := strings.Join(o.notes(), "\n"); !strings.Contains(notes, "no degrees of freedom are left") {
+		t.Errorf("no degrees, notes %q", notes)
 	}
 }

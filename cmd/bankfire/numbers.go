@@ -24,7 +24,10 @@ func number(x float64) string {
 
 // tailText prints a probability; below a thousandth nobody should read digits.
 func tailText(x float64) string {
-	if x < 0.001 {
+	switch {
+	case math.IsNaN(x):
+		return ""
+	case x < 0.001:
 		return "< 0.001"
 	}
 	return number(x)

@@ -76,6 +76,12 @@ func TestSummaryKeepsSchema(t *testing.T) {
 			r.Study.Thresholds, r.Paths[0].Above = []study.Threshold{{Name: "lock-up", Temp: 1000}}, []float64{0}
 		}},
 		{"nothing but one path that was not run", notRun},
+		{"no degrees left", func(r *paths.Result) {
+			o := &r.Paths[0].Outcome
+			o.Verdict, o.Tail, o.Points, o.Degrees = paths.Unjudged, math.NaN(), 0, -2
+			o.Profiles[0] = o.Finding
+			o.WithLaws = paths.LawsAllowed{Verdict: paths.Unjudged, Tail: math.NaN(), Misfit: math.NaN()}
+		}},
 		{"every verdict of now", func(r *paths.Result) {
 			p := &r.Paths[0]
 			for _, v := range []paths.Verdict{paths.TooSharp, paths.TooSmooth, paths.WrongShape} {
@@ -115,6 +121,8 @@ func TestSchemaRefuses(t *testing.T) {
 		{"field missing in a profile", func(_, _, q map[string]any) { delete(q, "unit"); delete(q, "crystal") }},
 		{"number as text", func(_, p, _ map[string]any) { p["misfit"] = "3" }},
 		{"number null though the path was run", func(_, p, _ map[string]any) { p["shift_factor"] = nil }},
+		{"tail null though the path was judged", func(_, p, _ map[string]any) { p["tail"] = nil }},
+		{"tail null though the profile was judged", func(_, _, q map[string]any) { q["tail"] = nil }},
 		{"own best null though a path was run", func(s, _, _ map[string]any) { s["own_best"].([]any)[0].(map[string]any)["tail"] = nil }},
 		{"unknown verdict", func(_, p, _ map[string]any) { p["verdict"] = "fine" }},
 		{"interval with one end", func(_, p, _ map[string]any) { p["shift_68"] = []any{1.0} }},

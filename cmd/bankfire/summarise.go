@@ -94,7 +94,7 @@ func ownBests(r *paths.Result) []ownBest {
 }
 
 func newWithLaws(l *paths.LawsAllowed) *withLaws {
-	out := &withLaws{Verdict: l.Verdict.String(), Tail: l.Tail, Misfit: l.Misfit, Leaning: []lawLeaning{}}
+	out := &withLaws{Verdict: l.Verdict.String(), Tail: bounded(l.Tail), Misfit: bounded(l.Misfit), Leaning: []lawLeaning{}}
 	for _, on := range l.Leaning {
 		out.Leaning = append(out.Leaning, lawLeaning{on.Law, on.Sigma})
 	}

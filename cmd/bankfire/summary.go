@@ -53,7 +53,7 @@ type elementKey struct {
 }
 
 // finding holds the fields that paths and their profiles share. The numbers of
-// a path that was not run are null.
+// a path that was not run are null, as is the tail where nothing was judged.
 type finding struct {
 	ShiftFactor *float64    `json:"shift_factor"`
 	Shift68     [2]*float64 `json:"shift_68"`
@@ -91,11 +91,12 @@ type ownBest struct {
 	Findings    []string `json:"findings"`
 }
 
-// withLaws is the verdict with the laws' own errors allowed for.
+// withLaws is the verdict with the laws' own errors allowed for; its numbers are
+// null where nothing was judged.
 type withLaws struct {
 	Verdict string       `json:"verdict"`
-	Tail    float64      `json:"tail"`
-	Misfit  float64      `json:"misfit"`
+	Tail    *float64     `json:"tail"`
+	Misfit  *float64     `json:"misfit"`
 	Passes  bool         `json:"passes_with_some_error"`
 	Leaning []lawLeaning `json:"leaning"` // the smallest with which it passes
 }

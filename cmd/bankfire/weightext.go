@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"slices"
 	"strings"
 
 	"bankfire/paths"
@@ -79,6 +80,8 @@ func findingCells(o *paths.Outcome, laws int) []string {
 // be off.
 func leaningText(l *paths.LawsAllowed, laws int) string {
 	switch {
+	case l.Verdict == paths.Unjudged:
+		return ""
 	case laws == 0:
 		return "no error stated"
 	case l.Leaning == nil:
@@ -132,7 +135,9 @@ func writeSentences(w io.Writer, r *paths.Result) {
 				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Traverse.Unit)
 		}
 	}
-	fmt.Fprintln(w, tally(fit, len(r.Paths)))
+	if slices.ContainsFunc(r.Paths, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }) {
+		fmt.Fprintln(w, tally(fit, len(r.Paths)))
+	}
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
@@ -216,6 +221,8 @@ func verdictInWords(p *paths.PathResult) string {
 		return "of wrong shape: no amount of diffusion along it fits"
 	case paths.AtOdds:
 		return oddsInWords(p)
+	case paths.Unjudged:
+		return "not judged: no degrees of freedom are left"
 	case paths.Barred:
 		return "barred: " + strings.Join(p.Barred, "; ")
 	default:
