@@ -2,7 +2,9 @@ package main
 
 import (
 	"bytes"
+	"cmp"
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 	"strings"
@@ -115,26 +117,42 @@ func asMeasured(t *traverse.Traverse, at []float64, origin, tilt float64) []floa
 	return out
 }
 
-// curvePoints is how many temperatures a drawn duration curve has, beside those
-// at which the path rests.
-const curvePoints = 300
+// A drawn duration curve has curvePoints + 1 temperatures over its range and two
+// at each of up to curveJumps holds. Each asks every leg how long it is hotter.
+const (
+	curvePoints = 300
+	curveJumps  = 150
+)
 
 // curveTemps returns the temperatures, K, at which a path's duration curve is
-// drawn: evenly over its range, and close to both sides of every hold, where
-// the curve jumps.
+// drawn: evenly over its range, and close to both sides of the temperatures at
+// which it rests longest, where the curve jumps.
 func curveTemps(h *thermal.History) []float64 {
 	lo, hi := h.Range()
 	var temps []float64
 	for i := range curvePoints + 1 {
 		temps = append(temps, lo+(hi-lo)*float64(i)/curvePoints)
 	}
-	for _, leg := range h.Legs() {
-		if leg.Kind == thermal.Hold {
-			temps = append(temps, math.Nextafter(leg.T0, 0), leg.T0)
-		}
+	for _, temp := range restTemps(h, curveJumps) {
+		temps = append(temps, math.Nextafter(temp, 0), temp)
 	}
 	slices.Sort(temps)
 	return slices.Compact(temps)
+}
+
+// restTemps returns up to n temperatures, K, at which the path is held, those of
+// the longest time in all first.
+func restTemps(h *thermal.History, n int) []float64 {
+	rests := map[float64]float64{} // s, by K
+	for _, leg := range h.Legs() {
+		if leg.Kind == thermal.Hold {
+			rests[leg.T0] += leg.For
+		}
+	}
+	temps := slices.SortedFunc(maps.Keys(rests), func(a, b float64) int {
+		return cmp.Or(cmp.Compare(rests[b], rests[a]), cmp.Compare(a, b))
+	})
+	return temps[:min(n, len(temps))]
 }
 
 // bestPath returns the number of the path of least misfit; -1 if none was run.

@@ -183,3 +183,40 @@ func TestCurveTemps(t *testing.T) {
 		t.Error("the temperatures do not rise")
 	}
 }
+
+// However many legs a path has, its curve has few temperatures, those of the
+// longest rests among them: holds at one temperature are one rest.
+func TestCurveTempsOfManyHolds(t *testing.T) {
+	const holds, most = 20_000, 601
+	for _, test := range []struct {
+		name  string
+		temps int
+		most  int
+	}{
+		{"all different", holds, most},
+		{"three and the longest", 3, curvePoints + 1 + 2*4},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			legs := make([]thermal.Leg, holds)
+			for i := range legs {
+				temp := 900 + 200*float64(i%test.temps)/float64(test.temps)
+				legs[i] = thermal.Leg{Kind: thermal.Hold, For: thermal.Year, T0: temp, T1: temp}
+			}
+			const rest = 1033.3 // K, none of the others
+			for _, i := range []int{holds / 3, holds / 2} {
+				legs[i] = thermal.Leg{Kind: thermal.Hold, For: thermal.Year, T0: rest, T1: rest}
+			}
+			var h thermal.History
+			if err := h.Set(legs); err != nil {
+				t.Fatal(err)
+			}
+			temps := curveTemps(&h)
+			if len(temps) > test.most {
+				t.Errorf("%d temperatures, want at most %d", len(temps), test.most)
+			}
+			if !slices.Contains(temps, rest) || !slices.Contains(temps, math.Nextafter(rest, 0)) {
+				t.Errorf("the longest rest is not drawn")
+			}
+		})
+	}
+}
