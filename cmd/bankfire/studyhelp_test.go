@@ -87,7 +87,7 @@ func TestStudyHelpHasEveryKey(t *testing.T) {
 // TestStudyHelpHasEveryUnit: a unit that a study may use is on the page.
 func TestStudyHelpHasEveryUnit(t *testing.T) {
 	for _, dim := range []thermal.Dimension{
-		thermal.Temperature, thermal.Duration, thermal.Length, thermal.Angle, thermal.MolarEnergy, thermal.Diffusivity, thermal.Pressure, thermal.Concentration,
+		thermal.Temperature, thermal.Duration, thermal.Length, thermal.Angle, thermal.MolarEnergy, thermal.Diffusivity, thermal.Velocity, thermal.Pressure, thermal.Concentration,
 	} {
 		if list := strings.Join(thermal.UnitNames(dim), ", "); !strings.Contains(studyHelp, list) {
 			t.Errorf("the page does not list %s", list)
@@ -206,6 +206,8 @@ func frames() []frame {
 		rim("held", `held = "90 ppm"`),
 		rim("given", `given = "rim.csv"`, `time = "t [yr]"`, `value = "Ti [ppm]"`),
 		rim("sealed", `sealed = true`),
+		rim("transfer", `transfer = "60 ppm"`, `k = { k0 = "1 um/yr" }`),
+		{"crystal.element.rim.k", shownRim, `{ transfer = "60 ppm", k = %s }`, true, []string{`k0 = "1 um/yr"`}},
 		{"crystal.element.traverse", shownTraverse, "%s\n", false, lines(shownTraverse)},
 		{"crystal.element.traverse.error", `"3 %"`, "%s", true, []string{`column = "2se [ppm]"`, "sigmas = 2"}},
 	}

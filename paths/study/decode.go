@@ -219,6 +219,7 @@ var (
 	thickness   = bound{thermal.Length, false, 1e6, "1000 km", "20 m"}
 	heat        = bound{thermal.Diffusivity, false, 1, "1 m2/s", "1e-6 m2/s"}
 	frequency   = bound{thermal.Diffusivity, false, 1e12, "1e12 m2/s", "7e-8 m2/s"}
+	exchange    = bound{thermal.Velocity, false, 1e12, "1e12 m/s", "1e-3 m/s"}
 	energy      = bound{thermal.MolarEnergy, true, 1e7, "10000 kJ/mol", "273 kJ/mol"}
 )
 

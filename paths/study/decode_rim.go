@@ -2,6 +2,7 @@ package study
 
 import (
 	"fmt"
+	"math"
 	"slices"
 
 	"bankfire/diffusion"
@@ -56,8 +57,8 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 		return r
 	}
 	switch {
-	case n.get("following") != nil || n.get("transfer") != nil:
-		d.report(n, "a rim that follows conditions or exchanges by transfer is not known in this version", rimExample(c, u))
+	case n.get("following") != nil:
+		d.report(n, "a rim that follows conditions is not known in this version", rimExample(c, u))
 	case n.get("held") != nil:
 		d.keys(n, heldTable)
 		d.held(n, &r, c, u)
@@ -65,6 +66,9 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 		d.keys(n, givenTable)
 		r.Kind = diffusion.Prescribed
 		r.Given = d.series(n, u)
+	case n.get("transfer") != nil:
+		d.keys(n, transferTable)
+		d.transfer(n, &r, u)
 	case n.get("sealed") != nil:
 		d.keys(n, sealedTable)
 		if v := n.get("sealed"); d.is(v, boolNode, "write sealed = true") && v.text != "true" {
@@ -84,7 +88,7 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 // there is one.
 func (d *decoder) noRim(n *node, example string) {
 	var known []string
-	for _, kind := range []tableKind{heldTable, givenTable, sealedTable} {
+	for _, kind := range []tableKind{heldTable, givenTable, sealedTable, transferTable} {
 		for _, key := range tables[kind].Keys {
 			if !slices.Contains(known, key) {
 				known = append(known, key)
@@ -93,7 +97,7 @@ func (d *decoder) noRim(n *node, example string) {
 	}
 	before := d.faults
 	if d.known(n, known); d.faults == before {
-		d.report(n, "says neither what it is held at, nor that it is given or sealed", example)
+		d.report(n, "says neither what it is held at, nor that it is given, sealed or exchanges by transfer", example)
 	}
 }
 
@@ -131,4 +135,28 @@ func (d *decoder) held(n *node, r *Rim, c *Crystal, u *units) {
 		return
 	}
 	r.Value = d.amount(v, u, d.concentrationUnit(n.get("unit")))
+}
+
+// transfer reads the value with which a rim would be in equilibrium, and the
+// coefficient k = k0 exp(-E/(R T)) of the exchange.
+func (d *decoder) transfer(n *node, r *Rim, u *units) {
+	r.Kind = diffusion.Transfer
+	v := n.get("transfer")
+	r.Value = d.amount(v, u, d.concentrationUnit(n.get("unit")))
+	if r.Value.open() {
+		d.report(v, "the value of a rim that exchanges by transfer must be known exactly", `write it like transfer = "60 ppm"`)
+	}
+	const example = `write k = { k0 = "1e-3 m/s", E = "200 kJ/mol" }, or k = { k0 = "1e-12 m/s" } for one that stays the same at every temperature`
+	k := d.need(n, "k", example)
+	if !d.is(k, tableNode, example) {
+		return
+	}
+	d.keys(k, rateTable)
+	if k0, ok := d.quantity(d.need(k, "k0", example), exchange); ok {
+		r.Rate.LnA = math.Log(k0)
+	}
+	if e := k.get("E"); e != nil {
+		e, _ := d.quantity(e, energy)
+		r.Rate.E = e / thermal.GasConstant
+	}
 }

@@ -52,6 +52,8 @@ const (
 	heldTable
 	givenTable
 	sealedTable
+	transferTable
+	rateTable
 	traverseTable
 	errorTable
 )
@@ -81,6 +83,8 @@ var tables = [...]Table{
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
 	givenTable:      {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},
 	sealedTable:     {"crystal.element.rim sealed", []string{"sealed", "from"}},
+	transferTable:   {"crystal.element.rim transfer", []string{"transfer", "k", "unit", "from"}},
+	rateTable:       {"crystal.element.rim.k", []string{"k0", "E"}},
 	traverseTable: {"crystal.element.traverse", []string{"file", "position", "zero", "origin", "tilt", "value", "unit", "error",
 		"scatter", "overlap", "below", "spot", "window", "skip"}},
 	errorTable: {"crystal.element.traverse.error", []string{"column", "sigmas", "analyses", "size", "floor"}},

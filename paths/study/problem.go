@@ -150,7 +150,7 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		if i > 0 && !(from > out[i-1].From) {
 			return nil, r.Place.Error(r.From.Text, "does not come after the rim before it", "list rims in the order of time")
 		}
-		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r)})
+		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r), Rate: r.Rate})
 	}
 	for i := range list {
 		if list[i].Given == nil {
@@ -181,7 +181,7 @@ func (r *Rim) from(h *thermal.History) (float64, error) {
 	return t, err
 }
 
-// value is what a held rim is held at in the problem.
+// value is what a rim is held at, or exchanges with, in the problem.
 func (b *builder) value(r *Rim) float64 {
 	if r.Zone >= 0 {
 		return b.e.Start.Zones[r.Zone].base()

@@ -221,11 +221,12 @@ type Start struct {
 // next rim of the list.
 type Rim struct {
 	Kind  diffusion.RimKind
-	Zone  int             // held at the plateau of this zone; -1 if it is not tied to one
-	Value Plateau         // held and tied to no zone
-	Given *Series         // prescribed
-	From  *thermal.Moment // nil in the first of a list: from the start of the path
-	Place thermal.Place   // of its moment, or of the rim if it has none
+	Zone  int                 // held at the plateau of this zone; -1 if it is not tied to one
+	Value Plateau             // held and tied to no zone; of transfer, in equilibrium with what is outside, exact
+	Rate  diffusion.Arrhenius // of transfer: its coefficient, ln(m/s) and K
+	Given *Series             // prescribed
+	From  *thermal.Moment     // nil in the first of a list: from the start of the path
+	Place thermal.Place       // of its moment, or of the rim if it has none
 }
 
 // Series is a value against time, linear between its rows; equal times jump.

@@ -167,6 +167,25 @@ func TestEveryKeyRims(t *testing.T) {
 	near(t, "given, second row", g.Time[1], -5*yr)
 }
 
+func TestEveryKeyTransfer(t *testing.T) {
+	s := everyKey(t)
+	c := &s.Crystals[0]
+	p, _, err := c.Problem(&c.Elements[1], s.Paths[0].History)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for i, want := range []diffusion.Arrhenius{{LnA: math.Log(1e-3), E: 200e3 / thermal.GasConstant}, {LnA: math.Log(5 * um / yr)}} {
+		r := p.Outer[1+i]
+		if r.Kind != diffusion.Transfer {
+			t.Errorf("rim %+v", r)
+		}
+		near(t, "from", r.From, float64(5+i)*86400)
+		near(t, "transfer", r.Value, 60)
+		near(t, "ln k0", r.Rate.LnA, want.LnA)
+		near(t, "its energy", r.Rate.E, want.E)
+	}
+}
+
 func TestEveryKeyTraverse(t *testing.T) {
 	tr := everyKey(t).Crystals[0].Elements[0].Traverse
 	if tr.Unit != "ppm" || tr.Spot.Kind != traverse.Gaussian {

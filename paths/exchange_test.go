@@ -1,0 +1,103 @@
+package paths
+
+import (
+	"fmt"
+	"math"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"bankfire/paths/study"
+	"bankfire/thermal"
+	"bankfire/thermal/numeric"
+)
+
+// exchanging is a study of a crystal that exchanges with its melt at a finite
+// rate.
+const exchanging = `title = "Ti in a quartz that exchanges with its melt (invented)"
+
+[[path]]
+name = "as made"
+legs = [ { hold = "750 C", for = "1 kyr" } ]
+
+[[path]]
+name = "tenfold"
+legs = [ { hold = "750 C", for = "10 kyr" } ]
+
+[[crystal]]
+name = "Q1"
+mineral = "quartz"
+shape = "slab"
+zones = [ { name = "core", width = "100 um" } ]
+
+[[crystal.element]]
+name = "Ti"
+law = { D0 = "7e-8 m2/s", E = "273 kJ/mol" }
+start = { zones = [%s] }
+rim = { transfer = "60 ppm", k = { k0 = "2.6e-6 m/s", E = "200 kJ/mol" } }
+traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = "Ti [ppm]", error = "1 ppm", spot = "point" }
+`
+
+// readWith writes a study with what was measured at micrometres from the rim,
+// and reads it.
+func readWith(t *testing.T, text string, measured func(x float64) float64) *study.Study {
+	t.Helper()
+	var data strings.Builder
+	data.WriteString("distance [um],Ti [ppm]\n")
+	for x := 0.5; x < 30; x++ {
+		fmt.Fprintf(&data, "%g,%.9g\n", x, measured(x*um))
+	}
+	folder := t.TempDir()
+	for name, text := range map[string]string{"ti.csv": data.String(), "study.toml": text} {
+		if err := os.WriteFile(filepath.Join(folder, name), []byte(text), 0o666); err != nil {
+			t.Fatal(err)
+		}
+	}
+	s, err := study.Read(filepath.Join(folder, "study.toml"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return s
+}
+
+// Near its rim the crystal is a half space with surface exchange (Crank 1975, The
+// mathematics of diffusion, equation 3.35), with h = k/D and z = x/(2 sqrt(D t)):
+//
+//	(C - C0)/(Ceq - C0) = erfc(z) - exp(h x + h2 D t) erfc(z + h sqrt(D t)).
+func TestExchange(t *testing.T) {
+	const (
+		start, outside = 90.0, 60.0
+		grid           = 0.02 // ppm of 30, what 200 cells leave
+		promised       = 0.01 // of shift factors and free values
+	)
+	rt := thermal.GasConstant * (750 + thermal.ZeroCelsius)
+	d, k := 7e-8*math.Exp(-273e3/rt), 2.6e-6*math.Exp(-200e3/rt)
+	root := math.Sqrt(d * 1000 * thermal.Year)
+	exact := func(x float64) float64 {
+		z, h := x/(2*root), k/d*root
+		return start + (outside-start)*(math.Erfc(z)-math.Exp(-z*z)*numeric.ErfcScaled(z+h))
+	}
+	for _, core := range []string{`"90 ppm"`, `"free"`} {
+		t.Run(core, func(t *testing.T) {
+			s := readWith(t, fmt.Sprintf(exchanging, core), exact)
+			course, err := Follow(t.Context(), s, &s.Paths[0], nil)
+			if err != nil {
+				t.Fatal(err)
+			}
+			e := course.Elements[0]
+			for i, r := range e.Centres {
+				near(t, fmt.Sprintf("Ti at %.3g um", r/um), e.Final[i], exact(100*um-r), grid)
+			}
+			r := weighed(t, s)
+			if first, second := r.Paths[0].Outcome, r.Paths[1].Outcome; first.Verdict != Reproduces || second.Verdict == Reproduces {
+				t.Errorf("verdicts %s and %s", first.Verdict, second.Verdict)
+			} else {
+				near(t, "shift factor", first.Shift, 1, promised)
+			}
+			for _, f := range r.Paths[0].Profiles[0].Free {
+				near(t, f.Name, f.Value, start, promised*start)
+			}
+		})
+	}
+}
