@@ -2,6 +2,7 @@ package paths
 
 import (
 	"cmp"
+	"context"
 	"fmt"
 	"math"
 	"slices"
@@ -52,13 +53,14 @@ type Snapshot struct {
 
 // Follow runs one path in detail: every element of every crystal, at the end
 // of the path and at the given times, in s from its start. Values left free
-// are those that fit the traverse at the end of the path.
-func Follow(s *study.Study, path *study.Path, at []float64) (*Course, error) {
+// are those that fit the traverse at the end of the path. If ctx is done before
+// the last element or time, the error wraps that of ctx.
+func Follow(ctx context.Context, s *study.Study, path *study.Path, at []float64) (*Course, error) {
 	out := &Course{Path: path}
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
 		for j := range c.Elements {
-			e, err := follow(c, &c.Elements[j], path, at)
+			e, err := follow(ctx, c, &c.Elements[j], path, at)
 			if err != nil {
 				return nil, fmt.Errorf("path %q, %s in %s: %w", path.Name, c.Elements[j].Name, c.Name, err)
 			}
@@ -68,7 +70,10 @@ func Follow(s *study.Study, path *study.Path, at []float64) (*Course, error) {
 	return out, nil
 }
 
-func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) (*ElementCourse, error) {
+func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study.Path, at []float64) (*ElementCourse, error) {
+	if err := ctx.Err(); err != nil {
+		return nil, err
+	}
 	p, result, err := run(c, e, path)
 	if err != nil {
 		return nil, err
@@ -92,6 +97,9 @@ func follow(c *study.Crystal, e *study.Element, path *study.Path, at []float64) 
 	}
 	out.Legs = legShares(path.History, e.Law.Law)
 	for _, t := range at {
+		if err := ctx.Err(); err != nil {
+			return nil, err
+		}
 		cols, err := p.until(t)
 		if err != nil {
 			return nil, err

@@ -2,6 +2,7 @@ package paths
 
 import (
 	"context"
+	"errors"
 	"fmt"
 	"math"
 	"math/rand/v2"
@@ -56,7 +57,7 @@ func TestFollowThroughAReheat(t *testing.T) {
 	end := path.History.Life()
 	p := couple{core: 40, mantle: 90, reach: math.Sqrt(2 * grown(end)), spot: 0.3 * um, sigma: 0.2, points: 61, window: 15 * um}
 	at := []float64{0, 1500 * year, 3000 * year, 3005 * year, 3010 * year, 4000 * year, end}
-	c, err := Follow(p.study(nil, path), &path, at)
+	c, err := Follow(t.Context(), p.study(nil, path), &path, at)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -127,7 +128,7 @@ func TestFollowFitsAsWeighDoes(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	c, err := Follow(s, &s.Paths[0], nil)
+	c, err := Follow(t.Context(), s, &s.Paths[0], nil)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -217,7 +218,7 @@ func TestFollowWhereNothingMoves(t *testing.T) {
 	s := sharp().study(nil, path)
 	e := &s.Crystals[0].Elements[0]
 	e.Law.Law = diffusion.NewLaw(0, 273e3)
-	c, err := Follow(s, &path, []float64{1000 * year})
+	c, err := Follow(t.Context(), s, &path, []float64{1000 * year})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -241,7 +242,7 @@ func TestFollowWithoutATraverse(t *testing.T) {
 	s := sharp().study(nil, path)
 	e := &s.Crystals[0].Elements[0]
 	e.Traverse, e.Start.Zones = nil, []study.Plateau{{Value: 40}, {Value: 90}}
-	c, err := Follow(s, &path, nil)
+	c, err := Follow(t.Context(), s, &path, nil)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -256,8 +257,25 @@ func TestFollowWithoutATraverse(t *testing.T) {
 	if len(got.Free) != 0 || !got.GEnough || got.WhyG == "" {
 		t.Errorf("free values %v, G enough %v: %q", got.Free, got.GEnough, got.WhyG)
 	}
-	_, err = Follow(s, &path, []float64{path.History.Life() * 1.01})
+	_, err = Follow(t.Context(), s, &path, []float64{path.History.Life() * 1.01})
 	if err == nil || !strings.Contains(err.Error(), `path "woken", Ti in Q1`) {
 		t.Errorf("a moment after the end: got %v, want an error that names the path", err)
+	}
+}
+
+// A path that is no longer wanted is left between elements and between moments.
+func TestFollowStops(t *testing.T) {
+	path := woken(t)
+	s := sharp().study(nil, path)
+	elements := s.Crystals[0].Elements
+	s.Crystals[0].Elements = append(elements, elements[0])
+	const looks = 2 * 3 // at each element and both moments of each
+	for asked := range int64(looks + 1) {
+		ctx := &tripwire{Context: t.Context()}
+		ctx.left.Store(asked)
+		c, err := Follow(ctx, s, &path, []float64{year, 2 * year})
+		if done := asked == looks; done && err != nil || !done && (c != nil || !errors.Is(err, context.Canceled)) {
+			t.Errorf("done after %d looks of %d: got %v, %v", asked, looks, c, err)
+		}
 	}
 }

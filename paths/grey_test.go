@@ -57,7 +57,7 @@ func TestWeighOfGreyLevels(t *testing.T) {
 // What is told of a path measured in grey levels is told in the element's unit.
 func TestFollowOfGreyLevels(t *testing.T) {
 	s := greyStudy(t)
-	c, err := Follow(s, &s.Paths[0], []float64{0})
+	c, err := Follow(t.Context(), s, &s.Paths[0], []float64{0})
 	if err != nil {
 		t.Fatal(err)
 	}

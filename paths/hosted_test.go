@@ -104,7 +104,7 @@ func TestHostedCouple(t *testing.T) {
 	)
 	age := ageInYear * thermal.Year
 	s := readPlagioclase(t, "60 yr", "6 yr", `{ held = "skin" }`, func(r float64) float64 { return srCouple(r, age) })
-	course, err := Follow(s, &s.Paths[0], nil)
+	course, err := Follow(t.Context(), s, &s.Paths[0], nil)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -157,7 +157,7 @@ func TestHostedEquilibrium(t *testing.T) {
 				return test.skin
 			}
 			s := readPlagioclase(t, "100 Myr", "6 yr", test.rim, rested)
-			course, err := Follow(s, &s.Paths[0], nil)
+			course, err := Follow(t.Context(), s, &s.Paths[0], nil)
 			if err != nil {
 				t.Fatal(err)
 			}

@@ -41,7 +41,7 @@ func followCommand() *command {
 			set.StringArrayVar(&moments, "at", nil, "a `MOMENT` at which to show the profile; may be repeated")
 			set.BoolVar(&asJSON, "json", false, "print JSON instead of text")
 		},
-		run: func(_ context.Context, s streams, operands []string) error {
+		run: func(ctx context.Context, s streams, operands []string) error {
 			st, err := study.Read(operands[0])
 			if err != nil {
 				return err
@@ -54,7 +54,7 @@ func followCommand() *command {
 			if err != nil {
 				return err
 			}
-			course, err := paths.Follow(st, path, times)
+			course, err := paths.Follow(ctx, st, path, times)
 			if err != nil {
 				return err
 			}
