@@ -3,9 +3,11 @@ package paths
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"bankfire/paths/least"
 	"bankfire/paths/study"
+	"gonum.org/v1/gonum/mat"
 	"gonum.org/v1/gonum/stat/distuv"
 )
 
@@ -34,22 +36,25 @@ const (
 	placeWindow  = 5    // points over which residuals are averaged to find where they are large
 )
 
-// examine says what the own best fit shows, at the given confidence.
-func (o *OwnBest) examine(at least.Solution, confidence float64) {
-	o.ChiSq, o.Tail = at.ChiSq, Tail(at.ChiSq, o.Degrees)
-	o.Runs = runsProbability(at.Residuals)
-	o.Outlier = -1
-	passes := o.Tail >= 1-confidence
-	if t := o.Element.Traverse; !t.Independent && overlapping(t) {
+// examine says what the own best fit of the problem shows, at the given
+// confidence. With no degrees of freedom left it has nothing to say.
+func (o *OwnBest) examine(p *least.Problem, at least.Solution, confidence float64) {
+	o.ChiSq, o.Tail, o.Runs, o.Outlier = at.ChiSq, Tail(at.ChiSq, o.Degrees), 1, -1
+	if p.White != nil {
 		o.say("its spots overlap, so the errors of neighbouring points are taken to be correlated; if they are counting errors, write overlap = \"independent\" in the traverse")
 	}
+	if o.Degrees < 1 {
+		return
+	}
+	o.Runs = runsProbability(independent(p, at))
+	passes := o.Tail >= 1-confidence
 	far, r := largest(at.Residuals)
 	if alone := Tail(at.ChiSq-r*r, o.Degrees-1) >= 1-confidence; math.Abs(r) > farOut && (passes || alone) {
 		o.Outlier = far
 		o.say("%s is an outlier, %.1f sigma from the best fit of this profile", o.row(far), math.Abs(r))
 	}
 	switch {
-	case o.Tail > inflatedTail:
+	case o.Tail > inflatedTail && !slices.Contains(p.Limit, true): // limits add less than they count for
 		o.say("errors inflated: the best fit of this profile scatters less than they say (tail %.3f)", o.Tail)
 	case !passes && o.Outlier < 0:
 		o.say("errors too small or model wrong for this profile: not even its own best fit passes (chi-square %.0f of %d), and the residuals are largest %s",
@@ -58,6 +63,22 @@ func (o *OwnBest) examine(at least.Solution, confidence float64) {
 	if o.Runs < fewRuns {
 		o.say("the residuals of its best fit are not random: they come in runs of one sign (probability %.1g)", o.Runs)
 	}
+}
+
+// independent returns the residuals of the data that are no limits, made
+// independent of each other.
+func independent(p *least.Problem, at least.Solution) []float64 {
+	r := mat.NewVecDense(len(at.Residuals), slices.Clone(at.Residuals))
+	if p.White != nil {
+		r.MulVec(p.White, mat.NewVecDense(len(at.Residuals), slices.Clone(at.Residuals)))
+	}
+	var measured []float64
+	for i, v := range r.RawVector().Data {
+		if p.Limit == nil || !p.Limit[i] {
+			measured = append(measured, v)
+		}
+	}
+	return measured
 }
 
 func (o *OwnBest) say(format string, args ...any) {

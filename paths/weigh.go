@@ -153,11 +153,16 @@ func (w *weighing) law(l *study.Law) int {
 	return len(w.laws)
 }
 
-// lawPrior says how well a law is known.
+// lawPrior says how well a law is known; one by direction no better than the
+// worst of its parts.
 func lawPrior(l *study.Law) LawPrior {
 	p := LawPrior{Key: l.Key, LnD: l.Sigma * math.Ln10}
 	if l.Row != nil {
 		p.LnD, p.E = l.Row.SigmaMid.Value*math.Ln10, l.Row.SigmaE.Value
+	}
+	for i := range l.Parts {
+		part := lawPrior(&l.Parts[i].Law)
+		p.LnD, p.E = max(p.LnD, part.LnD), max(p.E, part.E)
 	}
 	return p
 }
@@ -540,7 +545,7 @@ func (w *weighing) examine(n int) (OwnBest, error) {
 	}
 	own.Path, own.Shift = p.path, math.Exp(lnM)
 	own.Degrees = p.points - p.counted - 1
-	own.examine(solutions[0], w.study.Confidence)
+	own.examine(&p.fit, solutions[0], w.study.Confidence)
 	own.knowing(&w.paths[i].curves[n], w.study.Confidence)
 	return own, nil
 }

@@ -136,7 +136,7 @@ func writeSentences(w io.Writer, r *paths.Result) {
 		}
 	}
 	if slices.ContainsFunc(r.Paths, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }) {
-		fmt.Fprintln(w, tally(fit, len(r.Paths)))
+		fmt.Fprintln(w, tally(fit, len(r.Paths), ran(r)))
 	}
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
@@ -146,9 +146,11 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	fmt.Fprintln(w)
 }
 
-// tally says which of n paths reproduce the data.
-func tally(fit []string, n int) string {
+// tally says which of n paths, of which some were run, reproduce the data.
+func tally(fit []string, n, ran int) string {
 	switch {
+	case ran == 0:
+		return "Every path is barred: nothing was weighed."
 	case n == 1 && len(fit) == 1:
 		return "The path reproduces what was measured."
 	case n == 1:
