@@ -5,6 +5,7 @@ import (
 	"context"
 	"fmt"
 	"io"
+	"math"
 	"path/filepath"
 	"slices"
 	"strings"
@@ -122,6 +123,8 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 func lawText(l *study.Law) string {
 	text := "a law of this study"
 	switch {
+	case l.Parts != nil:
+		text = directionText(l)
 	case l.Row != nil:
 		text = l.Key + ", " + l.Row.Citation
 		if l.Row.Checked() {
@@ -138,6 +141,19 @@ func lawText(l *study.Law) string {
 		text += "; " + caution
 	}
 	return text
+}
+
+// directionText names the laws of a law by direction with their shares.
+func directionText(l *study.Law) string {
+	var parts []string
+	for _, p := range l.Parts {
+		part := fmt.Sprintf("%s of that along %s, %s", plain(math.Round(1e4*p.Share)/1e4), p.Axes, p.Law.Key)
+		if p.Law.Row != nil {
+			part += ", " + p.Law.Row.Citation
+		}
+		parts = append(parts, part)
+	}
+	return strings.Join(parts, " + ")
 }
 
 // partitionText names a partition relation with how far it can be trusted.

@@ -202,6 +202,7 @@ func frames() []frame {
 		{"crystal.element", shownElement, "%s\n", false, lines(shownElement)},
 		{"crystal.element.law", shownLaw, "law = %s", true, law},
 		{"crystal.element.law.host", shownLaw, "law = { " + strings.Join(law, ", ") + ", host = %s }", true, []string{`ln_slope = 1`}},
+		{"crystal.element.law a", "[[threshold]]", "[conditions]\nfO2 = \"NNO\"\n\n[[threshold]]", true, nil},
 		{"crystal.element.start", shownStart, "%s", true, nil},
 		rim("held", `held = "90 ppm"`),
 		rim("given", `given = "rim.csv"`, `time = "t [yr]"`, `value = "Ti [ppm]"`),

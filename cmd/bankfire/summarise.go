@@ -3,6 +3,7 @@ package main
 import (
 	"math"
 	"slices"
+	"strings"
 
 	"bankfire/paths"
 	"bankfire/paths/study"
@@ -164,6 +165,12 @@ func conditionsUsed(c *study.Conditions) []string {
 // confidence says how sure the constants of a law are.
 func confidence(l *study.Law) string {
 	switch {
+	case l.Parts != nil:
+		var parts []string
+		for i := range l.Parts {
+			parts = append(parts, l.Parts[i].Law.Key+": "+confidence(&l.Parts[i].Law))
+		}
+		return strings.Join(parts, "; ")
 	case l.Row == nil && l.Caution != "":
 		return "as given in the study: " + l.Caution
 	case l.Row == nil:

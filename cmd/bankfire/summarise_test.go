@@ -5,6 +5,7 @@ import (
 	"encoding/hex"
 	"os"
 	"reflect"
+	"strings"
 	"testing"
 
 	"bankfire/diffusion/catalogue"
@@ -30,6 +31,25 @@ func TestLawsUsed(t *testing.T) {
 	}
 	if got := lawsUsed(s); !reflect.DeepEqual(got, want) {
 		t.Errorf("got  %+v\nwant %+v", got, want)
+	}
+}
+
+// A law by direction says of each of its laws how sure it is, and check what the
+// share of each is.
+func TestLawByDirection(t *testing.T) {
+	row, err := catalogue.Find("olivine-ca-coogan2005-a")
+	if err != nil {
+		t.Fatal(err)
+	}
+	law := study.Law{Key: row.Key + " + mine", Parts: []study.Part{
+		{Axes: "a and b", Share: 0.25, Law: study.Law{Key: row.Key, Row: row}},
+		{Axes: "c", Share: 0.75000000001, Law: study.Law{Key: "mine", Caution: "no crystal has it"}},
+	}}
+	if got, want := confidence(&law), row.Key+": "+row.Confidence+"; mine: as given in the study: no crystal has it"; got != want {
+		t.Errorf("confidence %q, want %q", got, want)
+	}
+	if got, want := lawText(&law), "0.25 of that along a and b, "+row.Key+", "+row.Citation+" + 0.75 of that along c, mine; "; !strings.HasPrefix(got, want) {
+		t.Errorf("law %q, want %q", got, want)
 	}
 }
 

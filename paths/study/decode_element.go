@@ -54,14 +54,14 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 // otherMineral notes a law that is for another mineral than the crystal's, unless
 // that is mistyped.
 func (d *decoder) otherMineral(c *Crystal, e *Element) {
-	if e.Law.Row == nil || c.Mineral == "" {
-		return
+	for _, law := range e.Law.all() {
+		if law.Row == nil || c.Mineral == "" {
+			continue
+		}
+		if of := law.Row.Mineral; !strings.EqualFold(of, c.Mineral) && nearest(c.Mineral, minerals()) != of {
+			d.note("%s: law %s is for %s, but the crystal %s is %s: is the law the right one?", e.Name, law.Key, of, c.Name, c.Mineral)
+		}
 	}
-	of := e.Law.Row.Mineral
-	if strings.EqualFold(of, c.Mineral) || nearest(c.Mineral, minerals()) == of {
-		return
-	}
-	d.note("%s: law %s is for %s, but the crystal %s is %s: is the law the right one?", e.Name, e.Law.Key, of, c.Name, c.Mineral)
 }
 
 func allSealed(rims []Rim) bool {

@@ -93,9 +93,8 @@ func (d *decoder) law(n *node, c *Crystal) Law {
 	if n == nil {
 		return Law{}
 	}
-	if n.get("a") != nil || n.get("b") != nil || n.get("c") != nil {
-		d.report(n, "a law by direction is not known in this version", "name the law along your traverse")
-		return Law{}
+	if slices.ContainsFunc(tables[directionTable].Keys, func(key string) bool { return n.get(key) != nil }) {
+		return d.directed(n, c)
 	}
 	if n.kind == tableNode {
 		return d.onHost(n, d.ownLaw(n, lawTable), c)

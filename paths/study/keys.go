@@ -48,6 +48,7 @@ const (
 	elementTable
 	lawTable
 	lawHostTable
+	directionTable
 	startTable
 	heldTable
 	givenTable
@@ -79,6 +80,7 @@ var tables = [...]Table{
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
 	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "sigma", "range", "citation", "caution"}},
 	lawHostTable:    {"crystal.element.law.host", []string{"ln_slope", "at"}},
+	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "normal"}},
 	startTable:      {"crystal.element.start", []string{"zones", "edge", "unit"}},
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
 	givenTable:      {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},

@@ -136,7 +136,7 @@ func (n Nuisance) Middle() float64 {
 
 // Law is the diffusivity of an element with what is known about it.
 type Law struct {
-	Key        string         // key in the catalogue, name of a [[law]], or "" for one written with the element
+	Key        string         // key in the catalogue, name of a [[law]], or "" for one written with the element; see Parts
 	Row        *catalogue.Row // nil unless it is from the catalogue
 	Law        diffusion.Law
 	Sigma      float64 // standard deviation of log10 D at mid-range; 0 if the study does not say
@@ -146,6 +146,14 @@ type Law struct {
 	// In a host of composition X, D has the factor exp(HostSlope (X - HostAt)).
 	HostSlope, HostAt float64
 	Buffer            *catalogue.Buffer // along which Law goes; nil is none
+	Parts             []Part            // of which a law by direction is the sum; then Row and Buffer are nil, Key joins theirs, and Sigma is 0
+}
+
+// Part is a law's part in a law by direction.
+type Part struct {
+	Axes  string  // along which it is the law: "a", "b and c"
+	Share float64 // cos2 of the angle between the boundary's normal and the axis, summed over the axes
+	Law   Law     // with a Key
 }
 
 // Cautions returns the sentences that belong beside every verdict that rests on
@@ -157,6 +165,11 @@ func (l *Law) Cautions() []string {
 	}
 	if l.Buffer != nil {
 		out = append(out, l.Buffer.Cautions()...)
+	}
+	for i := range l.Parts {
+		for _, caution := range l.Parts[i].Law.Cautions() {
+			out = append(out, l.Parts[i].Law.Key+": "+caution)
+		}
 	}
 	if l.Caution != "" {
 		out = append(out, l.Caution)
@@ -275,4 +288,16 @@ func (c *Crystal) Factors(e *Element) (least, most float64) {
 		least, most = min(least, f), max(most, f)
 	}
 	return least, most
+}
+
+// all returns the law, or the parts of one by direction.
+func (l *Law) all() []*Law {
+	if l.Parts == nil {
+		return []*Law{l}
+	}
+	var out []*Law
+	for i := range l.Parts {
+		out = append(out, &l.Parts[i].Law)
+	}
+	return out
 }
