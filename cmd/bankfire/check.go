@@ -137,6 +137,9 @@ func lawText(l *study.Law) string {
 	if l.HostSlope != 0 {
 		text += "; D depends on the host"
 	}
+	if l.OwnSlope != 0 {
+		text += "; D depends on the element itself"
+	}
 	for _, caution := range l.Cautions() {
 		text += "; " + caution
 	}

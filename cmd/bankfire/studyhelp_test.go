@@ -185,6 +185,7 @@ func frames() []frame {
 		inLimits("between", "[ ", " ]", `from = "start"`, `to = "eruption"`, `longest = "1 Myr"`),
 		{"law", "[[threshold]]", "[[law]]\n%s\n\n[[threshold]]", false, append(law, `name = "mine"`)},
 		{"law.host", "[[threshold]]", "[[law]]\nname = \"mine\"\n" + strings.Join(law, "\n") + "\nhost = %s\n\n[[threshold]]", true, []string{`ln_slope = 1`}},
+		{"law.own", "[[threshold]]", "[[law]]\nname = \"mine\"\n" + strings.Join(law, "\n") + "\nown = %s\n\n[[threshold]]", true, []string{`ln_slope = 1`}},
 		{"partition", "[[threshold]]", "[[partition]]\n%s\n\n[[threshold]]", false, []string{`name = "kx"`, `A = "1 kJ/mol"`, `B = "1 kJ/mol"`}},
 		{"path", shownPath, "%s\n", false, lines(shownPath)},
 		leg("hold", `hold = "750 C"`, `for = "1 yr"`),
@@ -202,6 +203,7 @@ func frames() []frame {
 		{"crystal.element", shownElement, "%s\n", false, lines(shownElement)},
 		{"crystal.element.law", shownLaw, "law = %s", true, law},
 		{"crystal.element.law.host", shownLaw, "law = { " + strings.Join(law, ", ") + ", host = %s }", true, []string{`ln_slope = 1`}},
+		{"crystal.element.law.own", shownLaw, "law = { " + strings.Join(law, ", ") + ", own = %s }", true, []string{`ln_slope = 0.1`}},
 		{"crystal.element.law a", "[[threshold]]", "[conditions]\nfO2 = \"NNO\"\n\n[[threshold]]", true, nil},
 		{"crystal.element.start", shownStart, "%s", true, nil},
 		rim("held", `held = "90 ppm"`),
@@ -231,6 +233,13 @@ var onHost = []string{"crystal.zones host", "crystal.element partition", "crysta
 
 // hosts gives a host to the zones that have none.
 var hosts = strings.NewReplacer(`"140 um" }`, `"140 um", host = 0.5 }`, `"60 um" }`, `"60 um", host = 0.4 }`)
+
+// stated are keys for which every value of the element must be known, and exact
+// states them.
+var (
+	stated = []string{"crystal.element.law own", "crystal.element.law.own ln_slope", "crystal.element.law.own at"}
+	exact  = strings.NewReplacer(`["free", "free"]`, `["90 ppm", "60 ppm"]`)
+)
 
 // with returns the keys of the frame with the one that is tried.
 func (f *frame) with(e entry) string {
@@ -284,6 +293,9 @@ func TestStudyHelpEntries(t *testing.T) {
 				text := strings.Replace(sound, f.old, strings.Replace(f.new, "%s", f.with(e), 1), 1)
 				if slices.Contains(onHost, f.table+" "+e.key) {
 					text = hosts.Replace(text)
+				}
+				if slices.Contains(stated, f.table+" "+e.key) {
+					text = exact.Replace(text)
 				}
 				writeFile(t, folder, "tried.toml", text)
 				if _, err := study.Read(filepath.Join(folder, "tried.toml")); err != nil {

@@ -94,11 +94,15 @@ func addPart(parts []Part, axis string, share float64, law Law) []Part {
 // joined returns the law whose D is the sum of the parts'. It is calibrated
 // where all of them are.
 func (d *decoder) joined(n *node, parts []Part) Law {
-	law := Law{Parts: parts, HostSlope: parts[0].Law.HostSlope, HostAt: parts[0].Law.HostAt}
+	law := Law{Parts: parts, HostSlope: parts[0].Law.HostSlope, HostAt: parts[0].Law.HostAt, OwnSlope: parts[0].Law.OwnSlope, OwnAt: parts[0].Law.OwnAt}
 	var keys, citations []string
 	for _, p := range parts {
 		if p.Law.HostSlope != law.HostSlope {
 			d.report(n, "its laws depend on the host in different ways", "choose laws of one slope, or name the law along your traverse")
+			return Law{}
+		}
+		if p.Law.OwnSlope != law.OwnSlope {
+			d.report(n, "its laws depend on the element itself in different ways", "choose laws of one slope, or name the law along your traverse")
 			return Law{}
 		}
 		keys = append(keys, p.Law.Key)
@@ -106,8 +110,8 @@ func (d *decoder) joined(n *node, parts []Part) Law {
 			citations = append(citations, p.Law.Citation)
 		}
 		for _, a := range p.Law.Law.Terms {
-			atHost := law.HostSlope * (law.HostAt - p.Law.HostAt)
-			law.Law.Terms = append(law.Law.Terms, diffusion.Arrhenius{LnA: a.LnA + math.Log(p.Share) + atHost, E: a.E})
+			at := law.HostSlope*(law.HostAt-p.Law.HostAt) + law.OwnSlope*(law.OwnAt-p.Law.OwnAt)
+			law.Law.Terms = append(law.Law.Terms, diffusion.Arrhenius{LnA: a.LnA + math.Log(p.Share) + at, E: a.E})
 		}
 		law.narrow(&p.Law)
 	}

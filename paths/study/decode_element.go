@@ -32,6 +32,7 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	}
 	e.Unit = u.unit
 	d.assumed(n, c, &e)
+	d.nonlinear(n, c, &e)
 	return e
 }
 

@@ -55,6 +55,13 @@ func (d *decoder) ownLaw(n *node, kind tableKind) Law {
 		}
 		d.lawHost(v, host, &law)
 	}
+	if v := n.get("own"); v != nil {
+		own := ownLawOwnTable
+		if kind == lawTable {
+			own = lawOwnTable
+		}
+		d.lawOwn(v, own, &law)
+	}
 	if v := n.get("sigma"); v != nil {
 		law.Sigma, _ = d.number(v, "write the standard deviation of log10 D at mid-range as a number, such as sigma = 0.2")
 	}

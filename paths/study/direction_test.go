@@ -58,6 +58,12 @@ E = "250 kJ/mol"
 host = { ln_slope = 2, at = 0.5 }
 
 [[law]]
+name = "on itself"
+D0 = "1e-8 m2/s"
+E = "250 kJ/mol"
+own = { ln_slope = 0.2, at = 60 }
+
+[[law]]
 name = "on host from 0"
 D0 = "1e-8 m2/s"
 E = "250 kJ/mol"
@@ -114,10 +120,15 @@ func TestDirection(t *testing.T) {
 			}
 		})
 	}
-	t.Run("on the host in two ways", func(t *testing.T) {
-		_, err := directedLaw(t, `{ a = "on host", b = "slow", c = "mine", normal = ["45 deg", "45 deg", "90 deg"] }`)
-		if got := problems(t, err); len(got) != 1 || !strings.Contains(got[0].Problem, "depend on the host in different ways") {
-			t.Errorf("problems %v", err)
-		}
-	})
+	for key, want := range map[string]string{
+		"on host":   "depend on the host in different ways",
+		"on itself": "depend on the element itself in different ways",
+	} {
+		t.Run(key+" in two ways", func(t *testing.T) {
+			_, err := directedLaw(t, `{ a = "`+key+`", b = "slow", c = "mine", normal = ["45 deg", "45 deg", "90 deg"] }`)
+			if got := problems(t, err); len(got) != 1 || !strings.Contains(got[0].Problem, want) {
+				t.Errorf("problems %v", err)
+			}
+		})
+	}
 }

@@ -39,6 +39,7 @@ const (
 	conditionsTable
 	ownLawTable
 	ownLawHostTable
+	ownLawOwnTable
 	partitionTable
 	pathTable
 	crystalTable
@@ -48,6 +49,7 @@ const (
 	elementTable
 	lawTable
 	lawHostTable
+	lawOwnTable
 	directionTable
 	startTable
 	heldTable
@@ -69,8 +71,9 @@ var tables = [...]Table{
 	aboveTable:      {"limits.above", []string{"threshold", "temperature", "shortest", "longest", "counts"}},
 	betweenTable:    {"limits.between", []string{"from", "to", "shortest", "longest"}},
 	conditionsTable: {"conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
-	ownLawTable:     {"law", []string{"name", "D0", "E", "host", "sigma", "range", "citation", "caution"}},
+	ownLawTable:     {"law", []string{"name", "D0", "E", "host", "own", "sigma", "range", "citation", "caution"}},
 	ownLawHostTable: {"law.host", []string{"ln_slope", "at"}},
+	ownLawOwnTable:  {"law.own", []string{"ln_slope", "at"}},
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
 	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "element"}},
@@ -78,8 +81,9 @@ var tables = [...]Table{
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth"}},
 	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
-	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "sigma", "range", "citation", "caution"}},
+	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "own", "sigma", "range", "citation", "caution"}},
 	lawHostTable:    {"crystal.element.law.host", []string{"ln_slope", "at"}},
+	lawOwnTable:     {"crystal.element.law.own", []string{"ln_slope", "at"}},
 	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "normal"}},
 	startTable:      {"crystal.element.start", []string{"zones", "edge", "unit"}},
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},

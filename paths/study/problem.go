@@ -21,12 +21,15 @@ import (
 // Edges have their middle width: where the width is not Fixed, set Edge of all
 // zones but the last to the one wanted.
 //
+// An element whose law depends on the element itself has no free values, and
+// Problem.Own.
+//
 // Moments of rims are resolved on the path. The error is a *thermal.InputError
 // at the rim whose moment the path does not have, or whose file does not cover
 // the time it is in force.
 func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, []FreeValue, error) {
 	b := builder{c: c, e: e, h: h}
-	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law}
+	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law, Own: e.Law.own()}
 	if e.Partition != nil {
 		out.LnK = e.Partition.LnK
 	}

@@ -145,8 +145,10 @@ type Law struct {
 	Caution    string // what else belongs beside every verdict that rests on the law; "" is nothing
 	// In a host of composition X, D has the factor exp(HostSlope (X - HostAt)).
 	HostSlope, HostAt float64
-	Buffer            *catalogue.Buffer // along which Law goes; nil is none
-	Parts             []Part            // of which a law by direction is the sum; then Row and Buffer are nil, Key joins theirs, and Sigma is 0
+	// Where the element has the value C, D has the factor exp(OwnSlope (C - OwnAt)).
+	OwnSlope, OwnAt float64
+	Buffer          *catalogue.Buffer // along which Law goes; nil is none
+	Parts           []Part            // of which a law by direction is the sum; then Row and Buffer are nil, Key joins theirs, and Sigma is 0
 }
 
 // Part is a law's part in a law by direction.
@@ -280,12 +282,18 @@ func (c *Crystal) Factor(e *Element, i int) float64 {
 	return z.Times * math.Exp(e.Law.HostSlope*(z.Host-e.Law.HostAt))
 }
 
-// Factors are the least and the largest Factor of all zones.
+// Factors are the least and the largest Factor of all zones, times that which the
+// element's own value makes of D at the values that the study states.
 func (c *Crystal) Factors(e *Element) (least, most float64) {
 	least, most = math.Inf(1), 0
 	for i := range c.Zones {
 		f := c.Factor(e, i)
 		least, most = min(least, f), max(most, f)
+	}
+	if e.Law.OwnSlope != 0 {
+		lo, hi := c.values(e)
+		a, b := math.Exp(e.Law.lnOwn(lo)), math.Exp(e.Law.lnOwn(hi))
+		least, most = least*min(a, b), most*max(a, b)
 	}
 	return least, most
 }

@@ -336,6 +336,16 @@ func wrongElements() []wrong {
 		{"law named like a published one", `name = "mine"`, `name = @` + law, "", "law.name", "of the catalogue", "another name"},
 		{"law with half a range", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nrange = @\"900 C\"", "", "law.range", "is no range", `"700..1000 C"`},
 		{"law with an empty range", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nrange = @\"900..800 C\"", "", "law.range", "does not run upwards", "smaller end first"},
+		{"own, its values free", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = 3, at = 0 } }`, "s.toml:32:9", "crystal.element.start", "must be known exactly: core", `without "free"`},
+		{"own, a rim with an error", law + "\nstart = " + start + "\nrim = " + rim, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = 0.1 } }` +
+			"\nstart = { zones = [\"9 ppm\", \"8 ppm\"], edge = \"0 um\" }\nrim = @{ held = \"9 +- 1 ppm\" }", "", "crystal.element.rim", "must be known exactly", `held = "90 ppm"`},
+		{"own without a slope", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = @{ at = 0 } }`, "", "crystal.element.law.own.ln_slope", "missing", "ln_slope = 3"},
+		{"own a number", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = @3 }`, "", "crystal.element.law.own", "a number, not a table", "ln_slope = 3"},
+		{"own in quotes", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = @"3" } }`, "", "crystal.element.law.own.ln_slope", "a text, not a number", "ln_slope = 3"},
+		{"own at less than nothing", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nown = { ln_slope = 3, at = @-1 }", "", "law.own.at", "below zero", "zero or more"},
+		{"own mistyped", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nown = { @lnslope = 3, ln_slope = 3 }", "", "law.own.lnslope", "unknown key", `did you mean "ln_slope"?`},
+		{"own too steep", law + "\nstart = " + start, `@{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = -3 } }` +
+			"\nstart = { zones = [\"9 ppm\", \"58 ppm\"], edge = \"0 um\" }", "", "crystal.element.law", "from 9 to 58 ppm, changes D by a factor of e^174", "C is in ppm"},
 		{"too few values", start, `{ zones = @["58 ppm"], edge = "0 um" }`, "", "crystal.element.start.zones", "1 value for 2 zones", "core, skin"},
 		{"value without a unit", `"58 ppm"]`, "@58]", "", "crystal.element.start.zones", "without a unit", `"58 ppm"`},
 		{"value of no kind", `"58 ppm"]`, `@"plenty"]`, "", "crystal.element.start.zones", "neither a value nor free", `"58 +- 1.5 ppm" or "free"`},

@@ -1,0 +1,103 @@
+package study
+
+import (
+	"fmt"
+	"math"
+
+	"bankfire/diffusion"
+)
+
+// maxOwn bounds by what D may change with the element's own value, as ln.
+const maxOwn = 50
+
+// lawOwn reads how a law written in the study depends on the element itself,
+//
+//	D x exp(ln_slope (C - at)), C in the element's unit.
+func (d *decoder) lawOwn(n *node, kind tableKind, law *Law) {
+	const example = `write own = { ln_slope = 3, at = 0 }: D times exp(ln_slope (C - at)), C in the element's unit`
+	if !d.is(n, tableNode, example) {
+		return
+	}
+	d.keys(n, kind)
+	slope, at := d.need(n, "ln_slope", example), n.get("at")
+	if d.is(slope, numberNode, example) {
+		law.OwnSlope = slope.number
+	}
+	if d.is(at, numberNode, example) {
+		if at.number < 0 {
+			d.report(at, "below zero", "a value is zero or more")
+		}
+		law.OwnAt = at.number
+	}
+}
+
+// nonlinear checks an element whose law depends on the element itself: its profile
+// is no sum of parts, one for each value that would be fitted.
+func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
+	if e.Law.OwnSlope == 0 {
+		return
+	}
+	problem := "D depends on " + e.Name + " itself, so that this value must be known exactly"
+	at := d.place(n)
+	if v := n.get("start"); v != nil {
+		at = d.place(v)
+	}
+	for i, p := range e.Start.Zones {
+		if p.open() {
+			d.add(at.Error("", problem+": "+c.Zones[i].Name, `state one value a zone, such as zones = ["90 ppm", "58 ppm"], without "free" and "+-"`))
+			return
+		}
+	}
+	for _, rims := range [][]Rim{e.Inner, e.Rims} {
+		for _, r := range rims {
+			if r.Kind == diffusion.Held && r.Zone < 0 && r.Value.open() {
+				d.add(r.Place.Error("", problem, `write held = "90 ppm", without "free" and "+-"`))
+				return
+			}
+		}
+	}
+	lo, hi := c.values(e)
+	if most := max(e.Law.lnOwn(hi), e.Law.lnOwn(lo), -e.Law.lnOwn(lo), -e.Law.lnOwn(hi)); !(most <= maxOwn) {
+		d.report(n.get("law"), fmt.Sprintf("its own composition, from %.4g to %.4g %s, changes D by a factor of e^%.3g", lo, hi, e.Unit, most),
+			"check ln_slope and at: C is in "+e.Unit)
+	}
+}
+
+// values returns the least and the largest value that the study states of the
+// element: those between which it stays if it follows no host.
+func (c *Crystal) values(e *Element) (lo, hi float64) {
+	lo, hi = math.Inf(1), math.Inf(-1)
+	add := func(x float64) { lo, hi = min(lo, x), max(hi, x) }
+	for _, p := range e.Start.Zones {
+		add(p.Value)
+	}
+	for _, rims := range [][]Rim{e.Inner, e.Rims} {
+		for _, r := range rims {
+			switch {
+			case r.Given != nil:
+				for _, x := range r.Given.Value {
+					add(x)
+				}
+			case r.Kind != diffusion.Sealed && r.Zone < 0:
+				add(r.Value.Value)
+			}
+		}
+	}
+	return lo, hi
+}
+
+// lnOwn is ln of the factor that D has at the element's own value.
+func (l *Law) lnOwn(value float64) float64 {
+	return float64(l.OwnSlope * (value - l.OwnAt))
+}
+
+// own returns the factor on D as a function of the element's own value, nil if
+// there is none. Far beyond the values that a study may state it is constant.
+func (l *Law) own() func(float64) float64 {
+	if l.OwnSlope == 0 {
+		return nil
+	}
+	return func(value float64) float64 {
+		return math.Exp(min(max(l.lnOwn(value), -2*maxOwn), 2*maxOwn))
+	}
+}
