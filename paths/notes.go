@@ -48,7 +48,7 @@ func lawNotes(e *study.Element, h *thermal.History) []string {
 	for _, caution := range e.Law.Cautions() {
 		notes = append(notes, lawName(e)+": "+caution)
 	}
-	if p := e.Partition; p != nil {
+	for _, p := range e.Partitions() {
 		for _, caution := range p.Cautions() {
 			notes = append(notes, "partition "+p.Key+": "+caution)
 		}

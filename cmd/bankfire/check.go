@@ -108,6 +108,11 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 		if p := e.Partition; p != nil {
 			fmt.Fprintf(w, "  %s follows the host by partition %s\n", e.Name, partitionText(p))
 		}
+		for _, r := range slices.Concat(e.Inner, e.Rims) {
+			if f := r.Following; f != nil {
+				fmt.Fprintf(w, "  %s at the rim follows %s %s in the melt by partition %s\n", e.Name, plain(f.Melt), e.Unit, partitionText(&f.Partition))
+			}
+		}
 		if t := e.Traverse; t != nil {
 			name, err := filepath.Rel(folder, t.Name)
 			if err != nil {

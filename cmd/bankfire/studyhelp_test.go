@@ -209,6 +209,7 @@ func frames() []frame {
 		rim("held", `held = "90 ppm"`),
 		rim("given", `given = "rim.csv"`, `time = "t [yr]"`, `value = "Ti [ppm]"`),
 		rim("sealed", `sealed = true`),
+		rim("following", `following = "sr-blundy1991"`, `melt = "90 ppm"`),
 		rim("transfer", `transfer = "60 ppm"`, `k = { k0 = "1 um/yr" }`),
 		{"crystal.element.rim.k", shownRim, `{ transfer = "60 ppm", k = %s }`, true, []string{`k0 = "1 um/yr"`}},
 		{"crystal.element.traverse", shownTraverse, "%s\n", false, lines(shownTraverse)},
@@ -229,7 +230,8 @@ var beside = map[string][]string{
 
 // onHost are keys for which the crystal needs a host in every zone.
 var onHost = []string{"crystal.zones host", "crystal.element partition", "crystal.element.law host",
-	"crystal.element.law.host ln_slope", "crystal.element.law.host at"}
+	"crystal.element.rim following following", "crystal.element.rim following melt",
+	"crystal.element.rim following unit", "crystal.element.rim following from", "crystal.element.law.host ln_slope", "crystal.element.law.host at"}
 
 // hosts gives a host to the zones that have none.
 var hosts = strings.NewReplacer(`"140 um" }`, `"140 um", host = 0.5 }`, `"60 um" }`, `"60 um", host = 0.4 }`)

@@ -132,24 +132,30 @@ func partitionsUsed(s *study.Study) []lawUsed {
 	known := map[string]int{}
 	for _, c := range s.Crystals {
 		for _, e := range c.Elements {
-			p := e.Partition
-			if p == nil || e.Traverse == nil {
+			if e.Traverse == nil {
 				continue
 			}
-			i, is := known[p.Key]
-			if !is {
-				i = len(relations)
-				known[p.Key] = i
-				used := lawUsed{Key: p.Key, Confidence: "as given in the study"}
-				if p.Row != nil {
-					used.Citation, used.Confidence = p.Row.Citation, p.Row.Confidence
+			for _, p := range e.Partitions() {
+				i, is := known[p.Key]
+				if !is {
+					i = len(relations)
+					known[p.Key] = i
+					relations = append(relations, partitionUsed(p))
 				}
-				relations = append(relations, used)
+				relations[i].Elements = append(relations[i].Elements, elementKey{c.Name, e.Name})
 			}
-			relations[i].Elements = append(relations[i].Elements, elementKey{c.Name, e.Name})
 		}
 	}
 	return relations
+}
+
+// partitionUsed is a relation with its source, of no element yet.
+func partitionUsed(p *study.Partition) lawUsed {
+	used := lawUsed{Key: p.Key, Confidence: "as given in the study"}
+	if p.Row != nil {
+		used.Citation, used.Confidence = p.Row.Citation, p.Row.Confidence
+	}
+	return used
 }
 
 // conditionsUsed are the conditions as the study has them, a buffer with its

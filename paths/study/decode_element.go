@@ -30,6 +30,8 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	if e.Traverse != nil && e.Traverse.Grey {
 		d.grey(n.get("traverse"), &e, u)
 	}
+	d.followers(e.Inner, min(0, len(c.Zones)-1), c, &e)
+	d.followers(e.Rims, len(c.Zones)-1, c, &e)
 	e.Unit = u.unit
 	d.assumed(n, c, &e)
 	d.nonlinear(n, c, &e)

@@ -79,7 +79,7 @@ func (d *decoder) noteHost(c *Crystal) {
 		return
 	}
 	for i := range c.Elements {
-		if e := &c.Elements[i]; e.Partition != nil || e.Law.HostSlope != 0 {
+		if e := &c.Elements[i]; e.Partitions() != nil || e.Law.HostSlope != 0 {
 			return
 		}
 	}

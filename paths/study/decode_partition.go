@@ -79,14 +79,9 @@ func (d *decoder) partition(n *node, c *Crystal, e *Element) *Partition {
 	if !ok {
 		return nil
 	}
-	p, own := d.partitions[key]
-	if !own {
-		row, err := catalogue.FindPartition(key)
-		if err != nil {
-			d.unknownPartition(n, key, err)
-			return nil
-		}
-		p = Partition{Key: key, Row: row, A: row.A, B: row.B}
+	p, ok := d.relation(n, key)
+	if !ok {
+		return nil
 	}
 	switch {
 	case !c.Hosted && len(c.Zones) > 0:
@@ -96,6 +91,20 @@ func (d *decoder) partition(n *node, c *Crystal, e *Element) *Partition {
 	}
 	d.notePartition(&p, c, e)
 	return &p
+}
+
+// relation returns the relation with a key of the catalogue, or the [[partition]]
+// of that name.
+func (d *decoder) relation(n *node, key string) (Partition, bool) {
+	if p, own := d.partitions[key]; own {
+		return p, true
+	}
+	row, err := catalogue.FindPartition(key)
+	if err != nil {
+		d.unknownPartition(n, key, err)
+		return Partition{}, false
+	}
+	return Partition{Key: key, Row: row, A: row.A, B: row.B}, true
 }
 
 // hostRemedy says how a host is given.

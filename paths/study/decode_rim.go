@@ -58,7 +58,8 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 	}
 	switch {
 	case n.get("following") != nil:
-		d.report(n, "a rim that follows conditions is not known in this version", rimExample(c, u))
+		d.keys(n, followingTable)
+		d.following(n, &r, u)
 	case n.get("held") != nil:
 		d.keys(n, heldTable)
 		d.held(n, &r, c, u)
@@ -88,7 +89,7 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 // there is one.
 func (d *decoder) noRim(n *node, example string) {
 	var known []string
-	for _, kind := range []tableKind{heldTable, givenTable, sealedTable, transferTable} {
+	for _, kind := range []tableKind{heldTable, givenTable, sealedTable, followingTable, transferTable} {
 		for _, key := range tables[kind].Keys {
 			if !slices.Contains(known, key) {
 				known = append(known, key)
@@ -97,7 +98,7 @@ func (d *decoder) noRim(n *node, example string) {
 	}
 	before := d.faults
 	if d.known(n, known); d.faults == before {
-		d.report(n, "says neither what it is held at, nor that it is given, sealed or exchanges by transfer", example)
+		d.report(n, "says neither what it is held at, nor that it is given, sealed, follows a relation or exchanges by transfer", example)
 	}
 }
 

@@ -55,6 +55,7 @@ const (
 	heldTable
 	givenTable
 	sealedTable
+	followingTable
 	transferTable
 	rateTable
 	traverseTable
@@ -89,6 +90,7 @@ var tables = [...]Table{
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
 	givenTable:      {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},
 	sealedTable:     {"crystal.element.rim sealed", []string{"sealed", "from"}},
+	followingTable:  {"crystal.element.rim following", []string{"following", "melt", "unit", "from"}},
 	transferTable:   {"crystal.element.rim transfer", []string{"transfer", "k", "unit", "from"}},
 	rateTable:       {"crystal.element.rim.k", []string{"k0", "E"}},
 	traverseTable: {"crystal.element.traverse", []string{"file", "position", "zero", "origin", "tilt", "value", "unit", "error",

@@ -11,7 +11,7 @@ func TestEveryKeyOwn(t *testing.T) {
 	s := everyKey(t)
 	c := &s.Crystals[1]
 	for i, want := range []struct{ slope, at, lo, hi float64 }{{3, 0.1, 0.1, 0.2}, {-2, 0, 0.2, 0.1}} {
-		e := &c.Elements[6+i]
+		e := &c.Elements[7+i]
 		p, free, err := c.Problem(e, s.Paths[0].History)
 		if err != nil {
 			t.Fatal(err)

@@ -156,6 +156,12 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r), Rate: r.Rate})
 	}
 	for i := range list {
+		var err error
+		if list[i].Following != nil {
+			if out[i].Given, err = b.follow(&list[i]); err != nil {
+				return nil, err
+			}
+		}
 		if list[i].Given == nil {
 			continue
 		}
@@ -163,7 +169,6 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		if i+1 < len(out) {
 			until = min(until, out[i+1].From)
 		}
-		var err error
 		if out[i].Given, err = b.given(list[i].Given, out[i].From, until); err != nil {
 			return nil, err
 		}

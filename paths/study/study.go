@@ -2,6 +2,7 @@ package study
 
 import (
 	"math"
+	"slices"
 
 	"bankfire/diffusion"
 	"bankfire/diffusion/catalogue"
@@ -235,13 +236,22 @@ type Start struct {
 // Rim says what holds at an end of the crystal from a moment on, until the
 // next rim of the list.
 type Rim struct {
-	Kind  diffusion.RimKind
-	Zone  int                 // held at the plateau of this zone; -1 if it is not tied to one
-	Value Plateau             // held and tied to no zone; of transfer, in equilibrium with what is outside, exact
-	Rate  diffusion.Arrhenius // of transfer: its coefficient, ln(m/s) and K
-	Given *Series             // prescribed
-	From  *thermal.Moment     // nil in the first of a list: from the start of the path
-	Place thermal.Place       // of its moment, or of the rim if it has none
+	Kind      diffusion.RimKind
+	Zone      int                 // held at the plateau of this zone; -1 if it is not tied to one
+	Value     Plateau             // held and tied to no zone; of transfer, in equilibrium with what is outside, exact
+	Rate      diffusion.Arrhenius // of transfer: its coefficient, ln(m/s) and K
+	Given     *Series             // prescribed
+	Following *Following          // prescribed, unless Given
+	From      *thermal.Moment     // nil in the first of a list: from the start of the path
+	Place     thermal.Place       // of its moment, or of the rim if it has none
+}
+
+// Following is a rim in equilibrium with a melt: Melt times K of the relation in
+// the Host of the zone at the rim.
+type Following struct {
+	Partition Partition
+	Melt      float64 // in the element's unit
+	Host      float64
 }
 
 // Series is a value against time, linear between its rows; equal times jump.
@@ -306,6 +316,28 @@ func (l *Law) all() []*Law {
 	var out []*Law
 	for i := range l.Parts {
 		out = append(out, &l.Parts[i].Law)
+	}
+	return out
+}
+
+// Partitions are the relations of the element and of its rims, once each; nil if
+// there are none.
+func (e *Element) Partitions() []*Partition {
+	var out []*Partition
+	add := func(p *Partition) {
+		if !slices.ContainsFunc(out, func(q *Partition) bool { return q.Key == p.Key }) {
+			out = append(out, p)
+		}
+	}
+	if e.Partition != nil {
+		add(e.Partition)
+	}
+	for _, rims := range [][]Rim{e.Inner, e.Rims} {
+		for i := range rims {
+			if f := rims[i].Following; f != nil {
+				add(&f.Partition)
+			}
+		}
 	}
 	return out
 }

@@ -186,6 +186,60 @@ func TestEveryKeyTransfer(t *testing.T) {
 	}
 }
 
+func TestEveryKeyFollowing(t *testing.T) {
+	s := everyKey(t)
+	c := &s.Crystals[1]
+	e, h := &c.Elements[6], s.Paths[0].History
+	p, _, err := c.Problem(e, h)
+	if err != nil {
+		t.Fatal(err)
+	}
+	rt := thermal.GasConstant * (690 + zc) // of the first leg, in a skin of An35
+	for i, want := range []float64{90 * math.Exp((-26.7e3*0.35+26.7e3)/rt), 100 * math.Exp((-38.2e3*0.35+10.2e3)/rt)} {
+		if r := p.Outer[i]; r.Kind != diffusion.Prescribed {
+			t.Errorf("rim %+v", r)
+		} else {
+			near(t, "value", r.Given.At(3*86400), want)
+		}
+	}
+	// The path jumps where its first reheat is cut off.
+	if g := p.Outer[0].Given; len(g.Breaks)+len(g.Jumps) != len(h.Breaks(nil)) || len(g.Jumps) == 0 {
+		t.Errorf("breaks %v, jumps %v", g.Breaks, g.Jumps)
+	}
+	if all := e.Partitions(); len(all) != 2 || all[0].Key != "kx" || all[1].Key != "ba-blundy1991" {
+		t.Errorf("relations %+v", all)
+	}
+}
+
+// TestFollowingRims: what a rim that follows a relation is refused for where the
+// crystal has a host.
+func TestFollowingRims(t *testing.T) {
+	const follow = `{ following = "kx", melt = %s }`
+	relation := func(b string) string {
+		return "[[partition]]\nname = \"kx\"\nA = \"1 kJ/mol\"\nB = \"" + b + " kJ/mol\"\n\n[[path]]\n"
+	}
+	for _, test := range []struct{ name, melt, b, law, want string }{
+		{"free", `"free"`, "1", `"mine"`, "must be known exactly"},
+		{"with an error", `"90 +- 3 ppm"`, "1", `"mine"`, "must be known exactly"},
+		{"more than all", `"90 ppm"`, "400", `"mine"`, "more than all there is"},
+		{"of an element that changes its own D", `"90 ppm"`, "1", `{ D0 = "7e-8 m2/s", E = "273 kJ/mol", own = { ln_slope = 0.01 } }`, "known without a path"},
+		{"sound", `"90 ppm"`, "1", `"mine"`, ""},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			text := strings.NewReplacer("[[path]]\n", relation(test.b), `{ held = "skin" }`, fmt.Sprintf(follow, test.melt), `["free", "58 ppm"]`, `["70 ppm", "58 ppm"]`,
+				`"quartz-ti-cherniak2007"`, test.law, `"100 um" }`, `"100 um", host = 0.5 }`, `"20 um" }`, `"20 um", host = 0.4 }`).Replace(sound)
+			_, err := parse("s.toml", []byte(text), memory(soundFiles()))
+			got := problems(t, err)
+			if test.want == "" && err == nil {
+				return
+			}
+			if len(got) != 1 || !strings.Contains(got[0].Problem, test.want) || !strings.HasPrefix(got[0].Field, "crystal.element.rim") {
+				t.Errorf("problems %v, want %q", err, test.want)
+			}
+		})
+	}
+}
+
 func TestEveryKeyTraverse(t *testing.T) {
 	tr := everyKey(t).Crystals[0].Elements[0].Traverse
 	if tr.Unit != "ppm" || tr.Spot.Kind != traverse.Gaussian {
