@@ -39,7 +39,7 @@ type input struct {
 }
 
 // lawUsed is a law that a measured element diffused by, or the partition relation
-// by which it followed its host.
+// by which it followed its host, or its rim a melt.
 type lawUsed struct {
 	Key        string       `json:"key"` // of the catalogue, a [[law]] or a [[partition]]; "" if the law stands with its element
 	Citation   string       `json:"citation"`
