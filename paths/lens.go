@@ -33,7 +33,10 @@ const (
 	edgeNodes     = 6
 	mostEdgeNodes = 24
 	cosineNodes   = 3
-	gaussianFar   = 4    // standard deviations of a known value that are looked at
+	gaussianFar   = 4   // standard deviations of a known value that are looked at
+	fewStarts     = 3   // values with which a fit begins
+	startStep     = 0.5 // of the least spacing of points, by which these move from one to the next
+	mostStarts    = 40
 	steepest      = 1.45 // rad, beyond which a tilt makes no sense
 )
 
@@ -99,7 +102,8 @@ func span(n study.Nuisance, least, most float64) (lo, hi float64) {
 // bent returns the nuisances that are not fixed as values of the fit.
 func (l *lens) bent() []least.Bent {
 	var bent []least.Bent
-	add := func(n study.Nuisance, lowest, most float64) {
+	tilts, origins := l.starts()
+	add := func(n study.Nuisance, lowest, most float64, starts int, turn func(k int) int) {
 		if n.Fixed() {
 			return
 		}
@@ -108,13 +112,52 @@ func (l *lens) bent() []least.Bent {
 		if !n.Ranged() {
 			v.Prior = least.Prior{Mean: n.Value, Sigma: n.Sigma}
 		}
-		v.Starts = []float64{lo + (hi-lo)/2, lo + (hi-lo)/8, hi - (hi-lo)/8}
+		for k := range max(fewStarts, tilts*origins) {
+			v.Starts = append(v.Starts, lo+(hi-lo)*(float64(turn(k))+0.5)/float64(starts))
+		}
 		bent = append(bent, v)
 	}
-	add(l.edge, 0, math.Inf(1))
-	add(l.tilt, 0, steepest)
-	add(l.origin, math.Inf(-1), math.Inf(1))
+	add(l.edge, 0, math.Inf(1), fewStarts, func(k int) int { return k % fewStarts })
+	add(l.tilt, 0, steepest, tilts, func(k int) int { return k / origins % tilts })
+	add(l.origin, math.Inf(-1), math.Inf(1), origins, func(k int) int { return k % origins })
 	return bent
+}
+
+// starts returns with how many tilts and origins a fit begins: with so many of
+// what moves the points that from one of them a sharp step lies between the
+// right two points.
+func (l *lens) starts() (tilts, origins int) {
+	count := func(shift float64) int {
+		return int(math.Min(math.Max(math.Ceil(shift/(startStep*leastSpacingOf(l.t.Position))), fewStarts), mostStarts))
+	}
+	tilts, origins = 1, 1
+	if !l.origin.Fixed() {
+		lo, hi := span(l.origin, math.Inf(-1), math.Inf(1))
+		origins = count(hi - lo)
+	}
+	switch {
+	case l.tilt.Fixed():
+	case l.origin.Fixed():
+		lo, hi := span(l.tilt, 0, steepest)
+		tilts = count(l.farthest() * (math.Cos(lo) - math.Cos(hi)))
+	default:
+		tilts = fewStarts
+	}
+	return tilts, origins
+}
+
+// farthest returns the largest distance of a point from where positions count
+// from.
+func (l *lens) farthest() float64 {
+	zero := 0.0
+	if l.t.Zero == traverse.Rim {
+		zero = l.t.Size
+	}
+	far := 0.0
+	for _, x := range l.t.Position {
+		far = math.Max(far, math.Abs(x-zero))
+	}
+	return far
 }
 
 // values splits the bent values of a fit again.

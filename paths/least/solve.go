@@ -1,12 +1,17 @@
 package least
 
-import "math"
+import (
+	"cmp"
+	"math"
+	"slices"
+)
 
 // How the fit goes on and when it stops. Falls of chi-square are parts of
 // 1 + chi-square.
 const (
 	mostSteps  = 100
 	mostHalves = 12
+	mostFits   = 3
 	tolerated  = 1e-6  // fall that a step in the bent values may promise in vain, by errors of the slopes
 	settled    = 1e-12 // fall that may be left after the last step
 	solved     = 1e-12 // fall by a step in the linear values that is the last
@@ -14,7 +19,8 @@ const (
 
 // Solve returns the values of least chi-square: the best of the fits that begin
 // at the starts of the bent values, all first starts together, then all second
-// ones, and so on, the last standing in where one has fewer. It is a
+// ones, and so on, the last standing in where one has fewer; of more than
+// mostFits of them at the mostFits where chi-square is least. It is a
 // Gauss-Newton fit in the bent values, halving steps that do not improve, with
 // the linear values solved anew at each (variable projection: Golub and Pereyra
 // 1973, SIAM J. Numer. Anal. 10, 413-432; Kaufman 1975, BIT 15, 49-57).
@@ -25,8 +31,9 @@ const (
 func (p *Problem) Solve(model Model) Solution {
 	p.check()
 	s := newState(p, model)
-	best := s.fitFrom(0)
-	for k := 1; k < p.starts(); k++ {
+	starts := s.likeliest(mostFits)
+	best := s.fitFrom(starts[0])
+	for _, k := range starts[1:] {
 		if found := s.fitFrom(k); found.ChiSq < best.ChiSq || math.IsNaN(best.ChiSq) {
 			best = found
 		}
@@ -34,7 +41,40 @@ func (p *Problem) Solve(model Model) Solution {
 	return best
 }
 
-// starts returns how many fits begin.
+// likeliest returns up to most starts, those of least chi-square, ascending.
+func (s *state) likeliest(most int) []int {
+	starts := make([]int, s.p.starts())
+	for k := range starts {
+		starts[k] = k
+	}
+	if len(starts) <= most {
+		return starts
+	}
+	chiSq := make([]float64, len(starts))
+	s.at = s.p.newPoint()
+	for k := range starts {
+		s.begin(k)
+		if chiSq[k] = s.at.ChiSq; math.IsNaN(s.at.ChiSq) {
+			chiSq[k] = math.Inf(1)
+		}
+	}
+	slices.SortStableFunc(starts, func(a, b int) int { return cmp.Compare(chiSq[a], chiSq[b]) })
+	starts = starts[:most]
+	slices.Sort(starts)
+	return starts
+}
+
+// begin puts the point at start k of the bent values.
+func (s *state) begin(k int) {
+	for i, b := range s.p.Bent {
+		s.at.Bent[i] = b.Starts[min(k, len(b.Starts)-1)]
+	}
+	s.slopes.reset()
+	s.promised = 0
+	s.solveLinear(s.at)
+}
+
+// starts returns how many fits may begin.
 func (p *Problem) starts() int {
 	n := 1
 	for _, b := range p.Bent {
@@ -95,12 +135,7 @@ func newState(p *Problem, model Model) *state {
 // fitFrom fits from start k of the bent values.
 func (s *state) fitFrom(k int) Solution {
 	s.at = s.p.newPoint()
-	for i, b := range s.p.Bent {
-		s.at.Bent[i] = b.Starts[min(k, len(b.Starts)-1)]
-	}
-	s.slopes.reset()
-	s.promised = 0
-	s.solveLinear(s.at)
+	s.begin(k)
 	s.at.Settled = len(s.p.Bent) == 0
 	for range mostSteps {
 		if s.at.Settled || math.IsNaN(s.at.ChiSq) || !s.improve() {
