@@ -256,6 +256,7 @@ const (
 	shiftError   = 2e-3 // of lnM: shift factors are good to well under 1 %
 	leastSpacing = 1e-4 // of lnM: no interval below is halved and no two knots are nearer
 	mostRounds   = 16
+	mostDips     = 4 // lowest points of their own that are followed at a time, beyond concern
 )
 
 // sampler returns chi-square at each of several multipliers.
@@ -348,18 +349,23 @@ func (c *Curve) refine(add sampler) error {
 	return nil
 }
 
-// halving is an interval to be halved, with what the curve foretells half way
-// and by how much it may be wrong.
-type halving struct{ x0, mid, x1, told, allowed float64 }
+// halving is an interval to be halved, with what the curve foretells half way,
+// by how much it may be wrong, and how low the curve gets in the interval.
+type halving struct {
+	x0, mid, x1, told, allowed, low float64
+	far                             bool // above all that is of concern
+}
 
 // halvings returns the intervals to be halved that are not settled: those
 // within concern of the lowest point, and those that hold a lowest point of
 // their own, because the curve between few knots may pass far above the truth.
 // It is followed down until it is known to a small part of what it lies above
-// the lowest.
+// the lowest; of those far above, only the few deepest at a time: where a model
+// far too sharp meets points far apart, chi-square is as rough as a rasp.
 func (c *Curve) halvings(settled map[[2]float64]bool) []halving {
 	_, best := c.Lowest()
 	var list []halving
+	var dips []float64
 	for i := range len(c.LnM) - 1 {
 		q := c.piece(i)
 		x, low := q.lowest()
@@ -368,7 +374,15 @@ func (c *Curve) halvings(settled map[[2]float64]bool) []halving {
 		}
 		mid := q.x0 + (q.x1-q.x0)/2
 		allowed := curveError + outerError*math.Max(0, low-best-inner)
-		list = append(list, halving{q.x0, mid, q.x1, q.value(mid), allowed})
+		h := halving{q.x0, mid, q.x1, q.value(mid), allowed, low, low > best+concern}
+		if h.far {
+			dips = append(dips, low)
+		}
+		list = append(list, h)
+	}
+	if len(dips) > mostDips {
+		slices.Sort(dips)
+		list = slices.DeleteFunc(list, func(h halving) bool { return h.far && h.low >= dips[mostDips] })
 	}
 	return list
 }
