@@ -126,7 +126,7 @@ func (p *Problem) residual(i int, y float64) (r, slope float64) {
 	if math.IsInf(z, 1) { // no model at all, not one below the limit
 		return math.NaN(), math.NaN()
 	}
-	lnPhi, hazard := normal(z)
+	lnPhi, hazard := Normal(z)
 	if lnPhi >= 0 {
 		return 0, 0
 	}
@@ -148,7 +148,7 @@ func (p *Problem) row(i int, y float64) (slope, right float64) {
 	if !p.isLimit(i) || p.White != nil || !(z > farExceeded) {
 		return slope, -r
 	}
-	_, hazard := normal(z)
+	_, hazard := Normal(z)
 	curve := math.Sqrt(hazard * (hazard + z))
 	if curve == 0 {
 		return 0, 0
@@ -160,9 +160,9 @@ func (p *Problem) row(i int, y float64) (slope, right float64) {
 // lost in round-off.
 const farExceeded = -1e3
 
-// normal returns ln Phi(z) of the normal distribution and its slope phi/Phi.
+// Normal returns ln Phi(z) of the normal distribution and its slope phi/Phi.
 // Source: Abramowitz and Stegun (1964), 26.2.29, Phi(z) = erfc(-z/sqrt 2)/2.
-func normal(z float64) (lnPhi, hazard float64) {
+func Normal(z float64) (lnPhi, hazard float64) {
 	if z > 0 {
 		above := math.Erfc(z/math.Sqrt2) / 2
 		return math.Log1p(-above), math.Exp(-z*z/2) / (math.Sqrt(2*math.Pi) * (1 - above))
