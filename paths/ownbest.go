@@ -3,12 +3,9 @@ package paths
 import (
 	"fmt"
 	"math"
-	"slices"
 
 	"bankfire/paths/least"
 	"bankfire/paths/study"
-	"gonum.org/v1/gonum/mat"
-	"gonum.org/v1/gonum/stat/distuv"
 )
 
 // OwnBest is the best fit of one profile by itself: the best amount of
@@ -31,9 +28,11 @@ type OwnBest struct {
 // What stands out in an own best fit.
 const (
 	farOut       = 4.0  // sigma, beyond which one point in 15,000 lies by chance
+	company      = 0.3  // mean of the next two residuals, as a part of a point's own, above which it does not stand alone
 	inflatedTail = 0.99 // tail above which errors are larger than the scatter
 	fewRuns      = 0.01 // probability of the runs below which residuals are not random
 	placeWindow  = 5    // points over which residuals are averaged to find where they are large
+	farMean      = 3.0  // standard errors beyond which such a mean is not random
 )
 
 // examine says what the own best fit of the problem shows, at the given
@@ -46,39 +45,44 @@ func (o *OwnBest) examine(p *least.Problem, at least.Solution, confidence float6
 	if o.Degrees < 1 {
 		return
 	}
-	o.Runs = runsProbability(independent(p, at))
-	passes := o.Tail >= 1-confidence
-	far, r := largest(at.Residuals)
-	if alone := Tail(at.ChiSq-r*r, o.Degrees-1) >= 1-confidence; math.Abs(r) > farOut && (passes || alone) {
+	s := newScores(p, at)
+	o.Runs = runsProbability(s.independent)
+	chiSq, degrees := o.ChiSq, o.Degrees // without what is an outlier
+	if far, by := s.outlier(chiSq, degrees, confidence); far >= 0 {
 		o.Outlier = far
-		o.say("%s is an outlier, %.1f sigma from the best fit of this profile", o.row(far), math.Abs(r))
+		o.say("%s is an outlier, %.1f sigma from what the other points of this profile say%s", o.row(far), by, o.orRim(far))
+		chiSq, degrees = chiSq-by*by, degrees-1
 	}
-	switch {
-	case o.Tail > inflatedTail && !slices.Contains(p.Limit, true): // limits add less than they count for
-		o.say("errors inflated: the best fit of this profile scatters less than they say (tail %.3f)", o.Tail)
-	case !passes && o.Outlier < 0:
-		o.say("errors too small or model wrong for this profile: not even its own best fit passes (chi-square %.0f of %d), and the residuals are largest %s",
-			o.ChiSq, o.Degrees, o.place(at.Residuals))
+	switch tail := Tail(chiSq, degrees); {
+	case tail > inflatedTail:
+		o.say("errors inflated: the best fit of this profile scatters less than they say (tail %.3f)", tail)
+	case !(tail >= 1-confidence):
+		o.fails(s, chiSq, degrees)
 	}
 	if o.Runs < fewRuns {
 		o.say("the residuals of its best fit are not random: they come in runs of one sign (probability %.1g)", o.Runs)
 	}
 }
 
-// independent returns the residuals of the data that are no limits, made
-// independent of each other.
-func independent(p *least.Problem, at least.Solution) []float64 {
-	r := mat.NewVecDense(len(at.Residuals), slices.Clone(at.Residuals))
-	if p.White != nil {
-		r.MulVec(p.White, mat.NewVecDense(len(at.Residuals), slices.Clone(at.Residuals)))
+// passes reports whether the own best fit passes at the confidence.
+func (o *OwnBest) passes(confidence float64) bool { return o.Tail >= 1-confidence }
+
+// fails says that not even the own best fit passes, and what its residuals look
+// like.
+func (o *OwnBest) fails(s *scores, chiSq float64, degrees int) {
+	without := ""
+	if o.Outlier >= 0 {
+		without = ", without the outlier"
 	}
-	var measured []float64
-	for i, v := range r.RawVector().Data {
-		if p.Limit == nil || !p.Limit[i] {
-			measured = append(measured, v)
+	looks := fmt.Sprintf("the residuals look random, as if the errors were %.1f times what is stated", math.Sqrt(chiSq/float64(max(degrees, 1))))
+	if i, mean := s.place(o.Outlier); o.Runs < fewRuns || math.Abs(mean) > farMean*math.Max(1, s.scale()) {
+		side := "above"
+		if mean < 0 {
+			side = "below"
 		}
+		looks = fmt.Sprintf("the residuals are largest %s, where the data lie %s it", o.where(i), side)
 	}
-	return measured
+	o.say("errors too small or model wrong for this profile: not even its own best fit passes (chi-square %.0f of %d%s), and %s", chiSq, degrees, without, looks)
 }
 
 func (o *OwnBest) say(format string, args ...any) {
@@ -91,31 +95,28 @@ func (o *OwnBest) row(i int) string {
 	return fmt.Sprintf("line %d of %s", t.Line[i], t.Name)
 }
 
-// largest returns the residual of largest size.
-func largest(residuals []float64) (i int, r float64) {
-	for k, v := range residuals {
-		if math.Abs(v) > math.Abs(r) {
-			i, r = k, v
-		}
+// orRim says what else may be wrong with point i if the traverse ends there, at
+// the rim.
+func (o *OwnBest) orRim(i int) string {
+	if last := len(o.Element.Traverse.Position) - 1; (i == 0 || i == last) && o.atRim(i) {
+		return "; as the last one before the rim, it may also mean that the rim is not as stated"
 	}
-	return i, r
+	return ""
 }
 
-// place says where the residuals, averaged over some points, are largest: near
-// the rim or inside, whichever of rim and zone boundaries is nearer.
-func (o *OwnBest) place(residuals []float64) string {
-	t := o.Element.Traverse
-	worst, at := 0.0, 0.0
-	for i := range residuals {
-		a, b := max(0, i-placeWindow/2), min(len(residuals), i+placeWindow/2+1)
-		sum := 0.0
-		for _, r := range residuals[a:b] {
-			sum += r
-		}
-		if mean := math.Abs(sum) / math.Sqrt(float64(b-a)); mean > worst {
-			worst, at = mean, t.Position[i]
-		}
+// where says whether point i is at the rim or inside.
+func (o *OwnBest) where(i int) string {
+	where := "inside"
+	if o.atRim(i) {
+		where = "at the rim"
 	}
+	return fmt.Sprintf("%s (%.0f um from the centre)", where, o.Element.Traverse.Position[i]*1e6)
+}
+
+// atRim reports whether point i is nearer to the rim than to the inner end and
+// all zone boundaries.
+func (o *OwnBest) atRim(i int) bool {
+	at := o.Element.Traverse.Position[i]
 	size := o.Crystal.Size()
 	toRim, toBoundary := math.Abs(size-at), math.Abs(at-o.Crystal.R0)
 	r := o.Crystal.R0
@@ -123,43 +124,8 @@ func (o *OwnBest) place(residuals []float64) string {
 		r += z.Width
 		toBoundary = math.Min(toBoundary, math.Abs(at-r))
 	}
-	where := "inside"
-	if toRim < toBoundary {
-		where = "at the rim"
-	}
-	return fmt.Sprintf("%s (%.0f um from the centre)", where, at*1e6)
+	return toRim < toBoundary
 }
-
-// runsProbability returns the probability that as few runs of one sign as
-// these, or fewer, come from random residuals (Wald and Wolfowitz 1940, Ann.
-// Math. Stat. 11, 147-162, in its normal approximation with a continuity
-// correction). It is 1 where there are too few of either sign to tell.
-func runsProbability(residuals []float64) float64 {
-	up, down, runs := 0.0, 0.0, 0.0
-	last := 0.0
-	for _, r := range residuals {
-		sign := math.Copysign(1, r)
-		if sign > 0 {
-			up++
-		} else {
-			down++
-		}
-		if sign != last {
-			runs++
-		}
-		last = sign
-	}
-	if up < fewSigns || down < fewSigns {
-		return 1
-	}
-	n := up + down
-	mean := 2*up*down/n + 1
-	variance := (mean - 1) * (mean - 2) / (n - 1)
-	return distuv.UnitNormal.CDF((runs + 0.5 - mean) / math.Sqrt(variance))
-}
-
-// fewSigns is how many residuals of each sign the normal approximation needs.
-const fewSigns = 8
 
 // knowing says at which ends the profile knows nothing of the amount of
 // diffusion: where no diffusion at all, or diffusion without end, fits.

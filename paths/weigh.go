@@ -525,7 +525,7 @@ func (w *weighing) judge() (*Result, error) {
 		}
 	}
 	for i := range w.paths {
-		r.Paths[i] = w.verdict(i)
+		r.Paths[i] = w.verdict(i, r.Own)
 	}
 	return r, nil
 }
@@ -550,8 +550,9 @@ func (w *weighing) examine(n int) (OwnBest, error) {
 	return own, nil
 }
 
-// verdict judges path i.
-func (w *weighing) verdict(i int) PathResult {
+// verdict judges path i. A path is not blamed for a profile that its own best
+// fit does not pass either.
+func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 	path, p := &w.study.Paths[i], &w.paths[i]
 	r := PathResult{Path: path, Barred: p.barred, Life: path.History.Eruption(), Profiles: p.results}
 	for _, t := range w.study.Thresholds {
@@ -563,6 +564,11 @@ func (w *weighing) verdict(i int) PathResult {
 	}
 	Judge(&r.Outcome, p.curves, w.laws, w.study.Confidence)
 	r.Notes = r.Outcome.notes()
+	for n := range own {
+		if o := &own[n]; r.Outcome.Verdict == WrongShape && !o.passes(w.study.Confidence) {
+			r.Notes = append(r.Notes, fmt.Sprintf("errors too small or model wrong for %s in %s: not even its own best fit passes, so no path is to blame", o.Element.Name, o.Crystal.Name))
+		}
+	}
 	return r
 }
 
