@@ -28,6 +28,10 @@ const (
 	mostly                 // at least nine times of ten
 )
 
+func (p promise) String() string {
+	return [...]string{"as often as its confidence says", "at least as often as its confidence says", "at least nine times of ten"}[p]
+}
+
 // truthCase is a kind of measurement that is simulated again and again.
 // Simulation i depends on seed and i alone.
 type truthCase struct {
@@ -59,7 +63,7 @@ func truthCases() []truthCase {
 			s := usualSlab()
 			return simulation{s.study(usualProbe().measure(rng, s.seen), given(40), given(90)), reproduces}
 		}},
-		{"plain errors at 68 %", usual + "; plateaux given; confidence 68 %", nominal, 102, func(rng *rand.Rand) simulation {
+		{"plain errors at 68 per cent", usual + "; plateaux given; confidence 68 %", nominal, 102, func(rng *rand.Rand) simulation {
 			s := usualSlab()
 			st := s.study(usualProbe().measure(rng, s.seen), given(40), given(90))
 			st.Confidence = 0.68
@@ -74,7 +78,7 @@ func truthCases() []truthCase {
 		{"overlapping spots", usual + ", but spot sigma 0.8 um; errors correlated by the overlap; plateaux free", nominal, 105, drawFree(overlapProbe(gaussian(0.8 * um)))},
 		{"overlapping top-hats", usual + ", but a top-hat of 2 um; errors correlated by the overlap; plateaux free", nominal, 106,
 			drawFree(overlapProbe(traverse.Spot{Kind: traverse.TopHat, Width: 2 * um}))},
-		{"overlapping spots, counting errors", usual + ", but spot sigma 0.8 um; errors and study independent; plateaux free", nominal, 107, func(rng *rand.Rand) simulation {
+		{"overlapping spots with counting errors", usual + ", but spot sigma 0.8 um; errors and study independent; plateaux free", nominal, 107, func(rng *rand.Rand) simulation {
 			p := overlapProbe(gaussian(0.8 * um))
 			p.shared = false
 			return drawFree(p)(rng)
@@ -85,19 +89,19 @@ func truthCases() []truthCase {
 			addElement(st, usualProbe().measure(rng, s.seen))
 			return simulation{st, reproduces}
 		}},
-		{"uncertain law", "twice, under one law whose ln D and E are drawn from their errors, 0.25 in log10 D and 5 % in E, 150 C below mid-range: " + usual + "; plateaux free", nominal, 109, drawUncertainLaw},
+		{"uncertain law", "twice, under one law whose ln D and E are drawn from their errors, 0.25 in log10 D and 5 % in E, 150 C below mid-range: " + usual + "; plateaux free; reproduces with law errors", atLeast, 109, drawUncertainLaw},
 		{"tilt range", usual + "; tilt drawn from 0..30 deg, boundary 60 um from the zero; plateaux free", atLeast, 110, drawTilt(0)},
 		{"tilt and origin ranges", usual + "; tilt drawn from 0..30 deg, origin from -5..5 um; plateaux free", atLeast, 111, drawTilt(5 * um)},
 		{"free edges", usual + ", but sqrt(2 G) 1 um and points over 6 um; edge drawn from 0..2 um; plateaux free", atLeast, 112, drawEdge},
 		{"below detection", usual + ", but core drawn from 0..6 ppm; limit 6 ppm, values below it known as such; plateaux free", atLeast, 113, drawBelow(func(rng *rand.Rand) float64 { return 6 * rng.Float64() })},
 		{"core at the limit of detection", usual + ", but core 7 ppm; limit 6 ppm, values below it known as such; plateaux free", atLeast, 114, drawBelow(func(*rand.Rand) float64 { return 7 })},
 		{"finer than the spot", usual + ", but sqrt(2 G) 0.1 um, spot sigma 0.8 um, counting errors; plateaux free", atLeast, 115, drawFine(reproduces)},
-		{"finer than the spot: upper limit above the truth", "as finer than the spot", atLeast, 116, drawFine(func(r *Result) bool {
+		{"upper limit", "as finer than the spot; the upper limit is above the truth", atLeast, 116, drawFine(func(r *Result) bool {
 			o := &r.Paths[0].Outcome
 			return 1 <= o.Shift95[1]
 		})},
 		{"homogenised", "40 and 90 ppm halves of a sealed slab of 120 um, plateaux given, 1 ppm of 32 left; 41 points over all of it, errors 3 ppm", atLeast, 117, drawHomogenised(reproduces)},
-		{"homogenised: lower limit below the truth", "as homogenised", atLeast, 118, drawHomogenised(func(r *Result) bool {
+		{"lower limit", "as homogenised; the lower limit is below the truth", atLeast, 118, drawHomogenised(func(r *Result) bool {
 			o := &r.Paths[0].Outcome
 			return o.Shift95[0] <= 1
 		})},
@@ -233,16 +237,16 @@ func faultCases() []truthCase {
 		{"errors halved", usual + ", stated as 1 ppm; plateaux free", mostly, 202, drawErrors(0.5, "errors too small or model wrong")},
 		{"errors doubled", usual + ", stated as 4 ppm; plateaux free", mostly, 203, drawErrors(2, "errors inflated")},
 		{"one outlier", usual + ", one value anywhere 12 ppm (6 errors) too high or too low; plateaux free; its line is named", mostly, 204, drawOutlier(usualProbe())},
-		{"one outlier, overlapping spots", usual + ", but spot sigma 0.8 um and errors correlated by the overlap; one value anywhere 12 ppm (6 errors) too high or too low; plateaux free; its line is named", mostly, 205,
+		{"one outlier among overlapping spots", usual + ", but spot sigma 0.8 um and errors correlated by the overlap; one value anywhere 12 ppm (6 errors) too high or too low; plateaux free; its line is named", mostly, 205,
 			drawOutlier(overlapProbe(gaussian(0.8 * um)))},
-		{"wrong start: a hidden zone", usual + "; a zone 4 um wide and 12 ppm higher, 6 um out from the boundary, is not in the study; plateaux free", mostly, 206, func(rng *rand.Rand) simulation {
+		{"hidden zone", usual + "; a zone 5 um wide and 20 ppm higher, 6 um out from the boundary, is not in the study; plateaux free", mostly, 206, func(rng *rand.Rand) simulation {
 			s := usualSlab()
 			truth := *s
-			truth.values = []float64{40, 90, 102, 90}
-			truth.bounds = []float64{boundary, boundary + 6*um, boundary + 10*um}
+			truth.values = []float64{40, 90, 110, 90}
+			truth.bounds = []float64{boundary, boundary + 6*um, boundary + 11*um}
 			return simulation{s.study(usualProbe().measure(rng, truth.seen), unknown, unknown), wrongShape("inside")}
 		}},
-		{"wrong start: a plateau", usual + "; core given as 44 ppm, mantle free", mostly, 207, func(rng *rand.Rand) simulation {
+		{"wrong plateau", usual + "; core given as 44 ppm, mantle free", mostly, 207, func(rng *rand.Rand) simulation {
 			s := usualSlab()
 			return simulation{s.study(usualProbe().measure(rng, s.seen), given(44), unknown), wrongShape("inside")}
 		}},
