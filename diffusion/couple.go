@@ -3,6 +3,7 @@ package diffusion
 import (
 	"fmt"
 	"math"
+	"sync/atomic"
 )
 
 // A trace element in a zoned host follows u = C/K, K its crystal/melt partition
@@ -15,15 +16,25 @@ import (
 // Gummel 1969, IEEE Trans. Electron Devices 16, 64-77). So an element in
 // equilibrium stays so to round-off across any jump of the host, and with V K in
 // the place of V the matrix is the one of sweep.go. C is the conserved variable,
-// and K is evaluated anew in every solve, at the step's mean of 1/T.
+// and K is evaluated anew in every solve, at the step's mean of 1/T. Only ratios
+// of K count: all are in units of the K of one cell.
 
 // operator is what a solve needs of the grid.
 type operator struct {
 	vol  []float64 // V, or V K
 	cond []float64 // conductance of each face at unit D
-	k    []float64 // K of each cell; nil without coupling
+	k    []float64 // mean K of each cell; nil without coupling
 	kIn  float64   // K at the inner and the outer end
 	kOut float64
+	all  []float64 // of a coupled problem: k, cond, kIn and kOut; then vol
+}
+
+// resize makes room for n cells of a coupled problem and returns the part that
+// depends on temperature alone.
+func (op *operator) resize(n int) []float64 {
+	op.all = resized(op.all, 3*n+3)
+	op.k, op.cond, op.vol = op.all[:n:n], op.all[n:2*n+1:2*n+1], op.all[2*n+3:]
+	return op.all[: 2*n+3 : 2*n+3]
 }
 
 // hostGrid is the host as the cells see it.
@@ -31,11 +42,18 @@ type hostGrid struct {
 	half    []float64 // of each cell, the integral of dr/(r^n D) over the half at its inner face and the half at its outer
 	x       []float64 // composition in the middle of each cell
 	atFaces []float64 // of each cell, at its inner and its outer face, inside it
+	weights []float64 // of each cell, of K at its inner face, in its middle and at its outer face in its mean
+
+	panels []atomic.Pointer[panel] // by 1/T, made when first asked for
+	width  float64                 // of each, 1/K
 }
 
 func (p *Problem) layHost(g *grid) *hostGrid {
 	n := len(g.centres)
-	h := &hostGrid{half: make([]float64, 2*n), x: make([]float64, n), atFaces: make([]float64, 2*n)}
+	h := &hostGrid{
+		half: make([]float64, 2*n), x: make([]float64, n),
+		atFaces: make([]float64, 2*n), weights: make([]float64, 0, 3*n),
+	}
 	for i := range n {
 		a, b := g.faces[i], g.faces[i+1]
 		h.half[2*i], h.half[2*i+1] = math.Inf(1), p.halfCell(b, a)
@@ -49,32 +67,70 @@ func (p *Problem) layHost(g *grid) *hostGrid {
 			h.atFaces[2*i] += p.Host(a)
 			h.atFaces[2*i+1] += p.Host(b)
 		}
+		inner, outer := meanWeights(p.Shape, a, b)
+		h.weights = append(h.weights, inner, 1-inner-outer, outer)
 	}
+	h.layPanels(p.LnK)
 	return h
+}
+
+// meanWeights returns the weights of a cell's inner and outer face with which,
+// its centroid having the rest, the mean over its volume of any parabola is
+// exact; in a slab Simpson's, 1/6 and 1/6. Taking the middle for the mean would
+// be of second order too, but an element at rest would be off by it for ever.
+func meanWeights(shape Shape, a, b float64) (inner, outer float64) {
+	m, e := (a+b)/2, (b-a)/2
+	shift, square := 0.0, e*e/3 // means of r - m and of its square
+	switch shape {
+	case Cylinder:
+		shift = e * e / (3 * m)
+	case Ball:
+		volume := m*m + e*e/3
+		shift = 2 * m * e * e / (3 * volume)
+		square = e * e * (m*m/3 + e*e/5) / volume
+	}
+	variance := square - shift*shift
+	return variance / (2 * e * (e + shift)), variance / (2 * e * (e - shift))
 }
 
 // couple fills the field's operator for a temperature, K.
 func (f *Field) couple(p *Plan, temp float64) *operator {
-	op, h, n := &f.op, p.host, len(p.host.x)
-	op.vol, op.k, op.cond = resized(op.vol, n), resized(op.k, n), resized(op.cond, n+1)
-	lnK := p.problem.LnK
+	op, h := &f.op, p.host
+	values := op.resize(len(h.x))
+	if at := h.panelAt(p.problem.LnK, 1/temp); at != nil {
+		at.read(values, 1/temp)
+	} else {
+		h.evaluate(values, p.problem.LnK, temp)
+	}
+	op.kIn, op.kOut = values[len(values)-2], values[len(values)-1]
+	k, vol := op.k[:len(h.x)], op.vol[:len(h.x)]
+	for i, v := range p.grid.volumes[:len(h.x)] {
+		vol[i] = float64(v * k[i])
+	}
+	return op
+}
+
+// evaluate fills in K of the cells, the conductances and K at both ends.
+func (h *hostGrid) evaluate(dst []float64, lnK func(x, temp float64) float64, temp float64) {
+	n := len(h.x)
+	k, cond, ends := dst[:n], dst[n:2*n+1], dst[2*n+1:]
+	unit := lnK(h.x[n/2], temp)
 	inside := math.Inf(1) // resistance of the half cell inside the face in hand
 	for i, x := range h.x {
-		here := lnK(x, temp)
-		op.k[i] = math.Exp(here)
-		op.vol[i] = float64(p.grid.volumes[i] * op.k[i])
-		inner, outer := lnK(h.atFaces[2*i], temp), lnK(h.atFaces[2*i+1], temp)
+		inner, here, outer := lnK(h.atFaces[2*i], temp)-unit, lnK(x, temp)-unit, lnK(h.atFaces[2*i+1], temp)-unit
+		kInner, kOuter := math.Exp(inner), math.Exp(outer)
+		w := h.weights[3*i : 3*i+3]
+		k[i] = float64(w[0]*kInner) + float64(w[1]*math.Exp(here)) + float64(w[2]*kOuter)
 		r := h.half[2*i] * meanInverse(here, inner)
 		if i == 0 {
-			op.kIn, op.cond[0] = math.Exp(inner), 1/r
+			ends[0], cond[0] = kInner, 1/r
 		} else {
-			op.cond[i] = 1 / (inside + r)
+			cond[i] = 1 / (inside + r)
 		}
 		inside = h.half[2*i+1] * meanInverse(here, outer)
-		op.kOut = math.Exp(outer)
+		ends[1] = kOuter
 	}
-	op.cond[n] = 1 / inside
-	return op
+	cond[n] = 1 / inside
 }
 
 // meanInverse returns the mean of 1/K over a stretch along which ln K goes
@@ -93,11 +149,150 @@ func meanInverse(a, b float64) float64 {
 // evenK is the change of ln K below which sinh(h)/h is its series to round-off.
 const evenK = 1e-3
 
+// panel holds what evaluate gives over a range of 1/T, as polynomials that are
+// right to round-off: evaluating K anew for every cell in every solve would take
+// ten times as long as the solve.
+type panel struct {
+	nodes [panelNodes]float64 // 1/T, 1/K, at which it was evaluated
+	forms []newtonForm
+	short bool // the last terms are nothing
+}
+
+// newtonForm is a polynomial by its divided differences (Abramowitz and Stegun
+// 1964, 25.1.4 and 25.2.26).
+type newtonForm [panelNodes]float64
+
+const (
+	panelNodes = 8
+	shortForm  = 5
+	// panelReach is by how much ln K may change along a panel. Interpolation in 8
+	// Chebyshev nodes is then wrong by 2 (reach/4)^8/8! of K, 1e-17 at 0.1, and at
+	// twice the change still by less than round-off.
+	panelReach = 0.1
+	// panelError is how much the polynomials may miss at the ends and in the middle,
+	// where they are worst. An ln K of 12 is rounded by 2e-15 itself.
+	panelError   = 2e-14
+	coldestPanel = 300.0 // K: no panels below
+	// leastPanels keeps each narrow beside the 1/T it is at, for an ln K that is
+	// not linear in 1/T, and mostPanels their number.
+	leastPanels, mostPanels = 100, 1000
+)
+
+// panelOrder is the order of the nodes in the Newton forms: each far from those
+// before it, so that a form without its last terms is nearly as good as any.
+var panelOrder = [panelNodes]float64{0, 7, 4, 2, 6, 1, 5, 3}
+
+// layPanels divides 1/T into panels along which no cell's ln K changes, beside
+// that of the one whose K is the unit, by more than panelReach. How fast it
+// changes is seen at hostTrial; newPanel sees whether that was right.
+func (h *hostGrid) layPanels(lnK func(x, temp float64) float64) {
+	const warmer = hostTrial * 1.05
+	unit := h.x[len(h.x)/2]
+	moves := 0.0
+	for _, x := range append(h.atFaces[:len(h.atFaces):len(h.atFaces)], h.x...) {
+		cool, warm := lnK(x, hostTrial)-lnK(unit, hostTrial), lnK(x, warmer)-lnK(unit, warmer)
+		moves = math.Max(moves, math.Abs(warm-cool))
+	}
+	n := math.Ceil(moves / panelReach / (1.0/hostTrial - 1/warmer) / coldestPanel)
+	if n <= mostPanels { // not if NaN
+		h.panels = make([]atomic.Pointer[panel], max(int(n), leastPanels))
+		h.width = 1 / coldestPanel / float64(len(h.panels))
+	}
+}
+
+// panelAt returns the panel for a value of 1/T, nil where there is none: ln K
+// need not be smooth in T.
+func (h *hostGrid) panelAt(lnK func(x, temp float64) float64, coldness float64) *panel {
+	i := int(coldness / h.width)
+	if !(i >= 0 && i < len(h.panels)) {
+		return nil
+	}
+	at := h.panels[i].Load()
+	if at == nil {
+		at = h.newPanel(lnK, float64(i)*h.width)
+		h.panels[i].Store(at) // another goroutine may do the same, to the bit
+	}
+	if at.forms == nil {
+		return nil
+	}
+	return at
+}
+
+// newPanel returns the panel that begins at a value of 1/T, one without
+// polynomials if they are no good.
+func (h *hostGrid) newPanel(lnK func(x, temp float64) float64, from float64) *panel {
+	values, tried := make([]float64, 2*len(h.x)+3), make([]float64, 2*len(h.x)+3)
+	at := &panel{forms: make([]newtonForm, len(values))}
+	for j, place := range panelOrder {
+		at.nodes[j] = from + h.width/2*(1-math.Cos(math.Pi*(place+0.5)/panelNodes))
+		h.evaluate(values, lnK, 1/at.nodes[j])
+		at.add(j, values)
+	}
+	for _, at.short = range []bool{true, false} {
+		good := true
+		for _, part := range []float64{0.001, 0.5, 1} { // not 0, where the first begins
+			coldness := from + part*h.width
+			h.evaluate(values, lnK, 1/coldness)
+			at.read(tried, coldness)
+			good = good && same(tried, values)
+		}
+		if good {
+			return at
+		}
+	}
+	return &panel{}
+}
+
+// same says whether a is b within panelError.
+func same(a, b []float64) bool {
+	for i := range a {
+		if !(math.Abs(a[i]-b[i]) <= panelError*b[i]) {
+			return false
+		}
+	}
+	return true
+}
+
+// add takes in the values at node j.
+func (at *panel) add(j int, values []float64) {
+	for i, v := range values {
+		form := &at.forms[i]
+		for m := range j { // v becomes the divided difference of nodes 0 to m and j
+			v = (v - form[m]) / (at.nodes[j] - at.nodes[m])
+		}
+		form[j] = v
+	}
+}
+
+// read does what evaluate does.
+func (at *panel) read(dst []float64, coldness float64) {
+	var d [panelNodes]float64 // from the nodes
+	for j, node := range at.nodes {
+		d[j] = coldness - node
+	}
+	d0, d1, d2, d3 := d[0], d[1], d[2], d[3]
+	dst = dst[:len(at.forms)]
+	for i := range dst {
+		f := &at.forms[i]
+		v := f[shortForm-1]
+		if !at.short {
+			v = f[6] + float64(f[7]*d[6])
+			v = f[5] + float64(v*d[5])
+			v = f[4] + float64(v*d[4])
+		}
+		v = f[3] + float64(v*d3)
+		v = f[2] + float64(v*d2)
+		v = f[1] + float64(v*d1)
+		dst[i] = f[0] + float64(v*d0)
+	}
+}
+
 // potential returns C/K.
 func (f *Field) potential(op *operator, c []float64) []float64 {
 	f.u = resized(f.u, len(c))
+	k, u := op.k[:len(c)], f.u[:len(c)]
 	for i, v := range c {
-		f.u[i] = v / op.k[i]
+		u[i] = v / k[i]
 	}
 	return f.u
 }
