@@ -6,6 +6,7 @@ import (
 	"strconv"
 	"strings"
 
+	"bankfire/paths"
 	"bankfire/thermal"
 )
 
@@ -62,6 +63,16 @@ func openEnd(x float64) string {
 		return ""
 	}
 	return plain(x)
+}
+
+// shiftText prints the shift factor with its 95 % interval; where the data leave
+// a side open, the limit alone, because the best factor is then one of many.
+func shiftText(f *paths.Finding) string {
+	limits := intervalText(f.Shift95)
+	if f.Shift95[0] > 0 && !math.IsInf(f.Shift95[1], 1) {
+		return number(f.Shift) + " (" + limits + ")"
+	}
+	return limits
 }
 
 // intervalText prints an interval of a factor; a side that the data leave open

@@ -72,7 +72,7 @@ func findingCells(o *paths.Outcome, laws int) []string {
 	if o.Verdict == paths.Barred {
 		return make([]string, 5)
 	}
-	return []string{number(o.Shift) + " (" + intervalText(o.Shift95) + ")", tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
+	return []string{shiftText(&o.Finding), tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
 		number(math.Max(o.Above, 0)), leaningText(&o.WithLaws, laws)}
 }
 
@@ -211,14 +211,23 @@ func fitCells(q *paths.ProfileResult) []string {
 	return append(cells, number(math.Sqrt2*math.Exp(q.LnG/2)*1e6)+" um", celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")
 }
 
+// timesText is by what factor diffusion should differ; where the data set no
+// bound to it, by what factor at least.
+func timesText(best, least float64, open bool) string {
+	if open {
+		return "at least " + number(least) + " x"
+	}
+	return number(best) + " x"
+}
+
 // verdictInWords is the verdict with how far the path misses, or why it was
 // not run.
 func verdictInWords(p *paths.PathResult) string {
 	switch o := &p.Outcome; o.Verdict {
 	case paths.TooSharp:
-		return fmt.Sprintf("too sharp: needs %s x more diffusion", number(o.Shift))
+		return "too sharp: needs " + timesText(o.Shift, o.Shift95[0], math.IsInf(o.Shift95[1], 1)) + " more diffusion"
 	case paths.TooSmooth:
-		return fmt.Sprintf("too smooth: needs %s x less diffusion", number(1/o.Shift))
+		return "too smooth: needs " + timesText(1/o.Shift, 1/o.Shift95[1], o.Shift95[0] == 0) + " less diffusion"
 	case paths.WrongShape:
 		return "of wrong shape: no amount of diffusion along it fits"
 	case paths.AtOdds:
