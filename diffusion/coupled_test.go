@@ -41,6 +41,90 @@ func randomCoupled(r *rand.Rand, h *thermal.History, g, reach float64) *Problem 
 	return p
 }
 
+// TestCoupledErrorCoversTrueOne is TestStatedErrorCoversTrueOne in zoned hosts,
+// against a quarter of its cells and steps.
+func TestCoupledErrorCoversTrueOne(t *testing.T) {
+	const (
+		cases    = 150
+		covered  = 0.99
+		tooLarge = 10
+		floor    = 1e-10 // of the largest value: no measurement has as many digits
+	)
+	ratios := make([]float64, cases)
+	t.Run("problems", func(t *testing.T) {
+		for i := range ratios {
+			t.Run(fmt.Sprintf("problem=%d", i), func(t *testing.T) {
+				t.Parallel()
+				r := source(22, i)
+				h := randomHistory(t, r)
+				g := logUniform(r, 1e-10, 1e4)
+				p := randomCoupled(r, h, g, logUniform(r, 0.1, 12))
+				o := Options{Growth: defaultGrowth}
+				if r.IntN(2) == 0 {
+					o = Options{Cells: 40 + r.IntN(80), Growth: 0.1 + 0.3*r.Float64()}
+				}
+				stated, err, largest := statedAndTrue(t, p, o, h, g)
+				ratios[i] = (stated + floor*largest) / err
+				if !(ratios[i] >= 1) {
+					t.Logf("%v, %d zones, G/a^2 %.2g, options %+v: stated %.3g, true %.3g", p.Shape, len(p.Zones), g, o, stated, err)
+				}
+			})
+		}
+	})
+	slices.Sort(ratios)
+	missed, _ := slices.BinarySearch(ratios, 1)
+	t.Logf("stated/true: covered %d of %d, least %.3g, one in ten below %.3g, median %.3g, nine in ten below %.3g",
+		cases-missed, cases, ratios[0], ratios[cases/10], ratios[cases/2], ratios[cases*9/10])
+	if !(float64(cases-missed) >= covered*cases) || math.IsNaN(ratios[0]) {
+		t.Errorf("the stated error covers the true one in %d of %d problems, want %g of them", cases-missed, cases, covered)
+	}
+	if !(ratios[cases/2] <= tooLarge) {
+		t.Errorf("the median of stated/true is %.3g, want at most %d", ratios[cases/2], tooLarge)
+	}
+}
+
+// statedAndTrue returns the largest error over the cells that Audit states, the
+// largest difference from a finer solution, and the largest value in that.
+func statedAndTrue(t *testing.T, p *Problem, o Options, h *thermal.History, g float64) (stated, err, largest float64) {
+	t.Helper()
+	plan := newPlan(t, p, o)
+	got := audit(t, plan, h)
+	size := p.size() - p.R0
+	finer := cutFiner(t, plan, o, 4, g*size*size)
+	truth := onto(plan, finer, run(t, finer, h).Cols[0])
+	for j := range truth {
+		stated = math.Max(stated, math.Abs(got.StepErr[0][j])+math.Abs(got.CellErr[0][j]))
+		largest = math.Max(largest, math.Abs(truth[j]))
+	}
+	_, err = farthest(got.Cols[0], truth)
+	return stated, err, largest
+}
+
+// cutFiner is newFiner with cells and steps cut in parts.
+func cutFiner(tb testing.TB, p *Plan, o Options, parts int, g float64) *Plan {
+	tb.Helper()
+	var faces, fractions []float64
+	coarse := p.Faces()
+	for i := 1; i < len(coarse); i++ {
+		n := parts
+		for near(p.problem, coarse, i) && n < 512 && (coarse[i]-coarse[i-1])/float64(n) > math.Sqrt(g)/4 {
+			n *= 2
+		}
+		faces = append(faces, uniform(coarse[i-1], coarse[i], n)[:n]...)
+	}
+	faces = append(faces, coarse[len(coarse)-1])
+	from := 0.0
+	for _, f := range defaultFractions(defaultDamped, o.Growth, true) {
+		fractions = append(fractions, uniform(from, f, parts)[1:]...)
+		from = f
+	}
+	finer, err := compile(p.problem, faces, newSchedule(fractions, parts*defaultDamped, parts*lastDamped))
+	if err != nil {
+		tb.Fatal(err)
+	}
+	return finer
+}
+
 // coupledHold is the temperature, K, of the holds, along which K does not move.
 const coupledHold = 1073.15
 
@@ -390,13 +474,15 @@ func TestCoupledSideBySide(t *testing.T) {
 }
 
 // TestCoupledFieldsAreReused: nothing of one host is left in a field that is used
-// for another at the same temperature.
+// for another at the same temperature, or without one.
 func TestCoupledFieldsAreReused(t *testing.T) {
 	var plans []*Plan
 	var courses []*Course
 	for i := range 4 {
 		p := slabOf(testSize, nothing, 1, 1, 2)
-		p.Zones[0].Host, p.LnK = float64(i), fixedLnK(1)
+		if p.Zones[0].Host, p.LnK = float64(i), fixedLnK(1); i == 3 {
+			p.LnK, p.Own = nil, func(c float64) float64 { return 1 + c }
+		}
 		plans = append(plans, newPlan(t, p, Options{Faces: uniform(0, testSize, 20+20*(i%2))}))
 		courses = append(courses, newCourse(t, plans[i], holdOf(t, 0.1*testSize*testSize)))
 	}

@@ -102,7 +102,7 @@ func (p *Plan) span(h *thermal.History, t0, t1 float64) span {
 	p.attend(&s.inner, p.problem.Inner, h, times)
 	p.attend(&s.outer, p.problem.Outer, h, times)
 	if coupled {
-		s.coldness = p.average(h, coldnessOf(h), times)
+		s.coldness = p.leadEnds(p.average(h, coldnessOf(h), times))
 	}
 	if p.problem.source != nil {
 		s.middles, s.widths = p.clock(times)

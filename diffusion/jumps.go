@@ -86,7 +86,15 @@ func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
 		for p.grid.faces[face] < z.Outer {
 			face++
 		}
-		p.addEdge(err, p.starts[j], face, z.Edge, total)
+		if p.host == nil {
+			p.addEdge(err, p.starts[j], face, z.Edge, total)
+		} else {
+			p.addHostEdge(err, p.starts[j], face, z.Edge, job)
+		}
+	}
+	if p.host != nil {
+		p.addWall(err, p.starts[j], job, false)
+		p.addWall(err, p.starts[j], job, true)
 	}
 	p.addRim(err, f, job, j, total, false)
 	p.addRim(err, f, job, j, total, true)

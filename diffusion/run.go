@@ -102,9 +102,7 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 	p.halved.runOne(dst.other, job, false)
 	for j, c := range dst.Cols {
 		p.cellError(dst.CellErr[j], c, dst.other.Cols[j])
-		if p.host == nil {
-			p.addJumps(dst.CellErr[j], dst, job, j)
-		}
+		p.addJumps(dst.CellErr[j], dst, job, j)
 		for i := range dst.CellErr[j] {
 			dst.CellErr[j][i] *= safety
 		}
@@ -179,8 +177,7 @@ func (p *Plan) operator(f *Field, sp *span, k int, rough bool) *operator {
 	case p.host != nil:
 		return f.couple(p, 1/sp.coldness.of(rough)[k])
 	case p.problem.Own != nil:
-		f.op.vol = p.still.vol
-		f.op.cond = append(f.op.cond[:0], p.still.cond...)
+		f.op = operator{vol: p.still.vol, cond: append(f.op.cond[:0], p.still.cond...)}
 		return &f.op
 	}
 	return &p.still
