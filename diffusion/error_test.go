@@ -32,11 +32,11 @@ func newFiner(tb testing.TB, p *Plan, o Options, g float64) *Plan {
 	end := 0
 	var fractions []float64
 	from := 0.0
-	for _, f := range defaultFractions(defaultDamped, growth, p.problem.moving()) {
+	for _, f := range defaultFractions(defaultDamped, growth, p.problem.endsFinely()) {
 		fractions = append(fractions, uniform(from, f, parts)[1:]...)
 		from = f
 	}
-	if p.problem.moving() {
+	if p.problem.endsFinely() {
 		end = parts * lastDamped
 	}
 	finer, err := compile(p.problem, faces, newSchedule(fractions, parts*defaultDamped, end))

@@ -147,10 +147,10 @@ func (o Options) schedule(p *Problem) (schedule, error) {
 		return nil, fmt.Errorf("diffusion: steps cannot grow by %g", growth)
 	}
 	end := 0
-	if p.moving() {
+	if p.endsFinely() {
 		end = min(damp, lastDamped)
 	}
-	return newSchedule(defaultFractions(damp, growth, p.moving()), damp, end), nil
+	return newSchedule(defaultFractions(damp, growth, p.endsFinely()), damp, end), nil
 }
 
 // everySecond returns every second face, or nil where a zone boundary or end
@@ -176,6 +176,11 @@ func (p *Problem) moving() bool {
 	moves := func(r Rim) bool { return r.Given != nil || r.Kind == Transfer }
 	return slices.ContainsFunc(p.Inner, moves) || slices.ContainsFunc(p.Outer, moves)
 }
+
+// endsFinely reports whether the last steps are to be short and damped: under a rim
+// that moves, and where D follows the element itself. There a steep front leaves
+// waves between cells that it crosses while the steps are long.
+func (p *Problem) endsFinely() bool { return p.Own != nil || p.moving() }
 
 // events returns the times after 0 at which a rim changes its kind or jumps.
 func (p *Problem) events() []float64 {
