@@ -26,7 +26,7 @@ func (p *Plan) openBook(c []float64) book {
 }
 
 func (b *book) see(value float64) {
-	b.lo, b.hi = math.Min(b.lo, value), math.Max(b.hi, value)
+	b.lo, b.hi = min(b.lo, value), max(b.hi, value)
 }
 
 // enter books one solve from the values of the first and last cell before and
@@ -60,7 +60,7 @@ func (b *book) close(s *Stats, p *Plan, c []float64) {
 	content, worst := 0.0, 0.0
 	for i, v := range p.grid.volumes {
 		content += v * c[i]
-		worst = math.Max(worst, math.Max(c[i]-b.hi, b.lo-c[i]))
+		worst = max(worst, c[i]-b.hi, b.lo-c[i])
 	}
 	if b.scale > 0 {
 		s.MassDrift = math.Max(0, math.Abs(content-b.start-b.inflow)-b.noise) / b.scale

@@ -41,9 +41,9 @@ func (m *means) of(rough bool) []float64 {
 // ending is what holds at one end during a span.
 type ending struct {
 	open     bool
-	rim      int   // index into Problem.Inner or Outer
-	value    means // of a rim that is given as a function of time
-	exchange means // integrals of k dt, m, of mass transfer
+	rim      int      // index into Problem.Inner or Outer
+	value    means    // of a rim that is given as a function of time
+	exchange exchange // of mass transfer
 }
 
 // most is a diffusion integral, m2, beyond which no crystal changes any more.
@@ -120,12 +120,15 @@ func (p *Plan) attend(e *ending, rims []Rim, h *thermal.History, times []float64
 	if !e.follows(rims) {
 		return
 	}
-	r := rims[e.rim]
+	r := &rims[e.rim]
 	if r.Given != nil {
-		e.value = p.leadEnds(p.average(h, r.Given, times))
+		e.value = p.average(h, r.Given, times)
 	}
 	if r.Kind == Transfer {
-		e.exchange = p.exchange(h, r.Rate, times)
+		e.exchange = p.exchange(h, r, times, e.value)
+	}
+	if r.Given != nil {
+		e.value = p.leadEnds(e.value)
 	}
 }
 
@@ -192,13 +195,19 @@ func pieces(breaks []float64, t0, t1 float64) []float64 {
 //
 //	integral of v dG / integral of dG.
 func (p *Plan) average(h *thermal.History, v *Given, times []float64) means {
-	breaks := slices.Concat(h.Breaks(nil), v.Breaks, v.Jumps)
-	slices.Sort(breaks)
+	breaks := mergedBreaks(h, v)
 	fine := make([]float64, len(p.steps))
 	for i := range fine {
 		fine[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
 	}
 	return means{fine, p.steps.mergedMeans(fine)}
+}
+
+// mergedBreaks returns the times at which a history or a value along it may break.
+func mergedBreaks(h *thermal.History, v *Given) []float64 {
+	breaks := slices.Concat(h.Breaks(nil), v.Breaks, v.Jumps)
+	slices.Sort(breaks)
+	return breaks
 }
 
 // leadEnds makes the means those of a rim that the damped last steps see.

@@ -1,6 +1,10 @@
 package diffusion
 
-import "math"
+import (
+	"math"
+
+	"bankfire/thermal/numeric"
+)
 
 // D that depends on the element's own composition C makes the problem
 // nonlinear. With w the state half way through a Crank-Nicolson step (the one
@@ -9,72 +13,233 @@ import "math"
 //
 //	V (w - c) = s F(w)
 //
-// by Newton iterations until they settle: two or three where D changes smoothly,
-// one for each cell that a front into material with D = 0 crosses. Two alone would
-// be second order too, but nothing would keep a long step from running away. At
-// a face D enters as the arithmetic mean of its two cells,
+// by Newton iterations. At a face D enters as the arithmetic mean of its two
+// cells,
 //
 //	F = cond (h(C_L) + h(C_R))/2 (u_L - u_R),  u = C/K,
 //
-// so that such a front moves. Values are never clipped; D below C = 0 is D at 0.
+// so that a front into material with D = 0 moves. Values are never clipped; D
+// below C = 0 is D at 0.
+//
+// The first w is c as it would be if it went on as in the step before. That
+// misses by about the square of the step, and one iteration by the square of
+// that: enough for second order. More follow until what is left is small beside
+// what the step itself misses. Each takes away what it finds from the whole
+// balance, so mass is kept by any number of them.
 
-// newton is the scratch of a nonlinear step.
+// newton is the scratch of a nonlinear step, and what the next one takes from it.
 type newton struct {
 	before, change  []float64 // c; w - c
-	factor, slope   []float64 // of each cell: D's factor at w and its derivative
-	flux            []float64 // of each face, outwards, times s
-	onward, against []float64 // by how much it grows with the cell inside and falls with the cell outside, never negative
-	rhs             []float64
+	length          float64   // of the solve that made change; 0 is none
+	factor          []float64 // of each cell: D's factor at w
+	onward, against []float64 // of each face: by how much s F grows with u inside and falls with u outside, never negative
+	pivot, on, back []float64 // of each cell: reciprocal of its pivot, and times that what goes onwards and comes back
+	rhs             []float64 // the right-hand side, then the change of u
+	inflow, outflow float64   // s F through the innermost and the outermost face
+	lo, hi          float64   // of u, in the crystal and behind open ends: between them w lies
+	size, extent    float64   // of C there: the largest, without its sign, and the range
+	changed         float64   // largest change, without its sign
 }
 
 func (w *newton) resize(n int) {
-	for _, v := range []*[]float64{&w.before, &w.change, &w.factor, &w.slope, &w.rhs} {
+	for _, v := range []*[]float64{&w.before, &w.change, &w.factor, &w.pivot, &w.on, &w.back, &w.rhs} {
 		*v = resized(*v, n)
 	}
-	for _, v := range []*[]float64{&w.flux, &w.onward, &w.against} {
-		*v = resized(*v, n+1)
-	}
+	w.onward, w.against = resized(w.onward, n+1), resized(w.against, n+1)
 }
 
-// nonlinear does one step of a problem with D that depends on C.
-func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bool, b *book) {
-	c, w := f.Cols[0], &f.newton
-	w.resize(len(c))
-	copy(w.before, c)
-	clear(w.change)
+// mostNewton is how many iterations there are at most.
+const mostNewton = 40
+
+// nonlinear does one step of a problem with D that depends on C, and returns how
+// many solves it took.
+func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bool, b *book) int {
+	c, w, own := f.Cols[0], &f.newton, p.problem.Own
 	s := st.length(g)
-	var op *operator
-	var e ends
-	for range mostNewton {
-		op = p.operator(f, sp, k, rough)
-		w.look(p.problem.Own, c)
-		op.cond[0] *= (w.factor[0] + p.factorBehind(&sp.inner, p.problem.Inner, k, rough, w.factor[0])) / 2
-		n := len(c)
-		op.cond[n] *= (w.factor[n-1] + p.factorBehind(&sp.outer, p.problem.Outer, k, rough, w.factor[n-1])) / 2
-		e = p.ends(op, sp, 0, k, st, g, rough)
-		w.fluxes(op, s, e, c)
-		for i, v := range p.grid.volumes {
-			w.rhs[i] = w.flux[i] - w.flux[i+1] - float64(v*w.change[i])
+	op := p.operator(f, sp, k, rough)
+	in, out := p.mouths(op, sp, k, st, s, rough)
+	lo, hi := w.guess(c, s)
+	w.bound(f, op, &in, &out, lo, hi)
+	if p.problem.source != nil {
+		w.lo, w.hi = math.Inf(-1), math.Inf(1)
+	}
+	solves, anew := 0, true
+	for left := w.extent; solves < mostNewton; {
+		solves++
+		u := f.driving(op, c)
+		w.confine(op, c, u)
+		w.look(own, c)
+		w.open(own, &in, &out, c, anew)
+		if anew {
+			w.slopes(own, op, s, c, u)
+			w.factorise(op.vol)
 		}
+		w.balance(p.grid.volumes, op.cond, s, u)
 		p.addSource(w.rhs, sp, k, st, rough)
-		w.solve(p.grid.volumes)
-		moved, size := 0.0, 0.0
-		for i, d := range w.rhs {
-			w.change[i] += d
-			c[i] = w.before[i] + w.change[i]
-			moved, size = math.Max(moved, math.Abs(d)), math.Max(size, math.Abs(c[i]))
-		}
-		if moved <= newtonError*size {
+		w.sweep()
+		moved := w.move(op, c)
+		if w.settled(moved, left, st.euler) {
 			break
 		}
+		anew = moved > slowNewton*left
+		left = moved
 	}
+	in.enter(b, w.inflow-float64(w.against[0]*w.rhs[0]), w.against[0], st.euler)
+	n := len(c)
+	out.enter(b, -w.outflow-float64(w.onward[n]*w.rhs[n-1]), w.onward[n], st.euler)
 	if !st.euler {
 		for i, d := range w.change {
 			c[i] = w.before[i] + float64(2*d)
 		}
 	}
-	n := len(c) - 1
-	b.enter(op, e, st.euler, w.before[0], w.before[n], c[0], c[n])
+	return solves
+}
+
+// slowNewton is the part of what was left that an iteration may leave without the
+// slopes being taken anew.
+const slowNewton = 0.1
+
+// guess takes c to where the last change would bring it, if that was made by a
+// step about as long as this one, of length s. It returns the least and the
+// greatest value before.
+func (w *newton) guess(c []float64, s float64) (lo, hi float64) {
+	if w.length == 0 {
+		w.resize(len(c))
+	}
+	ratio := s / w.length
+	if !(ratio <= longestGuess) {
+		ratio = 0
+		clear(w.change)
+	}
+	before, change := w.before[:len(c)], w.change[:len(c)]
+	lo, hi = c[0], c[0]
+	for i, v := range c {
+		lo, hi = leastMost(lo, hi, v)
+		d := float64(change[i] * ratio)
+		before[i], change[i], c[i] = v, d, v+d
+	}
+	w.length = s
+	return lo, hi
+}
+
+// longestGuess is how much longer a step may be than the one that it goes on
+// from.
+const longestGuess = 2
+
+// bound takes the range of values in the crystal, lo to hi, and behind its ends.
+// No state after a step of backward Euler, and none half way through one of
+// Crank-Nicolson, leaves that of u.
+func (w *newton) bound(f *Field, op *operator, in, out *mouth, lo, hi float64) {
+	lo, hi = in.widen(lo, hi, 1)
+	lo, hi = out.widen(lo, hi, 1)
+	w.size, w.extent = max(-lo, hi), hi-lo
+	w.lo, w.hi = lo, hi
+	if op.k == nil {
+		return
+	}
+	lo, hi = math.Inf(1), math.Inf(-1)
+	for _, u := range f.potential(op, w.before) {
+		lo, hi = leastMost(lo, hi, u)
+	}
+	lo, hi = in.widen(lo, hi, in.k)
+	w.lo, w.hi = out.widen(lo, hi, out.k)
+}
+
+// leastMost takes one more value into a range.
+func leastMost(lo, hi, value float64) (float64, float64) {
+	if value < lo {
+		lo = value
+	}
+	if value > hi {
+		hi = value
+	}
+	return lo, hi
+}
+
+// confine brings the state c, of potential u, back to where it must lie, from
+// where an iteration has left it. So none runs away, and what the last one found
+// stays as it is.
+func (w *newton) confine(op *operator, c, u []float64) {
+	for i, v := range u {
+		if v >= w.lo && v <= w.hi {
+			continue
+		}
+		v = min(max(v, w.lo), w.hi)
+		u[i], c[i] = v, v
+		if op.k != nil {
+			c[i] = v * op.k[i]
+		}
+		w.change[i] = c[i] - w.before[i]
+	}
+}
+
+// look takes D's factor in the state c.
+func (w *newton) look(own func(float64) float64, c []float64) {
+	factor := w.factor[:len(c)]
+	for i, v := range c {
+		if v < 0 {
+			v = 0
+		}
+		factor[i] = own(v)
+	}
+}
+
+// slopes fills in by how much the fluxes through the faces inside change with u.
+// Where D changes little between two cells and u is C, the flux is nearly the
+// fall of the integral of D: then the slopes are D itself.
+func (w *newton) slopes(own func(float64) float64, op *operator, s float64, c, u []float64) {
+	n := len(u)
+	factor, cond := w.factor[:n], op.cond[:n]
+	onward, against := w.onward[:n], w.against[:n]
+	for i := 1; i < n; i++ {
+		a := s * cond[i]
+		left, right := factor[i-1], factor[i]
+		sum := left + right
+		if op.k == nil && math.Abs(left-right) <= alike*sum {
+			onward[i], against[i] = float64(a*left), float64(a*right)
+			continue
+		}
+		mean, steep := float64(a*sum)/2, float64(a*(u[i-1]-u[i]))/2
+		left, right = w.slope(own, c, i-1), w.slope(own, c, i)
+		if op.k != nil {
+			left *= op.k[i-1]
+			right *= op.k[i]
+		}
+		onward[i] = max(0, mean+float64(steep*left))
+		against[i] = max(0, mean-float64(steep*right))
+	}
+}
+
+// alike is the part of its sum by which D may differ between two cells for the
+// slopes to be D: they are then right to a hundredth.
+const alike = 0.1
+
+// slope returns by how much D's factor grows with c in cell i.
+func (w *newton) slope(own func(float64) float64, c []float64, i int) float64 {
+	d := slopeStep * w.size
+	if d == 0 {
+		return 0
+	}
+	return (own(max(c[i], 0)+d) - w.factor[i]) / d
+}
+
+// slopeStep is how far beside a value, as a part of the largest, D is looked at
+// for its slope: about the root of round-off.
+const slopeStep = 1e-7
+
+// balance fills in by how much V (w - c) misses s F at the state of potential u.
+func (w *newton) balance(vol, cond []float64, s float64, u []float64) {
+	n := len(u)
+	factor, change, rhs := w.factor[:n], w.change[:n], w.rhs[:n]
+	cond, vol = cond[:n], vol[:n]
+	half := s / 2
+	flux, h, v := w.inflow, factor[0], u[0]
+	for i := 1; i < n; i++ {
+		next := float64(half * cond[i] * (h + factor[i]) * (v - u[i]))
+		rhs[i-1] = flux - next - float64(vol[i-1]*change[i-1])
+		flux, h, v = next, factor[i], u[i]
+	}
+	rhs[n-1] = flux - w.outflow - float64(vol[n-1]*change[n-1])
 }
 
 // addSource adds the problem's source over the part of the step that is solved
@@ -92,92 +257,242 @@ func (p *Plan) addSource(rhs []float64, sp *span, k int, st step, rough bool) {
 	}
 }
 
-// When Newton's iterations have settled, as a part of the largest value, and
-// how many there are at most.
-const (
-	newtonError = 1e-9
-	mostNewton  = 40
-)
-
-// look takes D's factor and its slope at the state c.
-func (w *newton) look(own func(float64) float64, c []float64) {
-	size := 0.0
-	for _, v := range c {
-		size = math.Max(size, math.Abs(v))
-	}
-	d := slopeStep * size
-	for i, v := range c {
-		v = math.Max(v, 0)
-		w.factor[i] = own(v)
-		w.slope[i] = 0
-		if low := math.Max(v-d, 0); v+d > low {
-			w.slope[i] = (own(v+d) - own(low)) / (v + d - low)
-		}
-	}
-}
-
-// slopeStep is how far beside a value, as a part of the largest, D is looked at
-// for its slope: the cube root of round-off.
-const slopeStep = 6e-6
-
-// factorBehind is D's factor at what is behind an open end, other at a sealed
-// one.
-func (p *Plan) factorBehind(e *ending, rims []Rim, k int, rough bool, other float64) float64 {
-	if !e.open {
-		return other
-	}
-	return p.problem.Own(math.Max(e.behind(rims, k, rough), 0))
-}
-
-// fluxes fills in what goes through each face at the state c, and its slopes.
-func (w *newton) fluxes(op *operator, s float64, e ends, c []float64) {
-	n := len(c)
-	k := func(i int) float64 {
-		if op.k == nil {
-			return 1
-		}
-		return op.k[i]
-	}
-	w.flux[0], w.onward[0], w.against[0] = float64(e.kIn*(e.vIn-c[0]/k(0))), 0, e.kIn/k(0)
-	w.flux[n], w.onward[n], w.against[n] = float64(e.kOut*(c[n-1]/k(n-1)-e.vOut)), e.kOut/k(n-1), 0
-	for i := 1; i < n; i++ {
-		left, right := k(i-1), k(i)
-		half := s * op.cond[i] / 2
-		mean := float64(half * (w.factor[i-1] + w.factor[i]))
-		fall := c[i-1]/left - c[i]/right
-		w.flux[i] = float64(mean * fall)
-		w.onward[i] = math.Max(0, mean/left+float64(half*w.slope[i-1]*fall))
-		w.against[i] = math.Max(0, mean/right-float64(half*w.slope[i]*fall))
-	}
-}
-
-// solve solves (V + slopes) d = rhs in place, from both ends to the middle. As
-// in sweep.go only positive numbers are added: a cell of excess e that drives a
-// outwards and is driven b by the next one hands on b e/(e + a).
-func (w *newton) solve(vol []float64) {
+// factorise prepares for sweep to solve (V K + slopes) d = rhs, from both ends to
+// the middle. As in sweep.go only positive numbers are added: a cell of excess e
+// that drives a outwards and is driven b by the next one hands on b e/(e + a).
+func (w *newton) factorise(vol []float64) {
 	n := len(vol)
 	m := n / 2
+	pivot, on, back := w.pivot[:n], w.on[:n], w.back[:n]
+	onward, against := w.onward[:n+1], w.against[:n+1]
+	x, y := against[0], onward[n]
+	i, j := 0, n-1
+	if n&1 == 0 { // the left chain is one cell longer
+		e, a := vol[0]+x, onward[1]
+		inv := 1 / (e + a)
+		pivot[0], on[0], back[0] = inv, float64(a*inv), float64(against[1]*inv)
+		x = float64(back[0] * e)
+		i = 1
+	}
+	for ; i < m; i, j = i+1, j-1 {
+		e, a := vol[i]+x, onward[i+1]
+		f, b := vol[j]+y, against[j]
+		invA, invB := 1/(e+a), 1/(f+b)
+		backA, backB := float64(against[i+1]*invA), float64(onward[j]*invB)
+		x, y = float64(backA*e), float64(backB*f)
+		pivot[i], on[i], back[i] = invA, float64(a*invA), backA
+		pivot[j], on[j], back[j] = invB, float64(b*invB), backB
+	}
+	pivot[m] = 1 / (vol[m] + x + y)
+}
+
+// sweep solves in place of the right-hand side.
+func (w *newton) sweep() {
 	d := w.rhs
-	pivot, back := w.factor, w.slope // no longer needed
-	x := w.against[0]
-	for i := range m {
-		e := vol[i] + x
-		pivot[i], back[i] = 1/(e+w.onward[i+1]), w.against[i+1]
-		x = float64(float64(w.against[i+1]*e) * pivot[i])
-		d[i+1] += float64(float64(w.onward[i+1]*d[i]) * pivot[i])
+	n := len(d)
+	m := n / 2
+	pivot, on, back := w.pivot[:n], w.on[:n], w.back[:n]
+	x, y := 0.0, 0.0
+	i, j := 0, n-1
+	if n&1 == 0 {
+		x = float64(on[0] * d[0])
+		i = 1
 	}
-	y := w.onward[n]
-	for j := n - 1; j > m; j-- {
-		e := vol[j] + y
-		pivot[j], back[j] = 1/(e+w.against[j]), w.onward[j]
-		y = float64(float64(w.onward[j]*e) * pivot[j])
-		d[j-1] += float64(float64(w.against[j]*d[j]) * pivot[j])
+	for ; i < m; i, j = i+1, j-1 {
+		a, b := d[i]+x, d[j]+y
+		d[i], d[j] = a, b
+		x, y = float64(on[i]*a), float64(on[j]*b)
 	}
-	d[m] /= vol[m] + x + y
-	for i := m - 1; i >= 0; i-- {
-		d[i] = float64((d[i] + float64(back[i]*d[i+1])) * pivot[i])
+	d[m] = float64((d[m] + x + y) * pivot[m])
+	x, y = d[m], d[m]
+	i, j = m-1, m+1
+	for ; j < n; i, j = i-1, j+1 {
+		x = float64(d[i]*pivot[i]) + float64(back[i]*x)
+		y = float64(d[j]*pivot[j]) + float64(back[j]*y)
+		d[i], d[j] = x, y
 	}
-	for j := m + 1; j < n; j++ {
-		d[j] = float64((d[j] + float64(back[j]*d[j-1])) * pivot[j])
+	if i == 0 {
+		d[0] = float64(d[0]*pivot[0]) + float64(back[0]*x)
 	}
+}
+
+// move adds what a sweep has found to the state, and returns the largest value
+// that c has moved by.
+func (w *newton) move(op *operator, c []float64) float64 {
+	n := len(c)
+	before, change, rhs := w.before[:n], w.change[:n], w.rhs[:n]
+	moved, changed := 0.0, 0.0
+	for i, d := range rhs {
+		if op.k != nil {
+			d *= op.k[i]
+		}
+		x := change[i] + d
+		change[i], c[i] = x, before[i]+x
+		if d = math.Abs(d); d > moved {
+			moved = d
+		}
+		if x = math.Abs(x); x > changed {
+			changed = x
+		}
+	}
+	w.changed = changed
+	return moved
+}
+
+// settled says whether iterations may end that have moved the state by so much,
+// and the one before by left. If each takes the same part of what was left,
+// moved^2/left is still to come. That must be little beside what the step itself
+// misses where the values change by a part x of their range: x^2/2 for backward
+// Euler and at least x^3/12 for Crank-Nicolson (as for exp(x)).
+func (w *newton) settled(moved, left float64, euler bool) bool {
+	x := min(w.changed/w.extent, mostResolved)
+	misses := x * x / 2
+	if !euler {
+		misses = x * x * x / 12
+	}
+	return moved <= newtonError*w.size ||
+		2*moved <= left && moved*(moved/left) <= misses*w.extent*beside+newtonError*w.size
+}
+
+const (
+	// mostResolved is the change above which these misses say nothing any more.
+	mostResolved = 0.25
+	// beside is what is little: in tries with fronts, steps and exponentials of a
+	// 30-fold change it adds a hundredth to the error of the steps.
+	beside = 0.5
+	// newtonError is what is nothing, as a part of the largest value.
+	newtonError = 1e-13
+)
+
+// own returns D's factor at the element's own value c.
+func (p *Problem) own(c float64) float64 {
+	if p.Own == nil {
+		return 1
+	}
+	return p.Own(max(c, 0))
+}
+
+// mouth is one end of the crystal in one solve.
+type mouth struct {
+	inside  float64 // s times the conductance of the half cell, for a factor of 1; 0 is sealed
+	slow    bool    // mass transfer,
+	parts   []part  // in these parts,
+	area    float64 // through r^n; half of it if half of the time counts
+	beyond  float64 // what is behind it, C
+	k, cell float64 // K at the end and in the cell beside it
+}
+
+// mouths returns both ends in solve k of a span, of length s.
+func (p *Plan) mouths(op *operator, sp *span, k int, st step, s float64, rough bool) (in, out mouth) {
+	n := len(p.grid.centres)
+	in, out = mouth{k: 1, cell: 1}, mouth{k: 1, cell: 1}
+	if op.k != nil {
+		in.k, in.cell, out.k, out.cell = op.kIn, op.k[0], op.kOut, op.k[n-1]
+	}
+	shape := p.problem.Shape
+	in.lead(&sp.inner, p.problem.Inner, s*op.cond[0], shape.area(p.grid.faces[0]), st, k, rough)
+	out.lead(&sp.outer, p.problem.Outer, s*op.cond[n], shape.area(p.grid.faces[n]), st, k, rough)
+	return in, out
+}
+
+// lead opens the mouth as an end does in solve k.
+func (m *mouth) lead(e *ending, rims []Rim, inside, area float64, st step, k int, rough bool) {
+	if !e.open {
+		return
+	}
+	m.inside, m.beyond = inside, e.behind(rims, k, rough)
+	if e.exchange.fine == nil {
+		return
+	}
+	m.slow, m.parts, m.area = true, e.exchange.of(rough)[k], area
+	if !st.euler {
+		m.area /= 2
+	}
+}
+
+// lets returns what comes in through an open mouth while the cell beside it holds
+// c. D's factor in the half cell is the mean of those at both of its sides.
+func (m *mouth) lets(own func(float64) float64, c float64) float64 {
+	factor := own(max(c, 0))
+	through := func(surface float64) float64 {
+		return m.inside * (factor + own(max(surface, 0))) / 2 * (surface/m.k - c/m.cell)
+	}
+	if !m.slow {
+		return through(m.beyond)
+	}
+	sum := 0.0
+	rest := c / m.cell * m.k // a surface that nothing would leave for the cell
+	for _, q := range m.parts {
+		beyond := m.beyond + q.above
+		excess := func(surface float64) float64 {
+			return float64(m.area*q.k*(beyond-surface)) - float64(q.share*through(surface))
+		}
+		surface, err := numeric.Root(excess, rest, beyond, surfaceError*math.Abs(beyond-rest))
+		if err == nil { // or else nothing passes, and there is nothing to find
+			sum += float64(q.share * through(surface))
+		}
+	}
+	return sum
+}
+
+// widen takes what is behind an open mouth, in units of k, into a range.
+func (m *mouth) widen(lo, hi, k float64) (float64, float64) {
+	if m.inside == 0 {
+		return lo, hi
+	}
+	lo, hi = leastMost(lo, hi, m.beyond/k)
+	for _, q := range m.parts {
+		lo, hi = leastMost(lo, hi, (m.beyond+q.above)/k)
+	}
+	return lo, hi
+}
+
+// surfaceError is how closely the value at a surface is found, as a part of what
+// drives the flux.
+const surfaceError = 1e-12
+
+// driving returns the potential u of the state c: c itself, if not coupled.
+func (f *Field) driving(op *operator, c []float64) []float64 {
+	if op.k == nil {
+		return c
+	}
+	return f.potential(op, c)
+}
+
+// open fills in what goes through both ends, and if wanted by how much that
+// changes with u.
+func (w *newton) open(own func(float64) float64, in, out *mouth, c []float64, slopes bool) {
+	n := len(c)
+	w.inflow, w.outflow = 0, 0
+	if slopes {
+		w.against[0], w.onward[n] = 0, 0
+	}
+	d := slopeStep * w.size
+	if in.inside > 0 {
+		w.inflow = in.lets(own, c[0])
+		if slopes && d > 0 {
+			w.against[0] = max(0, (w.inflow-in.lets(own, c[0]+d))/d*in.cell)
+		}
+	}
+	if out.inside > 0 {
+		w.outflow = -out.lets(own, c[n-1])
+		if slopes && d > 0 {
+			w.onward[n] = max(0, (-w.outflow-out.lets(own, c[n-1]+d))/d*out.cell)
+		}
+	}
+}
+
+// enter books what came in through a mouth in one solve; slope is by how much
+// that falls with u.
+func (m *mouth) enter(b *book, amount, slope float64, euler bool) {
+	if m.inside == 0 {
+		return
+	}
+	if !euler {
+		amount *= 2
+	}
+	b.lo, b.hi = m.widen(b.lo, b.hi, m.k)
+	b.inflow += amount
+	b.scale += math.Abs(amount)
+	b.noise += float64(slope * math.Abs(m.beyond/m.k) * 0x1p-51)
 }

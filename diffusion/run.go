@@ -151,11 +151,13 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 		if g == 0 {
 			continue
 		}
+		f.newton.length = 0 // after an event there is nothing to go on from
 		for k, st := range p.solves(rough) {
 			if p.problem.Own != nil {
-				p.nonlinear(f, sp, k, st, g, rough, &book)
+				f.Stats.Steps += p.nonlinear(f, sp, k, st, g, rough, &book)
 				continue
 			}
+			f.Stats.Steps++
 			op := p.operator(f, sp, k, rough)
 			for j := range f.Cols {
 				e := p.ends(op, sp, j, k, st, g, rough)
@@ -165,7 +167,6 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 				}
 			}
 		}
-		f.Stats.Steps += len(p.solves(rough))
 	}
 	book.close(&f.Stats, p, f.Cols[0])
 }
@@ -173,12 +174,8 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 // operator returns what solve k of a span needs of the grid: the plan's own, or
 // one made for it in the field.
 func (p *Plan) operator(f *Field, sp *span, k int, rough bool) *operator {
-	switch {
-	case p.host != nil:
+	if p.host != nil {
 		return f.couple(p, 1/sp.coldness.of(rough)[k])
-	case p.problem.Own != nil:
-		f.op = operator{vol: p.still.vol, cond: append(f.op.cond[:0], p.still.cond...)}
-		return &f.op
 	}
 	return &p.still
 }
@@ -236,15 +233,15 @@ func (p *Plan) ends(op *operator, sp *span, j, k int, st step, g float64, rough 
 		kIn, kOut = op.kIn, op.kOut
 	}
 	if sp.inner.open {
-		e.kIn = sp.inner.through(op.cond[0], s, shape.area(inside)*kIn, st, k, rough)
-		if e.vIn = sp.inner.behind(p.problem.Inner, k, rough); j > 0 {
+		e.kIn, e.vIn = sp.inner.through(op.cond[0], s, shape.area(inside)*kIn, st, k, rough)
+		if e.vIn += sp.inner.behind(p.problem.Inner, k, rough); j > 0 {
 			e.vIn = at(p.problem.Free[j-1].Inner, sp.inner.rim)
 		}
 		e.vIn /= kIn
 	}
 	if sp.outer.open {
-		e.kOut = sp.outer.through(op.cond[len(op.cond)-1], s, shape.area(outside)*kOut, st, k, rough)
-		if e.vOut = sp.outer.behind(p.problem.Outer, k, rough); j > 0 {
+		e.kOut, e.vOut = sp.outer.through(op.cond[len(op.cond)-1], s, shape.area(outside)*kOut, st, k, rough)
+		if e.vOut += sp.outer.behind(p.problem.Outer, k, rough); j > 0 {
 			e.vOut = at(p.problem.Free[j-1].Outer, sp.outer.rim)
 		}
 		e.vOut /= kOut

@@ -90,20 +90,6 @@ func (s schedule) leadEnd(means []float64) {
 	}
 }
 
-// mergedSums returns the sums over the steps of s.merged() of what is given for
-// the steps of s.
-func (s schedule) mergedSums(amounts []float64) []float64 {
-	var half []float64
-	for i := 0; i < len(s); i += s.pair(i) {
-		sum := amounts[i]
-		if s.pair(i) == 2 {
-			sum += amounts[i+1]
-		}
-		half = append(half, sum)
-	}
-	return half
-}
-
 // pair returns how many steps merge into one at i: two, or one where the next
 // is of another kind or missing.
 func (s schedule) pair(i int) int {
