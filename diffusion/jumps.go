@@ -110,7 +110,7 @@ func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
 func (p *Plan) addEdge(err, start []float64, face int, edge, g float64) {
 	a, b := face-1, face
 	jump := start[b] - start[a]
-	da, db := p.problem.factor(p.grid.centres[a]), p.problem.factor(p.grid.centres[b])
+	da, db := p.problem.factor(p.grid.centres[a])*p.problem.own(start[a]), p.problem.factor(p.grid.centres[b])*p.problem.own(start[b])
 	ra, rb := math.Sqrt(da), math.Sqrt(db)
 	blur := edge / edgesPerWidth * edge / edgesPerWidth / 2 // the edge is what this integral makes of a jump
 	lagAt := func(d float64, cell int) float64 {
@@ -155,7 +155,7 @@ func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, out
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)
 		if end := [...]ending{sp.inner, sp.outer}[side]; !end.open || end.exchange.fine != nil || g == 0 {
-			left, sealed = math.Max(left-g, 0), !end.open
+			left, sealed = math.Max(left-g, 0), sealed || !end.open || end.exchange.fine != nil
 			continue
 		}
 		if sealed {
@@ -164,7 +164,7 @@ func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, out
 		for k, st := range p.steps {
 			e := p.ends(&p.still, sp, j, k, st, g, false)
 			if v := [...]float64{e.vIn, e.vOut}[side]; v != was {
-				err[cell] -= 2 * (v - was) * lag(0, perG*left)
+				err[cell] -= 2 * (v - was) * lag(0, perG*(p.problem.own(was)+p.problem.own(v))/2*left)
 				was = v
 			}
 			left = math.Max(left-st.df*g, 0)

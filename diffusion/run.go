@@ -2,6 +2,8 @@ package diffusion
 
 import (
 	"fmt"
+	"math"
+	"slices"
 )
 
 // Job is one run of a plan: a course, with D multiplied by exp(LnM).
@@ -77,7 +79,7 @@ func (p *Plan) checkJobs(jobs []Job) error {
 
 // Audit runs the job and measures its error: the differences from the same run
 // in half the steps and on half the cells, each divided by three, as befits a
-// method of second order (Richardson 1911), and multiplied by safety. To the
+// method of second order (Richardson 1911; see gain), and multiplied by safety. To the
 // latter comes what a grid is known to do to jumps that it does not resolve yet
 // (see addJumps). It returns an error where the plan's faces cannot be halved.
 func (p *Plan) Audit(dst *Field, job Job) error {
@@ -94,14 +96,15 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 	n, cells := len(dst.Cols), len(dst.Cols[0])
 	dst.StepErr, dst.CellErr = resizedCols(dst.StepErr, n, cells), resizedCols(dst.CellErr, n, cells)
 	p.runOne(dst.other, job, true)
+	gain := p.problem.gain()
 	for j, c := range dst.Cols {
 		for i := range c {
-			dst.StepErr[j][i] = (dst.other.Cols[j][i] - c[i]) * (safety / 3)
+			dst.StepErr[j][i] = (dst.other.Cols[j][i] - c[i]) * (safety / gain)
 		}
 	}
 	p.halved.runOne(dst.other, job, false)
 	for j, c := range dst.Cols {
-		p.cellError(dst.CellErr[j], c, dst.other.Cols[j])
+		p.cellError(dst.CellErr[j], c, dst.other.Cols[j], gain)
 		p.addJumps(dst.CellErr[j], dst, job, j)
 		for i := range dst.CellErr[j] {
 			dst.CellErr[j][i] *= safety
@@ -116,16 +119,30 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 // section 5.6) asks for where the order has been shown on three grids.
 const safety = 1.25
 
-// cellError fills dst with a third of the difference between fine cell means,
-// averaged in pairs, and those of the halved plan.
-func (p *Plan) cellError(dst, fine, coarse []float64) {
+// cellError fills dst with the difference between fine cell means, averaged in
+// pairs, and those of the halved plan, divided by gain.
+func (p *Plan) cellError(dst, fine, coarse []float64, gain float64) {
 	for i, c := range coarse {
 		a, b := 2*i, 2*i+1
 		va, vb := p.grid.volumes[a], p.grid.volumes[b]
 		mean := (float64(va*fine[a]) + float64(vb*fine[b])) / (va + vb)
-		dst[a], dst[b] = (c-mean)/3, (c-mean)/3
+		dst[a], dst[b] = (c-mean)/gain, (c-mean)/gain
 	}
 }
+
+// gain returns what the error of a run in half the steps or cells is more than that
+// of a full run, as a part of the latter: 2^p - 1 for order p. That is two; but
+// where D follows the element, or a rim exchanges, fronts and thin layers may show
+// no more than shownOrder.
+func (p *Problem) gain() float64 {
+	exchanges := func(r Rim) bool { return r.Kind == Transfer }
+	if p.Own != nil || slices.ContainsFunc(p.Inner, exchanges) || slices.ContainsFunc(p.Outer, exchanges) {
+		return math.Pow(2, shownOrder) - 1
+	}
+	return 3
+}
+
+const shownOrder = 1.5
 
 // reset puts the start into the field's columns.
 func (p *Plan) reset(f *Field) {
