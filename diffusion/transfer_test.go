@@ -1,0 +1,275 @@
+package diffusion
+
+import (
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"bankfire/thermal"
+)
+
+// transferRim returns a rim whose k has an activation energy of its own, and an
+// integral over the history of 0.1 to 100 times that of D over the crystal's size.
+func transferRim(r *rand.Rand, p *Problem, h *thermal.History) Rim {
+	return Rim{Kind: Transfer, Value: r.Float64(), Rate: rateOf(p, h, logUniform(r, 0.1, 100), logUniform(r, 5e3, 6e4))}
+}
+
+// rateOf returns the coefficient of activation temperature e whose integral over
+// the history is biot times that of D over the crystal's size.
+func rateOf(p *Problem, h *thermal.History, biot, e float64) Arrhenius {
+	lnD := p.Law.LnIntegral(h, 0, h.Life())
+	return Arrhenius{LnA: math.Log(biot) + lnD - math.Log(p.size()-p.R0) - h.LnArrhenius(e, 0, 0, h.Life()), E: e}
+}
+
+// TestTransferLimits: a very large k is a held rim, a very small one a sealed one.
+// The same steps, so to rounding and what 1e-9 or 1e9 leaves.
+func TestTransferLimits(t *testing.T) {
+	const far, close = 1e12, 1e-9
+	fractions := defaultFractions(defaultDamped, defaultGrowth, true)
+	for i := range 30 {
+		r := source(61, i)
+		h := randomHistory(t, r)
+		p := randomProblem(r, h, logUniform(r, 1e-6, 1e2))
+		if i%3 == 0 {
+			p.Own = ownOf(r)
+		}
+		for _, test := range []struct {
+			name string
+			biot float64
+			rim  Rim
+		}{
+			{"held", far, Rim{Kind: Held, Value: 0.4}},
+			{"sealed", 1 / far, Rim{}},
+		} {
+			q := *p
+			q.Outer = []Rim{{Kind: Transfer, Value: 0.4, Rate: rateOf(p, h, test.biot, p.Law.Terms[0].E)}}
+			plan := newPlan(t, &q, Options{Fractions: fractions})
+			got := run(t, plan, h).Cols[0]
+			limit := q
+			limit.Outer = []Rim{test.rim}
+			want := run(t, newPlan(t, &limit, Options{Faces: plan.Faces(), Fractions: fractions}), h).Cols[0]
+			wantClose(t, fmt.Sprintf("problem %d, %s", i, test.name), got, want, close)
+		}
+	}
+}
+
+// TestTransferKeepsMass: what is missing or new came through the rims; what came is
+// what Stats count.
+func TestTransferKeepsMass(t *testing.T) {
+	for i := range 40 {
+		r := source(62, i)
+		h := randomHistory(t, r)
+		p := randomProblem(r, h, logUniform(r, 1e-8, 1e4))
+		p.Outer = []Rim{transferRim(r, p, h)}
+		f := run(t, newPlan(t, p, Options{Cells: 60}), h)
+		if !(f.Stats.MassDrift <= rounding) || !(f.Stats.Overshoot <= rounding) {
+			t.Errorf("problem %d: drift %.2g, overshoot %.2g", i, f.Stats.MassDrift, f.Stats.Overshoot)
+		}
+	}
+}
+
+// TestExchangeAtRest: a crystal in equilibrium with what is outside stays so to the
+// bit.
+func TestExchangeAtRest(t *testing.T) {
+	for i := range 20 {
+		r := source(63, i)
+		h := randomHistory(t, r)
+		p := randomProblem(r, h, 1)
+		p.Inner = nil
+		value := r.Float64()
+		for z := range p.Zones {
+			p.Zones[z].Start = value
+		}
+		p.Outer = []Rim{transferRim(r, p, h)}
+		p.Outer[0].Value = value
+		plan := newPlan(t, p, Options{})
+		wantBits(t, fmt.Sprintf("problem %d", i), run(t, plan, h).Cols[0], plan.Start(0))
+	}
+}
+
+// TestSteadyExchange: between an end held at 0 and one that exchanges with 1 the
+// flux of a slab is k (1 - S) = (H(S) - H(0))/a, H the integral of D. With 1 + 3 C
+// and k a = 2 D0 the surface holds S = 2/3, and S + 1.5 S^2 is linear in x. Second
+// order in cells.
+func TestSteadyExchange(t *testing.T) {
+	p := slabOf(testSize, 0, nothing, 0.5)
+	p.Outer = exchanging(2/testSize, 1)
+	p.Own = func(c float64) float64 { return 1 + 3*c }
+	s := rootOf(t, func(s float64) float64 { return 2*(1-s) - s - 1.5*s*s }, 0, 1)
+	wantOrder(t, 2, 0.15, []int{40, 80, 160, 320}, func(n int) float64 {
+		plan := newPlan(t, p, Options{Faces: uniform(0, testSize, n)})
+		want := make([]float64, n)
+		addProfile(want, Slab, plan.grid, func(x float64) float64 {
+			h := (s + 1.5*s*s) * x / testSize
+			return (math.Sqrt(1+6*h) - 1) / 3
+		})
+		_, err := farthest(run(t, plan, holdOf(t, 30*testSize*testSize)).Cols[0], want)
+		return err
+	})
+}
+
+// byRungeKutta integrates a problem with an exchanging outer rim over time by the
+// classical method of Runge and Kutta (Abramowitz and Stegun 1964, 25.5.10), n steps
+// a leg, in even cells: with half cells at the rim, D of the element's own as the
+// mean of both sides, and the surface where both fluxes meet, found by halving.
+type byRungeKutta struct {
+	p     *Problem
+	faces []float64
+	n     int
+}
+
+func (b byRungeKutta) solve(h *thermal.History, c []float64) {
+	cells := len(c)
+	k := [4][]float64{}
+	for i := range k {
+		k[i] = make([]float64, cells)
+	}
+	y := make([]float64, cells)
+	for l, leg := range h.Legs() {
+		dt := leg.For / float64(b.n)
+		for s := range b.n {
+			at := float64(s) * dt
+			copy(y, c)
+			for i, part := range []float64{0, 0.5, 0.5, 1} {
+				if i > 0 {
+					for j := range y {
+						y[j] = c[j] + part*dt*k[i-1][j]
+					}
+				}
+				inside := math.Min(math.Max(at+part*dt, leg.For*1e-9), leg.For*(1-1e-9)) // within the leg, where temperature jumps between legs
+				b.rate(k[i], y, leg.At(inside), h.Start(l)+inside)
+			}
+			for j := range c {
+				c[j] += dt / 6 * (k[0][j] + 2*k[1][j] + 2*k[2][j] + k[3][j])
+			}
+		}
+	}
+}
+
+func (b byRungeKutta) rate(dst, c []float64, temp, t float64) {
+	p, last := b.p, len(c)-1
+	width := b.faces[1] - b.faces[0]
+	d := math.Exp(p.Law.LnD(temp))
+	own := func(v float64) float64 {
+		if p.Own == nil {
+			return 1
+		}
+		return p.Own(v)
+	}
+	area := func(face int) float64 { return math.Pow(b.faces[face], float64(p.Shape)) }
+	flux := make([]float64, len(b.faces))
+	for i := 1; i <= last; i++ {
+		flux[i] = -area(i) * d * (own(c[i-1]) + own(c[i])) / 2 * (c[i] - c[i-1]) / width
+	}
+	outside := p.Outer[0].Value
+	if p.Outer[0].Given != nil {
+		outside = p.Outer[0].Given.At(t)
+	}
+	k := math.Exp(p.Outer[0].Rate.LnA - p.Outer[0].Rate.E/temp)
+	surface, meets := c[last], outside
+	for range 60 {
+		x := (surface + meets) / 2
+		if (k*(outside-x)-d*(own(c[last])+own(x))*(x-c[last])/width > 0) == (outside > c[last]) {
+			surface = x
+		} else {
+			meets = x
+		}
+	}
+	flux[last+1] = -area(last+1) * k * (outside - surface)
+	for i := range dst {
+		dst[i] = (flux[i] - flux[i+1]) / volume(p.Shape, b.faces[i], b.faces[i+1])
+	}
+}
+
+// TestExchangeAlongPulses: k and D of different activation energies, and an outside
+// that is constant or follows temperature, along paths that jump, rise and fall,
+// against an integration over time that shares nothing with the solver but the
+// cells of a slab. Steps run across all of it, so the bound is that of a default
+// plan; ten times the steps come thirty times closer.
+func TestExchangeAlongPulses(t *testing.T) {
+	const plain, fine = 1e-4, 3e-6
+	faces := uniform(0, testSize, 8)
+	for name, legs := range map[string][]thermal.Leg{
+		"box":   {{Kind: thermal.Hold, For: 1e9, T0: 1000}, {Kind: thermal.Hold, For: 2e7, T0: 1150}, {Kind: thermal.Hold, For: 1e9, T0: 1000}},
+		"pulse": {{Kind: thermal.Hold, For: 1e9, T0: 1000}, {Kind: thermal.Ramp, For: 1e7, T0: 1000, T1: 1150}, {Kind: thermal.Relax, For: 1e9, T0: 1150, T1: 1000, Tau: 1e8}},
+		"cool":  {{Kind: thermal.Ramp, For: 1e9, T0: 1150, T1: 900}},
+	} {
+		h := newHistory(t, legs...)
+		for i := range 8 {
+			e, given, own := []float64{5e3, 6e4}[i&1], i&2 != 0, i&4 != 0
+			p := &Problem{Zones: []Zone{{Outer: testSize, Start: 0.3}}, Law: NewLaw(1, 250e3)}
+			p.Law.Terms[0].LnA = math.Log(0.1*testSize*testSize) - p.Law.LnIntegral(h, 0, h.Life())
+			p.Outer = []Rim{{Kind: Transfer, Value: 1, Rate: rateOf(p, h, 2, e)}}
+			if given {
+				p.Outer[0].Given = &Given{At: func(t float64) float64 { temp, _ := h.At(t); return 1 + 5*(1000/temp-1) }}
+			}
+			if own {
+				p.Own = growing(2)
+			}
+			t.Run(fmt.Sprintf("path=%s/E=%g/given=%v/own=%v", name, e, given, own), func(t *testing.T) {
+				truth := make([]float64, 8)
+				for j := range truth {
+					truth[j] = 0.3
+				}
+				byRungeKutta{p, faces, 1000}.solve(h, truth)
+				wantClose(t, "default", run(t, newPlan(t, p, Options{Faces: faces}), h).Cols[0], truth, plain)
+				wantClose(t, "fine", run(t, newPlan(t, p, Options{Faces: faces, Growth: 0.01}), h).Cols[0], truth, fine)
+			})
+		}
+	}
+}
+
+// TestTransferOrder: second order in steps where an exchange begins gently.
+func TestTransferOrder(t *testing.T) {
+	const g = testSize * testSize / 20
+	h := newHistory(t, thermal.Leg{Kind: thermal.Ramp, For: 0.6 * g / math.Exp(testLaw.LnD(1040)), T0: 1040, T1: 1070})
+	for shape := Slab; shape <= Ball; shape++ {
+		t.Run(fmt.Sprint(shape), func(t *testing.T) {
+			p := &Problem{
+				Shape: shape, Zones: []Zone{{Outer: testSize}}, Law: testLaw,
+				Profile: func(r float64) float64 { return 0.5 - 0.5*math.Cos(math.Pi*r/testSize) },
+			}
+			// begins at C_eq = 1, what the surface holds, and moves on with time
+			outside := &Given{At: func(at float64) float64 { return 1 + at/h.Life() }}
+			p.Outer = []Rim{{Kind: Transfer, Given: outside, Rate: rateOf(p, h, 3, 2e4)}}
+			wantOrder(t, 2, 0.15, []int{40, 80, 160}, againstItself(t, p, h, 10, func(int) int { return 40 }))
+		})
+	}
+}
+
+// TestStatedErrorOfTransfer: rims that exchange for good, after another kind, or
+// until then.
+func TestStatedErrorOfTransfer(t *testing.T) {
+	honest(t, 100, 41, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
+		p := randomProblem(r, h, g)
+		at := h.Life() * r.Float64()
+		p.Outer = []Rim{transferRim(r, p, h)}
+		switch r.IntN(4) {
+		case 0:
+			p.Outer = append([]Rim{{Kind: Held, Value: r.Float64()}}, p.Outer...)
+			p.Outer[1].From = at
+		case 1:
+			p.Outer = append(p.Outer, Rim{Kind: Held, Value: r.Float64(), From: at})
+		}
+		return p
+	})
+}
+
+// TestTransferSideBySide: side by side as alone, to the bit.
+func TestTransferSideBySide(t *testing.T) {
+	r := source(64, 0)
+	h := randomHistory(t, r)
+	p := laneProblem(r, h)
+	p.Outer = []Rim{transferRim(r, p, h)}
+	p.Free[1].Outer = []float64{1}
+	plan := newPlan(t, p, Options{Cells: 40})
+	jobs := randomJobs(t, r, plan, h, 7)
+	dst := make([]Field, len(jobs))
+	if err := plan.Run(dst, jobs); err != nil {
+		t.Fatal(err)
+	}
+	for k := range jobs {
+		wantSame(t, fmt.Sprintf("job %d", k), &dst[k], runJob(t, plan, jobs[k]))
+	}
+}
