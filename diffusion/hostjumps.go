@@ -17,8 +17,8 @@ type hostEdge struct {
 func (p *Plan) addHostEdge(err, start []float64, face int, edge float64, job Job) {
 	e := hostEdge{
 		plan: p, a: face - 1, b: face,
-		ra: math.Sqrt(p.problem.factor(p.grid.centres[face-1])),
-		rb: math.Sqrt(p.problem.factor(p.grid.centres[face])),
+		ra: math.Sqrt(p.problem.factor(p.grid.centres[face-1]) * p.problem.own(start[face-1])),
+		rb: math.Sqrt(p.problem.factor(p.grid.centres[face]) * p.problem.own(start[face])),
 	}
 	ca, cb := start[e.a], start[e.b]
 	was, meets := 0.0, 0.0

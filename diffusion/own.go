@@ -1,10 +1,6 @@
 package diffusion
 
-import (
-	"math"
-
-	"bankfire/thermal/numeric"
-)
+import "math"
 
 // D that depends on the element's own composition C makes the problem
 // nonlinear. With w the state half way through a Crank-Nicolson step (the one
@@ -18,8 +14,9 @@ import (
 //
 //	F = cond (h(C_L) + h(C_R))/2 (u_L - u_R),  u = C/K,
 //
-// so that a front into material with D = 0 moves. Values are never clipped; D
-// below C = 0 is D at 0.
+// so that a front into material with D = 0 moves; but see bridge.go for a jump of
+// the host and mouth.go for the ends. Values are never clipped; D below C = 0 is D
+// at 0.
 //
 // The first w is c as it would be if it went on as in the step before. That
 // misses by about the square of the step, and one iteration by the square of
@@ -39,6 +36,9 @@ type newton struct {
 	lo, hi          float64   // of u, in the crystal and behind open ends: between them w lies
 	size, extent    float64   // of C there: the largest, without its sign, and the range
 	changed         float64   // largest change, without its sign
+	cond            []float64 // conductance of each face at unit D
+	bridges         []bridge  // where the host jumps
+	bridged         []float64 // cond in a zoned host
 }
 
 func (w *newton) resize(n int) {
@@ -63,18 +63,24 @@ func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bo
 	if p.problem.source != nil {
 		w.lo, w.hi = math.Inf(-1), math.Inf(1)
 	}
+	w.cond = op.cond
+	if p.host != nil {
+		w.layBridges(p, op, 1/sp.coldness.of(rough)[k])
+	}
 	solves, anew := 0, true
 	for left := w.extent; solves < mostNewton; {
 		solves++
 		u := f.driving(op, c)
 		w.confine(op, c, u)
 		w.look(own, c)
+		w.crossBridges(own, op, u)
 		w.open(own, &in, &out, c, anew)
 		if anew {
 			w.slopes(own, op, s, c, u)
+			w.levelBridges(s)
 			w.factorise(op.vol)
 		}
-		w.balance(p.grid.volumes, op.cond, s, u)
+		w.balance(p.grid.volumes, w.cond, s, u)
 		p.addSource(w.rhs, sp, k, st, rough)
 		w.sweep()
 		moved := w.move(op, c)
@@ -88,11 +94,16 @@ func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bo
 	n := len(c)
 	out.enter(b, -w.outflow-float64(w.onward[n]*w.rhs[n-1]), w.onward[n], st.euler)
 	if !st.euler {
-		for i, d := range w.change {
-			c[i] = w.before[i] + float64(2*d)
-		}
+		w.finish(c)
 	}
 	return solves
+}
+
+// finish takes c from the middle of a step to its end.
+func (w *newton) finish(c []float64) {
+	for i, d := range w.change {
+		c[i] = w.before[i] + float64(2*d)
+	}
 }
 
 // slowNewton is the part of what was left that an iteration may leave without the
@@ -189,7 +200,7 @@ func (w *newton) look(own func(float64) float64, c []float64) {
 // fall of the integral of D: then the slopes are D itself.
 func (w *newton) slopes(own func(float64) float64, op *operator, s float64, c, u []float64) {
 	n := len(u)
-	factor, cond := w.factor[:n], op.cond[:n]
+	factor, cond := w.factor[:n], w.cond[:n]
 	onward, against := w.onward[:n], w.against[:n]
 	for i := 1; i < n; i++ {
 		a := s * cond[i]
@@ -358,7 +369,8 @@ const (
 	// mostResolved is the change above which these misses say nothing any more.
 	mostResolved = 0.25
 	// beside is what is little: in tries with fronts, steps and exponentials of a
-	// 30-fold change it adds a hundredth to the error of the steps.
+	// 30-fold change it added a hundredth to the error of the steps, and a tenth where
+	// those were a few for all of a path.
 	beside = 0.5
 	// newtonError is what is nothing, as a part of the largest value.
 	newtonError = 1e-13
@@ -372,127 +384,10 @@ func (p *Problem) own(c float64) float64 {
 	return p.Own(max(c, 0))
 }
 
-// mouth is one end of the crystal in one solve.
-type mouth struct {
-	inside  float64 // s times the conductance of the half cell, for a factor of 1; 0 is sealed
-	slow    bool    // mass transfer,
-	parts   []part  // in these parts,
-	area    float64 // through r^n; half of it if half of the time counts
-	beyond  float64 // what is behind it, C
-	k, cell float64 // K at the end and in the cell beside it
-}
-
-// mouths returns both ends in solve k of a span, of length s.
-func (p *Plan) mouths(op *operator, sp *span, k int, st step, s float64, rough bool) (in, out mouth) {
-	n := len(p.grid.centres)
-	in, out = mouth{k: 1, cell: 1}, mouth{k: 1, cell: 1}
-	if op.k != nil {
-		in.k, in.cell, out.k, out.cell = op.kIn, op.k[0], op.kOut, op.k[n-1]
-	}
-	shape := p.problem.Shape
-	in.lead(&sp.inner, p.problem.Inner, s*op.cond[0], shape.area(p.grid.faces[0]), st, k, rough)
-	out.lead(&sp.outer, p.problem.Outer, s*op.cond[n], shape.area(p.grid.faces[n]), st, k, rough)
-	return in, out
-}
-
-// lead opens the mouth as an end does in solve k.
-func (m *mouth) lead(e *ending, rims []Rim, inside, area float64, st step, k int, rough bool) {
-	if !e.open {
-		return
-	}
-	m.inside, m.beyond = inside, e.behind(rims, k, rough)
-	if e.exchange.fine == nil {
-		return
-	}
-	m.slow, m.parts, m.area = true, e.exchange.of(rough)[k], area
-	if !st.euler {
-		m.area /= 2
-	}
-}
-
-// lets returns what comes in through an open mouth while the cell beside it holds
-// c. D's factor in the half cell is the mean of those at both of its sides.
-func (m *mouth) lets(own func(float64) float64, c float64) float64 {
-	factor := own(max(c, 0))
-	through := func(surface float64) float64 {
-		return m.inside * (factor + own(max(surface, 0))) / 2 * (surface/m.k - c/m.cell)
-	}
-	if !m.slow {
-		return through(m.beyond)
-	}
-	sum := 0.0
-	rest := c / m.cell * m.k // a surface that nothing would leave for the cell
-	for _, q := range m.parts {
-		beyond := m.beyond + q.above
-		excess := func(surface float64) float64 {
-			return float64(m.area*q.k*(beyond-surface)) - float64(q.share*through(surface))
-		}
-		surface, err := numeric.Root(excess, rest, beyond, surfaceError*math.Abs(beyond-rest))
-		if err == nil { // or else nothing passes, and there is nothing to find
-			sum += float64(q.share * through(surface))
-		}
-	}
-	return sum
-}
-
-// widen takes what is behind an open mouth, in units of k, into a range.
-func (m *mouth) widen(lo, hi, k float64) (float64, float64) {
-	if m.inside == 0 {
-		return lo, hi
-	}
-	lo, hi = leastMost(lo, hi, m.beyond/k)
-	for _, q := range m.parts {
-		lo, hi = leastMost(lo, hi, (m.beyond+q.above)/k)
-	}
-	return lo, hi
-}
-
-// surfaceError is how closely the value at a surface is found, as a part of what
-// drives the flux.
-const surfaceError = 1e-12
-
 // driving returns the potential u of the state c: c itself, if not coupled.
 func (f *Field) driving(op *operator, c []float64) []float64 {
 	if op.k == nil {
 		return c
 	}
 	return f.potential(op, c)
-}
-
-// open fills in what goes through both ends, and if wanted by how much that
-// changes with u.
-func (w *newton) open(own func(float64) float64, in, out *mouth, c []float64, slopes bool) {
-	n := len(c)
-	w.inflow, w.outflow = 0, 0
-	if slopes {
-		w.against[0], w.onward[n] = 0, 0
-	}
-	d := slopeStep * w.size
-	if in.inside > 0 {
-		w.inflow = in.lets(own, c[0])
-		if slopes && d > 0 {
-			w.against[0] = max(0, (w.inflow-in.lets(own, c[0]+d))/d*in.cell)
-		}
-	}
-	if out.inside > 0 {
-		w.outflow = -out.lets(own, c[n-1])
-		if slopes && d > 0 {
-			w.onward[n] = max(0, (-w.outflow-out.lets(own, c[n-1]+d))/d*out.cell)
-		}
-	}
-}
-
-// enter books what came in through a mouth in one solve; slope is by how much
-// that falls with u.
-func (m *mouth) enter(b *book, amount, slope float64, euler bool) {
-	if m.inside == 0 {
-		return
-	}
-	if !euler {
-		amount *= 2
-	}
-	b.lo, b.hi = m.widen(b.lo, b.hi, m.k)
-	b.inflow += amount
-	b.scale += math.Abs(amount)
-	b.noise += float64(slope * math.Abs(m.beyond/m.k) * 0x1p-51)
 }

@@ -278,6 +278,27 @@ func TestOwnOrder(t *testing.T) {
 	}
 }
 
+// TestOwnAcrossHosts: second order in cells where the host jumps and D with C, for D
+// that grows and falls with it.
+func TestOwnAcrossHosts(t *testing.T) {
+	h := holdOf(t, testSize*testSize/5)
+	for _, slope := range []float64{3, 1, -0.5} {
+		t.Run(fmt.Sprint(slope), func(t *testing.T) {
+			p := &Problem{
+				Zones: []Zone{{Outer: testSize / 2, Start: 1}, {Outer: testSize, Start: 0.5, Host: -1}}, Law: testLaw,
+				LnK: func(x, temp float64) float64 { return 2 * x * testTemp / temp }, Own: growing(slope), Outer: heldAt(1),
+			}
+			fine := newPlan(t, p, Options{Faces: uniform(0, testSize, 1280)})
+			truth := run(t, fine, h).Cols[0]
+			wantOrder(t, 2, 0.2, []int{20, 40, 80}, func(n int) float64 { // 20 cells are few for a threefold D from cell to cell
+				plan := newPlan(t, p, Options{Faces: uniform(0, testSize, n)})
+				_, err := farthest(run(t, plan, h).Cols[0], onto(plan, fine, truth))
+				return err
+			})
+		})
+	}
+}
+
 // againstItself returns the largest error in n even steps, undamped, against finer
 // steps and, if their number depends on n, cells.
 func againstItself(t *testing.T, p *Problem, h *thermal.History, finer int, cells func(n int) int) func(n int) float64 {
@@ -380,6 +401,22 @@ func TestStatedErrorOfOwn(t *testing.T) {
 	honest(t, 100, 31, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
 		p := randomProblem(r, h, g)
 		p.Own = ownOf(r)
+		return p
+	})
+}
+
+// TestStatedErrorOfOwnInHosts: the same in a host of zones.
+func TestStatedErrorOfOwnInHosts(t *testing.T) {
+	honest(t, 40, 32, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
+		p := randomProblem(r, h, g)
+		p.Inner = nil
+		a := 4 * (2*r.Float64() - 1)
+		p.LnK = func(x, temp float64) float64 { return a * x * 1000 / temp }
+		for z := range p.Zones {
+			p.Zones[z].Host = r.Float64()
+		}
+		slope := math.Log(30) * (2*r.Float64() - 1) / math.Exp(math.Abs(a)) // C may reach exp(|a|)
+		p.Own = growing(slope)
 		return p
 	})
 }
