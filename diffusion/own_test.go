@@ -407,7 +407,7 @@ func TestStatedErrorOfOwn(t *testing.T) {
 
 // TestStatedErrorOfOwnInHosts: the same in a host of zones.
 func TestStatedErrorOfOwnInHosts(t *testing.T) {
-	honest(t, 40, 32, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
+	honest(t, 25, 32, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
 		p := randomProblem(r, h, g)
 		p.Inner = nil
 		a := 4 * (2*r.Float64() - 1)
