@@ -130,13 +130,13 @@ func preamble() string {
 	return s.String()
 }
 
-// recordTruth runs cases in full and writes them into the record, beside what is
-// there of the others.
+// recordTruth runs cases in full and writes each, when it is done, into the
+// record beside what is there of the others.
 func recordTruth(t *testing.T) {
 	commit := cleanCommit(t)
 	kept := map[string][][]string{}
-	for _, b := range oldRows() {
-		kept[b[1]] = append(kept[b[1]], b)
+	for _, row := range oldRows() {
+		kept[row[1]] = append(kept[row[1]], row)
 	}
 	for _, c := range allCases() {
 		t.Run(c.name, func(t *testing.T) {
@@ -150,13 +150,19 @@ func recordTruth(t *testing.T) {
 			}
 			c.check(t, right, blocks*blockSize)
 			kept[c.name] = rows
+			writeRecord(t, kept)
 		})
 	}
+}
+
+// writeRecord writes the rows of each case.
+func writeRecord(t *testing.T, rows map[string][][]string) {
+	t.Helper()
 	out := bytes.NewBufferString(preamble())
 	w := csv.NewWriter(out)
 	w.Write(columns)
 	for _, c := range allCases() {
-		w.WriteAll(kept[c.name])
+		w.WriteAll(rows[c.name])
 	}
 	w.Flush()
 	if err := os.WriteFile(record, out.Bytes(), 0o666); err != nil {
