@@ -3,6 +3,7 @@ package diffusion
 import (
 	"fmt"
 	"math"
+	"slices"
 )
 
 // Shape is the geometry of a crystal. Its value is the exponent n of the
@@ -119,6 +120,9 @@ func (p *Problem) check() error {
 	if err := p.checkHost(); err != nil {
 		return err
 	}
+	if err := p.checkOwn(); err != nil {
+		return err
+	}
 	return p.checkFree()
 }
 
@@ -158,6 +162,28 @@ func (p *Problem) checkRims(end string, rims []Rim) error {
 			if r.Kind != Sealed {
 				return fmt.Errorf("diffusion: inner rim %d: the centre of a %s cannot be held", i, p.Shape)
 			}
+		}
+	}
+	return nil
+}
+
+// checkOwn refuses a factor on D that is not one at a stated start or rim value.
+func (p *Problem) checkOwn() error {
+	if p.Own == nil {
+		return nil
+	}
+	var stated []float64
+	for _, z := range p.Zones {
+		stated = append(stated, z.Start)
+	}
+	for _, r := range slices.Concat(p.Inner, p.Outer) {
+		if (r.Kind == Held || r.Kind == Transfer) && r.Given == nil {
+			stated = append(stated, r.Value)
+		}
+	}
+	for _, v := range stated {
+		if f := p.own(v); !(f >= 0) || math.IsInf(f, 0) {
+			return fmt.Errorf("diffusion: D is multiplied by %g where the element is at %g", f, v)
 		}
 	}
 	return nil

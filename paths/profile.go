@@ -20,8 +20,6 @@ const (
 	mostRefined = 2
 	pointFinest = 0.5 // of the smallest spacing: what matters where there is no spot
 	batch       = 8   // multipliers that go side by side
-	usualCells  = 200 // the solver's own choice, from which a refined plan starts
-	usualGrowth = 0.1
 )
 
 // profile is one element of one crystal on one path, ready to run.
@@ -56,10 +54,7 @@ func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
 		return nil, err
 	}
 	p := &profile{crystal: c, element: e, path: path, free: free, refined: refined}
-	options := diffusion.Options{Finest: finest(e.Traverse)}
-	if refined > 0 {
-		options.Cells, options.Growth = usualCells<<refined, usualGrowth/float64(int(1)<<refined)
-	}
+	options := diffusion.Options{Finest: finest(e.Traverse), Refined: refined}
 	if e.Traverse == nil {
 		return p, p.addRun(problem, e.Start.Edge.Middle(), &options)
 	}
@@ -530,6 +525,22 @@ func (p *profile) numErr(at least.Solution) float64 {
 	worst := 0.0
 	for i, s := range p.fit.Sigma {
 		worst = math.Max(worst, (math.Abs(steps[i])+math.Abs(cells[i]))/s)
+	}
+	return worst
+}
+
+// belowZero returns by how much the lowest concentration at the end of the
+// audited path is below zero, beyond its estimated numerical error and round-off.
+// Relative values may be negative.
+func (p *profile) belowZero(edge float64, a amounts) float64 {
+	if p.grey {
+		return 0
+	}
+	steps, cells := p.errors(edge, a)
+	worst := 0.0
+	for i, c := range a.of(p.mix(p.columns(0), edge)) {
+		allowed := math.Abs(steps[i]) + math.Abs(cells[i]) + 10*pinned*p.size
+		worst = math.Max(worst, -c-allowed)
 	}
 	return worst
 }

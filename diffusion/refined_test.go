@@ -1,0 +1,34 @@
+package diffusion
+
+import (
+	"math"
+	"strings"
+	"testing"
+)
+
+// A plan refined once has twice the cells and twice the steps.
+func TestRefined(t *testing.T) {
+	p := &Problem{Zones: []Zone{{Outer: 1e-4, Start: 1}, {Outer: 2e-4}}, Law: NewLaw(1e-20, 0)}
+	usual, finer := newPlan(t, p, Options{}), newPlan(t, p, Options{Refined: 1})
+	named := newPlan(t, p, Options{Cells: 2 * defaultCells, Growth: defaultGrowth / 2})
+	if got, want := len(finer.Centres()), len(named.Centres()); got != want || got < 2*len(usual.Centres())-minSegment {
+		t.Errorf("%d cells, want %d", got, want)
+	}
+	if got, want := len(finer.steps), len(named.steps); got != want {
+		t.Errorf("%d steps, want %d", got, want)
+	}
+}
+
+// A factor on D that is none at a stated value is refused.
+func TestOwnIsChecked(t *testing.T) {
+	for _, own := range []func(float64) float64{
+		func(float64) float64 { return math.NaN() },
+		func(float64) float64 { return -1 },
+		func(c float64) float64 { return math.Exp(1e3 * c) },
+	} {
+		p := &Problem{Zones: []Zone{{Outer: 1e-4, Start: 1}}, Law: NewLaw(1e-20, 0), Own: own}
+		if _, err := Compile(p, Options{}); err == nil || !strings.Contains(err.Error(), "D is multiplied by") {
+			t.Errorf("got %v", err)
+		}
+	}
+}
