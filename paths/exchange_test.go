@@ -48,8 +48,14 @@ func readWith(t *testing.T, text string, measured func(x float64) float64) *stud
 	for x := 0.5; x < 30; x++ {
 		fmt.Fprintf(&data, "%g,%.9g\n", x, measured(x*um))
 	}
+	return readStudy(t, text, "ti.csv", data.String())
+}
+
+// readStudy writes a study and its one file of data, and reads it.
+func readStudy(t *testing.T, text, name, data string) *study.Study {
+	t.Helper()
 	folder := t.TempDir()
-	for name, text := range map[string]string{"ti.csv": data.String(), "study.toml": text} {
+	for name, text := range map[string]string{name: data, "study.toml": text} {
 		if err := os.WriteFile(filepath.Join(folder, name), []byte(text), 0o666); err != nil {
 			t.Fatal(err)
 		}

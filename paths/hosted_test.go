@@ -3,8 +3,6 @@ package paths
 import (
 	"fmt"
 	"math"
-	"os"
-	"path/filepath"
 	"strings"
 	"testing"
 
@@ -81,17 +79,7 @@ func readPlagioclase(t *testing.T, life, tenth, rim string, measured func(r floa
 	for um2 := 60.5; um2 < 140; um2++ {
 		fmt.Fprintf(&data, "%g,%.9g\n", um2, measured(um2*um))
 	}
-	folder := t.TempDir()
-	for name, text := range map[string]string{"sr.csv": data.String(), "study.toml": fmt.Sprintf(plagioclase, life, tenth, rim)} {
-		if err := os.WriteFile(filepath.Join(folder, name), []byte(text), 0o666); err != nil {
-			t.Fatal(err)
-		}
-	}
-	s, err := study.Read(filepath.Join(folder, "study.toml"))
-	if err != nil {
-		t.Fatal(err)
-	}
-	return s
+	return readStudy(t, fmt.Sprintf(plagioclase, life, tenth, rim), "sr.csv", data.String())
 }
 
 // After a few decades, the profile is that of two half spaces, Sr having gone

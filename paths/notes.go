@@ -27,6 +27,12 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 	if r.NumErr > errorAim {
 		notes = append(notes, fmt.Sprintf("the numerical error reaches %.2g sigma at a point, after refining", r.NumErr))
 	}
+	if r.BelowZero > 0 {
+		notes = append(notes, fmt.Sprintf("a concentration comes out %.2g %s below zero, after refining: do not trust this path", r.BelowZero, r.Element.Unit))
+	}
+	if !r.Settled {
+		notes = append(notes, "the fit of edge, tilt and origin did not settle: chi-square may be a little lower than stated")
+	}
 	notes = append(notes, lawNotes(r.Element, path.History)...)
 	for _, f := range r.Free {
 		switch {

@@ -56,7 +56,8 @@ type ProfileResult struct {
 	Centres   []float64 // of the cells, m from the crystal's centre
 	Start     []float64 // what the instrument would have shown there before diffusion
 	Final     []float64 // and at the end of the path
-	Stats     diffusion.Stats
+	Settled   bool      // false if the fit of edge, tilt and origin gave up while it could still improve
+	BelowZero float64   // by how much, in the element's unit, a concentration is below zero beyond its numerical error; 0 but for faults of the plan
 	Notes     []string
 }
 
@@ -266,7 +267,8 @@ func (w *weighedPath) sharpen(ctx context.Context) error {
 }
 
 // audited compiles the element for the path, with a plan at least so often
-// refined and fine enough for the path as it is, and runs that.
+// refined and fine enough for the path as it is, and runs that: a concentration
+// below zero asks for the finest.
 func audited(e *element, path *study.Path, refined int) (*profile, *ProfileResult, error) {
 	for {
 		p, err := newProfile(e, path, refined)
@@ -277,7 +279,11 @@ func audited(e *element, path *study.Path, refined int) (*profile, *ProfileResul
 		if err != nil {
 			return nil, nil, err
 		}
-		if refined = p.finer(result.NumErr); refined == p.refined {
+		refined = p.finer(result.NumErr)
+		if result.BelowZero > 0 {
+			refined = mostRefined
+		}
+		if refined == p.refined {
 			return p, result, nil
 		}
 	}
@@ -361,7 +367,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		At:   make([]float64, len(p.fit.Obs)),
 		Seen: at.Model, Sigma: p.fit.Sigma, Residuals: at.Residuals,
 		Centres: p.plan().Centres(),
-		Stats:   p.runs[0].fields[0].Stats,
+		Settled: at.Settled, BelowZero: p.belowZero(edge, a),
 	}
 	p.element.Traverse.Place(r.At, origin, tilt)
 	spot := p.element.Traverse.Spot
