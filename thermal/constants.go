@@ -44,3 +44,11 @@ const (
 	// Bar is 1 bar, Pa. Exact (NIST Special Publication 811, 2008, Appendix B.8).
 	Bar = 1e5
 )
+
+// Molar masses, g/mol (IUPAC, abridged standard atomic weights of 2021: Prohaska et al. 2022, Pure and Applied Chemistry
+// 94, 573-600, doi 10.1515/pac-2019-0603).
+const (
+	OxygenMass   = 15.999
+	SiliconMass  = 28.085
+	TitaniumMass = 47.867
+)

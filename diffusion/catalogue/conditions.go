@@ -17,6 +17,7 @@ const (
 	XAn      = "XAn"      // mole fraction of anorthite in plagioclase
 	XFe      = "XFe"      // Fe/(Fe+Mg), mole fraction
 	ASiO2    = "aSiO2"    // activity of SiO2
+	ATiO2    = "aTiO2"    // activity of TiO2; of no law, see Solubility
 )
 
 // Conditions are the values of conditions by name. One that is not in the map
@@ -43,6 +44,7 @@ func limits() []bounds {
 		{XAn, 0, 1, false, "", "0.5"},
 		{XFe, 0, 1, false, "", "0.1"},
 		{ASiO2, 0, 10, true, "", "0.6"},
+		{ATiO2, 0, 10, true, "", "0.6"},
 	}
 }
 
@@ -172,7 +174,7 @@ func (r *Row) Law(c Conditions) (diffusion.Law, error) {
 	if err := c.Check(); err != nil {
 		return diffusion.Law{}, err
 	}
-	if err := r.missing(c); err != nil {
+	if err := c.lacks(r.Key, r.Needs()); err != nil {
 		return diffusion.Law{}, err
 	}
 	log10D0, energy := r.Log10D0, r.E
@@ -188,15 +190,14 @@ func (r *Row) Law(c Conditions) (diffusion.Law, error) {
 	}}}, nil
 }
 
-// missing returns an error for the first condition that the row needs and c
-// does not give.
-func (r *Row) missing(c Conditions) error {
-	needs := r.Needs()
+// lacks returns an error for the first condition that the relation with the key
+// needs and c does not give.
+func (c Conditions) lacks(key string, needs []string) error {
 	for _, b := range limits() {
 		if _, given := c[b.name]; slices.Contains(needs, b.name) && !given {
 			return &thermal.InputError{
 				Field:   b.name,
-				Problem: "not given, but " + r.Key + " depends on it",
+				Problem: "not given, but " + key + " depends on it",
 				Remedy:  "give a value such as " + strconv.Quote(b.example),
 			}
 		}
