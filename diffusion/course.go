@@ -144,7 +144,7 @@ func endingAt(rims []Rim, t float64) ending {
 // stepTimes returns the times at which the steps of a span begin and end: those
 // at which the integral has grown to the plan's fractions of exp(lnG).
 func (p *Plan) stepTimes(h *thermal.History, t0, t1, lnG float64) []float64 {
-	marks := pieces(h.Breaks(nil), t0, t1)
+	marks := pieces(p.problem.Law.breaks(h), t0, t1)
 	grown := make([]float64, len(marks)) // ln of the integral from t0 to each mark
 	grown[0] = math.Inf(-1)
 	for i := 1; i < len(marks); i++ {
@@ -195,7 +195,7 @@ func pieces(breaks []float64, t0, t1 float64) []float64 {
 //
 //	integral of v dG / integral of dG.
 func (p *Plan) average(h *thermal.History, v *Given, times []float64) means {
-	breaks := mergedBreaks(h, v)
+	breaks := p.breaks(h, v)
 	fine := make([]float64, len(p.steps))
 	for i := range fine {
 		fine[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
@@ -203,9 +203,9 @@ func (p *Plan) average(h *thermal.History, v *Given, times []float64) means {
 	return means{fine, p.steps.mergedMeans(fine)}
 }
 
-// mergedBreaks returns the times at which a history or a value along it may break.
-func mergedBreaks(h *thermal.History, v *Given) []float64 {
-	breaks := slices.Concat(h.Breaks(nil), v.Breaks, v.Jumps)
+// breaks returns the times at which D along a history, the temperature or a value along it may break.
+func (p *Plan) breaks(h *thermal.History, v *Given) []float64 {
+	breaks := slices.Concat(p.problem.Law.breaks(h), v.Breaks, v.Jumps)
 	slices.Sort(breaks)
 	return breaks
 }
@@ -243,7 +243,8 @@ func (p *Plan) meanOver(h *thermal.History, v *Given, breaks []float64, ta, tb f
 	marks := pieces(breaks[i:j], ta, tb)
 	w := weighted{lnWeight: math.Inf(-1), halvings: maxHalvings}
 	for k := 1; k < len(marks); k++ {
-		w.addPiece(&p.problem.Law, h, v, marks[k-1], marks[k])
+		law := p.problem.Law.over(h, marks[k-1], marks[k])
+		w.addPiece(&law, h, v, marks[k-1], marks[k])
 	}
 	if math.IsInf(w.lnWeight, -1) { // a step of no width or no diffusion: any value near it will do
 		return v.At(clearOf(breaks, ta))

@@ -37,9 +37,9 @@ func (x *exchange) of(rough bool) [][]part {
 // exchange cuts the steps between the given times; mean is that of C_eq over them,
 // if it is given as a function of time.
 func (p *Plan) exchange(h *thermal.History, r *Rim, times []float64, mean means) exchange {
-	c := cutter{plan: p, rim: r, h: h, breaks: h.Breaks(nil)}
+	c := cutter{plan: p, rim: r, h: h, breaks: p.problem.Law.breaks(h)}
 	if r.Given != nil {
-		c.given = mergedBreaks(h, r.Given)
+		c.given = p.breaks(h, r.Given)
 	}
 	var x exchange
 	for i := range p.steps {
@@ -83,7 +83,8 @@ type cutter struct {
 	plan          *Plan
 	rim           *Rim
 	h             *thermal.History
-	breaks, given []float64 // of the history; with those of C_eq, if it is given
+	breaks, given []float64 // of D along the history; with those of C_eq, if it is given
+	law           Law       // between two breaks
 	parts         []part
 	lnG           []float64 // of each part
 	halvings      int       // that cut may still do
@@ -95,6 +96,7 @@ func (c *cutter) step(ta, tb float64) []part {
 	i, j := sort.SearchFloat64s(c.breaks, ta), sort.SearchFloat64s(c.breaks, tb)
 	marks := pieces(c.breaks[i:j], ta, tb)
 	for i := 1; i < len(marks); i++ {
+		c.law = c.plan.problem.Law.over(c.h, marks[i-1], marks[i])
 		c.cut(marks[i-1], marks[i])
 	}
 	whole := math.Inf(-1)
@@ -107,7 +109,7 @@ func (c *cutter) step(ta, tb float64) []part {
 	return c.parts
 }
 
-// cut adds the parts of a stretch in which temperature is smooth.
+// cut adds the parts of a stretch in which temperature and D are smooth.
 func (c *cutter) cut(a, b float64) {
 	m := a + (b-a)/2
 	_, begin := c.h.At(a)
@@ -121,7 +123,7 @@ func (c *cutter) cut(a, b float64) {
 		c.cut(m, b)
 		return
 	}
-	g := c.plan.problem.Law.LnIntegral(c.h, a, b)
+	g := c.law.LnIntegral(c.h, a, b)
 	if math.IsInf(g, -1) {
 		return
 	}
@@ -136,7 +138,7 @@ func (c *cutter) cut(a, b float64) {
 // lnRatio returns ln of D/k at a temperature.
 func (c *cutter) lnRatio(temp float64) float64 {
 	k := c.rim.Rate
-	return c.plan.problem.Law.LnD(temp) - k.LnA + k.E/temp
+	return c.law.LnD(temp) - k.LnA + k.E/temp
 }
 
 // evenRatio is by how much ln of D/k may change in half of a part: two

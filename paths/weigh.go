@@ -324,7 +324,7 @@ func (p *profile) byE(sigma float64) [2]float64 {
 		middle = 1 / standIn(law.Law, p.runs[0].course.LnG(), h.Life())
 	}
 	lnG := func(d float64) float64 {
-		moved := diffusion.Law{}
+		moved := diffusion.Law{Where: law.Law.Where}
 		for _, a := range law.Law.Terms {
 			a.E += d / thermal.GasConstant
 			a.LnA += d / thermal.GasConstant * middle

@@ -47,6 +47,8 @@ type Spec struct {
 	Times int     // of a repeat
 	Legs  []Spec  // of a repeat
 	Place Place   // where it stands in the study, for errors
+
+	Setting int // of all legs that it becomes, see Leg; a repeat has none, its legs have theirs
 }
 
 // backWithin is how near a reheat without a duration comes to the temperature it rose from before it ends, K.
@@ -191,6 +193,7 @@ type builder struct {
 	taken     map[string]bool
 	counts    map[*Spec]int // occurrences so far of what is named inside a repeat
 	temp      float64       // where the path has got to, K; 0 at its start
+	setting   int           // of the spec that is unrolled
 }
 
 // stretchOf is a name and the legs from ... to-1 that it stands for.
@@ -230,6 +233,7 @@ func (b *builder) named(s *Spec, repeated bool) error {
 }
 
 func (b *builder) unroll(s *Spec, repeated bool) error {
+	b.setting = s.Setting
 	switch s.Kind {
 	case SpecHold:
 		b.put(Leg{Kind: Hold, For: s.For, T0: s.Temp})
@@ -293,6 +297,7 @@ func (b *builder) reheat(s *Spec, base float64) error {
 
 // put appends a leg and goes to its end.
 func (b *builder) put(l Leg) {
+	l.Setting = b.setting
 	b.legs = append(b.legs, l)
 	b.temp = l.At(math.Inf(1))
 }

@@ -132,6 +132,9 @@ func (h *History) At(t float64) (before, after float64) {
 	return before, before
 }
 
+// Setting is that of the leg that goes on at t, s, of the last from the end of the path on. It panics on an empty history.
+func (h *History) Setting(t float64) int { return h.legs[min(h.leg(t), len(h.legs)-1)].Setting }
+
 // beforeIn is the temperature of leg i just before t, K; at its end exactly that of its end.
 func (h *History) beforeIn(i int, t float64) float64 {
 	if t >= h.starts[i+1] {

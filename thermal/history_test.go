@@ -273,7 +273,7 @@ func TestNoAllocation(t *testing.T) {
 		lo, hi := h.Range()
 		breaks = h.Breaks(breaks[:0])
 		sum += h.LnArrhenius(3e4, 0, 0, half) + h.LnArrhenius(-3e3, 1, half, h.Life()) + h.TimeAbove(1000) + before + after + lo + hi
-		sum += math.Exp(h.LnArrheniusAbove(3e4, 0, 1000))
+		sum += math.Exp(h.LnArrheniusIn(3e4, 0, Window{Above: 900, Below: 1000}, 0, half))
 		at, err := h.Moment(Moment{Kind: AfterStart, Offset: half})
 		if err != nil {
 			t.Fatal(err)

@@ -41,6 +41,8 @@ type Leg struct {
 	Tau    float64 // e-fold time of Relax, s
 	Sheet  *Sheet  // of SheetCooling
 	Rows   *Rows   // of Table
+
+	Setting int // which of the caller's sets of conditions holds during the leg; 0 is none in particular
 }
 
 // Limits of what Set accepts. They are far beyond anything a rock has seen, and keep every intermediate result of the
