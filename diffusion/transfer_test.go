@@ -69,6 +69,36 @@ func TestTransferKeepsMass(t *testing.T) {
 	}
 }
 
+// TestExchangeIsLinear: the derivative by what is outside a rim that exchanges is the
+// difference of two runs, with and without a host that the element follows. The
+// rim begins within the path, after a held one.
+func TestExchangeIsLinear(t *testing.T) {
+	for i := range 30 {
+		r := source(65, i)
+		h := randomHistory(t, r)
+		p := randomProblem(r, h, logUniform(r, 1e-6, 10))
+		if i%2 == 0 {
+			p = randomCoupled(r, h, logUniform(r, 1e-6, 10), 2)
+		}
+		late := transferRim(r, p, h)
+		late.From = h.Life() * r.Float64()
+		p.Outer = []Rim{{Kind: Held, Value: r.Float64()}, late}
+		p.Free = []Basis{{Start: make([]float64, len(p.Zones)), Outer: []float64{0, 1}}}
+		f := run(t, newPlan(t, p, Options{}), h)
+		more := *p
+		more.Outer = []Rim{p.Outer[0], late}
+		more.Outer[1].Value += 1
+		difference := run(t, newPlan(t, &more, Options{}), h).Cols[0]
+		for k := range difference {
+			difference[k] -= f.Cols[0][k]
+		}
+		wantClose(t, fmt.Sprintf("problem %d", i), f.Cols[1], difference, rounding)
+		if i := len(difference) - 1; !(f.Cols[1][i] > 0) {
+			t.Errorf("problem %d: nothing came through the rim", i)
+		}
+	}
+}
+
 // TestExchangeAtRest: a crystal in equilibrium with what is outside stays so to the
 // bit.
 func TestExchangeAtRest(t *testing.T) {

@@ -50,8 +50,8 @@ func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
 	}
 	for _, rims := range [][]Rim{e.Inner, e.Rims} {
 		for _, r := range rims {
-			if r.Kind == diffusion.Held && r.Zone < 0 && r.Value.open() {
-				d.add(r.Place.Error("", problem, `write held = "90 ppm", without "free" and "+-"`))
+			if r.valued() && r.Value.open() {
+				d.add(r.Place.Error("", problem, `write it like "90 ppm", without "free" and "+-"`))
 				return
 			}
 		}

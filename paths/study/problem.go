@@ -127,10 +127,11 @@ func markTied(dst []float64, rims []Rim, zone int) {
 	}
 }
 
-// rimValues adds a column for every open value at which a rim is held.
+// rimValues adds a column for every open value at which a rim is held or with which
+// it exchanges.
 func (b *builder) rimValues(name string, rims []Rim, end func(*diffusion.Basis) []float64) {
 	for i, r := range rims {
-		if r.Kind != diffusion.Held || r.Zone >= 0 || !r.Value.open() {
+		if !r.valued() || !r.Value.open() {
 			continue
 		}
 		full := name

@@ -238,12 +238,17 @@ type Start struct {
 type Rim struct {
 	Kind      diffusion.RimKind
 	Zone      int                 // held at the plateau of this zone; -1 if it is not tied to one
-	Value     Plateau             // held and tied to no zone; of transfer, in equilibrium with what is outside, exact
+	Value     Plateau             // held and tied to no zone; of transfer, in equilibrium with what is outside
 	Rate      diffusion.Arrhenius // of transfer: its coefficient, ln(m/s) and K
 	Given     *Series             // prescribed
 	Following *Following          // prescribed, unless Given
 	From      *thermal.Moment     // nil in the first of a list: from the start of the path
 	Place     thermal.Place       // of its moment, or of the rim if it has none
+}
+
+// valued reports whether the rim has a value of its own.
+func (r *Rim) valued() bool {
+	return r.Kind == diffusion.Held && r.Zone < 0 || r.Kind == diffusion.Transfer
 }
 
 // Following is a rim in equilibrium with a melt: Melt times K of the relation in

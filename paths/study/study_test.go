@@ -170,9 +170,13 @@ func TestEveryKeyRims(t *testing.T) {
 func TestEveryKeyTransfer(t *testing.T) {
 	s := everyKey(t)
 	c := &s.Crystals[0]
-	p, _, err := c.Problem(&c.Elements[1], s.Paths[0].History)
+	p, free, err := c.Problem(&c.Elements[1], s.Paths[0].History)
 	if err != nil {
 		t.Fatal(err)
+	}
+	i := slices.IndexFunc(free, func(f FreeValue) bool { return f.Name == "rim 2" })
+	if i < 0 || free[i].Prior != (thermal.Uncertain{Value: 60, Sigma: 5}) || !slices.Equal(p.Free[i].Outer, []float64{0, 1, 0}) {
+		t.Errorf("free values %+v of %+v", free, p.Free)
 	}
 	for i, want := range []diffusion.Arrhenius{{LnA: math.Log(1e-3), E: 200e3 / thermal.GasConstant}, {LnA: math.Log(5 * um / yr)}} {
 		r := p.Outer[1+i]
