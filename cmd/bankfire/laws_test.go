@@ -38,9 +38,8 @@ func TestLawsList(t *testing.T) {
 		{"species is a whole word", lawsFlags{species: "H"}, "2 laws.", "olivine-h-demouchy2006-c", "apatite-oh"},
 		{"tag", lawsFlags{tag: "multicomponent"}, "3 laws.", "apatite-oh-li2020", "quartz"},
 		{"checked", lawsFlags{checked: true, mineral: "plagioclase", species: ""}, "", "", ""},
-		{"not to be named in a study", lawsFlags{mineral: "olivine", species: "Fe-Mg"}, "* cannot be named in a study yet", "XFe *", "xxx"},
-		{"all to be named in a study", lawsFlags{mineral: "zircon"}, "7 laws.", "zircon-li-cherniak2010", "*"},
-		{"all to be named in a study with conditions", lawsFlags{mineral: "plagioclase", species: "Sr"}, "1 law.", "T, XAn  ", "*"},
+		{"with conditions", lawsFlags{mineral: "plagioclase", species: "Sr"}, "1 law.", "T, XAn  ", "*"},
+		{"on itself", lawsFlags{mineral: "olivine", species: "Fe-Mg"}, "2 laws.", "T, pressure, XFe  ", "*"},
 		{"checked quartz", lawsFlags{checked: true, mineral: "quartz"}, "3 laws.", "quartz-ti-cherniak2007", "memory"},
 	} {
 		t.Run(test.name, func(t *testing.T) {

@@ -18,12 +18,9 @@ func studyText(c lawCurve, given catalogue.Conditions) string {
 	switch {
 	case len(needs) == 0:
 		return fmt.Sprintf("In a study:\n\nlaw = %q\n", r.Key)
-	case c.law.Terms == nil && !r.OwnComposition():
+	case c.law.Terms == nil:
 		return fmt.Sprintf("In a study %s:\n\nlaw = %q\n\nWith values that stay the same all along instead,\n\n  %s\n\nprints a line for it.\n",
 			givingText(r), r.Key, r.Command())
-	case c.law.Terms == nil:
-		return fmt.Sprintf("A study cannot name this law yet, since it depends on %s. With your values,\n\n  %s\n\nprints a line for it.\n",
-			list(needs), r.Command())
 	}
 	line, ok := studyLine(c, given)
 	if !ok {
@@ -36,8 +33,13 @@ func studyText(c lawCurve, given catalogue.Conditions) string {
 // fO2 and pressure in its [conditions]".
 func givingText(r *catalogue.Row) string {
 	host, on := r.OnHost()
-	rest := slices.DeleteFunc(r.Needs(), func(name string) bool { return on && name == host.Variable })
+	rest := slices.DeleteFunc(r.Needs(), func(name string) bool {
+		return on && name == host.Variable || r.OwnComposition() && name == r.Composition.Variable
+	})
 	var parts []string
+	if r.OwnComposition() {
+		parts = append(parts, "of Fe or Mg in Fo or mole fraction")
+	}
 	if on {
 		parts = append(parts, "that gives "+host.Variable+" of every zone, such as host = 0.55")
 	}

@@ -30,7 +30,7 @@ func listLaws(out io.Writer, filter lawsFilter) error {
 	tab := lawTable()
 	tab.row("key", "mineral", "species", "tag", "calibrated", "depends on", "checked")
 	for _, r := range rows {
-		tab.row(r.Key, r.Mineral, r.Species, string(r.Tag), calibratedText(&r), dependsText(&r)+conditionMark(&r), yesNo(r.Checked()))
+		tab.row(r.Key, r.Mineral, r.Species, string(r.Tag), calibratedText(&r), dependsText(&r), yesNo(r.Checked()))
 	}
 	tab.writeTo(&text)
 	fmt.Fprintf(&text, "\n%s.", countText(len(rows)))
@@ -38,21 +38,8 @@ func listLaws(out io.Writer, filter lawsFilter) error {
 		fmt.Fprintf(&text, " checked no: %s.", catalogue.NotChecked)
 	}
 	fmt.Fprintln(&text)
-	if slices.ContainsFunc(rows, func(r catalogue.Row) bool { return conditionMark(&r) != "" }) {
-		fmt.Fprintln(&text, "* cannot be named in a study yet: bankfire laws KEY, with a flag for each thing but T that the law\n"+
-			"  depends on, prints the line to write there instead.")
-	}
 	_, err := out.Write(text.Bytes())
 	return err
-}
-
-// conditionMark is the sign of a law that a study cannot name, since it depends
-// on what diffuses.
-func conditionMark(r *catalogue.Row) string {
-	if r.OwnComposition() {
-		return " *"
-	}
-	return ""
 }
 
 // noLaw says what a filter that lets nothing through could have asked for.

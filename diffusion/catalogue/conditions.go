@@ -133,7 +133,7 @@ func (r *Row) Needs() []string {
 }
 
 // OwnComposition reports whether the law depends on the very composition that
-// diffuses.
+// diffuses, by a linear term.
 func (r *Row) OwnComposition() bool { return r.Composition.Variable == XFe }
 
 // OnHost returns what the composition of the host, which stays as it is, adds to

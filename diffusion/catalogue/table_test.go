@@ -79,8 +79,12 @@ func checkNumbers(t *testing.T, r *Row) {
 
 func checkTerms(t *testing.T, r *Row) {
 	t.Helper()
-	if term, on := r.OnHost(); on && (term.Form != Linear || r.OwnComposition()) {
-		t.Errorf("a term of the host is %s, want linear: it becomes a factor by zone", term.Form)
+	_, onHost := r.OnHost()
+	if onHost && r.OwnComposition() {
+		t.Error("depends on the host and on the element itself")
+	}
+	if (onHost || r.OwnComposition()) && r.Composition.Form != Linear {
+		t.Errorf("a term of the host or the element is %s, want linear: it becomes a factor exp(slope (X - at))", r.Composition.Form)
 	}
 	for _, term := range r.terms() {
 		if term.Slope == 0 {

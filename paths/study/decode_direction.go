@@ -23,7 +23,7 @@ const (
 //
 // with a law along each axis and the angles of the boundary's normal to the
 // axes.
-func (d *decoder) directed(n *node, c *Crystal) Law {
+func (d *decoder) directed(n *node, c *Crystal, e *Element) Law {
 	d.keys(n, directionTable)
 	shares, ok := d.cosines(d.need(n, "normal", normalRemedy))
 	var parts []Part
@@ -33,7 +33,7 @@ func (d *decoder) directed(n *node, c *Crystal) Law {
 		if v == nil || !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
 			continue
 		}
-		parts = addPart(parts, axis, shares[i], d.law(v, c))
+		parts = addPart(parts, axis, shares[i], d.law(v, c, e))
 	}
 	if !ok || d.faults > before {
 		return Law{}

@@ -18,7 +18,6 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 			d.unique(v, e.Name, seen)
 		}
 	}
-	e.Law = d.law(d.need(n, "law", `write a key of the catalogue, such as law = "quartz-ti-cherniak2007"`), c)
 	u := &units{element: e.Name, measured: n.get("traverse") != nil, known: map[float64]bool{}}
 	d.traverse(n.get("traverse"), c, &e, u)
 	e.Partition = d.partition(n.get("partition"), c, &e)
@@ -30,9 +29,10 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	if e.Traverse != nil && e.Traverse.Grey {
 		d.grey(n.get("traverse"), &e, u)
 	}
+	e.Unit = u.unit
+	e.Law = d.law(d.need(n, "law", `write a key of the catalogue, such as law = "quartz-ti-cherniak2007"`), c, &e)
 	d.followers(e.Inner, min(0, len(c.Zones)-1), c, &e)
 	d.followers(e.Rims, len(c.Zones)-1, c, &e)
-	e.Unit = u.unit
 	d.assumed(n, c, &e)
 	d.nonlinear(n, c, &e)
 	return e
@@ -41,6 +41,7 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 // assumed notes what was taken because the study does not say.
 func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	d.otherMineral(c, e)
+	d.noteXFe(e)
 	if n.get("start").get("edge") == nil && len(c.Zones) > 1 {
 		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)
 	}

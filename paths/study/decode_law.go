@@ -95,13 +95,13 @@ func (d *decoder) calibrated(n *node) (lo, hi float64) {
 
 // law reads the law of an element: a key of the catalogue, the name of a
 // [[law]], or the constants themselves.
-func (d *decoder) law(n *node, c *Crystal) Law {
+func (d *decoder) law(n *node, c *Crystal, e *Element) Law {
 	const example = `write a key that "bankfire laws" lists, the name of a [[law]], or { D0 = "7e-8 m2/s", E = "273 kJ/mol" }`
 	if n == nil {
 		return Law{}
 	}
 	if slices.ContainsFunc(tables[directionTable].Keys, func(key string) bool { return n.get(key) != nil }) {
-		return d.directed(n, c)
+		return d.directed(n, c, e)
 	}
 	if n.kind == tableNode {
 		return d.onHost(n, d.ownLaw(n, lawTable), c)
@@ -118,7 +118,7 @@ func (d *decoder) law(n *node, c *Crystal) Law {
 		d.unknownLaw(n, key, err)
 		return Law{}
 	}
-	return d.published(n, row, c)
+	return d.published(n, row, c, e)
 }
 
 // onHost reports a law of the study that depends on a host that is not given.
@@ -138,17 +138,22 @@ func (d *decoder) unknownLaw(n *node, key string, err error) {
 }
 
 // published returns the law of a row of the catalogue under the study's
-// conditions. Where it depends on the host it is that of its reference
-// composition, and the zones have the factor of their own.
-func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal) Law {
+// conditions. Where it depends on a composition, that of the host or the element's
+// own, it is that of the reference, and the zones or values have the factor of
+// their own.
+func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal, e *Element) Law {
 	law := Law{Key: row.Key, Row: row, Sigma: row.SigmaMid.Value, TMin: row.TMin, TMax: row.TMax, Citation: row.Citation}
-	if !d.givesAll(n, row, c) {
+	if !d.givesAll(n, row, c, e) {
 		return law
 	}
 	at := maps.Clone(d.at.Given)
-	if term, on := row.OnHost(); on {
+	switch term := row.Composition; {
+	case e.onHost(row):
 		at[term.Variable] = term.Reference
 		law.HostSlope, law.HostAt = math.Ln10*term.Slope, term.Reference
+	case row.OwnComposition():
+		at[term.Variable] = term.Reference
+		d.ownIron(n, row, e, &law)
 	}
 	needs := row.Needs()
 	for _, name := range needs {
@@ -171,22 +176,27 @@ func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal) Law {
 	return law
 }
 
+// onHost reports whether the law of a row depends on the host of the zones: a
+// tracer has one of its own XFe too, which iron and magnesium are themselves.
+func (e *Element) onHost(row *catalogue.Row) bool {
+	_, on := row.OnHost()
+	return on || row.OwnComposition() && !e.ironOrMagnesium()
+}
+
 // givesAll reports every condition of the law that the study does not give.
-func (d *decoder) givesAll(n *node, row *catalogue.Row, c *Crystal) bool {
-	if row.OwnComposition() {
-		d.report(n, "this law depends on "+strings.Join(row.Needs(), ", ")+", and "+row.Composition.Variable+" changes as it diffuses, which is not known in this version",
-			"run "+row.Command()+" with your values, and paste the line that it prints")
-		return false
-	}
+func (d *decoder) givesAll(n *node, row *catalogue.Row, c *Crystal, e *Element) bool {
 	var missing, conditions []string
 	remedy := ""
-	_, onHost := row.OnHost()
 	for _, name := range row.Needs() {
 		switch {
-		case onHost && name == row.Composition.Variable:
+		case name == row.Composition.Variable && e.onHost(row):
 			if !c.Hosted && len(c.Zones) > 0 {
 				missing, remedy = append(missing, name), hostRemedy+"; or "
+				if name == catalogue.XFe {
+					remedy = e.Name + " is neither Fe nor Mg: give every zone of the crystal its XFe, such as host = 0.12; or "
+				}
 			}
+		case name == row.Composition.Variable && row.OwnComposition():
 		case !d.at.gives(name):
 			missing, conditions = append(missing, name), append(conditions, name+" = "+conditionExample(name))
 		}

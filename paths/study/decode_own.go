@@ -3,8 +3,11 @@ package study
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"bankfire/diffusion"
+	"bankfire/diffusion/catalogue"
+	"bankfire/thermal"
 )
 
 // maxOwn bounds by what D may change with the element's own value, as ln.
@@ -28,6 +31,57 @@ func (d *decoder) lawOwn(n *node, kind tableKind, law *Law) {
 			d.report(at, "below zero", "a value is zero or more")
 		}
 		law.OwnAt = at.number
+	}
+}
+
+// ownIron makes a law of the catalogue, whose log10 D has the term
+// Slope (XFe - Reference), one of the element's own value. XFe = Fe/(Fe+Mg) is a
+// straight line in a value that counts moles, and none in one of mass.
+func (d *decoder) ownIron(n *node, row *catalogue.Row, e *Element, law *Law) {
+	const want = "want Fo, or a mole fraction or mol% of Fe/(Fe+Mg) or Mg/(Fe+Mg)"
+	xFe, ok := e.xFe()
+	switch {
+	case ok:
+		term := row.Composition
+		law.OwnSlope = math.Ln10 * term.Slope * xFe.scale
+		law.OwnAt = (term.Reference - xFe.offset) / xFe.scale
+	case e.Unit != "":
+		d.report(n, fmt.Sprintf("this law depends on XFe = Fe/(Fe+Mg), which %s in %s does not tell", e.Name, e.Unit),
+			want+"; or run "+row.Command()+" with your values, and paste the line that it prints")
+	}
+}
+
+// xFe returns what Fe/(Fe+Mg) is of a value of the element. ok is false for
+// elements that are neither iron nor magnesium, and units that count no moles.
+func (e *Element) xFe() (xFe component, ok bool) {
+	fo, ok := (&units{element: e.Name}).of("Fo", moleFraction)
+	unit, moles := thermal.ConcentrationFactor(e.Unit, moleFraction)
+	if !ok || !moles {
+		return component{}, false
+	}
+	// C = scale Fo + offset, so that XFe = 1 - Fo = 1 - (C - offset) / scale
+	return component{scale: -unit / fo.scale, offset: 1 + fo.offset/fo.scale}, true
+}
+
+// ironOrMagnesium reports whether the element is one of those that XFe is made of.
+func (e *Element) ironOrMagnesium() bool {
+	_, ok := (&units{element: e.Name}).of("Fo", moleFraction)
+	return ok
+}
+
+// noteXFe notes which composition a law that depends on XFe was given.
+func (d *decoder) noteXFe(e *Element) {
+	if !slices.ContainsFunc(e.Law.all(), func(l *Law) bool { return l.Row != nil && l.Row.OwnComposition() }) {
+		return
+	}
+	xFe, ok := e.xFe()
+	switch {
+	case !ok:
+		d.note("%s: XFe, on which its law depends, is the host of each zone and stays as it is", e.Name)
+	case xFe.scale > 0:
+		d.note("%s: XFe, on which its law depends, is its value, taken as Fe/(Fe+Mg)", e.Name)
+	default:
+		d.note("%s: XFe, on which its law depends, is 1 less its value, taken as Mg/(Fe+Mg)", e.Name)
 	}
 }
 
@@ -59,7 +113,7 @@ func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
 	lo, hi := c.values(e)
 	if most := max(e.Law.lnOwn(hi), e.Law.lnOwn(lo), -e.Law.lnOwn(lo), -e.Law.lnOwn(hi)); !(most <= maxOwn) {
 		d.report(n.get("law"), fmt.Sprintf("its own composition, from %.4g to %.4g %s, changes D by a factor of e^%.3g", lo, hi, e.Unit, most),
-			"check ln_slope and at: C is in "+e.Unit)
+			"check the values, and ln_slope and at if the law is yours: C is in "+e.Unit)
 	}
 }
 
