@@ -86,7 +86,7 @@ func (l *Leg) arrhenius(e float64, k int, t0, t1 float64) scaled {
 	case Relax:
 		return relaxIntegral(e, k, l.T0, l.T1, t0/l.Tau, (t1-t0)/l.Tau).times(l.Tau)
 	case SheetCooling:
-		return l.Sheet.arrhenius(e, k, t0, t1)
+		return l.Sheet.arrhenius(e, k, l.Since+t0, l.Since+t1)
 	case Table:
 		return l.Rows.arrhenius(e, k, t0, t1)
 	}

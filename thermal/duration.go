@@ -25,7 +25,8 @@ func (l *Leg) above(temp float64) (from, to float64) {
 	case Relax:
 		return stretch(l.T0, l.At(l.For), temp, l.For, l.Tau*math.Log((l.T0-l.T1)/(temp-l.T1)))
 	case SheetCooling:
-		return l.Sheet.above(temp, l.For)
+		from, to = l.Sheet.above(temp, l.Since+l.For)
+		return max(0, from-l.Since), max(0, to-l.Since)
 	}
 	panic("thermal: " + l.Kind.String())
 }

@@ -40,6 +40,7 @@ type Leg struct {
 	T0, T1 float64 // K: T0 of Hold, Ramp and Relax, T1 of Ramp (its end) and Relax (the ambient temperature)
 	Tau    float64 // e-fold time of Relax, s
 	Sheet  *Sheet  // of SheetCooling
+	Since  float64 // of SheetCooling: time from the emplacement to the start of the leg, s
 	Rows   *Rows   // of Table
 
 	Setting int // which of the caller's sets of conditions holds during the leg; 0 is none in particular
@@ -75,7 +76,7 @@ func (l *Leg) At(t float64) float64 {
 	case Relax:
 		return l.T1 + (l.T0-l.T1)*math.Exp(-t/l.Tau)
 	case SheetCooling:
-		return l.Sheet.At(t)
+		return l.Sheet.At(l.Since + t)
 	case Table:
 		return l.Rows.after(t)
 	}
@@ -102,7 +103,7 @@ func (l *Leg) ramp(t float64) float64 {
 func (l *Leg) Range() (lo, hi float64) {
 	switch l.Kind {
 	case SheetCooling:
-		return l.Sheet.span(0, l.For)
+		return l.Sheet.span(l.Since, l.Since+l.For)
 	case Table:
 		return l.Rows.span(l.length())
 	}
@@ -120,7 +121,7 @@ func (l *Leg) check() *InputError {
 	case Relax:
 		return firstProblem(checkDuration(l.For), checkTemperature(l.T0), checkTemperature(l.T1), checkEfold(l.Tau))
 	case SheetCooling:
-		return firstProblem(checkDuration(l.For), l.Sheet.check())
+		return firstProblem(checkDuration(l.For), checkDuration(l.Since), l.Sheet.check())
 	case Table:
 		return firstProblem(checkDuration(l.For), l.Rows.check(l.For))
 	}
