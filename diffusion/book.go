@@ -15,19 +15,19 @@ type book struct {
 	lo, hi float64 // least and greatest of start and rim values so far
 }
 
-func (p *Plan) openBook(c []float64) book {
+// openBook returns the account of a run before its first step.
+func (p *Plan) openBook() book {
 	b := book{lo: math.Inf(1), hi: math.Inf(-1)}
 	for i, v := range p.grid.volumes {
-		b.start += v * c[i]
-		b.scale += v * math.Abs(c[i])
-		b.see(c[i])
+		c := p.starts[0][i]
+		b.start += v * c
+		b.scale += v * math.Abs(c)
+		b.see(c)
 	}
 	return b
 }
 
-func (b *book) see(value float64) {
-	b.lo, b.hi = min(b.lo, value), max(b.hi, value)
-}
+func (b *book) see(value float64) { b.lo, b.hi = leastMost(b.lo, b.hi, value) }
 
 // enter books one solve from the values of the first and last cell before and
 // after it. Crank-Nicolson sees the mean of both, over twice the length.
@@ -57,15 +57,15 @@ func (b *book) flow(k, v, before, after float64, euler bool) {
 
 // close writes what the account says of the final answer c.
 func (b *book) close(s *Stats, p *Plan, c []float64) {
-	content, worst := 0.0, 0.0
+	content, lo, hi := 0.0, b.lo, b.hi
 	for i, v := range p.grid.volumes {
 		content += v * c[i]
-		worst = max(worst, c[i]-b.hi, b.lo-c[i])
+		lo, hi = leastMost(lo, hi, c[i])
 	}
 	if b.scale > 0 {
 		s.MassDrift = math.Max(0, math.Abs(content-b.start-b.inflow)-b.noise) / b.scale
 	}
 	if b.hi > b.lo && p.host == nil {
-		s.Overshoot = worst / (b.hi - b.lo)
+		s.Overshoot = max(hi-b.hi, b.lo-lo) / (b.hi - b.lo)
 	}
 }

@@ -71,8 +71,7 @@ func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bo
 	for left := w.extent; solves < mostNewton; {
 		solves++
 		u := f.driving(op, c)
-		w.confine(op, c, u)
-		w.look(own, c)
+		w.look(own, op, c, u)
 		w.crossBridges(own, op, u)
 		w.open(own, &in, &out, c, anew)
 		if anew {
@@ -167,32 +166,32 @@ func leastMost(lo, hi, value float64) (float64, float64) {
 	return lo, hi
 }
 
-// confine brings the state c, of potential u, back to where it must lie, from
-// where an iteration has left it. So none runs away, and what the last one found
-// stays as it is.
-func (w *newton) confine(op *operator, c, u []float64) {
-	for i, v := range u {
-		if v >= w.lo && v <= w.hi {
-			continue
-		}
-		v = min(max(v, w.lo), w.hi)
-		u[i], c[i] = v, v
-		if op.k != nil {
-			c[i] = v * op.k[i]
-		}
-		w.change[i] = c[i] - w.before[i]
-	}
-}
-
-// look takes D's factor in the state c.
-func (w *newton) look(own func(float64) float64, c []float64) {
-	factor := w.factor[:len(c)]
+// look takes D's factor in the state c of potential u.
+func (w *newton) look(own func(float64) float64, op *operator, c, u []float64) {
+	factor, lo, hi := w.factor[:len(c)], w.lo, w.hi
+	u = u[:len(c)]
 	for i, v := range c {
+		if !(u[i] >= lo && u[i] <= hi) {
+			v = w.confine(op, c, u, i)
+		}
 		if v < 0 {
 			v = 0
 		}
 		factor[i] = own(v)
 	}
+}
+
+// confine brings cell i of the state c, of potential u, back to where it must lie,
+// from where an iteration has left it, and returns its value. So none runs away, and
+// what the last one found stays as it is.
+func (w *newton) confine(op *operator, c, u []float64, i int) float64 {
+	u[i] = min(max(u[i], w.lo), w.hi)
+	c[i] = u[i]
+	if op.k != nil {
+		c[i] = u[i] * op.k[i]
+	}
+	w.change[i] = c[i] - w.before[i]
+	return c[i]
 }
 
 // slopes fills in by how much the fluxes through the faces inside change with u.
@@ -332,22 +331,18 @@ func (w *newton) sweep() {
 func (w *newton) move(op *operator, c []float64) float64 {
 	n := len(c)
 	before, change, rhs := w.before[:n], w.change[:n], w.rhs[:n]
-	moved, changed := 0.0, 0.0
+	down, up, fallen, risen := 0.0, 0.0, 0.0, 0.0
 	for i, d := range rhs {
 		if op.k != nil {
 			d *= op.k[i]
 		}
 		x := change[i] + d
 		change[i], c[i] = x, before[i]+x
-		if d = math.Abs(d); d > moved {
-			moved = d
-		}
-		if x = math.Abs(x); x > changed {
-			changed = x
-		}
+		down, up = leastMost(down, up, d)
+		fallen, risen = leastMost(fallen, risen, x)
 	}
-	w.changed = changed
-	return moved
+	w.changed = max(-fallen, risen)
+	return max(-down, up)
 }
 
 // settled says whether iterations may end that have moved the state by so much,

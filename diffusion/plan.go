@@ -29,6 +29,7 @@ type Plan struct {
 	still   operator    // without coupling: the same in every solve
 	host    *hostGrid   // nil without coupling
 	starts  [][]float64 // cell means: the answer, then one column per free value
+	opened  book        // of the answer, before any step
 	steps   schedule    // between two events
 	events  []float64   // s, ascending: times after 0 at which the solution is damped anew
 	halved  *Plan       // on half the cells; nil in a halved plan itself
@@ -83,6 +84,7 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 			return nil, fmt.Errorf("diffusion: column %d starts at %g near %g m", j, column[i], g.centres[i])
 		}
 	}
+	plan.opened = plan.openBook()
 	return plan, nil
 }
 

@@ -158,7 +158,7 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 	p.reset(f)
 	f.lane.resize(len(p.grid.centres))
 	f.atSpan = f.atSpan[:0]
-	book := p.openBook(f.Cols[0])
+	book := p.opened
 	for i := range job.Course.spans {
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)

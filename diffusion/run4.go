@@ -29,7 +29,7 @@ func (p *Plan) runFour(dst []Field, jobs []Job) {
 	spans := 0
 	for k := range dst {
 		p.reset(&dst[k])
-		cr.books[k] = p.openBook(dst[k].Cols[0])
+		cr.books[k] = p.opened
 		spans = max(spans, len(jobs[k].Course.spans))
 	}
 	for i := range spans {
