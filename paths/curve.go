@@ -15,6 +15,7 @@ type Curve struct {
 	Best              float64    // chi-square of the profile's own best fit
 	Points            int        // data points
 	Free              int        // degrees of freedom that values fitted from the points alone take
+	Crystal           int        // the crystal it was measured in: those of one number are judged jointly as well
 	Law               int        // the law it rests on, counted from 1 among Judge's laws; 0 if that has no errors
 	ByE               [2]float64 // first and second derivative of ln G by the law's activation energy, mol/J
 }
@@ -219,27 +220,38 @@ func (c *Curve) add(lnM, chiSq float64) {
 
 // Sum returns the joint curve of several profiles that share one multiplier,
 // which all know over the same range. Between any two knots of any of them all
-// are cubic, so it is their sum everywhere. Sum panics if there are none.
+// are cubic, so it is their sum everywhere, to the last bit whatever their order.
+// Sum panics if there are none.
 func Sum(cs []Curve) Curve {
 	if len(cs) == 0 {
 		panic("paths: the sum of no curves")
 	}
 	var sum Curve
+	values, slopes := make([]float64, len(cs)), make([]float64, len(cs))
 	for i := range cs {
 		sum.LnM = append(sum.LnM, cs[i].LnM...)
 		sum.Points += cs[i].Points
 		sum.Free += cs[i].Free
-		sum.Best += cs[i].Best
+		values[i] = cs[i].Best
 	}
+	sum.Best = sumOf(values)
 	slices.Sort(sum.LnM)
 	sum.LnM = slices.Compact(sum.LnM)
 	for _, x := range sum.LnM {
-		chi, slope := 0.0, 0.0
 		for i := range cs {
-			v, s := cs[i].at(x)
-			chi, slope = chi+v, slope+s
+			values[i], slopes[i] = cs[i].at(x)
 		}
-		sum.ChiSq, sum.Slope = append(sum.ChiSq, chi), append(sum.Slope, slope)
+		sum.ChiSq, sum.Slope = append(sum.ChiSq, sumOf(values)), append(sum.Slope, sumOf(slopes))
+	}
+	return sum
+}
+
+// sumOf adds the values, which it sorts, to the same bits whatever their order.
+func sumOf(values []float64) float64 {
+	slices.Sort(values)
+	sum := 0.0
+	for _, v := range values {
+		sum += v
 	}
 	return sum
 }
@@ -303,17 +315,21 @@ func sharpen(cs []Curve, each []sampler) error {
 	}
 	joint := Sum(cs)
 	add := func(at []float64) ([]float64, error) {
-		sums := make([]float64, len(at))
+		all := make([][]float64, len(at)) // for each multiplier the values of all profiles
 		for k := range cs {
 			values, err := cs[k].sample(each[k], at)
 			if err != nil {
 				return nil, err
 			}
 			for i, v := range values {
-				sums[i] += v
+				all[i] = append(all[i], v)
 			}
 		}
 		joint = Sum(cs)
+		sums := make([]float64, len(at))
+		for i := range sums {
+			sums[i] = sumOf(all[i])
+		}
 		return sums, nil
 	}
 	if err := joint.refine(add); err != nil {

@@ -45,6 +45,7 @@ type Finding struct {
 type Outcome struct {
 	Finding              // joint
 	Profiles []Finding   // each by itself, in the order of the curves
+	Crystals []Finding   // the profiles of each crystal jointly, in the order in which the curves have them
 	WithLaws LawsAllowed // the same with the laws' own errors allowed for
 }
 
@@ -76,20 +77,53 @@ type Leaning struct {
 //
 // where to pass is to be no smaller than 1 - confidence. If m spends the last
 // degree, what is left of chi-square is there because m met a bound, so that it
-// counts as one again. What is not a number does not pass. The second verdict
+// counts as one again. What is not a number does not pass. The profiles of each
+// crystal are judged jointly in the same way. The second verdict
 // allows each of the laws to deviate, shared by all its profiles, at the cost
 // of its prior. Judge never solves. It panics if there are no curves.
 func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
-	joint := Sum(cs)
-	dst.Finding = find(&joint, confidence)
 	dst.Profiles = dst.Profiles[:0]
 	for i := range cs {
 		dst.Profiles = append(dst.Profiles, find(&cs[i], confidence))
 	}
-	if dst.Verdict == WrongShape && len(cs) > 1 && !slices.ContainsFunc(dst.Profiles, Finding.hopeless) {
-		dst.Verdict = AtOdds
+	dst.Finding = jointly(cs, dst.Profiles, confidence)
+	dst.Crystals = dst.Crystals[:0]
+	for _, of := range byCrystal(cs) {
+		var curves []Curve
+		var each []Finding
+		for _, i := range of {
+			curves, each = append(curves, cs[i]), append(each, dst.Profiles[i])
+		}
+		dst.Crystals = append(dst.Crystals, jointly(curves, each, confidence))
 	}
 	dst.WithLaws = allow(cs, laws, &dst.Finding, confidence)
+}
+
+// jointly judges several profiles, which have the findings each by itself.
+func jointly(cs []Curve, each []Finding, confidence float64) Finding {
+	sum := Sum(cs)
+	f := find(&sum, confidence)
+	if f.Verdict == WrongShape && len(cs) > 1 && !slices.ContainsFunc(each, Finding.hopeless) {
+		f.Verdict = AtOdds
+	}
+	return f
+}
+
+// byCrystal returns the numbers of the curves of each crystal, crystals in the
+// order in which they first come.
+func byCrystal(cs []Curve) [][]int {
+	var of [][]int
+	place := map[int]int{}
+	for i := range cs {
+		k, known := place[cs[i].Crystal]
+		if !known {
+			k = len(of)
+			place[cs[i].Crystal] = k
+			of = append(of, nil)
+		}
+		of[k] = append(of[k], i)
+	}
+	return of
 }
 
 // allow judges the path with the laws' own errors. It passes if the smallest

@@ -9,14 +9,14 @@ import (
 	"bankfire/thermal"
 )
 
-// notes says what about the verdict the reader must know.
-func (o *Outcome) notes() []string {
+// Notes says what about the finding the reader must know.
+func (f *Finding) Notes() []string {
 	var notes []string
-	if o.Verdict == Unjudged {
+	if f.Verdict == Unjudged {
 		notes = append(notes, "no degrees of freedom are left: as many values are fitted as there are points that say anything")
 	}
-	if o.Ranges > 1 {
-		notes = append(notes, fmt.Sprintf("%d separate amounts of diffusion agree about equally well; the shift factor is that of the best", o.Ranges))
+	if f.Ranges > 1 {
+		notes = append(notes, fmt.Sprintf("%d separate amounts of diffusion agree about equally well; the shift factor is that of the best", f.Ranges))
 	}
 	return notes
 }

@@ -73,15 +73,15 @@ func TestNotesOfAnOutcome(t *testing.T) {
 	c, _ := scanned(t, func(x float64) float64 { return 10 + well(500, -3)(x) + well(501, 4)(x) })
 	var o Outcome
 	Judge(&o, []Curve{c}, nil, 0.95)
-	if notes := strings.Join(o.notes(), "\n"); o.Ranges != 2 || !strings.Contains(notes, "2 separate amounts of diffusion") {
+	if notes := strings.Join(o.Notes(), "\n"); o.Ranges != 2 || !strings.Contains(notes, "2 separate amounts of diffusion") {
 		t.Errorf("%d ranges, notes %q", o.Ranges, notes)
 	}
 	Judge(&o, []Curve{bowl(19, 0, 1, 22, 2)}, nil, 0.95)
-	if notes := o.notes(); len(notes) > 0 {
+	if notes := o.Notes(); len(notes) > 0 {
 		t.Errorf("one range, notes %q", notes)
 	}
 	Judge(&o, []Curve{bowl(0, 0, 1, 2, 2)}, nil, 0.95)
-	if notes := strings.Join(o.notes(), "\n"); !strings.Contains(notes, "no degrees of freedom are left") {
+	if notes := strings.Join(o.Notes(), "\n"); !strings.Contains(notes, "no degrees of freedom are left") {
 		t.Errorf("no degrees, notes %q", notes)
 	}
 }

@@ -19,10 +19,11 @@ import (
 
 // Result is a study weighed: what became of every path, in the study's order.
 type Result struct {
-	Study *study.Study
-	Laws  []LawPrior // in the order of first use
-	Own   []OwnBest  // one a measured element
-	Paths []PathResult
+	Study    *study.Study
+	Laws     []LawPrior       // in the order of first use
+	Own      []OwnBest        // one a measured element
+	Crystals []*study.Crystal // those with a measured element, in the order of an Outcome's
+	Paths    []PathResult
 }
 
 // PathResult is one path with its verdict. A barred path has no outcome but
@@ -100,6 +101,7 @@ func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 type weighing struct {
 	study    *study.Study
 	elements []element
+	crystals []*study.Crystal // with a measured element
 	laws     []LawPrior
 	paths    []weighedPath
 }
@@ -108,6 +110,7 @@ type weighing struct {
 type element struct {
 	crystal *study.Crystal
 	element *study.Element
+	place   int // of the crystal among those with a measured element
 	law     int
 	white   *mat.TriDense // makes the errors of overlapping spots independent; nil if they are
 	scatter float64       // extra scatter of its traverse, in its unit
@@ -130,7 +133,10 @@ func newWeighing(s *study.Study) (*weighing, error) {
 				if err != nil {
 					return nil, err
 				}
-				w.elements = append(w.elements, element{&s.Crystals[i], e, w.law(&e.Law), white, 0})
+				if c := &s.Crystals[i]; !slices.Contains(w.crystals, c) {
+					w.crystals = append(w.crystals, c)
+				}
+				w.elements = append(w.elements, element{&s.Crystals[i], e, len(w.crystals) - 1, w.law(&e.Law), white, 0})
 			}
 		}
 	}
@@ -247,6 +253,7 @@ func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws
 		}
 		result.NumErr = math.Max(result.NumErr, best)
 		result.Notes = result.notes(path)
+		curve.Crystal = e.place
 		if curve.Law = e.law; e.law > 0 {
 			curve.ByE = p.byE(laws[e.law-1].E)
 		}
@@ -257,11 +264,18 @@ func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws
 	}
 }
 
-// sharpen makes the joint curve right around its own lowest point.
+// sharpen makes the joint curves, of each crystal and of all, right around their
+// own lowest points.
 func (w *weighedPath) sharpen(ctx context.Context) error {
 	each := make([]sampler, len(w.profiles))
 	for i, p := range w.profiles {
 		each[i] = p.sampler(ctx)
+	}
+	for _, of := range byCrystal(w.curves) { // elements of a crystal stand together
+		from, to := of[0], of[len(of)-1]+1
+		if err := sharpen(w.curves[from:to], each[from:to]); err != nil {
+			return err
+		}
 	}
 	return sharpen(w.curves, each)
 }
@@ -517,7 +531,7 @@ func (w *weighing) ownBest(n int) (path int, lnM float64) {
 
 // judge turns curves into verdicts.
 func (w *weighing) judge() (*Result, error) {
-	r := &Result{Study: w.study, Laws: w.laws, Paths: make([]PathResult, len(w.paths))}
+	r := &Result{Study: w.study, Laws: w.laws, Crystals: w.crystals, Paths: make([]PathResult, len(w.paths))}
 	for n := range w.elements {
 		own, err := w.examine(n)
 		if err != nil {
@@ -569,7 +583,7 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 		return r
 	}
 	Judge(&r.Outcome, p.curves, w.laws, w.study.Confidence)
-	r.Notes = r.Outcome.notes()
+	r.Notes = r.Outcome.Notes()
 	for n := range own {
 		if o := &own[n]; r.Outcome.Verdict == WrongShape && !o.passes(w.study.Confidence) {
 			r.Notes = append(r.Notes, fmt.Sprintf("errors too small or model wrong for %s in %s: not even its own best fit passes, so no path is to blame", o.Element.Name, o.Crystal.Name))

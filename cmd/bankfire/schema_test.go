@@ -79,7 +79,7 @@ func TestSummaryKeepsSchema(t *testing.T) {
 		{"no degrees left", func(r *paths.Result) {
 			o := &r.Paths[0].Outcome
 			o.Verdict, o.Tail, o.Points, o.Degrees = paths.Unjudged, math.NaN(), 0, -2
-			o.Profiles[0] = o.Finding
+			o.Profiles[0], o.Crystals[0] = o.Finding, o.Finding
 			o.WithLaws = paths.LawsAllowed{Verdict: paths.Unjudged, Tail: math.NaN(), Misfit: math.NaN()}
 		}},
 		{"every verdict of now", func(r *paths.Result) {
@@ -122,6 +122,9 @@ func TestSchemaRefuses(t *testing.T) {
 		{"number as text", func(_, p, _ map[string]any) { p["misfit"] = "3" }},
 		{"number null though the path was run", func(_, p, _ map[string]any) { p["shift_factor"] = nil }},
 		{"tail null though the path was judged", func(_, p, _ map[string]any) { p["tail"] = nil }},
+		{"tail null though the crystal was judged", func(_, p, _ map[string]any) { p["crystals"].([]any)[0].(map[string]any)["tail"] = nil }},
+		{"field too many in a crystal", func(_, p, _ map[string]any) { p["crystals"].([]any)[0].(map[string]any)["mineral"] = "quartz" }},
+		{"field missing in a path: crystals", func(_, p, _ map[string]any) { delete(p, "crystals") }},
 		{"tail null though the profile was judged", func(_, _, q map[string]any) { q["tail"] = nil }},
 		{"own best null though a path was run", func(s, _, _ map[string]any) { s["own_best"].([]any)[0].(map[string]any)["tail"] = nil }},
 		{"unknown verdict", func(_, p, _ map[string]any) { p["verdict"] = "fine" }},

@@ -58,10 +58,10 @@ func smallResult(t *testing.T) *paths.Result {
 	}
 	s, path, p := *r.Study, *r.Paths[0].Path, r.Paths[0]
 	p.Path = &path
-	p.Outcome.Profiles = slices.Clone(p.Outcome.Profiles)
+	p.Outcome.Profiles, p.Outcome.Crystals = slices.Clone(p.Outcome.Profiles), slices.Clone(p.Outcome.Crystals)
 	p.Profiles = slices.Clone(p.Profiles)
 	p.Profiles[0].Free = slices.Clone(p.Profiles[0].Free)
-	return &paths.Result{Study: &s, Own: slices.Clone(r.Own), Paths: []paths.PathResult{p}}
+	return &paths.Result{Study: &s, Own: slices.Clone(r.Own), Crystals: r.Crystals, Paths: []paths.PathResult{p}}
 }
 
 // notRun makes the only path of the result one that was not run; its verdict does not

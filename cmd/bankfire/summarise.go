@@ -31,13 +31,17 @@ func summarise(r *paths.Result, made program) *weighing {
 func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 	out := weighedPath{
 		Name: p.Path.Name, Verdict: p.Outcome.Verdict.String(), finding: newFinding(&p.Outcome.Finding, p.Notes),
-		LifeS: p.Life, Above: []timeAbove{}, Profiles: []weighedProfile{},
+		LifeS: p.Life, Above: []timeAbove{}, Crystals: []judgedCrystal{}, Profiles: []weighedProfile{},
 	}
 	if len(p.Profiles) > 0 {
 		out.WithLaws = newWithLaws(&p.Outcome.WithLaws)
 	}
 	for i, t := range r.Study.Thresholds {
 		out.Above = append(out.Above, timeAbove{t.Name, t.Temp, p.Above[i]})
+	}
+	for k := range p.Outcome.Crystals {
+		f := &p.Outcome.Crystals[k]
+		out.Crystals = append(out.Crystals, judgedCrystal{r.Crystals[k].Name, f.Verdict.String(), newFinding(f, f.Notes())})
 	}
 	for i := range p.Profiles {
 		q := &p.Profiles[i]

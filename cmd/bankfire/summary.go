@@ -73,6 +73,7 @@ type weighedPath struct {
 	WithLaws *withLaws        `json:"with_law_errors"` // null if the path was not run
 	LifeS    float64          `json:"life_s"`
 	Above    []timeAbove      `json:"time_above"`
+	Crystals []judgedCrystal  `json:"crystals"`
 	Profiles []weighedProfile `json:"profiles"`
 }
 
@@ -110,6 +111,13 @@ type timeAbove struct {
 	Threshold   string  `json:"threshold"`
 	Temperature float64 `json:"temperature_K"`
 	Time        float64 `json:"time_s"`
+}
+
+// judgedCrystal is one crystal on a path, its measured elements jointly.
+type judgedCrystal struct {
+	Crystal string `json:"crystal"`
+	Verdict string `json:"verdict"`
+	finding
 }
 
 type weighedProfile struct {

@@ -56,6 +56,11 @@ func pathsTable(w io.Writer, r *paths.Result) error {
 		for _, above := range p.Above {
 			row = append(row, cell(above/thermal.Year))
 		}
+		if len(r.Crystals) > 1 {
+			for k := range o.Crystals {
+				row = append(row, crystalCells(&o.Crystals[k])...)
+			}
+		}
 		for j := range p.Profiles {
 			row = append(row, profileCells(&p.Profiles[j], &o.Profiles[j])...)
 		}
@@ -71,6 +76,13 @@ func pathsHead(r *paths.Result) []string {
 	for _, t := range r.Study.Thresholds {
 		head = append(head, "above "+t.Name+" [yr]")
 	}
+	if len(r.Crystals) > 1 && profilesOf(r) != nil {
+		for _, c := range r.Crystals {
+			for _, name := range crystalHead {
+				head = append(head, c.Name+": "+name)
+			}
+		}
+	}
 	for i := range profilesOf(r) {
 		q := &profilesOf(r)[i]
 		for _, name := range profileHead(q) {
@@ -78,6 +90,14 @@ func pathsHead(r *paths.Result) []string {
 		}
 	}
 	return append(head, "notes")
+}
+
+// crystalHead names the columns of a crystal in paths.csv, where there are several.
+var crystalHead = []string{"verdict", "misfit", "degrees_of_freedom", "shift_factor", "shift_68_low", "shift_68_high"}
+
+// crystalCells are the cells of those columns.
+func crystalCells(f *paths.Finding) []string {
+	return []string{f.Verdict.String(), cell(f.Misfit), strconv.Itoa(f.Degrees), cell(f.Shift), openEnd(f.Shift68[0]), openEnd(f.Shift68[1])}
 }
 
 // profileHead names the columns of a profile in paths.csv.

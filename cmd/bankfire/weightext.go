@@ -21,6 +21,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	fmt.Fprintf(&text, "%s\n\n", r.Study.Title)
 	notes := writeVerdicts(&text, r)
 	fmt.Fprintln(&text)
+	writeCrystals(&text, r)
 	writeSentences(&text, r)
 	writeFits(&text, r)
 	for i, note := range notes {
@@ -67,13 +68,38 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	return notes
 }
 
+// writeCrystals writes, where there are several crystals, what each says of the
+// paths by itself.
+func writeCrystals(w io.Writer, r *paths.Result) {
+	if len(r.Crystals) < 2 || ran(r) == 0 {
+		return
+	}
+	fmt.Fprint(w, "Each crystal by itself:\n\n")
+	table := newTable()
+	table.row("path", "crystal", "verdict", "shift factor", "tail", "chi-square", "above best")
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		for k := range p.Outcome.Crystals {
+			f := &p.Outcome.Crystals[k]
+			table.row(append([]string{p.Path.Name, r.Crystals[k].Name, f.Verdict.String()}, numberCells(f)...)...)
+		}
+	}
+	table.writeTo(w)
+	fmt.Fprintln(w)
+}
+
+// numberCells are the numbers of a finding: shift factor, tail, chi-square and
+// that above best.
+func numberCells(f *paths.Finding) []string {
+	return []string{shiftText(f), tailText(f.Tail), fmt.Sprintf("%s/%d", number(f.Misfit), f.Degrees), number(math.Max(f.Above, 0))}
+}
+
 // findingCells are the cells of a path's row that a barred path does not have.
 func findingCells(o *paths.Outcome, laws int) []string {
 	if o.Verdict == paths.Barred {
 		return make([]string, 5)
 	}
-	return []string{shiftText(&o.Finding), tailText(o.Tail), fmt.Sprintf("%s/%d", number(o.Misfit), o.Degrees),
-		number(math.Max(o.Above, 0)), leaningText(&o.WithLaws, laws)}
+	return append(numberCells(&o.Finding), leaningText(&o.WithLaws, laws))
 }
 
 // leaningText says by how much the laws, so many as have errors, would have to
