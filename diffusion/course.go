@@ -16,6 +16,7 @@ import (
 type Course struct {
 	plan  *Plan
 	spans []span
+	route route // of the span in hand
 }
 
 // span is the stretch between two events.
@@ -66,9 +67,9 @@ func (c *Course) LnG() float64 {
 }
 
 // Course prepares the history up to the time until, in s, for the plan and
-// writes it to dst, whose list of spans is reused; the means of a rim that is
-// given need memory of their own. It returns an error if until lies outside the
-// history.
+// writes it to dst, whose memory is reused; a rim given as a function of time, or
+// one that exchanges, needs some of its own. It returns an error if until lies
+// outside the history.
 func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 	if !(until >= 0) || until > h.Life() {
 		return fmt.Errorf("diffusion: the path has no time %g s; it lasts %g s", until, h.Life())
@@ -81,33 +82,46 @@ func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 		if i < len(p.events) {
 			to = math.Min(to, p.events[i])
 		}
-		dst.spans = append(dst.spans, p.span(h, from, to))
+		p.span(dst.addSpan(), &dst.route, h, from, to)
 		from = to
 	}
 	return nil
 }
 
-func (p *Plan) span(h *thermal.History, t0, t1 float64) span {
-	s := span{
-		lnG:   p.problem.Law.LnIntegral(h, t0, t1),
-		inner: endingAt(p.problem.Inner, t0),
-		outer: endingAt(p.problem.Outer, t0),
+// addSpan returns one more span, whose memory may have been another's.
+func (c *Course) addSpan() *span {
+	n := len(c.spans)
+	if n == cap(c.spans) {
+		c.spans = append(c.spans, span{})
 	}
-	coupled := p.problem.LnK != nil
-	if math.IsInf(s.lnG, -1) || !s.inner.follows(p.problem.Inner) && !s.outer.follows(p.problem.Outer) &&
-		!coupled && p.problem.source == nil {
-		return s
+	c.spans = c.spans[:n+1]
+	return &c.spans[n]
+}
+
+func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
+	s.inner.begin(p.problem.Inner, t0)
+	s.outer.begin(p.problem.Outer, t0)
+	law, coupled := &p.problem.Law, p.problem.LnK != nil
+	if !s.inner.follows(p.problem.Inner) && !s.outer.follows(p.problem.Outer) && !coupled && p.problem.source == nil {
+		s.lnG = law.LnIntegral(h, t0, t1)
+		return
 	}
-	times := p.stepTimes(h, t0, t1, s.lnG)
-	p.attend(&s.inner, p.problem.Inner, h, times)
-	p.attend(&s.outer, p.problem.Outer, h, times)
+	r.lay(law, h, t0, t1)
+	if s.lnG = r.lnG; math.IsInf(s.lnG, -1) {
+		return
+	}
+	r.cut(p.steps)
+	p.attend(&s.inner, p.problem.Inner, h, r.times)
+	p.attend(&s.outer, p.problem.Outer, h, r.times)
 	if coupled {
-		s.coldness = p.leadEnds(p.average(h, coldnessOf(h), times))
+		s.coldness.fine = resized(s.coldness.fine, len(p.steps))
+		r.means(s.coldness.fine, (*piece).coldness)
+		s.coldness.rough = p.steps.mergedMeans(s.coldness.rough[:0], s.coldness.fine)
+		p.leadEnds(&s.coldness)
 	}
 	if p.problem.source != nil {
-		s.middles, s.widths = p.clock(times)
+		s.middles, s.widths = p.clock(r.times)
 	}
-	return s
 }
 
 // follows reports whether what holds at the end changes within the span.
@@ -122,14 +136,21 @@ func (p *Plan) attend(e *ending, rims []Rim, h *thermal.History, times []float64
 	}
 	r := &rims[e.rim]
 	if r.Given != nil {
-		e.value = p.average(h, r.Given, times)
+		p.average(&e.value, h, r.Given, times)
 	}
 	if r.Kind == Transfer {
 		e.exchange = p.exchange(h, r, times, e.value)
 	}
 	if r.Given != nil {
-		e.value = p.leadEnds(e.value)
+		p.leadEnds(&e.value)
 	}
+}
+
+// begin puts the end to what is in force from t on.
+func (e *ending) begin(rims []Rim, t float64) {
+	memory := means{e.value.fine[:0], e.value.rough[:0]}
+	*e = endingAt(rims, t)
+	e.value = memory
 }
 
 // endingAt finds the rim in force from t on.
@@ -141,48 +162,6 @@ func endingAt(rims []Rim, t float64) ending {
 	return ending{open: rims[i].Kind != Sealed, rim: i}
 }
 
-// stepTimes returns the times at which the steps of a span begin and end: those
-// at which the integral has grown to the plan's fractions of exp(lnG).
-func (p *Plan) stepTimes(h *thermal.History, t0, t1, lnG float64) []float64 {
-	marks := pieces(p.problem.Law.breaks(h), t0, t1)
-	grown := make([]float64, len(marks)) // ln of the integral from t0 to each mark
-	grown[0] = math.Inf(-1)
-	for i := 1; i < len(marks); i++ {
-		grown[i] = numeric.LnAdd(grown[i-1], p.problem.Law.LnIntegral(h, marks[i-1], marks[i]))
-	}
-	times := make([]float64, 0, len(p.steps)+1)
-	times = append(times, t0)
-	at := 0.0
-	for _, s := range p.steps[:len(p.steps)-1] {
-		at += s.df
-		t := p.timeAt(h, marks, grown, lnG+math.Log(at))
-		times = append(times, math.Max(t, times[len(times)-1]))
-	}
-	return append(times, t1)
-}
-
-// timeAt returns the time at which the integral has grown to exp(target).
-func (p *Plan) timeAt(h *thermal.History, marks, grown []float64, target float64) float64 {
-	i := sort.SearchFloat64s(grown, target)
-	if i == 0 || i == len(marks) {
-		return marks[min(i, len(marks)-1)]
-	}
-	a, b := marks[i-1], marks[i]
-	short := func(t float64) float64 { // by how much the integral up to t misses the target
-		return numeric.LnAdd(grown[i-1], p.problem.Law.LnIntegral(h, a, t)) - target
-	}
-	t, err := numeric.Root(short, a, b, timeResolution*(b-a))
-	if err != nil {
-		return b // the target is the piece's end to round-off
-	}
-	return t
-}
-
-// timeResolution is how finely a step's end is found, as part of its leg. Rim
-// values are averaged between the ends found, so it only moves a little of the
-// average from one step to the next.
-const timeResolution = 1e-12
-
 // pieces returns t0, the breaks strictly between, and t1, ascending.
 func pieces(breaks []float64, t0, t1 float64) []float64 {
 	in := append([]float64{t0}, within(breaks, t0, t1)...)
@@ -191,16 +170,16 @@ func pieces(breaks []float64, t0, t1 float64) []float64 {
 	return slices.Compact(in)
 }
 
-// average returns the means of the given value over the steps,
+// average fills in the means of the given value over the steps,
 //
 //	integral of v dG / integral of dG.
-func (p *Plan) average(h *thermal.History, v *Given, times []float64) means {
+func (p *Plan) average(dst *means, h *thermal.History, v *Given, times []float64) {
 	breaks := p.breaks(h, v)
-	fine := make([]float64, len(p.steps))
-	for i := range fine {
-		fine[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
+	dst.fine = resized(dst.fine, len(p.steps))
+	for i := range dst.fine {
+		dst.fine[i] = p.meanOver(h, v, breaks, times[i], times[i+1])
 	}
-	return means{fine, p.steps.mergedMeans(fine)}
+	dst.rough = p.steps.mergedMeans(dst.rough[:0], dst.fine)
 }
 
 // breaks returns the times at which D along a history, the temperature or a value along it may break.
@@ -211,10 +190,9 @@ func (p *Plan) breaks(h *thermal.History, v *Given) []float64 {
 }
 
 // leadEnds makes the means those of a rim that the damped last steps see.
-func (p *Plan) leadEnds(m means) means {
+func (p *Plan) leadEnds(m *means) {
 	p.steps.leadEnd(m.fine)
 	p.rough.leadEnd(m.rough)
-	return m
 }
 
 // clock returns the middles and the durations of the steps, s.
@@ -229,11 +207,6 @@ func (p *Plan) clock(times []float64) (middles, widths means) {
 		widths.rough = append(widths.rough, times[end]-times[j])
 	}
 	return middles, widths
-}
-
-// coldnessOf is 1/T along the history.
-func coldnessOf(h *thermal.History) *Given {
-	return &Given{At: func(t float64) float64 { temp, _ := h.At(t); return 1 / temp }}
 }
 
 // meanOver returns the mean of v between ta and tb weighted by D.

@@ -47,7 +47,7 @@ func TestRimMeans(t *testing.T) {
 			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: []Rim{{Kind: Prescribed, Given: given}}}
 			plan := newPlan(t, p, Options{})
 			got := newCourse(t, plan, h).spans[0].outer.value.fine
-			times := plan.stepTimes(h, 0, h.Life(), testLaw.LnIntegral(h, 0, h.Life()))
+			times := stepTimes(plan, h)
 			for i := range got {
 				if i+1 < len(got) && times[i+1] <= times[i] || plan.steps[i].euler && i > len(got)/2 {
 					continue // no time in the step, or a value led to its end
@@ -62,6 +62,15 @@ func TestRimMeans(t *testing.T) {
 	}
 }
 
+// stepTimes returns the times at which the steps of a course along the whole
+// history begin and end.
+func stepTimes(plan *Plan, h *thermal.History) []float64 {
+	var r route
+	r.lay(&plan.problem.Law, h, 0, h.Life())
+	r.cut(plan.steps)
+	return r.times
+}
+
 // TestStepTimes: between the times of two steps the integral of D grows by the
 // plan's fraction.
 func TestStepTimes(t *testing.T) {
@@ -70,7 +79,7 @@ func TestStepTimes(t *testing.T) {
 			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw}
 			plan := newPlan(t, p, Options{})
 			total := testLaw.LnIntegral(h, 0, h.Life())
-			times := plan.stepTimes(h, 0, h.Life(), total)
+			times := stepTimes(plan, h)
 			fraction := 0.0
 			for i, s := range plan.steps {
 				fraction += s.df

@@ -106,7 +106,12 @@ func (l Law) over(h *thermal.History, t0, t1 float64) Law {
 	}
 	middle := t0 + (t1-t0)/2
 	temp, _ := h.At(middle)
-	setting := h.Setting(middle)
+	return l.acting(h.Setting(middle), temp)
+}
+
+// acting returns the terms that act in legs of one setting at a temperature, K, as
+// a law for any.
+func (l Law) acting(setting int, temp float64) Law {
 	return l.only(func(w thermal.Window) (thermal.Window, bool) {
 		return thermal.Window{}, w.Holds(setting, temp)
 	})

@@ -164,7 +164,7 @@ func TestSwitchedRim(t *testing.T) {
 			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: law, Outer: []Rim{{Kind: Prescribed, Given: given}}}
 			plan := newPlan(t, p, Options{})
 			got := newCourse(t, plan, h).spans[0].outer.value.fine
-			times := plan.stepTimes(h, 0, h.Life(), law.LnIntegral(h, 0, h.Life()))
+			times := stepTimes(plan, h)
 			for i := range got {
 				if i+1 < len(got) && times[i+1] <= times[i] || plan.steps[i].euler && i > len(got)/2 {
 					continue // no time in the step, or a value led to its end

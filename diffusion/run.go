@@ -268,7 +268,7 @@ func (p *Plan) ends(op *operator, sp *span, j, k int, st step, g float64, rough 
 
 // behind returns what is behind an open end in solve k of its span.
 func (e *ending) behind(rims []Rim, k int, rough bool) float64 {
-	if e.value.fine == nil {
+	if len(e.value.fine) == 0 {
 		return rims[e.rim].Value
 	}
 	return e.value.of(rough)[k]

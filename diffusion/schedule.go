@@ -66,10 +66,9 @@ func (s schedule) merged() schedule {
 	return half
 }
 
-// mergedMeans returns the means over the steps of s.merged() of a value whose
-// means over the steps of s are given.
-func (s schedule) mergedMeans(means []float64) []float64 {
-	var half []float64
+// mergedMeans appends to half the means over the steps of s.merged() of a value
+// whose means over the steps of s are given.
+func (s schedule) mergedMeans(half, means []float64) []float64 {
 	for i := 0; i < len(s); i += s.pair(i) {
 		mean := means[i]
 		if s.pair(i) == 2 {
