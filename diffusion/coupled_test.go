@@ -792,10 +792,8 @@ func zonedTrace(h *thermal.History) *Problem {
 	p.Law = NewLaw(2.92*math.Pow(10, -4.08), 276e3)
 	p.Host, p.LnK = host, drift(-26700)
 	p.Spread = func(r float64) float64 { return math.Pow(10, -4.1*host(r)) }
-	p.Outer = []Rim{{Kind: Prescribed, Given: &Given{At: func(t float64) float64 {
-		temp, _ := h.At(t)
-		return 100 * math.Exp(-26700/thermal.GasConstant*0.30*(1/temp-1/1023.15))
-	}}}}
+	const b = 26700 / thermal.GasConstant * 0.30
+	p.Outer = []Rim{{Kind: Following, Equilibrium: &Arrhenius{LnA: math.Log(100) + b/1023.15, E: b}}}
 	return p
 }
 

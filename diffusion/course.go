@@ -14,9 +14,10 @@ import (
 // events and the rim values averaged exactly over each step. One course serves
 // every multiplier on D.
 type Course struct {
-	plan  *Plan
-	spans []span
-	route route // of the span in hand
+	plan   *Plan
+	spans  []span
+	events []float64 // s
+	route  route     // of the span in hand
 }
 
 // span is the stretch between two events.
@@ -77,10 +78,11 @@ func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 	dst.plan = p
 	dst.spans = dst.spans[:0]
 	from := 0.0
-	for i := 0; i <= len(p.events) && from < until; i++ {
+	dst.events = p.eventsOn(dst.events, h)
+	for i := 0; i <= len(dst.events) && from < until; i++ {
 		to := until
-		if i < len(p.events) {
-			to = math.Min(to, p.events[i])
+		if i < len(dst.events) {
+			to = math.Min(to, dst.events[i])
 		}
 		p.span(dst.addSpan(), &dst.route, h, from, to)
 		from = to
@@ -111,12 +113,10 @@ func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
 		return
 	}
 	r.cut(p.steps)
-	p.attend(&s.inner, p.problem.Inner, h, r.times)
-	p.attend(&s.outer, p.problem.Outer, h, r.times)
+	p.attend(&s.inner, p.problem.Inner, h, r)
+	p.attend(&s.outer, p.problem.Outer, h, r)
 	if coupled {
-		s.coldness.fine = resized(s.coldness.fine, len(p.steps))
-		r.means(s.coldness.fine, (*piece).coldness)
-		s.coldness.rough = p.steps.mergedMeans(s.coldness.rough[:0], s.coldness.fine)
+		p.fill(&s.coldness, r, (*piece).coldness)
 		p.leadEnds(&s.coldness)
 	}
 	if p.problem.source != nil {
@@ -126,24 +126,33 @@ func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
 
 // follows reports whether what holds at the end changes within the span.
 func (e *ending) follows(rims []Rim) bool {
-	return e.open && (rims[e.rim].Kind == Prescribed || rims[e.rim].Kind == Transfer)
+	return e.open && rims[e.rim].Kind != Held
 }
 
 // attend averages what changes at one end over the steps of a span.
-func (p *Plan) attend(e *ending, rims []Rim, h *thermal.History, times []float64) {
+func (p *Plan) attend(e *ending, rims []Rim, h *thermal.History, along *route) {
 	if !e.follows(rims) {
 		return
 	}
 	r := &rims[e.rim]
-	if r.Given != nil {
-		p.average(&e.value, h, r.Given, times)
+	switch {
+	case r.Given != nil:
+		p.average(&e.value, h, r.Given, along.times)
+	case r.Equilibrium != nil:
+		p.fill(&e.value, along, func(q *piece) float64 { return q.mean(*r.Equilibrium) })
 	}
 	if r.Kind == Transfer {
-		e.exchange = p.exchange(h, r, times, e.value)
+		e.exchange = p.exchange(h, r, along.times, e.value)
 	}
-	if r.Given != nil {
-		p.leadEnds(&e.value)
-	}
+	p.leadEnds(&e.value)
+}
+
+// fill fills in the means over the steps of a route of a value whose mean along a
+// piece, weighted by D, is over.
+func (p *Plan) fill(dst *means, along *route, over func(*piece) float64) {
+	dst.fine = resized(dst.fine, len(p.steps))
+	along.means(dst.fine, over)
+	dst.rough = p.steps.mergedMeans(dst.rough[:0], dst.fine)
 }
 
 // begin puts the end to what is in force from t on.
@@ -189,8 +198,12 @@ func (p *Plan) breaks(h *thermal.History, v *Given) []float64 {
 	return breaks
 }
 
-// leadEnds makes the means those of a rim that the damped last steps see.
+// leadEnds makes the means, if there are any, those of a rim that the damped last
+// steps see.
 func (p *Plan) leadEnds(m *means) {
+	if len(m.fine) == 0 {
+		return
+	}
 	p.steps.leadEnd(m.fine)
 	p.rough.leadEnd(m.rough)
 }

@@ -14,7 +14,8 @@ import (
 //	D(T) = exp(LnA - E/T),
 //
 // with LnA the natural logarithm of a diffusivity in m2/s and E the activation
-// energy divided by the gas constant, in K.
+// energy divided by the gas constant, in K; or what else goes with temperature
+// like this, with LnA in the logarithm of its own unit.
 type Arrhenius struct{ LnA, E float64 }
 
 // Law is the diffusivity of an element as a function of temperature, the sum
@@ -37,8 +38,8 @@ func NewLaw(d0, energy float64) Law {
 // moves.
 func (l Law) check() error {
 	for i, a := range l.Terms {
-		if math.IsNaN(a.LnA) || math.IsInf(a.LnA, 1) || !finite(a.E) {
-			return fmt.Errorf("diffusion: term %d of the law has ln A %g and E/R %g K", i, a.LnA, a.E)
+		if err := a.check(); err != nil {
+			return fmt.Errorf("diffusion: term %d of the law has %w", i, err)
 		}
 	}
 	if l.Where != nil && len(l.Where) != len(l.Terms) {
@@ -48,6 +49,14 @@ func (l Law) check() error {
 		if !finite(w.Above) || !finite(w.Below) || w.Below != 0 && !(w.Above < w.Below) {
 			return fmt.Errorf("diffusion: term %d of the law acts above %g and up to %g K", i, w.Above, w.Below)
 		}
+	}
+	return nil
+}
+
+// check reports constants that make no number. An LnA of -Inf does: 0.
+func (a Arrhenius) check() error {
+	if math.IsNaN(a.LnA) || math.IsInf(a.LnA, 1) || !finite(a.E) {
+		return fmt.Errorf("ln A %g and E/R %g K", a.LnA, a.E)
 	}
 	return nil
 }
@@ -137,19 +146,39 @@ func (l Law) breaks(h *thermal.History) []float64 {
 	return slices.Compact(times)
 }
 
+// integrals is what has integrals of T^-k exp(-E/T) dt: a leg or a history.
+type integrals interface {
+	LnArrhenius(e float64, k int, t0, t1 float64) float64
+}
+
+// lnAlong returns the logarithm of
+//
+//	integral of T^-k D exp(by.LnA - by.E/T) dt,  k = 0 or 1,
+//
+// from t0 to t1, s, of a law without windows: such a factor only shifts the
+// constants of each term.
+func (l Law) lnAlong(path integrals, by Arrhenius, k int, t0, t1 float64) float64 {
+	sum := math.Inf(-1)
+	for _, a := range l.Terms {
+		if lnA := a.LnA + by.LnA; !math.IsInf(lnA, -1) {
+			sum = numeric.LnAdd(sum, lnA+path.LnArrhenius(a.E+by.E, k, t0, t1))
+		}
+	}
+	return sum
+}
+
 // LnIntegral returns the logarithm of the diffusion integral
 //
 //	G = integral of D(T(t)) dt from t0 to t1,  m2,
 //
 // along the history, t0 and t1 in s. It is -Inf where nothing diffuses.
 func (l Law) LnIntegral(h *thermal.History, t0, t1 float64) float64 {
+	if l.Where == nil {
+		return l.lnAlong(h, Arrhenius{}, 0, t0, t1)
+	}
 	sum := math.Inf(-1)
 	for i, a := range l.Terms {
-		switch {
-		case math.IsInf(a.LnA, -1):
-		case l.Where == nil:
-			sum = numeric.LnAdd(sum, a.LnA+h.LnArrhenius(a.E, 0, t0, t1))
-		default:
+		if !math.IsInf(a.LnA, -1) {
 			sum = numeric.LnAdd(sum, a.LnA+h.LnArrheniusIn(a.E, 0, l.Where[i], t0, t1))
 		}
 	}

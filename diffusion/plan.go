@@ -178,7 +178,7 @@ func (p *Problem) moving() bool {
 	if p.LnK != nil {
 		return true
 	}
-	moves := func(r Rim) bool { return r.Given != nil || r.Kind == Transfer }
+	moves := func(r Rim) bool { return r.Given != nil || r.Equilibrium != nil || r.Kind == Transfer }
 	return slices.ContainsFunc(p.Inner, moves) || slices.ContainsFunc(p.Outer, moves)
 }
 
@@ -187,7 +187,8 @@ func (p *Problem) moving() bool {
 // waves between cells that it crosses while the steps are long.
 func (p *Problem) endsFinely() bool { return p.Own != nil || p.moving() }
 
-// events returns the times after 0 at which a rim changes its kind or jumps.
+// events returns the times after 0 at which a rim changes its kind or jumps,
+// whatever the history.
 func (p *Problem) events() []float64 {
 	var at []float64
 	for _, rims := range [][]Rim{p.Inner, p.Outer} {

@@ -39,6 +39,10 @@ func TestCompileRefuses(t *testing.T) {
 		{"rims out of order", "rim 1 begins at 0 s", func(p *Problem, _ *Options) { p.Outer = append(p.Outer, Rim{}) }},
 		{"held at nothing", "held at NaN", func(p *Problem, _ *Options) { p.Outer[0].Value = nan }},
 		{"given by nothing", "without a function", func(p *Problem, _ *Options) { p.Outer[0].Kind = Prescribed }},
+		{"following nothing", "follows nothing", func(p *Problem, _ *Options) { p.Outer[0].Kind = Following }},
+		{"following no number", "follows exp(NaN", func(p *Problem, _ *Options) {
+			p.Outer[0] = Rim{Kind: Following, Equilibrium: &Arrhenius{LnA: math.NaN()}}
+		}},
 		{"unknown rim", "no known kind", func(p *Problem, _ *Options) { p.Outer[0].Kind = 7 }},
 		{"held centre", "centre of a ball", func(p *Problem, _ *Options) { p.Shape, p.Inner = Ball, []Rim{{Kind: Held}} }},
 		{"free value", "free value 0", func(p *Problem, _ *Options) { p.Free = []Basis{{Start: []float64{1}}} }},

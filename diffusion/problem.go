@@ -42,16 +42,18 @@ const (
 	Held                      // the value is kept at Rim.Value
 	Prescribed                // the value is given as a function of time
 	Transfer                  // the surface exchanges with a value outside at a finite rate
+	Following                 // the value follows temperature
 )
 
 // Rim is what holds at one end of the crystal from a time on, until the next
 // rim in the list.
 type Rim struct {
-	Kind  RimKind
-	From  float64   // s from the start of the path; the first of a list must not be later than 0
-	Value float64   // of a held rim, in the element's unit; of transfer, the value in equilibrium with what is outside
-	Given *Given    // of a prescribed rim; of transfer, instead of Value unless nil
-	Rate  Arrhenius // of transfer: the coefficient k = exp(LnA - E/T), LnA ln(m/s), E in K
+	Kind        RimKind
+	From        float64    // s from the start of the path; the first of a list must not be later than 0
+	Value       float64    // of a held rim, in the element's unit; of transfer, the value in equilibrium with what is outside
+	Given       *Given     // of a prescribed rim; of transfer, instead of Value unless nil
+	Equilibrium *Arrhenius // of a following rim, whose value is exp(LnA - E/T) in the element's unit; of transfer, instead of Value unless nil
+	Rate        Arrhenius  // of transfer: the coefficient k = exp(LnA - E/T), LnA ln(m/s), E in K
 }
 
 // Given is a rim value known as a function of time. At must be smooth between
@@ -153,7 +155,11 @@ func (p *Problem) checkRims(end string, rims []Rim) error {
 			return fmt.Errorf("diffusion: %s rim %d is prescribed without a function", end, i)
 		case r.Kind == Transfer && !(finite(r.Value) && finite(r.Rate.LnA) && finite(r.Rate.E) && (r.Given == nil || r.Given.At != nil)):
 			return fmt.Errorf("diffusion: %s rim %d exchanges with %g at exp(%g - %g K/T) m/s", end, i, r.Value, r.Rate.LnA, r.Rate.E)
-		case r.Kind < Sealed || r.Kind > Transfer:
+		case r.Kind == Following && r.Equilibrium == nil:
+			return fmt.Errorf("diffusion: %s rim %d follows nothing", end, i)
+		case r.Equilibrium != nil && (r.Equilibrium.check() != nil || r.Given != nil):
+			return fmt.Errorf("diffusion: %s rim %d follows exp(%g - %g K/T), or a function too", end, i, r.Equilibrium.LnA, r.Equilibrium.E)
+		case r.Kind < Sealed || r.Kind > Following:
 			return fmt.Errorf("diffusion: %s rim %d is of no known kind", end, i)
 		}
 	}
@@ -177,7 +183,7 @@ func (p *Problem) checkOwn() error {
 		stated = append(stated, z.Start)
 	}
 	for _, r := range slices.Concat(p.Inner, p.Outer) {
-		if (r.Kind == Held || r.Kind == Transfer) && r.Given == nil {
+		if (r.Kind == Held || r.Kind == Transfer) && r.Given == nil && r.Equilibrium == nil {
 			stated = append(stated, r.Value)
 		}
 	}

@@ -5,7 +5,6 @@ import (
 	"sort"
 
 	"bankfire/thermal"
-	"bankfire/thermal/numeric"
 )
 
 // route is a span cut for its steps: into pieces along which temperature is
@@ -31,20 +30,10 @@ type piece struct {
 	share    float64 // of the span's integral of D dt
 }
 
-// lnAlong returns the logarithm of
-//
-//	integral of T^-k D exp(by.LnA - by.E/T) dt,  k = 0 or 1,
-//
-// along the piece until a time, s from the start of its leg: such a factor only
-// shifts the constants of each term of the law.
+// lnAlong is the law's from the beginning of the piece to a time, s from the start
+// of its leg.
 func (p *piece) lnAlong(by Arrhenius, k int, to float64) float64 {
-	sum := math.Inf(-1)
-	for _, a := range p.law.Terms {
-		if !math.IsInf(a.LnA, -1) {
-			sum = numeric.LnAdd(sum, a.LnA+by.LnA+p.leg.LnArrhenius(a.E+by.E, k, p.from, to))
-		}
-	}
-	return sum
+	return p.law.lnAlong(p.leg, by, k, p.from, to)
 }
 
 // lnD returns ln of D at a time, s from the start of the leg.

@@ -35,7 +35,7 @@ func (x *exchange) of(rough bool) [][]part {
 }
 
 // exchange cuts the steps between the given times; mean is that of C_eq over them,
-// if it is given as a function of time.
+// if it changes.
 func (p *Plan) exchange(h *thermal.History, r *Rim, times []float64, mean means) exchange {
 	c := cutter{plan: p, rim: r, h: h, breaks: p.problem.Law.breaks(h)}
 	if r.Given != nil {
@@ -53,7 +53,7 @@ func (p *Plan) exchange(h *thermal.History, r *Rim, times []float64, mean means)
 		}
 		x.rough = append(x.rough, both)
 	}
-	if r.Given != nil {
+	if len(mean.fine) > 0 {
 		takeMeans(x.fine, mean.fine)
 		takeMeans(x.rough, mean.rough)
 	}
@@ -129,8 +129,11 @@ func (c *cutter) cut(a, b float64) {
 	}
 	k := c.rim.Rate
 	q := part{k: math.Exp(k.LnA + c.h.LnArrhenius(k.E, 0, a, b))}
-	if c.rim.Given != nil {
+	switch {
+	case c.rim.Given != nil:
 		q.above = c.plan.meanOver(c.h, c.rim.Given, c.given, a, b)
+	case c.rim.Equilibrium != nil:
+		q.above = math.Exp(c.law.lnAlong(c.h, *c.rim.Equilibrium, 0, a, b) - g)
 	}
 	c.parts, c.lnG = append(c.parts, q), append(c.lnG, g)
 }

@@ -164,6 +164,37 @@ func (h *History) Breaks(dst []float64) []float64 {
 	return dst
 }
 
+// Jumps appends to dst the times, s, at which the temperature jumps so far that 1/T changes by more than a part of its range
+// along the path, ascending and each once: where one leg ends and the next begins, and at rows of a table with one time. A
+// relaxation that stops short of where the next leg begins leaves a jump too, which may be too small to count.
+func (h *History) Jumps(dst []float64, part float64) []float64 {
+	lo, hi := h.Range()
+	least := part * (1/lo - 1/hi)
+	before := 0.0 // the temperature as the next leg begins, K; 0 at the start of the path
+	put := func(t, after float64) {
+		if before > 0 && math.Abs(1/after-1/before) > least {
+			dst = append(dst, t)
+		}
+	}
+	for i := range h.legs {
+		l := &h.legs[i]
+		if l.For == 0 {
+			continue
+		}
+		put(h.starts[i], l.At(0))
+		if r := l.Rows; l.Kind == Table {
+			for j := 1; j+1 < len(r.Time) && r.Time[j] < l.For; j++ {
+				if t := r.Time[j]; t > 0 && t == r.Time[j-1] && t != r.Time[j+1] {
+					before = r.before(t)
+					put(h.starts[i]+t, r.Temp[j])
+				}
+			}
+		}
+		before = l.before(math.Inf(1))
+	}
+	return dst
+}
+
 // Range is the lowest and the highest temperature of the path, K.
 func (h *History) Range() (lo, hi float64) {
 	lo, hi = math.Inf(1), math.Inf(-1)

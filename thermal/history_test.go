@@ -290,3 +290,28 @@ func TestNoAllocation(t *testing.T) {
 		t.Error("NaN")
 	}
 }
+
+// TestJumps: between legs and inside a table, by hand; a rise that is no jump, legs of no time and what is too small
+// are none.
+func TestJumps(t *testing.T) {
+	hold := func(temp float64) Leg { return Leg{Kind: Hold, For: 10, T0: temp} }
+	table := Leg{Kind: Table, Rows: &Rows{Time: []float64{0, 5, 5, 5, 8, 10, 10}, Temp: []float64{1000, 1010, 1500, 1100, 1100, 1100, 1200}}}
+	for _, test := range []struct {
+		name string
+		legs []Leg
+		part float64
+		want []float64
+	}{
+		{"one hold", []Leg{hold(1000)}, 1e-4, nil},
+		{"two holds", []Leg{hold(1000), hold(900)}, 1e-4, []float64{10}},
+		{"a ramp between", []Leg{hold(1000), {Kind: Ramp, For: 5, T0: 1000, T1: 900}, hold(900)}, 1e-4, nil},
+		{"an excursion of no time", []Leg{hold(1000), {Kind: Hold, T0: 1300}, hold(1000)}, 1e-4, nil},
+		{"small and large", []Leg{hold(1000), hold(1000.5), hold(900), hold(1200)}, 0.01, []float64{20, 30}},
+		{"all", []Leg{hold(1000), hold(1000.5), hold(900), hold(1200)}, 0, []float64{10, 20, 30}},
+		{"a table", []Leg{hold(1000), table, hold(1200)}, 1e-4, []float64{15, 20}},
+	} {
+		if got := set(t, test.legs).Jumps(nil, test.part); !slices.Equal(got, test.want) {
+			t.Errorf("%s: jumps at %v, want %v", test.name, got, test.want)
+		}
+	}
+}
