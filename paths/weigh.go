@@ -161,7 +161,7 @@ func (w *weighing) law(l *study.Law) int {
 }
 
 // lawPrior says how well a law is known; one by direction no better than the
-// worst of its parts.
+// worst of its parts. The user's factor on D has an error of its own.
 func lawPrior(l *study.Law) LawPrior {
 	p := LawPrior{Key: l.Key, LnD: l.Sigma * math.Ln10}
 	if l.Row != nil {
@@ -170,6 +170,9 @@ func lawPrior(l *study.Law) LawPrior {
 	for i := range l.Parts {
 		part := lawPrior(&l.Parts[i].Law)
 		p.LnD, p.E = max(p.LnD, part.LnD), max(p.E, part.E)
+	}
+	if l.Times.Value != 0 {
+		p.LnD = math.Hypot(p.LnD, l.Times.Sigma/l.Times.Value)
 	}
 	return p
 }

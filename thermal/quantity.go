@@ -61,6 +61,41 @@ func ParseUncertain(text string, dim Dimension) (Uncertain, error) {
 	return u, nil
 }
 
+// ParseFactor reads a plain number, perhaps with an error: "10 +- 3" or "10" (Sigma 0). Its sign is the caller's to
+// judge. Errors are as those of ParseQuantity.
+func ParseFactor(text string) (Uncertain, error) {
+	left, right, with := cutError(text)
+	value, refused := readPlain(left)
+	if refused != nil {
+		return Uncertain{}, refused.of(text)
+	}
+	if !with {
+		return Uncertain{Value: value}, nil
+	}
+	sigma, refused := readPlain(right)
+	if refused == nil && sigma < 0 {
+		refused = &InputError{Problem: "has a negative error", Remedy: "want an error of at least 0"}
+	}
+	if refused != nil {
+		return Uncertain{}, refused.of(text)
+	}
+	return Uncertain{value, sigma}, nil
+}
+
+// readPlain reads a number without a unit.
+func readPlain(text string) (float64, *InputError) {
+	const remedy = `want plain numbers such as "10" or "10 +- 3"`
+	text = strings.TrimSpace(text)
+	if !numberStart.MatchString(text) {
+		return 0, &InputError{Problem: "is not a plain number", Remedy: remedy}
+	}
+	number, rest, refused := readNumber(text, Concentration)
+	if rest = strings.TrimSpace(rest); refused == nil && rest != "" {
+		refused = &InputError{Problem: "has a unit or more, " + strconv.Quote(rest), Remedy: remedy}
+	}
+	return number, refused
+}
+
 // ParseConcentration reads a concentration, perhaps with an error, in the unit in which it is written; the unit comes
 // back in its usual spelling. ConcentrationFactor converts. Errors are as those of ParseQuantity.
 func ParseConcentration(text string) (value Uncertain, unit string, err error) {

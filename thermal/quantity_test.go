@@ -207,6 +207,29 @@ func TestParseUncertainRefuses(t *testing.T) {
 	}
 }
 
+func TestParseFactor(t *testing.T) {
+	for text, want := range map[string]Uncertain{
+		"10": {10, 0}, "10 +- 3": {10, 3}, " 1e-2±2e-3 ": {0.01, 0.002}, "0": {0, 0}, "-4 +/- 1": {-4, 1},
+	} {
+		if got, err := ParseFactor(text); got != want || err != nil {
+			t.Errorf("%q is read as %v, error %v", text, got, err)
+		}
+	}
+	for text, want := range map[string]string{
+		"10 m":      `"10 m": has a unit or more, "m"; want plain numbers such as "10" or "10 +- 3"`,
+		"10 +- 3 %": `"10 +- 3 %": has a unit or more, "%"; want plain numbers such as "10" or "10 +- 3"`,
+		"10 +-":     `"10 +-": is not a plain number; want plain numbers such as "10" or "10 +- 3"`,
+		"":          `is not a plain number; want plain numbers such as "10" or "10 +- 3"`,
+		"ten":       `"ten": is not a plain number; want plain numbers such as "10" or "10 +- 3"`,
+		"10 +- -3":  `"10 +- -3": has a negative error; want an error of at least 0`,
+		"1,5":       `"1,5": has a decimal comma; write 1.5, not 1,5`,
+		"1e999":     `"1e999": is beyond the range of numbers; want a size between 1e-300 and 1e300 in SI units`,
+	} {
+		_, err := ParseFactor(text)
+		checkRefused(t, err, text, want)
+	}
+}
+
 func TestParseConcentration(t *testing.T) {
 	tests := []struct {
 		text string

@@ -108,21 +108,20 @@ func newWithLaws(l *paths.LawsAllowed) *withLaws {
 }
 
 // lawsUsed lists the laws of the measured elements in their order, those with a
-// key once each.
+// key once each if they are used alike.
 func lawsUsed(s *study.Study) []lawUsed {
 	laws := []lawUsed{}
-	known := map[string]int{}
 	for _, c := range s.Crystals {
 		for _, e := range c.Elements {
-			of := elementKey{c.Name, e.Name}
-			i, is := known[e.Law.Key]
-			switch {
-			case e.Traverse == nil:
-			case is && e.Law.Key != "":
-				laws[i].Elements = append(laws[i].Elements, of)
-			default:
-				known[e.Law.Key] = len(laws)
-				laws = append(laws, lawUsed{e.Law.Key, e.Law.Citation, confidence(&e.Law), []elementKey{of}})
+			if e.Traverse == nil {
+				continue
+			}
+			used := lawUsed{e.Law.Key, e.Law.Citation, confidence(&e.Law), []elementKey{{c.Name, e.Name}}}
+			i := slices.IndexFunc(laws, func(l lawUsed) bool { return l.Key == used.Key && l.Confidence == used.Confidence })
+			if i >= 0 && used.Key != "" {
+				laws[i].Elements = append(laws[i].Elements, used.Elements...)
+			} else {
+				laws = append(laws, used)
 			}
 		}
 	}
@@ -172,21 +171,29 @@ func conditionsUsed(c *study.Conditions) []string {
 	return all
 }
 
-// confidence says how sure the constants of a law are.
+// confidence says how sure the constants of a law are, and what the user makes of it.
 func confidence(l *study.Law) string {
+	var text string
 	switch {
-	case l.Parts != nil:
+	case len(l.Parts) > 1:
 		var parts []string
 		for i := range l.Parts {
 			parts = append(parts, l.Parts[i].Law.Key+": "+confidence(&l.Parts[i].Law))
 		}
-		return strings.Join(parts, "; ")
+		text = strings.Join(parts, "; ")
+	case len(l.Parts) == 1:
+		text = confidence(&l.Parts[0].Law)
 	case l.Row == nil && l.Caution != "":
-		return "as given in the study: " + l.Caution
+		text = "as given in the study: " + l.Caution
 	case l.Row == nil:
-		return "as given in the study"
+		text = "as given in the study"
+	default:
+		text = l.Row.Confidence
 	}
-	return l.Row.Confidence
+	if times := l.TimesText(); times != "" {
+		text += "; " + times
+	}
+	return text
 }
 
 // ends returns an interval with its open ends nil.

@@ -6,7 +6,6 @@ import (
 	"slices"
 	"strings"
 
-	"bankfire/diffusion"
 	"bankfire/thermal"
 )
 
@@ -21,21 +20,21 @@ const (
 //
 //	D = Da cos2(a) + Db cos2(b) + Dc cos2(c),
 //
-// with a law along each axis and the angles of the boundary's normal to the
-// axes.
+// with a law along each axis, or along one with the ratio by which D is less along
+// the others, and the angles of the boundary's normal to the axes.
 func (d *decoder) directed(n *node, c *Crystal, e *Element) Law {
 	d.keys(n, directionTable)
-	shares, ok := d.cosines(d.need(n, "normal", normalRemedy))
-	var parts []Part
 	before := d.faults
-	for i, axis := range axes {
-		v := d.need(n, axis, `write the law along each axis: a, b and c`)
-		if v == nil || !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
-			continue
+	shares, _ := d.cosines(d.need(n, "normal", normalRemedy))
+	var parts []Part
+	if v := n.get("ratio"); v != nil {
+		parts = d.byRatio(n, v, shares, c, e)
+	} else {
+		for i, axis := range axes {
+			parts = addPart(parts, axis, shares[i], d.along(n, axis, c, e))
 		}
-		parts = addPart(parts, axis, shares[i], d.law(v, c, e))
 	}
-	if !ok || d.faults > before {
+	if d.faults > before {
 		return Law{}
 	}
 	if len(parts) == 1 && math.Abs(parts[0].Share-1) < noShare {
@@ -44,8 +43,46 @@ func (d *decoder) directed(n *node, c *Crystal, e *Element) Law {
 	return d.joined(n, parts)
 }
 
-// axes are the keys of a law by direction.
-var axes = [3]string{"a", "b", "c"}
+// along reads the law along an axis.
+func (d *decoder) along(n *node, axis string, c *Crystal, e *Element) Law {
+	v := d.need(n, axis, `write the law along each axis: a, b and c; or along one, and ratio = 6 if D is 6 times less along the others`)
+	if v == nil || !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
+		return Law{}
+	}
+	return d.law(v, c, e)
+}
+
+// byRatio reads the law along one axis and the ratio of D there to that along the
+// other two.
+func (d *decoder) byRatio(n, v *node, shares [3]float64, c *Crystal, e *Element) []Part {
+	const example = `write the law along one axis and the ratio, such as c = "olivine-ni-petry2004", ratio = 6`
+	ratio, ok := d.number(v, example)
+	var with, without []string
+	share := 0.0
+	for i, axis := range axes {
+		if n.get(axis) != nil {
+			with, share = append(with, axis), share+shares[i]
+		} else {
+			without, share = append(without, axis), share+shares[i]/ratio
+		}
+	}
+	switch {
+	case !ok:
+		return nil
+	case len(with) != 1:
+		d.report(v, fmt.Sprintf("laws along %d axes, and a ratio", len(with)), example)
+		return nil
+	}
+	axes := fmt.Sprintf("%s (%.4g times that along %s)", with[0], ratio, strings.Join(without, " and "))
+	return []Part{{Axes: axes, Share: share, Law: d.along(n, with[0], c, e)}}
+}
+
+// axes are the keys of the laws in a law by direction, directionKeys all that no
+// other law has.
+var (
+	axes          = [3]string{"a", "b", "c"}
+	directionKeys = [...]string{"a", "b", "c", "ratio", "normal"}
+)
 
 const normalRemedy = `write the angles of the boundary's normal to a, b and c, such as normal = ["90 deg", "90 deg", "0 deg"]`
 
@@ -109,10 +146,8 @@ func (d *decoder) joined(n *node, parts []Part) Law {
 		if p.Law.Citation != "" && !slices.Contains(citations, p.Law.Citation) {
 			citations = append(citations, p.Law.Citation)
 		}
-		for _, a := range p.Law.Law.Terms {
-			at := law.HostSlope*(law.HostAt-p.Law.HostAt) + law.OwnSlope*(law.OwnAt-p.Law.OwnAt)
-			law.Law.Terms = append(law.Law.Terms, diffusion.Arrhenius{LnA: a.LnA + math.Log(p.Share) + at, E: a.E})
-		}
+		at := law.HostSlope*(law.HostAt-p.Law.HostAt) + law.OwnSlope*(law.OwnAt-p.Law.OwnAt)
+		law.Law.Terms = append(law.Law.Terms, scaled(p.Law.Law, math.Log(p.Share)+at).Terms...)
 		law.narrow(&p.Law)
 	}
 	law.Key, law.Citation = strings.Join(keys, " + "), strings.Join(citations, "; ")

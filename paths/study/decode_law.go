@@ -93,17 +93,28 @@ func (d *decoder) calibrated(n *node) (lo, hi float64) {
 	return 0, 0
 }
 
-// law reads the law of an element: a key of the catalogue, the name of a
-// [[law]], or the constants themselves.
+// law reads the law of an element with the factor that the study has on it.
 func (d *decoder) law(n *node, c *Crystal, e *Element) Law {
-	const example = `write a key that "bankfire laws" lists, the name of a [[law]], or { D0 = "7e-8 m2/s", E = "273 kJ/mol" }`
 	if n == nil {
 		return Law{}
 	}
-	if slices.ContainsFunc(tables[directionTable].Keys, func(key string) bool { return n.get(key) != nil }) {
-		return d.directed(n, c, e)
+	law := d.unscaled(n, c, e)
+	if v := n.get("times"); v != nil {
+		d.factor(v, &law)
 	}
-	if n.kind == tableNode {
+	return law
+}
+
+// unscaled reads the law of an element: a key of the catalogue, the name of a
+// [[law]], laws by direction, or the constants themselves.
+func (d *decoder) unscaled(n *node, c *Crystal, e *Element) Law {
+	const example = `write a key that "bankfire laws" lists, the name of a [[law]], or { D0 = "7e-8 m2/s", E = "273 kJ/mol" }`
+	switch {
+	case slices.ContainsFunc(directionKeys[:], func(key string) bool { return n.get(key) != nil }):
+		return d.directed(n, c, e)
+	case n.get("like") != nil:
+		return d.like(n, c, e)
+	case n.kind == tableNode:
 		return d.onHost(n, d.ownLaw(n, lawTable), c)
 	}
 	key, ok := d.text(n, example)

@@ -51,6 +51,7 @@ const (
 	lawHostTable
 	lawOwnTable
 	directionTable
+	likeTable
 	startTable
 	heldTable
 	givenTable
@@ -82,10 +83,11 @@ var tables = [...]Table{
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth"}},
 	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
-	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "own", "sigma", "range", "citation", "caution"}},
+	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "own", "times", "sigma", "range", "citation", "caution"}},
 	lawHostTable:    {"crystal.element.law.host", []string{"ln_slope", "at"}},
 	lawOwnTable:     {"crystal.element.law.own", []string{"ln_slope", "at"}},
-	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "normal"}},
+	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "ratio", "normal", "times"}},
+	likeTable:       {"crystal.element.law like", []string{"like", "times"}},
 	startTable:      {"crystal.element.start", []string{"zones", "edge", "unit"}},
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
 	givenTable:      {"crystal.element.rim given", []string{"given", "time", "value", "counts", "unit", "from"}},

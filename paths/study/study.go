@@ -148,14 +148,15 @@ type Law struct {
 	HostSlope, HostAt float64
 	// Where the element has the value C, D has the factor exp(OwnSlope (C - OwnAt)).
 	OwnSlope, OwnAt float64
+	Times           thermal.Uncertain // the user's factor on D, which Law holds; its error is one beside Sigma; 0 is none
 	Buffer          *catalogue.Buffer // along which Law goes; nil is none
 	Parts           []Part            // of which a law by direction is the sum; then Row and Buffer are nil, Key joins theirs, and Sigma is 0
 }
 
 // Part is a law's part in a law by direction.
 type Part struct {
-	Axes  string  // along which it is the law: "a", "b and c"
-	Share float64 // cos2 of the angle between the boundary's normal and the axis, summed over the axes
+	Axes  string  // along which it is the law: "a", "b and c", "c (6 times that along a and b)"
+	Share float64 // cos2 of the angle between the boundary's normal and the axis, summed over the axes; those on which D is less by a ratio count so much less
 	Law   Law     // with a Key
 }
 
@@ -171,8 +172,14 @@ func (l *Law) Cautions() []string {
 	}
 	for i := range l.Parts {
 		for _, caution := range l.Parts[i].Law.Cautions() {
-			out = append(out, l.Parts[i].Law.Key+": "+caution)
+			if len(l.Parts) > 1 {
+				caution = l.Parts[i].Law.Key + ": " + caution
+			}
+			out = append(out, caution)
 		}
+	}
+	if times := l.TimesText(); times != "" {
+		out = append(out, times)
 	}
 	if l.Caution != "" {
 		out = append(out, l.Caution)
