@@ -139,83 +139,9 @@ func TestSteadyExchange(t *testing.T) {
 	})
 }
 
-// byRungeKutta integrates a problem with an exchanging outer rim over time by the
-// classical method of Runge and Kutta (Abramowitz and Stegun 1964, 25.5.10), n steps
-// a leg, in even cells: with half cells at the rim, D of the element's own as the
-// mean of both sides, and the surface where both fluxes meet, found by halving.
-type byRungeKutta struct {
-	p     *Problem
-	faces []float64
-	n     int
-}
-
-func (b byRungeKutta) solve(h *thermal.History, c []float64) {
-	cells := len(c)
-	k := [4][]float64{}
-	for i := range k {
-		k[i] = make([]float64, cells)
-	}
-	y := make([]float64, cells)
-	for l, leg := range h.Legs() {
-		dt := leg.For / float64(b.n)
-		for s := range b.n {
-			at := float64(s) * dt
-			copy(y, c)
-			for i, part := range []float64{0, 0.5, 0.5, 1} {
-				if i > 0 {
-					for j := range y {
-						y[j] = c[j] + part*dt*k[i-1][j]
-					}
-				}
-				inside := math.Min(math.Max(at+part*dt, leg.For*1e-9), leg.For*(1-1e-9)) // within the leg, where temperature jumps between legs
-				b.rate(k[i], y, leg.At(inside), h.Start(l)+inside)
-			}
-			for j := range c {
-				c[j] += dt / 6 * (k[0][j] + 2*k[1][j] + 2*k[2][j] + k[3][j])
-			}
-		}
-	}
-}
-
-func (b byRungeKutta) rate(dst, c []float64, temp, t float64) {
-	p, last := b.p, len(c)-1
-	width := b.faces[1] - b.faces[0]
-	d := math.Exp(p.Law.LnD(temp))
-	own := func(v float64) float64 {
-		if p.Own == nil {
-			return 1
-		}
-		return p.Own(v)
-	}
-	area := func(face int) float64 { return math.Pow(b.faces[face], float64(p.Shape)) }
-	flux := make([]float64, len(b.faces))
-	for i := 1; i <= last; i++ {
-		flux[i] = -area(i) * d * (own(c[i-1]) + own(c[i])) / 2 * (c[i] - c[i-1]) / width
-	}
-	outside := p.Outer[0].Value
-	if p.Outer[0].Given != nil {
-		outside = p.Outer[0].Given.At(t)
-	}
-	k := math.Exp(p.Outer[0].Rate.LnA - p.Outer[0].Rate.E/temp)
-	surface, meets := c[last], outside
-	for range 60 {
-		x := (surface + meets) / 2
-		if (k*(outside-x)-d*(own(c[last])+own(x))*(x-c[last])/width > 0) == (outside > c[last]) {
-			surface = x
-		} else {
-			meets = x
-		}
-	}
-	flux[last+1] = -area(last+1) * k * (outside - surface)
-	for i := range dst {
-		dst[i] = (flux[i] - flux[i+1]) / volume(p.Shape, b.faces[i], b.faces[i+1])
-	}
-}
-
 // TestExchangeAlongPulses: k and D of different activation energies, and an outside
 // that is constant or follows temperature, along paths that jump, rise and fall,
-// against an integration over time that shares nothing with the solver but the
-// cells of a slab. Steps run across all of it, so the bound is that of a default
+// against the reference in the same cells of a slab. Steps run across all of it, so the bound is that of a default
 // plan; ten times the steps come thirty times closer.
 func TestExchangeAlongPulses(t *testing.T) {
 	const plain, fine = 1e-4, 3e-6
@@ -231,18 +157,16 @@ func TestExchangeAlongPulses(t *testing.T) {
 			p := &Problem{Zones: []Zone{{Outer: testSize, Start: 0.3}}, Law: NewLaw(1, 250e3)}
 			p.Law.Terms[0].LnA = math.Log(0.1*testSize*testSize) - p.Law.LnIntegral(h, 0, h.Life())
 			p.Outer = []Rim{{Kind: Transfer, Value: 1, Rate: rateOf(p, h, 2, e)}}
+			beyond := func(t, temp float64) float64 { return 1 }
 			if given {
-				p.Outer[0].Given = &Given{At: func(t float64) float64 { temp, _ := h.At(t); return 1 + 5*(1000/temp-1) }}
+				beyond = func(t, temp float64) float64 { return 1 + 5*(1000/temp-1) }
+				p.Outer[0].Given = &Given{At: func(t float64) float64 { temp, _ := h.At(t); return beyond(t, temp) }}
 			}
 			if own {
 				p.Own = growing(2)
 			}
 			t.Run(fmt.Sprintf("path=%s/E=%g/given=%v/own=%v", name, e, given, own), func(t *testing.T) {
-				truth := make([]float64, 8)
-				for j := range truth {
-					truth[j] = 0.3
-				}
-				byRungeKutta{p, faces, 1000}.solve(h, truth)
+				truth := newFew(p, beyond, faces).byExtrapolation(h, nil)
 				wantClose(t, "default", run(t, newPlan(t, p, Options{Faces: faces}), h).Cols[0], truth, plain)
 				wantClose(t, "fine", run(t, newPlan(t, p, Options{Faces: faces, Growth: 0.01}), h).Cols[0], truth, fine)
 			})
