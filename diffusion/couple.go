@@ -21,19 +21,21 @@ import (
 
 // operator is what a solve needs of the grid.
 type operator struct {
-	vol  []float64 // V, or V K
-	cond []float64 // conductance of each face at unit D
-	k    []float64 // mean K of each cell; nil without coupling
-	kIn  float64   // K at the inner and the outer end
-	kOut float64
-	all  []float64 // of a coupled problem: k, cond, kIn and kOut; then vol
+	vol     []float64 // V, or V K
+	cond    []float64 // conductance of each face at unit D
+	k       []float64 // mean K of each cell; nil without coupling
+	inverse []float64 // 1/K
+	kIn     float64   // K at the inner and the outer end
+	kOut    float64
+	all     []float64 // of a coupled problem: k, cond, kIn and kOut; then vol and inverse
 }
 
 // resize makes room for n cells of a coupled problem and returns the part that
 // depends on temperature alone.
 func (op *operator) resize(n int) []float64 {
-	op.all = resized(op.all, 3*n+3)
-	op.k, op.cond, op.vol = op.all[:n:n], op.all[n:2*n+1:2*n+1], op.all[2*n+3:]
+	op.all = resized(op.all, 4*n+3)
+	op.k, op.cond = op.all[:n:n], op.all[n:2*n+1:2*n+1]
+	op.vol, op.inverse = op.all[2*n+3:3*n+3:3*n+3], op.all[3*n+3:]
 	return op.all[: 2*n+3 : 2*n+3]
 }
 
@@ -103,9 +105,9 @@ func (f *Field) couple(p *Plan, temp float64) *operator {
 		h.evaluate(values, p.problem.LnK, temp)
 	}
 	op.kIn, op.kOut = values[len(values)-2], values[len(values)-1]
-	k, vol := op.k[:len(h.x)], op.vol[:len(h.x)]
+	k, vol, inverse := op.k[:len(h.x)], op.vol[:len(h.x)], op.inverse[:len(h.x)]
 	for i, v := range p.grid.volumes[:len(h.x)] {
-		vol[i] = float64(v * k[i])
+		vol[i], inverse[i] = float64(v*k[i]), 1/k[i]
 	}
 	return op
 }
@@ -290,9 +292,9 @@ func (at *panel) read(dst []float64, coldness float64) {
 // potential returns C/K.
 func (f *Field) potential(op *operator, c []float64) []float64 {
 	f.u = resized(f.u, len(c))
-	k, u := op.k[:len(c)], f.u[:len(c)]
+	inverse, u := op.inverse[:len(c)], f.u[:len(c)]
 	for i, v := range c {
-		u[i] = v / k[i]
+		u[i] = float64(v * inverse[i])
 	}
 	return f.u
 }

@@ -26,7 +26,7 @@ const defaultFinest = 1.0 / 50
 type Plan struct {
 	problem *Problem
 	grid    *grid
-	still   operator    // without coupling: the same in every solve
+	still   operator    // without coupling, the same in every solve; with it, what a resting lane has
 	host    *hostGrid   // nil without coupling
 	starts  [][]float64 // cell means: the answer, then one column per free value
 	opened  book        // of the answer, before any step
@@ -72,6 +72,8 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 	}
 	if p.LnK != nil {
 		plan.host = p.layHost(g)
+		ones := slices.Repeat([]float64{1}, len(g.centres))
+		plan.still.k, plan.still.inverse, plan.still.kIn, plan.still.kOut = ones, ones, 1, 1
 	}
 	plan.starts = append(plan.starts, p.startMeans(g))
 	for _, b := range p.Free {

@@ -33,6 +33,7 @@ type Field struct {
 	newton newton    // of a nonlinear step
 	lane4  lane4
 	cols4  [][]four
+	u4     []four
 	atSpan []float64 // of each span and column, the values at both ends when it begins
 	other  *Field    // the coarser runs of Audit
 }
@@ -49,7 +50,7 @@ func (p *Plan) Run(dst []Field, jobs []Job) error {
 	if err := p.checkJobs(jobs); err != nil {
 		return err
 	}
-	if p.host != nil || p.problem.Own != nil {
+	if p.problem.Own != nil {
 		for k := range jobs {
 			p.runOne(&dst[k], jobs[k], false)
 		}
@@ -213,12 +214,8 @@ func (f *Field) solve(op *operator, s float64, e ends, j int, euler bool) (first
 	}
 	if op.k == nil {
 		f.lane.substitute(c, euler)
-		return first, last
-	}
-	clear(u)
-	f.lane.substitute(u, euler)
-	for i, d := range u {
-		c[i] += float64(op.k[i] * d)
+	} else {
+		f.lane.substituteCoupled(op.k, c, euler)
 	}
 	return first, last
 }

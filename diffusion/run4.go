@@ -7,7 +7,8 @@ type crew struct {
 	dst   []Field // one to four
 	jobs  []Job
 	books [lanes]book
-	g     four // each lane's integral over the span, 0 where it rests
+	g     four             // each lane's integral over the span, 0 where it rests
+	ops   [lanes]*operator // in the solve in hand
 }
 
 // runFour is runOne for up to four jobs, side by side in the scratch of dst[0].
@@ -16,6 +17,7 @@ func (p *Plan) runFour(dst []Field, jobs []Job) {
 	cells := len(p.grid.centres)
 	f := &dst[0]
 	f.lane4.resize(cells)
+	f.u4 = resized4(f.u4, cells)
 	for len(f.cols4) < len(p.starts) {
 		f.cols4 = append(f.cols4, nil)
 	}
@@ -69,31 +71,70 @@ func (cr *crew) step(i, n int) {
 	for k := range cr.dst {
 		s[k] = st.length(cr.g[k])
 	}
+	one := cr.operators(i, n)
 	last := len(p.grid.centres) - 1
 	for j, c := range f.cols4 {
-		e := cr.ends(i, j, n)
-		if j > 0 {
-			f.lane4.forward(&e, c)
-			f.lane4.substitute(c, st.euler)
-			continue
+		u := c
+		if p.host != nil {
+			u = f.u4
+			potential4(u, &cr.ops, c)
 		}
+		e := cr.ends(i, j, n)
 		first0, last0 := c[0], c[last]
-		p.eliminate4(&f.lane4, &s, &e, c)
-		f.lane4.substitute(c, st.euler)
+		switch {
+		case j > 0:
+			f.lane4.forward(&e, u)
+		case one:
+			f.lane4.eliminate(cr.ops[0], &s, &e, u)
+		default:
+			f.lane4.eliminateEach(&cr.ops, &s, &e, u)
+		}
+		f.lane4.substitute(&cr.ops, c, st.euler)
 		for k := range cr.dst {
-			if cr.g[k] != 0 {
+			if j == 0 && cr.g[k] != 0 {
 				one := ends{e.kIn[k], e.kOut[k], e.vIn[k], e.vOut[k]}
-				cr.books[k].enter(&p.still, one, st.euler, first0[k], last0[k], c[0][k], c[last][k])
+				cr.books[k].enter(cr.ops[k], one, st.euler, first0[k], last0[k], c[0][k], c[last][k])
 			}
 		}
 	}
+}
+
+// operators finds each lane's operator in solve n of span i, the same for lanes of
+// one course, and reports whether all have one in common. A lane that rests has
+// the plan's own: another's K may be nothing where it is large.
+func (cr *crew) operators(i, n int) (one bool) {
+	if cr.plan.host == nil {
+		cr.ops = [lanes]*operator{&cr.plan.still, &cr.plan.still, &cr.plan.still, &cr.plan.still}
+		return true
+	}
+	one = true
+	for k := range cr.ops {
+		cr.ops[k] = cr.operator(i, n, k)
+		one = one && cr.ops[k] == cr.ops[0]
+	}
+	return one
+}
+
+func (cr *crew) operator(i, n, k int) *operator {
+	if k >= len(cr.dst) {
+		return cr.ops[0]
+	}
+	if cr.g[k] == 0 {
+		return &cr.plan.still
+	}
+	for b := range k {
+		if cr.jobs[b].Course == cr.jobs[k].Course && cr.g[b] != 0 {
+			return cr.ops[b]
+		}
+	}
+	return cr.dst[k].couple(cr.plan, 1/cr.jobs[k].Course.spans[i].coldness.fine[n])
 }
 
 func (cr *crew) ends(i, j, n int) ends4 {
 	var e ends4
 	for k := range cr.dst {
 		if cr.g[k] != 0 {
-			one := cr.plan.ends(&cr.plan.still, &cr.jobs[k].Course.spans[i], j, n, cr.plan.steps[n], cr.g[k], false)
+			one := cr.plan.ends(cr.ops[k], &cr.jobs[k].Course.spans[i], j, n, cr.plan.steps[n], cr.g[k], false)
 			e.kIn[k], e.kOut[k], e.vIn[k], e.vOut[k] = one.kIn, one.kOut, one.vIn, one.vOut
 		}
 	}

@@ -123,6 +123,32 @@ func (l *lane) substitute(c []float64, euler bool) {
 	}
 }
 
+// substituteCoupled is substitute where the changes are of C/K.
+func (l *lane) substituteCoupled(k, c []float64, euler bool) {
+	n := len(c)
+	m := n / 2
+	factor, rhs := l.factor[:n], l.rhs[:n]
+	k = k[:n]
+	times := 2.0
+	if euler {
+		times = 1
+	}
+	d := rhs[m]
+	u := d
+	c[m] += float64(k[m] * float64(times*d))
+	i, j := m-1, m+1
+	for ; j < n; i, j = i-1, j+1 {
+		d = rhs[i] + float64(factor[i]*d)
+		u = rhs[j] + float64(factor[j]*u)
+		c[i] += float64(k[i] * float64(times*d))
+		c[j] += float64(k[j] * float64(times*u))
+	}
+	if i == 0 {
+		d = rhs[0] + float64(factor[0]*d)
+		c[0] += float64(k[0] * float64(times*d))
+	}
+}
+
 // resized returns s with length n, of new memory only if it must grow.
 func resized(s []float64, n int) []float64 {
 	if cap(s) < n {

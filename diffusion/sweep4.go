@@ -29,25 +29,59 @@ func (l *lane4) resize(n int) {
 	l.cells = l.cells[:n]
 }
 
-func (p *Plan) eliminate4(l *lane4, s *four, e *ends4, c []four) {
+// eliminate is that of lane, for paths that have one operator in common.
+func (l *lane4) eliminate(op *operator, s *four, e *ends4, c []four) {
 	n := len(c)
 	m := n / 2
-	vol, cond := p.still.vol[:n], p.still.cond[:n+1]
+	vol, cond := op.vol[:n], op.cond[:n+1]
+	s0, s1, s2, s3 := s[0], s[1], s[2], s[3]
 	x, f := &e.kIn, inflow4(&e.kIn, &e.vIn, &c[0])
 	y, g := &e.kOut, inflow4(&e.kOut, &e.vOut, &c[n-1])
 	i, j := 0, n-1
 	if n&1 == 0 {
-		x = l.reduce(0, s, vol[0], cond[1], x, &f, &c[0], &c[1])
+		v, k := vol[0], cond[1]
+		x = l.reduce(0, v, v, v, v, float64(s0*k), float64(s1*k), float64(s2*k), float64(s3*k), x, &f, &c[0], &c[1])
 		i = 1
 	}
 	for ; i < m; i, j = i+1, j-1 {
-		x = l.reduce(i, s, vol[i], cond[i+1], x, &f, &c[i], &c[i+1])
-		y = l.reduce(j, s, vol[j], cond[j], y, &g, &c[j], &c[j-1])
+		v, k := vol[i], cond[i+1]
+		x = l.reduce(i, v, v, v, v, float64(s0*k), float64(s1*k), float64(s2*k), float64(s3*k), x, &f, &c[i], &c[i+1])
+		v, k = vol[j], cond[j]
+		y = l.reduce(j, v, v, v, v, float64(s0*k), float64(s1*k), float64(s2*k), float64(s3*k), y, &g, &c[j], &c[j-1])
 	}
 	for k := range lanes {
 		l.middle[k] = 1 / (vol[m] + x[k] + y[k])
 	}
 	l.meet(m, &f, &g)
+}
+
+// eliminateEach is eliminate for paths with an operator each.
+func (l *lane4) eliminateEach(ops *[lanes]*operator, s *four, e *ends4, c []four) {
+	n := len(c)
+	m := n / 2
+	x, f := &e.kIn, inflow4(&e.kIn, &e.vIn, &c[0])
+	y, g := &e.kOut, inflow4(&e.kOut, &e.vOut, &c[n-1])
+	i, j := 0, n-1
+	if n&1 == 0 {
+		x = l.reduceEach(0, 1, ops, s, x, &f, &c[0], &c[1])
+		i = 1
+	}
+	for ; i < m; i, j = i+1, j-1 {
+		x = l.reduceEach(i, i+1, ops, s, x, &f, &c[i], &c[i+1])
+		y = l.reduceEach(j, j, ops, s, y, &g, &c[j], &c[j-1])
+	}
+	for k := range lanes {
+		l.middle[k] = 1 / (ops[k].vol[m] + x[k] + y[k])
+	}
+	l.meet(m, &f, &g)
+}
+
+// reduceEach is reduce for cell i, coupled through a face.
+func (l *lane4) reduceEach(i, face int, ops *[lanes]*operator, s, x, f, c, d *four) *four {
+	o0, o1, o2, o3 := ops[0], ops[1], ops[2], ops[3]
+	return l.reduce(i, o0.vol[i], o1.vol[i], o2.vol[i], o3.vol[i],
+		float64(s[0]*o0.cond[face]), float64(s[1]*o1.cond[face]),
+		float64(s[2]*o2.cond[face]), float64(s[3]*o3.cond[face]), x, f, c, d)
 }
 
 // meet finds the change of the middle cell m, from what both chains hand on.
@@ -57,13 +91,12 @@ func (l *lane4) meet(m int, f, g *four) {
 	}
 }
 
-// reduce eliminates cell i of volume v and value c, coupled by k to the next
-// one of value d: x and f are what was handed to it, f and what is returned what
-// it hands on.
-func (l *lane4) reduce(i int, s *four, v, k float64, x, f, c, d *four) *four {
+// reduce eliminates cell i of value c and volumes v, coupled by a to the next one of
+// value d: x and f are what was handed to it, f and what is returned what it hands
+// on.
+func (l *lane4) reduce(i int, v0, v1, v2, v3, a0, a1, a2, a3 float64, x, f, c, d *four) *four {
 	to := &l.cells[i]
-	a0, a1, a2, a3 := float64(s[0]*k), float64(s[1]*k), float64(s[2]*k), float64(s[3]*k)
-	v0, v1, v2, v3 := v+x[0], v+x[1], v+x[2], v+x[3]
+	v0, v1, v2, v3 = v0+x[0], v1+x[1], v2+x[2], v3+x[3]
 	i0, i1, i2, i3 := 1/(v0+a0), 1/(v1+a1), 1/(v2+a2), 1/(v3+a3)
 	to.inverse[0], to.inverse[1], to.inverse[2], to.inverse[3] = i0, i1, i2, i3
 	v0, v1 = float64(float64(a0*v0)*i0), float64(float64(a1*v1)*i1)
@@ -105,19 +138,28 @@ func (l *lane4) carry(i int, f, c, d *four) {
 	}
 }
 
-func (l *lane4) substitute(c []four, euler bool) {
-	n := len(c)
-	m := n / 2
+// substitute is that of lane. Where the problem is coupled the operators make of
+// changes of C/K changes of C; otherwise they have no K.
+func (l *lane4) substitute(ops *[lanes]*operator, c []four, euler bool) {
+	m := len(c) / 2
 	times := 2.0
 	if euler {
 		times = 1
 	}
 	d := l.cells[m].rhs
-	for k := range lanes {
-		c[m][k] += float64(times * d[k])
+	if ops[0].k == nil {
+		for k := range lanes {
+			c[m][k] += float64(times * d[k])
+		}
+		l.outwards(c, m-1, -1, times)
+		l.outwards(c, m+1, 1, times)
+		return
 	}
-	l.outwards(c, m-1, -1, times)
-	l.outwards(c, m+1, 1, times)
+	for k := range lanes {
+		c[m][k] += float64(ops[k].k[m] * float64(times*d[k]))
+	}
+	l.outwardsEach(ops, c, m-1, -1, times)
+	l.outwardsEach(ops, c, m+1, 1, times)
 }
 
 // outwards finds the changes of the cells from i on, by each, from that of the
@@ -133,6 +175,34 @@ func (l *lane4) outwards(c []four, i, by int, times float64) {
 		to[1] += float64(times * d1)
 		to[2] += float64(times * d2)
 		to[3] += float64(times * d3)
+	}
+}
+
+// outwardsEach is outwards where the changes are of C/K.
+func (l *lane4) outwardsEach(ops *[lanes]*operator, c []four, i, by int, times float64) {
+	d := &l.cells[i-by].rhs
+	d0, d1, d2, d3 := d[0], d[1], d[2], d[3]
+	k0, k1, k2, k3 := ops[0].k[:len(c)], ops[1].k[:len(c)], ops[2].k[:len(c)], ops[3].k[:len(c)]
+	for ; uint(i) < uint(len(c)); i += by {
+		at, to := &l.cells[i], &c[i]
+		d0, d1 = at.rhs[0]+float64(at.factor[0]*d0), at.rhs[1]+float64(at.factor[1]*d1)
+		d2, d3 = at.rhs[2]+float64(at.factor[2]*d2), at.rhs[3]+float64(at.factor[3]*d3)
+		to[0] += float64(k0[i] * float64(times*d0))
+		to[1] += float64(k1[i] * float64(times*d1))
+		to[2] += float64(k2[i] * float64(times*d2))
+		to[3] += float64(k3[i] * float64(times*d3))
+	}
+}
+
+// potential4 fills dst with C/K.
+func potential4(dst []four, ops *[lanes]*operator, c []four) {
+	n := len(c)
+	k0, k1, k2, k3 := ops[0].inverse[:n], ops[1].inverse[:n], ops[2].inverse[:n], ops[3].inverse[:n]
+	dst = dst[:n]
+	for i := range c {
+		v, u := &c[i], &dst[i]
+		u[0], u[1] = float64(v[0]*k0[i]), float64(v[1]*k1[i])
+		u[2], u[3] = float64(v[2]*k2[i]), float64(v[3]*k3[i])
 	}
 }
 
