@@ -39,23 +39,28 @@ rim = { transfer = %s, k = { k0 = "2.6e-6 m/s", E = "200 kJ/mol" } }
 traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = "Ti [ppm]", error = "1 ppm", spot = "point" }
 `
 
-// readWith writes a study with what was measured at micrometres from the rim,
-// and reads it.
-func readWith(t *testing.T, text string, measured func(x float64) float64) *study.Study {
+// readWith writes a study with what was measured at micrometres from the rim, and
+// more files, and reads it.
+func readWith(t *testing.T, text string, measured func(x float64) float64, more ...string) *study.Study {
 	t.Helper()
 	var data strings.Builder
 	data.WriteString("distance [um],Ti [ppm]\n")
 	for x := 0.5; x < 30; x++ {
 		fmt.Fprintf(&data, "%g,%.9g\n", x, measured(x*um))
 	}
-	return readStudy(t, text, "ti.csv", data.String())
+	return readStudy(t, text, "ti.csv", data.String(), more...)
 }
 
-// readStudy writes a study and its one file of data, and reads it.
-func readStudy(t *testing.T, text, name, data string) *study.Study {
+// readStudy writes a study and its one file of data, and more files with the text
+// of each after its name, and reads it.
+func readStudy(t *testing.T, text, name, data string, more ...string) *study.Study {
 	t.Helper()
 	folder := t.TempDir()
-	for name, text := range map[string]string{name: data, "study.toml": text} {
+	files := map[string]string{name: data, "study.toml": text}
+	for i := 0; i < len(more); i += 2 {
+		files[more[i]] = more[i+1]
+	}
+	for name, text := range files {
 		if err := os.WriteFile(filepath.Join(folder, name), []byte(text), 0o666); err != nil {
 			t.Fatal(err)
 		}

@@ -17,6 +17,10 @@ name = "kx"
 A = "-100 kJ/mol"
 B = "10 kJ/mol"
 
+[conditions]
+pressure = "2 kbar"
+aTiO2 = 0.5
+
 [[path]]
 name = "as made"
 legs = [ { hold = "800 C", for = "500 yr" }, { hold = "750 C", for = "800 yr" } ]
@@ -31,7 +35,7 @@ zones = [ { name = "core", width = "100 um", host = 0.4 } ]
 name = "Ti"
 law = { D0 = "7e-8 m2/s", E = "273 kJ/mol" }
 start = { zones = [%s] }
-rim = { following = "kx", melt = "2000 ppm" }
+rim = %s
 traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = "Ti [ppm]", error = "1 ppm", spot = "point" }
 `
 
@@ -41,20 +45,36 @@ traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = 
 func TestFollowing(t *testing.T) {
 	const (
 		start    = 90.0
-		grid     = 0.02 // ppm of 30, what 200 cells leave
+		grid     = 0.02 // ppm of 30, what 200 cells leave, and in proportion
 		promised = 0.01 // of shift factors and free values
 	)
 	rt := func(c float64) float64 { return thermal.GasConstant * (c + thermal.ZeroCelsius) }
 	d := func(c float64) float64 { return 7e-8 * math.Exp(-273e3/rt(c)) * thermal.Year }
-	rim := func(c float64) float64 { return 2000 * math.Exp((-100e3*0.4+10e3)/rt(c)) }
 	late := 800 * d(750)
 	all := 500*d(800) + late
-	exact := func(x float64) float64 {
-		return start + (rim(800)-start)*math.Erfc(x/(2*math.Sqrt(all))) + (rim(750)-rim(800))*math.Erfc(x/(2*math.Sqrt(late)))
+	kx := func(c float64) float64 { return math.Exp((-100e3*0.4 + 10e3) / rt(c)) }
+	melt := func(c float64) float64 { return 1000 + 10*(c-700) } // as in melt.csv
+	huang := func(c float64) float64 {                           // Huang and Audetat (2012) at 2 kbar, times the activity
+		return 0.5 * math.Pow(10, 5.6459-(2794.3+660.53*math.Pow(2, 0.35))/(c+thermal.ZeroCelsius))
 	}
-	for _, core := range []string{`"90 ppm"`, `"free"`} {
-		t.Run(core, func(t *testing.T) {
-			s := readWith(t, fmt.Sprintf(followed, core), exact)
+	const table = `temperature = "T [C]", value = "Ti [ppm]" }`
+	for _, test := range []struct {
+		core, rim string
+		value     func(c float64) float64
+	}{
+		{`"90 ppm"`, `{ following = "kx", melt = "2000 ppm" }`, func(c float64) float64 { return 2000 * kx(c) }},
+		{`"free"`, `{ following = "kx", melt = "2000 ppm" }`, func(c float64) float64 { return 2000 * kx(c) }},
+		{`"90 ppm"`, `{ following = "kx", melt = "melt.csv", ` + table, func(c float64) float64 { return melt(c) * kx(c) }},
+		{`"free"`, `{ following = "ti-quartz-huang2012" }`, huang},
+		{`"90 ppm"`, `{ given = "melt.csv", ` + table, melt},
+	} {
+		t.Run(test.core+" in "+test.rim, func(t *testing.T) {
+			rim := test.value
+			exact := func(x float64) float64 {
+				return start + (rim(800)-start)*math.Erfc(x/(2*math.Sqrt(all))) + (rim(750)-rim(800))*math.Erfc(x/(2*math.Sqrt(late)))
+			}
+			grid := grid * math.Max(1, math.Abs(rim(800)-start)/30)
+			s := readWith(t, fmt.Sprintf(followed, test.core, test.rim), exact, "melt.csv", "T [C],Ti [ppm]\n700,1000\n800,2000\n")
 			course, err := Follow(t.Context(), s, &s.Paths[0], nil)
 			if err != nil {
 				t.Fatal(err)

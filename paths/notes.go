@@ -59,6 +59,12 @@ func lawNotes(e *study.Element, h *thermal.History) []string {
 			notes = append(notes, "partition "+p.Key+": "+caution)
 		}
 	}
+	for _, s := range e.Solubilities() {
+		for _, caution := range s.Row.Cautions() {
+			notes = append(notes, "solubility "+s.Row.Key+": "+caution)
+		}
+	}
+	notes = append(notes, e.Beyond(h)...)
 	return notes
 }
 

@@ -207,6 +207,19 @@ func (h *History) Range() (lo, hi float64) {
 	return lo, hi
 }
 
+// RangeIn is the lowest and the highest temperature of the path after t0 and before t1, s; +Inf and -Inf if no time lies
+// between.
+func (h *History) RangeIn(t0, t1 float64) (lo, hi float64) {
+	lo, hi = math.Inf(1), math.Inf(-1)
+	for i := range h.legs {
+		if from, to := max(t0, h.starts[i]), min(t1, h.starts[i+1]); from < to {
+			a, b := h.legs[i].rangeIn(from-h.starts[i], to-h.starts[i])
+			lo, hi = min(lo, a), max(hi, b)
+		}
+	}
+	return lo, hi
+}
+
 // Names is the named stretches of the path in the order in which they begin, which the caller must not change. Only Build
 // names legs.
 func (h *History) Names() []Named { return h.names }

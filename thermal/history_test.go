@@ -315,3 +315,41 @@ func TestJumps(t *testing.T) {
 		}
 	}
 }
+
+// TestRangeIn: no time between is colder or hotter, and some are about as cold and as
+// hot.
+func TestRangeIn(t *testing.T) {
+	const (
+		samples = 2000
+		about   = 0.005 // of the temperature, which sheets pass between the samples
+		steep   = 1e-4  // of it, by which times that are rounded may be off where a table is steep
+	)
+	for i := range 100 {
+		r := rand.New(rand.NewPCG(17, uint64(i)))
+		h := randomHistory(t, r)
+		t0 := h.Life() * r.Float64()
+		t1 := t0 + (h.Life()-t0)*r.Float64()
+		lo, hi := h.RangeIn(t0, t1)
+		_, first := h.At(t0)
+		last, _ := h.At(t1)
+		coldest, hottest := min(first, last), max(first, last)
+		see := func(at float64) {
+			if before, after := h.At(at); t0 < at && at < t1 {
+				coldest, hottest = min(coldest, before, after), max(hottest, before, after)
+			}
+		}
+		for _, at := range h.Breaks(nil) {
+			see(at)
+		}
+		for k := range samples {
+			see(t0 + (t1-t0)*math.Pow(float64(k)/samples, 3))
+		}
+		if !(lo <= coldest*(1+steep) && hi >= hottest*(1-steep) && lo >= coldest*(1-about) && hi <= hottest*(1+about)) {
+			t.Errorf("path %d: %g to %g K from %g to %g s, but some are %g to %g K", i, lo, hi, t0, t1, coldest, hottest)
+		}
+	}
+	h := randomHistory(t, rand.New(rand.NewPCG(17, 0)))
+	if lo, hi := h.RangeIn(5, 5); !math.IsInf(lo, 1) || !math.IsInf(hi, -1) {
+		t.Errorf("%g to %g K in no time", lo, hi)
+	}
+}

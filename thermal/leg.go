@@ -111,6 +111,23 @@ func (l *Leg) Range() (lo, hi float64) {
 	return min(a, b), max(a, b)
 }
 
+// rangeIn is the same after t0 and before t1, s from its start.
+func (l *Leg) rangeIn(t0, t1 float64) (lo, hi float64) {
+	if l.Kind == SheetCooling {
+		return l.Sheet.span(t0, t1)
+	}
+	a, b := l.At(t0), l.before(t1)
+	lo, hi = min(a, b), max(a, b)
+	if l.Kind == Table {
+		for i, t := range l.Rows.Time {
+			if t > t0 && t < t1 {
+				lo, hi = min(lo, l.Rows.Temp[i]), max(hi, l.Rows.Temp[i])
+			}
+		}
+	}
+	return lo, hi
+}
+
 // check is nil, or what is wrong with the leg: the value, the problem and the remedy.
 func (l *Leg) check() *InputError {
 	switch l.Kind {

@@ -110,7 +110,7 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 		}
 		for _, r := range slices.Concat(e.Inner, e.Rims) {
 			if f := r.Following; f != nil {
-				fmt.Fprintf(w, "  %s at the rim follows %s %s in the melt by partition %s\n", e.Name, plain(f.Melt), e.Unit, partitionText(&f.Partition))
+				fmt.Fprintf(w, "  %s at the rim follows %s\n", e.Name, followingText(f, e))
 			}
 		}
 		if t := e.Traverse; t != nil {
@@ -172,6 +172,32 @@ func partitionText(p *study.Partition) string {
 	}
 	text += ", " + p.Row.Citation
 	for _, caution := range p.Cautions() {
+		text += "; " + caution
+	}
+	return text
+}
+
+// followingText says what a rim follows.
+func followingText(f *study.Following, e *study.Element) string {
+	switch {
+	case f.Solubility != nil:
+		return solubilityText(f.Solubility)
+	case f.Partition == nil:
+		return tableText(f.Table)
+	case f.Table != nil:
+		return fmt.Sprintf("the melt in %s by partition %s", tableText(f.Table), partitionText(f.Partition))
+	}
+	return fmt.Sprintf("%s %s in the melt by partition %s", plain(f.Melt), e.Unit, partitionText(f.Partition))
+}
+
+func tableText(t *study.ByTemperature) string {
+	return fmt.Sprintf("a table from %s to %s", celsius(t.Temp[0]), celsius(t.Temp[len(t.Temp)-1]))
+}
+
+// solubilityText names a solubility relation with how far it can be trusted.
+func solubilityText(s *study.Solubility) string {
+	text := "solubility " + s.Row.Key + ", " + s.Row.Citation
+	for _, caution := range s.Row.Cautions() {
 		text += "; " + caution
 	}
 	return text

@@ -220,18 +220,22 @@ func frames() []frame {
 
 // beside are keys that change, or go, beside the one that is tried.
 var beside = map[string][]string{
-	"limits.above temperature":            {"threshold"},
-	"limits.above shortest":               {"longest"},
-	"limits.between shortest":             {"longest"},
-	"crystal.element.traverse unit":       {"value", `value = "Ti"`},
-	"crystal.element.rim given unit":      {"value", `value = "Ti"`},
-	"crystal.host unit":                   {"value", `value = "bare"`},
-	"crystal.element.traverse.error size": {"column", "", "sigmas", ""},
+	"limits.above temperature":                  {"threshold"},
+	"limits.above shortest":                     {"longest"},
+	"limits.between shortest":                   {"longest"},
+	"crystal.element.traverse unit":             {"value", `value = "Ti"`},
+	"crystal.element.rim given unit":            {"value", `value = "Ti"`},
+	"crystal.element.rim given temperature":     {"time", ""},
+	"crystal.element.rim following temperature": {"melt", `melt = "sr-melt.csv"`, "value", `value = "Sr [ppm]"`},
+	"crystal.element.rim following value":       {"melt", `melt = "sr-melt.csv"`, "temperature", `temperature = "T [C]"`},
+	"crystal.host unit":                         {"value", `value = "bare"`},
+	"crystal.element.traverse.error size":       {"column", "", "sigmas", ""},
 }
 
 // onHost are keys for which the crystal needs a host in every zone.
 var onHost = []string{"crystal.zones host", "crystal.element partition", "crystal.element.law host",
 	"crystal.element.rim following following", "crystal.element.rim following melt",
+	"crystal.element.rim following temperature", "crystal.element.rim following value",
 	"crystal.element.rim following unit", "crystal.element.rim following from", "crystal.element.law.host ln_slope", "crystal.element.law.host at"}
 
 // hosts gives a host to the zones that have none.
@@ -260,6 +264,9 @@ func (f *frame) with(e entry) string {
 	}
 	change := beside[f.table+" "+e.key]
 	for i := 0; i < len(change); i += 2 {
+		if !slices.Contains(order, change[i]) {
+			order = append(order, change[i])
+		}
 		keys[change[i]] = strings.Join(change[i+1:min(i+2, len(change))], "")
 	}
 	var out []string
@@ -281,7 +288,8 @@ func TestStudyHelpEntries(t *testing.T) {
 	sound := files["study.toml"]
 	writeFile(t, folder, "ti.csv", "distance [um],Ti [ppm],2se [ppm],crack\n50,58,4,\n60,75,4,x\n64,91,4,\n")
 	writeFile(t, folder, "tt.csv", "t [yr],T [C]\n90,690\n50,750\n0,700\n")
-	writeFile(t, folder, "rim.csv", "t [yr],Ti [ppm]\n0,60\n1e5,70\n")
+	writeFile(t, folder, "rim.csv", "t [yr],Ti [ppm],T [C]\n0,60,600\n1e5,70,900\n")
+	writeFile(t, folder, "sr-melt.csv", "T [C],Sr [ppm]\n900,60\n600,70\n")
 	writeFile(t, folder, "an.csv", "distance [um],XAn [mole fraction],bare\n50,0.4,0.4\n90,0.5,0.5\n")
 	found := entries(studyHelp)
 	for _, f := range frames() {

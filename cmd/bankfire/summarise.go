@@ -15,7 +15,7 @@ import (
 func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
-		Inputs: []input{}, Conditions: conditionsUsed(&r.Study.Conditions), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study),
+		Inputs: []input{}, Conditions: conditionsUsed(&r.Study.Conditions), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study), Solubilities: solubilitiesUsed(r.Study),
 		Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
 		Notes: filled(r.Study.Notes), Files: []string{},
 	}
@@ -131,6 +131,28 @@ func lawsUsed(s *study.Study) []lawUsed {
 // partitionsUsed lists the partition relations of the measured elements in their
 // order, once each.
 func partitionsUsed(s *study.Study) []lawUsed {
+	return relationsUsed(s, func(e *study.Element) []lawUsed {
+		var used []lawUsed
+		for _, p := range e.Partitions() {
+			used = append(used, partitionUsed(p))
+		}
+		return used
+	})
+}
+
+// solubilitiesUsed lists the solubility relations in the same way.
+func solubilitiesUsed(s *study.Study) []lawUsed {
+	return relationsUsed(s, func(e *study.Element) []lawUsed {
+		var used []lawUsed
+		for _, s := range e.Solubilities() {
+			used = append(used, lawUsed{Key: s.Row.Key, Citation: s.Row.Citation, Confidence: s.Row.Confidence})
+		}
+		return used
+	})
+}
+
+// relationsUsed joins what the measured elements use, in their order.
+func relationsUsed(s *study.Study, of func(e *study.Element) []lawUsed) []lawUsed {
 	relations := []lawUsed{}
 	known := map[string]int{}
 	for _, c := range s.Crystals {
@@ -138,12 +160,12 @@ func partitionsUsed(s *study.Study) []lawUsed {
 			if e.Traverse == nil {
 				continue
 			}
-			for _, p := range e.Partitions() {
-				i, is := known[p.Key]
+			for _, used := range of(&e) {
+				i, is := known[used.Key]
 				if !is {
 					i = len(relations)
-					known[p.Key] = i
-					relations = append(relations, partitionUsed(p))
+					known[used.Key] = i
+					relations = append(relations, used)
 				}
 				relations[i].Elements = append(relations[i].Elements, elementKey{c.Name, e.Name})
 			}

@@ -56,7 +56,7 @@ func Solubilities() []Solubility {
 		{Key: "ti-quartz-zhang2020", Mineral: "quartz", Element: "Ti",
 			A: ln10 * 5.3226, B: ln10 * -1948.4, C: ln10 * -981.4, N: 0.2,
 			TMin: celsius(700), TMax: celsius(900), PMin: 0.5 * kilobar, PMax: 4 * kilobar,
-			Citation:   "Zhang, Li, Li & Ni 2020, Earth Planet. Sci. Lett. 538, 116213",
+			Citation:   "Zhang, Li, Almeev, Horn, Behrens & Holtz 2020, Earth Planet. Sci. Lett. 538, 116213",
 			Confidence: "memory: strong; 5.32 and the calibrated ranges confirmed in the abstract; that P is in kbar is inferred"},
 		{Key: "ti-zircon-ferry2007", Mineral: "zircon", Element: "Ti",
 			A: ln10 * 5.711, B: ln10 * -4800, SiO2: -1,

@@ -89,6 +89,13 @@ func (d *decoder) note(format string, args ...any) {
 	d.notes = append(d.notes, fmt.Sprintf(format, args...))
 }
 
+// noteOnce adds a note that is not there yet.
+func (d *decoder) noteOnce(format string, args ...any) {
+	if note := fmt.Sprintf(format, args...); !slices.Contains(d.notes, note) {
+		d.notes = append(d.notes, note)
+	}
+}
+
 // keys reports every key of the table n that its kind does not have.
 func (d *decoder) keys(n *node, kind tableKind) { d.known(n, tables[kind].Keys) }
 

@@ -32,7 +32,7 @@ func (d *decoder) conditions(n *node) Conditions {
 		c.Typed = append(c.Typed, "fO2 "+v.text)
 	}
 	if v := n.get("aTiO2"); v != nil {
-		c.ATiO2 = d.activity(v)
+		c.Given[catalogue.ATiO2] = d.activity(v)
 		c.Typed = append(c.Typed, "aTiO2 "+v.text)
 	}
 	if v := n.get("aSiO2"); v != nil {
@@ -125,7 +125,7 @@ func (c *Conditions) gives(name string) bool {
 	return given || name == catalogue.FO2 && c.Buffer != nil
 }
 
-// noteUnused notes the conditions that no law of the study depends on, and a
+// noteUnused notes the conditions that nothing in the study depends on, and a
 // buffer that is taken at a pressure of 1 bar.
 func (d *decoder) noteUnused() {
 	c := &d.at
@@ -136,12 +136,9 @@ func (d *decoder) noteUnused() {
 			d.note("no pressure given: the %s buffer is taken at 1 bar", c.Buffer.Names[0])
 		}
 	}
-	for _, name := range []string{catalogue.Pressure, catalogue.FO2, catalogue.ASiO2} {
+	for _, name := range []string{catalogue.Pressure, catalogue.FO2, catalogue.ASiO2, catalogue.ATiO2} {
 		if c.gives(name) && !d.used[name] {
-			d.note("conditions: no law of this study depends on %s", name)
+			d.note("conditions: nothing in this study depends on %s", name)
 		}
-	}
-	if c.ATiO2 != 0 {
-		d.note("conditions: nothing in this study depends on aTiO2")
 	}
 }

@@ -2,36 +2,140 @@ package study
 
 import (
 	"fmt"
-	"math"
+	"maps"
+	"slices"
+	"strings"
 
 	"bankfire/diffusion"
-	"bankfire/paths/traverse"
+	"bankfire/diffusion/catalogue"
 	"bankfire/thermal"
 )
 
-// following reads a rim in equilibrium with a melt, K of a partition relation
-// times what the melt has.
+// following reads a rim in equilibrium with what is outside at every temperature:
+// with a melt by a partition relation, or saturated by a solubility relation.
 func (d *decoder) following(n *node, r *Rim, u *units) {
 	r.Kind = diffusion.Prescribed
 	v := n.get("following")
-	const example = `write { following = "sr-blundy1991", melt = "90 ppm" }, a key or the name of a [[partition]]`
+	const example = `write { following = "sr-blundy1991", melt = "90 ppm" }, a key or the name of a [[partition]], or { following = "ti-quartz-huang2012" }`
 	key, ok := d.text(v, example)
 	if !ok {
 		return
 	}
-	relation, ok := d.relation(v, key)
-	melt := d.need(n, "melt", example)
-	if melt == nil {
+	if row, err := catalogue.FindSolubility(key); err == nil {
+		for _, name := range []string{"melt", "temperature", "value", "unit"} {
+			if w := n.get(name); w != nil {
+				d.report(w, key+" knows what the crystal takes up without it", "leave it out")
+			}
+		}
+		if s := d.solubility(v, row, u); s != nil {
+			r.Following = &Following{Solubility: s}
+		}
+		return
+	}
+	relation, ok := d.followed(v, key)
+	if !ok {
+		return
+	}
+	f, before := &Following{Partition: &relation}, d.faults
+	if melt := d.need(n, "melt", example); melt != nil {
+		d.melt(n, melt, f, u)
+	}
+	if d.faults == before {
+		r.Following = f
+	}
+}
+
+// followed returns the partition relation of that name, which a rim follows, or
+// suggests the nearest of all relations.
+func (d *decoder) followed(n *node, key string) (Partition, bool) {
+	_, own := d.partitions[key]
+	if _, err := catalogue.FindPartition(key); own || err == nil {
+		return d.relation(n, key)
+	}
+	known := slices.Sorted(maps.Keys(d.partitions))
+	for _, p := range catalogue.Partitions() {
+		known = append(known, p.Key)
+	}
+	for _, s := range catalogue.Solubilities() {
+		known = append(known, s.Key)
+	}
+	d.reportWord(n, "no partition relation, solubility relation or [[partition]] of this study", known, "known are "+strings.Join(known, ", "))
+	return Partition{}, false
+}
+
+// melt reads what a melt has: a value, or a table against temperature.
+func (d *decoder) melt(n, melt *node, f *Following, u *units) {
+	const example = `write it like melt = "90 ppm"; a file needs its columns too: melt = "sr-melt.csv", temperature = "T [C]", value = "Sr [ppm]"`
+	switch columns := n.get("temperature") != nil || n.get("value") != nil; {
+	case columns:
+		f.Table = d.byTemperature(n, melt, u)
+		return
+	case melt.kind == textNode && melt.text != "free" && !looksLikeValue(melt.text):
+		d.report(melt, "neither a value nor a file with its columns", example)
 		return
 	}
 	value := d.amount(melt, u, d.concentrationUnit(n.get("unit")))
 	if value.open() {
-		d.report(melt, "what the melt has must be known exactly", `write it like melt = "90 ppm"`)
+		d.report(melt, "what the melt has must be known exactly", example)
 	}
-	if ok {
-		r.Following = &Following{Partition: relation, Melt: value.Value}
+	f.Melt = value.Value
+}
+
+// solubility reads a relation of the catalogue under the conditions of the study,
+// in the unit of the element. It is nil if that fails.
+func (d *decoder) solubility(n *node, row *catalogue.Solubility, u *units) *Solubility {
+	perPPM, ok := d.unitFactor(n, u, "ppm")
+	if !d.saturates(n, row) || !ok {
+		return nil
+	}
+	content, err := row.At(d.at.Given)
+	if err != nil {
+		d.reportError(n, err)
+		return nil
+	}
+	return &Solubility{Row: row, Content: content, PerPPM: perPPM}
+}
+
+// saturates reports every condition of the relation that the study does not give,
+// and notes a pressure for which it was not made.
+func (d *decoder) saturates(n *node, row *catalogue.Solubility) bool {
+	all := true
+	for _, name := range row.Needs() {
+		d.used[name] = true
+		if !d.at.gives(name) {
+			d.report(n, "depends on "+name+", not given in this study", "write [conditions] and below it "+name+" = "+conditionExample(name))
+			all = false
+		}
+	}
+	if p, given := d.at.Given[catalogue.Pressure]; given && row.PMax > 0 {
+		d.used[catalogue.Pressure] = true
+		d.notePressure(row, p)
+	} else if row.PMax > 0 && all {
+		d.noteOnce("no pressure given: %s was calibrated at %s", row.Key, pressureRange(row))
+	}
+	return all
+}
+
+func (d *decoder) notePressure(row *catalogue.Solubility, p float64) {
+	const slack = 1e-9
+	switch {
+	case p < row.PMin*(1-slack):
+		d.noteOnce("%s is used at %s, %s below its calibrated %s", row.Key, kilobars(p), kilobars(row.PMin-p), pressureRange(row))
+	case p > row.PMax*(1+slack):
+		d.noteOnce("%s is used at %s, %s above its calibrated %s", row.Key, kilobars(p), kilobars(p-row.PMax), pressureRange(row))
 	}
 }
+
+func pressureRange(row *catalogue.Solubility) string {
+	if row.PMin == row.PMax {
+		return kilobars(row.PMin)
+	}
+	return fmt.Sprintf("%.4g to %s", row.PMin/kilobar, kilobars(row.PMax))
+}
+
+func kilobars(p float64) string { return fmt.Sprintf("%.4g kbar", p/kilobar) }
+
+const kilobar = 1e3 * thermal.Bar
 
 // followers gives the rims at an end that follow a relation the host of the zone
 // there, and checks that it fits the element.
@@ -41,36 +145,67 @@ func (d *decoder) followers(rims []Rim, zone int, c *Crystal, e *Element) {
 		switch {
 		case f == nil || zone < 0:
 			continue
-		case !c.Hosted:
+		case f.Partition != nil && !c.Hosted:
 			d.add(at.Error("", "a rim that follows a partition relation needs the host's composition", hostRemedy))
-		case e.Traverse != nil && e.Traverse.Grey:
-			d.add(at.Error("", "relative values cannot follow a melt", "give the traverse in a unit of concentration"))
+		case f.related() && e.Traverse != nil && e.Traverse.Grey:
+			d.add(at.Error("", "relative values cannot follow a relation", "give the traverse in a unit of concentration"))
 		case e.Law.OwnSlope != 0:
-			d.add(at.Error("", "D depends on "+e.Name+" itself, so that its rim must be known without a path", `write held = "90 ppm", or given = "rim.csv"`))
+			d.add(at.Error("", "D depends on "+e.Name+" itself, so that its rim must be known without a path", `write held = "90 ppm", or given = "rim.csv" against time`))
 		}
-		f.Host = c.Zones[zone].Host
-		d.notePartition(&f.Partition, c, e)
+		if f.Partition != nil {
+			f.Host = c.Zones[zone].Host
+			d.notePartition(f.Partition, c, e)
+		}
+		if f.Solubility != nil {
+			d.noteSolubility(f.Solubility.Row, c, e)
+		}
 	}
 }
 
-// at is the value of the rim at a temperature, K.
-func (f *Following) at(temp float64) float64 {
-	return f.Melt * math.Exp(f.Partition.LnK(f.Host, temp))
+// noteSolubility notes a relation that is used for what it was not made for.
+func (d *decoder) noteSolubility(row *catalogue.Solubility, c *Crystal, e *Element) {
+	d.noteOnce("%s: solubility by %s, %s%s", e.Name, row.Key, row.Citation, rivals(row))
+	if !startsWithSymbol(e.Name, row.Element) {
+		d.noteOnce("%s: solubility %s is for %s: is it the right one?", e.Name, row.Key, row.Element)
+	}
+	if otherThan(row.Mineral, c) {
+		d.noteOnce("%s: solubility %s is for %s, but the crystal %s is %s: is it the right one?", e.Name, row.Key, row.Mineral, c.Name, c.Mineral)
+	}
 }
 
-// follow turns a rim that follows a relation into a function of time.
-func (b *builder) follow(r *Rim) (*diffusion.Given, error) {
-	f, h := r.Following, b.h
-	lo, hi := h.Range()
-	for _, temp := range []float64{lo, hi} {
-		if x := f.at(temp); !(x <= traverse.Whole(b.e.Unit)) {
-			return nil, r.Place.Error("", fmt.Sprintf("is in equilibrium with the melt at %.3g %s at %.0f C, more than all there is", x, b.e.Unit, temp-thermal.ZeroCelsius),
-				"check the relation and the melt")
+// rivals says that there are other relations for what this one is for.
+func rivals(row *catalogue.Solubility) string {
+	n := 0
+	for _, s := range catalogue.Solubilities() {
+		if s.Mineral == row.Mineral && s.Element == row.Element {
+			n++
 		}
+	}
+	if n == 1 {
+		return ""
+	}
+	return fmt.Sprintf(", one of %d published models that differ by up to six times", n)
+}
+
+// related reports whether the rim follows a relation, not a table alone.
+func (f *Following) related() bool { return f.Partition != nil || f.Solubility != nil }
+
+// follow turns a rim that follows into a function of time. It must be known at all
+// temperatures between the times from and until, s.
+func (b *builder) follow(r *Rim, from, until float64) (*diffusion.Given, error) {
+	f, h := r.Following, b.h
+	lo, hi := h.RangeIn(from, until)
+	if f.Table != nil {
+		if err := f.Table.covers(lo, hi); err != nil {
+			return nil, err
+		}
+	}
+	if err := f.possible(lo, hi, b.e.Unit, r.Place); err != nil {
+		return nil, err
 	}
 	g := &diffusion.Given{At: func(t float64) float64 {
 		_, after := h.At(t)
-		return f.at(after)
+		return f.At(after)
 	}}
 	for _, t := range h.Breaks(nil) {
 		if before, after := h.At(t); before != after {
@@ -79,5 +214,26 @@ func (b *builder) follow(r *Rim) (*diffusion.Given, error) {
 			g.Breaks = append(g.Breaks, t)
 		}
 	}
+	g.Breaks = append(g.Breaks, f.kinks(h)...)
 	return g, nil
+}
+
+// kinks are the times at which the temperature passes a row of the table and no leg
+// begins or ends.
+func (f *Following) kinks(h *thermal.History) []float64 {
+	if f.Table == nil {
+		return nil
+	}
+	known := h.Breaks(nil)
+	var all, out []float64
+	for _, temp := range f.Table.Temp {
+		all = h.Passes(all, temp)
+	}
+	slices.Sort(all)
+	for _, t := range slices.Compact(all) {
+		if _, is := slices.BinarySearch(known, t); !is {
+			out = append(out, t)
+		}
+	}
+	return out
 }

@@ -39,6 +39,9 @@ func (d *decoder) ownPartitions(n *node) {
 		if _, err := catalogue.FindPartition(name); err == nil {
 			d.report(v, "a partition relation of the catalogue has this key", "choose another name")
 		}
+		if _, err := catalogue.FindSolubility(name); err == nil {
+			d.report(v, "a solubility relation of the catalogue has this key", "choose another name")
+		}
 		d.unique(v, name, seen)
 		p.Key = name
 		d.partitions[name] = p
@@ -127,7 +130,7 @@ func (d *decoder) notePartition(p *Partition, c *Crystal, e *Element) {
 	if !startsWithSymbol(e.Name, p.Row.Element) {
 		d.note("%s: partition %s is for %s: is it the right one?", e.Name, p.Key, p.Row.Element)
 	}
-	if !strings.EqualFold(p.Row.Mineral, c.Mineral) && nearest(c.Mineral, minerals()) != p.Row.Mineral {
+	if otherThan(p.Row.Mineral, c) {
 		d.note("%s: partition %s is for %s, but the crystal %s is %s: is it the right one?", e.Name, p.Key, p.Row.Mineral, c.Name, c.Mineral)
 	}
 	for _, z := range c.Zones {
@@ -136,6 +139,12 @@ func (d *decoder) notePartition(p *Partition, c *Crystal, e *Element) {
 				e.Name, p.Key, p.Row.Host, p.Row.XMin, p.Row.XMax, z.Name, z.Host)
 		}
 	}
+}
+
+// otherThan reports whether the crystal is of another mineral, unless that is
+// mistyped.
+func otherThan(mineral string, c *Crystal) bool {
+	return !strings.EqualFold(mineral, c.Mineral) && nearest(c.Mineral, minerals()) != mineral
 }
 
 // startsWithSymbol reports whether a name begins with the symbol of an element:

@@ -65,8 +65,7 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 		d.held(n, &r, c, u)
 	case n.get("given") != nil:
 		d.keys(n, givenTable)
-		r.Kind = diffusion.Prescribed
-		r.Given = d.series(n, u)
+		d.given(n, &r, u)
 	case n.get("transfer") != nil:
 		d.keys(n, transferTable)
 		d.transfer(n, &r, u)
@@ -83,6 +82,23 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 	}
 	r.From = d.from(n, first)
 	return r
+}
+
+// given reads a rim that a file gives against time or against temperature.
+func (d *decoder) given(n *node, r *Rim, u *units) {
+	r.Kind = diffusion.Prescribed
+	if n.get("temperature") == nil {
+		r.Given = d.series(n, u)
+		return
+	}
+	for _, name := range []string{"time", "counts"} {
+		if v := n.get(name); v != nil {
+			d.report(v, "goes with a file against time, and this one is against temperature", "leave one of them out")
+		}
+	}
+	if t := d.byTemperature(n, n.get("given"), u); t != nil {
+		r.Following = &Following{Table: t}
+	}
 }
 
 // noRim reports a table that is no kind of rim, by the key that is wrong in it if

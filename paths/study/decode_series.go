@@ -3,6 +3,7 @@ package study
 import (
 	"errors"
 	"fmt"
+	"slices"
 
 	"bankfire/paths/traverse"
 	"bankfire/thermal"
@@ -98,9 +99,53 @@ func (d *decoder) series(n *node, u *units) *Series {
 	s := &Series{Time: t.Columns[0], Value: t.Columns[1], BeforeEruption: before, Place: d.place(file)}
 	if d.checkSeries(s, t, label) {
 		unit, _ := d.moles(n.get("value"), u, value, t.Units[1], s.Value, nil)
-		d.seriesUnit(file, s, u, unit)
+		d.seriesUnit(file, s.Value, u, unit)
 	}
 	return s
+}
+
+// byTemperature reads the file named at file: value against temperature.
+func (d *decoder) byTemperature(n, file *node, u *units) *ByTemperature {
+	const remedyTemp, remedyValue = `name the column of temperatures, such as temperature = "T [C]"`, `name the column of values, such as value = "Sr [ppm]"`
+	temp, ok := d.text(d.need(n, "temperature", remedyTemp), remedyTemp)
+	value := d.valueColumn(n, remedyValue)
+	if !ok || value == "" {
+		return nil
+	}
+	t, label := d.columns(file, traverse.Column{Header: temp, Dim: thermal.Temperature}, traverse.Column{Header: value, Dim: thermal.Concentration})
+	if t == nil || !d.checkTemperatures(t, label) {
+		return nil
+	}
+	b := &ByTemperature{Temp: t.Columns[0], Value: t.Columns[1], Place: d.place(file)}
+	unit, _ := d.moles(n.get("value"), u, value, t.Units[1], b.Value, nil)
+	d.seriesUnit(file, b.Value, u, unit)
+	if b.Temp[0] > b.Temp[len(b.Temp)-1] {
+		slices.Reverse(b.Temp)
+		slices.Reverse(b.Value)
+	}
+	return b
+}
+
+// checkTemperatures checks the rows of a value against temperature, which may rise
+// or fall.
+func (d *decoder) checkTemperatures(t *traverse.Table, label string) bool {
+	temp, value := t.Columns[0], t.Columns[1]
+	for i, x := range temp {
+		switch {
+		case !(x > 0 && x <= temperature.top):
+			d.row(label, t.Line[i], "temperature", fmt.Sprintf("%.6g C is no temperature of a rock", x-thermal.ZeroCelsius), "check the unit")
+		case i > 0 && x == temp[i-1]:
+			d.row(label, t.Line[i], "temperature", "the same temperature as in the row above", "keep one of them: a value cannot jump there")
+		case i > 1 && (x > temp[i-1]) != (temp[1] > temp[0]):
+			d.row(label, t.Line[i], "temperature", "not in order", "list rows in the order of temperature, rising or falling")
+		case value[i] < 0:
+			d.row(label, t.Line[i], "value", "below zero", "a value is zero or more")
+		default:
+			continue
+		}
+		return false
+	}
+	return true
 }
 
 // checkSeries turns the times of a series forward and checks its rows.
@@ -126,11 +171,11 @@ func (d *decoder) checkSeries(s *Series, t *traverse.Table, label string) bool {
 	return true
 }
 
-// seriesUnit converts the values of a series to the unit of the element.
-func (d *decoder) seriesUnit(file *node, s *Series, u *units, unit string) {
-	for i := range s.Value {
+// seriesUnit converts the values of a file to the unit of the element.
+func (d *decoder) seriesUnit(file *node, values []float64, u *units, unit string) {
+	for i := range values {
 		before := d.faults
-		s.Value[i] = d.inUnit(file, u, thermal.Uncertain{Value: s.Value[i]}, unit).Value
+		values[i] = d.inUnit(file, u, thermal.Uncertain{Value: values[i]}, unit).Value
 		if d.faults > before {
 			return // one report is enough
 		}

@@ -60,13 +60,9 @@ func (d *decoder) inUnit(n *node, u *units, v thermal.Uncertain, unit string) Pl
 		}
 		v, unit = thermal.Uncertain{Value: of.value(v.Value), Sigma: of.sigma(v.Sigma)}, moleFraction
 	}
-	if u.unit == "" {
-		u.unit, u.from = unit, n
-	}
-	factor, ok := thermal.ConcentrationFactor(unit, u.unit)
+	factor, ok := d.unitFactor(n, u, unit)
 	switch {
 	case !ok:
-		d.report(n, fmt.Sprintf("in %s, but line %d has %s", unit, u.from.line, u.unit), "give both in one unit")
 	case v.Value < 0:
 		d.report(n, "below zero", "a value is zero or more")
 	case v.Value*factor > traverse.Whole(u.unit):
@@ -76,6 +72,19 @@ func (d *decoder) inUnit(n *node, u *units, v thermal.Uncertain, unit string) Pl
 	}
 	u.known[v.Value*factor] = true
 	return Plateau{Value: v.Value * factor, Sigma: v.Sigma * factor}
+}
+
+// unitFactor is what a value in a unit is multiplied by to be in that of the element,
+// which it decides if nothing has.
+func (d *decoder) unitFactor(n *node, u *units, unit string) (float64, bool) {
+	if u.unit == "" {
+		u.unit, u.from = unit, n
+	}
+	factor, ok := thermal.ConcentrationFactor(unit, u.unit)
+	if !ok {
+		d.report(n, fmt.Sprintf("in %s, but line %d has %s", unit, u.from.line, u.unit), "give both in one unit")
+	}
+	return factor, ok
 }
 
 // concentrationUnit reads the unit that stands beside bare numbers, "" if none

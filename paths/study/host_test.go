@@ -15,7 +15,7 @@ func TestEveryKeyConditions(t *testing.T) {
 	c := everyKey(t).Conditions
 	near(t, "pressure", c.Given[catalogue.Pressure], 2e8)
 	near(t, "aSiO2", c.Given[catalogue.ASiO2], 0.6)
-	near(t, "aTiO2", c.ATiO2, 0.7)
+	near(t, "aTiO2", c.Given[catalogue.ATiO2], 0.7)
 	near(t, "offset", c.Offset, 0.3)
 	if c.Buffer == nil || c.Buffer.Names[0] != "NNO" || c.gives("XAn") || !c.gives(catalogue.FO2) {
 		t.Errorf("conditions %+v", c)
@@ -99,11 +99,11 @@ func TestHostNotes(t *testing.T) {
 		{"another element's", "sr-blundy1991", "ba-blundy1991", "Sr: partition ba-blundy1991 is for Ba: is it the right one?"},
 		{"another mineral's", `"plagioclase"`, `"sanidine"`, "Sr: partition sr-blundy1991 is for plagioclase, but the crystal Q1 is sanidine: is it the right one?"},
 		{"host of no use", "law = \"plagioclase-sr-giletti1994\"\npartition = \"sr-blundy1991\"", `law = "mine"`, "Q1: its host changes nothing: no element has a partition relation or a law that depends on it"},
-		{"pressure of no use", "[[threshold]]", bar + "pressure = \"2 kbar\"\n[[threshold]]", "conditions: no law of this study depends on pressure"},
-		{"aSiO2 of no use", "[[threshold]]", bar + "aSiO2 = 0.6\n[[threshold]]", "conditions: no law of this study depends on aSiO2"},
+		{"pressure of no use", "[[threshold]]", bar + "pressure = \"2 kbar\"\n[[threshold]]", "conditions: nothing in this study depends on pressure"},
+		{"aSiO2 of no use", "[[threshold]]", bar + "aSiO2 = 0.6\n[[threshold]]", "conditions: nothing in this study depends on aSiO2"},
 		{"aTiO2 of no use", "[[threshold]]", bar + "aTiO2 = 0.6\n[[threshold]]", "conditions: nothing in this study depends on aTiO2"},
 		{"absolute fO2", "[[threshold]]", bar + "fO2 = \"1e-12 bar\"\n[[threshold]]", `fO2 is held at 1e-12 bar at every temperature`},
-		{"buffer of no use", "[[threshold]]", bar + "fO2 = \"QFM\"\n[[threshold]]", "conditions: no law of this study depends on fO2"},
+		{"buffer of no use", "[[threshold]]", bar + "fO2 = \"QFM\"\n[[threshold]]", "conditions: nothing in this study depends on fO2"},
 	} {
 		t.Run(test.name, func(t *testing.T) {
 			text := hostedStudy()

@@ -157,20 +157,15 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r), Rate: r.Rate})
 	}
 	for i := range list {
-		var err error
-		if list[i].Following != nil {
-			if out[i].Given, err = b.follow(&list[i]); err != nil {
-				return nil, err
-			}
+		from, until, err := inForce(list, i, b.h)
+		switch r := &list[i]; {
+		case err != nil:
+		case r.Following != nil:
+			out[i].Given, err = b.follow(r, from, until)
+		case r.Given != nil:
+			out[i].Given, err = b.given(r.Given, from, until)
 		}
-		if list[i].Given == nil {
-			continue
-		}
-		until := b.h.Life()
-		if i+1 < len(out) {
-			until = min(until, out[i+1].From)
-		}
-		if out[i].Given, err = b.given(list[i].Given, out[i].From, until); err != nil {
+		if err != nil {
 			return nil, err
 		}
 	}

@@ -189,10 +189,9 @@ func (l *Law) Cautions() []string {
 
 // Conditions are what the study says held all along every path.
 type Conditions struct {
-	Given  catalogue.Conditions // pressure, aSiO2 and an fO2 that stays the same, as far as given
+	Given  catalogue.Conditions // pressure, activities and an fO2 that stays the same, as far as given
 	Buffer *catalogue.Buffer    // that fO2 follows; nil is none
 	Offset float64              // of fO2 from the buffer, log10 units
-	ATiO2  float64              // 0 is not given
 	Typed  []string             // all of them as the study has them: "pressure 2 kbar"
 }
 
@@ -256,14 +255,6 @@ type Rim struct {
 // valued reports whether the rim has a value of its own.
 func (r *Rim) valued() bool {
 	return r.Kind == diffusion.Held && r.Zone < 0 || r.Kind == diffusion.Transfer
-}
-
-// Following is a rim in equilibrium with a melt: Melt times K of the relation in
-// the Host of the zone at the rim.
-type Following struct {
-	Partition Partition
-	Melt      float64 // in the element's unit
-	Host      float64
 }
 
 // Series is a value against time, linear between its rows; equal times jump.
@@ -346,8 +337,8 @@ func (e *Element) Partitions() []*Partition {
 	}
 	for _, rims := range [][]Rim{e.Inner, e.Rims} {
 		for i := range rims {
-			if f := rims[i].Following; f != nil {
-				add(&f.Partition)
+			if f := rims[i].Following; f != nil && f.Partition != nil {
+				add(f.Partition)
 			}
 		}
 	}

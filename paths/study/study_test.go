@@ -62,7 +62,7 @@ func TestEveryKeyTop(t *testing.T) {
 			t.Errorf("%s has SHA-256 %s", in.Name, in.SHA256)
 		}
 	}
-	if want := []string{"study.toml", "tt.csv", "ti.csv", "rim.csv", "an.csv"}; !slices.Equal(names, want) {
+	if want := []string{"study.toml", "tt.csv", "ti.csv", "rim.csv", "rim-t.csv", "melt.csv", "an.csv"}; !slices.Equal(names, want) {
 		t.Errorf("inputs %q, want %q", names, want)
 	}
 }

@@ -1,0 +1,206 @@
+package study
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+	"testing"
+
+	"bankfire/diffusion"
+	"bankfire/thermal"
+)
+
+// followingStudy is the sound study with conditions and another rim, its files with
+// a melt and a rim against temperature.
+func followingStudy(t *testing.T, conditions, rim string) (*Study, error) {
+	t.Helper()
+	files := soundFiles()
+	files["melt.csv"] = "T [C],Ti [ppm]\n790,1000\n770,1400\n740,2000\n"
+	files["cool.csv"] = "T [C],Ti [ppm]\n740,50\n760,60\n780,90\n"
+	files["cooler.csv"] = "T [C],Ti [ppm]\n740,50\n760,60\n"
+	files["twice.csv"] = "T [C],Ti [ppm]\n740,50\n760,60\n760,70\n"
+	files["turns.csv"] = "T [C],Ti [ppm]\n740,50\n760,60\n750,70\n"
+	files["neg.csv"] = "T [C],Ti [ppm]\n740,50\n790,-1\n"
+	files["cold.csv"] = "T [C],Ti [ppm]\n-300,50\n790,1\n"
+	text := strings.NewReplacer("[[threshold]]\n", "[conditions]\n"+conditions+"\n[[threshold]]\n", "[[law]]\n", "[[partition]]\nname = \"kx\"\nA = \"-100 kJ/mol\"\nB = \"10 kJ/mol\"\n\n[[law]]\n",
+		`{ held = "skin" }`, rim, `"100 um" }`, `"100 um", host = 0.5 }`, `"20 um" }`, `"20 um", host = 0.4 }`).Replace(sound)
+	return parse("s.toml", []byte(text), memory(files))
+}
+
+const magmatic = "pressure = \"2 kbar\"\naTiO2 = 0.5\n"
+
+// TestSaturatedRim: at 750 C and 2 kbar the notes on Ti in quartz print what each
+// model gives, rounded to 0.1 ppm; a wt% is 10,000 ppm, and half the activity is
+// half of it, but for Thomas only nearly: by mass.
+func TestSaturatedRim(t *testing.T) {
+	const digit, nearly = 0.05, 1e-3
+	for key, ppm := range map[string]float64{"ti-quartz-wark2006": 102.4, "ti-quartz-thomas2010": 491.1, "ti-quartz-huang2012": 123.6, "ti-quartz-zhang2020": 207.2} {
+		s, err := followingStudy(t, magmatic, `{ following = "`+key+`" }`)
+		if err != nil {
+			t.Fatal(err)
+		}
+		c := &s.Crystals[0]
+		p, _, err := c.Problem(&c.Elements[0], s.Paths[0].History)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if got := p.Outer[0].Given.At(100 * yr); !(math.Abs(got-ppm/2) <= digit+nearly*got) {
+			t.Errorf("%s: %g ppm, want %g", key, got, ppm/2)
+		}
+		if all := c.Elements[0].Solubilities(); len(all) != 1 || all[0].Row.Key != key {
+			t.Errorf("%s: relations %v", key, all)
+		}
+		if notes := strings.Join(s.Notes, "\n"); !strings.Contains(notes, "solubility by "+key) || strings.Contains(notes, "nothing in this study depends") {
+			t.Errorf("%s: notes %s", key, notes)
+		}
+	}
+}
+
+// TestSaturatedNotes: pressures and temperatures outside those of the calibration
+// are said with how far outside.
+func TestSaturatedNotes(t *testing.T) {
+	for _, test := range []struct{ conditions, key, want, beyond string }{
+		{magmatic, "ti-quartz-thomas2010", "ti-quartz-thomas2010 is used at 2 kbar, 3 kbar below its calibrated 5 to 20 kbar", ""},
+		{"pressure = \"5 kbar\"\naTiO2 = 1\n", "ti-quartz-zhang2020", "used at 5 kbar, 1 kbar above its calibrated 0.5 to 4 kbar", ""},
+		{"pressure = \"10 kbar\"\naTiO2 = 1\n", "ti-quartz-huang2012", "", ""},
+		{"aTiO2 = 1\n", "ti-quartz-wark2006", "no pressure given: ti-quartz-wark2006 was calibrated at 10 kbar", ""},
+		{"pressure = \"2 kbar\"\naTiO2 = 1\n", "ti-quartz-wark2006", "used at 2 kbar, 8 kbar below its calibrated 10 kbar", ""},
+		{"aTiO2 = 1\naSiO2 = 1\n", "ti-zircon-ferry2007", "is for zircon, but the crystal Q1 is quartz", ""},
+		{magmatic, "ti-quartz-zhang2020", "", "used at 640 C, 60 C below, and at 1000 C, 100 C above its calibrated range of 700 to 900 C"},
+	} {
+		s, err := followingStudy(t, test.conditions, `{ following = "`+test.key+`" }`)
+		if err != nil {
+			t.Fatal(err)
+		}
+		notes := strings.Join(s.Notes, "\n")
+		if !strings.Contains(notes, test.want) || test.want == "" && strings.Contains(notes, "calibrated") {
+			t.Errorf("%s: notes %s, want %q", test.key, notes, test.want)
+		}
+		e := &s.Crystals[0].Elements[0]
+		if got := e.Beyond(s.Paths[0].History); len(got) != 0 {
+			t.Errorf("%s from 750 to 780 C: %q", test.key, got)
+		}
+		if test.beyond == "" {
+			continue
+		}
+		if got := e.Rims[0].Following.Solubility.beyond(640+zc, 1000+zc); !strings.HasSuffix(got, test.beyond) {
+			t.Errorf("%q, want %q", got, test.beyond)
+		}
+	}
+}
+
+// TestRimByTemperature: tables of the melt and of the rim, straight between their
+// rows, with a kink where the path passes a row.
+func TestRimByTemperature(t *testing.T) {
+	for _, test := range []struct {
+		name, rim string
+		value     func(c float64) float64
+		kink      float64 // C, on the ramp from 750 to 780 C
+	}{
+		{"melt", `{ following = "kx", melt = "melt.csv", temperature = "T [C]", value = "Ti [ppm]" }`, func(c float64) float64 {
+			melt := 2000 - 20*(c-740)
+			if c > 770 {
+				melt = 1400 - 20*(c-770)
+			}
+			return melt * math.Exp((-100e3*0.4+10e3)/(thermal.GasConstant*(c+zc)))
+		}, 770},
+		{"rim", `{ given = "cool.csv", temperature = "T [C]", value = "Ti [ppm]" }`, func(c float64) float64 {
+			if c > 760 {
+				return 60 + 1.5*(c-760)
+			}
+			return 50 + 0.5*(c-740)
+		}, 760},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			s, err := followingStudy(t, magmatic, test.rim)
+			if err != nil {
+				t.Fatal(err)
+			}
+			c := &s.Crystals[0]
+			p, _, err := c.Problem(&c.Elements[0], s.Paths[0].History)
+			if err != nil {
+				t.Fatal(err)
+			}
+			g := p.Outer[0].Given
+			for _, c := range []float64{750, 755, 762, 771, 779} {
+				near(t, fmt.Sprintf("at %g C", c), g.At(800*yr+5*yr*(c-750)/30), test.value(c))
+			}
+			at := 800*yr + 5*yr*(test.kink-750)/30
+			if !slices.ContainsFunc(g.Breaks, func(t float64) bool { return math.Abs(t-at) < 1 }) || len(g.Jumps) != 0 {
+				t.Errorf("breaks at %g, jumps at %g, want a break at %g", g.Breaks, g.Jumps, at)
+			}
+		})
+	}
+}
+
+// TestRimsThatChange: a list with every kind of rim, each from a moment of a leg.
+func TestRimsThatChange(t *testing.T) {
+	s, err := followingStudy(t, magmatic, `[
+  { following = "kx", melt = "2000 ppm" },
+  { following = "ti-quartz-huang2012", from = "100 yr after start of store" },
+  { transfer = "60 +- 5 ppm", k = { k0 = "1e-3 m/s", E = "200 kJ/mol" }, from = "1 yr before end of store" },
+  { held = "70 ppm", from = "end of store" },
+  { given = "cool.csv", temperature = "T [C]", value = "Ti [ppm]", from = "1 yr after start of wake" },
+  { following = "kx", melt = "melt.csv", temperature = "T [C]", value = "Ti [ppm]", from = "2 yr before end of wake" },
+  { sealed = true, from = "1 yr before end of wake" },
+]`)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := &s.Crystals[0]
+	p, free, err := c.Problem(&c.Elements[0], s.Paths[0].History)
+	if err != nil {
+		t.Fatal(err)
+	}
+	kinds := []diffusion.RimKind{diffusion.Prescribed, diffusion.Prescribed, diffusion.Transfer, diffusion.Held, diffusion.Prescribed, diffusion.Prescribed, diffusion.Sealed}
+	for i, years := range []float64{0, 100, 799, 800, 801, 803, 804} {
+		near(t, fmt.Sprintf("rim %d", i+1), p.Outer[i].From, years*yr)
+		if p.Outer[i].Kind != kinds[i] {
+			t.Errorf("rim %d is of kind %d", i+1, p.Outer[i].Kind)
+		}
+	}
+	if len(free) != 2 || free[1].Name != "rim 3" || p.Free[1].Outer[2] != 1 {
+		t.Errorf("free values %+v", free)
+	}
+}
+
+// TestWrongFollowing: one fault, one report, at its key and with a remedy.
+func TestWrongFollowing(t *testing.T) {
+	const columns = `temperature = "T [C]", value = "Ti [ppm]"`
+	for _, test := range []struct{ name, conditions, rim, field, problem, remedy string }{
+		{"no activity", `pressure = "2 kbar"`, `{ following = "ti-quartz-huang2012" }`, "crystal.element.rim.following", "depends on aTiO2, not given", "aTiO2 = 0.6"},
+		{"no pressure", `aTiO2 = 1`, `{ following = "ti-quartz-huang2012" }`, "crystal.element.rim.following", "depends on pressure, not given", `pressure = "2 kbar"`},
+		{"no activity of silica", `aTiO2 = 1`, `{ following = "ti-zircon-ferry2007" }`, "crystal.element.rim.following", "depends on aSiO2, not given", "aSiO2 = 0.6"},
+		{"solubility with a melt", magmatic, `{ following = "ti-quartz-huang2012", melt = "90 ppm" }`, "crystal.element.rim.melt", "without it", "leave it out"},
+		{"mistyped", magmatic, `{ following = "ti-quartz-huang2021" }`, "crystal.element.rim.following", "no partition relation, solubility relation", `did you mean "ti-quartz-huang2012"?`},
+		{"unknown", magmatic, `{ following = "henry" }`, "crystal.element.rim.following", "no partition relation, solubility relation", "known are kx, ba-"},
+		{"melt without columns", magmatic, `{ following = "kx", melt = "melt.csv" }`, "crystal.element.rim.melt", "neither a value nor a file", "temperature ="},
+		{"melt without one column", magmatic, `{ following = "kx", melt = "melt.csv", temperature = "T [C]" }`, "crystal.element.rim.value", "missing", "value ="},
+		{"free melt", magmatic, `{ following = "kx", melt = "free" }`, "crystal.element.rim.melt", "known exactly", "90 ppm"},
+		{"melt in no file", magmatic, `{ following = "kx", melt = "none.csv", ` + columns + ` }`, "crystal.element.rim.melt", "no such file", ""},
+		{"path beyond the table", magmatic, `{ given = "cooler.csv", ` + columns + ` }`, "crystal.element.rim.given", "holds temperatures from 740 C to 760 C only, but the path needs 750 C to 780 C", "add rows"},
+		{"rim beyond the table", magmatic, `[ "sealed", { following = "kx", melt = "cooler.csv", ` + columns + `, from = "start of wake" } ]`, "crystal.element.rim.melt", "but the path needs 750 C to 780 C", "add rows"},
+		{"rim within the table", magmatic, `[ { following = "kx", melt = "cooler.csv", ` + columns + ` }, { sealed = true, from = "end of store" } ]`, "", "", ""},
+		{"one temperature twice", magmatic, `{ given = "twice.csv", ` + columns + ` }`, "temperature", "the same temperature", "keep one"},
+		{"out of order", magmatic, `{ given = "turns.csv", ` + columns + ` }`, "temperature", "not in order", "rising or falling"},
+		{"below zero", magmatic, `{ given = "neg.csv", ` + columns + ` }`, "value", "below zero", "zero or more"},
+		{"below absolute zero", magmatic, `{ given = "cold.csv", ` + columns + ` }`, "", "not above absolute zero", "unit"},
+		{"against both", magmatic, `{ given = "cool.csv", time = "t [yr]", ` + columns + ` }`, "crystal.element.rim.time", "against temperature", "leave one"},
+		{"counts", magmatic, `{ given = "cool.csv", counts = "after start", ` + columns + ` }`, "crystal.element.rim.counts", "against temperature", "leave one"},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			_, err := followingStudy(t, test.conditions, test.rim)
+			if test.problem == "" && test.remedy == "" {
+				if err != nil {
+					t.Error(err)
+				}
+				return
+			}
+			got := problems(t, err)
+			if len(got) != 1 || test.field != "" && got[0].Field != test.field || !strings.Contains(got[0].Problem, test.problem) || !strings.Contains(got[0].Error(), test.remedy) {
+				t.Errorf("problems %v, want %q: %q, %q", err, test.field, test.problem, test.remedy)
+			}
+		})
+	}
+}
