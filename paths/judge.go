@@ -46,6 +46,8 @@ type Outcome struct {
 	Finding              // joint
 	Profiles []Finding   // each by itself, in the order of the curves
 	Crystals []Finding   // the profiles of each crystal jointly, in the order in which the curves have them
+	Scatter  Scatter     // of the crystals' amounts of diffusion
+	Chance   Chance      // how many crystals fail, and would by chance
 	WithLaws LawsAllowed // the same with the laws' own errors allowed for
 }
 
@@ -88,14 +90,16 @@ func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 	}
 	dst.Finding = jointly(cs, dst.Profiles, confidence)
 	dst.Crystals = dst.Crystals[:0]
-	for _, of := range byCrystal(cs) {
+	of := byCrystal(cs)
+	for _, own := range of {
 		var curves []Curve
 		var each []Finding
-		for _, i := range of {
+		for _, i := range own {
 			curves, each = append(curves, cs[i]), append(each, dst.Profiles[i])
 		}
 		dst.Crystals = append(dst.Crystals, jointly(curves, each, confidence))
 	}
+	dst.Scatter, dst.Chance = scatterOf(cs, of, dst.Crystals), chanceOf(dst.Crystals, confidence)
 	dst.WithLaws = allow(cs, laws, &dst.Finding, confidence)
 }
 

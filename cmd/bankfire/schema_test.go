@@ -75,6 +75,11 @@ func TestSummaryKeepsSchema(t *testing.T) {
 		{"thresholds", func(r *paths.Result) {
 			r.Study.Thresholds, r.Paths[0].Above = []study.Threshold{{Name: "lock-up", Temp: 1000}}, []float64{0}
 		}},
+		{"scatter and chance", func(r *paths.Result) {
+			o := &r.Paths[0].Outcome
+			o.Scatter = paths.Scatter{Crystals: 3, Common: 1.2, Common68: [2]float64{1, 1.4}, Common95: [2]float64{0, 2}, ChiSq: 2.5, Degrees: 2, Tail: 0.3}
+			o.Chance = paths.Chance{Judged: 3, Failed: 1, Expected: 0.15, Most: 1, Worst: 0.02}
+		}},
 		{"nothing but one path that was not run", notRun},
 		{"no degrees left", func(r *paths.Result) {
 			o := &r.Paths[0].Outcome

@@ -43,6 +43,12 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 		f := &p.Outcome.Crystals[k]
 		out.Crystals = append(out.Crystals, judgedCrystal{r.Crystals[k].Name, f.Verdict.String(), newFinding(f, f.Notes())})
 	}
+	if s := &p.Outcome.Scatter; s.Degrees > 0 {
+		out.Scatter = &scatter{s.Crystals, s.Common, ends(s.Common68), ends(s.Common95), s.ChiSq, s.Degrees, s.Tail}
+	}
+	if c := &p.Outcome.Chance; c.Judged > 0 {
+		out.Chance = &chance{c.Judged, c.Failed, c.Expected, c.Most, c.Worst}
+	}
 	for i := range p.Profiles {
 		q := &p.Profiles[i]
 		out.Profiles = append(out.Profiles, weighedProfile{

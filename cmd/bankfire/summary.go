@@ -75,6 +75,8 @@ type weighedPath struct {
 	LifeS    float64          `json:"life_s"`
 	Above    []timeAbove      `json:"time_above"`
 	Crystals []judgedCrystal  `json:"crystals"`
+	Scatter  *scatter         `json:"scatter"` // null with fewer than three crystals that have a say
+	Chance   *chance          `json:"chance"`  // null with fewer than two crystals
 	Profiles []weighedProfile `json:"profiles"`
 }
 
@@ -119,6 +121,26 @@ type judgedCrystal struct {
 	Crystal string `json:"crystal"`
 	Verdict string `json:"verdict"`
 	finding
+}
+
+// scatter is that of the crystals' amounts of diffusion about one for all.
+type scatter struct {
+	Crystals    int         `json:"crystals"` // that have a say
+	ShiftFactor float64     `json:"common_shift_factor"`
+	Shift68     [2]*float64 `json:"common_shift_68"`
+	Shift95     [2]*float64 `json:"common_shift_95"`
+	ChiSq       float64     `json:"chi_square"`
+	Degrees     int         `json:"degrees_of_freedom"`
+	Tail        float64     `json:"tail"`
+}
+
+// chance says how many crystals fail, and would by chance along a true path.
+type chance struct {
+	Judged   int     `json:"judged"`
+	Failed   int     `json:"failed"`
+	Expected float64 `json:"expected_by_chance"`
+	Most     int     `json:"at_most_by_chance"` // in 95 of 100 studies
+	Worst    float64 `json:"smallest_tail_probability"`
 }
 
 type weighedProfile struct {

@@ -68,32 +68,6 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 	return notes
 }
 
-// writeCrystals writes, where there are several crystals, what each says of the
-// paths by itself.
-func writeCrystals(w io.Writer, r *paths.Result) {
-	if len(r.Crystals) < 2 || ran(r) == 0 {
-		return
-	}
-	fmt.Fprint(w, "Each crystal by itself:\n\n")
-	table := newTable()
-	table.row("path", "crystal", "verdict", "shift factor", "tail", "chi-square", "above best")
-	for i := range r.Paths {
-		p := &r.Paths[i]
-		for k := range p.Outcome.Crystals {
-			f := &p.Outcome.Crystals[k]
-			table.row(append([]string{p.Path.Name, r.Crystals[k].Name, f.Verdict.String()}, numberCells(f)...)...)
-		}
-	}
-	table.writeTo(w)
-	fmt.Fprintln(w)
-}
-
-// numberCells are the numbers of a finding: shift factor, tail, chi-square and
-// that above best.
-func numberCells(f *paths.Finding) []string {
-	return []string{shiftText(f), tailText(f.Tail), fmt.Sprintf("%s/%d", number(f.Misfit), f.Degrees), number(math.Max(f.Above, 0))}
-}
-
 // findingCells are the cells of a path's row that a barred path does not have.
 func findingCells(o *paths.Outcome, laws int) []string {
 	if o.Verdict == paths.Barred {
@@ -164,6 +138,8 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	if slices.ContainsFunc(r.Paths, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }) {
 		fmt.Fprintln(w, tally(fit, len(r.Paths), ran(r)))
 	}
+	writeScatter(w, r)
+	writeChance(w, r)
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))

@@ -1,0 +1,112 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"slices"
+	"strconv"
+
+	"bankfire/paths"
+)
+
+// writeCrystals writes, where there are several crystals, what each says of the
+// paths by itself.
+func writeCrystals(w io.Writer, r *paths.Result) {
+	if len(r.Crystals) < 2 || ran(r) == 0 {
+		return
+	}
+	fmt.Fprint(w, "Each crystal by itself:\n\n")
+	table := newTable()
+	table.row("path", "crystal", "verdict", "shift factor", "tail", "chi-square", "above best")
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		for k := range p.Outcome.Crystals {
+			f := &p.Outcome.Crystals[k]
+			table.row(append([]string{p.Path.Name, r.Crystals[k].Name, f.Verdict.String()}, numberCells(f)...)...)
+		}
+		if s := &p.Outcome.Scatter; s.Degrees > 0 {
+			common := paths.Finding{Shift: s.Common, Shift95: s.Common95}
+			table.row(p.Path.Name, fmt.Sprintf("scatter of %d", s.Crystals), "", shiftText(&common), tailText(s.Tail), fmt.Sprintf("%s/%d", number(s.ChiSq), s.Degrees), "")
+		}
+	}
+	table.writeTo(w)
+	fmt.Fprintln(w)
+}
+
+// numberCells are the numbers of a finding: shift factor, tail, chi-square and
+// that above best.
+func numberCells(f *paths.Finding) []string {
+	return []string{shiftText(f), tailText(f.Tail), fmt.Sprintf("%s/%d", number(f.Misfit), f.Degrees), number(math.Max(f.Above, 0))}
+}
+
+// writeScatter says along which paths the crystals' amounts of diffusion scatter
+// more than their errors.
+func writeScatter(w io.Writer, r *paths.Result) {
+	var more, within []string
+	crystals := 0
+	for i := range r.Paths {
+		s := &r.Paths[i].Outcome.Scatter
+		if !(s.Degrees > 0) {
+			continue
+		}
+		text := fmt.Sprintf("%s (tail %s)", quoted(r.Paths[i].Path.Name), tailText(s.Tail))
+		if crystals = max(crystals, s.Crystals); s.Tail >= 1-r.Study.Confidence {
+			within = append(within, text)
+		} else {
+			more = append(more, text)
+		}
+	}
+	subject := fmt.Sprintf("The %s crystals' amounts of diffusion", inWords(crystals))
+	but := ""
+	if severalLaws(r) {
+		but = "; the errors of their laws are not counted"
+	}
+	switch {
+	case len(more) > 0 && len(within) > 0:
+		fmt.Fprintf(w, "%s scatter more than their errors along %s, not along %s%s.\n", subject, list(more), list(within), but)
+	case len(more) > 0:
+		fmt.Fprintf(w, "%s scatter more than their errors along %s%s.\n", subject, list(more), but)
+	case len(within) > 0:
+		fmt.Fprintf(w, "%s agree within their errors along %s%s.\n", subject, list(within), but)
+	}
+}
+
+// severalLaws reports whether the measured elements diffuse by more than one law.
+func severalLaws(r *paths.Result) bool {
+	return slices.ContainsFunc(r.Own, func(o paths.OwnBest) bool { return o.Element.Law.Key != r.Own[0].Element.Law.Key })
+}
+
+// inWords is a small number as a word.
+func inWords(n int) string {
+	words := [...]string{"no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten"}
+	if n < len(words) {
+		return words[n]
+	}
+	return strconv.Itoa(n)
+}
+
+// writeChance says how many crystals fail by chance along a true path, and along
+// which paths it may have been chance.
+func writeChance(w io.Writer, r *paths.Result) {
+	for i := range r.Paths {
+		c := &r.Paths[i].Outcome.Chance
+		if c.Judged == 0 {
+			continue
+		}
+		fmt.Fprintf(w, "Of %d crystals %s fail by chance along a path that is true, at %s confidence, and no more than %d in 95 of 100 studies.\n",
+			c.Judged, number(c.Expected), percent(r.Study.Confidence), c.Most)
+		break
+	}
+	for i := range r.Paths {
+		c := &r.Paths[i].Outcome.Chance
+		if c.Failed == 0 || !c.Allows(r.Study.Confidence) {
+			continue
+		}
+		verb := "fail"
+		if c.Failed == 1 {
+			verb = "fails"
+		}
+		fmt.Fprintf(w, "Along %s %d of %d crystals %s, which chance may have done.\n", quoted(r.Paths[i].Path.Name), c.Failed, c.Judged, verb)
+	}
+}
