@@ -99,17 +99,26 @@ func meanWeights(shape Shape, a, b float64) (inner, outer float64) {
 func (f *Field) couple(p *Plan, temp float64) *operator {
 	op, h := &f.op, p.host
 	values := op.resize(len(h.x))
-	if at := h.panelAt(p.problem.LnK, 1/temp); at != nil {
-		at.read(values, 1/temp)
-	} else {
+	switch at := h.panelAt(p.problem.LnK, 1/temp); {
+	case at == nil:
 		h.evaluate(values, p.problem.LnK, temp)
+		op.finish(p.grid.volumes)
+	case at.short != nil:
+		at.readShort(op, p.grid.volumes, 1/temp)
+	default:
+		at.read(values, 1/temp)
+		op.finish(p.grid.volumes)
 	}
 	op.kIn, op.kOut = values[len(values)-2], values[len(values)-1]
-	k, vol, inverse := op.k[:len(h.x)], op.vol[:len(h.x)], op.inverse[:len(h.x)]
-	for i, v := range p.grid.volumes[:len(h.x)] {
+	return op
+}
+
+// finish fills in what follows from K.
+func (op *operator) finish(volumes []float64) {
+	k, vol, inverse := op.k[:len(volumes)], op.vol[:len(volumes)], op.inverse[:len(volumes)]
+	for i, v := range volumes {
 		vol[i], inverse[i] = float64(v*k[i]), 1/k[i]
 	}
-	return op
 }
 
 // evaluate fills in K of the cells, the conductances and K at both ends.
@@ -153,24 +162,22 @@ const evenK = 1e-3
 
 // panel holds what evaluate gives over a range of 1/T, as polynomials that are
 // right to round-off: evaluating K anew for every cell in every solve would take
-// ten times as long as the solve.
+// ten times as long as the solve. They are in Newton's form, by divided differences
+// (Abramowitz and Stegun 1964, 25.1.4 and 25.2.26).
 type panel struct {
-	nodes [panelNodes]float64 // 1/T, 1/K, at which it was evaluated
-	forms []newtonForm
-	short bool // the last terms are nothing
+	nodes [panelNodes]float64  // 1/T, 1/K, at which it was evaluated
+	short [][shortForm]float64 // of each value, if so few terms are enough,
+	long  [][panelNodes]float64
 }
-
-// newtonForm is a polynomial by its divided differences (Abramowitz and Stegun
-// 1964, 25.1.4 and 25.2.26).
-type newtonForm [panelNodes]float64
 
 const (
 	panelNodes = 8
 	shortForm  = 5
 	// panelReach is by how much ln K may change along a panel. Interpolation in 8
 	// Chebyshev nodes is then wrong by 2 (reach/4)^8/8! of K, 1e-17 at 0.1, and at
-	// twice the change still by less than round-off.
+	// twice the change still by less than round-off. Up to shortReach 5 terms do.
 	panelReach = 0.1
+	shortReach = 0.008
 	// panelError is how much the polynomials may miss at the ends and in the middle,
 	// where they are worst. An ln K of 12 is rounded by 2e-15 itself.
 	panelError   = 2e-14
@@ -195,10 +202,11 @@ func (h *hostGrid) layPanels(lnK func(x, temp float64) float64) {
 		cool, warm := lnK(x, hostTrial)-lnK(unit, hostTrial), lnK(x, warmer)-lnK(unit, warmer)
 		moves = math.Max(moves, math.Abs(warm-cool))
 	}
-	n := math.Ceil(moves / panelReach / (1.0/hostTrial - 1/warmer) / coldestPanel)
-	if n <= mostPanels { // not if NaN
-		h.panels = make([]atomic.Pointer[panel], max(int(n), leastPanels))
-		h.width = 1 / coldestPanel / float64(len(h.panels))
+	moves /= (1.0/hostTrial - 1/warmer) * coldestPanel
+	if moves/panelReach <= mostPanels { // not if NaN
+		n := min(max(int(math.Ceil(moves/shortReach)), leastPanels), mostPanels)
+		h.panels = make([]atomic.Pointer[panel], n)
+		h.width = 1 / coldestPanel / float64(n)
 	}
 }
 
@@ -214,7 +222,7 @@ func (h *hostGrid) panelAt(lnK func(x, temp float64) float64, coldness float64) 
 		at = h.newPanel(lnK, float64(i)*h.width)
 		h.panels[i].Store(at) // another goroutine may do the same, to the bit
 	}
-	if at.forms == nil {
+	if at.short == nil && at.long == nil {
 		return nil
 	}
 	return at
@@ -223,26 +231,37 @@ func (h *hostGrid) panelAt(lnK func(x, temp float64) float64, coldness float64) 
 // newPanel returns the panel that begins at a value of 1/T, one without
 // polynomials if they are no good.
 func (h *hostGrid) newPanel(lnK func(x, temp float64) float64, from float64) *panel {
-	values, tried := make([]float64, 2*len(h.x)+3), make([]float64, 2*len(h.x)+3)
-	at := &panel{forms: make([]newtonForm, len(values))}
+	values := make([]float64, 2*len(h.x)+3)
+	at := &panel{long: make([][panelNodes]float64, len(values))}
 	for j, place := range panelOrder {
 		at.nodes[j] = from + h.width/2*(1-math.Cos(math.Pi*(place+0.5)/panelNodes))
 		h.evaluate(values, lnK, 1/at.nodes[j])
 		at.add(j, values)
+		if j+1 == shortForm {
+			if at.shorten(); at.good(h, lnK, from) {
+				at.long = nil
+				return at
+			}
+			at.short = nil
+		}
 	}
-	for _, at.short = range []bool{true, false} {
-		good := true
-		for _, part := range []float64{0.001, 0.5, 1} { // not 0, where the first begins
-			coldness := from + part*h.width
-			h.evaluate(values, lnK, 1/coldness)
-			at.read(tried, coldness)
-			good = good && same(tried, values)
-		}
-		if good {
-			return at
-		}
+	if at.good(h, lnK, from) {
+		return at
 	}
 	return &panel{}
+}
+
+// good tries the panel that begins at a value of 1/T.
+func (at *panel) good(h *hostGrid, lnK func(x, temp float64) float64, from float64) bool {
+	values, tried := make([]float64, 2*len(h.x)+3), make([]float64, 2*len(h.x)+3)
+	for _, part := range []float64{0.001, 0.5, 1} { // not 0, where the first begins
+		coldness := from + part*h.width
+		h.evaluate(values, lnK, 1/coldness)
+		if at.read(tried, coldness); !same(tried, values) {
+			return false
+		}
+	}
+	return true
 }
 
 // same says whether a is b within panelError.
@@ -258,11 +277,19 @@ func same(a, b []float64) bool {
 // add takes in the values at node j.
 func (at *panel) add(j int, values []float64) {
 	for i, v := range values {
-		form := &at.forms[i]
+		form := &at.long[i]
 		for m := range j { // v becomes the divided difference of nodes 0 to m and j
 			v = (v - form[m]) / (at.nodes[j] - at.nodes[m])
 		}
 		form[j] = v
+	}
+}
+
+// shorten leaves the last terms out.
+func (at *panel) shorten() {
+	at.short = make([][shortForm]float64, len(at.long))
+	for i := range at.short {
+		at.short[i] = [shortForm]float64(at.long[i][:])
 	}
 }
 
@@ -272,20 +299,39 @@ func (at *panel) read(dst []float64, coldness float64) {
 	for j, node := range at.nodes {
 		d[j] = coldness - node
 	}
-	d0, d1, d2, d3 := d[0], d[1], d[2], d[3]
-	dst = dst[:len(at.forms)]
-	for i := range dst {
-		f := &at.forms[i]
-		v := f[shortForm-1]
-		if !at.short {
-			v = f[6] + float64(f[7]*d[6])
-			v = f[5] + float64(v*d[5])
-			v = f[4] + float64(v*d[4])
+	for i := range at.short {
+		dst[i] = sumShort(&at.short[i], d[0], d[1], d[2], d[3])
+	}
+	for i := range at.long {
+		f := &at.long[i]
+		v := f[panelNodes-1]
+		for j := panelNodes - 2; j >= 0; j-- {
+			v = f[j] + float64(v*d[j])
 		}
-		v = f[3] + float64(v*d3)
-		v = f[2] + float64(v*d2)
-		v = f[1] + float64(v*d1)
-		dst[i] = f[0] + float64(v*d0)
+		dst[i] = v
+	}
+}
+
+// sumShort returns the value of a polynomial of few terms so far from its nodes.
+func sumShort(f *[shortForm]float64, d0, d1, d2, d3 float64) float64 {
+	return f[0] + float64((f[1]+float64((f[2]+float64((f[3]+float64(f[4]*d3))*d2))*d1))*d0)
+}
+
+// readShort does what read does, and finish beside it, while the polynomials leave
+// the divider idle.
+func (at *panel) readShort(op *operator, volumes []float64, coldness float64) {
+	d0, d1 := coldness-at.nodes[0], coldness-at.nodes[1]
+	d2, d3 := coldness-at.nodes[2], coldness-at.nodes[3]
+	n := len(volumes)
+	k, cond, vol, inverse := op.k[:n], op.cond[:n], op.vol[:n], op.inverse[:n]
+	forK, forCond := at.short[:n], at.short[n:2*n]
+	for i, v := range volumes {
+		x := sumShort(&forK[i], d0, d1, d2, d3)
+		k[i], vol[i], inverse[i] = x, float64(v*x), 1/x
+		cond[i] = sumShort(&forCond[i], d0, d1, d2, d3)
+	}
+	for i := 2 * n; i < len(at.short); i++ {
+		op.all[i] = sumShort(&at.short[i], d0, d1, d2, d3)
 	}
 }
 
