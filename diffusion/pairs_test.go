@@ -14,7 +14,7 @@ import (
 var (
 	pairShapes = []string{"slab", "cylinder", "ball"} // by Shape
 	pairRims   = []string{"sealed", "held", "both held", "prescribed", "following", "transfer", "transfer following"}
-	pairLaws   = []string{"plain", "sum", "spread", "zones", "smooth host", "host of zones", "own", "front"}
+	pairLaws   = []string{"plain", "sum", "switched", "spread", "zones", "smooth host", "host of zones", "own", "front"}
 	pairStarts = []string{"smooth", "jump", "edge", "linear"}
 	pairLegs   = []string{"hold", "ramp", "relax", "table", "reheats", "sheet"}
 )
@@ -141,6 +141,7 @@ const (
 	pairOuter  = 0.2
 	pairRim    = 0.5  // of a rim that does not hold what the start has there
 	pairSlope  = 8000 // K: how a rim follows temperature, exp(-pairSlope/T)
+	pairSwitch = 1040 // K: where two terms of a law are of one size, and one takes over from the other
 )
 
 // problem makes the case ready.
@@ -229,15 +230,16 @@ func (c pairCase) layStart(p *Problem) {
 // layLaw gives the problem its law and its host.
 func (c pairCase) layLaw(q *pairProblem) {
 	p := q.Problem
-	energies := []float64{250e3}
-	if c.law == "sum" {
-		energies = []float64{180e3, 320e3}
+	p.Law = Law{Terms: []Arrhenius{{E: 30000}}}
+	if c.law == "sum" || c.law == "switched" {
+		p.Law.Terms = []Arrhenius{{E: 22000}, {LnA: 16000.0 / pairSwitch, E: 38000}}
 	}
-	g := pairG * (testSize - p.R0) * (testSize - p.R0)
-	for _, energy := range energies {
-		law := NewLaw(1, energy)
-		law.Terms[0].LnA = math.Log(g/float64(len(energies))) - law.LnIntegral(q.h, 0, q.h.Life())
-		p.Law.Terms = append(p.Law.Terms, law.Terms...)
+	if c.law == "switched" {
+		p.Law.Where = []thermal.Window{{Below: pairSwitch}, {Above: pairSwitch}}
+	}
+	scale := math.Log(pairG*(testSize-p.R0)*(testSize-p.R0)) - p.Law.LnIntegral(q.h, 0, q.h.Life())
+	for i := range p.Law.Terms {
+		p.Law.Terms[i].LnA += scale
 	}
 	lnK := func(x, temp float64) float64 { return 1500*x/temp + 0.3*x*x }
 	switch c.law {
@@ -272,13 +274,8 @@ func (c pairCase) layRims(q *pairProblem) {
 		value = pairRim
 	}
 	q.beyond = func(t, temp float64) float64 { return value }
-	following := &Given{At: func(t float64) float64 { temp, _ := h.At(t); return q.beyond(t, temp) }}
-	for _, at := range h.Breaks(nil) {
-		if before, after := h.At(at); before != after {
-			following.Jumps = append(following.Jumps, at)
-		}
-	}
-	follow := func(t, temp float64) float64 { return value * math.Exp(pairSlope*(1/begin-1/temp)) }
+	follows := Arrhenius{LnA: math.Log(value) + pairSlope/begin, E: pairSlope}
+	follow := func(t, temp float64) float64 { return math.Exp(follows.LnA - follows.E/temp) }
 	rate := rateOf(p, h, 2, 15000)
 	switch c.rim {
 	case "held":
@@ -294,16 +291,16 @@ func (c pairCase) layRims(q *pairProblem) {
 			}
 			return v
 		}
-		following.Jumps = []float64{jump}
-		p.Outer = []Rim{{Kind: Prescribed, Given: following}}
+		given := &Given{At: func(t float64) float64 { return q.beyond(t, 0) }, Jumps: []float64{jump}}
+		p.Outer = []Rim{{Kind: Prescribed, Given: given}}
 	case "following":
 		q.beyond = follow
-		p.Outer = []Rim{{Kind: Prescribed, Given: following}}
+		p.Outer = []Rim{{Kind: Following, Equilibrium: &follows}}
 	case "transfer":
 		p.Outer = []Rim{{Kind: Transfer, Value: value, Rate: rate}}
 	case "transfer following":
 		q.beyond = follow
-		p.Outer = []Rim{{Kind: Transfer, Given: following, Rate: rate}}
+		p.Outer = []Rim{{Kind: Transfer, Equilibrium: &follows, Rate: rate}}
 	}
 }
 

@@ -143,8 +143,10 @@ func (f *few) factor(c float64) float64 {
 // rate fills dst with dc/dt, per s.
 func (f *few) rate(dst, c []float64, t, temp float64) {
 	d := 0.0
-	for _, a := range f.Law.Terms {
-		d += math.Exp(a.LnA - a.E/temp)
+	for i, a := range f.Law.Terms {
+		if f.Law.Where == nil || temp > f.Law.Where[i].Above && (temp <= f.Law.Where[i].Below || f.Law.Where[i].Below == 0) {
+			d += math.Exp(a.LnA - a.E/temp)
+		}
 	}
 	var k, inner, outer []float64
 	var kIn, kOut float64
@@ -245,14 +247,40 @@ func (f *few) byExtrapolation(h *thermal.History, breaks []float64) []float64 {
 				marks = append(marks, at-begin)
 			}
 		}
-		slices.Sort(marks)
-		marks = slices.Compact(marks)
+		marks = f.addSwitches(marks, leg)
 		for i := 1; i < len(marks); i++ {
 			f.piece(c, leg, begin, marks[i-1], marks[i])
 		}
 		begin += leg.For
 	}
 	return c
+}
+
+// addSwitches adds to the marks of a leg, between which temperature rises or falls,
+// the times at which a term of the law begins or ceases to act, by halving. It
+// returns them in order.
+func (f *few) addSwitches(marks []float64, leg thermal.Leg) []float64 {
+	slices.Sort(marks)
+	marks = slices.Compact(marks)
+	for i, pieces := 1, len(marks); i < pieces; i++ {
+		for _, w := range f.Law.Where {
+			a, b := marks[i-1], marks[i]
+			hot := func(t float64) bool { return legTemperature(leg, marks[i-1], marks[i], t) > w.Above }
+			if w.Above == 0 || hot(a) == hot(b) {
+				continue
+			}
+			for range 60 {
+				if middle := (a + b) / 2; hot(middle) == hot(a) {
+					a = middle
+				} else {
+					b = middle
+				}
+			}
+			marks = append(marks, b)
+		}
+	}
+	slices.Sort(marks)
+	return marks
 }
 
 // piece takes c through a part of a leg, from a to b within it, in which everything
