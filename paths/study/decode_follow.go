@@ -3,6 +3,7 @@ package study
 import (
 	"fmt"
 	"maps"
+	"math"
 	"slices"
 	"strings"
 
@@ -190,19 +191,45 @@ func rivals(row *catalogue.Solubility) string {
 // related reports whether the rim follows a relation, not a table alone.
 func (f *Following) related() bool { return f.Partition != nil || f.Solubility != nil }
 
-// follow turns a rim that follows into a function of time. It must be known at all
-// temperatures between the times from and until, s.
-func (b *builder) follow(r *Rim, from, until float64) (*diffusion.Given, error) {
-	f, h := r.Following, b.h
-	lo, hi := h.RangeIn(from, until)
+// follow gives dst what a rim follows: exp(a - b/T) if it is of that form, else a
+// function of time. It must be known at all temperatures between the times from and
+// until, s.
+func (b *builder) follow(dst *diffusion.Rim, r *Rim, from, until float64) error {
+	f := r.Following
+	lo, hi := b.h.RangeIn(from, until)
 	if f.Table != nil {
 		if err := f.Table.covers(lo, hi); err != nil {
-			return nil, err
+			return err
 		}
 	}
 	if err := f.possible(lo, hi, b.e.Unit, r.Place); err != nil {
-		return nil, err
+		return err
 	}
+	if a, ok := f.exponential(); ok {
+		dst.Kind, dst.Equilibrium = diffusion.Following, &a
+		return nil
+	}
+	dst.Given = f.along(b.h)
+	return nil
+}
+
+// exponential returns the value of the rim as exp(LnA - E/T); ok is false if it is
+// not exactly of that form.
+func (f *Following) exponential() (a diffusion.Arrhenius, ok bool) {
+	switch {
+	case f.Solubility != nil:
+		a, ok = f.Solubility.Content.Exponential()
+		a.LnA += math.Log(f.Solubility.PerPPM)
+		return a, ok
+	case f.Partition != nil && f.Table == nil && f.Melt > 0:
+		// LnK goes as 1/T.
+		return diffusion.Arrhenius{LnA: math.Log(f.Melt), E: -f.Partition.LnK(f.Host, 1)}, true
+	}
+	return diffusion.Arrhenius{}, false
+}
+
+// along is the value of the rim as a function of time.
+func (f *Following) along(h *thermal.History) *diffusion.Given {
 	g := &diffusion.Given{At: func(t float64) float64 {
 		_, after := h.At(t)
 		return f.At(after)
@@ -215,7 +242,7 @@ func (b *builder) follow(r *Rim, from, until float64) (*diffusion.Given, error) 
 		}
 	}
 	g.Breaks = append(g.Breaks, f.kinks(h)...)
-	return g, nil
+	return g
 }
 
 // kinks are the times at which the temperature passes a row of the table and no leg

@@ -135,6 +135,9 @@ func finiteProblem(t *testing.T, c *Crystal, e *Element, p *Path) {
 		if r.Given != nil {
 			mustBeFinite(t, "given rim", r.Given.At(0), r.Given.At(p.History.Life()/2))
 		}
+		if r.Equilibrium != nil {
+			mustBeFinite(t, "following rim", r.Equilibrium.LnA, r.Equilibrium.E)
+		}
 	}
 	for _, v := range free {
 		mustBeFinite(t, "prior", v.Prior.Value, v.Prior.Sigma)

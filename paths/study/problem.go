@@ -161,7 +161,7 @@ func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
 		switch r := &list[i]; {
 		case err != nil:
 		case r.Following != nil:
-			out[i].Given, err = b.follow(r, from, until)
+			err = b.follow(&out[i], r, from, until)
 		case r.Given != nil:
 			out[i].Given, err = b.given(r.Given, from, until)
 		}
