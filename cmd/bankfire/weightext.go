@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"cmp"
 	"fmt"
 	"io"
 	"math"
@@ -77,7 +78,7 @@ func findingCells(o *paths.Outcome, laws int) []string {
 }
 
 // leaningText says by how much the laws, so many as have errors, would have to
-// be off.
+// be off: the one that is furthest.
 func leaningText(l *paths.LawsAllowed, laws int) string {
 	switch {
 	case l.Verdict == paths.Unjudged:
@@ -86,16 +87,15 @@ func leaningText(l *paths.LawsAllowed, laws int) string {
 		return "no error stated"
 	case l.Leaning == nil:
 		return "no error helps"
+	case len(l.Leaning) == 0:
+		return ""
 	}
-	var words []string
-	for _, on := range l.Leaning {
-		text := fmt.Sprintf("%.1f sigma", on.Sigma)
-		if len(l.Leaning) > 1 {
-			text += " (" + on.Law + ")"
-		}
-		words = append(words, text)
+	most := slices.MaxFunc(l.Leaning, func(a, b paths.Leaning) int { return cmp.Compare(a.Sigma, b.Sigma) })
+	text := fmt.Sprintf("%.1f sigma", most.Sigma)
+	if len(l.Leaning) == 1 || text == "0.0 sigma" {
+		return text
 	}
-	return list(words)
+	return "up to " + text + " (" + most.Law + ")"
 }
 
 // numbered is a list of notes without repeats.
