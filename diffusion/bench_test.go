@@ -25,6 +25,12 @@ func benchProblem() (*Problem, Options) {
 // benchWake is store at 690 C with ten wakes to 780 C in 2000 years.
 func benchWake(tb testing.TB) *thermal.History {
 	tb.Helper()
+	return wakeTo(tb, 780)
+}
+
+// wakeTo is the same with wakes to another temperature, in degrees Celsius.
+func wakeTo(tb testing.TB, top float64) *thermal.History {
+	tb.Helper()
 	const year, zero = thermal.Year, thermal.ZeroCelsius
 	legs := []thermal.Leg{{Kind: thermal.Hold, For: 100 * year, T0: 690 + zero}}
 	for i := range 10 {
@@ -32,9 +38,9 @@ func benchWake(tb testing.TB) *thermal.History {
 		if i == 9 {
 			rest = 75 * year
 		}
-		legs = append(legs, thermal.Leg{Kind: thermal.Ramp, For: 5 * year, T0: 690 + zero, T1: 780 + zero},
-			thermal.Leg{Kind: thermal.Hold, For: 20 * year, T0: 780 + zero},
-			thermal.Leg{Kind: thermal.Relax, For: rest, T0: 780 + zero, T1: 690 + zero, Tau: 15 * year})
+		legs = append(legs, thermal.Leg{Kind: thermal.Ramp, For: 5 * year, T0: 690 + zero, T1: top + zero},
+			thermal.Leg{Kind: thermal.Hold, For: 20 * year, T0: top + zero},
+			thermal.Leg{Kind: thermal.Relax, For: rest, T0: top + zero, T1: 690 + zero, Tau: 15 * year})
 	}
 	return newHistory(tb, legs...)
 }
@@ -134,6 +140,38 @@ func BenchmarkRun(b *testing.B) {
 			b.ReportMetric(best, "of-reference")
 			if !(best <= limits[n]) {
 				b.Errorf("%.3f of the reference kernel, limit %g", best, limits[n])
+			}
+		})
+	}
+}
+
+// BenchmarkCoupledRun holds the time of a path in a zoned host, at an error of a
+// thousandth and beside others, to steps of the reference kernel: jobs of one course
+// with many multipliers on D, and of a course each.
+func BenchmarkCoupledRun(b *testing.B) {
+	plan := newPlan(b, zonedTrace(benchWake(b)), fewSteps())
+	for _, test := range []struct {
+		courses, jobs int
+		limit         float64
+	}{{1, 1, 19}, {1, 4, 14}, {1, 8, 13}, {4, 4, 17}, {8, 8, 17}} {
+		b.Run(fmt.Sprintf("courses=%d/jobs=%d", test.courses, test.jobs), func(b *testing.B) {
+			jobs, dst := benchJobs(b, plan, test.jobs), make([]Field, test.jobs)
+			for k := range test.courses {
+				jobs[k].Course = newCourse(b, plan, wakeTo(b, 780-float64(k)))
+			}
+			b.ReportAllocs()
+			for b.Loop() {
+				if err := plan.Run(dst, jobs); err != nil {
+					b.Fatal(err)
+				}
+			}
+			best := math.Inf(1)
+			for try := 0; try < 5 && !(best <= test.limit); try++ { // as in BenchmarkRun
+				best = math.Min(best, kernelRatio(plan, dst, jobs, 5)*float64(dst[0].Stats.Steps))
+			}
+			b.ReportMetric(best, "reference-steps")
+			if !(best <= test.limit) {
+				b.Errorf("a path takes %.1f steps of the reference kernel, limit %g", best, test.limit)
 			}
 		})
 	}

@@ -448,7 +448,8 @@ func variance(h *thermal.History, s0, q float64) float64 {
 }
 
 // TestCoupledSideBySide: jobs run together give each the bits that it gets alone,
-// and so does a field that has been used for another plan.
+// be their courses one, some or each its own, and so does a field that has been used
+// for another plan.
 func TestCoupledSideBySide(t *testing.T) {
 	used := make([]Field, 7)
 	for i := range 10 {
@@ -459,6 +460,14 @@ func TestCoupledSideBySide(t *testing.T) {
 		p.Free[0].Start[0] = 1
 		plan := newPlan(t, p, Options{Cells: 30 + r.IntN(60)})
 		jobs := randomJobs(t, r, plan, h, 7)
+		for k := range jobs {
+			switch {
+			case i%3 == 1:
+				jobs[k].Course = jobs[0].Course
+			case i%3 == 2:
+				jobs[k].Course = jobs[k%2].Course
+			}
+		}
 		if err := plan.Run(used, jobs); err != nil {
 			t.Fatal(err)
 		}
@@ -467,6 +476,25 @@ func TestCoupledSideBySide(t *testing.T) {
 			course := *jobs[k].Course
 			course.plan = alone
 			wantSame(t, fmt.Sprintf("problem %d, job %d", i, k), &used[k], runJob(t, alone, Job{Course: &course, LnM: jobs[k].LnM}))
+		}
+	}
+}
+
+// TestCoupledDoesNotAllocate: once its fields have been used, and the operators of
+// its temperatures are known, neither does a run of a coupled problem.
+func TestCoupledDoesNotAllocate(t *testing.T) {
+	r := source(37, 0)
+	h := randomHistory(t, r)
+	plan := newPlan(t, randomCoupled(r, h, 1, 2), Options{Cells: 40})
+	for _, n := range []int{1, 4, 7} {
+		jobs, dst := randomJobs(t, r, plan, h, 7)[:n], make([]Field, n)
+		allocated := testing.AllocsPerRun(3, func() {
+			if err := plan.Run(dst, jobs); err != nil {
+				t.Fatal(err)
+			}
+		})
+		if allocated != 0 {
+			t.Errorf("%d jobs: %g allocations a run, want none", n, allocated)
 		}
 	}
 }

@@ -59,29 +59,26 @@ func (l *lane4) eliminate(op *operator, s *four, e *ends4, c []four) {
 func (l *lane4) eliminateEach(ops *[lanes]*operator, s *four, e *ends4, c []four) {
 	n := len(c)
 	m := n / 2
+	o0, o1, o2, o3 := ops[0], ops[1], ops[2], ops[3]
+	s0, s1, s2, s3 := s[0], s[1], s[2], s[3]
 	x, f := &e.kIn, inflow4(&e.kIn, &e.vIn, &c[0])
 	y, g := &e.kOut, inflow4(&e.kOut, &e.vOut, &c[n-1])
 	i, j := 0, n-1
 	if n&1 == 0 {
-		x = l.reduceEach(0, 1, ops, s, x, &f, &c[0], &c[1])
+		x = l.reduce(0, o0.vol[0], o1.vol[0], o2.vol[0], o3.vol[0], float64(s0*o0.cond[1]), float64(s1*o1.cond[1]),
+			float64(s2*o2.cond[1]), float64(s3*o3.cond[1]), x, &f, &c[0], &c[1])
 		i = 1
 	}
 	for ; i < m; i, j = i+1, j-1 {
-		x = l.reduceEach(i, i+1, ops, s, x, &f, &c[i], &c[i+1])
-		y = l.reduceEach(j, j, ops, s, y, &g, &c[j], &c[j-1])
+		x = l.reduce(i, o0.vol[i], o1.vol[i], o2.vol[i], o3.vol[i], float64(s0*o0.cond[i+1]), float64(s1*o1.cond[i+1]),
+			float64(s2*o2.cond[i+1]), float64(s3*o3.cond[i+1]), x, &f, &c[i], &c[i+1])
+		y = l.reduce(j, o0.vol[j], o1.vol[j], o2.vol[j], o3.vol[j], float64(s0*o0.cond[j]), float64(s1*o1.cond[j]),
+			float64(s2*o2.cond[j]), float64(s3*o3.cond[j]), y, &g, &c[j], &c[j-1])
 	}
 	for k := range lanes {
 		l.middle[k] = 1 / (ops[k].vol[m] + x[k] + y[k])
 	}
 	l.meet(m, &f, &g)
-}
-
-// reduceEach is reduce for cell i, coupled through a face.
-func (l *lane4) reduceEach(i, face int, ops *[lanes]*operator, s, x, f, c, d *four) *four {
-	o0, o1, o2, o3 := ops[0], ops[1], ops[2], ops[3]
-	return l.reduce(i, o0.vol[i], o1.vol[i], o2.vol[i], o3.vol[i],
-		float64(s[0]*o0.cond[face]), float64(s[1]*o1.cond[face]),
-		float64(s[2]*o2.cond[face]), float64(s[3]*o3.cond[face]), x, f, c, d)
 }
 
 // meet finds the change of the middle cell m, from what both chains hand on.
