@@ -247,5 +247,8 @@ func (p *Plan) GEnough() (why string, ok bool) {
 	if p.problem.moving() {
 		return "a rim follows time, or exchanges at a rate of its own", false
 	}
+	if p.problem.Law.Where != nil {
+		return "D only scales, with temperature and the conditions of legs, and every end is sealed or held throughout", true
+	}
 	return "D only scales with temperature and every end is sealed or held throughout", true
 }

@@ -51,7 +51,7 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 // history, the reader must know.
 func lawNotes(e *study.Element, h *thermal.History) []string {
 	notes := outOfRange(e, h)
-	for _, caution := range e.Law.Cautions() {
+	for _, caution := range e.Law.CautionsOn(h) {
 		notes = append(notes, lawName(e)+": "+caution)
 	}
 	for _, p := range e.Partitions() {

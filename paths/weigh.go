@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 	"sync"
@@ -44,7 +45,7 @@ type ProfileResult struct {
 	Element *study.Element
 	Free    []FreeFit
 	LnG     float64   // ln of the diffusion integral, m2
-	StandIn float64   // the constant temperature that gives the same G over the whole path, K; 0 where nothing diffuses
+	StandIn float64   // the constant temperature that gives the same G over the whole path, its legs' conditions kept, K; 0 where nothing diffuses
 	NumErr  float64   // largest numerical error at the data points, in sigma, of the path as it is and at its shift factor
 	Origin  float64   // by which the file's zero is off in the fit, m; see traverse.Traverse.Place
 	Tilt    float64   // of the line in the fit, rad
@@ -338,7 +339,7 @@ func (p *profile) byE(sigma float64) [2]float64 {
 	law, h := &p.element.Law, p.path.History
 	middle := inverseMiddle(law)
 	if middle == 0 { // a law of unknown range: what it is known for is taken to be what it is used for
-		middle = 1 / standIn(law.Law, p.runs[0].course.LnG(), h.Life())
+		middle = 1 / standIn(law.Law, h, p.runs[0].course.LnG())
 	}
 	lnG := func(d float64) float64 {
 		moved := diffusion.Law{Where: law.Law.Where}
@@ -396,7 +397,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 	r.Start, r.Final = make([]float64, len(r.Centres)), make([]float64, len(r.Centres))
 	everywhere.Apply(r.Start, a.of(p.mix(p.starts(), edge)))
 	everywhere.Apply(r.Final, a.of(p.mix(p.columns(0), edge)))
-	r.StandIn = standIn(p.element.Law.Law, r.LnG, p.path.History.Life())
+	r.StandIn = standIn(p.element.Law.Law, p.path.History, r.LnG)
 	return r, nil
 }
 
@@ -603,10 +604,29 @@ func notRun(v Verdict) Finding {
 }
 
 // standIn returns the one constant temperature, in K, at which the law gives
-// the diffusion integral exp(lnG) over the time life; 0 if there is none
-// between standInLow and standInHigh.
-func standIn(law diffusion.Law, lnG, life float64) float64 {
-	miss := func(temp float64) float64 { return law.LnD(temp) + math.Log(life) - lnG }
+// the diffusion integral exp(lnG) along the legs of the history, each with its
+// setting; 0 if there is none between standInLow and standInHigh.
+func standIn(law diffusion.Law, h *thermal.History, lnG float64) float64 {
+	lasts := map[int]float64{} // s, by setting
+	if law.Where == nil {
+		lasts[0] = h.Life()
+	} else {
+		for _, leg := range h.Legs() {
+			lasts[leg.Setting] += leg.For
+		}
+	}
+	settings := slices.Sorted(maps.Keys(lasts))
+	laws := make([]diffusion.Law, len(settings))
+	for i, s := range settings {
+		laws[i] = law.In(s)
+	}
+	miss := func(temp float64) float64 {
+		sum := math.Inf(-1)
+		for i, s := range settings {
+			sum = numeric.LnAdd(sum, laws[i].LnD(temp)+math.Log(lasts[s]))
+		}
+		return sum - lnG
+	}
 	t, err := numeric.Root(miss, standInLow, standInHigh, standInResolution)
 	if err != nil {
 		return 0

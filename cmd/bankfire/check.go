@@ -56,9 +56,7 @@ func checkText(s *study.Study) (*bytes.Buffer, error) {
 	if err := writePathsRead(text, s); err != nil {
 		return nil, err
 	}
-	if at := s.Conditions.Typed; len(at) > 0 {
-		fmt.Fprintf(text, "conditions: %s\n\n", strings.Join(at, ", "))
-	}
+	writeConditions(text, s)
 	for i := range s.Crystals {
 		writeCrystal(text, &s.Crystals[i], filepath.Dir(s.File))
 	}
@@ -66,6 +64,20 @@ func checkText(s *study.Study) (*bytes.Buffer, error) {
 		fmt.Fprintf(text, "note: %s\n", n)
 	}
 	return text, nil
+}
+
+// writeConditions writes the conditions of the study and of legs.
+func writeConditions(w io.Writer, s *study.Study) {
+	var lines []string
+	if at := s.Conditions.Typed; len(at) > 0 {
+		lines = append(lines, "conditions: "+strings.Join(at, ", "))
+	}
+	for i := range s.Settings {
+		lines = append(lines, "conditions of "+s.Settings[i].Of()+": "+strings.Join(s.Settings[i].Conditions.Typed, ", "))
+	}
+	if len(lines) > 0 {
+		fmt.Fprintf(w, "%s\n\n", strings.Join(lines, "\n"))
+	}
 }
 
 // writePathsRead writes the paths with what the study's limits say of them.

@@ -35,7 +35,7 @@ func TestTopics(t *testing.T) {
 type entry struct{ key, example string }
 
 var (
-	tableHead = regexp.MustCompile(`^(top level|\[+[a-z.]+\]+|path\.legs [a-z]+|(?:limits|law)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
+	tableHead = regexp.MustCompile(`^(top level|\[+[a-z.]+\]+|path\.legs[ .][a-z]+|(?:limits|law)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
 	entryLine = regexp.MustCompile(`^  ([A-Za-z0-9_]+)(?: = (.*?))?(?:  .*)?$`)
 )
 
@@ -194,6 +194,7 @@ func frames() []frame {
 		leg("reheat", `reheat = "770 C"`, `efold = "1 yr"`),
 		leg("sheet", `sheet = "900 C"`, `host = "600 C"`, `thickness = "9 m"`, `position = "0 m"`, `kappa = "1e-6 m2/s"`, `for = "1 yr"`),
 		leg("table", `table = "tt.csv"`, `time = "t [yr]"`, `temperature = "T [C]"`, `counts = "before eruption"`),
+		{"path.legs.conditions", shownLegs, `[ { hold = "750 C", for = "6 kyr", conditions = %s } ]`, true, nil},
 		leg("repeat", `repeat = 2`, `legs = [ { hold = "700 C", for = "1 yr" } ]`),
 		{"crystal", shownCrystal, "%s\n", false, lines(shownCrystal)},
 		{"crystal.zones", shownZones, "%s", true, []string{`name = "core"`, `width = "140 um"`}},

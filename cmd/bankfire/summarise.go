@@ -5,6 +5,7 @@ import (
 	"slices"
 	"strings"
 
+	"bankfire/diffusion/catalogue"
 	"bankfire/paths"
 	"bankfire/paths/study"
 	"bankfire/thermal"
@@ -15,7 +16,7 @@ import (
 func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
-		Inputs: []input{}, Conditions: conditionsUsed(&r.Study.Conditions), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study), Solubilities: solubilitiesUsed(r.Study),
+		Inputs: []input{}, Conditions: conditionsUsed(r.Study), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study), Solubilities: solubilitiesUsed(r.Study),
 		Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
 		Notes: filled(r.Study.Notes), Files: []string{},
 	}
@@ -189,12 +190,24 @@ func partitionUsed(p *study.Partition) lawUsed {
 	return used
 }
 
-// conditionsUsed are the conditions as the study has them, a buffer with its
-// source.
-func conditionsUsed(c *study.Conditions) []string {
-	all := filled(slices.Clone(c.Typed))
-	if b := c.Buffer; b != nil {
-		all = append(all, b.Names[0]+": "+b.Citation+" ("+b.Confidence+")")
+// conditionsUsed are the conditions as the study has them, those of legs after
+// them, buffers with their sources.
+func conditionsUsed(s *study.Study) []string {
+	all := filled(slices.Clone(s.Conditions.Typed))
+	buffers := []*catalogue.Buffer{s.Conditions.Buffer}
+	for i := range s.Settings {
+		of := &s.Settings[i]
+		for _, typed := range of.Conditions.Typed {
+			all = append(all, of.Of()+": "+typed)
+		}
+		buffers = append(buffers, of.Conditions.Buffer)
+	}
+	named := map[string]bool{}
+	for _, b := range buffers {
+		if b != nil && !named[b.Names[0]] {
+			named[b.Names[0]] = true
+			all = append(all, b.Names[0]+": "+b.Citation+" ("+b.Confidence+")")
+		}
 	}
 	return all
 }

@@ -77,12 +77,15 @@ func TestPartitionsUsed(t *testing.T) {
 
 func TestConditionsUsed(t *testing.T) {
 	buffer, _ := catalogue.FindBuffer("QFM")
+	qfm := study.Conditions{Typed: []string{"fO2 QFM"}, Buffer: buffer}
 	for _, test := range []struct {
-		of   study.Conditions
+		of   study.Study
 		want []string
 	}{
-		{study.Conditions{}, []string{}},
-		{study.Conditions{Typed: []string{"fO2 QFM"}, Buffer: buffer}, []string{"fO2 QFM", "QFM: " + buffer.Citation + " (memory: strong)"}},
+		{study.Study{}, []string{}},
+		{study.Study{Conditions: qfm}, []string{"fO2 QFM", "QFM: " + buffer.Citation + " (memory: strong)"}},
+		{study.Study{Settings: []study.Setting{{Conditions: qfm, Legs: 3, First: `leg "wake"`}}},
+			[]string{`leg "wake" and 2 more: fO2 QFM`, "QFM: " + buffer.Citation + " (memory: strong)"}},
 	} {
 		if got := conditionsUsed(&test.of); !reflect.DeepEqual(got, test.want) {
 			t.Errorf("got %q, want %q", got, test.want)

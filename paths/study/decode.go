@@ -23,7 +23,7 @@ const (
 type decoder struct {
 	file       string // the study as the user named it
 	files      *files
-	at         Conditions
+	settings   []Setting            // the first is the study's own; legs have the number of one, from 1
 	used       map[string]bool      // conditions that a law depends on
 	laws       map[string]Law       // the study's own, by name
 	partitions map[string]Partition // the same

@@ -2,7 +2,9 @@ package study
 
 import (
 	"fmt"
+	"maps"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -15,29 +17,33 @@ var (
 	fugacity = bound{thermal.Pressure, false, 1e12, "1e12 Pa", "1e-7 Pa"}
 )
 
-// conditions reads [conditions]. A value that is wrong is taken as 1, so that no
-// law misses it.
-func (d *decoder) conditions(n *node) Conditions {
-	c := Conditions{Given: catalogue.Conditions{}}
-	if !d.is(n, tableNode, `write [conditions] and below it pressure = "2 kbar"`) {
-		return c
-	}
-	d.keys(n, conditionsTable)
-	if v := n.get("pressure"); v != nil {
-		c.Given[catalogue.Pressure], _ = d.quantity(v, pressure)
-		c.Typed = append(c.Typed, "pressure "+v.text)
-	}
-	if v := n.get("fO2"); v != nil {
-		d.fugacity(v, &c)
-		c.Typed = append(c.Typed, "fO2 "+v.text)
-	}
-	if v := n.get("aTiO2"); v != nil {
-		c.Given[catalogue.ATiO2] = d.activity(v)
-		c.Typed = append(c.Typed, "aTiO2 "+v.text)
-	}
-	if v := n.get("aSiO2"); v != nil {
-		c.Given[catalogue.ASiO2] = d.activity(v)
-		c.Typed = append(c.Typed, "aSiO2 "+v.text)
+// conditions reads the conditions of the study, or of legs: what they do not state
+// is as in from. A value that is wrong is taken as 1, so that no law misses it.
+func (d *decoder) conditions(n *node, kind tableKind, from Conditions) Conditions {
+	c := from
+	c.Given, c.Typed = maps.Clone(from.Given), nil
+	d.keys(n, kind)
+	for _, name := range tables[kind].Keys {
+		v := n.get(name)
+		if v == nil {
+			i := slices.IndexFunc(from.Typed, func(typed string) bool { return strings.HasPrefix(typed, name+" ") })
+			if i >= 0 {
+				c.Typed = append(c.Typed, from.Typed[i])
+			}
+			continue
+		}
+		c.Typed = append(c.Typed, name+" "+v.text)
+		switch name {
+		case "pressure":
+			c.Given[catalogue.Pressure], _ = d.quantity(v, pressure)
+		case "fO2":
+			c.Buffer, c.Offset = nil, 0
+			d.fugacity(v, &c)
+		case "aTiO2":
+			c.Given[catalogue.ATiO2] = d.activity(v)
+		case "aSiO2":
+			c.Given[catalogue.ASiO2] = d.activity(v)
+		}
 	}
 	return c
 }
@@ -73,7 +79,7 @@ func (d *decoder) fugacity(n *node, c *Conditions) {
 	if looksLikeValue(strings.TrimSpace(text)) {
 		if x, ok := d.quantity(n, fugacity); ok {
 			c.Given[catalogue.FO2] = x
-			d.note("fO2 is held at %s at every temperature; in nature a buffer follows the temperature, as fO2 = \"NNO\" does", text)
+			d.noteOnce("fO2 is held at %s at every temperature; in nature a buffer follows the temperature, as fO2 = \"NNO\" does", text)
 		}
 		return
 	}
@@ -123,22 +129,4 @@ func (d *decoder) reportBuffer(n *node, name string) {
 func (c *Conditions) gives(name string) bool {
 	_, given := c.Given[name]
 	return given || name == catalogue.FO2 && c.Buffer != nil
-}
-
-// noteUnused notes the conditions that nothing in the study depends on, and a
-// buffer that is taken at a pressure of 1 bar.
-func (d *decoder) noteUnused() {
-	c := &d.at
-	if c.Buffer != nil && d.used[catalogue.FO2] {
-		if c.gives(catalogue.Pressure) {
-			d.used[catalogue.Pressure] = true
-		} else {
-			d.note("no pressure given: the %s buffer is taken at 1 bar", c.Buffer.Names[0])
-		}
-	}
-	for _, name := range []string{catalogue.Pressure, catalogue.FO2, catalogue.ASiO2, catalogue.ATiO2} {
-		if c.gives(name) && !d.used[name] {
-			d.note("conditions: nothing in this study depends on %s", name)
-		}
-	}
 }

@@ -147,7 +147,7 @@ func (d *decoder) joined(n *node, parts []Part) Law {
 			citations = append(citations, p.Law.Citation)
 		}
 		at := law.HostSlope*(law.HostAt-p.Law.HostAt) + law.OwnSlope*(law.OwnAt-p.Law.OwnAt)
-		law.Law.Terms = append(law.Law.Terms, scaled(p.Law.Law, math.Log(p.Share)+at).Terms...)
+		law.Law = plus(law.Law, scaled(p.Law.Law, math.Log(p.Share)+at))
 		law.narrow(&p.Law)
 	}
 	law.Key, law.Citation = strings.Join(keys, " + "), strings.Join(citations, "; ")

@@ -89,32 +89,40 @@ func (d *decoder) solubility(n *node, row *catalogue.Solubility, u *units) *Solu
 	if !d.saturates(n, row) || !ok {
 		return nil
 	}
-	content, err := row.At(d.at.Given)
-	if err != nil {
-		d.reportError(n, err)
-		return nil
+	s := &Solubility{Row: row, Contents: map[int]catalogue.Content{}, PerPPM: perPPM}
+	for _, i := range d.inUse() {
+		content, err := row.At(d.settings[i-1].Conditions.Given)
+		if err != nil {
+			d.reportError(n, err)
+			return nil
+		}
+		s.Contents[i] = content
 	}
-	return &Solubility{Row: row, Content: content, PerPPM: perPPM}
+	return s
 }
 
 // saturates reports every condition of the relation that the study does not give,
 // and notes a pressure for which it was not made.
 func (d *decoder) saturates(n *node, row *catalogue.Solubility) bool {
-	all := true
+	before := d.faults
 	for _, name := range row.Needs() {
 		d.used[name] = true
-		if !d.at.gives(name) {
+		switch all, some := d.gives(name); {
+		case some && !all:
+			d.lacks(name, row.Key)
+		case !all:
 			d.report(n, "depends on "+name+", not given in this study", "write [conditions] and below it "+name+" = "+conditionExample(name))
-			all = false
 		}
 	}
-	if p, given := d.at.Given[catalogue.Pressure]; given && row.PMax > 0 {
-		d.used[catalogue.Pressure] = true
-		d.notePressure(row, p)
-	} else if row.PMax > 0 && all {
-		d.noteOnce("no pressure given: %s was calibrated at %s", row.Key, pressureRange(row))
+	for _, i := range d.inUse() {
+		if p, given := d.settings[i-1].Conditions.Given[catalogue.Pressure]; given && row.PMax > 0 {
+			d.used[catalogue.Pressure] = true
+			d.notePressure(row, p)
+		} else if row.PMax > 0 && d.faults == before {
+			d.noteOnce("no pressure given: %s was calibrated at %s", row.Key, pressureRange(row))
+		}
 	}
-	return all
+	return d.faults == before
 }
 
 func (d *decoder) notePressure(row *catalogue.Solubility, p float64) {
@@ -202,10 +210,17 @@ func (b *builder) follow(dst *diffusion.Rim, r *Rim, from, until float64) error 
 			return err
 		}
 	}
-	if err := f.possible(lo, hi, b.e.Unit, r.Place); err != nil {
-		return err
+	tried := map[int]bool{}
+	for _, leg := range b.h.Legs() {
+		if tried[leg.Setting] {
+			continue
+		}
+		tried[leg.Setting] = true
+		if err := f.possible(leg.Setting, lo, hi, b.e.Unit, r.Place); err != nil {
+			return err
+		}
 	}
-	if a, ok := f.exponential(); ok {
+	if a, ok := f.exponential(tried); ok {
 		dst.Kind, dst.Equilibrium = diffusion.Following, &a
 		return nil
 	}
@@ -213,14 +228,20 @@ func (b *builder) follow(dst *diffusion.Rim, r *Rim, from, until float64) error 
 	return nil
 }
 
-// exponential returns the value of the rim as exp(LnA - E/T); ok is false if it is
-// not exactly of that form.
-func (f *Following) exponential() (a diffusion.Arrhenius, ok bool) {
+// exponential returns the value of the rim as exp(LnA - E/T) in legs of all the
+// settings; ok is false if it is not exactly of that form.
+func (f *Following) exponential(settings map[int]bool) (a diffusion.Arrhenius, ok bool) {
 	switch {
 	case f.Solubility != nil:
-		a, ok = f.Solubility.Content.Exponential()
-		a.LnA += math.Log(f.Solubility.PerPPM)
-		return a, ok
+		each := map[catalogue.Content]bool{}
+		for setting := range settings {
+			each[f.Solubility.Contents[setting]] = true
+		}
+		for content := range each {
+			a, ok = content.Exponential()
+			a.LnA += math.Log(f.Solubility.PerPPM)
+		}
+		return a, ok && len(each) == 1
 	case f.Partition != nil && f.Table == nil && f.Melt > 0:
 		// LnK goes as 1/T.
 		return diffusion.Arrhenius{LnA: math.Log(f.Melt), E: -f.Partition.LnK(f.Host, 1)}, true
@@ -232,10 +253,11 @@ func (f *Following) exponential() (a diffusion.Arrhenius, ok bool) {
 func (f *Following) along(h *thermal.History) *diffusion.Given {
 	g := &diffusion.Given{At: func(t float64) float64 {
 		_, after := h.At(t)
-		return f.At(after)
+		return f.At(h.Setting(t), after)
 	}}
 	for _, t := range h.Breaks(nil) {
-		if before, after := h.At(t); before != after {
+		before, after := h.At(t)
+		if was := h.Setting(math.Nextafter(t, -1)); before != after || f.At(was, before) != f.At(h.Setting(t), after) {
 			g.Jumps = append(g.Jumps, t)
 		} else {
 			g.Breaks = append(g.Breaks, t)

@@ -157,7 +157,7 @@ func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal, e *Element)
 	if !d.givesAll(n, row, c, e) {
 		return law
 	}
-	at := maps.Clone(d.at.Given)
+	at := catalogue.Conditions{}
 	switch term := row.Composition; {
 	case e.onHost(row):
 		at[term.Variable] = term.Reference
@@ -166,24 +166,7 @@ func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal, e *Element)
 		at[term.Variable] = term.Reference
 		d.ownIron(n, row, e, &law)
 	}
-	needs := row.Needs()
-	for _, name := range needs {
-		d.used[name] = true
-	}
-	var err error
-	switch fO2 := slices.Contains(needs, catalogue.FO2); {
-	case fO2 && d.at.Buffer != nil:
-		law.Buffer = d.at.Buffer
-		law.Law, err = row.LawAlong(at, d.at.Fugacity())
-	default:
-		law.Law, err = row.Law(at)
-		if fO2 {
-			law.Caution = fmt.Sprintf("fO2 held at %.3g Pa at every temperature", at[catalogue.FO2])
-		}
-	}
-	if err != nil {
-		d.reportError(n, err)
-	}
+	d.underConditions(n, row, at, &law)
 	return law
 }
 
@@ -197,7 +180,7 @@ func (e *Element) onHost(row *catalogue.Row) bool {
 // givesAll reports every condition of the law that the study does not give.
 func (d *decoder) givesAll(n *node, row *catalogue.Row, c *Crystal, e *Element) bool {
 	var missing, conditions []string
-	remedy := ""
+	remedy, lacking := "", false
 	for _, name := range row.Needs() {
 		switch {
 		case name == row.Composition.Variable && e.onHost(row):
@@ -208,12 +191,19 @@ func (d *decoder) givesAll(n *node, row *catalogue.Row, c *Crystal, e *Element) 
 				}
 			}
 		case name == row.Composition.Variable && row.OwnComposition():
-		case !d.at.gives(name):
-			missing, conditions = append(missing, name), append(conditions, name+" = "+conditionExample(name))
+		default:
+			all, some := d.gives(name)
+			switch {
+			case some && !all:
+				d.lacks(name, row.Key)
+				lacking = true
+			case !all:
+				missing, conditions = append(missing, name), append(conditions, name+" = "+conditionExample(name))
+			}
 		}
 	}
 	if len(missing) == 0 {
-		return true
+		return !lacking
 	}
 	if len(conditions) > 0 {
 		remedy = "write [conditions] and below it " + strings.Join(conditions, ", ") + "; or "

@@ -31,7 +31,7 @@ func legKinds() []legKind {
 	}
 }
 
-func (k legKind) keys() []string { return slices.Concat(k.needs, k.options) }
+func (k legKind) keys() []string { return slices.Concat(k.needs, k.options, []string{"conditions"}) }
 
 // paths reads every [[path]]. The eruption of the study's top level holds for
 // those that have none of their own.
@@ -55,7 +55,7 @@ func (d *decoder) path(n, eruption *node, seen map[string]int) Path {
 		}
 	}
 	before := d.faults
-	specs := d.legList(n)
+	specs := d.legList(n, 1)
 	if d.faults > before || len(specs) == 0 {
 		return p
 	}
@@ -89,18 +89,19 @@ func (d *decoder) history(n *node, specs []thermal.Spec) *thermal.History {
 	return h
 }
 
-// legList reads the list of legs of a path or of a repeat.
-func (d *decoder) legList(n *node) []thermal.Spec {
+// legList reads the list of legs of a path or of a repeat, which has the setting
+// of the given number.
+func (d *decoder) legList(n *node, setting int) []thermal.Spec {
 	const example = `write legs = [ { hold = "750 C", for = "800 yr" } ]`
 	list := d.need(n, "legs", example)
 	var out []thermal.Spec
 	for _, leg := range d.tables(list, example) {
-		out = append(out, d.leg(leg))
+		out = append(out, d.leg(leg, setting))
 	}
 	return out
 }
 
-func (d *decoder) leg(n *node) thermal.Spec {
+func (d *decoder) leg(n *node, setting int) thermal.Spec {
 	spec := thermal.Spec{Place: d.place(n)}
 	kind, ok := d.legKind(n)
 	if !ok {
@@ -114,6 +115,11 @@ func (d *decoder) leg(n *node) thermal.Spec {
 	for _, k := range n.keys {
 		d.legValue(&spec, k.name, k.value)
 	}
+	setting = d.legConditions(n, setting)
+	if kind.kind != thermal.SpecRepeat {
+		d.inForce(setting, n, kind)
+		spec.Setting = setting
+	}
 	switch kind.kind {
 	case thermal.SpecReheat:
 		d.reheat(n, &spec)
@@ -123,7 +129,7 @@ func (d *decoder) leg(n *node) thermal.Spec {
 		spec.Rows = d.rows(n)
 	case thermal.SpecRepeat:
 		if n.get("legs") != nil {
-			spec.Legs = d.legList(n)
+			spec.Legs = d.legList(n, setting)
 		}
 	}
 	return spec

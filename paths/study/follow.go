@@ -20,10 +20,11 @@ type Following struct {
 	Table      *ByTemperature // what the melt has; without a relation, what the rim has; nil is none
 }
 
-// At is the value of the rim at a temperature, K, in the element's unit.
-func (f *Following) At(temp float64) float64 {
+// At is the value of the rim at a temperature, K, in a leg of a setting, in the
+// element's unit.
+func (f *Following) At(setting int, temp float64) float64 {
 	if f.Solubility != nil {
-		return f.Solubility.At(temp)
+		return f.Solubility.At(setting, temp)
 	}
 	x := f.Melt
 	if f.Table != nil {
@@ -37,7 +38,7 @@ func (f *Following) At(temp float64) float64 {
 
 // possible reports a rim that would have more than all there is somewhere between
 // two temperatures: relations and the pieces of tables are largest at their ends.
-func (f *Following) possible(lo, hi float64, unit string, at thermal.Place) error {
+func (f *Following) possible(setting int, lo, hi float64, unit string, at thermal.Place) error {
 	temps := []float64{lo, hi}
 	if f.Table != nil {
 		for _, temp := range f.Table.Temp {
@@ -50,7 +51,7 @@ func (f *Following) possible(lo, hi float64, unit string, at thermal.Place) erro
 		if !(lo <= hi) { // it holds at no time
 			return nil
 		}
-		if x := f.At(temp); !(x <= traverse.Whole(unit)) {
+		if x := f.At(setting, temp); !(x <= traverse.Whole(unit)) {
 			return at.Error("", fmt.Sprintf("is in equilibrium with what is outside at %.3g %s at %.0f C, more than all there is", x, unit, temp-thermal.ZeroCelsius),
 				"check the relation and the melt")
 		}
@@ -58,16 +59,19 @@ func (f *Following) possible(lo, hi float64, unit string, at thermal.Place) erro
 	return nil
 }
 
-// Solubility is a solubility relation of the catalogue under the conditions of the
-// study.
+// Solubility is a solubility relation of the catalogue under the conditions of each
+// leg.
 type Solubility struct {
-	Row     *catalogue.Solubility
-	Content catalogue.Content
-	PerPPM  float64 // of the element's unit
+	Row      *catalogue.Solubility
+	Contents map[int]catalogue.Content // by the setting of legs
+	PerPPM   float64                   // of the element's unit
 }
 
-// At is what the crystal takes up at a temperature, K, in the element's unit.
-func (s *Solubility) At(temp float64) float64 { return s.PerPPM * s.Content.PPM(temp) }
+// At is what the crystal takes up at a temperature, K, in a leg of a setting, in the
+// element's unit.
+func (s *Solubility) At(setting int, temp float64) float64 {
+	return s.PerPPM * s.Contents[setting].PPM(temp)
+}
 
 // beyond says by how much temperatures, K, leave those for which the relation was
 // calibrated, "" if they do not.

@@ -142,7 +142,9 @@ func finiteProblem(t *testing.T, c *Crystal, e *Element, p *Path) {
 	for _, v := range free {
 		mustBeFinite(t, "prior", v.Prior.Value, v.Prior.Sigma)
 	}
-	mustBeFinite(t, "law", problem.Law.LnD(1000))
+	for _, leg := range p.History.Legs() {
+		mustBeFinite(t, "law", problem.Law.In(leg.Setting).LnD(1000))
+	}
 	if _, err := diffusion.Compile(problem, diffusion.Options{}); err != nil {
 		t.Fatalf("accepted, but the solver refuses it: %v", err)
 	}

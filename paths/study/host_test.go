@@ -51,7 +51,7 @@ func TestEveryKeyHosts(t *testing.T) {
 			t.Fatal(err)
 		}
 		for j, times := range []float64{1, 0.5} {
-			got := p.Law.LnD(temp) + math.Log(p.Zones[j].Times)
+			got := p.Law.In(1).LnD(temp) + math.Log(p.Zones[j].Times)
 			near(t, fmt.Sprintf("ln D of %s in %s", e.Name, c.Zones[j].Name), got, want(c.Zones[j].Host)+math.Log(times))
 			near(t, "host", p.Zones[j].Host, c.Zones[j].Host)
 		}

@@ -42,6 +42,7 @@ const (
 	ownLawOwnTable
 	partitionTable
 	pathTable
+	duringTable
 	crystalTable
 	zoneTable
 	hostTable
@@ -78,6 +79,7 @@ var tables = [...]Table{
 	ownLawOwnTable:  {"law.own", []string{"ln_slope", "at"}},
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
+	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
 	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth"}},

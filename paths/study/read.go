@@ -61,13 +61,17 @@ func (d *decoder) study(root *node) *Study {
 	if v := root.get("confidence"); v != nil {
 		s.Confidence = d.confidence(v)
 	}
-	d.at = d.conditions(root.get("conditions"))
-	s.Conditions = d.at
+	s.Conditions = d.studyConditions(root.get("conditions"))
 	d.ownLaws(root.get("law"))
 	d.ownPartitions(root.get("partition"))
 	s.Thresholds = d.thresholds(root.get("threshold"))
 	s.Limits = d.limits(root.get("limits"), s.Thresholds)
 	s.Paths = d.paths(root)
+	for _, i := range d.inUse() {
+		if i > 1 {
+			s.Settings = append(s.Settings, d.settings[i-1])
+		}
+	}
 	s.Crystals = d.crystals(root)
 	d.noteUnused()
 	if d.faults == 0 {

@@ -1,6 +1,7 @@
 package study
 
 import (
+	"fmt"
 	"math"
 	"slices"
 
@@ -18,6 +19,7 @@ type Study struct {
 	Confidence float64 // of the verdicts, 0 to 1; 0.95 where the study says nothing
 	Thresholds []Threshold
 	Conditions Conditions
+	Settings   []Setting // those of legs that state conditions of their own
 	Limits     Limits
 	Paths      []Path // at least one, names differ
 	Crystals   []Crystal
@@ -149,8 +151,15 @@ type Law struct {
 	// Where the element has the value C, D has the factor exp(OwnSlope (C - OwnAt)).
 	OwnSlope, OwnAt float64
 	Times           thermal.Uncertain // the user's factor on D, which Law holds; its error is one beside Sigma; 0 is none
-	Buffer          *catalogue.Buffer // along which Law goes; nil is none
-	Parts           []Part            // of which a law by direction is the sum; then Row and Buffer are nil, Key joins theirs, and Sigma is 0
+	Fugacities      []Fugacity        // under which Law holds, one a setting; nil if it does not depend on fO2
+	Parts           []Part            // of which a law by direction is the sum; then Row and Fugacities are nil, Key joins theirs, and Sigma is 0
+}
+
+// Fugacity is what the fO2 of a law's constants is in legs of a setting.
+type Fugacity struct {
+	Setting int               // thermal.Leg's
+	Buffer  *catalogue.Buffer // that it follows; nil is none
+	FO2     float64           // Pa, at every temperature, if it follows none
 }
 
 // Part is a law's part in a law by direction.
@@ -161,21 +170,45 @@ type Part struct {
 }
 
 // Cautions returns the sentences that belong beside every verdict that rests on
-// the law: those of the catalogue, and what the study says of it.
+// the law: those of the catalogue, what fO2 was, and what the study says of it.
 func (l *Law) Cautions() []string {
+	return l.cautions(func(int) bool { return true })
+}
+
+// CautionsOn returns those that concern a path: of its legs' conditions alone.
+func (l *Law) CautionsOn(h *thermal.History) []string {
+	return l.cautions(func(setting int) bool {
+		return slices.ContainsFunc(h.Legs(), func(leg thermal.Leg) bool { return leg.Setting == setting })
+	})
+}
+
+func (l *Law) cautions(holds func(setting int) bool) []string {
 	var out []string
+	add := func(caution string) {
+		if !slices.Contains(out, caution) {
+			out = append(out, caution)
+		}
+	}
 	if l.Row != nil {
 		out = l.Row.Cautions()
 	}
-	if l.Buffer != nil {
-		out = append(out, l.Buffer.Cautions()...)
+	for _, f := range l.Fugacities {
+		switch {
+		case !holds(f.Setting):
+		case f.Buffer == nil:
+			add(fmt.Sprintf("fO2 held at %.3g Pa at every temperature", f.FO2))
+		default:
+			for _, caution := range f.Buffer.Cautions() {
+				add(caution)
+			}
+		}
 	}
 	for i := range l.Parts {
-		for _, caution := range l.Parts[i].Law.Cautions() {
+		for _, caution := range l.Parts[i].Law.cautions(holds) {
 			if len(l.Parts) > 1 {
 				caution = l.Parts[i].Law.Key + ": " + caution
 			}
-			out = append(out, caution)
+			add(caution)
 		}
 	}
 	if times := l.TimesText(); times != "" {
@@ -187,7 +220,7 @@ func (l *Law) Cautions() []string {
 	return out
 }
 
-// Conditions are what the study says held all along every path.
+// Conditions are what held along the paths, but in legs that state their own.
 type Conditions struct {
 	Given  catalogue.Conditions // pressure, activities and an fO2 that stays the same, as far as given
 	Buffer *catalogue.Buffer    // that fO2 follows; nil is none

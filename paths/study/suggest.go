@@ -28,7 +28,7 @@ func later(field string) bool {
 		field = strings.ReplaceAll(field, ".legs.legs.", ".legs.")
 	}
 	switch field {
-	case "family", "law.times", "path.legs.conditions",
+	case "family", "law.times",
 		"crystal.zones.added", "crystal.element.rivals",
 		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled":
 		return true

@@ -119,7 +119,7 @@ func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
 		if legs[i].Kind != thermal.Table {
 			continue
 		}
-		for _, a := range e.Law.Law.Terms {
+		for _, a := range e.Law.Law.In(legs[i].Setting).Terms {
 			d.coarse(e, p, legs[i].Rows, a.E)
 		}
 	}

@@ -266,7 +266,6 @@ func wrongPaths() []wrong {
 		{"leg of no kind", store, `@{ name = "store", for = "1 yr" }`, "", "path.legs", "a leg of no kind", "hold, ramp, relax"},
 		{"mistyped kind", store, `{ @hodl = "750 C", for = "1 yr" }`, "", "path.legs.hodl", "unknown key", `did you mean "hold"?`},
 		{"key of another kind", store, `{ hold = "750 C", @efold = "1 yr", for = "1 yr" }`, "", "path.legs.efold", "unknown key", "known here: hold, for, name"},
-		{"later key of a leg", store, `{ hold = "750 C", @conditions = { fO2 = "NNO" }, for = "1 yr" }`, "", "path.legs.conditions", "not known in this version", "leave it out"},
 		{"hold without time", store, `@{ hold = "750 C" }`, "", "path.legs.for", "missing", "a hold leg needs hold, for"},
 		{"reheat that ends before it relaxes", wake, `{ reheat = "780 C", rise = "2 yr", dwell = "20 yr", efold = "3 yr", for = @"15 yr" }`, "", "path.legs.for", "shorter than rise and dwell together, 22 yr", "for counts the whole reheat"},
 		{"leg named path", wake, `{ name = @"path", ramp = "780 C", for = "5 yr" }`, "", "path.legs.name", "is that of the whole path", "wake 1"},
