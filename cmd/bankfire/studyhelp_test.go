@@ -226,6 +226,9 @@ var beside = map[string][]string{
 	"limits.between shortest":                   {"longest"},
 	"crystal.element.traverse unit":             {"value", `value = "Ti"`},
 	"crystal.element.rim given unit":            {"value", `value = "Ti"`},
+	"crystal.element.start melt":                {"temperature", `temperature = ["760 C", "790 C"]`},
+	"crystal.element.start solubility":          {"temperature", `temperature = ["760 C", "790 C"]`},
+	"crystal.element.start temperature":         {"solubility", `solubility = "ti-quartz-wark2006"`},
 	"crystal.element.rim given temperature":     {"time", ""},
 	"crystal.element.rim following temperature": {"melt", `melt = "sr-melt.csv"`, "value", `value = "Sr [ppm]"`},
 	"crystal.element.rim following value":       {"melt", `melt = "sr-melt.csv"`, "temperature", `temperature = "T [C]"`},
@@ -247,6 +250,13 @@ var hosts = strings.NewReplacer(`"140 um" }`, `"140 um", host = 0.5 }`, `"60 um"
 var (
 	stated = []string{"crystal.element.law own", "crystal.element.law.own ln_slope", "crystal.element.law.own at"}
 	exact  = strings.NewReplacer(`["free", "free"]`, `["90 ppm", "60 ppm"]`)
+)
+
+// inMelt are keys for which the element needs a partition relation too, and saturated
+// those for which the study needs conditions.
+var (
+	inMelt    = []string{"crystal.element.start melt"}
+	saturated = []string{"crystal.element.start solubility", "crystal.element.start temperature"}
 )
 
 // with returns the keys of the frame with the one that is tried.
@@ -303,6 +313,12 @@ func TestStudyHelpEntries(t *testing.T) {
 			}
 			t.Run(f.table+" "+e.key, func(t *testing.T) {
 				text := strings.Replace(sound, f.old, strings.Replace(f.new, "%s", f.with(e), 1), 1)
+				if slices.Contains(inMelt, f.table+" "+e.key) {
+					text = strings.Replace(hosts.Replace(text), shownLaw, shownLaw+"\npartition = \"sr-blundy1991\"", 1)
+				}
+				if slices.Contains(saturated, f.table+" "+e.key) {
+					text = strings.Replace(text, "[[threshold]]", "[conditions]\naTiO2 = 1\n\n[[threshold]]", 1)
+				}
 				if slices.Contains(onHost, f.table+" "+e.key) {
 					text = hosts.Replace(text)
 				}

@@ -21,7 +21,7 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	u := &units{element: e.Name, measured: n.get("traverse") != nil, known: map[float64]bool{}}
 	d.traverse(n.get("traverse"), c, &e, u)
 	e.Partition = d.partition(n.get("partition"), c, &e)
-	e.Start = d.start(n, c, u)
+	e.Start = d.start(n, c, &e, u)
 	e.Rims = d.rims(n.get("rim"), c, u)
 	if e.Inner = d.rims(inner, c, u); allSealed(e.Inner) {
 		e.Inner = nil

@@ -7,7 +7,7 @@ import (
 
 // start reads the profile of an element before diffusion. Where it does not say
 // otherwise every plateau is free, and edges are sharp.
-func (d *decoder) start(element *node, c *Crystal, u *units) Start {
+func (d *decoder) start(element *node, c *Crystal, e *Element, u *units) Start {
 	s := Start{Zones: make([]Plateau, len(c.Zones))}
 	for i := range s.Zones {
 		s.Zones[i].Free = true
@@ -22,10 +22,17 @@ func (d *decoder) start(element *node, c *Crystal, u *units) Start {
 	case d.is(n, tableNode, example):
 		d.keys(n, startTable)
 	}
-	if zones := n.get("zones"); zones != nil {
-		d.plateaux(zones, s.Zones, c, u, d.concentrationUnit(n.get("unit")))
-	} else if !u.measured {
+	switch way := d.oneWay(n, "zones", "melt", "solubility"); {
+	case way == nil && u.measured:
+	case way == nil:
 		d.report(element, "all plateaux are free, but there is no traverse to fit them to", example)
+	case way == n.get("zones"):
+		d.plateaux(way, s.Zones, c, u, d.concentrationUnit(n.get("unit")))
+	default:
+		d.equilibrium(n, way, &s, c, e, u)
+	}
+	if v := n.get("temperature"); v != nil && n.get("melt") == nil && n.get("solubility") == nil {
+		d.report(v, "goes with a melt or a solubility", "leave it out")
 	}
 	if edge := n.get("edge"); edge != nil {
 		s.Edge = d.nuisance(edge, edgeLatitude())
@@ -33,20 +40,42 @@ func (d *decoder) start(element *node, c *Crystal, u *units) Start {
 	return s
 }
 
+// oneWay returns the first of the keys that the table has, nil if it has none;
+// having two is a problem.
+func (d *decoder) oneWay(n *node, keys ...string) *node {
+	var found *node
+	for _, key := range keys {
+		switch v := n.get(key); {
+		case v == nil:
+		case found == nil:
+			found = v
+		default:
+			d.report(v, "the start is given in another way as well", "keep one of "+strings.Join(keys, ", "))
+		}
+	}
+	return found
+}
+
 // plateaux reads one value a zone into dst.
 func (d *decoder) plateaux(n *node, dst []Plateau, c *Crystal, u *units, unit string) {
 	const example = `write one value a zone, such as zones = ["free", "58 +- 1.5 ppm"]`
+	d.eachZone(n, c, example, func(i int, v *node) { dst[i] = d.amount(v, u, unit) })
+}
+
+// eachZone reads a list of one item a zone.
+func (d *decoder) eachZone(n *node, c *Crystal, example string, read func(i int, v *node)) bool {
 	if !d.is(n, arrayNode, example) {
-		return
+		return false
 	}
-	if len(n.items) != len(dst) {
-		if len(dst) > 0 {
-			d.report(n, fmt.Sprintf("%s for %s", count(len(n.items), "value"), count(len(dst), "zone")),
+	if len(n.items) != len(c.Zones) {
+		if len(c.Zones) > 0 {
+			d.report(n, fmt.Sprintf("%s for %s", count(len(n.items), "value"), count(len(c.Zones), "zone")),
 				"write one value a zone: "+strings.Join(zoneNames(c), ", "))
 		}
-		return
+		return false
 	}
 	for i, v := range n.items {
-		dst[i] = d.amount(v, u, unit)
+		read(i, v)
 	}
+	return true
 }

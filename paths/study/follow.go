@@ -122,6 +122,9 @@ func (b *ByTemperature) covers(lo, hi float64) error {
 // once each; nil if there are none.
 func (e *Element) Solubilities() []*Solubility {
 	var out []*Solubility
+	if e.Start.Solubility != nil {
+		out = append(out, e.Start.Solubility)
+	}
 	for _, rims := range [][]Rim{e.Inner, e.Rims} {
 		for i := range rims {
 			if f := rims[i].Following; f != nil && f.Solubility != nil {

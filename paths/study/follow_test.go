@@ -11,9 +11,9 @@ import (
 	"bankfire/thermal"
 )
 
-// followingStudy is the sound study with conditions and another rim, its files with
-// a melt and a rim against temperature.
-func followingStudy(t *testing.T, conditions, rim string) (*Study, error) {
+// followingStudy is the sound study with a host, conditions and another rim, its files
+// with a melt and a rim against temperature; more are pairs of old and new text.
+func followingStudy(t *testing.T, conditions, rim string, more ...string) (*Study, error) {
 	t.Helper()
 	files := soundFiles()
 	files["melt.csv"] = "T [C],Ti [ppm]\n790,1000\n770,1400\n740,2000\n"
@@ -23,8 +23,9 @@ func followingStudy(t *testing.T, conditions, rim string) (*Study, error) {
 	files["turns.csv"] = "T [C],Ti [ppm]\n740,50\n760,60\n750,70\n"
 	files["neg.csv"] = "T [C],Ti [ppm]\n740,50\n790,-1\n"
 	files["cold.csv"] = "T [C],Ti [ppm]\n-300,50\n790,1\n"
-	text := strings.NewReplacer("[[threshold]]\n", "[conditions]\n"+conditions+"\n[[threshold]]\n", "[[law]]\n", "[[partition]]\nname = \"kx\"\nA = \"-100 kJ/mol\"\nB = \"10 kJ/mol\"\n\n[[law]]\n",
-		`{ held = "skin" }`, rim, `"100 um" }`, `"100 um", host = 0.5 }`, `"20 um" }`, `"20 um", host = 0.4 }`).Replace(sound)
+	text := strings.NewReplacer(more...).Replace(sound)
+	text = strings.NewReplacer("[[threshold]]\n", "[conditions]\n"+conditions+"\n[[threshold]]\n", "[[law]]\n", "[[partition]]\nname = \"kx\"\nA = \"-100 kJ/mol\"\nB = \"10 kJ/mol\"\n\n[[law]]\n",
+		`{ held = "skin" }`, rim, `"100 um" }`, `"100 um", host = 0.5 }`, `"20 um" }`, `"20 um", host = 0.4 }`).Replace(text)
 	return parse("s.toml", []byte(text), memory(files))
 }
 
@@ -208,6 +209,96 @@ func TestWrongFollowing(t *testing.T) {
 			}
 			got := problems(t, err)
 			if len(got) != 1 || test.field != "" && got[0].Field != test.field || !strings.Contains(got[0].Problem, test.problem) || !strings.Contains(got[0].Error(), test.remedy) {
+				t.Errorf("problems %v, want %q: %q, %q", err, test.field, test.problem, test.remedy)
+			}
+		})
+	}
+}
+
+// startOf is the pair that gives the following study another start.
+func startOf(start string) []string {
+	return []string{`{ zones = ["free", "58 ppm"], edge = "0 um" }`, start, `law = "quartz-ti-cherniak2007"`, "law = \"mine\"\npartition = \"kx\""}
+}
+
+// TestStartInEquilibrium: K times the melt, and what the models of Ti in quartz
+// print for 750 and 800 C at 2 kbar; errors against finite differences of the values.
+func TestStartInEquilibrium(t *testing.T) {
+	const digit, step, curved = 0.05, 0.01, 1e-4
+	kx := func(x, c float64) float64 { return math.Exp((-100e3*x + 10e3) / (thermal.GasConstant * (c + zc))) }
+	huang := func(_, c float64) float64 { // Huang and Audetat (2012) at 2 kbar, times the activity
+		return 0.5 * math.Pow(10, 5.6459-(2794.3+660.53*math.Pow(2, 0.35))/(c+zc))
+	}
+	for _, test := range []struct {
+		name, start string
+		value       func(x, c float64) float64
+		melt, error [2]float64 // of core and skin
+		digit       float64
+	}{
+		{"melt", `{ melt = ["2000 +- 300 ppm", 1400], unit = "ppm", temperature = ["750 C", "800 +- 20 C"] }`, kx, [2]float64{2000, 1400}, [2]float64{300, 0}, 0},
+		{"both unsure", `{ melt = ["2000 ppm", "1400 +- 200 ppm"], temperature = ["750 C", "800 +- 20 C"], edge = "0 um" }`, kx, [2]float64{2000, 1400}, [2]float64{0, 200}, 0},
+		{"saturated", `{ solubility = "ti-quartz-huang2012", temperature = ["750 C", "800 +- 20 C"], edge = "0 um" }`, huang, [2]float64{1, 1}, [2]float64{}, 0},
+		{"saturated, as printed", `{ solubility = "ti-quartz-huang2012", temperature = ["750 C", "800 +- 20 C"], edge = "0 um" }`,
+			func(_, c float64) float64 { return map[float64]float64{750: 123.6, 800: 181.0}[math.Round(c)] / 2 }, [2]float64{1, 1}, [2]float64{}, digit},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			s, err := followingStudy(t, magmatic, `{ held = "skin" }`, startOf(test.start)...)
+			if err != nil {
+				t.Fatal(err)
+			}
+			for i, x := range []float64{0.5, 0.4} {
+				p := s.Crystals[0].Elements[0].Start.Zones[i]
+				c, off := 750+50*float64(i), 20*float64(i)
+				value := test.melt[i] * test.value(x, c)
+				if p.Free || !(math.Abs(p.Value-value) <= test.digit+1e-9*value) {
+					t.Errorf("zone %d: %+v, want %g", i, p, value)
+				}
+				if test.digit > 0 {
+					continue
+				}
+				slope := test.melt[i] * (test.value(x, c+step) - test.value(x, c-step)) / (2 * step)
+				if want := math.Hypot(slope*off, test.error[i]*test.value(x, c)); !(math.Abs(p.Sigma-want) <= curved*want) {
+					t.Errorf("zone %d: error %g, want %g", i, p.Sigma, want)
+				}
+			}
+			if notes := strings.Join(s.Notes, "\n"); !strings.Contains(notes, "Ti: skin starts in equilibrium at 800 C, at ") {
+				t.Errorf("notes %s", notes)
+			}
+		})
+	}
+}
+
+// TestStartBeyond: a start outside the calibrated temperatures says so.
+func TestStartBeyond(t *testing.T) {
+	s, err := followingStudy(t, magmatic, `{ held = "skin" }`, startOf(`{ solubility = "ti-quartz-zhang2020", temperature = ["650 C", "800 C"], edge = "0 um" }`)...)
+	if err != nil {
+		t.Fatal(err)
+	}
+	const want = "Ti: start of core: solubility ti-quartz-zhang2020: used at 650 C, 50 C below its calibrated range of 700 to 900 C"
+	if !slices.Contains(s.Notes, want) {
+		t.Errorf("notes %q, want %q", s.Notes, want)
+	}
+	if all := s.Crystals[0].Elements[0].Solubilities(); len(all) != 1 || all[0].Row.Key != "ti-quartz-zhang2020" {
+		t.Errorf("relations %+v", all)
+	}
+}
+
+func TestWrongStarts(t *testing.T) {
+	for _, test := range []struct{ name, conditions, start, field, problem, remedy string }{
+		{"free melt", magmatic, `{ melt = ["free", "9 ppm"], temperature = ["760 C", "790 C"] }`, "melt", "cannot be free", "zones ="},
+		{"one melt", magmatic, `{ melt = "9 ppm", temperature = ["760 C", "790 C"] }`, "melt", "not a list", "one value a zone"},
+		{"one temperature", magmatic, `{ solubility = "ti-quartz-wark2006", temperature = ["760 C"] }`, "temperature", "1 value for 2 zones", "core, skin"},
+		{"bare temperature", magmatic, `{ solubility = "ti-quartz-wark2006", temperature = [760, "790 C"] }`, "temperature", "without a unit", "790 +- 10 C"},
+		{"no temperature of a rock", magmatic, `{ solubility = "ti-quartz-wark2006", temperature = ["-300 C", "790 C"] }`, "temperature", "absolute zero", "-273.15 C"},
+		{"unsure temperature", magmatic, `{ solubility = "ti-quartz-wark2006", temperature = ["760 +- 700 C", "790 C"] }`, "temperature", "its error is more", "check the unit"},
+		{"unknown solubility", magmatic, `{ solubility = "ti-quartz-wark2005", temperature = ["760 C", "790 C"] }`, "solubility", "no solubility relation", "ti-quartz-wark2006"},
+		{"no activity", `pressure = "2 kbar"`, `{ solubility = "ti-quartz-wark2006", temperature = ["760 C", "790 C"] }`, "solubility", "depends on aTiO2, not given", "aTiO2 = 0.6"},
+		{"unit of nothing", magmatic, `{ solubility = "ti-quartz-wark2006", temperature = ["760 C", "790 C"], unit = "ppm" }`, "unit", "no bare numbers", "leave it out"},
+		{"more than all", magmatic, `{ melt = ["2000 +- 1e5 wt%", "9 ppm"], temperature = ["760 C", "790 C"] }`, "melt", "more than all", "check the unit"},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			_, err := followingStudy(t, test.conditions, `{ held = "skin" }`, startOf(test.start)...)
+			got := problems(t, err)
+			if len(got) != 1 || got[0].Field != "crystal.element.start."+test.field || !strings.Contains(got[0].Problem, test.problem) || !strings.Contains(got[0].Remedy, test.remedy) {
 				t.Errorf("problems %v, want %q: %q, %q", err, test.field, test.problem, test.remedy)
 			}
 		})

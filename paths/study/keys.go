@@ -90,7 +90,7 @@ var tables = [...]Table{
 	lawOwnTable:     {"crystal.element.law.own", []string{"ln_slope", "at"}},
 	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "ratio", "normal", "times"}},
 	likeTable:       {"crystal.element.law like", []string{"like", "times"}},
-	startTable:      {"crystal.element.start", []string{"zones", "edge", "unit"}},
+	startTable:      {"crystal.element.start", []string{"zones", "melt", "solubility", "temperature", "edge", "unit"}},
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
 	givenTable:      {"crystal.element.rim given", []string{"given", "time", "temperature", "value", "counts", "unit", "from"}},
 	sealedTable:     {"crystal.element.rim sealed", []string{"sealed", "from"}},

@@ -268,8 +268,9 @@ type Plateau struct {
 
 // Start is an element's profile before diffusion.
 type Start struct {
-	Zones []Plateau // one a zone
-	Edge  Nuisance  // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
+	Zones      []Plateau   // one a zone
+	Edge       Nuisance    // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
+	Solubility *Solubility // that gives the zones; nil is none
 }
 
 // Rim says what holds at an end of the crystal from a moment on, until the

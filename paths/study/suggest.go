@@ -30,7 +30,7 @@ func later(field string) bool {
 	switch field {
 	case "family", "law.times",
 		"crystal.zones.added", "crystal.element.rivals",
-		"crystal.element.start.melt", "crystal.element.start.temperature", "crystal.element.start.scaled":
+		"crystal.element.start.scaled":
 		return true
 	}
 	return false
