@@ -96,6 +96,10 @@ func (d *decoder) inMelt(n, melt *node, temps []thermal.Uncertain, c *Crystal, e
 	}
 }
 
+// studySetting is the number of the setting that is [conditions], under which zones
+// grow.
+const studySetting = 1
+
 // saturated returns the plateau of each zone at saturation.
 func (d *decoder) saturated(n, key *node, temps []thermal.Uncertain, s *Start, c *Crystal, e *Element, u *units) func(zone int) Plateau {
 	if v := n.get("unit"); v != nil {
@@ -110,7 +114,7 @@ func (d *decoder) saturated(n, key *node, temps []thermal.Uncertain, s *Start, c
 		d.reportError(key, err)
 		return nil
 	}
-	s.Solubility = d.solubility(key, row, u)
+	s.Solubility = d.solubility(key, row, u, []int{studySetting})
 	if s.Solubility == nil {
 		return nil
 	}
@@ -120,7 +124,7 @@ func (d *decoder) saturated(n, key *node, temps []thermal.Uncertain, s *Start, c
 		if beyond := s.Solubility.beyond(t.Value, t.Value); beyond != "" {
 			d.noteOnce("%s: start of %s: %s", e.Name, c.Zones[i].Name, beyond)
 		}
-		x := s.Solubility.At(t.Value)
-		return Plateau{Value: x, Sigma: math.Abs(x * s.Solubility.Content.Slope(t.Value) * t.Sigma)}
+		x := s.Solubility.At(studySetting, t.Value)
+		return Plateau{Value: x, Sigma: math.Abs(x * s.Solubility.Contents[studySetting].Slope(t.Value) * t.Sigma)}
 	}
 }

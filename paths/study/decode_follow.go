@@ -28,7 +28,7 @@ func (d *decoder) following(n *node, r *Rim, u *units) {
 				d.report(w, key+" knows what the crystal takes up without it", "leave it out")
 			}
 		}
-		if s := d.solubility(v, row, u); s != nil {
+		if s := d.solubility(v, row, u, d.inUse()); s != nil {
 			r.Following = &Following{Solubility: s}
 		}
 		return
@@ -82,15 +82,15 @@ func (d *decoder) melt(n, melt *node, f *Following, u *units) {
 	f.Melt = value.Value
 }
 
-// solubility reads a relation of the catalogue under the conditions of the study,
-// in the unit of the element. It is nil if that fails.
-func (d *decoder) solubility(n *node, row *catalogue.Solubility, u *units) *Solubility {
+// solubility reads a relation of the catalogue under the conditions of settings, by
+// their numbers, in the unit of the element. It is nil if that fails.
+func (d *decoder) solubility(n *node, row *catalogue.Solubility, u *units, settings []int) *Solubility {
 	perPPM, ok := d.unitFactor(n, u, "ppm")
-	if !d.saturates(n, row) || !ok {
+	if !d.saturates(n, row, settings) || !ok {
 		return nil
 	}
 	s := &Solubility{Row: row, Contents: map[int]catalogue.Content{}, PerPPM: perPPM}
-	for _, i := range d.inUse() {
+	for _, i := range settings {
 		content, err := row.At(d.settings[i-1].Conditions.Given)
 		if err != nil {
 			d.reportError(n, err)
@@ -101,20 +101,20 @@ func (d *decoder) solubility(n *node, row *catalogue.Solubility, u *units) *Solu
 	return s
 }
 
-// saturates reports every condition of the relation that the study does not give,
+// saturates reports every condition of the relation that the settings do not give,
 // and notes a pressure for which it was not made.
-func (d *decoder) saturates(n *node, row *catalogue.Solubility) bool {
+func (d *decoder) saturates(n *node, row *catalogue.Solubility, settings []int) bool {
 	before := d.faults
 	for _, name := range row.Needs() {
 		d.used[name] = true
-		switch all, some := d.gives(name); {
+		switch all, some := d.give(settings, name); {
 		case some && !all:
 			d.lacks(name, row.Key)
 		case !all:
 			d.report(n, "depends on "+name+", not given in this study", "write [conditions] and below it "+name+" = "+conditionExample(name))
 		}
 	}
-	for _, i := range d.inUse() {
+	for _, i := range settings {
 		if p, given := d.settings[i-1].Conditions.Given[catalogue.Pressure]; given && row.PMax > 0 {
 			d.used[catalogue.Pressure] = true
 			d.notePressure(row, p)

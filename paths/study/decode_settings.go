@@ -93,9 +93,12 @@ func (d *decoder) inUse() []int {
 }
 
 // gives reports whether all legs, or some, have a condition of a law.
-func (d *decoder) gives(name string) (all, some bool) {
+func (d *decoder) gives(name string) (all, some bool) { return d.give(d.inUse(), name) }
+
+// give reports whether all settings, by their numbers, or some have a condition.
+func (d *decoder) give(settings []int, name string) (all, some bool) {
 	all = true
-	for _, i := range d.inUse() {
+	for _, i := range settings {
 		given := d.settings[i-1].Conditions.gives(name)
 		all, some = all && given, some || given
 	}
