@@ -24,8 +24,8 @@ func TestEveryKeyDirection(t *testing.T) {
 	if want := "olivine-ca-coogan2005-a + olivine-ca-coogan2005-b"; law.Key != want || law.Row != nil || !strings.Contains(law.Citation, "Coogan") {
 		t.Errorf("law %+v", law)
 	}
-	if got := law.Cautions(); !slices.Contains(got, "olivine-ca-coogan2005-b: the NNO buffer: "+catalogue.NotChecked) {
-		t.Errorf("cautions %q", got)
+	if got := law.Cautions(); !slices.Equal(got, []string{catalogue.NotChecked, "the NNO buffer: " + catalogue.NotChecked}) {
+		t.Errorf("cautions %q, want those of both laws once", got)
 	}
 }
 
@@ -50,6 +50,7 @@ D0 = "1e-8 m2/s"
 E = "250 kJ/mol"
 range = "700..1200 C"
 citation = "invented, 2"
+caution = "of one part"
 
 [[law]]
 name = "on host"
@@ -114,6 +115,9 @@ func TestDirection(t *testing.T) {
 			near(t, "upper end", law.TMax, test.hi)
 			if law.Key != test.key || law.Citation != test.citation || len(law.Parts) != test.parts {
 				t.Errorf("law %+v", law)
+			}
+			if one := slices.Contains(law.Cautions(), "wide: of one part"); one != (len(law.Parts) > 1 && strings.Contains(law.Key, "wide")) {
+				t.Errorf("cautions %q", law.Cautions())
 			}
 			if apart := slices.Contains(law.Cautions(), "its laws have no calibrated temperature in common"); apart != (test.name == "ranges apart") {
 				t.Errorf("cautions %q", law.Cautions())

@@ -203,19 +203,36 @@ func (l *Law) cautions(holds func(setting int) bool) []string {
 			}
 		}
 	}
-	for i := range l.Parts {
-		for _, caution := range l.Parts[i].Law.cautions(holds) {
-			if len(l.Parts) > 1 {
-				caution = l.Parts[i].Law.Key + ": " + caution
-			}
-			add(caution)
-		}
+	for _, caution := range l.partCautions(holds) {
+		add(caution)
 	}
 	if times := l.TimesText(); times != "" {
 		out = append(out, times)
 	}
 	if l.Caution != "" {
 		out = append(out, l.Caution)
+	}
+	return out
+}
+
+// partCautions are those of the parts, with the key of a part that has one which
+// others have not.
+func (l *Law) partCautions(holds func(setting int) bool) []string {
+	parts, having := make([][]string, len(l.Parts)), map[string]int{}
+	for i := range l.Parts {
+		parts[i] = l.Parts[i].Law.cautions(holds)
+		for _, caution := range parts[i] {
+			having[caution]++
+		}
+	}
+	var out []string
+	for i, list := range parts {
+		for _, caution := range list {
+			if having[caution] < len(parts) {
+				caution = l.Parts[i].Law.Key + ": " + caution
+			}
+			out = append(out, caution)
+		}
 	}
 	return out
 }
