@@ -71,7 +71,8 @@ func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bo
 	for left := w.extent; solves < mostNewton; {
 		solves++
 		u := f.driving(op, c)
-		w.look(own, op, c, u)
+		w.confine(op, c, u)
+		p.own.look(w.factor, c)
 		w.crossBridges(own, op, u)
 		w.open(own, &in, &out, c, anew)
 		if anew {
@@ -166,32 +167,22 @@ func leastMost(lo, hi, value float64) (float64, float64) {
 	return lo, hi
 }
 
-// look takes D's factor in the state c of potential u.
-func (w *newton) look(own func(float64) float64, op *operator, c, u []float64) {
-	factor, lo, hi := w.factor[:len(c)], w.lo, w.hi
-	u = u[:len(c)]
-	for i, v := range c {
-		if !(u[i] >= lo && u[i] <= hi) {
-			v = w.confine(op, c, u, i)
+// confine brings the state c, of potential u, back to where it must lie, from
+// where an iteration has left it. So none runs away, and what the last one found
+// stays as it is.
+func (w *newton) confine(op *operator, c, u []float64) {
+	lo, hi := w.lo, w.hi
+	for i, v := range u {
+		if v >= lo && v <= hi {
+			continue
 		}
-		if v < 0 {
-			v = 0
+		v = min(max(v, lo), hi)
+		u[i], c[i] = v, v
+		if op.k != nil {
+			c[i] = v * op.k[i]
 		}
-		factor[i] = own(v)
+		w.change[i] = c[i] - w.before[i]
 	}
-}
-
-// confine brings cell i of the state c, of potential u, back to where it must lie,
-// from where an iteration has left it, and returns its value. So none runs away, and
-// what the last one found stays as it is.
-func (w *newton) confine(op *operator, c, u []float64, i int) float64 {
-	u[i] = min(max(u[i], w.lo), w.hi)
-	c[i] = u[i]
-	if op.k != nil {
-		c[i] = u[i] * op.k[i]
-	}
-	w.change[i] = c[i] - w.before[i]
-	return c[i]
 }
 
 // slopes fills in by how much the fluxes through the faces inside change with u.

@@ -30,6 +30,7 @@ type Plan struct {
 	host    *hostGrid   // nil without coupling
 	starts  [][]float64 // cell means: the answer, then one column per free value
 	opened  book        // of the answer, before any step
+	own     *ownTable   // nil where D does not follow the element
 	steps   schedule    // between two events
 	events  []float64   // s, ascending: times after 0 at which the solution is damped anew
 	halved  *Plan       // on half the cells; nil in a halved plan itself
@@ -87,6 +88,9 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 		}
 	}
 	plan.opened = plan.openBook()
+	if p.Own != nil {
+		plan.own = p.layOwn(plan.starts[0])
+	}
 	return plan, nil
 }
 

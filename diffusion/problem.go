@@ -178,6 +178,16 @@ func (p *Problem) checkOwn() error {
 	if p.Own == nil {
 		return nil
 	}
+	for _, v := range p.statedValues() {
+		if f := p.own(v); !(f >= 0) || math.IsInf(f, 0) {
+			return fmt.Errorf("diffusion: D is multiplied by %g where the element is at %g", f, v)
+		}
+	}
+	return nil
+}
+
+// statedValues returns the values that the crystal starts with or a rim holds.
+func (p *Problem) statedValues() []float64 {
 	var stated []float64
 	for _, z := range p.Zones {
 		stated = append(stated, z.Start)
@@ -187,12 +197,7 @@ func (p *Problem) checkOwn() error {
 			stated = append(stated, r.Value)
 		}
 	}
-	for _, v := range stated {
-		if f := p.own(v); !(f >= 0) || math.IsInf(f, 0) {
-			return fmt.Errorf("diffusion: D is multiplied by %g where the element is at %g", f, v)
-		}
-	}
-	return nil
+	return stated
 }
 
 func (p *Problem) checkFree() error {
