@@ -106,10 +106,10 @@ func writePathsRead(w io.Writer, s *study.Study) error {
 // the folder of the study.
 func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 	var zones []string
-	for _, z := range c.Zones {
+	for i, z := range c.Zones {
 		zone := z.Name + " " + micrometres(z.Width)
 		if c.Hosted {
-			zone += fmt.Sprintf(" in host %g", z.Host)
+			zone += " in host " + c.HostText(i)
 		}
 		zones = append(zones, zone)
 	}

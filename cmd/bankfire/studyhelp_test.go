@@ -166,6 +166,7 @@ func lines(text string) []string { return strings.Split(strings.TrimSpace(text),
 func frames() []frame {
 	const limit = "[limits]\n%s = %s\n\n[[threshold]]"
 	law := []string{`D0 = "7e-8 m2/s"`, `E = "273 kJ/mol"`}
+	host := []string{`file = "an.csv"`, `position = "distance [um]"`, `zero = "rim"`, `value = "XAn [mole fraction]"`, `smooth = "steps"`}
 	leg := func(kind string, keys ...string) frame {
 		return frame{"path.legs " + kind, shownLegs, `[ { hold = "690 C", for = "800 yr" }, %s ]`, true, keys}
 	}
@@ -198,8 +199,9 @@ func frames() []frame {
 		leg("repeat", `repeat = 2`, `legs = [ { hold = "700 C", for = "1 yr" } ]`),
 		{"crystal", shownCrystal, "%s\n", false, lines(shownCrystal)},
 		{"crystal.zones", shownZones, "%s", true, []string{`name = "core"`, `width = "140 um"`}},
-		{"crystal.host", "shape = \"slab\"\n", "shape = \"slab\"\nhost = %s\n", true,
-			[]string{`file = "an.csv"`, `position = "distance [um]"`, `zero = "rim"`, `value = "XAn [mole fraction]"`, `smooth = "steps"`}},
+		{"crystal.host", "shape = \"slab\"\n", "shape = \"slab\"\nhost = %s\n", true, host},
+		{"crystal.host.error", "shape = \"slab\"\n", "shape = \"slab\"\nhost = { " + strings.Join(host, ", ") + ", error = %s }\n", true,
+			[]string{`column = "1s [mole fraction]"`, `sigmas = 1`}},
 		{"crystal.inner", "shape = \"slab\"\n", "shape = \"slab\"\ninner = %s\n", true, nil},
 		{"crystal.element", shownElement, "%s\n", false, lines(shownElement)},
 		{"crystal.element.law", shownLaw, "law = %s", true, law},
@@ -234,6 +236,8 @@ var beside = map[string][]string{
 	"crystal.element.rim following value":       {"melt", `melt = "sr-melt.csv"`, "temperature", `temperature = "T [C]"`},
 	"crystal.host unit":                         {"value", `value = "bare"`},
 	"crystal.element.traverse.error size":       {"column", "", "sigmas", ""},
+	"crystal.host width":                        {"smooth", `smooth = "spline"`},
+	"crystal.host.error size":                   {"column", "", "sigmas", ""},
 }
 
 // onHost are keys for which the crystal needs a host in every zone.
@@ -301,7 +305,7 @@ func TestStudyHelpEntries(t *testing.T) {
 	writeFile(t, folder, "tt.csv", "t [yr],T [C]\n90,690\n50,750\n0,700\n")
 	writeFile(t, folder, "rim.csv", "t [yr],Ti [ppm],T [C]\n0,60,600\n1e5,70,900\n")
 	writeFile(t, folder, "sr-melt.csv", "T [C],Sr [ppm]\n900,60\n600,70\n")
-	writeFile(t, folder, "an.csv", "distance [um],XAn [mole fraction],bare\n50,0.4,0.4\n90,0.5,0.5\n")
+	writeFile(t, folder, "an.csv", "distance [um],XAn [mole fraction],bare,1s [mole fraction]\n40,0.4,0.4,0.01\n50,0.4,0.4,0.01\n70,0.5,0.5,0.01\n90,0.5,0.5,0.01\n")
 	found := entries(studyHelp)
 	for _, f := range frames() {
 		if strings.Count(sound, f.old) != 1 {

@@ -57,7 +57,7 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	inner := d.inner(n.get("inner"), &c)
 	d.hostFile(n.get("host"), &c)
 	d.elements(n, &c, inner)
-	d.noteHost(&c)
+	d.noteHost(&c, n.get("host") != nil)
 	return c
 }
 

@@ -31,8 +31,8 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	}
 	e.Unit = u.unit
 	e.Law = d.law(d.need(n, "law", `write a key of the catalogue, such as law = "quartz-ti-cherniak2007"`), c, &e)
-	d.followers(e.Inner, min(0, len(c.Zones)-1), c, &e)
-	d.followers(e.Rims, len(c.Zones)-1, c, &e)
+	d.followers(e.Inner, c.R0, c, &e)
+	d.followers(e.Rims, c.Size(), c, &e)
 	d.assumed(n, c, &e)
 	d.nonlinear(n, c, &e)
 	return e

@@ -146,13 +146,13 @@ func kilobars(p float64) string { return fmt.Sprintf("%.4g kbar", p/kilobar) }
 
 const kilobar = 1e3 * thermal.Bar
 
-// followers gives the rims at an end that follow a relation the host of the zone
-// there, and checks that it fits the element.
-func (d *decoder) followers(rims []Rim, zone int, c *Crystal, e *Element) {
+// followers gives the rims at r that follow a relation the host there, and checks
+// that it fits the element.
+func (d *decoder) followers(rims []Rim, r float64, c *Crystal, e *Element) {
 	for i := range rims {
 		f, at := rims[i].Following, rims[i].Place
 		switch {
-		case f == nil || zone < 0:
+		case f == nil || len(c.Zones) == 0:
 			continue
 		case f.Partition != nil && !c.Hosted:
 			d.add(at.Error("", "a rim that follows a partition relation needs the host's composition", hostRemedy))
@@ -162,7 +162,7 @@ func (d *decoder) followers(rims []Rim, zone int, c *Crystal, e *Element) {
 			d.add(at.Error("", "D depends on "+e.Name+" itself, so that its rim must be known without a path", `write held = "90 ppm", or given = "rim.csv" against time`))
 		}
 		if f.Partition != nil {
-			f.Host = c.Zones[zone].Host
+			f.Host = c.HostAt(r)
 			d.notePartition(f.Partition, c, e)
 		}
 		if f.Solubility != nil {
@@ -201,9 +201,10 @@ func (f *Following) related() bool { return f.Partition != nil || f.Solubility !
 
 // follow gives dst what a rim follows: exp(a - b/T) if it is of that form, else a
 // function of time. It must be known at all temperatures between the times from and
-// until, s.
-func (b *builder) follow(dst *diffusion.Rim, r *Rim, from, until float64) error {
-	f := r.Following
+// until, s. The host is that at the rim, which may be redrawn.
+func (b *builder) follow(dst *diffusion.Rim, r *Rim, host, from, until float64) error {
+	f := *r.Following
+	f.Host = host
 	lo, hi := b.h.RangeIn(from, until)
 	if f.Table != nil {
 		if err := f.Table.covers(lo, hi); err != nil {

@@ -2,6 +2,7 @@ package study
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 )
 
@@ -73,15 +74,17 @@ func (d *decoder) lawHost(n *node, kind tableKind, law *Law) {
 	}
 }
 
-// noteHost notes a host that changes nothing.
-func (d *decoder) noteHost(c *Crystal) {
+// noteHost notes a host that changes nothing, and one that was measured without an
+// error.
+func (d *decoder) noteHost(c *Crystal, measured bool) {
 	if !c.Hosted {
 		return
 	}
-	for i := range c.Elements {
-		if e := &c.Elements[i]; e.Partitions() != nil || e.Law.HostSlope != 0 {
-			return
+	if slices.ContainsFunc(c.Elements, func(e Element) bool { return e.OnHost() }) {
+		if measured && !c.hostUncertain() {
+			d.note("%s: no error of its host is stated, so it is taken to be exact", c.Name)
 		}
+		return
 	}
 	d.note("%s: its host changes nothing: no element has a partition relation or a law that depends on it", c.Name)
 }

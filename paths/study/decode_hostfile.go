@@ -2,15 +2,15 @@ package study
 
 import (
 	"fmt"
+	"math"
 	"slices"
 
 	"bankfire/paths/traverse"
-	"bankfire/thermal"
 )
 
 // hostFile reads the host of a crystal from a measured profile, smoothed into one
-// step a zone: the median of the points in it, which a point that straddles a
-// boundary does not move.
+// step a zone, the median of the points in it, which a point that straddles a
+// boundary does not move; or by a spline.
 func (d *decoder) hostFile(n *node, c *Crystal) {
 	const example = `write host = { file = "an.csv", position = "distance [um]", zero = "rim", value = "XAn [mole fraction]", smooth = "steps" }`
 	if !d.is(n, tableNode, example) {
@@ -23,39 +23,43 @@ func (d *decoder) hostFile(n *node, c *Crystal) {
 	}
 	c.Hosted = true
 	before := d.faults
-	d.steps(d.need(n, "smooth", `write smooth = "steps": one host a zone, the median of the points in it`))
-	position, _ := d.text(d.need(n, "position", example), `name the column of positions, such as "distance [um]"`)
-	value := d.valueColumn(n, example)
-	zero := d.zero(d.need(n, "zero", `say where positions count from: zero = "rim" or zero = "centre"`))
+	smooth := d.smoothing(n)
+	o := traverse.Options{Size: c.Size(), Unstated: n.get("error") == nil}
+	o.Position, _ = d.text(d.need(n, "position", example), `name the column of positions, such as "distance [um]"`)
+	o.Value = d.valueColumn(n, example)
+	o.Zero = d.zero(d.need(n, "zero", `say where positions count from: zero = "rim" or zero = "centre"`))
+	o.Errors = d.errors(n.get("error"), hostErrorTable)
 	file := d.need(n, "file", `name the file, such as file = "an.csv"`)
 	if d.faults > before || !c.sized() {
 		return
 	}
-	t, label := d.columns(file, traverse.Column{Header: position, Dim: thermal.Length}, traverse.Column{Header: value, Dim: thermal.Concentration})
-	if t == nil {
-		return
-	}
-	scale, ok := hostScale(t.Units[1])
-	if !ok {
-		d.report(n.get("value"), fmt.Sprintf("in %s, but a host is a mole fraction", t.Units[1]), "want mole fraction, mol% or An")
-		return
-	}
-	points, ok := d.hostPoints(t, label, zero, scale, c)
-	if ok {
-		d.setHosts(file, points, c)
+	t, ok := d.hostPoints(n, file, o, c)
+	switch {
+	case !ok:
+	case smooth > 0:
+		d.spline(n, t, smooth, c)
+	default:
+		d.steps(file, t, c)
 	}
 }
 
-func (d *decoder) steps(n *node) {
-	const remedy = `write smooth = "steps": one host a zone, the median of the points in it`
-	text, ok := d.text(n, remedy)
+// smoothing reads how a host is smoothed: the width of a spline, m; 0 is steps.
+func (d *decoder) smoothing(n *node) (spline float64) {
+	const remedy = `write smooth = "steps": one host a zone, the median of the points in it; or smooth = "spline" and a width`
+	smooth := d.need(n, "smooth", remedy)
+	text, ok := d.text(smooth, remedy)
 	switch {
-	case !ok || text == "steps":
+	case !ok:
 	case text == "spline":
-		d.report(n, "a spline is not known in this version", remedy)
-	default:
-		d.reportWord(n, "no way to smooth a host", []string{"steps"}, remedy)
+		const example = `write what the spline averages over, such as width = "8 um"`
+		w := d.need(n, "width", example)
+		spline, _ = d.quantity(w, width)
+	case text != "steps":
+		d.reportWord(smooth, "no way to smooth a host", []string{"steps", "spline"}, remedy)
+	case n.get("width") != nil:
+		d.report(n.get("width"), "steps have no width", `leave it out, or write smooth = "spline"`)
 	}
+	return spline
 }
 
 // hostScale turns a host in a unit into a mole fraction.
@@ -69,44 +73,116 @@ func hostScale(unit string) (scale float64, ok bool) {
 	return 0, false
 }
 
-// hostPoints sorts the points of a host into the zones.
-func (d *decoder) hostPoints(t *traverse.Table, label string, zero traverse.Zero, scale float64, c *Crystal) (points [][]float64, ok bool) {
-	points = make([][]float64, len(c.Zones))
-	slack := positionSlack * c.Size()
-	for i, r := range t.Columns[0] {
-		if zero == traverse.Rim {
-			r = c.Size() - r
+// hostPoints reads the points of a host, from the inside outwards and in mole
+// fractions.
+func (d *decoder) hostPoints(n, file *node, o traverse.Options, c *Crystal) (t *traverse.Traverse, ok bool) {
+	label, r, ok := d.dataFile(file)
+	if !ok {
+		return nil, false
+	}
+	t, err := traverse.Read(label, r, o)
+	if err != nil {
+		d.unread(n, err)
+		return nil, false
+	}
+	d.notes = append(d.notes, d.named(file, label, t.Notes)...)
+	scale, ok := hostScale(t.Unit)
+	if !ok {
+		d.report(n.get("value"), fmt.Sprintf("in %s, but a host is a mole fraction", t.Unit), "want mole fraction, mol% or An")
+		return nil, false
+	}
+	for i, r := range t.Position {
+		t.Value[i] *= scale
+		if t.Sigma != nil {
+			t.Sigma[i] *= scale
 		}
-		x := scale * t.Columns[1][i]
-		switch {
-		case r < c.R0-slack || r > c.Size()+slack:
+		switch x := t.Value[i]; {
+		case r < c.R0-positionSlack*c.Size():
 			d.row(label, t.Line[i], "position", "outside the crystal", "check the widths of the zones, and where positions count from")
 			return nil, false
 		case !(x >= 0 && x <= 1):
 			d.row(label, t.Line[i], "value", fmt.Sprintf("%.4g is no mole fraction", x), "check the unit")
 			return nil, false
 		}
-		outer, zone := c.R0, 0
-		for zone = range c.Zones {
-			if outer += c.Zones[zone].Width; r < outer {
-				break
-			}
-		}
-		points[zone] = append(points[zone], x)
 	}
-	return points, true
+	if last := len(t.Position) - 1; t.Position[0] > t.Position[last] {
+		slices.Reverse(t.Position)
+		slices.Reverse(t.Value)
+		slices.Reverse(t.Sigma)
+	}
+	return t, true
 }
 
-// setHosts gives each zone the median of its points and notes it.
-func (d *decoder) setHosts(file *node, points [][]float64, c *Crystal) {
+// steps gives each zone the median of its points and notes it.
+func (d *decoder) steps(file *node, t *traverse.Traverse, c *Crystal) {
+	next, outer := 0, c.R0
 	for i := range c.Zones {
-		z, in := &c.Zones[i], points[i]
+		z := &c.Zones[i]
+		from := next
+		for outer += z.Width; next < len(t.Position) && (t.Position[next] < outer || i == len(c.Zones)-1); {
+			next++
+		}
+		in := slices.Sorted(slices.Values(t.Value[from:next]))
 		if len(in) == 0 {
 			d.report(file, fmt.Sprintf("no point of the host lies in zone %s", z.Name), "give the host of each zone by hand: host = 0.55")
 			continue
 		}
-		slices.Sort(in)
 		z.Host = (in[(len(in)-1)/2] + in[len(in)/2]) / 2
-		d.note("%s: host of zone %s is %.4g, the median of %s from %.4g to %.4g", c.Name, z.Name, z.Host, count(len(in), "point"), in[0], in[len(in)-1])
+		text := fmt.Sprintf("%s: host of zone %s is %.4g, the median of %s from %.4g to %.4g", c.Name, z.Name, z.Host, count(len(in), "point"), in[0], in[len(in)-1])
+		if t.Sigma != nil {
+			z.HostSigma = medianSigma(t.Sigma[from:next])
+			text += fmt.Sprintf(", with an error of %.2g", z.HostSigma)
+		}
+		d.note("%s", text)
+	}
+}
+
+// medianSigma returns the standard deviation of the median of values with the given
+// ones: that of their mean, times sqrt(pi/2) from three on, which is the limit for
+// many values with normal errors and 8 % too much for three.
+func medianSigma(sigma []float64) float64 {
+	sum := 0.0
+	for _, s := range sigma {
+		sum += s * s
+	}
+	ofMean := math.Sqrt(sum) / float64(len(sigma))
+	if len(sigma) < 3 {
+		return ofMean
+	}
+	return math.Sqrt(math.Pi/2) * ofMean
+}
+
+const (
+	fewestInSpline = 4
+	mostInSpline   = 2000
+	// perWidth is how many points a spline of a width should average over: fewer, and
+	// it follows their noise.
+	perWidth = 3
+)
+
+// spline gives the crystal the smoothed profile, and notes what it cannot know.
+func (d *decoder) spline(n *node, t *traverse.Traverse, width float64, c *Crystal) {
+	count, first, last := len(t.Position), t.Position[0], t.Position[len(t.Position)-1]
+	if count < fewestInSpline || count > mostInSpline {
+		d.report(n.get("file"), fmt.Sprintf("%d points, and a spline is made of %d to %d", count, fewestInSpline, mostInSpline), `write smooth = "steps", or choose other points`)
+		return
+	}
+	if width > last-first {
+		d.report(n.get("width"), fmt.Sprintf("wider than the traverse, which is %.4g um long", (last-first)*1e6), "choose a width between the spacing of the points and the zones")
+		return
+	}
+	c.Host = NewHost(t.Position, t.Value, t.Sigma, width)
+	least, most := c.Host.spline.Range(c.R0, c.Size())
+	d.note("%s: host from %.4g to %.4g, a spline through %d points that averages over %.4g um, also across the boundaries of zones", c.Name, least, most, count, width*1e6)
+	if spacing := (last - first) / float64(count-1); width < perWidth*spacing {
+		d.note("%s: the width of its host, %.4g um, holds few points %.3g um apart, so that their noise may show as drift", c.Name, width*1e6, spacing*1e6)
+	}
+	for _, gap := range []struct {
+		where string
+		size  float64
+	}{{"innermost", first - c.R0}, {"outermost", c.Size() - last}} {
+		if gap.size > width/2 {
+			d.note("%s: its host is not measured over the %s %.4g um, where it is taken to stay as it is at the last point", c.Name, gap.where, gap.size*1e6)
+		}
 	}
 }

@@ -133,10 +133,11 @@ func (d *decoder) notePartition(p *Partition, c *Crystal, e *Element) {
 	if otherThan(p.Row.Mineral, c) {
 		d.note("%s: partition %s is for %s, but the crystal %s is %s: is it the right one?", e.Name, p.Key, p.Row.Mineral, c.Name, c.Mineral)
 	}
-	for _, z := range c.Zones {
-		if p.Row.RangeKnown() && (z.Host < p.Row.XMin || z.Host > p.Row.XMax) {
-			d.note("%s: partition %s was calibrated for %s %g to %g, but zone %s has %g",
-				e.Name, p.Key, p.Row.Host, p.Row.XMin, p.Row.XMax, z.Name, z.Host)
+	for i, z := range c.Zones {
+		least, most := c.HostRange(i)
+		if p.Row.RangeKnown() && (least < p.Row.XMin || most > p.Row.XMax) {
+			d.note("%s: partition %s was calibrated for %s %g to %g, but zone %s has %s",
+				e.Name, p.Key, p.Row.Host, p.Row.XMin, p.Row.XMax, z.Name, c.HostText(i))
 		}
 	}
 }

@@ -65,7 +65,7 @@ func (d *decoder) options(n *node, c *Crystal) traverse.Options {
 	o.Position, _ = d.text(d.need(n, "position", `name the column of positions, such as position = "distance [um]"`), "name the column of positions")
 	o.Value = d.valueColumn(n, `name the column of values, such as value = "Ti [ppm]"`)
 	o.Zero = d.zero(d.need(n, "zero", `say where positions count from: zero = "rim" or zero = "centre"`))
-	o.Errors = d.errors(d.need(n, "error", `write one standard deviation: error = "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`))
+	o.Errors = d.errors(d.need(n, "error", `write one standard deviation: error = "4 %", "1.5 ppm" or { column = "2se [ppm]", sigmas = 2 }`), errorTable)
 	o.Spot = d.spot(d.need(n, "spot", `write what one analysis averages over: spot = "0.8 um fwhm", "15 um top-hat" or "point"`))
 	o.Below = d.below(n.get("below"))
 	if v := n.get("window"); v != nil {
@@ -249,7 +249,7 @@ func (d *decoder) window(n *node) (lo, hi float64) {
 
 // errors reads what one standard deviation of the values is: a text, or a
 // table of a column or a size, with or without a floor.
-func (d *decoder) errors(n *node) traverse.Errors {
+func (d *decoder) errors(n *node, kind tableKind) traverse.Errors {
 	const remedy = `write error = "4 %", "1.5 ppm", { column = "2se [ppm]", sigmas = 2 } or { size = "4 %", floor = "0.5 ppm" }`
 	switch {
 	case n == nil:
@@ -258,7 +258,7 @@ func (d *decoder) errors(n *node) traverse.Errors {
 		d.report(n, "a number without a unit", remedy)
 		return traverse.Errors{}
 	case n.kind == tableNode:
-		return d.errorTable(n, remedy)
+		return d.errorTable(n, kind, remedy)
 	}
 	return d.errorText(n, remedy)
 }
@@ -275,8 +275,8 @@ func (d *decoder) errorText(n *node, remedy string) traverse.Errors {
 	return e
 }
 
-func (d *decoder) errorTable(n *node, remedy string) traverse.Errors {
-	d.keys(n, errorTable)
+func (d *decoder) errorTable(n *node, kind tableKind, remedy string) traverse.Errors {
+	d.keys(n, kind)
 	var e traverse.Errors
 	column, size := n.get("column"), n.get("size")
 	switch {

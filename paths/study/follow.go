@@ -10,7 +10,7 @@ import (
 )
 
 // Following is a rim in equilibrium with what is outside at every temperature: K of
-// a Partition in the Host of the zone at the rim times what the melt has; or what a
+// a Partition in the Host at the rim times what the melt has; or what a
 // Solubility gives; or, without either, what the Table says.
 type Following struct {
 	Partition  *Partition // nil is none

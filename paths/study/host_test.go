@@ -188,7 +188,14 @@ func TestWrongHosts(t *testing.T) {
 		{"host of a zone from a file", zones, hosts(`@{ file = "an.csv" }`), "", "crystal.zones.host", "a table, not the host of one zone", "once for the crystal"},
 		{"host in two ways", "shape = \"slab\"\nzones = [\n  " + zones, "shape = \"slab\"\nhost = " + hostFile("@", "", "") + "\nzones = [\n" + hosts("0.5"), "", "crystal.host", "have a host already", "one way"},
 		{"host not smoothed", slab, slab + "\nhost = @" + strings.Replace(hostFile("", "", ""), `, smooth = "steps"`, "", 1), "", "crystal.host.smooth", "missing", "steps"},
-		{"host by a spline", slab, slab + "\nhost = " + hostFile("", `"steps"`, `@"spline"`), "", "crystal.host.smooth", "a spline is not known", "steps"},
+		{"host by a spline of no width", slab, slab + "\nhost = @" + hostFile("", `"steps"`, `"spline"`), "", "crystal.host.width", "missing", "8 um"},
+		{"host by a spline of a bare width", slab, slab + "\nhost = " + hostFile("", `"steps"`, `"spline", width = @8`), "", "crystal.host.width", "without a unit", "in quotes"},
+		{"host by a spline wider than all", slab, slab + "\nhost = " + hostFile("", `"steps"`, `"spline", width = @"120 um"`), "", "crystal.host.width", "wider than the traverse, which is 98 um long", "spacing"},
+		{"host by a spline through few points", slab, slab + "\nhost = " + hostFile("", `"an.csv"`, `@"few.csv", width = "8 um"`, `"steps"`, `"spline"`), "", "crystal.host.file", "2 points", "steps"},
+		{"host in steps of a width", slab, slab + "\nhost = " + hostFile("", `"steps"`, `"steps", width = @"8 um"`), "", "crystal.host.width", "steps have no width", "spline"},
+		{"host with a bare error", slab, slab + "\nhost = " + hostFile("", `"steps"`, `"steps", error = @0.01`), "", "crystal.host.error", "without a unit", ""},
+		{"host with an error mistyped", slab, slab + "\nhost = " + hostFile("", `"steps"`, `"steps", error = { @colum = "s", size = "2 %" }`), "", "crystal.host.error.colum", "unknown key", `did you mean "column"?`},
+		{"host with an error of ppm", slab, slab + "\nhost = " + hostFile("", `"steps"`, `"steps", error = @"2 ppm"`), "", "crystal.host.error", "does not convert", "unit of the values"},
 		{"host smoothed otherwise", slab, slab + "\nhost = " + hostFile("", `"steps"`, `@"step"`), "", "crystal.host.smooth", "no way to smooth", `did you mean "steps"?`},
 		{"host in weight", slab, slab + "\nhost = " + hostFile("", `"XAn [mole fraction]"`, `@"An wt [wt%]"`), "", "crystal.host.value", "a host is a mole fraction", "mol%"},
 		{"host of no file", slab, slab + "\nhost = " + hostFile("", `"an.csv"`, `@"none.csv"`), "", "crystal.host.file", "no such file", ""},
@@ -220,10 +227,10 @@ func TestWrongHosts(t *testing.T) {
 	}
 }
 
-// hostFile is a host from a file with a mark before it and one thing changed.
-func hostFile(mark, old, new string) string {
+// hostFile is a host from a file with a mark before it and some things changed.
+func hostFile(mark string, oldnew ...string) string {
 	const sound = `{ file = "an.csv", position = "x [um]", zero = "rim", value = "XAn [mole fraction]", smooth = "steps" }`
-	return mark + strings.Replace(sound, old, new, 1)
+	return mark + strings.NewReplacer(oldnew...).Replace(sound)
 }
 
 // TestHostFile: each zone has the median of the points in it, counted from either

@@ -46,6 +46,7 @@ const (
 	crystalTable
 	zoneTable
 	hostTable
+	hostErrorTable
 	innerTable
 	elementTable
 	lawTable
@@ -82,7 +83,8 @@ var tables = [...]Table{
 	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
 	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
-	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth"}},
+	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth", "width", "error"}},
+	hostErrorTable:  {"crystal.host.error", errorKeys()},
 	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
 	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "own", "times", "sigma", "range", "citation", "caution"}},
@@ -99,5 +101,7 @@ var tables = [...]Table{
 	rateTable:       {"crystal.element.rim.k", []string{"k0", "E"}},
 	traverseTable: {"crystal.element.traverse", []string{"file", "position", "zero", "origin", "tilt", "value", "unit", "error",
 		"scatter", "overlap", "below", "spot", "window", "skip"}},
-	errorTable: {"crystal.element.traverse.error", []string{"column", "sigmas", "analyses", "size", "floor"}},
+	errorTable: {"crystal.element.traverse.error", errorKeys()},
 }
+
+func errorKeys() []string { return []string{"column", "sigmas", "analyses", "size", "floor"} }

@@ -29,15 +29,18 @@ import (
 // the time it is in force.
 func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, []FreeValue, error) {
 	b := builder{c: c, e: e, h: h}
-	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law, Own: e.Law.own()}
+	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law, Spread: c.Spread(e), Own: e.Law.own()}
+	if c.Host != nil {
+		out.Host = c.Host.At
+	}
 	if e.Partition != nil {
 		out.LnK = e.Partition.LnK
 	}
 	var err error
-	if out.Inner, err = b.rims(e.Inner); err != nil {
+	if out.Inner, err = b.rims(e.Inner, c.R0); err != nil {
 		return nil, nil, err
 	}
-	if out.Outer, err = b.rims(e.Rims); err != nil {
+	if out.Outer, err = b.rims(e.Rims, c.Size()); err != nil {
 		return nil, nil, err
 	}
 	b.zoneValues()
@@ -50,10 +53,10 @@ func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, [
 // holds reports, as Problem does, the rim that cannot be placed on the path.
 func (c *Crystal) holds(e *Element, h *thermal.History) error {
 	b := builder{c: c, e: e, h: h}
-	if _, err := b.rims(e.Inner); err != nil {
+	if _, err := b.rims(e.Inner, c.R0); err != nil {
 		return err
 	}
-	_, err := b.rims(e.Rims)
+	_, err := b.rims(e.Rims, c.Size())
 	return err
 }
 
@@ -142,28 +145,28 @@ func (b *builder) rimValues(name string, rims []Rim, end func(*diffusion.Basis) 
 	}
 }
 
-// rims resolves the moments of one end on the path.
-func (b *builder) rims(list []Rim) ([]diffusion.Rim, error) {
+// rims resolves the moments of the end at r on the path.
+func (b *builder) rims(list []Rim, r float64) ([]diffusion.Rim, error) {
 	var out []diffusion.Rim
 	for i := range list {
-		r := &list[i]
-		from, err := r.from(b.h)
+		rim := &list[i]
+		from, err := rim.from(b.h)
 		if err != nil {
 			return nil, err
 		}
 		if i > 0 && !(from > out[i-1].From) {
-			return nil, r.Place.Error(r.From.Text, "does not come after the rim before it", "list rims in the order of time")
+			return nil, rim.Place.Error(rim.From.Text, "does not come after the rim before it", "list rims in the order of time")
 		}
-		out = append(out, diffusion.Rim{Kind: r.Kind, From: from, Value: b.value(r), Rate: r.Rate})
+		out = append(out, diffusion.Rim{Kind: rim.Kind, From: from, Value: b.value(rim), Rate: rim.Rate})
 	}
 	for i := range list {
 		from, until, err := inForce(list, i, b.h)
-		switch r := &list[i]; {
+		switch rim := &list[i]; {
 		case err != nil:
-		case r.Following != nil:
-			err = b.follow(&out[i], r, from, until)
-		case r.Given != nil:
-			out[i].Given, err = b.given(r.Given, from, until)
+		case rim.Following != nil:
+			err = b.follow(&out[i], rim, b.c.HostAt(r), from, until)
+		case rim.Given != nil:
+			out[i].Given, err = b.given(rim.Given, from, until)
 		}
 		if err != nil {
 			return nil, err

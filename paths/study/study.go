@@ -85,7 +85,8 @@ type Crystal struct {
 	Shape         diffusion.Shape
 	R0            float64   // inner radius, m; 0 is the centre
 	Zones         []Zone    // at least one, from the inside outwards
-	Hosted        bool      // every zone has a Host
+	Hosted        bool      // every zone has a Host, or the crystal has
+	Host          *Host     // a smoothed profile of the host; nil is one value a zone
 	Elements      []Element // at least one
 	Place         thermal.Place
 }
@@ -96,7 +97,9 @@ type Zone struct {
 	Name  string
 	Width float64 // m, above 0
 	Times float64 // factor on D, above 0; 1 where the study says nothing
-	Host  float64 // composition of the host, a mole fraction, if the crystal is Hosted
+	Host  float64 // composition of the host, a mole fraction, if the crystal is Hosted; 0 where it has a Host of its own
+	// HostSigma is the standard deviation of Host; 0 if the study states none.
+	HostSigma float64
 }
 
 // Element is one element of a crystal: how it moves, what it started from,
@@ -337,13 +340,26 @@ func (c *Crystal) Size() float64 {
 // symmetry for the element, so that what lies beyond it is its mirror image.
 func (c *Crystal) Mirrored(e *Element) bool { return c.R0 == 0 && e.Inner == nil }
 
-// Factor is the factor on D of the element's law in zone i.
+// Factor is the factor on D of the element's law in zone i. What a smoothed host
+// adds, Spread has.
 func (c *Crystal) Factor(e *Element, i int) float64 {
 	z := &c.Zones[i]
-	if e.Law.HostSlope == 0 {
+	if e.Law.HostSlope == 0 || c.Host != nil {
 		return z.Times
 	}
-	return z.Times * math.Exp(e.Law.HostSlope*(z.Host-e.Law.HostAt))
+	return z.Times * e.Law.onHost(z.Host)
+}
+
+// onHost is the factor on D in a host of composition x.
+func (l *Law) onHost(x float64) float64 { return math.Exp(l.HostSlope * (x - l.HostAt)) }
+
+// Spread returns the factor that a smoothed host adds to D, as a function of the
+// distance from the centre, m; nil is 1.
+func (c *Crystal) Spread(e *Element) func(r float64) float64 {
+	if e.Law.HostSlope == 0 || c.Host == nil {
+		return nil
+	}
+	return func(r float64) float64 { return e.Law.onHost(c.Host.At(r)) }
 }
 
 // Factors are the least and the largest Factor of all zones, times that which the
@@ -352,7 +368,12 @@ func (c *Crystal) Factors(e *Element) (least, most float64) {
 	least, most = math.Inf(1), 0
 	for i := range c.Zones {
 		f := c.Factor(e, i)
-		least, most = min(least, f), max(most, f)
+		lo, hi := f, f
+		if c.Host != nil {
+			x, y := c.HostRange(i)
+			lo, hi = f*e.Law.onHost(x), f*e.Law.onHost(y)
+		}
+		least, most = min(least, lo, hi), max(most, lo, hi)
 	}
 	if e.Law.OwnSlope != 0 {
 		lo, hi := c.values(e)

@@ -142,11 +142,14 @@ func (d *decoder) cold(c *Crystal, e *Element, p *Path) {
 		return
 	}
 	lowest, _ := p.History.Range()
-	for _, z := range c.Zones {
-		if lnK := e.Partition.LnK(z.Host, lowest); !(math.Abs(lnK) <= maxLnK) {
-			d.add(e.Place.Error("", fmt.Sprintf("its partition relation gives K = exp(%.3g) in zone %s at the coldest of path %q", lnK, z.Name, p.Name),
-				"check A and B, or leave the coldest leg out"))
-			return
+	for i, z := range c.Zones {
+		least, most := c.HostRange(i)
+		for _, x := range []float64{least, most} {
+			if lnK := e.Partition.LnK(x, lowest); !(math.Abs(lnK) <= maxLnK) {
+				d.add(e.Place.Error("", fmt.Sprintf("its partition relation gives K = exp(%.3g) in zone %s at the coldest of path %q", lnK, z.Name, p.Name),
+					"check A and B, or leave the coldest leg out"))
+				return
+			}
 		}
 	}
 }

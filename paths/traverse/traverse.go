@@ -82,7 +82,8 @@ const sigmasOfLimit = 3
 type Options struct {
 	Position string  // header of the positions, with its unit as in Column.Header
 	Value    string  // header of the values, likewise
-	Errors   Errors  // where the errors come from; it must say
+	Errors   Errors  // where the errors come from; it must say, unless Unstated
+	Unstated bool    // nothing is known of the errors: Errors is not looked at, and Traverse.Sigma is nil
 	Skip     string  // header of a column that marks rows to be left out; "" = there is none
 	Below    Below   // what becomes of values below detection
 	Zero     Zero    // where positions count from
@@ -133,6 +134,9 @@ func Read(name string, r io.Reader, o Options) (*Traverse, error) {
 	if len(d.t.Position) == d.limits {
 		return nil, d.noneLeft()
 	}
+	if o.Unstated {
+		d.t.Sigma = nil
+	}
 	d.addNotes()
 	return d.t, nil
 }
@@ -160,7 +164,9 @@ const (
 )
 
 func (o *Options) columns(name string) ([]Column, error) {
-	if err := o.Errors.check(name); err != nil {
+	if o.Unstated {
+		o.Errors = Errors{}
+	} else if err := o.Errors.check(name); err != nil {
 		return nil, err
 	}
 	want := []Column{{o.Position, thermal.Length}, {o.Value, thermal.Concentration}}
@@ -215,7 +221,9 @@ func (d *reader) row() {
 	if !ok {
 		return
 	}
-	if sigma, ok := d.sigma(v); ok {
+	if d.o.Unstated {
+		d.keep(x, v, 0)
+	} else if sigma, ok := d.sigma(v); ok {
 		d.keep(x, v, sigma)
 	}
 }

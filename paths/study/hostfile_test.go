@@ -1,0 +1,163 @@
+package study
+
+import (
+	"math"
+	"slices"
+	"strings"
+	"testing"
+
+	"bankfire/thermal"
+)
+
+// The host of EK-3 in steps: two points in the core and three in the skin, errors
+// of two sigma of four analyses; the error of a median of three is sqrt(pi/2) times
+// that of their mean.
+func TestEveryKeyHostSteps(t *testing.T) {
+	c := everyKey(t).Crystals[2]
+	if !c.Hosted || c.Host != nil {
+		t.Fatalf("hosted %v by %v", c.Hosted, c.Host)
+	}
+	core, skin := c.Zones[0], c.Zones[1]
+	near(t, "core", core.Host, 0.55)
+	near(t, "skin", skin.Host, 0.35)
+	near(t, "error of the core", core.HostSigma, math.Sqrt(2)*0.0025/2)
+	near(t, "error of the skin", skin.HostSigma, math.Sqrt(math.Pi/2)*math.Sqrt(2*0.0025*0.0025+0.005*0.005)/3)
+}
+
+// The host of EK-4 by a spline goes into the problem as it is, with the law's
+// dependence on it, and into the rim.
+func TestEveryKeyHostSpline(t *testing.T) {
+	s := everyKey(t)
+	c := &s.Crystals[3]
+	if !c.Hosted || c.Host == nil {
+		t.Fatalf("hosted %v by %+v", c.Hosted, c.Host)
+	}
+	near(t, "width", c.Host.Width, 30*um)
+	for i, want := range []struct{ r, x, sigma float64 }{
+		{50 * um, 0.54, 0.0108}, {70 * um, 0.56, 0.0112}, {95 * um, 0.34, 0.01}, {110 * um, 0.35, 0.01}, {125 * um, 0.36, 0.01},
+	} {
+		near(t, "position", c.Host.Position[i], want.r)
+		near(t, "value", c.Host.Value[i], want.x)
+		near(t, "error", c.Host.Sigma[i], want.sigma)
+	}
+	e := &c.Elements[0]
+	p, _, err := c.Problem(e, s.Paths[0].History)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for i, times := range []float64{1, 0.5} {
+		if z := p.Zones[i]; z.Host != 0 || z.Times != times {
+			t.Errorf("zone %d has host %g and D times %g: the spline has all of both", i, z.Host, z.Times)
+		}
+	}
+	for r := 0.0; r <= 130*um; r += 7 * um {
+		x := c.HostAt(r)
+		near(t, "host", p.Host(r), x)
+		near(t, "D beside that of the law at An0", p.Spread(r), math.Pow(10, -4.1*x)) // Giletti & Casserly 1994
+	}
+	for name, at := range map[string][2]float64{"inside": {0, 50 * um}, "outside": {130 * um, 125 * um}} {
+		near(t, "beyond the points, "+name, c.HostAt(at[0]), c.HostAt(at[1]))
+	}
+	const temp = 1000.0
+	near(t, "rim", math.Exp(p.Outer[0].Equilibrium.LnA-p.Outer[0].Equilibrium.E/temp), 100*math.Exp((-26.8e3*c.HostAt(130*um)+26.7e3)/(thermal.GasConstant*temp)))
+	lo, hi := c.HostRange(0)
+	least, most := c.Factors(e)
+	if !(lo < c.HostAt(85*um) && hi > 0.54 && lo > c.HostAt(95*um)) {
+		t.Errorf("the host of the core is from %g to %g", lo, hi)
+	}
+	skinLo, skinHi := c.HostRange(1)
+	near(t, "largest factor", most, max(math.Pow(10, -4.1*lo), 0.5*math.Pow(10, -4.1*skinLo)))
+	near(t, "least factor", least, min(math.Pow(10, -4.1*hi), 0.5*math.Pow(10, -4.1*skinHi)))
+}
+
+// What a host that was measured cannot know is noted.
+func TestHostFileNotes(t *testing.T) {
+	const exact = "Q1: no error of its host is stated, so it is taken to be exact"
+	for _, test := range []struct {
+		name, smooth, want, not string
+	}{
+		{"steps without an error", `smooth = "steps"`, exact, "with an error"},
+		{"steps with an error", `smooth = "steps", error = "0.02 mole fraction"`, "the median of 4 points from 0.41 to 0.56, with an error of 0.013", exact},
+		{"spline without an error", `smooth = "spline", width = "60 um"`, exact, "its host is not measured"},
+		{"spline", `smooth = "spline", width = "60 um", error = "2 %"`, "a spline through 7 points that averages over 60 um, also across the boundaries of zones", exact},
+		{"narrow spline", `smooth = "spline", width = "25 um", error = "2 %"`, "Q1: the width of its host, 25 um, holds few points 16.3 um apart, so that their noise may show as drift", exact},
+		{"far from the centre", `smooth = "spline", width = "30 um", error = "2 %"`, "Q1: its host is not measured over the innermost 20 um, where it is taken to stay as it is at the last point", "outermost"},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			_, notes := hostedBy(t, test.smooth)
+			list := strings.Join(notes, "\n")
+			if !strings.Contains(list, test.want) || strings.Contains(list, test.not) {
+				t.Errorf("notes %q, want %q and not %q", notes, test.want, test.not)
+			}
+		})
+	}
+}
+
+// hostedBy reads the sound study as a plagioclase with the host of an.csv.
+func hostedBy(t *testing.T, smooth string) (*Crystal, []string) {
+	t.Helper()
+	text := strings.NewReplacer(`, host = 0.55`, "", `, host = 0.35`, "", `shape = "slab"`, "shape = \"slab\"\nhost = "+hostFile("", `smooth = "steps"`, smooth)).Replace(hostedStudy())
+	s, err := parse("s.toml", []byte(text), memory(soundFiles()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return &s.Crystals[0], s.Notes
+}
+
+// Redrawn steps have the stated errors to round-off, and none in common.
+func TestRedrawnSteps(t *testing.T) {
+	const n, roundOff = 16, 1e-12
+	c, _ := hostedBy(t, `smooth = "steps", error = "0.02 mole fraction"`)
+	var square [2][2]float64
+	for _, drawn := range c.Redrawn(n) {
+		for i := range 2 {
+			for j := range 2 {
+				square[i][j] += (drawn.Zones[i].Host - c.Zones[i].Host) * (drawn.Zones[j].Host - c.Zones[j].Host) / n
+			}
+		}
+	}
+	for i := range 2 {
+		for j := range 2 {
+			want := 0.0
+			if i == j {
+				want = c.Zones[i].HostSigma * c.Zones[i].HostSigma
+			}
+			if !(math.Abs(square[i][j]-want) <= roundOff) {
+				t.Errorf("covariance of zones %d and %d is %g, want %g", i, j, square[i][j], want)
+			}
+		}
+	}
+}
+
+// A redrawn spline scatters by what the kernel leaves of the errors, sigma^2 times
+// the spacing times 3/(8 sqrt 2)/h (see traverse.TestSmoothNoise), and not at all
+// with the paths or from one time to the next.
+func TestRedrawnSpline(t *testing.T) {
+	const (
+		n, sigma, spacing, width = 400, 0.02, 1 * um, 16 * um
+		deviations               = 4
+	)
+	var at, value, sigmas []float64
+	for i := range 201 {
+		at, value, sigmas = append(at, float64(i)*spacing), append(value, 0.5), append(sigmas, sigma)
+	}
+	c := Crystal{Name: "Q1", Zones: []Zone{{Width: 200 * um}}, Host: NewHost(at, value, sigmas, width)}
+	h := width / 2.866557563380696
+	got := 0.0
+	draws := c.Redrawn(n)
+	for _, drawn := range draws {
+		got += math.Pow(drawn.HostAt(100*um)-0.5, 2) / n
+	}
+	want := sigma * sigma * spacing * 3 / (8 * math.Sqrt2) / h
+	if !(math.Abs(got/want-1) <= deviations*math.Sqrt(2.0/n)) {
+		t.Errorf("variance %g, want %g", got, want)
+	}
+	again := c.Redrawn(n)
+	if !slices.Equal(again[7].Host.Value, draws[7].Host.Value) || slices.Equal(draws[7].Host.Value, draws[8].Host.Value) {
+		t.Error("draw 7 is not the same again, or draw 8 is like it")
+	}
+	c.Host = NewHost(at, value, nil, width)
+	if c.Redrawn(n) != nil {
+		t.Error("a host without errors was redrawn")
+	}
+}
