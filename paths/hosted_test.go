@@ -60,12 +60,14 @@ func srD(x float64) float64 {
 // (Crank 1975, The mathematics of diffusion, section 3.4.1):
 //
 //	C = Ci + (C0 - Ci) erf(|x| / (2 sqrt(D t))) on either side.
-func srCouple(r, time float64) float64 {
+func srCouple(r, time float64) float64 { return srCoupleBy(srRatio(), r, time) }
+
+func srCoupleBy(ratio, r, time float64) float64 {
 	rootCore, rootSkin := math.Sqrt(srD(xCore)), math.Sqrt(srD(xSkin))
-	skin := (srCore*rootCore + srSkin*rootSkin) / (srRatio()*rootCore + rootSkin)
+	skin := (srCore*rootCore + srSkin*rootSkin) / (ratio*rootCore + rootSkin)
 	x := r - coreSr
 	if x < 0 {
-		core := srRatio() * skin
+		core := ratio * skin
 		return core + (srCore-core)*math.Erf(-x/(2*rootCore*math.Sqrt(time)))
 	}
 	return skin + (srSkin-skin)*math.Erf(x/(2*rootSkin*math.Sqrt(time)))

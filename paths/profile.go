@@ -29,6 +29,7 @@ type profile struct {
 	path    *study.Path
 	free    []study.FreeValue
 	runs    []variant // one an edge width between which the lens interpolates
+	redrawn []variant // one a redrawn host; none where the host is exact
 	lens    *lens     // nil without a traverse
 	fit     least.Problem
 	grey    bool    // a scale and an offset are two more linear values
@@ -59,6 +60,9 @@ func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
 		return p, p.addRun(problem, e.Start.Edge.Middle(), &options)
 	}
 	if err := p.layEdges(problem, &options); err != nil {
+		return nil, err
+	}
+	if err := p.layRedrawn(m.hosts, &options); err != nil {
 		return nil, err
 	}
 	return p, p.setFit(m)
@@ -279,20 +283,26 @@ func (p *profile) solveFor(ctx context.Context, lnM []float64) ([]least.Solution
 			return nil, err
 		}
 		part := lnM[from:min(from+batch, len(lnM))]
-		for i := range p.runs {
-			r := &p.runs[i]
-			for k, x := range part {
-				jobs[k] = diffusion.Job{Course: &r.course, LnM: x}
-			}
-			if err := r.plan.Run(r.fields[:len(part)], jobs[:len(part)]); err != nil {
-				return nil, err
+		for _, runs := range [][]variant{p.runs, p.redrawn} {
+			for i := range runs {
+				if err := runs[i].at(part, jobs); err != nil {
+					return nil, err
+				}
 			}
 		}
 		for k := range part {
-			out = append(out, p.fitTo(p.columns(k)))
+			out = append(out, p.fitRun(k, nil))
 		}
 	}
 	return out, nil
+}
+
+// at runs the variant for up to a batch of multipliers; jobs is scratch.
+func (r *variant) at(lnM []float64, jobs []diffusion.Job) error {
+	for k, x := range lnM {
+		jobs[k] = diffusion.Job{Course: &r.course, LnM: x}
+	}
+	return r.plan.Run(r.fields[:len(lnM)], jobs[:len(lnM)])
 }
 
 // sampler returns chi-square at multipliers on D until ctx is done.
@@ -335,21 +345,29 @@ func (p *profile) starts() [][][]float64 {
 //
 // each x being scale times the concentration that it stands for.
 func (p *profile) fitTo(cols [][][]float64) least.Solution {
-	return p.fitAbout(cols, make([]float64, len(p.free)))
+	return p.fitAbout(cols, nil, nil)
 }
 
 // fitAbout is fitTo, for relative data with the free values counted from those
-// of about, in the element's unit.
-func (p *profile) fitAbout(cols [][][]float64, about []float64) least.Solution {
+// of about, in the element's unit. The spreads are profiles of cell means that are
+// added with factors of standard deviation 1, the last of the linear values.
+func (p *profile) fitAbout(cols [][][]float64, spreads [][]float64, about []float64) least.Solution {
+	problem := p.fit
+	if len(spreads) > 0 {
+		cols = slices.Clone(cols)
+		for i := range cols {
+			cols[i] = slices.Concat(cols[i], spreads)
+		}
+		problem.Linear = slices.Concat(problem.Linear, slices.Repeat([]least.Prior{{Sigma: 1}}, len(spreads)))
+	}
 	v := p.lens.look(cols)
 	n := 1 + len(p.free)
 	model := func(dst [][]float64, bent []float64) {
-		v.columns(dst[:n], bent)
+		v.columns(append(dst[:n:n], dst[len(dst)-len(spreads):]...), bent)
 		if p.grey {
 			p.relative(dst, about)
 		}
 	}
-	problem := p.fit
 	at := problem.Solve(model)
 	for range p.free {
 		j := p.mostNegative(at)
@@ -443,9 +461,9 @@ type amounts struct {
 func (p *profile) amounts(at least.Solution) amounts {
 	k := len(p.free)
 	if p.grey {
-		return amounts{at.Linear[k+1], at.Linear[k], at.Linear[:k]}
+		return amounts{at.Linear[k+1], at.Linear[k], slices.Clone(at.Linear[:k])}
 	}
-	return amounts{0, 1, at.Linear}
+	return amounts{0, 1, at.Linear[:k]}
 }
 
 // stated returns the amounts that make the profile in the element's unit, not in
@@ -493,11 +511,17 @@ func (p *profile) mix(cols [][][]float64, edge float64) [][]float64 {
 }
 
 // audit runs the path with a multiplier on D and measures the error of every
-// column.
+// column, but for those of redrawn hosts.
 func (p *profile) audit(lnM float64) error {
 	for i := range p.runs {
 		r := &p.runs[i]
 		if err := r.plan.Audit(&r.fields[0], diffusion.Job{Course: &r.course, LnM: lnM}); err != nil {
+			return err
+		}
+	}
+	jobs := make([]diffusion.Job, 1)
+	for i := range p.redrawn {
+		if err := p.redrawn[i].at([]float64{lnM}, jobs); err != nil {
 			return err
 		}
 	}

@@ -75,7 +75,7 @@ type FreeFit struct {
 // Weigh runs every path of the study against every traverse and judges it.
 // Up to jobs paths go at the same time; the result does not depend on jobs. The
 // result is nil if there is an error: that of ctx if it is done before the last
-// path is weighed, else those of up to 20 paths, each with the path's name,
+// profile is judged, else those of up to 20 paths, each with the path's name,
 // joined.
 func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 	w, err := newWeighing(s)
@@ -95,7 +95,7 @@ func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 			return nil, err
 		}
 	}
-	return w.judge()
+	return w.judge(ctx)
 }
 
 // weighing is a study in the course of being weighed.
@@ -113,8 +113,9 @@ type element struct {
 	element *study.Element
 	place   int // of the crystal among those with a measured element
 	law     int
-	white   *mat.TriDense // makes the errors of overlapping spots independent; nil if they are
-	scatter float64       // extra scatter of its traverse, in its unit
+	white   *mat.TriDense    // makes the errors of overlapping spots independent; nil if they are
+	scatter float64          // extra scatter of its traverse, in its unit
+	hosts   []*study.Crystal // the crystal with its host redrawn; nil where that is exact or does not matter
 }
 
 // weighedPath is what the solver said of one path.
@@ -128,16 +129,22 @@ type weighedPath struct {
 func newWeighing(s *study.Study) (*weighing, error) {
 	w := &weighing{study: s, paths: make([]weighedPath, len(s.Paths))}
 	for i := range s.Crystals {
-		for j := range s.Crystals[i].Elements {
-			if e := &s.Crystals[i].Elements[j]; e.Traverse != nil {
+		c := &s.Crystals[i]
+		hosts := c.Redrawn(mostRedrawn)
+		for j := range c.Elements {
+			if e := &c.Elements[j]; e.Traverse != nil {
 				white, err := overlapWhite(e)
 				if err != nil {
 					return nil, err
 				}
-				if c := &s.Crystals[i]; !slices.Contains(w.crystals, c) {
+				if !slices.Contains(w.crystals, c) {
 					w.crystals = append(w.crystals, c)
 				}
-				w.elements = append(w.elements, element{&s.Crystals[i], e, len(w.crystals) - 1, w.law(&e.Law), white, 0})
+				m := element{crystal: c, element: e, place: len(w.crystals) - 1, law: w.law(&e.Law), white: white}
+				if e.OnHost() {
+					m.hosts = hosts
+				}
+				w.elements = append(w.elements, m)
 			}
 		}
 	}
@@ -323,7 +330,7 @@ func (p *profile) errorAtBest(c *Curve) (float64, error) {
 	if err := p.audit(lnM); err != nil {
 		return 0, err
 	}
-	return p.numErr(p.fitTo(p.columns(0))), nil
+	return p.numErr(p.fitRun(0, nil)), nil
 }
 
 // byE returns the first and second derivative of ln G by the activation energy,
@@ -372,7 +379,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 	if err := p.audit(0); err != nil {
 		return nil, err
 	}
-	at := p.fitTo(p.columns(0))
+	at := p.fitRun(0, nil)
 	p.points, p.counted = telling(&p.fit, at), p.spent(at)
 	edge, tilt, origin := p.lens.values(at.Bent)
 	a := p.amounts(at)
@@ -396,7 +403,9 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 	}
 	r.Start, r.Final = make([]float64, len(r.Centres)), make([]float64, len(r.Centres))
 	everywhere.Apply(r.Start, a.of(p.mix(p.starts(), edge)))
-	everywhere.Apply(r.Final, a.of(p.mix(p.columns(0), edge)))
+	final := a.of(p.mix(p.columns(0), edge))
+	p.addHost(final, 0, at)
+	everywhere.Apply(r.Final, final)
 	r.StandIn = standIn(p.element.Law.Law, p.path.History, r.LnG)
 	return r, nil
 }
@@ -450,7 +459,7 @@ func (p *profile) greyFits(at least.Solution) []FreeFit {
 	k := len(p.free)
 	scale := at.Linear[k]
 	values := p.amounts(at).stated().values
-	about := p.fitAbout(p.columns(0), values)
+	about := p.fitRun(0, values)
 	for j, v := range p.free {
 		f := FreeFit{Name: v.Name, Value: values[j], Sigma: about.Sigma[j] / math.Abs(scale), Unit: p.element.Unit}
 		if !(about.Sigma[j] <= unseen*p.size) || scale == 0 {
@@ -492,11 +501,10 @@ func (p *profile) scatter(lnM float64) float64 {
 	if _, err := p.solveFor(context.Background(), []float64{lnM}); err != nil {
 		return 0
 	}
-	cols := p.columns(0)
 	degrees := float64(p.points - p.counted - 1)
 	excess := func(s float64) float64 {
 		p.fit.Sigma = widened(p.element.Traverse, s)
-		return p.fitTo(cols).ChiSq - degrees
+		return p.fitRun(0, nil).ChiSq - degrees
 	}
 	defer func() { p.fit.Sigma = p.element.Traverse.Sigma }()
 	if degrees < 1 || !(excess(0) > 0) {
@@ -534,10 +542,10 @@ func (w *weighing) ownBest(n int) (path int, lnM float64) {
 }
 
 // judge turns curves into verdicts.
-func (w *weighing) judge() (*Result, error) {
+func (w *weighing) judge(ctx context.Context) (*Result, error) {
 	r := &Result{Study: w.study, Laws: w.laws, Crystals: w.crystals, Paths: make([]PathResult, len(w.paths))}
 	for n := range w.elements {
-		own, err := w.examine(n)
+		own, err := w.examine(ctx, n)
 		if err != nil {
 			return nil, err
 		}
@@ -555,7 +563,7 @@ func (w *weighing) judge() (*Result, error) {
 }
 
 // examine looks at the own best fit of element n.
-func (w *weighing) examine(n int) (OwnBest, error) {
+func (w *weighing) examine(ctx context.Context, n int) (OwnBest, error) {
 	e := w.elements[n]
 	own := OwnBest{Crystal: e.crystal, Element: e.element, Scatter: e.scatter, Outlier: -1}
 	i, lnM := w.ownBest(n)
@@ -563,7 +571,7 @@ func (w *weighing) examine(n int) (OwnBest, error) {
 		return own, nil
 	}
 	p := w.paths[i].profiles[n]
-	solutions, err := p.solveFor(context.Background(), []float64{lnM})
+	solutions, err := p.solveFor(ctx, []float64{lnM})
 	if err != nil {
 		return own, err
 	}
@@ -571,7 +579,7 @@ func (w *weighing) examine(n int) (OwnBest, error) {
 	own.Degrees = p.points - p.counted - 1
 	own.examine(&p.fit, solutions[0], w.study.Confidence)
 	own.knowing(&w.paths[i].curves[n], w.study.Confidence)
-	return own, nil
+	return own, own.host(ctx, p, &w.paths[i].curves[n], w.study.Confidence)
 }
 
 // verdict judges path i. A path is not blamed for a profile that its own best

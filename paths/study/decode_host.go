@@ -81,7 +81,7 @@ func (d *decoder) noteHost(c *Crystal, measured bool) {
 		return
 	}
 	if slices.ContainsFunc(c.Elements, func(e Element) bool { return e.OnHost() }) {
-		if measured && !c.hostUncertain() {
+		if measured && c.modes() == nil {
 			d.note("%s: no error of its host is stated, so it is taken to be exact", c.Name)
 		}
 		return

@@ -174,7 +174,7 @@ func (d *decoder) spline(n *node, t *traverse.Traverse, width float64, c *Crysta
 	c.Host = NewHost(t.Position, t.Value, t.Sigma, width)
 	least, most := c.Host.spline.Range(c.R0, c.Size())
 	d.note("%s: host from %.4g to %.4g, a spline through %d points that averages over %.4g um, also across the boundaries of zones", c.Name, least, most, count, width*1e6)
-	if spacing := (last - first) / float64(count-1); width < perWidth*spacing {
+	if spacing := (last - first) / float64(count-1); width < perWidth*spacing*(1-positionSlack) {
 		d.note("%s: the width of its host, %.4g um, holds few points %.3g um apart, so that their noise may show as drift", c.Name, width*1e6, spacing*1e6)
 	}
 	for _, gap := range []struct {

@@ -69,32 +69,29 @@ func (c *Crystal) HostText(i int) string {
 // OnHost reports whether what the element does depends on the host.
 func (e *Element) OnHost() bool { return e.Partitions() != nil || e.Law.HostSlope != 0 }
 
-// Redrawn returns n crystals that differ in their hosts, each drawn from what was
-// measured and its errors: every point of a smoothed profile, the value of every
-// zone of one in steps. It is nil where no error is stated. The draws depend on the
-// crystal and n alone. Where there are no more than n values with errors, the draws
-// are made orthogonal, so that their mean square is the stated variance itself and
-// not an estimate of it.
-func (c *Crystal) Redrawn(n int) []*Crystal {
-	if !c.hostUncertain() {
-		return nil
-	}
+// Redrawn returns crystals that differ in their hosts, each drawn from what was
+// measured and its errors; none if no error is stated. They are as many as there are
+// independent parts of the host that may be off, see modes, and no more than most.
+// Where they are as many, the deviates of the parts are made orthogonal over the
+// draws, so that the mean square of what they do is the stated variance itself and
+// not an estimate of it. They depend on the crystal and most alone.
+func (c *Crystal) Redrawn(most int) []*Crystal {
+	modes := c.modes()
+	out := make([]*Crystal, min(most, len(modes)))
 	seed := fnv.New64a()
 	seed.Write([]byte(c.Name))
-	rng := rand.New(rand.NewPCG(seed.Sum64(), uint64(n)))
-	values := len(c.Zones)
-	if c.Host != nil {
-		values = len(c.Host.Value)
-	}
-	out := make([]*Crystal, n)
-	for k, noise := range deviates(rng, n, values) {
+	for k, by := range deviates(rand.New(rand.NewPCG(seed.Sum64(), uint64(most))), len(out), len(modes)) {
 		drawn := *c
 		if c.Host != nil {
-			drawn.Host = c.Host.moved(noise)
+			value := slices.Clone(c.Host.Value)
+			add(value, modes, by)
+			drawn.Host = NewHost(c.Host.Position, value, c.Host.Sigma, c.Host.Width)
 		} else {
+			value := make([]float64, len(c.Zones))
+			add(value, modes, by)
 			drawn.Zones = slices.Clone(c.Zones)
-			for i := range drawn.Zones {
-				drawn.Zones[i].Host += drawn.Zones[i].HostSigma * noise[i]
+			for i, x := range value {
+				drawn.Zones[i].Host += x
 			}
 		}
 		out[k] = &drawn
@@ -102,52 +99,80 @@ func (c *Crystal) Redrawn(n int) []*Crystal {
 	return out
 }
 
-func (c *Crystal) hostUncertain() bool {
-	if c.Host != nil {
-		return c.Host.Sigma != nil
+// add adds the modes by so many times each.
+func add(dst []float64, modes [][]float64, by []float64) {
+	for j, mode := range modes {
+		for i, x := range mode {
+			dst[i] += by[j] * x
+		}
 	}
-	return slices.ContainsFunc(c.Zones, func(z Zone) bool { return z.HostSigma > 0 })
 }
 
-// moved returns the profile with every point moved by so many standard deviations.
-func (h *Host) moved(by []float64) *Host {
-	value := slices.Clone(h.Value)
-	for i := range value {
-		value[i] += h.Sigma[i] * by[i]
+// modes are by how much the host's values may be off independently of each other,
+// each with a standard deviation of 1: those of one zone, or of the points of a
+// spline within a piece of half its width. There all move by the error of their
+// mean, from which the spline cannot tell them moving one by one but for a twentieth
+// of its variance: with k in units of 1/h the integral of
+// (1 - sinc^2(k width/(4 h)))/(1 + k^4)^2 over that of 1/(1 + k^4)^2.
+func (c *Crystal) modes() [][]float64 {
+	var modes [][]float64
+	if c.Host == nil {
+		for i, z := range c.Zones {
+			if z.HostSigma > 0 {
+				mode := make([]float64, len(c.Zones))
+				mode[i] = z.HostSigma
+				modes = append(modes, mode)
+			}
+		}
+		return modes
 	}
-	return NewHost(h.Position, value, h.Sigma, h.Width)
+	h := c.Host
+	n := len(h.Position)
+	for from := 0; h.Sigma != nil && from < n; {
+		mode, until := make([]float64, n), from
+		square, length := 0.0, 0.0
+		for ; until < n && h.Position[until] < h.Position[from]+h.Width/2; until++ {
+			w := h.Position[min(until+1, n-1)] - h.Position[max(until-1, 0)]
+			square, length = square+math.Pow(w*h.Sigma[until], 2), length+w
+		}
+		for i := from; i < until; i++ {
+			mode[i] = math.Sqrt(square) / length
+		}
+		modes, from = append(modes, mode), until
+	}
+	return modes
 }
 
-// deviates returns n draws of so many standard normal deviates. If these are no more
-// than n, they are then made orthogonal to each other over the draws, with a mean
-// square of 1.
+// deviates returns n draws of so many standard normal deviates. If these are n too,
+// they are made orthogonal to each other over the draws, with a mean square of 1.
 func deviates(rng *rand.Rand, n, values int) [][]float64 {
 	draws := make([][]float64, n)
 	for k := range draws {
 		draws[k] = make([]float64, values)
-	}
-	for j := range values {
-		for k := range draws {
+		for j := range draws[k] {
 			draws[k][j] = rng.NormFloat64()
 		}
-		if values > n {
-			continue
-		}
-		square := 0.0
-		for i := range j + 1 { // Gram and Schmidt; the last round is the length
-			square = 0
+	}
+	for j := 0; values == n && j < n; j++ { // Gram and Schmidt
+		for i := range j {
+			along := over(draws, i, j)
 			for k := range draws {
-				square += draws[k][i] * draws[k][j]
-			}
-			if i < j {
-				for k := range draws {
-					draws[k][j] -= square / float64(n) * draws[k][i]
-				}
+				draws[k][j] -= along * draws[k][i]
 			}
 		}
+		size := math.Sqrt(over(draws, j, j))
 		for k := range draws {
-			draws[k][j] *= math.Sqrt(float64(n) / square)
+			draws[k][j] /= size
 		}
 	}
 	return draws
+}
+
+// over is the mean over the draws of the product of deviates i and j.
+func over(draws [][]float64, i, j int) float64 {
+	sum := 0.0
+	for k := range draws {
+		sum += draws[k][i] * draws[k][j]
+	}
+	return sum / float64(len(draws))
 }

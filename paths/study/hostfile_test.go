@@ -3,6 +3,7 @@ package study
 import (
 	"math"
 	"slices"
+	"strconv"
 	"strings"
 	"testing"
 
@@ -106,13 +107,14 @@ func hostedBy(t *testing.T, smooth string) (*Crystal, []string) {
 
 // Redrawn steps have the stated errors to round-off, and none in common.
 func TestRedrawnSteps(t *testing.T) {
-	const n, roundOff = 16, 1e-12
+	const most, roundOff = 16, 1e-12
 	c, _ := hostedBy(t, `smooth = "steps", error = "0.02 mole fraction"`)
 	var square [2][2]float64
-	for _, drawn := range c.Redrawn(n) {
+	draws := c.Redrawn(most)
+	for _, drawn := range draws {
 		for i := range 2 {
 			for j := range 2 {
-				square[i][j] += (drawn.Zones[i].Host - c.Zones[i].Host) * (drawn.Zones[j].Host - c.Zones[j].Host) / n
+				square[i][j] += (drawn.Zones[i].Host - c.Zones[i].Host) * (drawn.Zones[j].Host - c.Zones[j].Host) / float64(len(draws))
 			}
 		}
 	}
@@ -129,35 +131,58 @@ func TestRedrawnSteps(t *testing.T) {
 	}
 }
 
-// A redrawn spline scatters by what the kernel leaves of the errors, sigma^2 times
-// the spacing times 3/(8 sqrt 2)/h (see traverse.TestSmoothNoise), and not at all
-// with the paths or from one time to the next.
-func TestRedrawnSpline(t *testing.T) {
-	const (
-		n, sigma, spacing, width = 400, 0.02, 1 * um, 16 * um
-		deviations               = 4
-	)
+// evenHost is a level host of 201 points with errors.
+func evenHost(name string, spacing, width, sigma float64) *Crystal {
 	var at, value, sigmas []float64
 	for i := range 201 {
 		at, value, sigmas = append(at, float64(i)*spacing), append(value, 0.5), append(sigmas, sigma)
 	}
-	c := Crystal{Name: "Q1", Zones: []Zone{{Width: 200 * um}}, Host: NewHost(at, value, sigmas, width)}
-	h := width / 2.866557563380696
-	got := 0.0
-	draws := c.Redrawn(n)
-	for _, drawn := range draws {
-		got += math.Pow(drawn.HostAt(100*um)-0.5, 2) / n
-	}
+	return &Crystal{Name: name, Zones: []Zone{{Width: 200 * spacing}}, Host: NewHost(at, value, sigmas, width)}
+}
+
+// A redrawn spline scatters by what the kernel leaves of the errors, sigma^2 times
+// the spacing times 3/(8 sqrt 2)/h (see traverse.TestSmoothNoise), but for the
+// twentieth that moving pieces as one loses: with fewer draws than pieces on average
+// over many crystals.
+func TestRedrawnSpline(t *testing.T) {
+	const (
+		sigma, spacing, width = 0.02, 1 * um, 15.9 * um
+		most, pieces          = 32, 26 // of 8 points each, and one that is left
+		crystals, few         = 150, 8
+		deviations            = 4
+		sampled               = 0.01 // what a mean over 8 places and 8 points a piece leave
+	)
+	const h = width / 2.866557563380696
 	want := sigma * sigma * spacing * 3 / (8 * math.Sqrt2) / h
-	if !(math.Abs(got/want-1) <= deviations*math.Sqrt(2.0/n)) {
-		t.Errorf("variance %g, want %g", got, want)
+	x := 8 * spacing / (2 * h)
+	want *= 1 - x*x/9 + 2*math.Pow(x, 4)/135     // mean of sinc^2(k x) over 1/(1 + k^4)^2, to the fourth order
+	variance := func(draws []*Crystal) float64 { // of where there are no ends near, on average over a piece
+		sum := 0.0
+		for _, drawn := range draws {
+			for i := range 8 {
+				sum += math.Pow(drawn.HostAt(float64(96+i)*spacing)-0.5, 2) / float64(8*len(draws))
+			}
+		}
+		return sum
 	}
-	again := c.Redrawn(n)
-	if !slices.Equal(again[7].Host.Value, draws[7].Host.Value) || slices.Equal(draws[7].Host.Value, draws[8].Host.Value) {
+	c := evenHost("Q1", spacing, width, sigma)
+	all := c.Redrawn(most)
+	if got := variance(all); len(all) != pieces || !(math.Abs(got/want-1) <= sampled) {
+		t.Errorf("%d draws have a variance of %g, want %d with %g", len(all), got, pieces, want)
+	}
+	mean := 0.0
+	for i := range crystals {
+		mean += variance(evenHost(strconv.Itoa(i), spacing, width, sigma).Redrawn(few)) / crystals
+	}
+	if !(math.Abs(mean/want-1) <= deviations*math.Sqrt(2.0/(crystals*few))) {
+		t.Errorf("variance of few draws %g, want %g", mean, want)
+	}
+	again := c.Redrawn(most)
+	if !slices.Equal(again[7].Host.Value, all[7].Host.Value) || slices.Equal(all[7].Host.Value, all[8].Host.Value) {
 		t.Error("draw 7 is not the same again, or draw 8 is like it")
 	}
-	c.Host = NewHost(at, value, nil, width)
-	if c.Redrawn(n) != nil {
-		t.Error("a host without errors was redrawn")
+	c.Host.Sigma = nil
+	if got := c.Redrawn(most); len(got) != 0 {
+		t.Errorf("a host without errors was redrawn %d times", len(got))
 	}
 }

@@ -1,0 +1,121 @@
+package paths
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"bankfire/diffusion"
+	"bankfire/paths/least"
+	"bankfire/paths/study"
+)
+
+// A host that was measured has errors, and so has what follows it. The host is
+// redrawn from its errors n times, alike for every path, and each draw is run like
+// the host as it was measured. With d_k by how much the fitted profile differs in
+// draw k, the profile may be off by
+//
+//	sum of z_k d_k/sqrt(n),  each z_k normal with standard deviation 1,
+//
+// whose covariance is the mean of d_k d_k': the z_k are values of the fit with
+// priors, so that chi-square, its tail and what is read off its curve allow for the
+// host. Each profile has its own.
+
+// mostRedrawn is how many hosts are drawn at most; see study.Crystal.Redrawn.
+const mostRedrawn = 32
+
+// hostRounds is how often the free values are fitted again with the draws' profiles
+// that they make: d_k is proportional to them.
+const hostRounds = 2
+
+// layRedrawn compiles the element for each host that was drawn, with the edges of
+// the middle one of the runs, whose cells it has.
+func (p *profile) layRedrawn(hosts []*study.Crystal, options *diffusion.Options) error {
+	if len(hosts) == 0 {
+		return nil
+	}
+	edge := p.lens.edges[p.middle()]
+	main := p.runs
+	defer func() { p.runs = main }()
+	p.runs = nil
+	for _, c := range hosts {
+		problem, _, err := c.Problem(p.element, p.path.History)
+		if err != nil {
+			return err
+		}
+		if err := p.addRun(problem, edge, options); err != nil {
+			return err
+		}
+	}
+	p.redrawn = p.runs
+	return nil
+}
+
+// middle is the run whose edges the redrawn hosts have.
+func (p *profile) middle() int { return len(p.lens.edges) / 2 }
+
+// spreads returns d_k/sqrt(n) in the cells, for what the runs left in their
+// fields number field.
+func (p *profile) spreads(field int, a amounts) [][]float64 {
+	main := a.of(p.runs[p.middle()].fields[field].Cols)
+	out := make([][]float64, len(p.redrawn))
+	for k := range p.redrawn {
+		out[k] = a.of(p.redrawn[k].fields[field].Cols)
+		for i, v := range main {
+			out[k][i] = (out[k][i] - v) / math.Sqrt(float64(len(p.redrawn)))
+		}
+	}
+	return out
+}
+
+// fitRun fits the values that are open to the data, for what the runs left in their
+// fields number field. To relative data the free values are counted from those of
+// about, in the element's unit.
+func (p *profile) fitRun(field int, about []float64) least.Solution {
+	cols := p.columns(field)
+	at := p.fitAbout(cols, nil, about)
+	if len(p.redrawn) == 0 {
+		return at
+	}
+	for range hostRounds {
+		a := p.amounts(at)
+		if p.grey {
+			for j, x := range about {
+				a.values[j] += a.scale * x
+			}
+		}
+		at = p.fitAbout(cols, p.spreads(field, a), about)
+	}
+	return at
+}
+
+// addHost adds to a profile in the cells what the fit makes of the host's error.
+func (p *profile) addHost(dst []float64, field int, at least.Solution) {
+	z := at.Linear[len(p.fit.Linear):]
+	for k, spread := range p.spreads(field, p.amounts(at)) {
+		for i, v := range spread {
+			dst[i] += z[k] * v
+		}
+	}
+}
+
+// host says how much the error of the host widens the shift factor of the path of
+// the own best fit, whose curve is given.
+func (o *OwnBest) host(ctx context.Context, p *profile, c *Curve, confidence float64) error {
+	if len(p.redrawn) == 0 {
+		return nil
+	}
+	exact := *p
+	exact.redrawn = nil
+	without, err := exact.curve(ctx)
+	if err != nil {
+		return err
+	}
+	text := func(c *Curve) string {
+		f := find(c, confidence)
+		return fmt.Sprintf("%.3g (%.3g to %.3g)", f.Shift, f.Shift95[0], f.Shift95[1])
+	}
+	o.say("its host was redrawn %d times from its errors: with them the shift factor of %q is %s, with the host taken as exact %s",
+		len(p.redrawn), p.path.Name, text(c), text(&without))
+	return nil
+}
