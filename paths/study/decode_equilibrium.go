@@ -84,6 +84,9 @@ func (d *decoder) inMelt(n, melt *node, temps []thermal.Uncertain, c *Crystal, e
 	switch {
 	case !ok:
 		return nil
+	case c.Host != nil:
+		d.report(melt, "in a host by a spline, a zone in equilibrium with a melt is no plateau", `write smooth = "steps" in the crystal's host`)
+		return nil
 	case e.Partition == nil:
 		d.report(melt, "needs the partition relation of the element", `write partition = "sr-blundy1991" beside start, a key or the name of a [[partition]]`)
 		return nil
