@@ -145,7 +145,7 @@ func partitions(p *Plan, temp float64) (k []float64, kIn, kOut float64) {
 
 // TestCoupledRestStays: what is in equilibrium at a fixed temperature stays so to
 // round-off, for jumps of ln K up to 12 and integrals over twelve decades, with
-// ends sealed or held at their own equilibrium.
+// ends sealed, held at their own equilibrium, exchanging with it or following it.
 func TestCoupledRestStays(t *testing.T) {
 	const allowed = 1e-13 // of each value: some hundred roundings of 1e-16, most of which cancel
 	worst := 0.0
@@ -157,8 +157,13 @@ func TestCoupledRestStays(t *testing.T) {
 		plan := newPlan(t, p, Options{Cells: 40 + r.IntN(100)})
 		k, kIn, kOut := partitions(plan, coupledHold)
 		u := logUniform(r, 1e-3, 1e3)
-		if r.IntN(2) == 0 {
+		switch r.IntN(4) {
+		case 1:
 			p.Outer = []Rim{{Kind: Held, Value: u * kOut}}
+		case 2:
+			p.Outer = []Rim{{Kind: Transfer, Value: u * kOut, Rate: rateOf(p, h, logUniform(r, 0.1, 100), 2e4)}}
+		case 3:
+			p.Outer = following(Arrhenius{LnA: math.Log(u*kOut) + 5e3/coupledHold, E: 5e3})
 		}
 		if (p.Shape == Slab || p.R0 > 0) && r.IntN(2) == 0 {
 			p.Inner = []Rim{{Kind: Held, Value: u * kIn}}

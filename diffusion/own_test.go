@@ -353,6 +353,13 @@ func TestFrontOrder(t *testing.T) {
 // but one of a hundred, and is not over ten times too large at the median.
 func honest(t *testing.T, cases, seed int, problem func(r *rand.Rand, h *thermal.History, g float64) *Problem) {
 	t.Helper()
+	honestAlong(t, randomHistory, cases, seed, problem)
+}
+
+// honestAlong does so along histories of another kind.
+func honestAlong(t *testing.T, history func(tb testing.TB, r *rand.Rand) *thermal.History, cases, seed int,
+	problem func(r *rand.Rand, h *thermal.History, g float64) *Problem) {
+	t.Helper()
 	const (
 		covered, tooLarge = 0.99, 10
 		roundOff          = 1e-13 // what a few thousand solves of iterations leave
@@ -363,7 +370,7 @@ func honest(t *testing.T, cases, seed int, problem func(r *rand.Rand, h *thermal
 			t.Run(fmt.Sprintf("problem=%d", i), func(t *testing.T) {
 				t.Parallel()
 				r := source(seed, i)
-				h := randomHistory(t, r)
+				h := history(t, r)
 				g := logUniform(r, 1e-6, 10)
 				p := problem(r, h, g)
 				o := Options{Cells: 40 + r.IntN(40), Growth: 0.15 + 0.25*r.Float64()}
