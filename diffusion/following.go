@@ -13,14 +13,13 @@ import (
 
 // mean returns the mean of exp(LnA - E/T) over the piece, weighted by D.
 func (p *piece) mean(value Arrhenius) float64 {
-	if p.leg.Kind == thermal.Hold {
+	switch {
+	case p.leg.Kind == thermal.Hold:
 		return value.at(p.leg.T0)
-	}
-	plain := p.lnAlong(Arrhenius{}, 0, p.to)
-	if math.IsInf(plain, -1) { // of no width, or nothing diffuses: any value near it will do
+	case p.share == 0: // of no width, or nothing diffuses: any value near it will do
 		return value.at(p.leg.At(p.from))
 	}
-	return math.Exp(p.lnAlong(value, 0, p.to) - plain)
+	return math.Exp(p.law.lnAlong(p.leg, value, p.from, p.to) - p.ln)
 }
 
 // at returns exp(LnA - E/T) at a temperature, K.

@@ -76,6 +76,8 @@ func TestMeansOfPieces(t *testing.T) {
 		law, value := randomSum(r), rimValue(r)
 		p := piece{leg: leg, law: &law, from: leg.For * r.Float64()}
 		p.to = p.from + (leg.For-p.from)*logUniform(r, 1e-9, 1)
+		p.measure()
+		p.share = 1
 		only := newHistory(t, *leg)
 		d := func(temp float64) float64 { return math.Exp(law.LnD(temp)) }
 		g := byQuadrature(only, p.from, p.to, d)

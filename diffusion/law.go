@@ -153,15 +153,15 @@ type integrals interface {
 
 // lnAlong returns the logarithm of
 //
-//	integral of T^-k D exp(by.LnA - by.E/T) dt,  k = 0 or 1,
+//	integral of D exp(by.LnA - by.E/T) dt
 //
 // from t0 to t1, s, of a law without windows: such a factor only shifts the
 // constants of each term.
-func (l Law) lnAlong(path integrals, by Arrhenius, k int, t0, t1 float64) float64 {
+func (l Law) lnAlong(path integrals, by Arrhenius, t0, t1 float64) float64 {
 	sum := math.Inf(-1)
 	for _, a := range l.Terms {
 		if lnA := a.LnA + by.LnA; !math.IsInf(lnA, -1) {
-			sum = numeric.LnAdd(sum, lnA+path.LnArrhenius(a.E+by.E, k, t0, t1))
+			sum = numeric.LnAdd(sum, lnA+path.LnArrhenius(a.E+by.E, 0, t0, t1))
 		}
 	}
 	return sum
@@ -174,7 +174,7 @@ func (l Law) lnAlong(path integrals, by Arrhenius, k int, t0, t1 float64) float6
 // along the history, t0 and t1 in s. It is -Inf where nothing diffuses.
 func (l Law) LnIntegral(h *thermal.History, t0, t1 float64) float64 {
 	if l.Where == nil {
-		return l.lnAlong(h, Arrhenius{}, 0, t0, t1)
+		return l.lnAlong(h, Arrhenius{}, t0, t1)
 	}
 	sum := math.Inf(-1)
 	for i, a := range l.Terms {

@@ -5,6 +5,7 @@ import (
 	"sort"
 
 	"bankfire/thermal"
+	"bankfire/thermal/numeric"
 )
 
 // route is a span cut for its steps: into pieces along which temperature is
@@ -27,13 +28,19 @@ type piece struct {
 	law      *Law    // without windows
 	start    float64 // of the leg, s from the start of the path
 	from, to float64 // s from the start of the leg
+	ln, cold float64 // ln of the integrals of D dt and of D/T dt along it
 	share    float64 // of the span's integral of D dt
 }
 
-// lnAlong is the law's from the beginning of the piece to a time, s from the start
-// of its leg.
-func (p *piece) lnAlong(by Arrhenius, k int, to float64) float64 {
-	return p.law.lnAlong(p.leg, by, k, p.from, to)
+// measure finds the integrals along the piece.
+func (p *piece) measure() {
+	p.ln, p.cold = math.Inf(-1), math.Inf(-1)
+	for _, a := range p.law.Terms {
+		if !math.IsInf(a.LnA, -1) {
+			plain, cold := p.leg.LnArrheniusBoth(a.E, p.from, p.to)
+			p.ln, p.cold = numeric.LnAdd(p.ln, a.LnA+plain), numeric.LnAdd(p.cold, a.LnA+cold)
+		}
+	}
 }
 
 // lnD returns ln of D at a time, s from the start of the leg.
@@ -60,8 +67,8 @@ func (r *route) lay(law *Law, h *thermal.History, t0, t1 float64) {
 	most := math.Inf(-1)
 	for i := range r.pieces {
 		p := &r.pieces[i]
-		p.share = p.lnAlong(Arrhenius{}, 0, p.to) // for now its logarithm
-		most = math.Max(most, p.share)
+		p.measure()
+		most = math.Max(most, p.ln)
 	}
 	if r.lnG = most; math.IsInf(most, -1) {
 		return
@@ -69,7 +76,7 @@ func (r *route) lay(law *Law, h *thermal.History, t0, t1 float64) {
 	sum := 0.0
 	for i := range r.pieces {
 		p := &r.pieces[i]
-		p.share = math.Exp(p.share - most)
+		p.share = math.Exp(p.ln - most)
 		sum += p.share
 	}
 	for i := range r.pieces {
@@ -113,29 +120,33 @@ func (r *route) addPiece(p piece, to float64) piece {
 // by its part of the whole.
 func (r *route) cut(steps schedule) {
 	r.stretches, r.ends, r.times = r.stretches[:0], r.ends[:0], r.times[:0]
-	here, j := r.pieces[0], 0 // what is left of the piece in hand
-	r.times = append(r.times, here.start+here.from)
+	rest, j := r.pieces[0], 0 // what is left of the piece in hand
+	r.times = append(r.times, rest.start+rest.from)
 	owed := 0.0
 	for k, s := range steps {
 		owed += s.df
 		last := k == len(steps)-1
-		for j+1 < len(r.pieces) && (here.share <= owed || last) {
-			owed -= r.pass(here)
+		for j+1 < len(r.pieces) && (rest.share <= owed || last) {
+			owed -= r.pass(rest)
 			j++
-			here = r.pieces[j]
+			rest = r.pieces[j]
 		}
-		to := here
-		if to.share > owed && !last {
-			to.to, to.share = r.reach(here, owed, pace*s.df)
+		if rest.share <= owed || last {
+			owed -= r.pass(rest)
+			rest.from, rest.share = rest.to, 0
+		} else {
+			part := r.split(&rest, owed, pace*s.df)
+			owed -= r.pass(part)
 		}
-		owed -= r.pass(to)
-		here.from, here.share = to.to, math.Max(here.share-to.share, 0)
-		r.ends, r.times = append(r.ends, len(r.stretches)), append(r.times, here.start+here.from)
+		r.ends, r.times = append(r.ends, len(r.stretches)), append(r.times, rest.start+rest.from)
 	}
 }
 
-// pass adds a part of a piece to the step in hand and returns its share.
+// pass adds a piece to the step in hand and returns its share.
 func (r *route) pass(p piece) float64 {
+	if math.IsNaN(p.ln) && p.leg.Kind != thermal.Hold {
+		p.measure()
+	}
 	r.stretches = append(r.stretches, p)
 	return p.share
 }
@@ -143,45 +154,63 @@ func (r *route) pass(p piece) float64 {
 // pace is how closely a step must get the part of the integral that is its own, as
 // a part of it. What it misses the next one gets, so a mean is only moved by this
 // part of its change from step to step.
-const pace = 1e-6
+const pace = 1e-5
 
-// reach returns the time, s from the start of the leg, until which the integral
-// from the piece's beginning grows to owed of the whole, within slack, and to what
-// it has grown there. It takes Newton steps along which D grows or falls evenly in
-// its logarithm, and halves the rest where these lead out of it.
-func (r *route) reach(p piece, owed, slack float64) (t, grown float64) {
+// split takes from the beginning of a piece what has owed of the whole integral, at
+// most slack off.
+func (r *route) split(rest *piece, owed, slack float64) piece {
+	part := *rest
 	switch {
-	case !(owed > 0): // what the step before got too much is all
-		return p.from, 0
-	case p.leg.Kind == thermal.Hold:
-		return p.from + (p.to-p.from)*(owed/p.share), owed
+	case !(owed > 0): // the step before got all of it
+		part.to, part.share = part.from, 0
+	case rest.leg.Kind == thermal.Hold:
+		part.to, part.share = part.from+(part.to-part.from)*(owed/part.share), owed
+	default:
+		r.reach(&part, owed, slack)
 	}
+	rest.from, rest.share, rest.ln = part.to, math.Max(rest.share-part.share, 0), math.NaN() // until it is asked for
+	return part
+}
+
+// reach shortens the piece until it has owed of the whole integral, at most slack
+// off. The time at which the integral has grown so far is guessed by a rational
+// function of it that never falls, from D at both ends of the piece (Gregory and
+// Delbourgo 1982, IMA J. Numer. Anal. 2, 123-130), and then by Newton's method, with
+// D growing or falling evenly in its logarithm. Where that leads out of what lies
+// between, as in a quench, it is halved.
+func (r *route) reach(p *piece, owed, slack float64) {
 	a, b := p.from, p.to
-	lnA, lnB := p.lnD(a), p.lnD(b)
-	rate := (lnB - lnA) / (b - a)
-	t = a + evenly(owed/p.share*math.Expm1(lnB-lnA), rate, owed/p.share*(b-a))
+	width, x := b-a, owed/p.share
+	slowA, slowB := p.share*math.Exp(r.lnG-p.lnD(a)), p.share*math.Exp(r.lnG-p.lnD(b)) // s
+	t := a + width*(width*x*x+slowA*x*(1-x))/(width+(slowA+slowB-2*width)*x*(1-x))
 	for {
 		if !(t > a && t < b) {
 			t = a + (b-a)/2
 		}
-		grown = math.Exp(p.lnAlong(Arrhenius{}, 0, t) - r.lnG)
+		p.to = t
+		p.measure()
+		grown := math.Exp(p.ln - r.lnG)
 		if !(math.Abs(grown-owed) > slack) || !(t > a && t < b) {
-			return t, grown
+			p.share = grown
+			return
 		}
-		lnD := p.lnD(t)
 		if grown < owed {
-			a, lnA = t, lnD
+			a = t
 		} else {
-			b, lnB = t, lnD
+			b = t
 		}
-		rate = (lnB - lnA) / (b - a)
-		dt := (owed - grown) * math.Exp(r.lnG-lnD)
+		lnD, back := p.lnD(t), nearby*(t-p.from)
+		rate, dt := (lnD-p.lnD(t-back))/back, (owed-grown)*math.Exp(r.lnG-lnD)
 		t += evenly(rate*dt, rate, dt)
 	}
 }
 
-// evenly returns the time until which an integral of exp(rate t) from 0 grows to
-// by/rate; where rate is too small to divide by, plain.
+// nearby is how far before a time the slope of ln D there is taken, as a part of
+// the way that has been gone along the piece.
+const nearby = 1e-4
+
+// evenly returns the time in which an integral of exp(rate t) grows from 0 to
+// by/rate; where by is too small, plain.
 func evenly(by, rate, plain float64) float64 {
 	if !(math.Abs(by) > 1e-8) {
 		return plain
@@ -208,14 +237,13 @@ func (r *route) means(dst []float64, over func(p *piece) float64) {
 	}
 }
 
-// coldness returns the mean of 1/T over a piece, 1/K, weighted by D.
+// coldness returns the mean of 1/T over the piece, 1/K, weighted by D.
 func (p *piece) coldness() float64 {
-	if p.leg.Kind == thermal.Hold {
+	switch {
+	case p.leg.Kind == thermal.Hold:
 		return 1 / p.leg.T0
-	}
-	plain := p.lnAlong(Arrhenius{}, 0, p.to)
-	if math.IsInf(plain, -1) {
+	case p.share == 0: // of no width, or nothing diffuses: any value near it will do
 		return 1 / p.leg.At(p.from)
 	}
-	return math.Exp(p.lnAlong(Arrhenius{}, 1, p.to) - plain)
+	return math.Exp(p.cold - p.ln)
 }

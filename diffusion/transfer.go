@@ -133,7 +133,7 @@ func (c *cutter) cut(a, b float64) {
 	case c.rim.Given != nil:
 		q.above = c.plan.meanOver(c.h, c.rim.Given, c.given, a, b)
 	case c.rim.Equilibrium != nil:
-		q.above = math.Exp(c.law.lnAlong(c.h, *c.rim.Equilibrium, 0, a, b) - g)
+		q.above = math.Exp(c.law.lnAlong(c.h, *c.rim.Equilibrium, a, b) - g)
 	}
 	c.parts, c.lnG = append(c.parts, q), append(c.lnG, g)
 }

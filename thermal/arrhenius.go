@@ -26,6 +26,23 @@ func (l *Leg) LnArrhenius(e float64, k int, t0, t1 float64) float64 {
 	return l.arrhenius(e, k, t0, t1).log()
 }
 
+// LnArrheniusBoth is LnArrhenius for k = 0 and for k = 1, at little more than the cost of one where a leg is hold, ramp or
+// relax.
+func (l *Leg) LnArrheniusBoth(e, t0, t1 float64) (k0, k1 float64) {
+	t0, t1 = max(t0, 0), min(t1, l.length())
+	if t0 < t1 {
+		switch l.Kind {
+		case Ramp:
+			whole, cold := rampIntegrals(e, l.ramp(t0), l.ramp(t1), t1-t0)
+			return whole.log(), cold.log()
+		case Relax:
+			both := relaxIntegrals(e, l.T0, l.T1, t0/l.Tau, (t1-t0)/l.Tau)
+			return both[0].times(l.Tau).log(), both[1].times(l.Tau).log()
+		}
+	}
+	return l.arrhenius(e, 0, t0, t1).log(), l.arrhenius(e, 1, t0, t1).log()
+}
+
 // LnArrhenius is the logarithm of int_t0^t1 T^-k exp(-e/T) dt along the part of the path between t0 and t1 (s from its
 // start; what lies outside the path counts nothing). See Leg.LnArrhenius. Since it is a sum over legs, a leg of ten days
 // in a path of a million years counts in full. It does not allocate.
@@ -84,7 +101,7 @@ func (l *Leg) arrhenius(e float64, k int, t0, t1 float64) scaled {
 	case Ramp:
 		return rampIntegral(e, k, l.ramp(t0), l.ramp(t1), t1-t0)
 	case Relax:
-		return relaxIntegral(e, k, l.T0, l.T1, t0/l.Tau, (t1-t0)/l.Tau).times(l.Tau)
+		return relaxIntegrals(e, l.T0, l.T1, t0/l.Tau, (t1-t0)/l.Tau)[k].times(l.Tau)
 	case SheetCooling:
 		return l.Sheet.arrhenius(e, k, l.Since+t0, l.Since+t1)
 	case Table:
@@ -122,20 +139,45 @@ func narrowRise(uHot float64) float64 {
 // bracket T exp(-u) (1 - u e^u E1(u)) would lose are kept.
 // Source: Abramowitz and Stegun (1964), 5.1.14 and 5.1.26.
 func rampIntegral(e float64, k int, a, b, dt float64) scaled {
-	hot, cold := max(a, b), min(a, b)
-	if hot == cold {
-		return holdIntegral(e, k, hot, dt)
+	r, wide := newRamped(e, a, b, dt)
+	switch {
+	case !wide:
+		return narrowRamp(e, k, max(a, b), min(a, b), dt)
+	case k == 1:
+		return r.cold()
 	}
+	return r.whole()
+}
+
+// rampIntegrals are those for k = 0 and k = 1.
+func rampIntegrals(e, a, b, dt float64) (whole, cold scaled) {
+	r, wide := newRamped(e, a, b, dt)
+	if !wide {
+		return narrowRamp(e, 0, max(a, b), min(a, b), dt), narrowRamp(e, 1, max(a, b), min(a, b), dt)
+	}
+	return r.whole(), r.cold()
+}
+
+// ramped is what both integrals along a ramp are made of, u and exp(u) E2(u) at both ends, and exp(uHot - uCold).
+type ramped struct{ hot, coldEnd, uHot, uCold, fHot, fCold, fall, dt float64 }
+
+// newRamped finds them, unless the ramp is too narrow for them.
+func newRamped(e, a, b, dt float64) (r ramped, wide bool) {
+	hot, cold := max(a, b), min(a, b)
 	rise := e * ((hot - cold) / (hot * cold))
 	uHot, uCold := e/hot, e/cold
 	if !(rise > narrowRise(uHot)) {
-		return narrowRamp(e, k, hot, cold, dt)
+		return r, false
 	}
-	fHot, fCold, fall := e2Scaled(uHot), e2Scaled(uCold), math.Exp(-rise)
-	if k == 1 { // e^u E1(u) = (1 - e^u E2(u))/u
-		return scaled{dt / (hot - cold) * (e1From(uHot, fHot) - e1From(uCold, fCold)*fall), -uHot}
-	}
-	return scaled{dt / (hot - cold) * (hot*fHot - cold*fCold*fall), -uHot}
+	return ramped{hot, cold, uHot, uCold, e2Scaled(uHot), e2Scaled(uCold), math.Exp(-rise), dt}, true
+}
+
+func (r *ramped) whole() scaled {
+	return scaled{r.dt / (r.hot - r.coldEnd) * (r.hot*r.fHot - r.coldEnd*r.fCold*r.fall), -r.uHot}
+}
+
+func (r *ramped) cold() scaled { // e^u E1(u) = (1 - e^u E2(u))/u
+	return scaled{r.dt / (r.hot - r.coldEnd) * (e1From(r.uHot, r.fHot) - e1From(r.uCold, r.fCold)*r.fall), -r.uHot}
 }
 
 // convergentFrom is where the convergent in e2Scaled is right to 1.5e-15; beyond it is better.
@@ -180,6 +222,9 @@ func e1From(u, f float64) float64 {
 //
 // by Gauss-Legendre panels that keep clear of the pole at p = 0.
 func narrowRamp(e float64, k int, hot, cold, dt float64) scaled {
+	if hot == cold {
+		return holdIntegral(e, k, hot, dt)
+	}
 	width := (hot - cold) / (hot * cold)
 	start := 1 / hot
 	if e*width < -1 {

@@ -2,7 +2,8 @@ package thermal
 
 import "math"
 
-// relaxIntegral is int_a^(a+s) T^-k exp(-e/T) dx along T = ambient + (first - ambient) exp(-x), x in e-fold times.
+// relaxIntegrals are int_a^(a+s) T^-k exp(-e/T) dx for k = 0 and 1 along T = ambient + (first - ambient) exp(-x), x in
+// e-fold times. Almost all of the work is the same for both.
 //
 // With w = (T - ambient)/T, from w0 to w1, u = e/ambient and dx = -dw/(w (1 - w)) the exponent is linear, -e/T = u w - u, and
 //
@@ -13,23 +14,20 @@ import "math"
 // the ambient temperature, is no pole, keeps the long stay there apart. Both are sums of the exponential integrals E1(e/T)
 // and Ei(u w), which cancel on short parts and overflow on long ones, so they are integrated by Gauss-Legendre panels,
 // starting where the exponent is largest.
-func relaxIntegral(e float64, k int, first, ambient, a, s float64) scaled {
-	r := relaxation{u: e / ambient, k: k}
+func relaxIntegrals(e, first, ambient, a, s float64) [2]scaled {
+	u := e / ambient
 	off := first - ambient
 	if a > 0 {
 		off *= math.Exp(-a)
 	}
-	if math.Abs(off)*(1+math.Abs(r.u)) < arrived*ambient {
-		return holdIntegral(e, k, ambient, s)
+	if math.Abs(off)*(1+math.Abs(u)) < arrived*ambient {
+		return [2]scaled{holdIntegral(e, 0, ambient, s), holdIntegral(e, 1, ambient, s)}
 	}
 	lost := passed(s) * off
 	w0, w1 := off/(ambient+off), (off-lost)/(ambient+off-lost)
 	width := lost / (ambient + off) * (1 - w1) // w0 - w1 without cancellation
-	m, ln := r.integral(w0, w1, width, s)
-	if k == 1 {
-		m /= ambient
-	}
-	return scaled{m, ln - r.u}
+	m, ln := relaxation{u}.integral(w0, w1, width, s)
+	return [2]scaled{{m.k0, ln - u}, {m.k1 / ambient, ln - u}}
 }
 
 // passed is 1 - exp(-s), by the slower function only where the faster would cancel.
@@ -43,23 +41,26 @@ func passed(s float64) float64 {
 // arrived is how near T/ambient must be to 1, over the exponent, to be it: half an ulp is 1e-16.
 const arrived = 1e-18
 
-// relaxation is what the integrand knows.
-type relaxation struct {
-	u float64 // e/ambient
-	k int
-}
+// relaxation is what the integrand knows: u = e/ambient.
+type relaxation struct{ u float64 }
+
+// twin is a value for k = 0 and one for k = 1.
+type twin struct{ k0, k1 float64 }
+
+// plus is s + f a, for both.
+func (a twin) plus(s, f float64) twin { return twin{s + f*a.k0, s + f*a.k1} }
 
 // integral is the one over w, the time s included, as m exp(ln). width is w0 - w1.
-func (r relaxation) integral(w0, w1, width, s float64) (m, ln float64) {
+func (r relaxation) integral(w0, w1, width, s float64) (m twin, ln float64) {
 	short := math.Abs(w1) > math.Abs(w0)/2
 	if r.u*w0 < 0 { // the exponent rises towards the ambient temperature
 		return r.rising(w0, w1, width, s, short)
 	}
 	ln = r.u * w0
 	if short {
-		return -r.march(w0, -width, ln, 0), ln
+		return r.march(w0, -width, ln, 0).plus(0, -1), ln
 	}
-	return s*math.Exp(-ln) - r.march(w0, -width, ln, math.Exp(-ln)), ln
+	return r.march(w0, -width, ln, math.Exp(-ln)).plus(s*math.Exp(-ln), -1), ln
 }
 
 // Where the exponent at the late end of a relaxation lies below that of the ambient temperature by more than farBelow, the
@@ -68,16 +69,17 @@ func (r relaxation) integral(w0, w1, width, s float64) (m, ln float64) {
 const farBelow, cutBelow, nearBelow = -1, -2, -3
 
 // rising is integral where the exponent rises towards the ambient temperature.
-func (r relaxation) rising(w0, w1, width, s float64, short bool) (m, ln float64) {
+func (r relaxation) rising(w0, w1, width, s float64, short bool) (m twin, ln float64) {
 	switch ln = r.u * w1; {
 	case short || ln <= farBelow:
 		return r.march(w1, width, ln, 0), ln
 	case r.u*w0 >= nearBelow:
-		return s + r.march(w1, width, 0, 1), 0
+		return r.march(w1, width, 0, 1).plus(s, 1), 0
 	}
 	cut := cutBelow / r.u
 	early := math.Log(w0 / cut * ((1 - cut) / (1 - w0))) // time from w0 to the cut
-	return s - early + r.march(w1, cut-w1, 0, 1) + r.march(cut, w0-cut, 0, 0), 0
+	near, far := r.march(w1, cut-w1, 0, 1).plus(s-early, 1), r.march(cut, w0-cut, 0, 0)
+	return twin{near.k0 + far.k0, near.k1 + far.k1}, 0
 }
 
 // march is
@@ -86,11 +88,12 @@ func (r relaxation) rising(w0, w1, width, s float64, short bool) (m, ln float64)
 //
 // in panels that start at from, where u w is largest and about ln, and stop where nothing is left. base is e^-ln, or 0, and
 // then w = 0 is a pole.
-func (r relaxation) march(from, width, ln, base float64) float64 {
-	sum, at, left := 0.0, from, width
+func (r relaxation) march(from, width, ln, base float64) (sum twin) {
+	at, left := from, width
 	for left != 0 && r.u*(at-from) >= -negligible {
 		step := r.step(at, left, base == 0)
-		sum += step * r.panel(at, step, ln, base)
+		mean := r.panel(at, step, ln, base)
+		sum.k0, sum.k1 = sum.k0+step*mean.k0, sum.k1+step*mean.k1
 		at, left = at+step, left-step
 	}
 	return sum
@@ -114,26 +117,22 @@ func clearOf(distance float64, away bool) float64 {
 }
 
 // panel is the mean of the integrand of march from w to w + step.
-func (r relaxation) panel(w, step, ln, base float64) float64 {
+func (r relaxation) panel(w, step, ln, base float64) twin {
 	room := 1 - max(w, w+step)
 	if base == 0 {
 		room = min(room, math.Abs(w), math.Abs(w+step))
 	}
-	sum, middle := 0.0, w+step/2
+	sum0, sum1, middle := 0.0, 0.0, w+step/2
 	centre := math.Exp(r.u*middle - ln)
 	for _, n := range gauss(math.Abs(r.u*step), room/math.Abs(step)) {
 		x := n.x * step
 		f := math.Exp(r.u * x)
-		sum += n.w * r.both(middle-x, middle+x, centre/f-base, centre*f-base, base)
+		near, far := middle-x, middle+x
+		atNear, atFar := centre/f-base, centre*f-base
+		nearPoles, farPoles := near-near*near, far-far*far
+		weight := n.w / (nearPoles * farPoles)
+		sum0 += weight * (atNear*farPoles + atFar*nearPoles)
+		sum1 += weight * ((atNear-near*(atNear+base))*farPoles + (atFar-far*(atFar+base))*nearPoles)
 	}
-	return sum
-}
-
-// both is the sum of the integrand at x and y, from e^(u x - ln) - base and e^(u y - ln) - base.
-func (r relaxation) both(x, y, atX, atY, base float64) float64 {
-	if r.k == 1 {
-		atX, atY = atX-x*(atX+base), atY-y*(atY+base)
-	}
-	x, y = x-x*x, y-y*y
-	return (atX*y + atY*x) / (x * y)
+	return twin{sum0, sum1}
 }
