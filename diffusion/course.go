@@ -116,7 +116,7 @@ func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
 	p.attend(&s.inner, p.problem.Inner, h, r)
 	p.attend(&s.outer, p.problem.Outer, h, r)
 	if coupled {
-		p.fill(&s.coldness, r, (*piece).coldness)
+		p.fill(&s.coldness, r, (*piece).meanColdness)
 		p.leadEnds(&s.coldness)
 	}
 	if p.problem.source != nil {

@@ -16,7 +16,7 @@ func (p *piece) mean(value Arrhenius) float64 {
 	switch {
 	case p.leg.Kind == thermal.Hold:
 		return value.at(p.leg.T0)
-	case p.share == 0: // of no width, or nothing diffuses: any value near it will do
+	case p.empty(): // any value near it will do
 		return value.at(p.leg.At(p.from))
 	}
 	return math.Exp(p.law.lnAlong(p.leg, value, p.from, p.to) - p.ln)

@@ -77,7 +77,6 @@ func TestMeansOfPieces(t *testing.T) {
 		p := piece{leg: leg, law: &law, from: leg.For * r.Float64()}
 		p.to = p.from + (leg.For-p.from)*logUniform(r, 1e-9, 1)
 		p.measure()
-		p.share = 1
 		only := newHistory(t, *leg)
 		d := func(temp float64) float64 { return math.Exp(law.LnD(temp)) }
 		g := byQuadrature(only, p.from, p.to, d)
@@ -85,7 +84,7 @@ func TestMeansOfPieces(t *testing.T) {
 			got float64
 			of  func(temp float64) float64
 		}{
-			"1/T": {p.coldness(), func(temp float64) float64 { return 1 / temp }},
+			"1/T": {p.meanColdness(), func(temp float64) float64 { return 1 / temp }},
 			"rim": {p.mean(value), value.at},
 		} {
 			want := byQuadrature(only, p.from, p.to, func(temp float64) float64 { return d(temp) * test.of(temp) }) / g

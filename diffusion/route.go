@@ -28,20 +28,27 @@ type piece struct {
 	law      *Law    // without windows
 	start    float64 // of the leg, s from the start of the path
 	from, to float64 // s from the start of the leg
-	ln, cold float64 // ln of the integrals of D dt and of D/T dt along it
+	ln       float64 // ln of the integral of D dt along it; NaN is not known yet
+	coldness float64 // mean of 1/T along it, 1/K, weighted by D
 	share    float64 // of the span's integral of D dt
 }
 
-// measure finds the integrals along the piece.
+// measure finds the integral along the piece and the mean of 1/T.
 func (p *piece) measure() {
-	p.ln, p.cold = math.Inf(-1), math.Inf(-1)
+	p.ln, p.coldness = math.Inf(-1), 0
 	for _, a := range p.law.Terms {
-		if !math.IsInf(a.LnA, -1) {
-			plain, cold := p.leg.LnArrheniusBoth(a.E, p.from, p.to)
-			p.ln, p.cold = numeric.LnAdd(p.ln, a.LnA+plain), numeric.LnAdd(p.cold, a.LnA+cold)
+		ln, coldness := p.leg.LnArrheniusCold(a.E, p.from, p.to)
+		if ln += a.LnA; len(p.law.Terms) == 1 {
+			p.ln, p.coldness = ln, coldness
+		} else if !math.IsInf(ln, -1) {
+			p.ln = numeric.LnAdd(p.ln, ln)
+			p.coldness += float64(math.Exp(ln-p.ln) * (coldness - p.coldness))
 		}
 	}
 }
+
+// empty reports whether the piece is of no width or nothing diffuses along it.
+func (p *piece) empty() bool { return !(p.from < p.to) || math.IsInf(p.ln, -1) }
 
 // lnD returns ln of D at a time, s from the start of the leg.
 func (p *piece) lnD(t float64) float64 { return p.law.LnD(p.leg.At(t)) }
@@ -237,13 +244,13 @@ func (r *route) means(dst []float64, over func(p *piece) float64) {
 	}
 }
 
-// coldness returns the mean of 1/T over the piece, 1/K, weighted by D.
-func (p *piece) coldness() float64 {
+// meanColdness returns the mean of 1/T over the piece, 1/K, weighted by D.
+func (p *piece) meanColdness() float64 {
 	switch {
 	case p.leg.Kind == thermal.Hold:
 		return 1 / p.leg.T0
-	case p.share == 0: // of no width, or nothing diffuses: any value near it will do
+	case p.empty(): // any value near it will do
 		return 1 / p.leg.At(p.from)
 	}
-	return math.Exp(p.cold - p.ln)
+	return p.coldness
 }

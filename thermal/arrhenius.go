@@ -26,21 +26,31 @@ func (l *Leg) LnArrhenius(e float64, k int, t0, t1 float64) float64 {
 	return l.arrhenius(e, k, t0, t1).log()
 }
 
-// LnArrheniusBoth is LnArrhenius for k = 0 and for k = 1, at little more than the cost of one where a leg is hold, ramp or
-// relax.
-func (l *Leg) LnArrheniusBoth(e, t0, t1 float64) (k0, k1 float64) {
+// LnArrheniusCold is LnArrhenius for k = 0, and the mean of 1/T, 1/K, in which a time counts as exp(-e/T): the integral for k =
+// 1 over that for k = 0, at little more than the cost of one where the leg is hold, ramp or relax. On an empty part the mean is
+// 1/T where that begins.
+func (l *Leg) LnArrheniusCold(e, t0, t1 float64) (ln, coldness float64) {
 	t0, t1 = max(t0, 0), min(t1, l.length())
-	if t0 < t1 {
-		switch l.Kind {
-		case Ramp:
-			whole, cold := rampIntegrals(e, l.ramp(t0), l.ramp(t1), t1-t0)
-			return whole.log(), cold.log()
-		case Relax:
-			both := relaxIntegrals(e, l.T0, l.T1, t0/l.Tau, (t1-t0)/l.Tau)
-			return both[0].times(l.Tau).log(), both[1].times(l.Tau).log()
-		}
+	if !(t0 < t1) {
+		return math.Inf(-1), 1 / l.At(t0)
 	}
-	return l.arrhenius(e, 0, t0, t1).log(), l.arrhenius(e, 1, t0, t1).log()
+	var whole, cold scaled
+	switch l.Kind {
+	case Hold:
+		return holdIntegral(e, 0, l.T0, t1-t0).log(), 1 / l.T0
+	case Ramp:
+		whole, cold = rampIntegrals(e, l.ramp(t0), l.ramp(t1), t1-t0)
+	case Relax:
+		both := relaxIntegrals(e, l.T0, l.T1, t0/l.Tau, (t1-t0)/l.Tau)
+		whole, cold = both[0].times(l.Tau), both[1].times(l.Tau)
+	default:
+		whole, cold = l.arrhenius(e, 0, t0, t1), l.arrhenius(e, 1, t0, t1)
+	}
+	coldness = cold.m / whole.m
+	if cold.ln != whole.ln {
+		coldness *= math.Exp(cold.ln - whole.ln)
+	}
+	return whole.log(), coldness
 }
 
 // LnArrhenius is the logarithm of int_t0^t1 T^-k exp(-e/T) dt along the part of the path between t0 and t1 (s from its

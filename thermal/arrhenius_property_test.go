@@ -83,6 +83,32 @@ func TestAgainstQuadrature(t *testing.T) {
 	}
 }
 
+// TestCold compares the integral and the mean of 1/T of LnArrheniusCold with gonum's rule, along legs and parts of them; on an
+// empty part the mean is what its beginning has.
+func TestCold(t *testing.T) {
+	const tol = 4e-11 // that of TestAgainstQuadrature, in both integrals
+	r := rand.New(rand.NewPCG(2, 6))
+	for n := range 300 {
+		l := randomLeg(r)
+		e, t0, t1 := between(r, -5000, 80000), 0.0, l.length()
+		if n%7 == 0 {
+			e = 0
+		}
+		if n%2 == 0 {
+			t0 = between(r, 0, t1)
+			t1 = between(r, t0, t1)
+		}
+		name := fmt.Sprintf("%d: %v, e = %g, %g to %g s", n, l, e, t0, t1)
+		ln, coldness := l.LnArrheniusCold(e, t0, t1)
+		whole := panels(&l, e, 0, t0, t1)
+		closeTo(t, name, ln, whole, tol)
+		closeTo(t, "mean of 1/T, "+name, coldness*math.Exp(whole-panels(&l, e, 1, t0, t1)), 1, tol)
+		if ln, coldness := l.LnArrheniusCold(e, t0, t0); !math.IsInf(ln, -1) || coldness != 1/l.At(t0) {
+			t.Errorf("%s: empty part: ln %g, mean of 1/T %g", name, ln, coldness)
+		}
+	}
+}
+
 // panels is ln of the integral along a leg by gonum's Gauss-Legendre rule, in panels that crowd towards t = 0.
 func panels(l *Leg, e float64, k int, t0, t1 float64) float64 {
 	lo, hi := l.Range()
