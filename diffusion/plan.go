@@ -249,7 +249,7 @@ func (p *Plan) GEnough() (why string, ok bool) {
 		return "a rim changes along the path", false
 	}
 	if p.problem.moving() {
-		return "a rim follows time, or exchanges at a rate of its own", false
+		return "a rim follows time or temperature, or exchanges at a rate of its own", false
 	}
 	if p.problem.Law.Where != nil {
 		return "D only scales, with temperature and the conditions of legs, and every end is sealed or held throughout", true
