@@ -40,7 +40,7 @@ type ElementCourse struct {
 // did, and at which temperatures.
 type LegShare struct {
 	Name                 string
-	Start, Duration      float64 // s, Start from that of the path
+	Start, Duration      float64 // s, Start from that of the path; of a leg that began before the crystal, what is left of it
 	First, Highest, Last float64 // temperatures, K
 	Share                float64 // of G
 }
@@ -87,7 +87,7 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 		amounts = p.amounts(fitted).stated()
 	}
 	if result == nil {
-		out.Notes = append(lawNotes(e, path.History), reachNotes(c, out.LnG+fastest(c, e))...)
+		out.Notes = append(lawNotes(c, e, path.History), reachNotes(c, out.LnG+fastest(c, e))...)
 	}
 	out.WhyG, out.GEnough = p.plan().GEnough()
 	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))
@@ -95,12 +95,26 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 	for i := range steps {
 		out.NumErr = math.Max(out.NumErr, math.Abs(steps[i])+math.Abs(cells[i]))
 	}
-	out.Legs = legShares(path.History, e.Law.Law)
+	begins, err := c.Begins(path.History)
+	if err != nil {
+		return nil, err
+	}
+	if begins > 0 {
+		out.Notes = append(out.Notes, fmt.Sprintf("%s exists from %s after the start of the path; earlier it is shown as it began", c.Name, thermal.DurationText(begins)))
+	}
+	out.Legs = legShares(p.history, e.Law.Law)
+	for i := range out.Legs {
+		out.Legs[i].Start += begins
+	}
 	for _, t := range at {
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		cols, err := p.until(t)
+		since := max(0, t-begins)
+		if t <= path.History.Life() {
+			since = min(since, p.history.Life())
+		}
+		cols, err := p.until(since)
 		if err != nil {
 			return nil, err
 		}
@@ -123,13 +137,14 @@ func run(c *study.Crystal, e *study.Element, path *study.Path) (*profile, *Profi
 	return p, nil, p.audit(0)
 }
 
-// until runs the path up to time t and returns the columns.
+// until runs the path up to time t, s from when the crystal began to exist, and
+// returns the columns.
 func (p *profile) until(t float64) ([][][]float64, error) {
 	cols := make([][][]float64, len(p.runs))
 	for i := range p.runs {
 		r := &p.runs[i]
 		var course diffusion.Course
-		if err := r.plan.Course(&course, p.path.History, t); err != nil {
+		if err := r.plan.Course(&course, p.history, t); err != nil {
 			return nil, err
 		}
 		fields := r.fields[1:2]

@@ -251,7 +251,7 @@ func TestFollowWithoutATraverse(t *testing.T) {
 	for k, r := range got.Centres {
 		near(t, fmt.Sprintf("at %g um", r/um), got.Final[k], model.seen(r), 0.06)
 	}
-	if notes := strings.Join(got.Notes, "; "); notes != strings.Join(lawNotes(e, path.History), "; ") {
+	if notes := strings.Join(got.Notes, "; "); notes != strings.Join(lawNotes(&s.Crystals[0], e, path.History), "; ") {
 		t.Errorf("notes %q", notes)
 	}
 	if len(got.Free) != 0 || !got.GEnough || got.WhyG == "" {

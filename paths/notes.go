@@ -33,7 +33,7 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 	if !r.Settled {
 		notes = append(notes, "the fit of edge, tilt and origin did not settle: chi-square may be a little lower than stated")
 	}
-	notes = append(notes, lawNotes(r.Element, path.History)...)
+	notes = append(notes, lawNotes(r.Crystal, r.Element, path.History)...)
 	for _, f := range r.Free {
 		switch {
 		case math.IsInf(f.Sigma, 1):
@@ -47,11 +47,15 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 	return append(notes, reachNotes(r.Crystal, r.LnG+fastest(r.Crystal, r.Element))...)
 }
 
-// lawNotes says what about the law and the partition relation, used along the
-// history, the reader must know.
-func lawNotes(e *study.Element, h *thermal.History) []string {
-	notes := outOfRange(e, h)
-	for _, caution := range e.Law.CautionsOn(h) {
+// lawNotes says what about the law and the partition relation, used along what the
+// crystal sees of a path, the reader must know.
+func lawNotes(c *study.Crystal, e *study.Element, h *thermal.History) []string {
+	seen, err := c.Sees(h)
+	if err != nil {
+		return nil // barred for it
+	}
+	notes := outOfRange(e, seen)
+	for _, caution := range e.Law.CautionsOn(seen) {
 		notes = append(notes, lawName(e)+": "+caution)
 	}
 	for _, p := range e.Partitions() {
@@ -64,7 +68,7 @@ func lawNotes(e *study.Element, h *thermal.History) []string {
 			notes = append(notes, "solubility "+s.Row.Key+": "+caution)
 		}
 	}
-	notes = append(notes, e.Beyond(h)...)
+	notes = append(notes, c.Beyond(e, h)...)
 	return notes
 }
 

@@ -10,6 +10,7 @@ import (
 	"bankfire/paths/least"
 	"bankfire/paths/study"
 	"bankfire/paths/traverse"
+	"bankfire/thermal"
 )
 
 // The plan of a profile. Its error is measured for the path as it is and at its
@@ -27,6 +28,7 @@ type profile struct {
 	crystal *study.Crystal
 	element *study.Element
 	path    *study.Path
+	history *thermal.History // what the crystal sees of the path
 	free    []study.FreeValue
 	runs    []variant // one an edge width between which the lens interpolates
 	redrawn []variant // one a redrawn host; none where the host is exact
@@ -54,7 +56,11 @@ func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
 	if err != nil {
 		return nil, err
 	}
-	p := &profile{crystal: c, element: e, path: path, free: free, refined: refined}
+	seen, err := c.Sees(path.History)
+	if err != nil {
+		return nil, err
+	}
+	p := &profile{crystal: c, element: e, path: path, history: seen, free: free, refined: refined}
 	options := diffusion.Options{Finest: finest(e.Traverse), Refined: refined}
 	if e.Traverse == nil {
 		return p, p.addRun(problem, e.Start.Edge.Middle(), &options)
@@ -138,7 +144,7 @@ func (p *profile) addRun(problem *diffusion.Problem, edge float64, options *diff
 	options.Faces = plan.Faces()
 	p.runs = append(p.runs, variant{plan: plan, fields: make([]diffusion.Field, batch)})
 	r := &p.runs[len(p.runs)-1]
-	return plan.Course(&r.course, p.path.History, p.path.History.Life())
+	return plan.Course(&r.course, p.history, p.history.Life())
 }
 
 func (p *profile) plan() *diffusion.Plan { return p.runs[0].plan }

@@ -223,12 +223,12 @@ func firstErrors(errs []error) error {
 // path solves path i for every element, unless the user rules it out.
 func (w *weighing) path(ctx context.Context, i int) error {
 	path := &w.study.Paths[i]
-	p := weighedPath{barred: slices.Clone(path.Barred)}
-	reasons, err := w.study.Limits.Barred(path.History)
+	reasons, err := w.study.Barred(path)
 	if err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
-	if p.barred = append(p.barred, reasons...); len(p.barred) == 0 {
+	p := weighedPath{barred: reasons}
+	if len(p.barred) == 0 {
 		for _, e := range w.elements {
 			if err := p.add(ctx, e, path, w.laws); err != nil {
 				return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
@@ -343,7 +343,7 @@ func (p *profile) byE(sigma float64) [2]float64 {
 	if sigma == 0 {
 		return [2]float64{}
 	}
-	law, h := &p.element.Law, p.path.History
+	law, h := &p.element.Law, p.history
 	middle := inverseMiddle(law)
 	if middle == 0 { // a law of unknown range: what it is known for is taken to be what it is used for
 		middle = 1 / standIn(law.Law, h, p.runs[0].course.LnG())
@@ -406,7 +406,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 	final := a.of(p.mix(p.columns(0), edge))
 	p.addHost(final, 0, at)
 	everywhere.Apply(r.Final, final)
-	r.StandIn = standIn(p.element.Law.Law, p.path.History, r.LnG)
+	r.StandIn = standIn(p.element.Law.Law, p.history, r.LnG)
 	return r, nil
 }
 

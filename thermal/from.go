@@ -70,7 +70,7 @@ func (r *Rows) from(t float64) *Rows {
 }
 
 // SameFrom reports whether what comes after t seconds of h is what comes after u seconds of other but for rounding: the same
-// kinds of legs one after the other for the same durations, within a part in 1e12 of the longer path, erupting at the same
+// kinds of legs under the same settings one after the other for the same durations, within a part in 1e12 of the longer path, erupting at the same
 // time, and at the same temperatures within a thousandth of a kelvin. Names do not matter, nor legs of no duration. Nothing
 // is the same from a time on that a path does not have.
 func (h *History) SameFrom(t float64, other *History, u float64) bool {
@@ -109,7 +109,7 @@ func near(a, b, within float64) bool { return math.Abs(a-b) <= within }
 
 // alike compares two legs, times within slack, s.
 func (l *Leg) alike(m *Leg, slack float64) bool {
-	if l.Kind != m.Kind || !near(l.For, m.For, slack) {
+	if l.Kind != m.Kind || l.Setting != m.Setting || !near(l.For, m.For, slack) {
 		return false
 	}
 	switch l.Kind {

@@ -170,6 +170,7 @@ func TestSameFromTells(t *testing.T) {
 	}{
 		{"kind", func(l []Leg) { l[0] = Leg{Kind: Ramp, For: 10, T0: 900, T1: 900} }},
 		{"duration", func(l []Leg) { l[0].For = 11 }},
+		{"setting", func(l []Leg) { l[0].Setting = 1 }},
 		{"temperature", func(l []Leg) { l[0].T0 = 901 }},
 		{"end", func(l []Leg) { l[1].T1 = 1001 }},
 		{"e-fold time", func(l []Leg) { l[2].Tau = 4 }},

@@ -87,12 +87,12 @@ func writePathsRead(w io.Writer, s *study.Study) error {
 	for i := range s.Paths {
 		p := &s.Paths[i]
 		lo, hi := p.History.Range()
-		broken, err := s.Limits.Barred(p.History)
+		reasons, err := s.Barred(p)
 		if err != nil {
 			return err
 		}
 		barred := ""
-		if reasons := slices.Concat(p.Barred, broken); len(reasons) > 0 {
+		if len(reasons) > 0 {
 			barred = "barred: " + strings.Join(reasons, "; ")
 		}
 		table.row(p.Name, thermal.DurationText(p.Eruption), celsius(lo), celsius(hi), barred)
@@ -114,6 +114,12 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 		zones = append(zones, zone)
 	}
 	fmt.Fprintf(w, "%s, %s, %s from %s to %s: %s\n", c.Name, c.Mineral, c.Shape, micrometres(c.R0), micrometres(c.Size()), list(zones))
+	if c.Exists != nil {
+		fmt.Fprintf(w, "  it exists from %s\n", quoted(c.Exists.Text))
+	}
+	if d := c.Dissolves; d != nil {
+		fmt.Fprintf(w, "  it dissolves above %s within %s\n", thermal.TemperatureText(d.Temp), thermal.DurationText(d.Most))
+	}
 	for i := range c.Elements {
 		e := &c.Elements[i]
 		fmt.Fprintf(w, "  %s by %s\n", e.Name, lawText(&e.Law))

@@ -207,7 +207,8 @@ func writeElement(text *bytes.Buffer, c *paths.Course, e *paths.ElementCourse, m
 func writeLegs(text *bytes.Buffer, legs []paths.LegShare, h *thermal.History) {
 	table := newTable()
 	table.row("leg", "begins after", "duration", "start [C]", "highest [C]", "end [C]", "part of G")
-	eruption, told := h.Eruption(), false
+	eruption := h.Eruption()
+	told := eruption <= legs[0].Start && legs[0].Start > 0 // before the crystal
 	for i, l := range legs {
 		table.row(l.Name, thermal.DurationText(l.Start), thermal.DurationText(l.Duration),
 			degrees(l.First), degrees(l.Highest), degrees(l.Last), shareText(l.Share))

@@ -67,10 +67,15 @@ func drawnWeighing(r *paths.Result, n int) *figure.Weighing {
 	return f
 }
 
-// drawnPath is a path as it is drawn for element n; one that was not run has no
-// profile.
+// drawnPath is a path, as far as the crystal sees it, as it is drawn for element n;
+// one that was not run has no profile.
 func drawnPath(p *paths.PathResult, n int) figure.Path {
 	h := p.Path.History
+	if len(p.Profiles) > 0 {
+		if seen, err := p.Profiles[n].Crystal.Sees(h); err == nil {
+			h = seen
+		}
+	}
 	drawn := figure.Path{
 		Name: p.Path.Name, Verdict: verdictInWords(p),
 		Reproduces: p.Outcome.Verdict == paths.Reproduces, Barred: p.Outcome.Verdict == paths.Barred,

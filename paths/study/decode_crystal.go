@@ -56,6 +56,7 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	c.Zones, c.Hosted = d.zones(n)
 	inner := d.inner(n.get("inner"), &c)
 	d.hostFile(n.get("host"), &c)
+	d.existence(n, &c)
 	d.elements(n, &c, inner)
 	d.noteHost(&c, n.get("host") != nil)
 	return c

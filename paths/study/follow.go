@@ -144,9 +144,9 @@ func withSolubility(list []*Solubility, s *Solubility) []*Solubility {
 	return append(list, s)
 }
 
-// Beyond says by how much the relations that the element's rims follow along a path
+// Beyond says by how much the relations that an element's rims follow along a path
 // leave the temperatures for which they were calibrated.
-func (e *Element) Beyond(h *thermal.History) []string {
+func (c *Crystal) Beyond(e *Element, h *thermal.History) []string {
 	var out []string
 	for _, rims := range [][]Rim{e.Inner, e.Rims} {
 		for i := range rims {
@@ -154,7 +154,7 @@ func (e *Element) Beyond(h *thermal.History) []string {
 			if f == nil || f.Solubility == nil {
 				continue
 			}
-			from, until, err := inForce(rims, i, h)
+			from, until, err := c.inForce(rims, i, h)
 			if err != nil {
 				continue // barred for it
 			}
@@ -166,11 +166,17 @@ func (e *Element) Beyond(h *thermal.History) []string {
 	return out
 }
 
-// inForce is the time, s, from and until which rim i of a list is in force on a path.
-func inForce(rims []Rim, i int, h *thermal.History) (from, until float64, err error) {
+// inForce is the time, s, from and until which rim i of a list is in force on a path,
+// from the start of that, and the crystal sees it: at no time if until is not later.
+func (c *Crystal) inForce(rims []Rim, i int, h *thermal.History) (from, until float64, err error) {
+	begins, err := c.Begins(h)
+	if err != nil {
+		return 0, 0, err
+	}
 	if from, err = rims[i].from(h); err != nil {
 		return 0, 0, err
 	}
+	from = max(from, begins)
 	until = h.Life()
 	if i+1 < len(rims) {
 		next, err := rims[i+1].from(h)

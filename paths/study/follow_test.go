@@ -88,7 +88,7 @@ func TestSaturatedNotes(t *testing.T) {
 			t.Errorf("%s: notes %s, want %q", test.key, notes, test.want)
 		}
 		e := &s.Crystals[0].Elements[0]
-		if got := e.Beyond(s.Paths[0].History); len(got) != 0 {
+		if got := s.Crystals[0].Beyond(e, s.Paths[0].History); len(got) != 0 {
 			t.Errorf("%s from 750 to 780 C: %q", test.key, got)
 		}
 		if test.beyond == "" {

@@ -94,7 +94,7 @@ func holds(t *testing.T, data []byte, files map[string]string) {
 		if _, err := s.Limits.Barred(s.Paths[i].History); err != nil {
 			t.Fatalf("accepted, but a limit cannot be judged: %v", err)
 		}
-		if len(s.Paths[i].Barred) > 0 {
+		if _, err := s.Barred(&s.Paths[i]); err != nil || len(s.Paths[i].Barred) > 0 {
 			continue
 		}
 		for j := range s.Crystals {

@@ -47,6 +47,7 @@ const (
 	zoneTable
 	hostTable
 	hostErrorTable
+	dissolvesTable
 	innerTable
 	elementTable
 	lawTable
@@ -81,10 +82,11 @@ var tables = [...]Table{
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
 	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
-	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "element"}},
+	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "exists_from", "dissolves", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth", "width", "error"}},
 	hostErrorTable:  {"crystal.host.error", errorKeys()},
+	dissolvesTable:  {"crystal.dissolves", []string{"above", "longer"}},
 	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
 	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "own", "times", "sigma", "range", "citation", "caution"}},

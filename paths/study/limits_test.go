@@ -131,10 +131,10 @@ between = [
 	if err != nil {
 		t.Fatal(err)
 	}
-	want := [][]string{nil,
-		{`the rim of Ti in Q1 from "100 yr after start": 10 yr after the end of the path`,
-			`the rim of Ti in Q1 from "1 yr after start of wake": the path has no leg "wake"`},
-		{`the rim of Ti in Q1 from "1 yr after start of wake": the path has no leg "wake"`},
+	want := [][]Bar{nil,
+		{{"Q1", `the rim of Ti in Q1 from "100 yr after start": 10 yr after the end of the path`},
+			{"Q1", `the rim of Ti in Q1 from "1 yr after start of wake": the path has no leg "wake"`}},
+		{{"Q1", `the rim of Ti in Q1 from "1 yr after start of wake": the path has no leg "wake"`}},
 	}
 	for i, p := range s.Paths {
 		if !slices.Equal(p.Barred, want[i]) {

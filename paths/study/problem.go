@@ -24,9 +24,10 @@ import (
 // An element whose law depends on the element itself has no free values, and
 // Problem.Own.
 //
-// Moments of rims are resolved on the path. The error is a *thermal.InputError
-// at the rim whose moment the path does not have, or whose file does not cover
-// the time it is in force.
+// Moments of rims are resolved on the path, of which the problem is what the
+// crystal sees: its times count from where Sees begins. The error is a
+// *thermal.InputError at the rim whose moment the path does not have, or whose file
+// does not cover the time it is in force, or that of Begins.
 func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, []FreeValue, error) {
 	b := builder{c: c, e: e, h: h}
 	out := &diffusion.Problem{Shape: c.Shape, R0: c.R0, Zones: b.zones(), Law: e.Law.Law, Spread: c.Spread(e), Own: e.Law.own()}
@@ -43,11 +44,42 @@ func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, [
 	if out.Outer, err = b.rims(e.Rims, c.Size()); err != nil {
 		return nil, nil, err
 	}
+	begins, err := c.Begins(h)
+	if err != nil {
+		return nil, nil, err
+	}
+	countFrom(begins, out.Inner)
+	countFrom(begins, out.Outer)
 	b.zoneValues()
 	b.rimValues("inner rim", e.Inner, func(basis *diffusion.Basis) []float64 { return basis.Inner })
 	b.rimValues("rim", e.Rims, func(basis *diffusion.Basis) []float64 { return basis.Outer })
 	out.Free = b.basis
 	return out, b.free, nil
+}
+
+// countFrom makes the times of rims count from begins, s. What came before is then
+// at negative times.
+func countFrom(begins float64, rims []diffusion.Rim) {
+	if begins == 0 {
+		return
+	}
+	for i := range rims {
+		rims[i].From -= begins
+		if g := rims[i].Given; g != nil {
+			rims[i].Given = &diffusion.Given{
+				At:     func(t float64) float64 { return g.At(begins + t) },
+				Breaks: minus(begins, g.Breaks), Jumps: minus(begins, g.Jumps),
+			}
+		}
+	}
+}
+
+func minus(t float64, times []float64) []float64 {
+	out := make([]float64, len(times))
+	for i := range times {
+		out[i] = times[i] - t
+	}
+	return out
 }
 
 // holds reports, as Problem does, the rim that cannot be placed on the path.
@@ -160,7 +192,7 @@ func (b *builder) rims(list []Rim, r float64) ([]diffusion.Rim, error) {
 		out = append(out, diffusion.Rim{Kind: rim.Kind, From: from, Value: b.value(rim), Rate: rim.Rate})
 	}
 	for i := range list {
-		from, until, err := inForce(list, i, b.h)
+		from, until, err := b.c.inForce(list, i, b.h)
 		switch rim := &list[i]; {
 		case err != nil:
 		case rim.Following != nil:

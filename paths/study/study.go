@@ -43,8 +43,8 @@ type Threshold struct {
 type Path struct {
 	Name     string
 	History  *thermal.History
-	Eruption float64  // that of History, s from the start; the end of the path where the study says nothing
-	Barred   []string // why the crystals cannot have seen it: moments of their rims that it does not have; see also Limits
+	Eruption float64 // that of History, s from the start; the end of the path where the study says nothing
+	Barred   []Bar   // why crystals cannot have seen it: it does not have moments of theirs, or dissolves them; see also Limits
 	Place    thermal.Place
 }
 
@@ -83,11 +83,14 @@ type Interval struct {
 type Crystal struct {
 	Name, Mineral string
 	Shape         diffusion.Shape
-	R0            float64   // inner radius, m; 0 is the centre
-	Zones         []Zone    // at least one, from the inside outwards
-	Hosted        bool      // every zone has a Host, or the crystal has
-	Host          *Host     // a smoothed profile of the host; nil is one value a zone
-	Elements      []Element // at least one
+	R0            float64         // inner radius, m; 0 is the centre
+	Zones         []Zone          // at least one, from the inside outwards
+	Hosted        bool            // every zone has a Host, or the crystal has
+	Host          *Host           // a smoothed profile of the host; nil is one value a zone
+	Elements      []Element       // at least one
+	Exists        *thermal.Moment // from which on it sees a path; nil is the start
+	ExistsPlace   thermal.Place   // of Exists
+	Dissolves     *TimeLimit      // bars a path from it, counted from when it exists; nil is never
 	Place         thermal.Place
 }
 

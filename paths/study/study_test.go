@@ -298,6 +298,16 @@ func TestEveryKeyLimits(t *testing.T) {
 	}
 }
 
+func TestEveryKeyExistence(t *testing.T) {
+	all := everyKey(t).Crystals
+	c := all[slices.IndexFunc(all, func(c Crystal) bool { return c.Name == "EK-3" })]
+	if c.Exists == nil || c.Exists.Text != "1 yr after start" || c.Dissolves == nil || !c.Dissolves.Stretch {
+		t.Fatalf("exists from %+v, dissolves %+v", c.Exists, c.Dissolves)
+	}
+	near(t, "dissolves above", c.Dissolves.Temp, 1000+zc)
+	near(t, "longer", c.Dissolves.Most, 20*yr)
+}
+
 // TestDefaults holds what is assumed where a study says nothing, and that it
 // says so.
 func TestDefaults(t *testing.T) {

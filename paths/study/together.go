@@ -12,6 +12,7 @@ import (
 func (d *decoder) together(s *Study) {
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
+		d.exists(s.Paths, c)
 		for j := range c.Elements {
 			e := &c.Elements[j]
 			d.moments(s.Paths, c, e, e.Inner)
@@ -56,7 +57,7 @@ func (d *decoder) interval(paths []Path, l *Interval) {
 func (d *decoder) moments(paths []Path, c *Crystal, e *Element, rims []Rim) {
 	for i := 1; i < len(rims); i++ {
 		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError { return after(rims, i, p.History) }) {
-			p.Barred = append(p.Barred, fmt.Sprintf("the rim of %s in %s from %q: %s", e.Name, c.Name, rims[i].From.Text, why.Problem))
+			p.bar(c, fmt.Sprintf("the rim of %s in %s from %q: %s", e.Name, c.Name, rims[i].From.Text, why.Problem))
 		}
 	}
 }
@@ -108,13 +109,17 @@ func (d *decoder) lacking(paths []Path, check func(p *Path) *thermal.InputError)
 
 // meet checks one element on one path.
 func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
-	if in := inputError(c.holds(e, p.History), e.Place); in != nil && len(p.Barred) == 0 {
+	seen, err := c.Sees(p.History)
+	if err != nil {
+		return // barred for it
+	}
+	if in := inputError(c.holds(e, p.History), e.Place); in != nil && !p.bars(c) {
 		on := *in
 		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
 		d.add(&on)
 	}
-	d.cold(c, e, p)
-	legs := p.History.Legs()
+	d.cold(c, e, p, seen)
+	legs := seen.Legs()
 	for i := range legs {
 		if legs[i].Kind != thermal.Table {
 			continue
@@ -136,12 +141,12 @@ func (d *decoder) coarse(e *Element, p *Path, rows *thermal.Rows, energy float64
 // maxLnK bounds ln K along a path.
 const maxLnK = 200
 
-// cold reports a path that is so cold that K of an element is out of all bounds.
-func (d *decoder) cold(c *Crystal, e *Element, p *Path) {
+// cold reports a path that, where the crystal sees it, is so cold that K of an element is out of all bounds.
+func (d *decoder) cold(c *Crystal, e *Element, p *Path, seen *thermal.History) {
 	if e.Partition == nil {
 		return
 	}
-	lowest, _ := p.History.Range()
+	lowest, _ := seen.Range()
 	for i, z := range c.Zones {
 		least, most := c.HostRange(i)
 		for _, x := range []float64{least, most} {
