@@ -51,52 +51,172 @@ func (w *newton) resize(n int) {
 // mostNewton is how many iterations there are at most.
 const mostNewton = 40
 
-// nonlinear does one step of a problem with D that depends on C, and returns how
-// many solves it took.
-func (p *Plan) nonlinear(f *Field, sp *span, k int, st step, g float64, rough bool, b *book) int {
-	c, w, own := f.Cols[0], &f.newton, p.problem.Own
-	s := st.length(g)
-	op := p.operator(f, sp, k, rough)
-	in, out := p.mouths(op, sp, k, st, s, rough)
-	lo, hi := w.guess(c, s)
-	w.bound(f, op, &in, &out, lo, hi)
+// iteration is a job of such a problem, in the step in hand.
+type iteration struct {
+	plan  *Plan
+	f     *Field
+	job   Job
+	rough bool
+	book  book
+
+	sp      *span   // nil where the job has none or rests
+	g       float64 // its integral
+	k       int     // the solve
+	st      step
+	s       float64 // its length
+	op      *operator
+	in, out mouth
+	solves  int     // so far
+	left    float64 // by how much the last iteration has moved the state
+	anew    bool    // the slopes are to be taken anew
+	busy    bool    // not settled yet
+}
+
+// runOwn takes the start through all spans of one or two jobs.
+func (p *Plan) runOwn(dst [2]*Field, jobs [2]Job, rough bool) {
+	var its [2]iteration
+	spans := 0
+	for n, f := range dst {
+		if f == nil {
+			continue
+		}
+		p.reset(f)
+		f.atSpan = f.atSpan[:0]
+		its[n] = iteration{plan: p, f: f, job: jobs[n], rough: rough, book: p.opened}
+		spans = max(spans, len(jobs[n].Course.spans))
+	}
+	for i := range spans {
+		its[0].enter(i)
+		its[1].enter(i)
+		for k := range p.solves(rough) {
+			its[0].begin(k)
+			its[1].begin(k)
+			iterate(&its[0], &its[1])
+			its[0].end()
+			its[1].end()
+		}
+	}
+	for n := range its {
+		if f := its[n].f; f != nil {
+			its[n].book.close(&f.Stats, p, f.Cols[0])
+		}
+	}
+}
+
+// enter takes the job to span i.
+func (t *iteration) enter(i int) {
+	t.sp = nil
+	if t.f == nil || i >= len(t.job.Course.spans) {
+		return
+	}
+	sp := &t.job.Course.spans[i]
+	t.f.atSpan = t.plan.appendEnds(t.f.atSpan, t.f.Cols[0])
+	if t.g = sp.integral(t.job.LnM); t.g != 0 {
+		t.sp = sp
+		t.f.newton.length = 0 // after an event there is nothing to go on from
+	}
+}
+
+// begin prepares solve k of the span.
+func (t *iteration) begin(k int) {
+	if t.sp == nil {
+		return
+	}
+	p, f, w := t.plan, t.f, &t.f.newton
+	t.k, t.st = k, p.solves(t.rough)[k]
+	t.s = t.st.length(t.g)
+	t.op = p.operator(f, t.sp, k, t.rough)
+	t.in, t.out = p.mouths(t.op, t.sp, k, t.st, t.s, t.rough)
+	lo, hi := w.guess(f.Cols[0], t.s)
+	w.bound(f, t.op, &t.in, &t.out, lo, hi)
 	if p.problem.source != nil {
 		w.lo, w.hi = math.Inf(-1), math.Inf(1)
 	}
-	w.cond = op.cond
+	w.cond = t.op.cond
 	if p.host != nil {
-		w.layBridges(p, op, 1/sp.coldness.of(rough)[k])
+		w.layBridges(p, t.op, 1/t.sp.coldness.of(t.rough)[k])
 	}
-	solves, anew := 0, true
-	for left := w.extent; solves < mostNewton; {
-		solves++
-		u := f.driving(op, c)
-		w.confine(op, c, u)
-		p.own.look(w.factor, c)
-		w.crossBridges(own, op, u)
-		w.open(own, &in, &out, c, anew)
-		if anew {
-			w.slopes(own, op, s, c, u)
-			w.levelBridges(s)
-			w.factorise(op.vol)
+	t.solves, t.left, t.anew, t.busy = 0, w.extent, true, true
+}
+
+// iterate iterates until both have settled.
+func iterate(a, b *iteration) {
+	for a.busy || b.busy {
+		a.assemble()
+		b.assemble()
+		switch {
+		case a.busy && b.busy:
+			if a.anew && b.anew {
+				factoriseTwo(&a.f.newton, &b.f.newton, a.op.vol, b.op.vol)
+			} else {
+				a.factorise()
+				b.factorise()
+			}
+			sweepTwo(&a.f.newton, &b.f.newton)
+		case a.busy:
+			a.factorise()
+			a.f.newton.sweep()
+		default:
+			b.factorise()
+			b.f.newton.sweep()
 		}
-		w.balance(p.grid.volumes, w.cond, s, u)
-		p.addSource(w.rhs, sp, k, st, rough)
-		w.sweep()
-		moved := w.move(op, c)
-		if w.settled(moved, left, st.euler) {
-			break
-		}
-		anew = moved > slowNewton*left
-		left = moved
+		a.advance()
+		b.advance()
 	}
-	in.enter(b, w.inflow-float64(w.against[0]*w.rhs[0]), w.against[0], st.euler)
+}
+
+// assemble fills in the matrix, if it is to be taken anew, and what is missing
+// from the balance.
+func (t *iteration) assemble() {
+	if !t.busy {
+		return
+	}
+	p, c, w, own := t.plan, t.f.Cols[0], &t.f.newton, t.plan.problem.Own
+	u := t.f.driving(t.op, c)
+	w.confine(t.op, c, u)
+	p.own.look(w.factor, c)
+	w.crossBridges(own, t.op, u)
+	w.open(own, &t.in, &t.out, c, t.anew)
+	if t.anew {
+		w.slopes(own, t.op, t.s, c, u)
+		w.levelBridges(t.s)
+	}
+	w.balance(p.grid.volumes, w.cond, t.s, u)
+	p.addSource(w.rhs, t.sp, t.k, t.st, t.rough)
+}
+
+func (t *iteration) factorise() {
+	if t.anew {
+		t.f.newton.factorise(t.op.vol)
+	}
+}
+
+// advance moves the state by what has been found, and sees whether it has settled.
+func (t *iteration) advance() {
+	if !t.busy {
+		return
+	}
+	w := &t.f.newton
+	t.solves++
+	moved := w.move(t.op, t.f.Cols[0])
+	t.busy = t.solves < mostNewton && !w.settled(moved, t.left, t.st.euler)
+	t.anew = moved > slowNewton*t.left
+	t.left = moved
+}
+
+// end books the step and takes the state to where it ends.
+func (t *iteration) end() {
+	if t.sp == nil {
+		return
+	}
+	c, w := t.f.Cols[0], &t.f.newton
 	n := len(c)
-	out.enter(b, -w.outflow-float64(w.onward[n]*w.rhs[n-1]), w.onward[n], st.euler)
-	if !st.euler {
+	t.in.enter(&t.book, w.inflow-float64(w.against[0]*w.rhs[0]), w.against[0], t.st.euler)
+	t.out.enter(&t.book, -w.outflow-float64(w.onward[n]*w.rhs[n-1]), w.onward[n], t.st.euler)
+	if !t.st.euler {
 		w.finish(c)
 	}
-	return solves
+	t.f.Stats.Steps += t.solves
 }
 
 // finish takes c from the middle of a step to its end.
@@ -255,65 +375,6 @@ func (p *Plan) addSource(rhs []float64, sp *span, k int, st step, rough bool) {
 	}
 	for i, r := range p.grid.centres {
 		rhs[i] += float64(p.grid.volumes[i] * dt * p.problem.source(r, t))
-	}
-}
-
-// factorise prepares for sweep to solve (V K + slopes) d = rhs, from both ends to
-// the middle. As in sweep.go only positive numbers are added: a cell of excess e
-// that drives a outwards and is driven b by the next one hands on b e/(e + a).
-func (w *newton) factorise(vol []float64) {
-	n := len(vol)
-	m := n / 2
-	pivot, on, back := w.pivot[:n], w.on[:n], w.back[:n]
-	onward, against := w.onward[:n+1], w.against[:n+1]
-	x, y := against[0], onward[n]
-	i, j := 0, n-1
-	if n&1 == 0 { // the left chain is one cell longer
-		e, a := vol[0]+x, onward[1]
-		inv := 1 / (e + a)
-		pivot[0], on[0], back[0] = inv, float64(a*inv), float64(against[1]*inv)
-		x = float64(back[0] * e)
-		i = 1
-	}
-	for ; i < m; i, j = i+1, j-1 {
-		e, a := vol[i]+x, onward[i+1]
-		f, b := vol[j]+y, against[j]
-		invA, invB := 1/(e+a), 1/(f+b)
-		backA, backB := float64(against[i+1]*invA), float64(onward[j]*invB)
-		x, y = float64(backA*e), float64(backB*f)
-		pivot[i], on[i], back[i] = invA, float64(a*invA), backA
-		pivot[j], on[j], back[j] = invB, float64(b*invB), backB
-	}
-	pivot[m] = 1 / (vol[m] + x + y)
-}
-
-// sweep solves in place of the right-hand side.
-func (w *newton) sweep() {
-	d := w.rhs
-	n := len(d)
-	m := n / 2
-	pivot, on, back := w.pivot[:n], w.on[:n], w.back[:n]
-	x, y := 0.0, 0.0
-	i, j := 0, n-1
-	if n&1 == 0 {
-		x = float64(on[0] * d[0])
-		i = 1
-	}
-	for ; i < m; i, j = i+1, j-1 {
-		a, b := d[i]+x, d[j]+y
-		d[i], d[j] = a, b
-		x, y = float64(on[i]*a), float64(on[j]*b)
-	}
-	d[m] = float64((d[m] + x + y) * pivot[m])
-	x, y = d[m], d[m]
-	i, j = m-1, m+1
-	for ; j < n; i, j = i-1, j+1 {
-		x = float64(d[i]*pivot[i]) + float64(back[i]*x)
-		y = float64(d[j]*pivot[j]) + float64(back[j]*y)
-		d[i], d[j] = x, y
-	}
-	if i == 0 {
-		d[0] = float64(d[0]*pivot[0]) + float64(back[0]*x)
 	}
 }
 

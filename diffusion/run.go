@@ -40,7 +40,8 @@ type Field struct {
 
 // Run solves the plan's problem for all jobs and writes the outcome of jobs[k]
 // to dst[k]; the slices must have equal lengths. Up to four jobs go side by
-// side, and dst[k] depends on jobs[k] alone, to the bit. Run does not allocate
+// side, two where D depends on the element itself, and dst[k] depends on jobs[k]
+// alone, to the bit. Run does not allocate
 // once dst has been used before; one dst belongs to one goroutine at a time.
 // Courses made by another plan are refused.
 func (p *Plan) Run(dst []Field, jobs []Job) error {
@@ -51,10 +52,9 @@ func (p *Plan) Run(dst []Field, jobs []Job) error {
 		return err
 	}
 	if p.problem.Own != nil {
-		for k := range jobs {
-			p.runOne(&dst[k], jobs[k], false)
+		for ; len(jobs) > 1; dst, jobs = dst[2:], jobs[2:] {
+			p.runOwn([2]*Field{&dst[0], &dst[1]}, [2]Job{jobs[0], jobs[1]}, false)
 		}
-		return nil
 	}
 	for ; len(jobs) > 1; dst, jobs = dst[min(lanes, len(dst)):], jobs[min(lanes, len(jobs)):] {
 		n := min(lanes, len(jobs))
@@ -156,6 +156,10 @@ func (p *Plan) reset(f *Field) {
 
 // runOne takes the start through all spans of the job's course.
 func (p *Plan) runOne(f *Field, job Job, rough bool) {
+	if p.problem.Own != nil {
+		p.runOwn([2]*Field{f}, [2]Job{job}, rough)
+		return
+	}
 	p.reset(f)
 	f.lane.resize(len(p.grid.centres))
 	f.atSpan = f.atSpan[:0]
@@ -169,12 +173,7 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 		if g == 0 {
 			continue
 		}
-		f.newton.length = 0 // after an event there is nothing to go on from
 		for k, st := range p.solves(rough) {
-			if p.problem.Own != nil {
-				f.Stats.Steps += p.nonlinear(f, sp, k, st, g, rough, &book)
-				continue
-			}
 			f.Stats.Steps++
 			op := p.operator(f, sp, k, rough)
 			for j := range f.Cols {
