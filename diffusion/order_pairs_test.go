@@ -48,7 +48,7 @@ func TestOrdersOfPairs(t *testing.T) {
 				switch {
 				case c.law == "front" && of != "steps":
 					last, least, most = mean, ofFronts, math.Inf(1)
-				case c.law == "own" && c.start == "jump" && of == "both":
+				case q.Own != nil && c.start == "jump" && of == "both":
 					least = afterOwnJump
 				}
 				if !(last >= least && last <= most) {

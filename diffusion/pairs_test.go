@@ -14,7 +14,7 @@ import (
 var (
 	pairShapes = []string{"slab", "cylinder", "ball"} // by Shape
 	pairRims   = []string{"sealed", "held", "both held", "prescribed", "following", "transfer", "transfer following"}
-	pairLaws   = []string{"plain", "sum", "switched", "spread", "zones", "smooth host", "host of zones", "own", "front"}
+	pairLaws   = []string{"plain", "sum", "switched", "spread", "zones", "smooth host", "host of zones", "own", "own in zones", "front"}
 	pairStarts = []string{"smooth", "jump", "edge", "linear"}
 	pairLegs   = []string{"hold", "ramp", "relax", "table", "reheats", "sheet"}
 )
@@ -255,6 +255,9 @@ func (c pairCase) layLaw(q *pairProblem) {
 		p.Zones[1].Host, p.Zones[1].Times = 1, 0.6
 	case "own":
 		p.Own = growing(1.5)
+	case "own in zones":
+		p.LnK, p.Own = lnK, growing(-0.7) // if D grows instead, two errors nearly cancel in these cells
+		p.Zones[1].Host = 1
 	case "front":
 		p.Own = power(1)
 	}
@@ -268,7 +271,7 @@ func (c pairCase) layRims(q *pairProblem) {
 	if c.start == "smooth" && c.law != "front" {
 		value, inner = pairOuter, pairInner
 		// a rim of zones' K is at odds with what is beside them
-		q.damped = c.law == "zones" || c.law == "host of zones" || c.rim == "prescribed" || c.rim == "transfer"
+		q.damped = c.law == "zones" || c.law == "host of zones" || c.law == "own in zones" || c.rim == "prescribed" || c.rim == "transfer"
 	}
 	if c.rim == "transfer" {
 		value = pairRim

@@ -148,26 +148,29 @@ func (f *few) rate(dst, c []float64, t, temp float64) {
 			d += math.Exp(a.LnA - a.E/temp)
 		}
 	}
-	var k, inner, outer []float64
-	var kIn, kOut float64
+	n := len(f.cells)
+	k, inner, outer := make([]float64, n), make([]float64, n), make([]float64, n)
+	first, last := make([]float64, n), make([]float64, n) // K at both faces
 	for i, cell := range f.cells {
-		first, mean, last, half, otherHalf := f.partition(cell, temp)
-		k, inner, outer, kOut = append(k, mean), append(inner, half), append(outer, otherHalf), last
-		if i == 0 {
-			kIn = first
-		}
+		first[i], k[i], last[i], inner[i], outer[i] = f.partition(cell, temp)
 	}
-	last := len(c) - 1
-	flux := make([]float64, last+2)
-	for i := 1; i <= last; i++ {
-		flux[i] = d * (f.factor(c[i-1]) + f.factor(c[i])) / 2 * (c[i-1]/k[i-1] - c[i]/k[i]) / (outer[i-1] + inner[i])
+	flux := make([]float64, n+1)
+	for i := 1; i < n; i++ {
+		a, b := c[i-1]/k[i-1], c[i]/k[i]
+		left := (f.factor(c[i-1]) + f.factor(c[i])) / 2
+		right := left
+		if f.cells[i-1].host[2] != f.cells[i].host[0] {
+			left = (f.factor(c[i-1]) + f.factor(last[i-1]*(a+b)/2)) / 2
+			right = (f.factor(c[i]) + f.factor(first[i]*(a+b)/2)) / 2
+		}
+		flux[i] = d * (a - b) / (outer[i-1]/left + inner[i]/right)
 	}
 	if len(f.Inner) > 0 { // held
 		v := f.Inner[0].Value
-		flux[0] = d * (f.factor(v) + f.factor(c[0])) / 2 * (v/kIn - c[0]/k[0]) / inner[0]
+		flux[0] = d * (f.factor(v) + f.factor(c[0])) / 2 * (v/first[0] - c[0]/k[0]) / inner[0]
 	}
 	if len(f.Outer) > 0 {
-		flux[last+1] = f.leaves(c[last], k[last], kOut, d/outer[last], t, temp)
+		flux[n] = f.leaves(c[n-1], k[n-1], last[n-1], d/outer[n-1], t, temp)
 	}
 	for i := range dst {
 		dst[i] = (flux[i] - flux[i+1]) / f.cells[i].volume
