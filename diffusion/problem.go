@@ -31,6 +31,10 @@ type Zone struct {
 	Edge  float64 // width w of the edge at its outer boundary, m: an error function of standard deviation w/4; 0 is a jump
 	Times float64 // factor on D in this zone; 0 is read as 1
 	Host  float64 // composition of the host in this zone, in the unit that LnK asks for
+	// Form makes of a plateau a profile that is proportional to it: Start, and what a
+	// free value adds to it, times Form(r). It must be smooth, also a little way into
+	// the neighbours where there is an edge. nil is 1.
+	Form func(r float64) float64
 }
 
 // RimKind says what holds at an end of the crystal.

@@ -2,6 +2,7 @@ package diffusion
 
 import (
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/integrate/quad"
 )
@@ -17,9 +18,9 @@ const reach = 9
 // cellMeans fills dst with the exact volume means, over the grid's cells, of
 // the zones' plateaux joined by their edges,
 //
-//	C(r) = C_0 + sum over boundaries of (C_{i+1} - C_i) Phi((r - r_i)/s_i).
+//	C(r) = C_0 + sum over boundaries of (C_{i+1} - C_i) Phi((r - r_i)/s_i),
 //
-// values holds one plateau a zone.
+// and of what their forms add to them. values holds one plateau a zone.
 func (p *Problem) cellMeans(dst []float64, g *grid, values []float64) {
 	for j := range dst {
 		dst[j] = values[0]
@@ -39,6 +40,37 @@ func (p *Problem) cellMeans(dst []float64, g *grid, values []float64) {
 			}
 		}
 	}
+	if slices.ContainsFunc(p.Zones, func(z Zone) bool { return z.Form != nil }) {
+		addProfile(dst, p.Shape, g, func(r float64) float64 { return p.formed(r, values) })
+	}
+}
+
+// formed returns what the zones' forms add at r to the plateaux. With Phi_i the part
+// that lies outside boundary i, zone i has the part Phi_{i-1} - Phi_i of C(r).
+func (p *Problem) formed(r float64, values []float64) float64 {
+	sum, outside := 0.0, 1.0
+	for i, z := range p.Zones {
+		beyond := 0.0
+		if i < len(p.Zones)-1 {
+			beyond = outsideOf(r-z.Outer, z.Edge/edgesPerWidth)
+		}
+		if z.Form != nil && outside != beyond && values[i] != 0 {
+			sum += values[i] * (outside - beyond) * (z.Form(r) - 1)
+		}
+		outside = beyond
+	}
+	return sum
+}
+
+// outsideOf returns Phi(x/s), for s = 0 a step.
+func outsideOf(x, s float64) float64 {
+	switch {
+	case x >= reach*s:
+		return 1
+	case x <= -reach*s:
+		return 0
+	}
+	return math.Erfc(-x/(s*math.Sqrt2)) / 2
 }
 
 // edgeMean returns the volume mean over [a, b] of Phi((r - at)/s), from the
