@@ -22,7 +22,7 @@ func (d *decoder) equilibrium(n, way *node, s *Start, c *Crystal, e *Element, u 
 	}
 	var at func(zone int) Plateau
 	if way == n.get("melt") {
-		at = d.inMelt(n, way, temps, c, e, u)
+		at = d.inMelt(n, way, temps, s, c, e, u)
 	} else {
 		at = d.saturated(n, way, temps, s, c, e, u)
 	}
@@ -37,7 +37,11 @@ func (d *decoder) equilibrium(n, way *node, s *Start, c *Crystal, e *Element, u 
 		}
 		u.known[p.Value] = true
 		s.Zones[i] = p
-		d.note("%s: %s starts in equilibrium at %.0f C, at %s", e.Name, z.Name, temps[i].Value-thermal.ZeroCelsius, p.text(u.unit))
+		where := ""
+		if s.Melts != nil && c.Host != nil {
+			where = fmt.Sprintf(" in its middle, in host %.3g, and follows its host from there", s.Melts[i].Host)
+		}
+		d.note("%s: %s starts in equilibrium at %.0f C, at %s%s", e.Name, z.Name, temps[i].Value-thermal.ZeroCelsius, p.text(u.unit), where)
 	}
 }
 
@@ -69,10 +73,11 @@ func (d *decoder) uncertainTemperature(n *node, example string) thermal.Uncertai
 	return t
 }
 
-// inMelt returns the plateau of each zone in equilibrium with what the melt had, C = K m:
+// inMelt returns the plateau of each zone in equilibrium with what the melt had, C = K m,
+// where a smoothed host varies in it that in its middle:
 //
 //	(sigma C / C)^2 = (sigma m / m)^2 + (ln K sigma T / T)^2.
-func (d *decoder) inMelt(n, melt *node, temps []thermal.Uncertain, c *Crystal, e *Element, u *units) func(zone int) Plateau {
+func (d *decoder) inMelt(n, melt *node, temps []thermal.Uncertain, s *Start, c *Crystal, e *Element, u *units) func(zone int) Plateau {
 	const example = `write one value a zone, such as melt = ["90 +- 15 ppm", "140 ppm"]`
 	values := make([]Plateau, len(c.Zones))
 	unit := d.concentrationUnit(n.get("unit"))
@@ -84,16 +89,16 @@ func (d *decoder) inMelt(n, melt *node, temps []thermal.Uncertain, c *Crystal, e
 	switch {
 	case !ok:
 		return nil
-	case c.Host != nil:
-		d.report(melt, "in a host by a spline, a zone in equilibrium with a melt is no plateau", `write smooth = "steps" in the crystal's host`)
-		return nil
 	case e.Partition == nil:
 		d.report(melt, "needs the partition relation of the element", `write partition = "sr-blundy1991" beside start, a key or the name of a [[partition]]`)
 		return nil
 	}
+	for i := range c.Zones {
+		s.Melts = append(s.Melts, Grown{temps[i].Value, c.HostAt(c.middle(i))})
+	}
 	return func(i int) Plateau {
 		t, m := temps[i], values[i]
-		lnK := e.Partition.LnK(c.Zones[i].Host, t.Value)
+		lnK := e.Partition.LnK(s.Melts[i].Host, t.Value)
 		k := math.Exp(lnK)
 		return Plateau{Value: k * m.Value, Sigma: k * math.Hypot(m.Sigma, m.Value*lnK*t.Sigma/t.Value)}
 	}

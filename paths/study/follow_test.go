@@ -304,3 +304,27 @@ func TestWrongStarts(t *testing.T) {
 		})
 	}
 }
+
+// TestStartInDrawnHost: where the host of a zone is drawn anew, what it started with in
+// equilibrium with the same melt goes as K, and so does a rim that is tied to it.
+func TestStartInDrawnHost(t *testing.T) {
+	s, err := followingStudy(t, magmatic, `{ held = "skin" }`, startOf(`{ melt = ["2000 ppm", "1400 +- 100 ppm"], temperature = ["750 C", "800 C"], edge = "0 um" }`)...)
+	if err != nil {
+		t.Fatal(err)
+	}
+	drawn := s.Crystals[0]
+	drawn.Zones = slices.Clone(drawn.Zones)
+	drawn.Zones[1].Host = 0.43
+	p, _, err := drawn.Problem(&drawn.Elements[0], s.Paths[0].History)
+	if err != nil {
+		t.Fatal(err)
+	}
+	ratio := math.Exp(-100e3 * 0.03 / (thermal.GasConstant * (800 + zc)))
+	skin := drawn.Elements[0].Start.Zones[1].Value
+	if p.Zones[0].Form != nil {
+		t.Error("the core's host is as it was")
+	}
+	near(t, "form", p.Zones[1].Form(110*um), ratio)
+	near(t, "rim", p.Outer[0].Value, ratio*skin)
+	near(t, "what the plateau does to it", p.Free[0].Outer[0], ratio)
+}

@@ -45,6 +45,33 @@ func (c *Crystal) HostAt(r float64) float64 {
 	return c.Zones[len(c.Zones)-1].Host
 }
 
+// middle is the distance of the middle of zone i from the centre, m.
+func (c *Crystal) middle(i int) float64 {
+	r := c.R0
+	for _, z := range c.Zones[:i] {
+		r += z.Width
+	}
+	return r + c.Zones[i].Width/2
+}
+
+// form is what a start in equilibrium with a melt makes of the plateau of zone i: K in
+// the host at r over K in the host for which the plateau is stated. It is nil where
+// the host is that one everywhere.
+func (c *Crystal) form(e *Element, i int) func(r float64) float64 {
+	if e.Start.Melts == nil {
+		return nil
+	}
+	m := e.Start.Melts[i]
+	over := func(x float64) float64 { return math.Exp(e.Partition.LnK(x, m.Temp) - e.Partition.LnK(m.Host, m.Temp)) }
+	switch x := c.Zones[i].Host; {
+	case c.Host != nil:
+		return func(r float64) float64 { return over(c.Host.At(r)) }
+	case x != m.Host: // drawn anew
+		return func(float64) float64 { return over(x) }
+	}
+	return nil
+}
+
 // HostRange returns the least and the largest composition of the host in zone i.
 func (c *Crystal) HostRange(i int) (least, most float64) {
 	if c.Host == nil {

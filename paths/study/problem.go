@@ -106,7 +106,7 @@ func (b *builder) zones() []diffusion.Zone {
 	r := b.c.R0
 	for i, z := range b.c.Zones {
 		r += z.Width
-		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: b.c.Factor(b.e, i), Host: z.Host}
+		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: b.c.Factor(b.e, i), Host: z.Host, Form: b.c.form(b.e, i)}
 		if i < len(zones)-1 {
 			zones[i].Edge = b.e.Start.Edge.Middle()
 		}
@@ -149,15 +149,15 @@ func (b *builder) zoneValues() {
 		}
 		col := b.column(b.c.Zones[i].Name, p)
 		col.Start[i] = 1
-		markTied(col.Inner, b.e.Inner, i)
-		markTied(col.Outer, b.e.Rims, i)
+		markTied(col.Inner, b.e.Inner, i, b.tie(i, b.c.R0))
+		markTied(col.Outer, b.e.Rims, i, b.tie(i, b.c.Size()))
 	}
 }
 
-func markTied(dst []float64, rims []Rim, zone int) {
+func markTied(dst []float64, rims []Rim, zone int, times float64) {
 	for i, r := range rims {
 		if r.Kind == diffusion.Held && r.Zone == zone {
-			dst[i] = 1
+			dst[i] = times
 		}
 	}
 }
@@ -189,7 +189,7 @@ func (b *builder) rims(list []Rim, r float64) ([]diffusion.Rim, error) {
 		if i > 0 && !(from > out[i-1].From) {
 			return nil, rim.Place.Error(rim.From.Text, "does not come after the rim before it", "list rims in the order of time")
 		}
-		out = append(out, diffusion.Rim{Kind: rim.Kind, From: from, Value: b.value(rim), Rate: rim.Rate})
+		out = append(out, diffusion.Rim{Kind: rim.Kind, From: from, Value: b.value(rim, r), Rate: rim.Rate})
 	}
 	for i := range list {
 		from, until, err := b.c.inForce(list, i, b.h)
@@ -220,12 +220,20 @@ func (r *Rim) from(h *thermal.History) (float64, error) {
 	return t, err
 }
 
-// value is what a rim is held at, or exchanges with, in the problem.
-func (b *builder) value(r *Rim) float64 {
-	if r.Zone >= 0 {
-		return b.e.Start.Zones[r.Zone].base()
+// value is what a rim at r is held at, or exchanges with, in the problem.
+func (b *builder) value(rim *Rim, r float64) float64 {
+	if rim.Zone >= 0 {
+		return b.e.Start.Zones[rim.Zone].base() * b.tie(rim.Zone, r)
 	}
-	return r.Value.base()
+	return rim.Value.base()
+}
+
+// tie is what a rim at r that is tied to a zone has of its plateau.
+func (b *builder) tie(zone int, r float64) float64 {
+	if form := b.c.form(b.e, zone); form != nil {
+		return form(r)
+	}
+	return 1
 }
 
 // given turns a series into a function of the time since the start of the

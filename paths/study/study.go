@@ -294,6 +294,14 @@ type Start struct {
 	Zones      []Plateau   // one a zone
 	Edge       Nuisance    // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
 	Solubility *Solubility // that gives the zones; nil is none
+	Melts      []Grown     // one a zone if each is in equilibrium with a melt by the element's Partition; else nil
+}
+
+// Grown is how a zone grew in equilibrium with a melt: its plateau is that in a host of
+// the composition Host, and elsewhere it goes as K.
+type Grown struct {
+	Temp float64 // K
+	Host float64
 }
 
 // Rim says what holds at an end of the crystal from a moment on, until the
