@@ -22,21 +22,40 @@ const inRange = 0.5
 
 // outOfRange says which part of the diffusion along the history is done outside
 // the temperatures for which the element's law was calibrated, and how far
-// outside, if it matters. Time counts by the diffusion done in it, none by
-// itself.
+// outside, if it matters; of each law that holds in a regime of its own. Time counts
+// by the diffusion done in it, none by itself.
 func outOfRange(e *study.Element, h *thermal.History) []string {
-	law := &e.Law
-	lo, hi := h.Range()
-	known := law.TMin != 0 || law.TMax != 0
-	if !known || lo >= law.TMin-inRange && hi <= law.TMax+inRange {
-		return nil
+	regimes := e.Law.Regimes()
+	all := math.Inf(-1)
+	for _, law := range regimes {
+		all = numeric.LnAdd(all, law.Law.LnIntegral(h, 0, h.Life()))
 	}
-	all := law.Law.LnIntegral(h, 0, h.Life())
 	if math.IsInf(all, -1) {
 		return nil
 	}
+	var notes []string
+	for _, law := range regimes {
+		name := law.Key
+		if len(regimes) == 1 {
+			name = lawName(e)
+		}
+		if how := lawBeyond(law, h, all); how != "" {
+			notes = append(notes, name+": "+how)
+		}
+	}
+	return notes
+}
+
+// lawBeyond says it of a law that does part of the diffusion, exp(all) in m2.
+func lawBeyond(law *study.Law, h *thermal.History, all float64) string {
+	lo, hi := h.Range()
+	known := law.TMin != 0 || law.TMax != 0
+	if !known || lo >= law.TMin-inRange && hi <= law.TMax+inRange {
+		return ""
+	}
+	whole := math.Exp(law.Law.LnIntegral(h, 0, h.Life()) - all)
 	above := func(temp float64) float64 { return math.Exp(law.Law.LnIntegralAbove(h, temp) - all) }
-	below := func(temp float64) float64 { return 1 - above(temp) }
+	below := func(temp float64) float64 { return whole - above(temp) }
 	verb, of := " of the diffusion is done", fmt.Sprintf("its calibrated range of %.0f to %.0f C", law.TMin-thermal.ZeroCelsius, law.TMax-thermal.ZeroCelsius)
 	var how []string
 	say := func(where, upTo string, share func(float64) float64, edge, end float64) {
@@ -48,10 +67,7 @@ func outOfRange(e *study.Element, h *thermal.History) []string {
 	}
 	say("below", "down to", below, law.TMin-inRange, lo-1) // at lo itself a hold is not above it
 	say("above", "up to", above, law.TMax+inRange, hi)
-	if len(how) == 0 {
-		return nil
-	}
-	return []string{lawName(e) + ": " + strings.Join(how, ", and ")}
+	return strings.Join(how, ", and ")
 }
 
 // outermost returns the temperature between edge and end, K, beyond which so

@@ -238,7 +238,7 @@ func TestByE(t *testing.T) {
 		t.Run(test.name, func(t *testing.T) {
 			p := &profile{
 				element: &study.Element{Law: study.Law{Law: law(), TMin: low, TMax: high}},
-				path:    &study.Path{History: history(t, test.legs...)},
+				history: history(t, test.legs...),
 			}
 			all, mean, meanSq := 0.0, 0.0, 0.0
 			for _, l := range test.legs {

@@ -78,7 +78,7 @@ func TestLegsOfTheirOwnConditions(t *testing.T) {
 	same := 10*year*coogan(temp, nno(temp)) + year*coogan(temp, qfm(temp)-1) + 2*year*coogan(temp, -6)
 	near(t, "G at the stand-in temperature", same/g, 1, sameG)
 
-	p := &profile{element: &s.Crystals[0].Elements[0], path: path}
+	p := &profile{element: &s.Crystals[0].Elements[0], path: path, history: path.History}
 	middle, mean := (1/k(900)+1/k(1500))/2, 0.0
 	for i, temp := range []float64{t1, t2, t3} {
 		mean += parts[i] / g * (1/temp - middle)
@@ -88,5 +88,82 @@ func TestLegsOfTheirOwnConditions(t *testing.T) {
 
 	if !e.GEnough || !strings.Contains(e.WhyG, "conditions of legs") {
 		t.Errorf("G enough %v: %q", e.GEnough, e.WhyG)
+	}
+}
+
+// TestSwitchOnAPath: along a hot hold, a cooling through the switch and a cold hold,
+// the shares of legs and the derivative by E are sums over many short times, the
+// law of each chosen by its fO2; E is off from the middle of the range of the law
+// that holds.
+func TestSwitchOnAPath(t *testing.T) {
+	const (
+		n   = 200000
+		tol = 1e-5 // one time on the wrong side of the switch
+		byE = 1e-3 // differences over one standard deviation leave what the next derivative does
+	)
+	s := readStudy(t, `[conditions]
+fO2 = "QFM"
+pressure = "2 kbar"
+[[path]]
+name = "cooled"
+legs = [
+  { name = "hot", hold = "900 C", for = "1 yr" },
+  { name = "slow", ramp = "650 C", for = "100 yr" },
+  { name = "cold", hold = "650 C", for = "900 yr" },
+]
+[[crystal]]
+name = "OL-1"
+mineral = "olivine"
+shape = "slab"
+zones = [ { name = "core", width = "200 um" }, { name = "skin", width = "40 um" } ]
+[[crystal.element]]
+name = "Fe-Mg"
+law = { above = "olivine-femg-dohmen2007-tamed", below = "olivine-femg-dohmen2007-ped", at = { fO2 = "1e-10 Pa" } }
+start = { zones = ["90 Fo", "82 Fo"], edge = "0 um" }
+rim = "sealed"
+`, "none.csv", "x\n1\n")
+	path := &s.Paths[0]
+	e := &s.Crystals[0].Elements[0]
+	k := func(celsius float64) float64 { return celsius + thermal.ZeroCelsius }
+	mid := func(lo, hi float64) float64 { return (1/k(lo) + 1/k(hi)) / 2 }
+	// of D at a temperature, the 1/T at which its law is known best
+	d := func(temp float64) (d, middle float64) {
+		energy := 7e-6 * (2e8 - 1e5)
+		if log10FO2 := qfm(temp); log10FO2 > -10 {
+			return math.Pow(10, -9.21+(log10FO2+7)/6) * math.Exp(-(201e3+energy)/(thermal.GasConstant*temp)), mid(900, 1300)
+		}
+		return math.Pow(10, -8.91) * math.Exp(-(220e3+energy)/(thermal.GasConstant*temp)), mid(700, 900)
+	}
+	h := path.History
+	parts, byHand, cold := make([]float64, 3), 0.0, 0.0
+	for i := range parts {
+		from, to := h.Start(i), h.Start(i+1)
+		for j := range n {
+			temp, _ := h.At(from + (to-from)*(float64(j)+0.5)/n)
+			here, middle := d(temp)
+			here *= (to - from) / n
+			parts[i] += here
+			byHand -= here * (1/temp - middle) / thermal.GasConstant
+			if temp < k(700) {
+				cold += here
+			}
+		}
+	}
+	g := parts[0] + parts[1] + parts[2]
+	shares := legShares(h, e.Law.Law)
+	for i, part := range parts {
+		near(t, "share of "+shares[i].Name, shares[i].Share, part/g, tol)
+	}
+	p := &profile{element: e, path: path, history: h}
+	const sigma = 11e3
+	near(t, "derivative by E", p.byE(sigma)[0]*sigma, byHand/g*sigma, byE)
+
+	notes := strings.Join(outOfRange(e, h), "\n")
+	want := "olivine-femg-dohmen2007-ped: " + percentText(cold/g) + " of the diffusion is done below its calibrated range of 700 to 900 C, down to 650 C"
+	if !strings.Contains(notes, want) {
+		t.Errorf("notes %q, want %q", notes, want)
+	}
+	if prior := lawPrior(&e.Law); prior.E != 11e3 || !strings.Contains(prior.Key, "tamed / ") {
+		t.Errorf("prior %+v", prior)
 	}
 }

@@ -334,7 +334,8 @@ func (p *profile) errorAtBest(c *Curve) (float64, error) {
 }
 
 // byE returns the first and second derivative of ln G by the activation energy,
-// in mol/J, D in the middle of the law's calibrated range held:
+// in mol/J, D in the middle of the law's calibrated range held, or that of each of
+// its regimes:
 //
 //	ln G(E + d) = ln of the integral of D exp(-(d/R) (1/T - 1/Tmid)) dt,
 //
@@ -344,18 +345,25 @@ func (p *profile) byE(sigma float64) [2]float64 {
 		return [2]float64{}
 	}
 	law, h := &p.element.Law, p.history
-	middle := inverseMiddle(law)
-	if middle == 0 { // a law of unknown range: what it is known for is taken to be what it is used for
-		middle = 1 / standIn(law.Law, h, p.runs[0].course.LnG())
+	regimes := law.Regimes()
+	middles := make([]float64, len(regimes))
+	for i, of := range regimes {
+		if middles[i] = inverseMiddle(of); middles[i] == 0 { // a law of unknown range: what it is known for is taken to be what it is used for
+			middles[i] = 1 / standIn(law.Law, h, p.runs[0].course.LnG())
+		}
 	}
 	lnG := func(d float64) float64 {
-		moved := diffusion.Law{Where: law.Law.Where}
-		for _, a := range law.Law.Terms {
-			a.E += d / thermal.GasConstant
-			a.LnA += d / thermal.GasConstant * middle
-			moved.Terms = append(moved.Terms, a)
+		sum := math.Inf(-1)
+		for i, of := range regimes {
+			moved := diffusion.Law{Where: of.Law.Where}
+			for _, a := range of.Law.Terms {
+				a.E += d / thermal.GasConstant
+				a.LnA += d / thermal.GasConstant * middles[i]
+				moved.Terms = append(moved.Terms, a)
+			}
+			sum = numeric.LnAdd(sum, moved.LnIntegral(h, 0, h.Life()))
 		}
-		return moved.LnIntegral(h, 0, h.Life())
+		return sum
 	}
 	up, mid, down := lnG(sigma), lnG(0), lnG(-sigma)
 	if math.IsInf(mid, -1) {

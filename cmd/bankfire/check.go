@@ -146,6 +146,8 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 func lawText(l *study.Law) string {
 	text := "a law of this study"
 	switch {
+	case l.Switch != "":
+		text = switchText(l)
 	case l.Parts != nil:
 		text = directionText(l)
 	case l.Row != nil:
@@ -167,6 +169,19 @@ func lawText(l *study.Law) string {
 		text += "; " + caution
 	}
 	return text
+}
+
+// switchText names the two laws of which one holds at a time.
+func switchText(l *study.Law) string {
+	var parts []string
+	for i, side := range [...]string{"above ", "at and below "} {
+		part := l.Parts[i].Law.Key
+		if row := l.Parts[i].Law.Row; row != nil {
+			part += ", " + row.Citation
+		}
+		parts = append(parts, part+", "+side+l.Switch)
+	}
+	return strings.Join(parts, "; ")
 }
 
 // directionText names the laws of a law by direction with their shares.

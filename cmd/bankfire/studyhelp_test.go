@@ -209,6 +209,8 @@ func frames() []frame {
 		{"crystal.element.law.host", shownLaw, "law = { " + strings.Join(law, ", ") + ", host = %s }", true, []string{`ln_slope = 1`}},
 		{"crystal.element.law.own", shownLaw, "law = { " + strings.Join(law, ", ") + ", own = %s }", true, []string{`ln_slope = 0.1`}},
 		{"crystal.element.law a", "[[threshold]]", "[conditions]\nfO2 = \"NNO\"\n\n[[threshold]]", true, nil},
+		{"crystal.element.law above", "[[threshold]]", "[conditions]\nfO2 = \"NNO\"\n\n[[threshold]]", true, nil}, // see TestSwitch of the study
+		{"crystal.element.law.at", "[[threshold]]", "[conditions]\nfO2 = \"NNO\"\n\n[[threshold]]", true, nil},
 		{"crystal.element.law like", shownLaw, "law = %s", true, []string{`like = "quartz-ti-cherniak2007"`, "times = 2"}},
 		{"crystal.element.start", shownStart, "%s", true, nil},
 		rim("held", `held = "90 ppm"`),

@@ -46,7 +46,7 @@ func (d *decoder) directed(n *node, c *Crystal, e *Element) Law {
 // along reads the law along an axis.
 func (d *decoder) along(n *node, axis string, c *Crystal, e *Element) Law {
 	v := d.need(n, axis, `write the law along each axis: a, b and c; or along one, and ratio = 6 if D is 6 times less along the others`)
-	if v == nil || !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
+	if v == nil || !switches(v) && !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
 		return Law{}
 	}
 	return d.law(v, c, e)
@@ -134,20 +134,14 @@ func (d *decoder) joined(n *node, parts []Part) Law {
 	law := Law{Parts: parts, HostSlope: parts[0].Law.HostSlope, HostAt: parts[0].Law.HostAt, OwnSlope: parts[0].Law.OwnSlope, OwnAt: parts[0].Law.OwnAt}
 	var keys, citations []string
 	for _, p := range parts {
-		if p.Law.HostSlope != law.HostSlope {
-			d.report(n, "its laws depend on the host in different ways", "choose laws of one slope, or name the law along your traverse")
-			return Law{}
-		}
-		if p.Law.OwnSlope != law.OwnSlope {
-			d.report(n, "its laws depend on the element itself in different ways", "choose laws of one slope, or name the law along your traverse")
+		if !d.agree(n, &law, &p.Law) {
 			return Law{}
 		}
 		keys = append(keys, p.Law.Key)
 		if p.Law.Citation != "" && !slices.Contains(citations, p.Law.Citation) {
 			citations = append(citations, p.Law.Citation)
 		}
-		at := law.HostSlope*(law.HostAt-p.Law.HostAt) + law.OwnSlope*(law.OwnAt-p.Law.OwnAt)
-		law.Law = plus(law.Law, scaled(p.Law.Law, math.Log(p.Share)+at))
+		law.Law = plus(law.Law, scaled(p.Law.Law, math.Log(p.Share)+law.lnAt(&p.Law)))
 		law.narrow(&p.Law)
 	}
 	law.Key, law.Citation = strings.Join(keys, " + "), strings.Join(citations, "; ")

@@ -106,12 +106,14 @@ func (d *decoder) law(n *node, c *Crystal, e *Element) Law {
 }
 
 // unscaled reads the law of an element: a key of the catalogue, the name of a
-// [[law]], laws by direction, or the constants themselves.
+// [[law]], laws by direction, one of two regimes, or the constants themselves.
 func (d *decoder) unscaled(n *node, c *Crystal, e *Element) Law {
 	const example = `write a key that "bankfire laws" lists, the name of a [[law]], or { D0 = "7e-8 m2/s", E = "273 kJ/mol" }`
 	switch {
 	case slices.ContainsFunc(directionKeys[:], func(key string) bool { return n.get(key) != nil }):
 		return d.directed(n, c, e)
+	case switches(n):
+		return d.switched(n, c, e)
 	case n.get("like") != nil:
 		return d.like(n, c, e)
 	case n.kind == tableNode:

@@ -54,6 +54,8 @@ const (
 	lawHostTable
 	lawOwnTable
 	directionTable
+	switchTable
+	switchAtTable
 	likeTable
 	startTable
 	heldTable
@@ -93,6 +95,8 @@ var tables = [...]Table{
 	lawHostTable:    {"crystal.element.law.host", []string{"ln_slope", "at"}},
 	lawOwnTable:     {"crystal.element.law.own", []string{"ln_slope", "at"}},
 	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "ratio", "normal", "times"}},
+	switchTable:     {"crystal.element.law above", []string{"above", "below", "at", "times"}},
+	switchAtTable:   {"crystal.element.law.at", []string{"fO2", "temperature"}},
 	likeTable:       {"crystal.element.law like", []string{"like", "times"}},
 	startTable:      {"crystal.element.start", []string{"zones", "melt", "solubility", "temperature", "edge", "unit"}},
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},

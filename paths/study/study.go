@@ -159,6 +159,7 @@ type Law struct {
 	Times           thermal.Uncertain // the user's factor on D, which Law holds; its error is one beside Sigma; 0 is none
 	Fugacities      []Fugacity        // under which Law holds, one a setting; nil if it does not depend on fO2
 	Parts           []Part            // of which a law by direction is the sum; then Row and Fugacities are nil, Key joins theirs, and Sigma is 0
+	Switch          string            // of a law that is Parts[0] above it and else Parts[1]: "fO2 1e-10 Pa" or "800 C"; "" is none
 }
 
 // Fugacity is what the fO2 of a law's constants is in legs of a setting.
@@ -168,7 +169,7 @@ type Fugacity struct {
 	FO2     float64           // Pa, at every temperature, if it follows none
 }
 
-// Part is a law's part in a law by direction.
+// Part is a law's part in a law by direction, or one of the two of a switch.
 type Part struct {
 	Axes  string  // along which it is the law: "a", "b and c", "c (6 times that along a and b)"
 	Share float64 // cos2 of the angle between the boundary's normal and the axis, summed over the axes; those on which D is less by a ratio count so much less
@@ -394,14 +395,14 @@ func (c *Crystal) Factors(e *Element) (least, most float64) {
 	return least, most
 }
 
-// all returns the law, or the parts of one by direction.
+// all returns the law, or the parts of one by direction or with a switch.
 func (l *Law) all() []*Law {
 	if l.Parts == nil {
 		return []*Law{l}
 	}
 	var out []*Law
 	for i := range l.Parts {
-		out = append(out, &l.Parts[i].Law)
+		out = append(out, l.Parts[i].Law.all()...)
 	}
 	return out
 }
