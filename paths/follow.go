@@ -89,6 +89,9 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 	if result == nil {
 		out.Notes = append(lawNotes(c, e, path.History), reachNotes(c, out.LnG+fastest(c, e))...)
 	}
+	if e.OnHost() {
+		out.Notes = append(out.Notes, hostMoved(c, p.history)...)
+	}
 	out.WhyG, out.GEnough = p.plan().GEnough()
 	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))
 	steps, cells := p.errors(edge, amounts)

@@ -604,6 +604,11 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 	}
 	Judge(&r.Outcome, p.curves, w.laws, w.study.Confidence)
 	r.Notes = r.Outcome.Notes()
+	for k, q := range p.profiles {
+		if k == 0 || q.crystal != p.profiles[k-1].crystal {
+			r.Notes = append(r.Notes, hostMoved(q.crystal, q.history)...)
+		}
+	}
 	for n := range own {
 		if o := &own[n]; r.Outcome.Verdict == WrongShape && !o.passes(w.study.Confidence) {
 			r.Notes = append(r.Notes, fmt.Sprintf("errors too small or model wrong for %s in %s: not even its own best fit passes, so no path is to blame", o.Element.Name, o.Crystal.Name))

@@ -58,6 +58,7 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	d.hostFile(n.get("host"), &c)
 	d.existence(n, &c)
 	d.elements(n, &c, inner)
+	d.hostLaw(n.get("host_law"), &c)
 	d.noteHost(&c, n.get("host") != nil)
 	return c
 }

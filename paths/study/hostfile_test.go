@@ -34,6 +34,9 @@ func TestEveryKeyHostSpline(t *testing.T) {
 		t.Fatalf("hosted %v by %+v", c.Hosted, c.Host)
 	}
 	near(t, "width", c.Host.Width, 30*um)
+	if c.HostLaw == nil || c.HostLaw.Key != "mine" {
+		t.Errorf("the host moves by %+v", c.HostLaw)
+	}
 	for i, want := range []struct{ r, x, sigma float64 }{
 		{50 * um, 0.54, 0.0108}, {70 * um, 0.56, 0.0112}, {95 * um, 0.34, 0.01}, {110 * um, 0.35, 0.01}, {125 * um, 0.36, 0.01},
 	} {

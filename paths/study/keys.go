@@ -84,7 +84,7 @@ var tables = [...]Table{
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
 	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
-	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "exists_from", "dissolves", "element"}},
+	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "host_law", "exists_from", "dissolves", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth", "width", "error"}},
 	hostErrorTable:  {"crystal.host.error", errorKeys()},

@@ -87,6 +87,7 @@ type Crystal struct {
 	Zones         []Zone          // at least one, from the inside outwards
 	Hosted        bool            // every zone has a Host, or the crystal has
 	Host          *Host           // a smoothed profile of the host; nil is one value a zone
+	HostLaw       *Law            // by which the host itself moves; nil if that is not known or does not matter
 	Elements      []Element       // at least one
 	Exists        *thermal.Moment // from which on it sees a path; nil is the start
 	ExistsPlace   thermal.Place   // of Exists
