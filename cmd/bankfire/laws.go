@@ -30,12 +30,13 @@ func lawsCommand() *command {
 			"uncertainty and how its constants are known, and D at the temperatures given by --at, or by --from,\n" +
 			"--to and --step. With --compare and several, shows them side by side at those temperatures. A law\n" +
 			"that depends on pressure, fO2, composition or activity asks for the flag of that name, and prints\n" +
-			"the line that stands for it in a study. A study that gives them can name the law itself, unless\n" +
-			"it depends on XFe, which changes as it diffuses.",
+			"the line that stands for it in a study. A study that gives them can name the law itself. An fO2\n" +
+			"that follows a buffer is that of each temperature.",
 		examples: []example{
 			{"bankfire laws --mineral quartz --species Ti", "list the laws of Ti in quartz"},
 			{`bankfire laws quartz-ti-jollands2020 --at "700 C, 750 C"`, "show one law and D at two temperatures"},
 			{`bankfire laws plagioclase-sr-giletti1994 --at "800 C" --XAn 0.4`, "the same for a law that depends on composition"},
+			{`bankfire laws olivine-ca-coogan2005-a --at "1000 C, 1100 C" --fO2 NNO+0.3`, "the same along a buffer of oxygen fugacity"},
 			{"bankfire laws plagioclase-sr-giletti1994 --XAn 0.4", "a line for a study: this law at one composition"},
 			{`bankfire laws quartz-ti-cherniak2007 --at "750 C" --json`, "print D for another program"},
 			{
@@ -80,7 +81,7 @@ func (f *lawsFlags) define(set *pflag.FlagSet) {
 	set.StringVar(&f.xAn, catalogue.XAn, "", "mole `FRACTION` of anorthite in plagioclase")
 	set.StringVar(&f.xFe, catalogue.XFe, "", "mole `FRACTION` Fe/(Fe+Mg)")
 	set.StringVar(&f.aSiO2, catalogue.ASiO2, "", "`ACTIVITY` of SiO2")
-	set.StringVar(&f.fO2, catalogue.FO2, "", "oxygen fugacity, a `PRESSURE`, such as \"1e-7 Pa\"")
+	set.StringVar(&f.fO2, catalogue.FO2, "", "oxygen `FUGACITY`: a buffer that it follows, such as \"NNO+0.3\", or a pressure, such as \"1e-7 Pa\"")
 	set.StringVar(&f.pressure, catalogue.Pressure, "", "`PRESSURE`, such as \"2 kbar\"")
 	set.BoolVar(&f.json, "json", false, "print D of one law as JSON instead of text")
 }
@@ -100,7 +101,7 @@ type lawsOptions struct {
 	filter     lawsFilter
 	rows       []*catalogue.Row // the keys
 	temps      []float64        // K, of --at, then of the range
-	conditions catalogue.Conditions
+	conditions lawConditions
 	compare    bool
 	json       bool
 }
@@ -294,16 +295,55 @@ func parseStep(text string) (float64, error) {
 	return step, nil
 }
 
+// lawConditions are those that were given: values, and a buffer that fO2 follows.
+type lawConditions struct {
+	values catalogue.Conditions
+	buffer *catalogue.Buffer // nil is none
+	offset float64           // from it, log10 units
+	along  string            // both as typed
+}
+
+// law is that of a row under the conditions, along the buffer at 1 bar if no
+// pressure is given.
+func (c *lawConditions) law(r *catalogue.Row) (diffusion.Law, error) {
+	if c.buffer == nil {
+		return r.Law(c.values)
+	}
+	pressure, given := c.values[catalogue.Pressure]
+	if !given {
+		pressure = thermal.Bar
+	}
+	return r.LawAlong(c.values, c.buffer.Fugacity(c.offset, pressure))
+}
+
+// cautions are those of the buffer, if the law of a row depends on it.
+func (c *lawConditions) cautions(r *catalogue.Row) []string {
+	if c.buffer == nil || !slices.Contains(r.Needs(), catalogue.FO2) {
+		return nil
+	}
+	cautions := c.buffer.Cautions()
+	if _, given := c.values[catalogue.Pressure]; !given {
+		cautions = append(cautions, "the "+c.buffer.Names[0]+" buffer is taken at 1 bar")
+	}
+	return cautions
+}
+
 // conditions returns those that were given.
-func (f *lawsFlags) conditions() (catalogue.Conditions, error) {
-	given := catalogue.Conditions{}
+func (f *lawsFlags) conditions() (lawConditions, error) {
+	all := lawConditions{values: catalogue.Conditions{}}
+	given := all.values
 	var errs []error
+	typedFO2 := f.fO2
+	if first, _ := utf8.DecodeRuneInString(strings.TrimSpace(typedFO2)); unicode.IsLetter(first) {
+		errs = append(errs, ofFlag(all.follow(typedFO2), "--"+catalogue.FO2, typedFO2))
+		typedFO2 = ""
+	}
 	for _, c := range []struct {
 		name, typed string
 		parse       func(string) (float64, error)
 	}{
 		{catalogue.Pressure, f.pressure, parsePressure},
-		{catalogue.FO2, f.fO2, parseFugacity},
+		{catalogue.FO2, typedFO2, parseFugacity},
 		{catalogue.XAn, f.xAn, parseNumber},
 		{catalogue.XFe, f.xFe, parseNumber},
 		{catalogue.ASiO2, f.aSiO2, parseNumber},
@@ -318,14 +358,32 @@ func (f *lawsFlags) conditions() (catalogue.Conditions, error) {
 		given[c.name] = x
 		errs = append(errs, ofFlag(err, "--"+c.name, c.typed))
 	}
-	return given, errors.Join(errs...)
+	return all, errors.Join(errs...)
+}
+
+// follow makes fO2 follow a buffer, such as "NNO+0.3".
+func (c *lawConditions) follow(text string) error {
+	name, offset, ok := catalogue.CutOffset(text)
+	buffer, known := catalogue.FindBuffer(name)
+	switch {
+	case !known:
+		var names []string
+		for _, b := range catalogue.Buffers() {
+			names = append(names, b.Names...)
+		}
+		return &thermal.InputError{Problem: "no known buffer of oxygen fugacity", Remedy: "want " + orList(names) + ` with an offset, or a pressure such as "1e-7 Pa"`}
+	case !ok || !(math.Abs(offset) <= catalogue.MaxOffset):
+		return &thermal.InputError{Problem: fmt.Sprintf("its offset is no number of log10 units from -%d to %d", catalogue.MaxOffset, catalogue.MaxOffset), Remedy: `want a buffer such as "NNO+0.3"`}
+	}
+	c.buffer, c.offset, c.along = buffer, offset, strings.TrimSpace(text)
+	return nil
 }
 
 func parsePressure(text string) (float64, error) {
 	return thermal.ParseQuantity(text, thermal.Pressure)
 }
 
-// parseFugacity reads an oxygen fugacity, Pa. What begins with a letter is a buffer.
+// parseFugacity reads an oxygen fugacity, Pa.
 func parseFugacity(text string) (float64, error) {
 	x, err := parsePressure(text)
 	var in *thermal.InputError
@@ -333,10 +391,7 @@ func parseFugacity(text string) (float64, error) {
 		return x, err
 	}
 	there := *in
-	if first, _ := utf8.DecodeRuneInString(strings.TrimSpace(text)); unicode.IsLetter(first) {
-		there.Problem = "buffers are not known here yet"
-	}
-	there.Remedy = `want a pressure such as "1e-7 Pa"`
+	there.Remedy = `want a buffer such as "NNO+0.3", or a pressure such as "1e-7 Pa"`
 	return 0, &there
 }
 
@@ -350,8 +405,9 @@ func parseNumber(text string) (float64, error) {
 
 // lawCurve is a row with the law that it is under the conditions given.
 type lawCurve struct {
-	row *catalogue.Row
-	law diffusion.Law
+	row      *catalogue.Row
+	law      diffusion.Law
+	cautions []string // of the row and of the buffer that fO2 follows
 }
 
 // curves returns the laws of the keys. One that only is to be shown, at no
@@ -360,9 +416,9 @@ func (opt *lawsOptions) curves() ([]lawCurve, error) {
 	curves := make([]lawCurve, len(opt.rows))
 	var errs []error
 	for i, row := range opt.rows {
-		curves[i].row = row
-		if len(opt.temps) > 0 || len(opt.conditions) > 0 || len(row.Needs()) == 0 {
-			law, err := row.Law(opt.conditions)
+		curves[i].row, curves[i].cautions = row, append(row.Cautions(), opt.conditions.cautions(row)...)
+		if len(opt.temps) > 0 || len(opt.conditions.values) > 0 || opt.conditions.buffer != nil || len(row.Needs()) == 0 {
+			law, err := opt.conditions.law(row)
 			curves[i].law = law
 			errs = append(errs, missingFlag(err))
 		}
@@ -408,7 +464,7 @@ type lawValue struct {
 }
 
 func writeLawJSON(out, notes io.Writer, c lawCurve, temps []float64) error {
-	for _, note := range lawNotes(c.row, temps) {
+	for _, note := range lawNotes(c, temps) {
 		if _, err := fmt.Fprintf(notes, "bankfire: %s: %s\n", c.row.Key, note); err != nil {
 			return err
 		}
@@ -421,8 +477,8 @@ func writeLawJSON(out, notes io.Writer, c lawCurve, temps []float64) error {
 }
 
 // lawNotes returns what must stand beside D of the law at the temperatures.
-func lawNotes(r *catalogue.Row, temps []float64) []string {
-	notes := r.Cautions()
+func lawNotes(c lawCurve, temps []float64) []string {
+	r, notes := c.row, slices.Clone(c.cautions)
 	if len(temps) == 0 {
 		return notes
 	}

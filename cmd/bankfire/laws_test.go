@@ -282,7 +282,7 @@ func TestLawsErrors(t *testing.T) {
 		{"fraction as per cent", lawsFlags{at: at, xAn: "50"}, []string{"plagioclase-sr-giletti1994"}, "--XAn", "50"},
 		{"fraction is no number", lawsFlags{at: at, xFe: "some"}, key, "--XFe", "some"},
 		{"activity", lawsFlags{at: at, aSiO2: "0"}, key, "--aSiO2", "0"},
-		{"buffer", lawsFlags{at: at, fO2: "NNO"}, key, "--fO2", "NNO"},
+		{"buffer", lawsFlags{at: at, fO2: "IW"}, key, "--fO2", "IW"},
 		{"fO2 without a unit", lawsFlags{at: at, fO2: "1e-7"}, key, "--fO2", "1e-7"},
 		{"pressure", lawsFlags{at: at, pressure: "-1 bar"}, key, "--pressure", "-1 bar"},
 		{"compare one", lawsFlags{compare: true, at: at}, key, "--compare", ""},

@@ -12,7 +12,7 @@ import (
 )
 
 // studyText says how the law is written in a study.
-func studyText(c lawCurve, given catalogue.Conditions) string {
+func studyText(c lawCurve, given *lawConditions) string {
 	r := c.row
 	needs := r.Needs()
 	switch {
@@ -52,7 +52,7 @@ func givingText(r *catalogue.Row) string {
 // studyLine returns the law under the conditions as a line for a study, good to
 // six digits of D. ok is false if it is not one Arrhenius term with a D0 that
 // can be written.
-func studyLine(c lawCurve, given catalogue.Conditions) (line string, ok bool) {
+func studyLine(c lawCurve, given *lawConditions) (line string, ok bool) {
 	r := c.row
 	if len(c.law.Terms) != 1 {
 		return "", false
@@ -72,9 +72,9 @@ func studyLine(c lawCurve, given catalogue.Conditions) (line string, ok bool) {
 		parts = append(parts, fmt.Sprintf(`range = "%s..%s C"`, celsiusText(r.TMin), celsiusText(r.TMax)))
 	}
 	parts = append(parts, "citation = "+strconv.Quote(fmt.Sprintf("%s (%s at %s)", r.Citation, r.Key, conditionsText(r, given))))
-	cautions := r.Cautions()
-	if slices.Contains(r.Needs(), catalogue.FO2) { // in nature a buffer follows the temperature
-		cautions = append(cautions, "fO2 held at "+conditionText(catalogue.FO2, given[catalogue.FO2])+" at every temperature")
+	cautions := slices.Clone(c.cautions)
+	if slices.Contains(r.Needs(), catalogue.FO2) && given.buffer == nil { // in nature a buffer follows the temperature
+		cautions = append(cautions, "fO2 held at "+conditionText(catalogue.FO2, given.values[catalogue.FO2])+" at every temperature")
 	}
 	if len(cautions) > 0 {
 		parts = append(parts, "caution = "+strconv.Quote(strings.Join(cautions, "; ")))

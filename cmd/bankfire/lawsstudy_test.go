@@ -1,6 +1,7 @@
 package main
 
 import (
+	"encoding/json"
 	"errors"
 	"fmt"
 	"math"
@@ -157,21 +158,45 @@ func TestLawsPartOfTheConditions(t *testing.T) {
 
 func TestLawsFugacity(t *testing.T) {
 	for _, test := range []struct{ text, problem string }{
-		{"NNO", "buffers are not known here yet"},
-		{" QFM-1", "buffers are not known here yet"},
 		{"1e-7", "has no unit"},
 		{"1e-7 C", "is a temperature"},
 	} {
 		t.Run(test.text, func(t *testing.T) {
 			_, err := parseFugacity(test.text)
 			var in *thermal.InputError
-			if !errors.As(err, &in) || !strings.Contains(in.Problem, test.problem) || in.Remedy != `want a pressure such as "1e-7 Pa"` {
+			if !errors.As(err, &in) || !strings.Contains(in.Problem, test.problem) || in.Remedy != `want a buffer such as "NNO+0.3", or a pressure such as "1e-7 Pa"` {
 				t.Errorf("got %v, want %q", err, test.problem)
 			}
 		})
 	}
 	if x, err := parseFugacity("1e-7 Pa"); x != 1e-7 || err != nil {
 		t.Errorf("1e-7 Pa: %g, %v", x, err)
+	}
+}
+
+// TestLawsAlongABuffer compares D with the paper's formula, the fO2 of each
+// temperature from that of the buffer, at a pressure and at 1 bar where none is given.
+func TestLawsAlongABuffer(t *testing.T) {
+	const key = "olivine-ca-coogan2005-a"
+	for _, test := range []struct {
+		fO2, pressure string
+		offset, bar   float64
+	}{{"NNO", "", 0, 1}, {"NNO + 0.3", "2 kbar", 0.3, 2000}} {
+		out, _, err := laws(lawsFlags{fO2: test.fO2, pressure: test.pressure, at: []string{"1300 K", "1500 K"}, json: true}, key)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var got lawValues
+		if err := json.Unmarshal([]byte(out), &got); err != nil || len(got.Values) != 2 {
+			t.Fatalf("%v: %s", err, out)
+		}
+		for _, v := range got.Values {
+			log10FO2 := -24930/v.Temperature + 9.36 + 0.046*(test.bar-1)/v.Temperature + test.offset + 5
+			want := 1.65e-11 * math.Pow(10, 0.31*(log10FO2+7)) * math.Exp(-193e3/(thermal.GasConstant*v.Temperature))
+			if !(math.Abs(v.D/want-1) <= 1e-12) { // rounding of logarithms of size 50
+				t.Errorf("fO2 %s, %g K: D %g, want %g", test.fO2, v.Temperature, v.D, want)
+			}
+		}
 	}
 }
 

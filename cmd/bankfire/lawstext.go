@@ -111,7 +111,7 @@ func showLaw(out io.Writer, c lawCurve, opt *lawsOptions) error {
 	if len(opt.temps) > 0 {
 		fmt.Fprintf(&text, "\n%s", valuesText(c, opt))
 	}
-	fmt.Fprintf(&text, "\n%s", studyText(c, opt.conditions))
+	fmt.Fprintf(&text, "\n%s", studyText(c, &opt.conditions))
 	_, err := out.Write(text.Bytes())
 	return err
 }
@@ -246,15 +246,15 @@ func valuesText(c lawCurve, opt *lawsOptions) string {
 			fmt.Sprintf("%.4g", perYear), beyondText(c.row, temp))
 	}
 	tab.writeTo(&text)
-	fmt.Fprintf(&text, "\nA year is 365.25 d.%s\n", givenText(c.row, opt.conditions))
-	for _, caution := range c.row.Cautions() {
+	fmt.Fprintf(&text, "\nA year is 365.25 d.%s\n", givenText(c.row, &opt.conditions))
+	for _, caution := range c.cautions {
 		fmt.Fprintf(&text, "Caution: %s.\n", caution)
 	}
 	return text.String()
 }
 
 // givenText is " At XAn 0.5." for the conditions the law depends on.
-func givenText(r *catalogue.Row, given catalogue.Conditions) string {
+func givenText(r *catalogue.Row, given *lawConditions) string {
 	if at := conditionsText(r, given); at != "" {
 		return " At " + at + "."
 	}
@@ -262,10 +262,14 @@ func givenText(r *catalogue.Row, given catalogue.Conditions) string {
 }
 
 // conditionsText is "pressure 5 kbar, XFe 0.1": the conditions the law depends on.
-func conditionsText(r *catalogue.Row, given catalogue.Conditions) string {
+func conditionsText(r *catalogue.Row, given *lawConditions) string {
 	var parts []string
 	for _, name := range r.Needs() {
-		parts = append(parts, name+" "+conditionText(name, given[name]))
+		if name == catalogue.FO2 && given.buffer != nil {
+			parts = append(parts, name+" "+given.along)
+			continue
+		}
+		parts = append(parts, name+" "+conditionText(name, given.values[name]))
 	}
 	return strings.Join(parts, ", ")
 }
@@ -301,10 +305,10 @@ func compareLaws(out io.Writer, curves []lawCurve, opt *lawsOptions) error {
 	tab.writeTo(&text)
 	fmt.Fprintf(&text, "\nD in m2/s. Parentheses: outside the calibrated range, or range not known.\n")
 	for i, c := range curves {
-		if at := givenText(c.row, opt.conditions); at != "" {
+		if at := givenText(c.row, &opt.conditions); at != "" {
 			fmt.Fprintf(&text, "%d:%s\n", i+1, at)
 		}
-		for _, note := range lawNotes(c.row, opt.temps) {
+		for _, note := range lawNotes(c, opt.temps) {
 			fmt.Fprintf(&text, "%d: %s.\n", i+1, note)
 		}
 	}

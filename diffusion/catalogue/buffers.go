@@ -3,6 +3,8 @@ package catalogue
 import (
 	"math"
 	"slices"
+	"strconv"
+	"strings"
 
 	"bankfire/diffusion"
 	"bankfire/thermal"
@@ -40,6 +42,21 @@ func FindBuffer(name string) (b *Buffer, ok bool) {
 		return nil, false
 	}
 	return &all[i], true
+}
+
+// MaxOffset is how many log10 units off a buffer no magma is.
+const MaxOffset = 10
+
+// CutOffset takes "NNO + 0.3" apart into the name of a buffer and an offset in log10
+// units. ok is false if what follows the name is no number.
+func CutOffset(text string) (name string, offset float64, ok bool) {
+	text = strings.NewReplacer(" ", "", "\u2212", "-").Replace(text)
+	i := strings.IndexAny(text, "+-")
+	if i < 0 {
+		return text, 0, true
+	}
+	offset, err := strconv.ParseFloat(text[i:], 64)
+	return text[:i], offset, err == nil
 }
 
 // Cautions returns the sentences that belong beside any result that rests on

@@ -5,7 +5,6 @@ import (
 	"maps"
 	"math"
 	"slices"
-	"strconv"
 	"strings"
 
 	"bankfire/diffusion/catalogue"
@@ -83,34 +82,19 @@ func (d *decoder) fugacity(n *node, c *Conditions) {
 		}
 		return
 	}
-	name, offset, ok := cutOffset(text)
+	name, offset, ok := catalogue.CutOffset(text)
 	buffer, known := catalogue.FindBuffer(name)
 	switch {
 	case !known:
 		d.reportBuffer(n, name)
 	case !ok:
 		d.report(n, "its offset is no number of log10 units", remedy)
-	case !(math.Abs(offset) <= maxOffset):
-		d.report(n, fmt.Sprintf("more than %d log10 units off the buffer", maxOffset), remedy)
+	case !(math.Abs(offset) <= catalogue.MaxOffset):
+		d.report(n, fmt.Sprintf("more than %d log10 units off the buffer", catalogue.MaxOffset), remedy)
 	default:
 		c.Buffer, c.Offset = buffer, offset
 		delete(c.Given, catalogue.FO2)
 	}
-}
-
-// maxOffset is beyond what any magma has.
-const maxOffset = 10
-
-// cutOffset takes "NNO + 0.3" apart. ok is false if what follows the name is no
-// number.
-func cutOffset(text string) (name string, offset float64, ok bool) {
-	text = strings.NewReplacer(" ", "", "\u2212", "-").Replace(text)
-	i := strings.IndexAny(text, "+-")
-	if i < 0 {
-		return text, 0, true
-	}
-	offset, err := strconv.ParseFloat(text[i:], 64)
-	return text[:i], offset, err == nil
 }
 
 func (d *decoder) reportBuffer(n *node, name string) {
