@@ -62,15 +62,21 @@ func (d *decoder) smoothing(n *node) (spline float64) {
 	return spline
 }
 
-// hostScale turns a host in a unit into a mole fraction.
-func hostScale(unit string) (scale float64, ok bool) {
+// hostComponent says what a host in a unit, from a column with a header, is as a
+// mole fraction: Fo is turned into the XFe that laws ask for.
+func hostComponent(header, unit string) (of component, ok bool) {
 	switch unit {
 	case moleFraction:
-		return 1, true
-	case "mol%", "An":
-		return 0.01, true
+		of.scale = 1
+	case "mol%", "An", "Fo":
+		of.scale = 0.01
+	default:
+		return of, false
 	}
-	return 0, false
+	if named(header, unit) == "Fo" {
+		of.scale, of.offset = -of.scale, 1
+	}
+	return of, true
 }
 
 // hostPoints reads the points of a host, from the inside outwards and in mole
@@ -86,15 +92,18 @@ func (d *decoder) hostPoints(n, file *node, o traverse.Options, c *Crystal) (t *
 		return nil, false
 	}
 	d.notes = append(d.notes, d.named(file, label, t.Notes)...)
-	scale, ok := hostScale(t.Unit)
+	of, ok := hostComponent(o.Value, t.Unit)
 	if !ok {
-		d.report(n.get("value"), fmt.Sprintf("in %s, but a host is a mole fraction", t.Unit), "want mole fraction, mol% or An")
+		d.report(n.get("value"), fmt.Sprintf("in %s, but a host is a mole fraction", t.Unit), "want mole fraction, mol%, An or Fo")
 		return nil, false
 	}
+	if of.offset != 0 {
+		d.note("%s: Fo of the host is read as XFe, 1 less Fo as a mole fraction", c.Name)
+	}
 	for i, r := range t.Position {
-		t.Value[i] *= scale
+		t.Value[i] = of.value(t.Value[i])
 		if t.Sigma != nil {
-			t.Sigma[i] *= scale
+			t.Sigma[i] = of.sigma(t.Sigma[i])
 		}
 		switch x := t.Value[i]; {
 		case r < c.R0-positionSlack*c.Size():

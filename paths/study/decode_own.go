@@ -77,7 +77,7 @@ func (d *decoder) noteXFe(e *Element) {
 	xFe, ok := e.xFe()
 	switch {
 	case !ok:
-		d.note("%s: XFe, on which its law depends, is the host of each zone and stays as it is", e.Name)
+		d.note("%s: XFe, on which its law depends, is that of the host, which stays as it is", e.Name)
 	case xFe.scale > 0:
 		d.note("%s: XFe, on which its law depends, is its value, taken as Fe/(Fe+Mg)", e.Name)
 	default:

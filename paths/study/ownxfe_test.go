@@ -112,12 +112,37 @@ func TestXFeOfHost(t *testing.T) {
 	near(t, "factor in the skin", c.Factor(e, 1), 1)
 	const temp = 1350.0
 	near(t, "ln D at XFe 0.1", e.Law.Law.LnD(temp), -8.91*math.Ln10-(220000+(3e8-1e5)*7e-6)/(thermal.GasConstant*temp))
-	if want := "Mn: XFe, on which its law depends, is the host of each zone and stays as it is"; !slices.Contains(s.Notes, want) {
+	if want := "Mn: XFe, on which its law depends, is that of the host, which stays as it is"; !slices.Contains(s.Notes, want) {
 		t.Errorf("notes %q", s.Notes)
 	}
 	_, err = iron([2]string{}, "Mn", law, mn)
 	if got := problems(t, err); len(got) != 1 || got[0].Line != 18 || !strings.Contains(got[0].Problem, "depends on XFe, not given") || !strings.Contains(got[0].Remedy, "host = 0.12") {
 		t.Errorf("problems %v", err)
+	}
+}
+
+// TestXFeOfHostFile: a measured Fo is the XFe that laws ask for.
+func TestXFeOfHostFile(t *testing.T) {
+	for header, rows := range map[string]string{
+		"Fo [mol%]": "10,90\n60,80\n", "fo [Fo]": "10,90\n60,80\n", "XFo [mole fraction]": "10,0.9\n60,0.8\n",
+		"XFe [mole fraction]": "10,0.1\n60,0.2\n", "Fa [mol%]": "10,10\n60,20\n",
+	} {
+		text := fmt.Sprintf(ironStudy, "", "", "Mn", `"olivine-femg-dohmen2007-ped"`, `"900 ppm", "700 ppm"`)
+		text = strings.Replace(text, "shape =", `host = { file = "h.csv", position = "x [um]", zero = "rim", value = "`+header+`", smooth = "steps" }`+"\nshape =", 1)
+		s, err := parse("s.toml", []byte(text), memory(map[string]string{"h.csv": "x [um]," + header + "\n" + rows}))
+		if err != nil {
+			t.Fatal(err)
+		}
+		c := &s.Crystals[0]
+		// 1 - 0.9 is off by a unit of round-off of 1, which is more of 0.1
+		const roundOff = 1e-15
+		if core, skin := c.Zones[0].Host, c.Zones[1].Host; !(math.Abs(core-0.2) <= roundOff) || !(math.Abs(skin-0.1) <= roundOff) {
+			t.Errorf("%s: XFe %g in the core and %g in the skin", header, core, skin)
+		}
+		noted := slices.ContainsFunc(s.Notes, func(n string) bool { return strings.Contains(n, "is read as XFe") })
+		if noted != strings.Contains(strings.ToLower(header), "fo") {
+			t.Errorf("%s: notes %q", header, s.Notes)
+		}
 	}
 }
 
