@@ -82,7 +82,7 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 	edge, amounts := e.Start.Edge.Middle(), amounts{scale: 1, values: make([]float64, len(p.free))}
 	if result != nil {
 		out.Free, out.Notes = result.Free, result.notes(path)
-		fitted := p.fitTo(p.columns(0))
+		fitted := p.fitRun(0, nil)
 		edge, _, _ = p.lens.values(fitted.Bent)
 		amounts = p.amounts(fitted).stated()
 	}

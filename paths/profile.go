@@ -324,39 +324,39 @@ func (p *profile) sampler(ctx context.Context) sampler {
 }
 
 // columns returns the columns of the runs' fields k.
-func (p *profile) columns(k int) [][][]float64 {
-	cols := make([][][]float64, len(p.runs))
-	for i := range p.runs {
-		cols[i] = p.runs[i].fields[k].Cols
+func (p *profile) columns(k int) [][][]float64 { return columnsOf(p.runs, k) }
+
+func columnsOf(runs []variant, k int) [][][]float64 {
+	cols := make([][][]float64, len(runs))
+	for i := range runs {
+		cols[i] = runs[i].fields[k].Cols
 	}
 	return cols
 }
 
 // starts returns the columns before diffusion.
-func (p *profile) starts() [][][]float64 {
-	cols := make([][][]float64, len(p.runs))
-	for i := range p.runs {
+func (p *profile) starts() [][][]float64 { return p.startsOf(p.runs) }
+
+func (p *profile) startsOf(runs []variant) [][][]float64 {
+	cols := make([][][]float64, len(runs))
+	for i := range runs {
 		for j := range 1 + len(p.free) {
-			cols[i] = append(cols[i], p.runs[i].plan.Start(j))
+			cols[i] = append(cols[i], runs[i].plan.Start(j))
 		}
 	}
 	return cols
 }
 
-// fitTo fits the values that are open to the data, for columns of cell means. A
+// fitAbout fits the values that are open to the data, for columns of cell means. A
 // concentration that would come out negative is held at zero, the most negative
 // one first. To relative data the fit is
 //
 //	value = offset + scale base + sum of x column,
 //
-// each x being scale times the concentration that it stands for.
-func (p *profile) fitTo(cols [][][]float64) least.Solution {
-	return p.fitAbout(cols, nil, nil)
-}
-
-// fitAbout is fitTo, for relative data with the free values counted from those
-// of about, in the element's unit. The spreads are profiles of cell means that are
-// added with factors of standard deviation 1, the last of the linear values.
+// each x being scale times the concentration that it stands for, or what that is
+// above the free value of about, in the element's unit. The spreads are profiles of
+// cell means that are added with factors of standard deviation 1, the last of the
+// linear values.
 func (p *profile) fitAbout(cols [][][]float64, spreads [][]float64, about []float64) least.Solution {
 	problem := p.fit
 	if len(spreads) > 0 {
@@ -429,7 +429,7 @@ func (p *profile) curve(ctx context.Context) (Curve, error) {
 	if err != nil {
 		return c, err
 	}
-	c.Still = p.fitTo(p.starts()).ChiSq
+	c.Still = p.fitStart().ChiSq
 	c.Full, err = p.full(chiSq)
 	return c, err
 }
@@ -442,7 +442,7 @@ const equilibrated = 1e3
 func (p *profile) full(chiSq sampler) (float64, error) {
 	lnG := p.runs[0].course.LnG()
 	if math.IsInf(lnG, -1) {
-		return p.fitTo(p.starts()).ChiSq, nil
+		return p.fitStart().ChiSq, nil
 	}
 	size := p.crystal.Size() - p.crystal.R0
 	slowest, _ := p.crystal.Factors(p.element)

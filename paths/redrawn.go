@@ -54,15 +54,15 @@ func (p *profile) layRedrawn(hosts []*study.Crystal, options *diffusion.Options)
 // middle is the run whose edges the redrawn hosts have.
 func (p *profile) middle() int { return len(p.lens.edges) / 2 }
 
-// spreads returns d_k/sqrt(n) in the cells, for what the runs left in their
-// fields number field.
-func (p *profile) spreads(field int, a amounts) [][]float64 {
-	main := a.of(p.runs[p.middle()].fields[field].Cols)
-	out := make([][]float64, len(p.redrawn))
-	for k := range p.redrawn {
-		out[k] = a.of(p.redrawn[k].fields[field].Cols)
+// spreads returns d_k/sqrt(n) in the cells, for the columns of the runs and of the
+// draws.
+func (p *profile) spreads(cols, drawn [][][]float64, a amounts) [][]float64 {
+	main := a.of(cols[p.middle()])
+	out := make([][]float64, len(drawn))
+	for k := range drawn {
+		out[k] = a.of(drawn[k])
 		for i, v := range main {
-			out[k][i] = (out[k][i] - v) / math.Sqrt(float64(len(p.redrawn)))
+			out[k][i] = (out[k][i] - v) / math.Sqrt(float64(len(drawn)))
 		}
 	}
 	return out
@@ -72,9 +72,20 @@ func (p *profile) spreads(field int, a amounts) [][]float64 {
 // fields number field. To relative data the free values are counted from those of
 // about, in the element's unit.
 func (p *profile) fitRun(field int, about []float64) least.Solution {
-	cols := p.columns(field)
+	return p.fitHosts(p.columns(field), columnsOf(p.redrawn, field), about)
+}
+
+// fitStart is fitRun for the columns before diffusion, which depend on the host where
+// the start does.
+func (p *profile) fitStart() least.Solution {
+	return p.fitHosts(p.starts(), p.startsOf(p.redrawn), nil)
+}
+
+// fitHosts fits the values that are open to the data, for the columns of the runs and
+// of the draws.
+func (p *profile) fitHosts(cols, drawn [][][]float64, about []float64) least.Solution {
 	at := p.fitAbout(cols, nil, about)
-	if len(p.redrawn) == 0 {
+	if len(drawn) == 0 {
 		return at
 	}
 	for range hostRounds {
@@ -84,7 +95,7 @@ func (p *profile) fitRun(field int, about []float64) least.Solution {
 				a.values[j] += a.scale * x
 			}
 		}
-		at = p.fitAbout(cols, p.spreads(field, a), about)
+		at = p.fitAbout(cols, p.spreads(cols, drawn, a), about)
 	}
 	return at
 }
@@ -92,7 +103,7 @@ func (p *profile) fitRun(field int, about []float64) least.Solution {
 // addHost adds to a profile in the cells what the fit makes of the host's error.
 func (p *profile) addHost(dst []float64, field int, at least.Solution) {
 	z := at.Linear[len(p.fit.Linear):]
-	for k, spread := range p.spreads(field, p.amounts(at)) {
+	for k, spread := range p.spreads(p.columns(field), columnsOf(p.redrawn, field), p.amounts(at)) {
 		for i, v := range spread {
 			dst[i] += z[k] * v
 		}

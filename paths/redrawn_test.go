@@ -1,6 +1,7 @@
 package paths
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"strconv"
@@ -188,5 +189,44 @@ func TestHostErrorInGrey(t *testing.T) {
 	plain, relative := grey(false).Paths[0].Outcome, grey(true).Paths[0].Outcome
 	if fall := plain.Misfit - relative.Misfit; !(fall > -roundOff && fall < likely) {
 		t.Errorf("chi-square %g in ppm, %g in grey levels with two more free values", plain.Misfit, relative.Misfit)
+	}
+}
+
+// A start in equilibrium with a melt in the host is off with it, also before any
+// diffusion: chi-square without any is what it comes to with next to none.
+func TestHostErrorBeforeDiffusion(t *testing.T) {
+	const same = 1e-3 // of chi-square, which the diffusion of a microsecond hardly changes
+	text := strings.Replace(fmt.Sprintf(plagioclase, "1 s", "1 s", `"sealed"`),
+		`zones = ["500 ppm", "700 ppm"], edge`, `melt = ["90 ppm", "90 ppm"], temperature = ["750 C", "750 C"], edge`, 1)
+	k := func(x float64) float64 {
+		return 90 * math.Exp((ofBlundyWood1991*x+26.7e3)/(thermal.GasConstant*storedAt))
+	}
+	var data strings.Builder
+	data.WriteString("distance [um],Sr [ppm]\n")
+	for um2 := 60.5; um2 < 140; um2 += 2 {
+		x := xCore + 0.02
+		if um2 > 100 {
+			x = xSkin - 0.02
+		}
+		fmt.Fprintf(&data, "%g,%.9g\n", um2, k(x))
+	}
+	s := readStudy(t, text, "sr.csv", data.String())
+	still := func() (still, next float64) {
+		w, err := newWeighing(s)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if err := w.all(t.Context(), 1); err != nil {
+			t.Fatal(err)
+		}
+		c := &w.paths[0].curves[0]
+		return c.Still, c.ChiSq[0]
+	}
+	exactly, _ := still()
+	for i := range s.Crystals[0].Zones {
+		s.Crystals[0].Zones[i].HostSigma = 0.02
+	}
+	if got, next := still(); !(math.Abs(got-next) <= same*next && got < exactly/10) {
+		t.Errorf("chi-square without diffusion %g, with next to none %g, with the host as exact %g", got, next, exactly)
 	}
 }
