@@ -25,21 +25,25 @@ type Result struct {
 	Own      []OwnBest        // one a measured element
 	Crystals []*study.Crystal // those with a measured element, in the order of an Outcome's
 	Paths    []PathResult
+	Groups   []Group // of paths that end alike, where the crystals share their history from a moment on
 }
 
-// PathResult is one path with its verdict. A barred path has no outcome but
-// its verdict, its numbers being NaN, and no profiles.
+// PathResult is one path with its verdict as the path of all crystals, whatever
+// they share. A path that is barred has no outcome but its verdict, its numbers
+// being NaN, and no profiles; where only some crystals bar it, since they need not
+// share it, that goes for them and the joint verdict, and the others have theirs.
 type PathResult struct {
 	Path     *study.Path
 	Outcome  Outcome
-	Barred   []string  // why the user's limits rule it out
-	Life     float64   // start to eruption, s
-	Above    []float64 // time above each of the study's thresholds before eruption, s
+	Barred   []study.Bar // why it is ruled out
+	Life     float64     // start to eruption, s
+	Above    []float64   // time above each of the study's thresholds before eruption, s
 	Profiles []ProfileResult
 	Notes    []string
 }
 
-// ProfileResult is one element on one path as it is, fitted to its traverse.
+// ProfileResult is one element on one path as it is, fitted to its traverse, or
+// only the names of the two if its crystal bars the path.
 type ProfileResult struct {
 	Crystal *study.Crystal
 	Element *study.Element
@@ -62,6 +66,9 @@ type ProfileResult struct {
 	BelowZero float64   // by how much, in the element's unit, a concentration is below zero beyond its numerical error; 0 but for faults of the plan
 	Notes     []string
 }
+
+// Ran reports whether the path was run for the element.
+func (r *ProfileResult) Ran() bool { return r.Centres != nil }
 
 // FreeFit is a value that the traverse decided, alone or with a prior.
 type FreeFit struct {
@@ -118,10 +125,11 @@ type element struct {
 	hosts   []*study.Crystal // the crystal with its host redrawn; nil where that is exact or does not matter
 }
 
-// weighedPath is what the solver said of one path.
+// weighedPath is what the solver said of one path: one entry an element, empty if
+// its crystal bars the path, or none at all if nothing was run.
 type weighedPath struct {
-	barred   []string
-	profiles []*profile // one an element
+	barred   []study.Bar
+	profiles []*profile
 	results  []ProfileResult
 	curves   []Curve
 }
@@ -220,7 +228,15 @@ func firstErrors(errs []error) error {
 	return errors.Join(errs[:min(len(errs), mostErrors)]...)
 }
 
-// path solves path i for every element, unless the user rules it out.
+// ran reports whether the path was run for element n.
+func (w *weighedPath) ran(n int) bool { return n < len(w.profiles) && w.profiles[n] != nil }
+
+// bars reports whether the path is ruled out for the crystal.
+func (w *weighedPath) bars(c *study.Crystal) bool {
+	return slices.ContainsFunc(w.barred, func(b study.Bar) bool { return b.Crystal == "" || b.Crystal == c.Name })
+}
+
+// path solves path i for every element for which it is not ruled out.
 func (w *weighing) path(ctx context.Context, i int) error {
 	path := &w.study.Paths[i]
 	reasons, err := w.study.Barred(path)
@@ -228,18 +244,31 @@ func (w *weighing) path(ctx context.Context, i int) error {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	p := weighedPath{barred: reasons}
-	if len(p.barred) == 0 {
-		for _, e := range w.elements {
-			if err := p.add(ctx, e, path, w.laws); err != nil {
-				return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
-			}
+	w.paths[i] = p
+	if !slices.ContainsFunc(w.elements, func(e element) bool { return !p.bars(e.crystal) }) {
+		return nil
+	}
+	for _, e := range w.elements {
+		if p.bars(e.crystal) {
+			p.skip(e)
+			continue
 		}
-		if err := p.sharpen(ctx); err != nil {
-			return fmt.Errorf("path %q: %w", path.Name, err)
+		if err := p.add(ctx, e, path, w.laws); err != nil {
+			return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
 		}
+	}
+	if err := p.sharpen(ctx); err != nil {
+		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	w.paths[i] = p
 	return nil
+}
+
+// skip leaves out an element whose crystal bars the path.
+func (w *weighedPath) skip(e element) {
+	w.profiles = append(w.profiles, nil)
+	w.results = append(w.results, ProfileResult{Crystal: e.crystal, Element: e.element})
+	w.curves = append(w.curves, Curve{Crystal: e.place})
 }
 
 // add scans the multipliers on D for one element, with a plan that is fine
@@ -278,17 +307,25 @@ func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws
 // sharpen makes the joint curves, of each crystal and of all, right around their
 // own lowest points.
 func (w *weighedPath) sharpen(ctx context.Context) error {
-	each := make([]sampler, len(w.profiles))
-	for i, p := range w.profiles {
-		each[i] = p.sampler(ctx)
+	var cs []Curve
+	var each []sampler
+	var of []int // elements of the curves
+	for n, p := range w.profiles {
+		if w.ran(n) {
+			cs, each, of = append(cs, w.curves[n]), append(each, p.sampler(ctx)), append(of, n)
+		}
 	}
-	for _, of := range byCrystal(w.curves) { // elements of a crystal stand together
+	for _, of := range byCrystal(cs) { // elements of a crystal stand together
 		from, to := of[0], of[len(of)-1]+1
-		if err := sharpen(w.curves[from:to], each[from:to]); err != nil {
+		if err := sharpen(cs[from:to], each[from:to]); err != nil {
 			return err
 		}
 	}
-	return sharpen(w.curves, each)
+	err := sharpen(cs, each)
+	for k, n := range of {
+		w.curves[n] = cs[k]
+	}
+	return err
 }
 
 // audited compiles the element for the path, with a plan at least so often
@@ -539,7 +576,7 @@ func (w *weighing) ownBest(n int) (path int, lnM float64) {
 	path = -1
 	best := math.Inf(1)
 	for i := range w.paths {
-		if len(w.paths[i].curves) == 0 {
+		if !w.paths[i].ran(n) {
 			continue
 		}
 		if x, chi := w.paths[i].curves[n].Lowest(); chi < best {
@@ -566,6 +603,9 @@ func (w *weighing) judge(ctx context.Context) (*Result, error) {
 	}
 	for i := range w.paths {
 		r.Paths[i] = w.verdict(i, r.Own)
+	}
+	if err := w.groups(ctx, r); err != nil {
+		return nil, err
 	}
 	return r, nil
 }
@@ -598,11 +638,15 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 	for _, t := range w.study.Thresholds {
 		r.Above = append(r.Above, path.History.TimeAbove(t.Temp))
 	}
-	if len(p.barred) > 0 {
-		r.Outcome.Finding, r.Notes = notRun(Barred), p.barred
+	if len(p.profiles) == 0 {
+		r.Outcome.Finding, r.Notes = notRun(Barred), study.Whys(p.barred)
 		return r
 	}
-	Judge(&r.Outcome, p.curves, w.laws, w.study.Confidence)
+	w.judgePath(&r.Outcome, p)
+	if len(p.barred) > 0 {
+		r.Outcome.Finding, r.Notes = notRun(Barred), study.Whys(p.barred)
+		return r
+	}
 	r.Notes = r.Outcome.Notes()
 	for k, q := range p.profiles {
 		if k == 0 || q.crystal != p.profiles[k-1].crystal {
@@ -615,6 +659,36 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 		}
 	}
 	return r
+}
+
+// judgePath judges a path that was run, and says of the elements and crystals for
+// which it was not that they bar it.
+func (w *weighing) judgePath(dst *Outcome, p *weighedPath) {
+	var cs []Curve
+	for n := range p.curves {
+		if p.ran(n) {
+			cs = append(cs, p.curves[n])
+		}
+	}
+	Judge(dst, cs, w.laws, w.study.Confidence)
+	if len(cs) == len(p.curves) {
+		return
+	}
+	profiles, crystals := dst.Profiles, dst.Crystals
+	dst.Profiles, dst.Crystals = nil, nil
+	for n, e := range w.elements {
+		f, of := notRun(Barred), notRun(Barred)
+		if p.ran(n) {
+			f, profiles = profiles[0], profiles[1:]
+		}
+		if dst.Profiles = append(dst.Profiles, f); e.place < len(dst.Crystals) {
+			continue
+		}
+		if p.ran(n) {
+			of, crystals = crystals[0], crystals[1:]
+		}
+		dst.Crystals = append(dst.Crystals, of)
+	}
 }
 
 // notRun is the finding on a path that was not run.

@@ -87,12 +87,12 @@ func writePathsRead(w io.Writer, s *study.Study) error {
 	for i := range s.Paths {
 		p := &s.Paths[i]
 		lo, hi := p.History.Range()
-		reasons, err := s.Barred(p)
+		bars, err := s.Barred(p)
 		if err != nil {
 			return err
 		}
 		barred := ""
-		if len(reasons) > 0 {
+		if reasons := study.Whys(bars); len(reasons) > 0 {
 			barred = "barred: " + strings.Join(reasons, "; ")
 		}
 		table.row(p.Name, thermal.DurationText(p.Eruption), celsius(lo), celsius(hi), barred)

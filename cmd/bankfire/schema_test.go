@@ -13,6 +13,7 @@ import (
 
 	"bankfire/paths"
 	"bankfire/paths/study"
+	"bankfire/thermal"
 )
 
 // readSchema reads the committed schema.
@@ -80,6 +81,21 @@ func TestSummaryKeepsSchema(t *testing.T) {
 			o.Scatter = paths.Scatter{Crystals: 3, Common: 1.2, Common68: [2]float64{1, 1.4}, Common95: [2]float64{0, 2}, ChiSq: 2.5, Degrees: 2, Tail: 0.3}
 			o.Chance = paths.Chance{Judged: 3, Failed: 1, Expected: 0.15, Most: 1, Worst: 0.02}
 		}},
+		{"each its own history", func(r *paths.Result) { r.Study.Sharing.Each = true }},
+		{"histories shared from a moment", func(r *paths.Result) {
+			p := &r.Paths[0]
+			r.Study.Sharing.From = &thermal.Moment{Text: "1 yr after start"}
+			r.Groups = []paths.Group{
+				{Paths: []*study.Path{p.Path}, Choices: []paths.Choice{{Path: p.Path, Of: 1, Also: []*study.Path{p.Path}}}, Outcome: p.Outcome},
+				{Paths: []*study.Path{p.Path}, Choices: []paths.Choice{{}}, Outcome: paths.Outcome{Finding: barredFinding()}},
+			}
+		}},
+		{"barred by one crystal", func(r *paths.Result) {
+			p := &r.Paths[0]
+			p.Outcome.Finding, p.Barred = barredFinding(), []study.Bar{{Crystal: "HF-1", Why: "it was not there"}}
+			p.Outcome.Crystals[0], p.Outcome.Profiles[0] = barredFinding(), barredFinding()
+			p.Profiles[0] = paths.ProfileResult{Crystal: p.Profiles[0].Crystal, Element: p.Profiles[0].Element}
+		}},
 		{"nothing but one path that was not run", notRun},
 		{"no degrees left", func(r *paths.Result) {
 			o := &r.Paths[0].Outcome
@@ -109,6 +125,12 @@ func TestSummaryKeepsSchema(t *testing.T) {
 			}
 		})
 	}
+}
+
+// barredFinding is that of a path that was not run.
+func barredFinding() paths.Finding {
+	nan := math.NaN()
+	return paths.Finding{Verdict: paths.Barred, Shift: nan, Shift68: [2]float64{nan, nan}, Shift95: [2]float64{nan, nan}, Tail: nan, Misfit: nan, Above: nan}
 }
 
 // TestSchemaRefuses sees that the schema finds what is wrong.

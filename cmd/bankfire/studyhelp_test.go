@@ -35,7 +35,7 @@ func TestTopics(t *testing.T) {
 type entry struct{ key, example string }
 
 var (
-	tableHead = regexp.MustCompile(`^(top level|\[+[a-z.]+\]+|path\.legs[ .][a-z]+|(?:limits|law)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
+	tableHead = regexp.MustCompile(`^(top level|history|\[+[a-z.]+\]+|path\.legs[ .][a-z]+|(?:limits|law)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
 	entryLine = regexp.MustCompile(`^  ([A-Za-z0-9_]+)(?: = (.*?))?(?:  .*)?$`)
 )
 
@@ -181,6 +181,7 @@ func frames() []frame {
 		{"threshold", "name = \"lock-up\"\ntemperature = \"730 C\"\n", "%s\n", false, []string{`name = "lock-up"`, `temperature = "730 C"`}},
 		{"conditions", "[[threshold]]", "[conditions]\n%s\n\n[[threshold]]", false, nil},
 		{"limits", "[[threshold]]", "[limits]\n%s\n\n[[threshold]]", false, nil},
+		{"history", "[[threshold]]", "history = %s\n\n[[threshold]]", true, []string{`shared_from = "1 yr after start"`}},
 		inLimits("life", "", ""),
 		inLimits("above", "[ ", " ]", `threshold = "lock-up"`, `longest = "3 yr"`),
 		inLimits("between", "[ ", " ]", `from = "start"`, `to = "eruption"`, `longest = "1 Myr"`),

@@ -17,7 +17,7 @@ func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
 		Inputs: []input{}, Conditions: conditionsUsed(r.Study), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study), Solubilities: solubilitiesUsed(r.Study),
-		Own: ownBests(r), Paths: []weighedPath{}, Families: []struct{}{},
+		Own: ownBests(r), Paths: []weighedPath{}, History: summariseHistory(r), Families: []struct{}{},
 		Notes: filled(r.Study.Notes), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {
@@ -42,7 +42,11 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 	}
 	for k := range p.Outcome.Crystals {
 		f := &p.Outcome.Crystals[k]
-		out.Crystals = append(out.Crystals, judgedCrystal{r.Crystals[k].Name, f.Verdict.String(), newFinding(f, f.Notes())})
+		notes := f.Notes()
+		if f.Verdict == paths.Barred {
+			notes = whyBarred(p, r.Crystals[k].Name)
+		}
+		out.Crystals = append(out.Crystals, judgedCrystal{r.Crystals[k].Name, f.Verdict.String(), newFinding(f, notes)})
 	}
 	if s := &p.Outcome.Scatter; s.Degrees > 0 {
 		out.Scatter = &scatter{s.Crystals, s.Common, ends(s.Common68), ends(s.Common95), s.ChiSq, s.Degrees, s.Tail}
@@ -52,6 +56,9 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 	}
 	for i := range p.Profiles {
 		q := &p.Profiles[i]
+		if !q.Ran() {
+			continue
+		}
 		out.Profiles = append(out.Profiles, weighedProfile{
 			elementKey: elementKey{q.Crystal.Name, q.Element.Name}, Verdict: p.Outcome.Profiles[i].Verdict.String(),
 			finding: newFinding(&p.Outcome.Profiles[i], q.Notes),
@@ -60,6 +67,59 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 		})
 	}
 	return out
+}
+
+// whyBarred are the reasons for which a crystal bars the path.
+func whyBarred(p *paths.PathResult, crystal string) []string {
+	var why []string
+	for _, b := range p.Barred {
+		if b.Crystal == "" || b.Crystal == crystal {
+			why = append(why, b.Why)
+		}
+	}
+	return why
+}
+
+// summariseHistory is what the crystals share and what follows from it.
+func summariseHistory(r *paths.Result) history {
+	of := &r.Study.Sharing
+	out := history{Sharing: "shared", Crystals: []reproduced{}, Groups: []group{}}
+	switch {
+	case of.Each:
+		out.Sharing = "each"
+	case of.From != nil:
+		out.Sharing, out.From = "shared from", &of.From.Text
+	}
+	for k, c := range r.Crystals {
+		out.Crystals = append(out.Crystals, reproduced{c.Name, pathNames(r.ReproducedBy(k))})
+	}
+	for i := range r.Groups {
+		out.Groups = append(out.Groups, summariseGroup(r, &r.Groups[i]))
+	}
+	return out
+}
+
+func summariseGroup(r *paths.Result, g *paths.Group) group {
+	out := group{
+		Paths: pathNames(g.Paths), Combinations: g.Combinations(), Verdict: g.Outcome.Verdict.String(),
+		finding: newFinding(&g.Outcome.Finding, g.Outcome.Notes()), Choices: []choice{},
+	}
+	for k, c := range g.Choices {
+		chosen := choice{Crystal: r.Crystals[k].Name, Also: pathNames(c.Also)}
+		if c.Path != nil {
+			chosen.Path = &c.Path.Name
+		}
+		out.Choices = append(out.Choices, chosen)
+	}
+	return out
+}
+
+func pathNames(list []*study.Path) []string {
+	names := []string{}
+	for _, p := range list {
+		names = append(names, p.Name)
+	}
+	return names
 }
 
 func newFinding(f *paths.Finding, notes []string) finding {

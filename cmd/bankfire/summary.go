@@ -22,6 +22,7 @@ type weighing struct {
 	Solubilities []lawUsed     `json:"solubilities"`
 	Own          []ownBest     `json:"own_best"` // one a measured element
 	Paths        []weighedPath `json:"paths"`
+	History      history       `json:"history"`
 	Families     []struct{}    `json:"families"`
 	Notes        []string      `json:"notes"`
 	Files        []string      `json:"files"` // of the folder, written by the same run, this one included; none if there is no folder
@@ -121,6 +122,36 @@ type judgedCrystal struct {
 	Crystal string `json:"crystal"`
 	Verdict string `json:"verdict"`
 	finding
+}
+
+// history says how much of their history the crystals share, and what follows.
+type history struct {
+	Sharing  string       `json:"sharing"` // "shared", "each" or "shared from"
+	From     *string      `json:"from"`    // the moment of "shared from"
+	Crystals []reproduced `json:"crystals"`
+	Groups   []group      `json:"groups"` // of "shared from"
+}
+
+// reproduced is by which paths one crystal is reproduced, by itself.
+type reproduced struct {
+	Crystal string   `json:"crystal"`
+	Paths   []string `json:"reproduced_by"`
+}
+
+// group is paths that are the same from the moment on, with their best
+// combination, a path for each crystal.
+type group struct {
+	Paths        []string `json:"paths"`
+	Combinations float64  `json:"combinations"`
+	Verdict      string   `json:"verdict"` // of the best, as are the numbers
+	finding
+	Choices []choice `json:"choices"`
+}
+
+type choice struct {
+	Crystal string   `json:"crystal"`
+	Path    *string  `json:"path"` // null if the crystal bars all
+	Also    []string `json:"also"` // with which the combination passes as well
 }
 
 // scatter is that of the crystals' amounts of diffusion about one for all.

@@ -4,6 +4,7 @@ import (
 	"encoding/csv"
 	"io"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -42,7 +43,7 @@ func cell(x float64) string {
 // pathsTable writes paths.csv, a row a path.
 func pathsTable(w io.Writer, r *paths.Result) error {
 	table := newCSV(w)
-	head := pathsHead(r)
+	head, first := pathsHead(r), profilesOf(r)
 	table.row(head...)
 	for i := range r.Paths {
 		p := &r.Paths[i]
@@ -62,7 +63,11 @@ func pathsTable(w io.Writer, r *paths.Result) error {
 			}
 		}
 		for j := range p.Profiles {
-			row = append(row, profileCells(&p.Profiles[j], &o.Profiles[j])...)
+			if q := &p.Profiles[j]; q.Ran() {
+				row = append(row, profileCells(q, &o.Profiles[j])...)
+			} else {
+				row = append(row, make([]string, len(profileHead(&first[j])))...)
+			}
 		}
 		row = append(row, make([]string, len(head)-1-len(row))...) // a path that was not run has no profiles
 		table.row(append(row, strings.Join(p.Notes, "; "))...)
@@ -163,7 +168,7 @@ func profiles(r *paths.Result) func(yield func(q *paths.ProfileResult, path stri
 		for n := range profilesOf(r) {
 			for i := range r.Paths {
 				p := &r.Paths[i]
-				if len(p.Profiles) > 0 && !yield(&p.Profiles[n], p.Path.Name) {
+				if len(p.Profiles) > 0 && p.Profiles[n].Ran() && !yield(&p.Profiles[n], p.Path.Name) {
 					return
 				}
 			}
@@ -171,13 +176,19 @@ func profiles(r *paths.Result) func(yield func(q *paths.ProfileResult, path stri
 	}
 }
 
-// profilesOf returns the profiles of the first path that was run, none if none
-// was.
+// profilesOf returns for each element the profile of the first path that was run for
+// it, one that was not run if none was; none if nothing was run.
 func profilesOf(r *paths.Result) []paths.ProfileResult {
+	var out []paths.ProfileResult
 	for i := range r.Paths {
-		if len(r.Paths[i].Profiles) > 0 {
-			return r.Paths[i].Profiles
+		if out == nil {
+			out = slices.Clone(r.Paths[i].Profiles)
+		}
+		for n := range r.Paths[i].Profiles {
+			if !out[n].Ran() {
+				out[n] = r.Paths[i].Profiles[n]
+			}
 		}
 	}
-	return nil
+	return out
 }

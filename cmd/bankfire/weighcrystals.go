@@ -8,6 +8,7 @@ import (
 	"strconv"
 
 	"bankfire/paths"
+	"bankfire/paths/study"
 )
 
 // writeCrystals writes, where there are several crystals, what each says of the
@@ -23,6 +24,10 @@ func writeCrystals(w io.Writer, r *paths.Result) {
 		p := &r.Paths[i]
 		for k := range p.Outcome.Crystals {
 			f := &p.Outcome.Crystals[k]
+			if f.Verdict == paths.Barred {
+				table.row(p.Path.Name, r.Crystals[k].Name, f.Verdict.String(), "", "", "", "")
+				continue
+			}
 			table.row(append([]string{p.Path.Name, r.Crystals[k].Name, f.Verdict.String()}, numberCells(f)...)...)
 		}
 		if s := &p.Outcome.Scatter; s.Degrees > 0 {
@@ -109,4 +114,92 @@ func writeChance(w io.Writer, r *paths.Result) {
 		}
 		fmt.Fprintf(w, "Along %s %d of %d crystals %s, which chance may have done.\n", quoted(r.Paths[i].Path.Name), c.Failed, c.Judged, verb)
 	}
+}
+
+// writeHistories says, of crystals that need not share a path, which paths
+// reproduce each and, where they end alike, all together.
+func writeHistories(w io.Writer, r *paths.Result) {
+	var without []string
+	for k, c := range r.Crystals {
+		by := r.ReproducedBy(k)
+		if len(by) == 0 {
+			without = append(without, c.Name)
+			fmt.Fprintf(w, "%s by itself is reproduced by no path.\n", c.Name)
+			continue
+		}
+		fmt.Fprintf(w, "%s by itself is reproduced by %s.\n", c.Name, list(quotedAll(by)))
+	}
+	switch {
+	case r.Study.Sharing.From != nil:
+		writeGroups(w, r)
+	case len(without) == 0:
+		fmt.Fprintln(w, "Every crystal has a path of its own that reproduces it.")
+	default:
+		fmt.Fprintf(w, "Not every crystal has a path that reproduces it: %s.\n", list(without))
+	}
+}
+
+// writeGroups says what paths that end alike can do together.
+func writeGroups(w io.Writer, r *paths.Result) {
+	found := 0
+	for i := range r.Groups {
+		g := &r.Groups[i]
+		if g.Outcome.Verdict == paths.Reproduces {
+			found++
+		}
+		if len(g.Paths) == 1 {
+			fmt.Fprintf(w, "%s ends like no other path: for all crystals, it is %s%s.\n", quoted(g.Paths[0].Name), g.Outcome.Verdict, fitText(&g.Outcome))
+			continue
+		}
+		fmt.Fprintf(w, "%s are the same from %s on.", list(quotedAll(g.Paths)), quoted(r.Study.Sharing.From.Text))
+		writeChoices(w, r, g)
+	}
+	switch {
+	case found == 0:
+		fmt.Fprintln(w, "No paths that end alike reproduce all crystals.")
+	case len(r.Groups) > 1 && found == 1:
+		fmt.Fprintf(w, "Of %d ends, one reproduces all crystals.\n", len(r.Groups))
+	case len(r.Groups) > 1:
+		fmt.Fprintf(w, "Of %d ends, %d reproduce all crystals.\n", len(r.Groups), found)
+	}
+}
+
+// writeChoices says which of the paths of a group is best for which crystal.
+func writeChoices(w io.Writer, r *paths.Result, g *paths.Group) {
+	var best, also []string
+	for k, c := range g.Choices {
+		name := r.Crystals[k].Name
+		if c.Path == nil {
+			fmt.Fprintf(w, " %s bars all of them.\n", name)
+			return
+		}
+		best = append(best, fmt.Sprintf("%s for %s", quoted(c.Path.Name), name))
+		if len(c.Also) > 0 {
+			also = append(also, fmt.Sprintf("%s for %s", list(quotedAll(c.Also)), name))
+		}
+	}
+	verdict := "reproduces what was measured"
+	if g.Outcome.Verdict != paths.Reproduces {
+		verdict = "is " + g.Outcome.Verdict.String()
+	}
+	fmt.Fprintf(w, " The best of %s combinations, %s, %s%s.\n", number(g.Combinations()), list(best), verdict, fitText(&g.Outcome))
+	if len(also) > 0 {
+		fmt.Fprintf(w, "Instead of these it may be, one at a time, %s.\n", list(also))
+	}
+}
+
+// fitText is chi-square and tail in brackets, where there are any.
+func fitText(o *paths.Outcome) string {
+	if math.IsNaN(o.Misfit) {
+		return ""
+	}
+	return fmt.Sprintf(" (chi-square %s/%d, tail %s)", number(o.Misfit), o.Degrees, tailText(o.Tail))
+}
+
+func quotedAll(list []*study.Path) []string {
+	var names []string
+	for _, p := range list {
+		names = append(names, quoted(p.Name))
+	}
+	return names
 }

@@ -11,6 +11,7 @@ import (
 
 	"bankfire/cmd/bankfire/internal/figure"
 	"bankfire/paths"
+	"bankfire/paths/study"
 	"bankfire/paths/traverse"
 	"bankfire/thermal"
 )
@@ -37,7 +38,8 @@ func weighingFigure(r *paths.Result, n int) ([]byte, error) {
 
 // drawnWeighing is what is drawn of measured element n. Everything lies at the
 // positions that were measured: the origin and the tilt that a path was fitted
-// with move its curves. The start is that of the best path.
+// with move its curves. The start is that of the best path. Verdicts are those of
+// the crystal by itself where crystals need not share a path.
 func drawnWeighing(r *paths.Result, n int) *figure.Weighing {
 	own := &r.Own[n]
 	t := own.Element.Traverse
@@ -51,7 +53,8 @@ func drawnWeighing(r *paths.Result, n int) *figure.Weighing {
 		f.Thresholds = append(f.Thresholds, figure.Threshold{Name: threshold.Name, Temp: threshold.Temp})
 	}
 	sigma := t.Sigma
-	if best := bestPath(r); best >= 0 {
+	judged := judgedFor(r, own.Crystal)
+	if best := bestPath(judged); best >= 0 {
 		q := &r.Paths[best].Profiles[n]
 		f.Start, sigma = drawnLine(q, q.Start), q.Sigma
 		if len(q.Free) > 0 && ran(r) > 1 {
@@ -62,14 +65,14 @@ func drawnWeighing(r *paths.Result, n int) *figure.Weighing {
 		f.Points = append(f.Points, figure.Point{At: at, Value: t.Value[i], Sigma: sigma[i], Limit: t.Limit != nil && t.Limit[i]})
 	}
 	for i := range r.Paths {
-		f.Paths = append(f.Paths, drawnPath(&r.Paths[i], n))
+		f.Paths = append(f.Paths, drawnPath(&r.Paths[i], n, judged[i]))
 	}
 	return f
 }
 
 // drawnPath is a path, as far as the crystal sees it, as it is drawn for element n;
-// one that was not run has no profile.
-func drawnPath(p *paths.PathResult, n int) figure.Path {
+// one that was not run has no profile. Its verdict is that of judged.
+func drawnPath(p *paths.PathResult, n int, judged *paths.PathResult) figure.Path {
 	h := p.Path.History
 	if len(p.Profiles) > 0 {
 		if seen, err := p.Profiles[n].Crystal.Sees(h); err == nil {
@@ -77,11 +80,11 @@ func drawnPath(p *paths.PathResult, n int) figure.Path {
 		}
 	}
 	drawn := figure.Path{
-		Name: p.Path.Name, Verdict: verdictInWords(p),
-		Reproduces: p.Outcome.Verdict == paths.Reproduces, Barred: p.Outcome.Verdict == paths.Barred,
+		Name: p.Path.Name, Verdict: verdictInWords(judged),
+		Reproduces: judged.Outcome.Verdict == paths.Reproduces, Barred: judged.Outcome.Verdict == paths.Barred,
 		Duration: h.Duration(curveTemps(h)),
 	}
-	if len(p.Profiles) > 0 {
+	if len(p.Profiles) > 0 && p.Profiles[n].Ran() {
 		q := &p.Profiles[n]
 		drawn.Profile, drawn.Residuals = drawnLine(q, q.Final), q.Residuals
 	}
@@ -161,15 +164,44 @@ func restTemps(h *thermal.History, n int) []float64 {
 }
 
 // bestPath returns the number of the path of least misfit; -1 if none was run.
-func bestPath(r *paths.Result) int {
+func bestPath(judged []*paths.PathResult) int {
 	best := -1
-	for i := range r.Paths {
-		p := &r.Paths[i]
-		if len(p.Profiles) > 0 && (best < 0 || p.Outcome.Misfit < r.Paths[best].Outcome.Misfit) {
+	for i, p := range judged {
+		if misfit := p.Outcome.Misfit; len(p.Profiles) > 0 && !math.IsNaN(misfit) && (best < 0 || misfit < judged[best].Outcome.Misfit) {
 			best = i
 		}
 	}
 	return best
+}
+
+// judgedFor returns the paths with what the crystals say jointly or, where they need
+// not share a path, the crystal by itself.
+func judgedFor(r *paths.Result, c *study.Crystal) []*paths.PathResult {
+	k := slices.Index(r.Crystals, c)
+	var out []*paths.PathResult
+	for i := range r.Paths {
+		p := &r.Paths[i]
+		if !r.Study.Sharing.Whole() && k < len(p.Outcome.Crystals) {
+			p = ofCrystal(p, c, k)
+		}
+		out = append(out, p)
+	}
+	return out
+}
+
+// ofCrystal is a path that was run with what crystal c, the k-th, says of it.
+func ofCrystal(p *paths.PathResult, c *study.Crystal, k int) *paths.PathResult {
+	out := *p
+	out.Outcome.Finding = p.Outcome.Crystals[k]
+	out.Outcome.Profiles, out.Profiles = nil, nil
+	for j := range p.Profiles {
+		if p.Profiles[j].Crystal == c {
+			out.Profiles = append(out.Profiles, p.Profiles[j])
+			out.Outcome.Profiles = append(out.Outcome.Profiles, p.Outcome.Profiles[j])
+		}
+	}
+	out.Barred = slices.DeleteFunc(slices.Clone(p.Barred), func(b study.Bar) bool { return b.Crystal != "" && b.Crystal != c.Name })
+	return &out
 }
 
 // ran counts the paths that were run.

@@ -129,7 +129,7 @@ func TestDrawnWeighingOf(t *testing.T) {
 	t.Run("all barred", func(t *testing.T) {
 		r := smallResult(t)
 		p := &r.Paths[0]
-		p.Profiles, p.Outcome.Verdict, p.Barred = nil, paths.Barred, []string{"its life is short"}
+		p.Profiles, p.Outcome.Verdict, p.Barred = nil, paths.Barred, []study.Bar{{Why: "its life is short"}}
 		f := drawnWeighing(r, 0)
 		if drawn := &f.Paths[0]; !drawn.Barred || drawn.Residuals != nil || drawn.Verdict != "barred: its life is short" {
 			t.Errorf("the barred path is drawn as %+v", drawn)

@@ -10,6 +10,7 @@ import (
 	"strings"
 
 	"bankfire/paths"
+	"bankfire/paths/study"
 	"bankfire/thermal"
 )
 
@@ -41,6 +42,9 @@ func weighingText(r *paths.Result) bytes.Buffer {
 // writeVerdicts writes the table of paths and returns the notes its last
 // column refers to.
 func writeVerdicts(w io.Writer, r *paths.Result) []string {
+	if !r.Study.Sharing.Whole() {
+		fmt.Fprint(w, "All crystals along one path:\n\n")
+	}
 	table := newTable()
 	head := []string{"path", "verdict", "shift factor", "tail", "chi-square", "above best", "law off by", "life"}
 	for _, t := range r.Study.Thresholds {
@@ -135,13 +139,19 @@ func writeSentences(w io.Writer, r *paths.Result) {
 				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Traverse.Unit)
 		}
 	}
-	if slices.ContainsFunc(r.Paths, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }) {
+	shared := r.Study.Sharing.Whole()
+	switch {
+	case !shared && ran(r) > 0:
+		writeHistories(w, r)
+	case slices.ContainsFunc(r.Paths, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }):
 		fmt.Fprintln(w, tally(fit, len(r.Paths), ran(r)))
 	}
-	writeScatter(w, r)
-	writeChance(w, r)
+	if shared {
+		writeScatter(w, r)
+		writeChance(w, r)
+	}
 	for i := range r.Paths {
-		if o := &r.Paths[i].Outcome; o.Verdict != paths.Reproduces {
+		if o := &r.Paths[i].Outcome; o.Verdict == paths.Barred || shared && o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
 		}
 	}
@@ -179,6 +189,9 @@ func writeFits(w io.Writer, r *paths.Result) {
 				continue
 			}
 			q := &r.Paths[i].Profiles[n]
+			if !q.Ran() {
+				continue
+			}
 			if fits == nil {
 				fmt.Fprintf(w, "%s in %s, fitted for each path:\n\n", q.Element.Name, q.Crystal.Name)
 				fits = newTable()
@@ -237,7 +250,7 @@ func verdictInWords(p *paths.PathResult) string {
 	case paths.Unjudged:
 		return "not judged: no degrees of freedom are left"
 	case paths.Barred:
-		return "barred: " + strings.Join(p.Barred, "; ")
+		return "barred: " + strings.Join(study.Whys(p.Barred), "; ")
 	default:
 		return o.Verdict.String()
 	}

@@ -7,9 +7,9 @@ import (
 	"bankfire/thermal"
 )
 
-// Bar is why one crystal cannot have seen a path.
+// Bar is why one crystal cannot have seen a path, or why none can.
 type Bar struct {
-	Crystal string // its name
+	Crystal string // its name, "" where it is all of them
 	Why     string
 }
 
@@ -55,18 +55,6 @@ func (c *Crystal) dissolved(seen *thermal.History) []string {
 		why = append(why, fmt.Sprintf("%s dissolves: %s", c.Name, how))
 	}
 	return why
-}
-
-// Barred returns in words why the path is ruled out: what its crystals cannot have
-// seen and every limit that it breaks, none if there is nothing. The error is that
-// of Limits.Barred.
-func (s *Study) Barred(p *Path) ([]string, error) {
-	var why []string
-	for _, b := range p.Barred {
-		why = append(why, b.Why)
-	}
-	broken, err := s.Limits.Barred(p.History)
-	return append(why, broken...), err
 }
 
 // bar adds why the crystal cannot have seen the path.

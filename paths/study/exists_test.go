@@ -7,10 +7,13 @@ import (
 	"testing"
 )
 
-// existing is the sound study with two more paths and more keys of
-// its crystal.
+// existing is the sound study with two more paths and more keys of its crystal.
 func existing(t *testing.T, keys string) (*Study, error) {
 	t.Helper()
+	return parse("s.toml", []byte(existingText(keys)), memory(soundFiles()))
+}
+
+func existingText(keys string) string {
 	text := strings.Replace(sound, "[[crystal]]\n", `[[path]]
 name = "short"
 legs = [ { name = "store", hold = "750 C", for = "30 yr" } ]
@@ -27,8 +30,7 @@ legs = [
 
 [[crystal]]
 `, 1)
-	text = strings.Replace(text, "shape = \"slab\"\n", "shape = \"slab\"\n"+keys+"\n", 1)
-	return parse("s.toml", []byte(text), memory(soundFiles()))
+	return strings.Replace(text, "shape = \"slab\"\n", "shape = \"slab\"\n"+keys+"\n", 1)
 }
 
 // TestExistence: which paths are barred for what a crystal of one moment and one
@@ -66,7 +68,8 @@ func TestExistence(t *testing.T) {
 			}
 			for i := range s.Paths {
 				p := &s.Paths[i]
-				got, err := s.Barred(p)
+				bars, err := s.Barred(p)
+				got := Whys(bars)
 				var want []string
 				if test.want[i] != "" {
 					want = []string{test.want[i]}
@@ -92,7 +95,8 @@ func TestExistenceNamesTheLeg(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	got, err := s.Barred(&s.Paths[0])
+	bars, err := s.Barred(&s.Paths[0])
+	got := Whys(bars)
 	if want := `Q1 dissolves: it is above 750 C for 5 yr without a break in "wake", longer than 4 yr`; err != nil || len(got) != 1 || got[0] != want {
 		t.Errorf("got %q, %v, want %q", got, err, want)
 	}

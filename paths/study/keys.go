@@ -36,6 +36,7 @@ const (
 	lifeTable
 	aboveTable
 	betweenTable
+	historyTable
 	conditionsTable
 	ownLawTable
 	ownLawHostTable
@@ -71,12 +72,13 @@ const (
 // tables are the kinds of table with the keys that the decoder knows. It is
 // never changed.
 var tables = [...]Table{
-	topTable:        {"", []string{"title", "confidence", "eruption", "conditions", "threshold", "limits", "law", "partition", "path", "crystal"}},
+	topTable:        {"", []string{"title", "confidence", "eruption", "conditions", "threshold", "limits", "history", "law", "partition", "path", "crystal"}},
 	thresholdTable:  {"threshold", []string{"name", "temperature"}},
 	limitsTable:     {"limits", []string{"life", "lowest", "highest", "above", "between"}},
 	lifeTable:       {"limits.life", []string{"shortest", "longest"}},
 	aboveTable:      {"limits.above", []string{"threshold", "temperature", "shortest", "longest", "counts"}},
 	betweenTable:    {"limits.between", []string{"from", "to", "shortest", "longest"}},
+	historyTable:    {"history", []string{"shared_from"}},
 	conditionsTable: {"conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
 	ownLawTable:     {"law", []string{"name", "D0", "E", "host", "own", "sigma", "range", "citation", "caution"}},
 	ownLawHostTable: {"law.host", []string{"ln_slope", "at"}},

@@ -66,6 +66,7 @@ func (d *decoder) study(root *node) *Study {
 	d.ownPartitions(root.get("partition"))
 	s.Thresholds = d.thresholds(root.get("threshold"))
 	s.Limits = d.limits(root.get("limits"), s.Thresholds)
+	s.Sharing = d.sharing(root.get("history"))
 	s.Paths = d.paths(root)
 	for _, i := range d.inUse() {
 		if i > 1 {

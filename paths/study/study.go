@@ -21,6 +21,7 @@ type Study struct {
 	Conditions Conditions
 	Settings   []Setting // those of legs that state conditions of their own
 	Limits     Limits
+	Sharing    Sharing
 	Paths      []Path // at least one, names differ
 	Crystals   []Crystal
 	Inputs     []Input  // the study first, then every other file in the order of its first use

@@ -22,6 +22,7 @@ func (d *decoder) together(s *Study) {
 			}
 		}
 	}
+	d.shares(s)
 	for i := range s.Limits.Between {
 		d.interval(s.Paths, &s.Limits.Between[i])
 	}
