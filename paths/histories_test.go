@@ -185,3 +185,33 @@ func TestOneCrystalBars(t *testing.T) {
 		t.Errorf("shared: %s with %d profiles", r.Paths[0].Outcome.Verdict, len(r.Paths[0].Profiles))
 	}
 }
+
+// The order of crystals and elements changes no bit of a combination either.
+func TestPermutedHistories(t *testing.T) {
+	var groups [2]*Group
+	var crystals [2][]*study.Crystal
+	for i := range groups {
+		s := threeOfTwo(t)
+		s.Sharing.From = from(t, "1 yr before end")
+		if i == 1 {
+			slices.Reverse(s.Crystals)
+			for k := range s.Crystals {
+				slices.Reverse(s.Crystals[k].Elements)
+			}
+		}
+		r := weighed(t, s)
+		if len(r.Groups) != 1 || len(r.Groups[0].Paths) != 2 {
+			t.Fatalf("groups %+v", r.Groups)
+		}
+		groups[i], crystals[i] = &r.Groups[0], r.Crystals
+	}
+	if a, b := groups[0].Outcome.Finding, groups[1].Outcome.Finding; a != b {
+		t.Errorf("%+v, permuted %+v", a, b)
+	}
+	for k, c := range crystals[0] {
+		l := slices.IndexFunc(crystals[1], func(d *study.Crystal) bool { return c.Name == d.Name })
+		if a, b := groups[0].Choices[k], groups[1].Choices[l]; a.Path.Name != b.Path.Name || len(a.Also) != len(b.Also) {
+			t.Errorf("%s: %+v, permuted %+v", c.Name, a, b)
+		}
+	}
+}

@@ -57,6 +57,12 @@ func checkText(s *study.Study) (*bytes.Buffer, error) {
 		return nil, err
 	}
 	writeConditions(text, s)
+	switch {
+	case s.Sharing.Each:
+		fmt.Fprint(text, "history: each crystal has its own\n\n")
+	case s.Sharing.From != nil:
+		fmt.Fprintf(text, "history: the crystals share what comes from %s on\n\n", quoted(s.Sharing.From.Text))
+	}
 	for i := range s.Crystals {
 		writeCrystal(text, &s.Crystals[i], filepath.Dir(s.File))
 	}

@@ -34,7 +34,7 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 		Name: p.Path.Name, Verdict: p.Outcome.Verdict.String(), finding: newFinding(&p.Outcome.Finding, p.Notes),
 		LifeS: p.Life, Above: []timeAbove{}, Crystals: []judgedCrystal{}, Profiles: []weighedProfile{},
 	}
-	if len(p.Profiles) > 0 {
+	if len(p.Profiles) > 0 && p.Outcome.Verdict != paths.Barred {
 		out.WithLaws = newWithLaws(&p.Outcome.WithLaws)
 	}
 	for i, t := range r.Study.Thresholds {

@@ -72,7 +72,7 @@ type weighedPath struct {
 	Name    string `json:"name"`
 	Verdict string `json:"verdict"`
 	finding
-	WithLaws *withLaws        `json:"with_law_errors"` // null if the path was not run
+	WithLaws *withLaws        `json:"with_law_errors"` // null if the path is barred
 	LifeS    float64          `json:"life_s"`
 	Above    []timeAbove      `json:"time_above"`
 	Crystals []judgedCrystal  `json:"crystals"`
