@@ -110,6 +110,20 @@ func (p *profile) addHost(dst []float64, field int, at least.Solution) {
 	}
 }
 
+// betweenText prints an interval of a factor of which a side may be open.
+func betweenText(x [2]float64) string {
+	lo, hi := x[0] > 0, !math.IsInf(x[1], 1)
+	switch {
+	case lo && hi:
+		return fmt.Sprintf("from %.3g to %.3g", x[0], x[1])
+	case lo:
+		return fmt.Sprintf("above %.3g", x[0])
+	case hi:
+		return fmt.Sprintf("below %.3g", x[1])
+	}
+	return "not bounded"
+}
+
 // host says how much the error of the host widens the shift factor of the path of
 // the own best fit, whose curve is given.
 func (o *OwnBest) host(ctx context.Context, p *profile, c *Curve, confidence float64) error {
@@ -122,11 +136,8 @@ func (o *OwnBest) host(ctx context.Context, p *profile, c *Curve, confidence flo
 	if err != nil {
 		return err
 	}
-	text := func(c *Curve) string {
-		f := find(c, confidence)
-		return fmt.Sprintf("%.3g (%.3g to %.3g)", f.Shift, f.Shift95[0], f.Shift95[1])
-	}
+	with, alone := find(c, confidence).Shift95, find(&without, confidence).Shift95
 	o.say("its host was redrawn %d times from its errors: with them the shift factor of %q is %s, with the host taken as exact %s",
-		len(p.redrawn), p.path.Name, text(c), text(&without))
+		len(p.redrawn), p.path.Name, betweenText(with), betweenText(alone))
 	return nil
 }

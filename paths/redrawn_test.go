@@ -160,7 +160,7 @@ func TestHostErrorWidensTheShiftFactor(t *testing.T) {
 	if !(a[1]/a[0] > 1.2*b[1]/b[0]) {
 		t.Errorf("the interval is %g with the host's error and %g without", a, b)
 	}
-	if got := strings.Join(r.Own[0].Findings, "\n"); !strings.Contains(got, `its host was redrawn 2 times from its errors: with them the shift factor of "as it was" is`) {
+	if got := strings.Join(r.Own[0].Findings, "\n"); !strings.Contains(got, `its host was redrawn 2 times from its errors: with them the shift factor of "as it was" is from`) {
 		t.Errorf("findings %q", got)
 	}
 	if got := strings.Join(without.Own[0].Findings, "\n"); strings.Contains(got, "redrawn") {
@@ -228,5 +228,15 @@ func TestHostErrorBeforeDiffusion(t *testing.T) {
 	}
 	if got, next := still(); !(math.Abs(got-next) <= same*next && got < exactly/10) {
 		t.Errorf("chi-square without diffusion %g, with next to none %g, with the host as exact %g", got, next, exactly)
+	}
+}
+
+func TestBetweenText(t *testing.T) {
+	for want, x := range map[string][2]float64{
+		"from 0.5 to 2": {0.5, 2}, "above 0.5": {0.5, math.Inf(1)}, "below 2": {0, 2}, "not bounded": {0, math.Inf(1)},
+	} {
+		if got := betweenText(x); got != want {
+			t.Errorf("%g is %q, want %q", x, got, want)
+		}
 	}
 }
