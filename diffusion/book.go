@@ -8,7 +8,7 @@ import "math"
 // tiny difference of values times a large conductance; what it may be wrong by
 // is no drift.
 type book struct {
-	start  float64 // content before the run
+	start  float64 // content before the run, and of what was added since
 	inflow float64 // content that came through both ends
 	scale  float64 // all that was there or moved, without its sign
 	noise  float64 // what rounding of the values may have done to the inflow
@@ -18,12 +18,7 @@ type book struct {
 // openBook returns the account of a run before its first step.
 func (p *Plan) openBook() book {
 	b := book{lo: math.Inf(1), hi: math.Inf(-1)}
-	for i, v := range p.grid.volumes {
-		c := p.starts[0][i]
-		b.start += v * c
-		b.scale += v * math.Abs(c)
-		b.see(c)
-	}
+	b.grow(p, 0, func(i int) float64 { return p.fresh[0][i] })
 	return b
 }
 
@@ -55,12 +50,13 @@ func (b *book) flow(k, v, before, after float64, euler bool) {
 	b.noise += k * (math.Abs(v) + math.Abs(after)) * 0x1p-52
 }
 
-// close writes what the account says of the final answer c.
+// close writes what the account says of the final answer c, in the cells that are
+// there.
 func (b *book) close(s *Stats, p *Plan, c []float64) {
 	content, lo, hi := 0.0, b.lo, b.hi
-	for i, v := range p.grid.volumes {
-		content += v * c[i]
-		lo, hi = leastMost(lo, hi, c[i])
+	for i, v := range c {
+		content += p.grid.volumes[i] * v
+		lo, hi = leastMost(lo, hi, v)
 	}
 	if b.scale > 0 {
 		s.MassDrift = math.Max(0, math.Abs(content-b.start-b.inflow)-b.noise) / b.scale

@@ -26,6 +26,9 @@ func (w *newton) layBridges(p *Plan, op *operator, temp float64) {
 	for _, z := range p.problem.Zones[:len(p.problem.Zones)-1] {
 		b := sort.SearchFloat64s(p.grid.faces, z.Outer)
 		a := b - 1
+		if b >= len(op.vol) {
+			break // not there yet
+		}
 		if h.atFaces[2*a+1] == h.atFaces[2*b] {
 			continue
 		}

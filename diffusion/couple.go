@@ -27,6 +27,7 @@ type operator struct {
 	inverse []float64 // 1/K
 	kIn     float64   // K at the inner and the outer end
 	kOut    float64
+	out     float64   // conductance of the half cell at the outer end, at unit D; that of cond where it is the last
 	all     []float64 // of a coupled problem: k, cond, kIn and kOut; then vol and inverse
 }
 
@@ -95,8 +96,8 @@ func meanWeights(shape Shape, a, b float64) (inner, outer float64) {
 	return variance / (2 * e * (e + shift)), variance / (2 * e * (e - shift))
 }
 
-// couple fills the field's operator for a temperature, K.
-func (f *Field) couple(p *Plan, temp float64) *operator {
+// couple fills the field's operator for a stage and a temperature, K.
+func (f *Field) couple(p *Plan, stage int, temp float64) *operator {
 	op, h := &f.op, p.host
 	values := op.resize(len(h.x))
 	switch at := h.panelAt(p.problem.LnK, 1/temp); {
@@ -109,7 +110,11 @@ func (f *Field) couple(p *Plan, temp float64) *operator {
 		at.read(values, 1/temp)
 		op.finish(p.grid.volumes)
 	}
-	op.kIn, op.kOut = values[len(values)-2], values[len(values)-1]
+	op.kIn, op.kOut, op.out = values[len(values)-2], values[len(values)-1], op.cond[len(h.x)]
+	if n := p.stages[stage].cells(); n < len(h.x) {
+		op.vol, op.k, op.inverse, op.cond = op.vol[:n], op.k[:n], op.inverse[:n], op.cond[:n+1]
+		op.kOut, op.out = h.end(p.problem.LnK, temp, n)
+	}
 	return op
 }
 
@@ -142,6 +147,14 @@ func (h *hostGrid) evaluate(dst []float64, lnK func(x, temp float64) float64, te
 		ends[1] = kOuter
 	}
 	cond[n] = 1 / inside
+}
+
+// end returns, as evaluate does of all cells, K at the outer end of the first n and
+// the conductance of the half cell there.
+func (h *hostGrid) end(lnK func(x, temp float64) float64, temp float64, n int) (k, cond float64) {
+	unit := lnK(h.x[len(h.x)/2], temp)
+	here, outer := lnK(h.x[n-1], temp)-unit, lnK(h.atFaces[2*n-1], temp)-unit
+	return math.Exp(outer), 1 / (h.half[2*n-1] * meanInverse(here, outer))
 }
 
 // meanInverse returns the mean of 1/K over a stretch along which ln K goes

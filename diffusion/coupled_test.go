@@ -139,7 +139,7 @@ func atHold(tb testing.TB, p *Problem, g float64) *thermal.History {
 
 // partitions returns K, in the plan's unit, of each cell and of both ends.
 func partitions(p *Plan, temp float64) (k []float64, kIn, kOut float64) {
-	op := new(Field).couple(p, temp)
+	op := new(Field).couple(p, 0, temp)
 	return op.k, op.kIn, op.kOut
 }
 
@@ -170,7 +170,7 @@ func TestCoupledRestStays(t *testing.T) {
 		}
 		plan = newPlan(t, p, Options{Faces: plan.Faces()})
 		for c := range k {
-			plan.starts[0][c] = u * k[c]
+			plan.fresh[0][c] = u * k[c]
 		}
 		for c, v := range run(t, plan, h).Cols[0] {
 			off := math.Abs(v/(u*k[c]) - 1)
@@ -603,7 +603,7 @@ func TestPanels(t *testing.T) {
 		direct := make([]float64, 2*len(plan.Centres())+3)
 		for range tries {
 			temp := logUniform(r, 700, 1700)
-			got := new(Field).couple(plan, temp)
+			got := new(Field).couple(plan, 0, temp)
 			plan.host.evaluate(direct, p.LnK, temp)
 			for j, v := range got.all[:len(direct)] {
 				if !(math.Abs(v-direct[j]) <= 2*panelError*direct[j]) { // between the places that were tried

@@ -16,12 +16,14 @@ import (
 type Course struct {
 	plan   *Plan
 	spans  []span
+	stage  int       // that it ends in
 	events []float64 // s
 	route  route     // of the span in hand
 }
 
 // span is the stretch between two events.
 type span struct {
+	stage        int
 	lnG          float64 // ln of the integral of D dt, m2
 	inner, outer ending
 	coldness     means // of 1/T, 1/K, over each step, weighted by D; for coupled problems only
@@ -77,6 +79,7 @@ func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 	}
 	dst.plan = p
 	dst.spans = dst.spans[:0]
+	dst.stage = p.stageAt(until)
 	from := 0.0
 	dst.events = p.eventsOn(dst.events, h)
 	for i := 0; i <= len(dst.events) && from < until; i++ {
@@ -101,6 +104,7 @@ func (c *Course) addSpan() *span {
 }
 
 func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
+	s.stage = p.stageAt(t0)
 	s.inner.begin(p.problem.Inner, t0)
 	s.outer.begin(p.problem.Outer, t0)
 	law, coupled := &p.problem.Law, p.problem.LnK != nil

@@ -10,26 +10,27 @@ import "math"
 type hostEdge struct {
 	plan   *Plan
 	a, b   int
+	ca, cb float64 // what is there when it begins
 	ra, rb float64 // roots of D's factors
 }
 
-// addHostEdge is addEdge in a zoned host.
-func (p *Plan) addHostEdge(err, start []float64, face int, edge float64, job Job) {
+// addHostEdge is addEdge in a zoned host, of a boundary that comes with a stage.
+func (p *Plan) addHostEdge(err []float64, edge edge, job Job, stage int) {
+	ca, cb := edge.sides[0], edge.sides[1]
 	e := hostEdge{
-		plan: p, a: face - 1, b: face,
-		ra: math.Sqrt(p.problem.factor(p.grid.centres[face-1]) * p.problem.own(start[face-1])),
-		rb: math.Sqrt(p.problem.factor(p.grid.centres[face]) * p.problem.own(start[face])),
+		plan: p, a: edge.face - 1, b: edge.face, ca: ca, cb: cb,
+		ra: math.Sqrt(p.problem.factor(p.grid.centres[edge.face-1]) * p.problem.own(ca)),
+		rb: math.Sqrt(p.problem.factor(p.grid.centres[edge.face]) * p.problem.own(cb)),
 	}
-	ca, cb := start[e.a], start[e.b]
 	was, meets := 0.0, 0.0
-	job.eachStep(p, func(temp, left float64) {
+	job.eachStep(p, stage, func(temp, left float64) {
 		ratio := e.ratio(temp)
 		switch {
 		case was == 0:
-			blur := edge / edgesPerWidth * edge / edgesPerWidth / 2
+			blur := edge.blur()
 			e.add(err, (ca+cb)/2*(1/ratio-1), ratio, 0, left)    // the part that K makes
 			e.add(err, (cb-ca)*(1+1/ratio)/2, ratio, blur, left) // and the part that C makes
-			e.addSlope(err, start, edge, temp, left)
+			e.addSlope(err, edge.width, temp, left)
 			meets = (e.ra*ca + e.rb*cb) / (e.ra + ratio*e.rb) // C on side a of the boundary
 		case ratio != was:
 			e.add(err, meets*(was/ratio-1), ratio, 0, left)
@@ -54,13 +55,13 @@ func (e *hostEdge) add(err []float64, jump, ratio, blur, g float64) {
 
 // addSlope adds what the grid does at first to slopes of u that differ, or to
 // equal ones where D differs: see addEdge.
-func (e *hostEdge) addSlope(err, start []float64, edge, temp, g float64) {
+func (e *hostEdge) addSlope(err []float64, edge, temp, g float64) {
 	p, da, db := e.plan, e.ra*e.ra, e.rb*e.rb
 	ha, hb := p.width(e.a), p.width(e.b)
 	h := (ha + hb) / 2
-	of := (start[e.b] - start[e.a]) / h * math.Min(1, edge/edgesPerWidth/h)
-	sa := of - start[e.a]*p.hostSlope(e.a, true, temp)
-	sb := (of - start[e.b]*p.hostSlope(e.b, false, temp)) / e.ratio(temp)
+	of := (e.cb - e.ca) / h * math.Min(1, edge/edgesPerWidth/h)
+	sa := of - e.ca*p.hostSlope(e.a, true, temp)
+	sb := (of - e.cb*p.hostSlope(e.b, false, temp)) / e.ratio(temp)
 	ratio := e.ratio(temp)
 	lacks := (e.ra*sa+e.rb*sb)/(1/e.ra+1/(ratio*e.rb)) - (sa+sb)/(1/da+1/(ratio*db))
 	err[e.a] -= lacks * g / ha * math.Pow(1+da*g/(h*h), -1.5)
@@ -79,17 +80,18 @@ func (p *Plan) hostSlope(cell int, outer bool, temp float64) float64 {
 
 // addWall adds what the grid does at a sealed end towards which ln K slopes: u is
 // level there from the first moment on, and the first cell is late to see it. (At
-// a centre nothing slopes.)
-func (p *Plan) addWall(err, start []float64, job Job, outer bool) {
+// a centre nothing slopes.) An outer end comes with a stage.
+func (p *Plan) addWall(err, start []float64, job Job, stage int, outer bool) {
 	cell, next, sign, rims := 0, 1, -1.0, p.problem.Inner
 	if outer {
-		cell, next, sign, rims = len(err)-1, len(err)-2, 1, p.problem.Outer
+		n := p.stages[stage].cells()
+		cell, next, sign, rims = n-1, n-2, 1, p.problem.Outer
 	}
-	if !outer && p.problem.R0 == 0 && p.problem.Shape != Slab || next < 0 || next == len(err) || endingAt(rims, 0).open {
+	if !outer && p.problem.R0 == 0 && p.problem.Shape != Slab || next < 0 || next == len(err) || endingAt(rims, p.stages[stage].from).open {
 		return
 	}
 	begun := false
-	job.eachStep(p, func(temp, left float64) {
+	job.eachStep(p, stage, func(temp, left float64) {
 		if begun {
 			return
 		}
@@ -113,17 +115,14 @@ func kinkLag(gamma float64) float64 {
 	return 1 / (2/(gamma*gamma) + 24*math.Sqrt(math.Pi*gamma))
 }
 
-// eachStep calls visit for every solve of a coupled job, with its temperature, K,
-// and the diffusion integral that is left when it begins.
-func (j Job) eachStep(p *Plan, visit func(temp, left float64)) {
-	left := 0.0
-	for i := range j.Course.spans {
-		left += j.Course.spans[i].integral(j.LnM)
-	}
+// eachStep calls visit for every solve of a coupled job from a stage on, with its
+// temperature, K, and the diffusion integral that is left when it begins.
+func (j Job) eachStep(p *Plan, stage int, visit func(temp, left float64)) {
+	left := j.during(stage, len(p.stages))
 	for i := range j.Course.spans {
 		sp := &j.Course.spans[i]
 		g := sp.integral(j.LnM)
-		if g == 0 {
+		if g == 0 || sp.stage < stage {
 			continue
 		}
 		for k, st := range p.steps {

@@ -77,27 +77,51 @@ func besselScaled(x float64) float64 {
 // addJumps adds to err, of column j, what the grid does to the jumps of a job.
 // f holds the job's outcome.
 func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
-	total := 0.0
-	for i := range job.Course.spans {
-		total += job.Course.spans[i].integral(job.LnM)
-	}
-	face := 0
-	for _, z := range p.problem.Zones[:len(p.problem.Zones)-1] {
-		for p.grid.faces[face] < z.Outer {
-			face++
+	at := 0 // in what was noted of the edges
+	for s := range p.stages {
+		zones, left := p.stages[s].zones, job.during(s, len(p.stages))
+		for i := max(1, zones[0]); i < zones[1]; i++ {
+			edge := edge{p.outside[i-1], p.problem.Zones[i-1].Edge, f.atEdge[at+j]}
+			at += len(f.Cols)
+			if p.host == nil {
+				p.addEdge(err, edge, left)
+			} else {
+				p.addHostEdge(err, edge, job, s)
+			}
 		}
-		if p.host == nil {
-			p.addEdge(err, p.starts[j], face, z.Edge, total)
-		} else {
-			p.addHostEdge(err, p.starts[j], face, z.Edge, job)
+		if s == job.Course.stage {
+			break
 		}
 	}
 	if p.host != nil {
-		p.addWall(err, p.starts[j], job, false)
-		p.addWall(err, p.starts[j], job, true)
+		p.addWall(err, p.fresh[j], job, 0, false)
+		for s := range p.stages[:job.Course.stage+1] {
+			p.addWall(err, p.fresh[j], job, s, true)
+		}
 	}
-	p.addRim(err, f, job, j, total, false)
-	p.addRim(err, f, job, j, total, true)
+	p.addRim(err, f, job, j, rim{to: len(p.stages)})
+	for s := range p.stages[:job.Course.stage+1] {
+		p.addRim(err, f, job, j, rim{cell: p.stages[s].cells() - 1, side: 1, from: s, to: s + 1})
+	}
+}
+
+// during returns the diffusion integral of the job from one stage to before another,
+// m2.
+func (j Job) during(from, to int) float64 {
+	sum := 0.0
+	for i := range j.Course.spans {
+		if s := j.Course.spans[i].stage; s >= from && s < to {
+			sum += j.Course.spans[i].integral(j.LnM)
+		}
+	}
+	return sum
+}
+
+// edge is a zone boundary when it begins.
+type edge struct {
+	face  int
+	width float64    // m
+	sides [2]float64 // what is in the cells beside it
 }
 
 // addEdge adds what the grid does, in a diffusion integral of g, to the jump at
@@ -107,12 +131,13 @@ func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
 // once be its slope times the geometric mean of both D (Carslaw and Jaeger 1959,
 // section 2.15, for two media), and on the grid begins with their harmonic mean
 // until a cell has taken part.
-func (p *Plan) addEdge(err, start []float64, face int, edge, g float64) {
-	a, b := face-1, face
-	jump := start[b] - start[a]
-	da, db := p.problem.factor(p.grid.centres[a])*p.problem.own(start[a]), p.problem.factor(p.grid.centres[b])*p.problem.own(start[b])
+func (p *Plan) addEdge(err []float64, e edge, g float64) {
+	a, b := e.face-1, e.face
+	jump := e.sides[1] - e.sides[0]
+	da := p.problem.factor(p.grid.centres[a]) * p.problem.own(e.sides[0])
+	db := p.problem.factor(p.grid.centres[b]) * p.problem.own(e.sides[1])
 	ra, rb := math.Sqrt(da), math.Sqrt(db)
-	blur := edge / edgesPerWidth * edge / edgesPerWidth / 2 // the edge is what this integral makes of a jump
+	blur := e.blur()
 	lagAt := func(d float64, cell int) float64 {
 		h := p.width(cell)
 		return lag(blur/(h*h), d*g/(h*h))
@@ -120,11 +145,14 @@ func (p *Plan) addEdge(err, start []float64, face int, edge, g float64) {
 	err[a] -= jump * 2 * rb / (ra + rb) * lagAt(da, a)
 	err[b] += jump * 2 * ra / (ra + rb) * lagAt(db, b)
 	h := (p.width(a) + p.width(b)) / 2
-	slope := jump / h * math.Min(1, edge/edgesPerWidth/h)
+	slope := jump / h * math.Min(1, e.width/edgesPerWidth/h)
 	lacks := slope * (ra*rb - 2*da*db/(da+db)) * g
 	err[a] -= lacks / p.width(a) * math.Pow(1+da*g/(h*h), -1.5)
 	err[b] += lacks / p.width(b) * math.Pow(1+db*g/(h*h), -1.5)
 }
+
+// blur returns the diffusion integral that would have made the edge of a jump, m2.
+func (e edge) blur() float64 { return e.width / edgesPerWidth * e.width / edgesPerWidth / 2 }
 
 // appendEnds appends the values of a column at both ends of the crystal, on the
 // straight line through the two cells beside them.
@@ -140,31 +168,38 @@ func (p *Plan) appendEnds(to, c []float64) []float64 {
 
 func (p *Plan) width(i int) float64 { return p.grid.faces[i+1] - p.grid.faces[i] }
 
+// rim is one end of the crystal while it is that.
+type rim struct {
+	cell     int // beside it
+	side     int // 0 is the inner end, 1 the outer
+	from, to int // stages: in which it is first and no more
+}
+
 // addRim adds what the grid does to the changes of a rim. Each acts like a jump
-// of twice its size between two cells, of which one side is seen. left is the
-// diffusion integral of the whole job.
-func (p *Plan) addRim(err []float64, f *Field, job Job, j int, left float64, outer bool) {
-	cell, side := 0, 0
-	if outer {
-		cell, side = len(err)-1, 1
-	}
-	h := p.width(cell)
-	perG := p.problem.factor(p.grid.centres[cell]) / (h * h)
-	was, sealed := 0.0, true
+// of twice its size between two cells, of which one side is seen. Where more is added
+// there, no rim makes good any more for what has not come in; that spreads.
+func (p *Plan) addRim(err []float64, f *Field, job Job, j int, r rim) {
+	h := p.width(r.cell)
+	perG := p.problem.factor(p.grid.centres[r.cell]) / (h * h)
+	left, was, sealed := job.during(r.from, r.to), 0.0, true
+	late := 1 / math.Sqrt(1+4*math.Pi*perG*job.during(r.to, len(p.stages)))
 	for i := range job.Course.spans {
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)
-		if end := [...]ending{sp.inner, sp.outer}[side]; !end.open || end.exchange.fine != nil || g == 0 {
+		if sp.stage < r.from || sp.stage >= r.to {
+			continue
+		}
+		if end := [...]ending{sp.inner, sp.outer}[r.side]; !end.open || end.exchange.fine != nil || g == 0 {
 			left, sealed = math.Max(left-g, 0), sealed || !end.open || end.exchange.fine != nil
 			continue
 		}
 		if sealed {
-			was, sealed = f.atSpan[(i*len(f.Cols)+j)*2+side], false
+			was, sealed = f.atSpan[(i*len(f.Cols)+j)*2+r.side], false
 		}
 		for k, st := range p.steps {
-			e := p.ends(&p.still, sp, j, k, st, g, false)
-			if v := [...]float64{e.vIn, e.vOut}[side]; v != was {
-				err[cell] -= 2 * (v - was) * lag(0, perG*(p.problem.own(was)+p.problem.own(v))/2*left)
+			e := p.ends(&p.stages[sp.stage].still, sp, j, k, st, g, false)
+			if v := [...]float64{e.vIn, e.vOut}[r.side]; v != was {
+				err[r.cell] -= 2 * (v - was) * lag(0, perG*(p.problem.own(was)+p.problem.own(v))/2*left) * late
 				was = v
 			}
 			left = math.Max(left-st.df*g, 0)

@@ -18,14 +18,14 @@ type mouth struct {
 
 // mouths returns both ends in solve k of a span, of length s.
 func (p *Plan) mouths(op *operator, sp *span, k int, st step, s float64, rough bool) (in, out mouth) {
-	n := len(p.grid.centres)
+	n := len(op.vol)
 	in, out = mouth{k: 1, cell: 1}, mouth{k: 1, cell: 1}
 	if op.k != nil {
 		in.k, in.cell, out.k, out.cell = op.kIn, op.k[0], op.kOut, op.k[n-1]
 	}
 	shape := p.problem.Shape
 	in.lead(&sp.inner, p.problem.Inner, s*op.cond[0], shape.area(p.grid.faces[0]), st, k, rough)
-	out.lead(&sp.outer, p.problem.Outer, s*op.cond[n], shape.area(p.grid.faces[n]), st, k, rough)
+	out.lead(&sp.outer, p.problem.Outer, s*op.out, shape.area(p.grid.faces[n]), st, k, rough)
 	return in, out
 }
 

@@ -59,9 +59,10 @@ type iteration struct {
 	rough bool
 	book  book
 
-	sp      *span   // nil where the job has none or rests
-	g       float64 // its integral
-	k       int     // the solve
+	sp      *span     // nil where the job has none or rests
+	c       []float64 // the answer in the cells that are there
+	g       float64   // its integral
+	k       int       // the solve
 	st      step
 	s       float64 // its length
 	op      *operator
@@ -81,7 +82,6 @@ func (p *Plan) runOwn(dst [2]*Field, jobs [2]Job, rough bool) {
 			continue
 		}
 		p.reset(f)
-		f.atSpan = f.atSpan[:0]
 		its[n] = iteration{plan: p, f: f, job: jobs[n], rough: rough, book: p.opened}
 		spans = max(spans, len(jobs[n].Course.spans))
 	}
@@ -98,7 +98,8 @@ func (p *Plan) runOwn(dst [2]*Field, jobs [2]Job, rough bool) {
 	}
 	for n := range its {
 		if f := its[n].f; f != nil {
-			its[n].book.close(&f.Stats, p, f.Cols[0])
+			p.grow(f, &its[n].book, its[n].job.Course.stage)
+			its[n].book.close(&f.Stats, p, f.Cols[0][:p.stages[f.stage].cells()])
 		}
 	}
 }
@@ -110,7 +111,9 @@ func (t *iteration) enter(i int) {
 		return
 	}
 	sp := &t.job.Course.spans[i]
-	t.f.atSpan = t.plan.appendEnds(t.f.atSpan, t.f.Cols[0])
+	t.plan.grow(t.f, &t.book, sp.stage)
+	t.c = t.f.Cols[0][:t.plan.stages[sp.stage].cells()]
+	t.f.atSpan = t.plan.appendEnds(t.f.atSpan, t.c)
 	if t.g = sp.integral(t.job.LnM); t.g != 0 {
 		t.sp = sp
 		t.f.newton.length = 0 // after an event there is nothing to go on from
@@ -127,7 +130,7 @@ func (t *iteration) begin(k int) {
 	t.s = t.st.length(t.g)
 	t.op = p.operator(f, t.sp, k, t.rough)
 	t.in, t.out = p.mouths(t.op, t.sp, k, t.st, t.s, t.rough)
-	lo, hi := w.guess(f.Cols[0], t.s)
+	lo, hi := w.guess(t.c, t.s)
 	w.bound(f, t.op, &t.in, &t.out, lo, hi)
 	if p.problem.source != nil {
 		w.lo, w.hi = math.Inf(-1), math.Inf(1)
@@ -171,7 +174,7 @@ func (t *iteration) assemble() {
 	if !t.busy {
 		return
 	}
-	p, c, w, own := t.plan, t.f.Cols[0], &t.f.newton, t.plan.problem.Own
+	p, c, w, own := t.plan, t.c, &t.f.newton, t.plan.problem.Own
 	u := t.f.driving(t.op, c)
 	w.confine(t.op, c, u)
 	p.own.look(w.factor, c)
@@ -198,7 +201,7 @@ func (t *iteration) advance() {
 	}
 	w := &t.f.newton
 	t.solves++
-	moved := w.move(t.op, t.f.Cols[0])
+	moved := w.move(t.op, t.c)
 	t.busy = t.solves < mostNewton && !w.settled(moved, t.left, t.st.euler)
 	t.anew = moved > slowNewton*t.left
 	t.left = moved
@@ -209,7 +212,7 @@ func (t *iteration) end() {
 	if t.sp == nil {
 		return
 	}
-	c, w := t.f.Cols[0], &t.f.newton
+	c, w := t.c, &t.f.newton
 	n := len(c)
 	t.in.enter(&t.book, w.inflow-float64(w.against[0]*w.rhs[0]), w.against[0], t.st.euler)
 	t.out.enter(&t.book, -w.outflow-float64(w.onward[n]*w.rhs[n-1]), w.onward[n], t.st.euler)
@@ -373,7 +376,8 @@ func (p *Plan) addSource(rhs []float64, sp *span, k int, st step, rough bool) {
 	if !st.euler {
 		dt /= 2
 	}
-	for i, r := range p.grid.centres {
+	for i := range rhs {
+		r := p.grid.centres[i]
 		rhs[i] += float64(p.grid.volumes[i] * dt * p.problem.source(r, t))
 	}
 }

@@ -26,9 +26,11 @@ const defaultFinest = 1.0 / 50
 type Plan struct {
 	problem *Problem
 	grid    *grid
-	still   operator    // without coupling, the same in every solve; with it, what a resting lane has
+	stages  []stage     // at least one
+	outside []int       // of each zone, the number of cells up to its outer boundary
 	host    *hostGrid   // nil without coupling
-	starts  [][]float64 // cell means: the answer, then one column per free value
+	starts  [][]float64 // cell means as they would be without diffusion: the answer, then one column per free value
+	fresh   [][]float64 // the same, of each cell when it is added
 	opened  book        // of the answer, before any step
 	own     *ownTable   // nil where D does not follow the element
 	steps   schedule    // between two events
@@ -63,28 +65,23 @@ func Compile(p *Problem, o Options) (*Plan, error) {
 }
 
 func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
-	g := newGrid(p.Shape, faces)
-	plan := &Plan{problem: p, grid: g, still: operator{vol: g.volumes, cond: p.conductances(g)}, steps: steps, rough: steps.merged(), events: p.events()}
-	for i, k := range plan.still.cond {
-		centre := i == 0 && p.R0 == 0 && p.Shape != Slab
-		if !(k > 0 || centre) || math.IsInf(k, 0) {
-			return nil, fmt.Errorf("diffusion: D is not a positive number near %g m", faces[i])
-		}
+	plan := &Plan{problem: p, grid: newGrid(p.Shape, faces), steps: steps, rough: steps.merged(), events: p.events()}
+	if err := plan.layStages(); err != nil {
+		return nil, err
 	}
 	if p.LnK != nil {
-		plan.host = p.layHost(g)
-		ones := slices.Repeat([]float64{1}, len(g.centres))
-		plan.still.k, plan.still.inverse, plan.still.kIn, plan.still.kOut = ones, ones, 1, 1
+		plan.host = p.layHost(plan.grid)
 	}
-	plan.starts = append(plan.starts, p.startMeans(g))
+	values := make([]float64, len(p.Zones))
+	for i, z := range p.Zones {
+		values[i] = z.Start
+	}
+	if err := plan.addColumn(values, p.Profile); err != nil {
+		return nil, err
+	}
 	for _, b := range p.Free {
-		column := make([]float64, len(g.centres))
-		p.cellMeans(column, g, b.Start)
-		plan.starts = append(plan.starts, column)
-	}
-	for j, column := range plan.starts {
-		if i := slices.IndexFunc(column, func(v float64) bool { return !finite(v) }); i >= 0 {
-			return nil, fmt.Errorf("diffusion: column %d starts at %g near %g m", j, column[i], g.centres[i])
+		if err := plan.addColumn(b.Start, nil); err != nil {
+			return nil, err
 		}
 	}
 	plan.opened = plan.openBook()
@@ -92,19 +89,6 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 		plan.own = p.layOwn(plan.starts[0])
 	}
 	return plan, nil
-}
-
-func (p *Problem) startMeans(g *grid) []float64 {
-	values := make([]float64, len(p.Zones))
-	for i, z := range p.Zones {
-		values[i] = z.Start
-	}
-	column := make([]float64, len(g.centres))
-	p.cellMeans(column, g, values)
-	if p.Profile != nil {
-		addProfile(column, p.Shape, g, p.Profile)
-	}
-	return column
 }
 
 func (o Options) faces(p *Problem) ([]float64, error) {
@@ -193,10 +177,13 @@ func (p *Problem) moving() bool {
 // waves between cells that it crosses while the steps are long.
 func (p *Problem) endsFinely() bool { return p.Own != nil || p.moving() }
 
-// events returns the times after 0 at which a rim changes its kind or jumps,
-// whatever the history.
+// events returns the times after 0 at which a zone is added or a rim changes its
+// kind or jumps, whatever the history.
 func (p *Problem) events() []float64 {
 	var at []float64
+	for _, z := range p.Zones {
+		at = append(at, z.Added)
+	}
 	for _, rims := range [][]Rim{p.Inner, p.Outer} {
 		for i, r := range rims {
 			at = append(at, r.From)
@@ -234,8 +221,8 @@ func (p *Plan) Centres() []float64 { return p.grid.centres }
 // Volumes returns the integral of r^n dr over each cell. Not to be changed.
 func (p *Plan) Volumes() []float64 { return p.grid.volumes }
 
-// Start returns the cell means before diffusion of column j: 0 the profile,
-// then the free values. Not to be changed.
+// Start returns the cell means of column j as they would be without diffusion: 0 the
+// profile, then the free values. Not to be changed.
 func (p *Plan) Start(j int) []float64 { return p.starts[j] }
 
 // GEnough reports whether the final profile depends on the history through the
@@ -244,6 +231,9 @@ func (p *Plan) Start(j int) []float64 { return p.starts[j] }
 func (p *Plan) GEnough() (why string, ok bool) {
 	if p.host != nil {
 		return "in a zoned host the element's equilibrium moves with temperature", false
+	}
+	if len(p.stages) > 1 {
+		return "zones are added along the path, and each boundary knows the diffusion integral since its own addition", false
 	}
 	if len(p.events) > 0 {
 		return "a rim changes along the path", false

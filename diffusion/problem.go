@@ -31,6 +31,7 @@ type Zone struct {
 	Edge  float64 // width w of the edge at its outer boundary, m: an error function of standard deviation w/4; 0 is a jump
 	Times float64 // factor on D in this zone; 0 is read as 1
 	Host  float64 // composition of the host in this zone, in the unit that LnK asks for
+	Added float64 // s from the start of the path: when it was added, with its edge to the zone inside; 0 or less is before
 	// Form makes of a plateau a profile that is proportional to it: Start, and what a
 	// free value adds to it, times Form(r). It must be smooth, also a little way into
 	// the neighbours where there is an edge. nil is 1.
@@ -140,6 +141,9 @@ func (p *Problem) checkZones() error {
 		}
 		if !finite(z.Start) || !(z.Edge >= 0) || !(z.Times >= 0) || !finite(z.Edge+z.Times) {
 			return fmt.Errorf("diffusion: zone %d has start %g, edge %g m, factor %g", i, z.Start, z.Edge, z.Times)
+		}
+		if before := p.Zones[max(i-1, 0)].Added; !finite(z.Added) || i == 0 && z.Added > 0 || z.Added < before {
+			return fmt.Errorf("diffusion: zone %d is added at %g s, before what it lies on", i, z.Added)
 		}
 		inside = z.Outer
 	}

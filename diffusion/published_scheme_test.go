@@ -18,7 +18,7 @@ type mode struct {
 // byHand returns a plan of n equal cells of volume 1 with conductances of 1,
 // also at both ends: there a rim is a node like the others, held at a value.
 func byHand(n int) *Plan {
-	return &Plan{problem: &Problem{}, still: operator{vol: ones(n), cond: ones(n + 1)}}
+	return &Plan{problem: &Problem{}, stages: []stage{{still: operator{vol: ones(n), cond: ones(n + 1), out: 1}}}}
 }
 
 // sweep does steps of r in column c with nodes held at 0 beyond both ends.
@@ -30,7 +30,7 @@ func sweep(p *Plan, c []float64, r float64, steps int, euler bool) {
 		s = r / 2
 	}
 	for range steps {
-		l.eliminate(&p.still, s, ends{kIn: s, kOut: s}, c)
+		l.eliminate(&p.stages[0].still, s, ends{kIn: s, kOut: s}, c)
 		l.substitute(c, euler)
 	}
 }

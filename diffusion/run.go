@@ -27,6 +27,7 @@ type Field struct {
 	StepErr, CellErr [][]float64
 	Stats            Stats
 
+	stage  int // that the run has come to
 	lane   lane
 	op     operator  // of the solve in hand, of a coupled problem
 	u      []float64 // C/K
@@ -34,15 +35,17 @@ type Field struct {
 	lane4  lane4
 	cols4  [][]four
 	u4     []four
-	atSpan []float64 // of each span and column, the values at both ends when it begins
-	other  *Field    // the coarser runs of Audit
+	atSpan []float64    // of each span and column, the values at both ends when it begins
+	atEdge [][2]float64 // of each boundary and column, those on both sides when it begins
+	other  *Field       // the coarser runs of Audit
 }
 
 // Run solves the plan's problem for all jobs and writes the outcome of jobs[k]
 // to dst[k]; the slices must have equal lengths. Up to four jobs go side by
-// side, two where D depends on the element itself, and dst[k] depends on jobs[k]
-// alone, to the bit. Run does not allocate
-// once dst has been used before; one dst belongs to one goroutine at a time.
+// side, two where D depends on the element itself, those of one course where zones
+// are added; and dst[k] depends on jobs[k] alone, to the bit. Run does not allocate
+// once dst has been used before; one dst belongs to one goroutine at a time. Cells
+// that are never there hold what they would be added with.
 // Courses made by another plan are refused.
 func (p *Plan) Run(dst []Field, jobs []Job) error {
 	if len(dst) != len(jobs) {
@@ -51,17 +54,17 @@ func (p *Plan) Run(dst []Field, jobs []Job) error {
 	if err := p.checkJobs(jobs); err != nil {
 		return err
 	}
-	if p.problem.Own != nil {
-		for ; len(jobs) > 1; dst, jobs = dst[2:], jobs[2:] {
+	for len(jobs) > 0 {
+		n := p.abreast(jobs)
+		switch {
+		case n == 1:
+			p.runOne(&dst[0], jobs[0], false)
+		case p.problem.Own != nil:
 			p.runOwn([2]*Field{&dst[0], &dst[1]}, [2]Job{jobs[0], jobs[1]}, false)
+		default:
+			p.runFour(dst[:n], jobs[:n])
 		}
-	}
-	for ; len(jobs) > 1; dst, jobs = dst[min(lanes, len(dst)):], jobs[min(lanes, len(jobs)):] {
-		n := min(lanes, len(jobs))
-		p.runFour(dst[:n], jobs[:n])
-	}
-	if len(jobs) == 1 {
-		p.runOne(&dst[0], jobs[0], false)
+		dst, jobs = dst[n:], jobs[n:]
 	}
 	return nil
 }
@@ -147,11 +150,13 @@ const shownOrder = 1.5
 
 // reset puts the start into the field's columns.
 func (p *Plan) reset(f *Field) {
-	f.Cols = resizedCols(f.Cols, len(p.starts), len(p.grid.centres))
-	for j, start := range p.starts {
+	f.Cols = resizedCols(f.Cols, len(p.fresh), len(p.grid.centres))
+	for j, start := range p.fresh {
 		copy(f.Cols[j], start)
 	}
 	f.Stats = Stats{}
+	f.stage, f.atSpan, f.atEdge = 0, f.atSpan[:0], f.atEdge[:0]
+	p.noteEdges(f)
 }
 
 // runOne takes the start through all spans of the job's course.
@@ -162,13 +167,14 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 	}
 	p.reset(f)
 	f.lane.resize(len(p.grid.centres))
-	f.atSpan = f.atSpan[:0]
 	book := p.opened
 	for i := range job.Course.spans {
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)
+		p.grow(f, &book, sp.stage)
+		n := p.stages[sp.stage].cells()
 		for _, c := range f.Cols {
-			f.atSpan = p.appendEnds(f.atSpan, c)
+			f.atSpan = p.appendEnds(f.atSpan, c[:n])
 		}
 		if g == 0 {
 			continue
@@ -176,40 +182,41 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 		for k, st := range p.solves(rough) {
 			f.Stats.Steps++
 			op := p.operator(f, sp, k, rough)
-			for j := range f.Cols {
+			for j, c := range f.Cols {
+				c = c[:n]
 				e := p.ends(op, sp, j, k, st, g, rough)
-				first, last := f.solve(op, st.length(g), e, j, st.euler)
-				if c := f.Cols[j]; j == 0 {
-					book.enter(op, e, st.euler, first, last, c[0], c[len(c)-1])
+				first, last := f.solve(op, st.length(g), e, c, j > 0, st.euler)
+				if j == 0 {
+					book.enter(op, e, st.euler, first, last, c[0], c[n-1])
 				}
 			}
 		}
 	}
-	book.close(&f.Stats, p, f.Cols[0])
+	p.grow(f, &book, job.Course.stage)
+	book.close(&f.Stats, p, f.Cols[0][:p.stages[f.stage].cells()])
 }
 
 // operator returns what solve k of a span needs of the grid: the plan's own, or
 // one made for it in the field.
 func (p *Plan) operator(f *Field, sp *span, k int, rough bool) *operator {
 	if p.host != nil {
-		return f.couple(p, 1/sp.coldness.of(rough)[k])
+		return f.couple(p, sp.stage, 1/sp.coldness.of(rough)[k])
 	}
-	return &p.still
+	return &p.stages[sp.stage].still
 }
 
-// solve advances column j by one solve and returns its first and last value
-// before.
-func (f *Field) solve(op *operator, s float64, e ends, j int, euler bool) (first, last float64) {
-	c := f.Cols[j]
+// solve advances a column by one solve, a further one or the first, and returns its
+// first and last value before.
+func (f *Field) solve(op *operator, s float64, e ends, c []float64, further, euler bool) (first, last float64) {
 	first, last = c[0], c[len(c)-1]
 	u := c
 	if op.k != nil {
 		u = f.potential(op, c)
 	}
-	if j == 0 {
-		f.lane.eliminate(op, s, e, u)
-	} else {
+	if further {
 		f.lane.forward(e, u)
+	} else {
+		f.lane.eliminate(op, s, e, u)
 	}
 	if op.k == nil {
 		f.lane.substitute(c, euler)
@@ -240,7 +247,7 @@ func (s step) length(g float64) float64 {
 func (p *Plan) ends(op *operator, sp *span, j, k int, st step, g float64, rough bool) ends {
 	var e ends
 	s := st.length(g)
-	shape, inside, outside := p.problem.Shape, p.grid.faces[0], p.grid.faces[len(p.grid.faces)-1]
+	shape, inside, outside := p.problem.Shape, p.grid.faces[0], p.grid.faces[len(op.vol)]
 	kIn, kOut := 1.0, 1.0
 	if op.k != nil {
 		kIn, kOut = op.kIn, op.kOut
@@ -253,7 +260,7 @@ func (p *Plan) ends(op *operator, sp *span, j, k int, st step, g float64, rough 
 		e.vIn /= kIn
 	}
 	if sp.outer.open {
-		e.kOut, e.vOut = sp.outer.through(op.cond[len(op.cond)-1], s, shape.area(outside)*kOut, st, k, rough)
+		e.kOut, e.vOut = sp.outer.through(op.out, s, shape.area(outside)*kOut, st, k, rough)
 		if e.vOut += sp.outer.behind(p.problem.Outer, k, rough); j > 0 {
 			e.vOut = at(p.problem.Free[j-1].Outer, sp.outer.rim)
 		}

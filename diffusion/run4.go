@@ -7,6 +7,7 @@ type crew struct {
 	dst   []Field // one to four
 	jobs  []Job
 	books [lanes]book
+	stage int
 	g     four             // each lane's integral over the span, 0 where it rests
 	ops   [lanes]*operator // in the solve in hand
 }
@@ -18,11 +19,11 @@ func (p *Plan) runFour(dst []Field, jobs []Job) {
 	f := &dst[0]
 	f.lane4.resize(cells)
 	f.u4 = resized4(f.u4, cells)
-	for len(f.cols4) < len(p.starts) {
+	for len(f.cols4) < len(p.fresh) {
 		f.cols4 = append(f.cols4, nil)
 	}
-	f.cols4 = f.cols4[:len(p.starts)]
-	for j, start := range p.starts {
+	f.cols4 = f.cols4[:len(p.fresh)]
+	for j, start := range p.fresh {
 		f.cols4[j] = resized4(f.cols4[j], cells)
 		for i, v := range start {
 			f.cols4[j][i] = four{v, v, v, v}
@@ -37,9 +38,29 @@ func (p *Plan) runFour(dst []Field, jobs []Job) {
 	for i := range spans {
 		cr.span(i)
 	}
+	cr.grow(jobs[0].Course.stage)
 	for k := range dst {
 		cr.fetch(k)
-		cr.books[k].close(&dst[k].Stats, p, dst[k].Cols[0])
+		cr.books[k].close(&dst[k].Stats, p, dst[k].Cols[0][:p.stages[cr.stage].cells()])
+	}
+}
+
+// grow takes the crew to a stage, which is the same for all: see abreast.
+func (cr *crew) grow(to int) {
+	p := cr.plan
+	for cr.stage < to {
+		cr.stage++
+		for j, c := range cr.dst[0].cols4 {
+			for i, v := range p.stages[cr.stage].tails[j] {
+				for k := range c[i] {
+					c[i][k] += v
+				}
+			}
+		}
+		c := cr.dst[0].cols4[0]
+		for k := range cr.dst {
+			cr.books[k].grow(p, cr.stage, func(i int) float64 { return c[i][k] })
+		}
 	}
 }
 
@@ -54,6 +75,9 @@ func (cr *crew) span(i int) {
 		if cr.g[k] != 0 {
 			cr.dst[k].Stats.Steps += len(cr.plan.steps)
 		}
+	}
+	if i < len(cr.jobs[0].Course.spans) {
+		cr.grow(cr.jobs[0].Course.spans[i].stage)
 	}
 	if cr.g == (four{}) {
 		return
@@ -72,11 +96,13 @@ func (cr *crew) step(i, n int) {
 		s[k] = st.length(cr.g[k])
 	}
 	one := cr.operators(i, n)
-	last := len(p.grid.centres) - 1
+	cells := p.stages[cr.stage].cells()
+	last := cells - 1
 	for j, c := range f.cols4 {
+		c = c[:cells]
 		u := c
 		if p.host != nil {
-			u = f.u4
+			u = f.u4[:cells]
 			potential4(u, &cr.ops, c)
 		}
 		e := cr.ends(i, j, n)
@@ -104,7 +130,8 @@ func (cr *crew) step(i, n int) {
 // the plan's own: another's K may be nothing where it is large.
 func (cr *crew) operators(i, n int) (one bool) {
 	if cr.plan.host == nil {
-		cr.ops = [lanes]*operator{&cr.plan.still, &cr.plan.still, &cr.plan.still, &cr.plan.still}
+		still := &cr.plan.stages[cr.stage].still
+		cr.ops = [lanes]*operator{still, still, still, still}
 		return true
 	}
 	one = true
@@ -120,14 +147,14 @@ func (cr *crew) operator(i, n, k int) *operator {
 		return cr.ops[0]
 	}
 	if cr.g[k] == 0 {
-		return &cr.plan.still
+		return &cr.plan.stages[cr.stage].still
 	}
 	for b := range k {
 		if cr.jobs[b].Course == cr.jobs[k].Course && cr.g[b] != 0 {
 			return cr.ops[b]
 		}
 	}
-	return cr.dst[k].couple(cr.plan, 1/cr.jobs[k].Course.spans[i].coldness.fine[n])
+	return cr.dst[k].couple(cr.plan, cr.stage, 1/cr.jobs[k].Course.spans[i].coldness.fine[n])
 }
 
 func (cr *crew) ends(i, j, n int) ends4 {

@@ -20,7 +20,8 @@ const reach = 9
 //
 //	C(r) = C_0 + sum over boundaries of (C_{i+1} - C_i) Phi((r - r_i)/s_i),
 //
-// and of what their forms add to them. values holds one plateau a zone.
+// and of what their forms add to them. values holds one plateau a zone that is there,
+// and there may be fewer cells than those of the grid.
 func (p *Problem) cellMeans(dst []float64, g *grid, values []float64) {
 	for j := range dst {
 		dst[j] = values[0]
@@ -49,9 +50,9 @@ func (p *Problem) cellMeans(dst []float64, g *grid, values []float64) {
 // that lies outside boundary i, zone i has the part Phi_{i-1} - Phi_i of C(r).
 func (p *Problem) formed(r float64, values []float64) float64 {
 	sum, outside := 0.0, 1.0
-	for i, z := range p.Zones {
+	for i, z := range p.Zones[:len(values)] {
 		beyond := 0.0
-		if i < len(p.Zones)-1 {
+		if i < len(values)-1 {
 			beyond = outsideOf(r-z.Outer, z.Edge/edgesPerWidth)
 		}
 		if z.Form != nil && outside != beyond && values[i] != 0 {
