@@ -86,6 +86,7 @@ func TestExistenceCutsRims(t *testing.T) {
 		{"a file over the moment", []study.Rim{series("", 0, 800)}, []study.Rim{{Kind: diffusion.Prescribed, Zone: -1, Given: &study.Series{
 			Time: []float64{0, 100 * year, 100 * year, 500 * year}, Value: []float64{75, 70, 100, 60}}}}},
 		{"a file after it", []study.Rim{held(20, ""), series("400 yr after start", 400, 800)}, []study.Rim{held(20, ""), series("100 yr after start", 100, 500)}},
+		{"a file that begins with the crystal", []study.Rim{series("", 300, 800)}, []study.Rim{series("", 0, 500)}},
 		{"a table against temperature", []study.Rim{table}, []study.Rim{table}},
 	} {
 		t.Run(test.name, func(t *testing.T) {

@@ -99,8 +99,8 @@ func writeChance(w io.Writer, r *paths.Result) {
 		if c.Judged == 0 {
 			continue
 		}
-		fmt.Fprintf(w, "Of %d crystals %s fail by chance along a path that is true, at %s confidence, and no more than %d in 95 of 100 studies.\n",
-			c.Judged, number(c.Expected), percent(r.Study.Confidence), c.Most)
+		fmt.Fprintf(w, "Along a path that is true, %s of %d crystals fails by chance on average, at %s confidence, and no more than %d in 95 of 100 studies.\n",
+			number(c.Expected), c.Judged, percent(r.Study.Confidence), c.Most)
 		break
 	}
 	for i := range r.Paths {
@@ -148,7 +148,7 @@ func writeGroups(w io.Writer, r *paths.Result) {
 			found++
 		}
 		if len(g.Paths) == 1 {
-			fmt.Fprintf(w, "%s ends like no other path: for all crystals, it is %s%s.\n", quoted(g.Paths[0].Name), g.Outcome.Verdict, fitText(&g.Outcome))
+			fmt.Fprintf(w, "%s ends like no other path. For all crystals, it %s%s.\n", quoted(g.Paths[0].Name), doesWhat(&g.Outcome), fitText(&g.Outcome))
 			continue
 		}
 		fmt.Fprintf(w, "%s are the same from %s on.", list(quotedAll(g.Paths)), quoted(r.Study.Sharing.From.Text))
@@ -178,14 +178,18 @@ func writeChoices(w io.Writer, r *paths.Result, g *paths.Group) {
 			also = append(also, fmt.Sprintf("%s for %s", list(quotedAll(c.Also)), name))
 		}
 	}
-	verdict := "reproduces what was measured"
-	if g.Outcome.Verdict != paths.Reproduces {
-		verdict = "is " + g.Outcome.Verdict.String()
-	}
-	fmt.Fprintf(w, " The best of %s combinations, %s, %s%s.\n", number(g.Combinations()), list(best), verdict, fitText(&g.Outcome))
+	fmt.Fprintf(w, " The best of %s combinations, %s, %s%s.\n", number(g.Combinations()), list(best), doesWhat(&g.Outcome), fitText(&g.Outcome))
 	if len(also) > 0 {
 		fmt.Fprintf(w, "Instead of these it may be, one at a time, %s.\n", list(also))
 	}
+}
+
+// doesWhat is a verdict as what a path does or is.
+func doesWhat(o *paths.Outcome) string {
+	if o.Verdict == paths.Reproduces {
+		return "reproduces what was measured"
+	}
+	return "is " + o.Verdict.String()
 }
 
 // fitText is chi-square and tail in brackets, where there are any.
