@@ -80,6 +80,9 @@ func refuseNotation(text, rest string) *InputError {
 		return &InputError{Problem: "has a written-out power of ten",
 			Remedy: "write " + power[1] + "e" + plainExponent.Replace(power[2])}
 	}
+	if strings.Contains(text, "..") {
+		return &InputError{Problem: "is a range", Remedy: "want one value; its error, where one may stand, is written with +-"}
+	}
 	if strings.HasPrefix(rest, ".") {
 		return &InputError{Problem: "has two decimal points", Remedy: "want one number and a unit"}
 	}

@@ -60,14 +60,14 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 		for _, above := range p.Above {
 			row = append(row, thermal.DurationText(above))
 		}
-		marks := ""
+		var beside []string
 		if p.Outcome.Verdict != paths.Barred { // its reasons stand in the sentences
-			marks = notes.marks(p.Notes)
+			beside = p.Notes
 		}
 		for j := range p.Profiles {
-			marks += notes.marks(p.Profiles[j].Notes)
+			beside = slices.Concat(beside, p.Profiles[j].Notes)
 		}
-		table.row(append(row, marks)...)
+		table.row(append(row, notes.marks(beside))...)
 	}
 	table.writeTo(w)
 	return notes
@@ -105,10 +105,13 @@ func leaningText(l *paths.LawsAllowed, laws int) string {
 // numbered is a list of notes without repeats.
 type numbered []string
 
-// marks returns the numbers of the notes, which join the list as needed.
+// marks returns the numbers of the notes, each once, which join the list as needed.
 func (n *numbered) marks(notes []string) string {
 	var marks strings.Builder
-	for _, note := range notes {
+	for i, note := range notes {
+		if slices.Contains(notes[:i], note) {
+			continue
+		}
 		i := 0
 		for i < len(*n) && (*n)[i] != note {
 			i++

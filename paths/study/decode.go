@@ -28,8 +28,11 @@ type decoder struct {
 	laws       map[string]Law       // the study's own, by name
 	partitions map[string]Partition // the same
 	notes      []string
-	meant      map[string]bool // dotted keys, with the place of their table, that a mistyped key stands for
-	legs       int             // of all paths so far
+	measured   map[string]string // element and crystal that a traverse is of, by its file and columns
+	hostIs     string            // what the host of the crystal is known to be, catalogue.XAn or XFe; "" is not known
+	hostLine   int               // where it says so
+	meant      map[string]bool   // dotted keys, with the place of their table, that a mistyped key stands for
+	legs       int               // of all paths so far
 	found      []*thermal.InputError
 	faults     int // all found, kept or not
 }
@@ -227,7 +230,7 @@ var (
 	heat        = bound{thermal.Diffusivity, false, 1, "1 m2/s", "1e-6 m2/s"}
 	frequency   = bound{thermal.Diffusivity, false, 1e12, "1e12 m2/s", "7e-8 m2/s"}
 	exchange    = bound{thermal.Velocity, false, 1e12, "1e12 m/s", "1e-3 m/s"}
-	energy      = bound{thermal.MolarEnergy, true, 1e7, "10000 kJ/mol", "273 kJ/mol"}
+	energy      = bound{thermal.MolarEnergy, true, 2e6, "2000 kJ/mol", "273 kJ/mol"}
 )
 
 // quantity returns a quantity with its unit within bounds, in SI; 0 if it is

@@ -5,6 +5,7 @@ import (
 	"maps"
 	"math"
 	"slices"
+	"strconv"
 	"strings"
 
 	"bankfire/diffusion/catalogue"
@@ -59,6 +60,9 @@ func (d *decoder) activity(n *node) float64 {
 		d.report(n, fmt.Sprintf("not above 0 and up to %d", maxActivity), remedy)
 		return 1
 	}
+	if n.number > saturated {
+		d.noteOnce("%s = %s is above saturation, which is 1: is it meant?", n.field, n.text)
+	}
 	return n.number
 }
 
@@ -68,16 +72,23 @@ func (d *decoder) fugacity(n *node, c *Conditions) {
 	c.Given[catalogue.FO2] = 1
 	const remedy = `write a buffer with an offset, such as "NNO+0.3", or a pressure, such as "1e-7 Pa"`
 	if n.kind == numberNode {
-		d.report(n, "a number without a unit", remedy)
+		d.report(n, "a number without a unit", remedy+of10(n.text))
 		return
 	}
 	text, ok := d.text(n, remedy)
 	if !ok {
 		return
 	}
+	if number := strings.TrimSpace(text); plainNumber(number) {
+		d.report(n, "a number without a unit", remedy+of10(number))
+		return
+	}
 	if looksLikeValue(strings.TrimSpace(text)) {
 		if x, ok := d.quantity(n, fugacity); ok {
 			c.Given[catalogue.FO2] = x
+			if x > oxygenOfAir {
+				d.noteOnce("fO2 = %q is more than that of air, 0.21 bar: is the unit right?", text)
+			}
 			d.noteOnce("fO2 is held at %s at every temperature; in nature a buffer follows the temperature, as fO2 = \"NNO\" does", text)
 		}
 		return
@@ -95,6 +106,21 @@ func (d *decoder) fugacity(n *node, c *Conditions) {
 		c.Buffer, c.Offset = buffer, offset
 		delete(c.Given, catalogue.FO2)
 	}
+}
+
+// of10 adds to a remedy how the log10 of an oxygen fugacity, which a number below zero
+// must be, is written.
+func of10(number string) string {
+	x, err := strconv.ParseFloat(number, 64)
+	if err != nil || !(x < 0 && x > -100) {
+		return ""
+	}
+	return fmt.Sprintf(`; if it is log10 of fO2 in bar, "%.2g bar"`, math.Pow(10, x))
+}
+
+func plainNumber(text string) bool {
+	_, err := strconv.ParseFloat(text, 64)
+	return err == nil
 }
 
 func (d *decoder) reportBuffer(n *node, name string) {

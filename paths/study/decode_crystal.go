@@ -45,6 +45,7 @@ func (d *decoder) crystals(root *node) []Crystal {
 func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	d.keys(n, crystalTable)
 	c := Crystal{Place: d.place(n)}
+	d.hostIs = ""
 	if v := d.need(n, "name", `write a name, such as name = "HF-12"`); v != nil {
 		var ok bool
 		if c.Name, ok = d.name(v, `write a name, such as "HF-12"`); ok {

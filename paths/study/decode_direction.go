@@ -49,7 +49,9 @@ func (d *decoder) along(n *node, axis string, c *Crystal, e *Element) Law {
 	if v == nil || !switches(v) && !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
 		return Law{}
 	}
-	return d.law(v, c, e)
+	law := d.law(v, c, e)
+	d.otherAxis(axis, &law, e)
+	return law
 }
 
 // byRatio reads the law along one axis and the ratio of D there to that along the
@@ -68,6 +70,9 @@ func (d *decoder) byRatio(n, v *node, shares [3]float64, c *Crystal, e *Element)
 	}
 	switch {
 	case !ok:
+		return nil
+	case len(with) == 0:
+		d.report(v, "a ratio, and no law along any axis", example)
 		return nil
 	case len(with) != 1:
 		d.report(v, fmt.Sprintf("laws along %d axes, and a ratio", len(with)), example)

@@ -41,6 +41,10 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 // assumed notes what was taken because the study does not say.
 func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	d.otherMineral(c, e)
+	d.otherElement(e)
+	d.takenAlong(n.get("law"), e)
+	d.rimRelations(e)
+	d.otherHost(n, c, e)
 	d.noteXFe(e)
 	if n.get("start").get("edge") == nil && len(c.Zones) > 1 {
 		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)

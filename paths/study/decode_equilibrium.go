@@ -118,6 +118,10 @@ func (d *decoder) saturated(n, key *node, temps []thermal.Uncertain, s *Start, c
 		return nil
 	}
 	row, err := catalogue.FindSolubility(name)
+	if _, partition := catalogue.FindPartition(name); partition == nil {
+		d.report(key, "a partition relation, not a solubility relation", fmt.Sprintf(`write partition = %q beside start, and melt = ["90 ppm", ...] in place of solubility`, name))
+		return nil
+	}
 	if err != nil {
 		d.reportError(key, err)
 		return nil

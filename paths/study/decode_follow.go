@@ -67,7 +67,11 @@ func (d *decoder) followed(n *node, key string) (Partition, bool) {
 // melt reads what a melt has: a value, or a table against temperature.
 func (d *decoder) melt(n, melt *node, f *Following, u *units) {
 	const example = `write it like melt = "90 ppm"; a file needs its columns too: melt = "sr-melt.csv", temperature = "T [C]", value = "Sr [ppm]"`
+	_, _, notAValue := thermal.ParseConcentration(melt.text)
 	switch columns := n.get("temperature") != nil || n.get("value") != nil; {
+	case columns && melt.kind == textNode && notAValue == nil:
+		d.report(melt, "a value, and columns of a file beside it", "leave temperature and value out, or name the file")
+		return
 	case columns:
 		f.Table = d.byTemperature(n, melt, u)
 		return

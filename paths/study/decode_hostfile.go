@@ -5,6 +5,7 @@ import (
 	"math"
 	"slices"
 
+	"bankfire/diffusion/catalogue"
 	"bankfire/paths/traverse"
 )
 
@@ -97,7 +98,11 @@ func (d *decoder) hostPoints(n, file *node, o traverse.Options, c *Crystal) (t *
 		d.report(n.get("value"), fmt.Sprintf("in %s, but a host is a mole fraction", t.Unit), "want mole fraction, mol%, An or Fo")
 		return nil, false
 	}
+	if component := named(o.Value, t.Unit); component == "An" {
+		d.hostIs, d.hostLine = catalogue.XAn, n.get("value").line
+	}
 	if of.offset != 0 {
+		d.hostIs, d.hostLine = catalogue.XFe, n.get("value").line
 		d.note("%s: Fo of the host is read as XFe, 1 less Fo as a mole fraction", c.Name)
 	}
 	for i, r := range t.Position {

@@ -49,6 +49,7 @@ func (d *decoder) statedHostLaw(n *node, c *Crystal) {
 		d.report(n, "its own is the composition of the host, of which this law has no unit", "write host = { ln_slope = ... } in place of own in the law")
 	}
 	if d.faults == before {
+		d.otherMineral(c, &Element{Name: "the host of " + c.Name, Law: law})
 		c.HostLaw = &law
 	}
 }

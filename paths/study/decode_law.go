@@ -65,6 +65,7 @@ func (d *decoder) ownLaw(n *node, kind tableKind) Law {
 	if v := n.get("sigma"); v != nil {
 		law.Sigma, _ = d.number(v, "write the standard deviation of log10 D at mid-range as a number, such as sigma = 0.2")
 	}
+	d.oddLaw(n, e, &law)
 	if v := n.get("range"); v != nil {
 		law.TMin, law.TMax = d.calibrated(v)
 	}

@@ -118,6 +118,10 @@ func (d *decoder) unknownPartition(n *node, key string, err error) {
 		d.report(n, "neither in the catalogue nor a [[partition]] of this study", fmt.Sprintf("did you mean %q?", near))
 		return
 	}
+	if _, saturates := catalogue.FindSolubility(key); saturates == nil {
+		d.report(n, "a solubility relation, not a partition relation", fmt.Sprintf("write it under start, solubility = %q, or as a rim, { following = %q }; leave partition out", key, key))
+		return
+	}
 	d.reportError(n, err)
 }
 

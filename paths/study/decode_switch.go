@@ -43,6 +43,7 @@ func (d *decoder) switched(n *node, c *Crystal, e *Element) Law {
 		return Law{}
 	}
 	d.noteSwitch(at, laws, e)
+	d.upsideDown(at, laws, e)
 	return d.regimes(at, laws)
 }
 

@@ -42,6 +42,7 @@ func (d *decoder) traverse(n *node, c *Crystal, e *Element, u *units) {
 	d.notes = append(d.notes, t.Notes...)
 	d.reach(file, t, c, e)
 	e.Traverse = t
+	d.twiceMeasured(n, c, e)
 	if !t.Grey && d.faults == before { // else the unit may be the fault
 		u.unit, u.from = t.Unit, n.get("value")
 	}

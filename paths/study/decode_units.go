@@ -3,6 +3,7 @@ package study
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"bankfire/paths/traverse"
@@ -210,5 +211,14 @@ func (d *decoder) grey(n *node, e *Element, u *units) {
 	case len(u.known) < 2:
 		d.report(n, "measured in grey levels, and one stated value does not tell their scale and offset",
 			"state a second plateau or rim value that differs, or leave all free")
+	case e.uncertain():
+		d.report(n, "relative values have no unit, so a plateau or rim value known with an error cannot be tied to them",
+			`make that value "free", or give it without an error`)
 	}
+}
+
+// uncertain reports whether a plateau or a rim value is known with an error.
+func (e *Element) uncertain() bool {
+	return slices.ContainsFunc(e.Start.Zones, func(p Plateau) bool { return p.Sigma > 0 }) ||
+		slices.ContainsFunc(slices.Concat(e.Inner, e.Rims), func(r Rim) bool { return r.valued() && r.Value.Sigma > 0 })
 }

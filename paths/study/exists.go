@@ -87,6 +87,9 @@ func (d *decoder) exists(paths []Path, c *Crystal) {
 		if err != nil {
 			continue
 		}
+		if t, _ := c.Begins(paths[i].History); t > paths[i].Eruption {
+			d.note("%s exists only after the eruption of path %q: is exists_from the right moment?", c.Name, paths[i].Name)
+		}
 		for _, why := range c.dissolved(seen) {
 			paths[i].bar(c, why)
 		}

@@ -114,8 +114,15 @@ func (b *ByTemperature) covers(lo, hi float64) error {
 	if !(lo < first-slack || hi > last+slack) {
 		return nil
 	}
-	return b.Place.Error("", fmt.Sprintf("holds temperatures from %s to %s only, but the path needs %s to %s",
-		thermal.TemperatureText(first), thermal.TemperatureText(last), thermal.TemperatureText(lo), thermal.TemperatureText(hi)), "add rows at both ends")
+	needs, rows := thermal.TemperatureText(lo), "add rows down to it"
+	switch {
+	case lo != hi:
+		needs, rows = needs+" to "+thermal.TemperatureText(hi), "add rows at both ends"
+	case hi > last:
+		rows = "add rows up to it"
+	}
+	return b.Place.Error("", fmt.Sprintf("holds temperatures from %s to %s only, but the path needs %s",
+		thermal.TemperatureText(first), thermal.TemperatureText(last), needs), rows)
 }
 
 // Solubilities are the solubility relations of the element's start and of its rims,

@@ -41,7 +41,8 @@ func parse(file string, data []byte, load loader) (*Study, error) {
 		}
 		return nil, err
 	}
-	d := &decoder{file: file, files: newFiles(file, data, load), used: map[string]bool{}, laws: map[string]Law{}, partitions: map[string]Partition{}, meant: map[string]bool{}}
+	d := &decoder{file: file, files: newFiles(file, data, load), used: map[string]bool{}, laws: map[string]Law{}, partitions: map[string]Partition{}, meant: map[string]bool{},
+		measured: map[string]string{}}
 	s := d.study(root)
 	if err := d.err(); err != nil {
 		return nil, err

@@ -401,7 +401,7 @@ func wrongElements() []wrong {
 		{"law by direction, constants", law, `{ a = @{ D0 = "1e-9 m2/s" }, b = "mine", c = "mine", normal = ["90 deg", "90 deg", "0 deg"] }`, "", "crystal.element.law.a", "a table, not a text", "name of a [[law]]"},
 		{"law by direction with a constant", law, `{ a = "mine", b = "mine", c = "mine", normal = ["90 deg", "90 deg", "0 deg"], @D0 = "1e-9 m2/s" }`, "", "crystal.element.law.D0", "unknown key", "known here: a, b, c, ratio, normal"},
 		{"law by direction, ratio and two axes", law, `{ a = "mine", c = "mine", ratio = @6, normal = ["90 deg", "90 deg", "0 deg"] }`, "", "crystal.element.law.ratio", "laws along 2 axes, and a ratio", "the law along one axis"},
-		{"law by direction, ratio and no axis", law, `{ ratio = @6, normal = ["90 deg", "90 deg", "0 deg"] }`, "", "crystal.element.law.ratio", "laws along 0 axes, and a ratio", "the law along one axis"},
+		{"law by direction, ratio and no axis", law, `{ ratio = @6, normal = ["90 deg", "90 deg", "0 deg"] }`, "", "crystal.element.law.ratio", "a ratio, and no law along any axis", "the law along one axis"},
 		{"law by direction, ratio of nothing", law, `{ c = "mine", ratio = @0, normal = ["90 deg", "90 deg", "0 deg"] }`, "", "crystal.element.law.ratio", "not a usable number above zero", "ratio = 6"},
 		{"law by direction, ratio a text", law, `{ c = "mine", ratio = @"6", normal = ["90 deg", "90 deg", "0 deg"] }`, "", "crystal.element.law.ratio", "a text, not a number", "ratio = 6"},
 		{"law by direction, ratio and no normal", law, `@{ c = "mine", ratio = 6 }`, "", "crystal.element.law.normal", "missing", "normal ="},
