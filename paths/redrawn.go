@@ -11,18 +11,15 @@ import (
 )
 
 // A host that was measured has errors, and so has what follows it. The host is
-// redrawn from its errors n times, alike for every path, and each draw is run like
-// the host as it was measured. With d_k by how much the fitted profile differs in
-// draw k, the profile may be off by
+// redrawn from its errors n times, alike for every path (see study.Crystal.Redrawn),
+// and each draw is run like the host as it was measured. With d_k by how much the
+// fitted profile differs in draw k, the profile may be off by
 //
 //	sum of z_k d_k/sqrt(n),  each z_k normal with standard deviation 1,
 //
 // whose covariance is the mean of d_k d_k': the z_k are values of the fit with
 // priors, so that chi-square, its tail and what is read off its curve allow for the
 // host. Each profile has its own.
-
-// mostRedrawn is how many hosts are drawn at most; see study.Crystal.Redrawn.
-const mostRedrawn = 32
 
 // hostRounds is how often the free values are fitted again with the draws' profiles
 // that they make: d_k is proportional to them.

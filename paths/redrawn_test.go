@@ -38,6 +38,28 @@ const (
 // its length takes (2 pi h/L)^4, 0.2 %, off its height.
 func wave(r float64) float64 { return 0.45 + 0.08*math.Cos(2*math.Pi*r/waveLength) }
 
+// ramp is a host that falls towards the rim within some 60 um, so that a spline of a
+// tenth of the crystal moves it by at most h^4 times its fourth derivative, 4e-4.
+func ramp(r float64) float64 { return 0.45 - 0.1*math.Tanh((r-coreSr)/(30*um)) }
+
+// atRest is a crystal that has come to rest under a held rim, in a true host that is
+// measured every 2 um.
+func atRest(name string, draws int, host func(r float64) float64) hostedTruth {
+	return hostedTruth{name, draws, study.Rim{Kind: diffusion.Held, Zone: -1, Value: given(heldAt)}, 1e8 * thermal.Year, 5 * um, waveLength - 5*um,
+		func(r float64) float64 {
+			return heldAt * math.Exp(ofBlundyWood1991*(host(r)-host(waveLength))/(thermal.GasConstant*storedAt))
+		},
+		func(c *study.Crystal, rng *rand.Rand) {
+			const spacing, width = 2 * um, waveLength / 10
+			var at, value, sigma []float64
+			for i := range int(waveLength/spacing) + 1 {
+				at = append(at, float64(i)*spacing)
+				value, sigma = append(value, host(at[i])+hostSigma*rng.NormFloat64()), append(sigma, hostSigma)
+			}
+			c.Host = study.NewHost(at, value, sigma, width)
+		}}
+}
+
 func hostedTruths() []hostedTruth {
 	const age = 20 * thermal.Year
 	return []hostedTruth{
@@ -48,19 +70,8 @@ func hostedTruths() []hostedTruth {
 					c.Zones[i].Host, c.Zones[i].HostSigma = x+hostSigma*rng.NormFloat64(), hostSigma
 				}
 			}},
-		{"spline", 10, study.Rim{Kind: diffusion.Held, Zone: -1, Value: given(heldAt)}, 1e8 * thermal.Year, 5 * um, waveLength - 5*um,
-			func(r float64) float64 {
-				return heldAt * math.Exp(ofBlundyWood1991*(wave(r)-wave(waveLength))/(thermal.GasConstant*storedAt))
-			},
-			func(c *study.Crystal, rng *rand.Rand) {
-				const spacing, width = 2 * um, waveLength / 10
-				var at, value, sigma []float64
-				for i := range int(waveLength/spacing) + 1 {
-					at = append(at, float64(i)*spacing)
-					value, sigma = append(value, wave(at[i])+hostSigma*rng.NormFloat64()), append(sigma, hostSigma)
-				}
-				c.Host = study.NewHost(at, value, sigma, width)
-			}},
+		atRest("spline", 6, wave),
+		atRest("ramp", 4, ramp),
 	}
 }
 

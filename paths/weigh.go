@@ -138,7 +138,7 @@ func newWeighing(s *study.Study) (*weighing, error) {
 	w := &weighing{study: s, paths: make([]weighedPath, len(s.Paths))}
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
-		hosts := c.Redrawn(mostRedrawn)
+		hosts := c.Redrawn()
 		for j := range c.Elements {
 			if e := &c.Elements[j]; e.Traverse != nil {
 				white, err := overlapWhite(e)

@@ -150,7 +150,7 @@ func (d *decoder) zone(n *node, seen map[string]int) Zone {
 		d.report(w, "thinner than an atom", "check the unit")
 	}
 	if v := n.get("host"); v != nil {
-		z.Host = d.host(v)
+		d.zoneHost(v, &z)
 	}
 	if v := n.get("times"); v != nil {
 		z.Times, _ = d.number(v, "write the factor on the diffusivity as a number, such as times = 0.1")

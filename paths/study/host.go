@@ -84,30 +84,38 @@ func (c *Crystal) HostRange(i int) (least, most float64) {
 	return c.Host.spline.Range(inner, inner+c.Zones[i].Width)
 }
 
-// HostText is the composition of the host in zone i for people: "0.55", "0.35 to 0.55".
+// HostText is the composition of the host in zone i for people: "0.55", "0.55 +- 0.02",
+// "0.35 to 0.55".
 func (c *Crystal) HostText(i int) string {
-	least, most := c.HostRange(i)
-	if c.Host == nil {
-		return strconv.FormatFloat(least, 'g', -1, 64)
+	if c.Host != nil {
+		least, most := c.HostRange(i)
+		return fmt.Sprintf("%.3g to %.3g", least, most)
 	}
-	return fmt.Sprintf("%.3g to %.3g", least, most)
+	text := strconv.FormatFloat(c.Zones[i].Host, 'g', -1, 64)
+	if sigma := c.Zones[i].HostSigma; sigma > 0 {
+		text += fmt.Sprintf(" +- %.2g", sigma)
+	}
+	return text
 }
 
 // OnHost reports whether what the element does depends on the host.
 func (e *Element) OnHost() bool { return e.Partitions() != nil || e.Law.HostSlope != 0 }
 
+// mostRedrawn is how many parts of a spline's error are drawn at most: it is enough
+// for a traverse of some 30 widths.
+const mostRedrawn = 64
+
 // Redrawn returns crystals that differ in their hosts, each drawn from what was
 // measured and its errors; none if no error is stated. They are as many as there are
-// independent parts of the host that may be off, see modes, and no more than most.
-// Where they are as many, the deviates of the parts are made orthogonal over the
-// draws, so that the mean square of what they do is the stated variance itself and
-// not an estimate of it. They depend on the crystal and most alone.
-func (c *Crystal) Redrawn(most int) []*Crystal {
-	modes := c.modes()
-	out := make([]*Crystal, min(most, len(modes)))
+// independent parts of the host that may be off, see modes. The deviates of the parts
+// are made orthogonal over the draws, so that the mean square of what they do is the
+// stated variance itself and not an estimate of it. They depend on the crystal alone.
+func (c *Crystal) Redrawn() []*Crystal {
+	modes, _ := c.modes()
+	out := make([]*Crystal, len(modes))
 	seed := fnv.New64a()
 	seed.Write([]byte(c.Name))
-	for k, by := range deviates(rand.New(rand.NewPCG(seed.Sum64(), uint64(most))), len(out), len(modes)) {
+	for k, by := range deviates(rand.New(rand.NewPCG(seed.Sum64(), 0)), len(modes)) {
 		drawn := *c
 		if c.Host != nil {
 			value := slices.Clone(c.Host.Value)
@@ -136,14 +144,11 @@ func add(dst []float64, modes [][]float64, by []float64) {
 }
 
 // modes are by how much the host's values may be off independently of each other,
-// each with a standard deviation of 1: those of one zone, or of the points of a
-// spline within a piece of half its width. There all move by the error of their
-// mean, from which the spline cannot tell them moving one by one but for a twentieth
-// of its variance: with k in units of 1/h the integral of
-// (1 - sinc^2(k width/(4 h)))/(1 + k^4)^2 over that of 1/(1 + k^4)^2.
-func (c *Crystal) modes() [][]float64 {
-	var modes [][]float64
-	if c.Host == nil {
+// each with a standard deviation of 1: those of one zone, or of the points of a spline,
+// of which a part of the variance may be left out; see traverse.Modes.
+func (c *Crystal) modes() (modes [][]float64, left float64) {
+	switch h := c.Host; {
+	case h == nil:
 		for i, z := range c.Zones {
 			if z.HostSigma > 0 {
 				mode := make([]float64, len(c.Zones))
@@ -151,36 +156,23 @@ func (c *Crystal) modes() [][]float64 {
 				modes = append(modes, mode)
 			}
 		}
-		return modes
+	case h.Sigma != nil:
+		return traverse.Modes(h.Position, h.Sigma, h.Width, mostRedrawn)
 	}
-	h := c.Host
-	n := len(h.Position)
-	for from := 0; h.Sigma != nil && from < n; {
-		mode, until := make([]float64, n), from
-		square, length := 0.0, 0.0
-		for ; until < n && h.Position[until] < h.Position[from]+h.Width/2; until++ {
-			w := h.Position[min(until+1, n-1)] - h.Position[max(until-1, 0)]
-			square, length = square+math.Pow(w*h.Sigma[until], 2), length+w
-		}
-		for i := from; i < until; i++ {
-			mode[i] = math.Sqrt(square) / length
-		}
-		modes, from = append(modes, mode), until
-	}
-	return modes
+	return modes, 0
 }
 
-// deviates returns n draws of so many standard normal deviates. If these are n too,
-// they are made orthogonal to each other over the draws, with a mean square of 1.
-func deviates(rng *rand.Rand, n, values int) [][]float64 {
+// deviates returns n draws of n standard normal deviates each, made orthogonal to each
+// other over the draws, with a mean square of 1.
+func deviates(rng *rand.Rand, n int) [][]float64 {
 	draws := make([][]float64, n)
 	for k := range draws {
-		draws[k] = make([]float64, values)
+		draws[k] = make([]float64, n)
 		for j := range draws[k] {
 			draws[k][j] = rng.NormFloat64()
 		}
 	}
-	for j := 0; values == n && j < n; j++ { // Gram and Schmidt
+	for j := range n { // Gram and Schmidt
 		for i := range j {
 			along := over(draws, i, j)
 			for k := range draws {
