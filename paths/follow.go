@@ -92,6 +92,9 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 	if e.OnHost() {
 		out.Notes = append(out.Notes, hostMoved(c, p.history)...)
 	}
+	if e.Alternatives != nil {
+		out.Notes = append(out.Notes, fmt.Sprintf("%s may have had %d starts; it is followed from the first, %s", e.Name, len(e.Alternatives), e.StartName(0)))
+	}
 	out.WhyG, out.GEnough = p.plan().GEnough()
 	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))
 	steps, cells := p.errors(edge, amounts)

@@ -39,6 +39,7 @@ type PathResult struct {
 	Life     float64     // start to eruption, s
 	Above    []float64   // time above each of the study's thresholds before eruption, s
 	Profiles []ProfileResult
+	Starts   [][]Tried // one list a crystal, in the order of Result.Crystals; empty where there is no choice or the crystal bars the path
 	Notes    []string
 }
 
@@ -119,6 +120,7 @@ type element struct {
 	crystal *study.Crystal
 	element *study.Element
 	place   int // of the crystal among those with a measured element
+	index   int // of the element in the crystal
 	law     int
 	white   *mat.TriDense    // makes the errors of overlapping spots independent; nil if they are
 	scatter float64          // extra scatter of its traverse, in its unit
@@ -132,6 +134,8 @@ type weighedPath struct {
 	profiles []*profile
 	results  []ProfileResult
 	curves   []Curve
+	tried    [][]attempt // of each element, one a start
+	starts   [][]Tried
 }
 
 func newWeighing(s *study.Study) (*weighing, error) {
@@ -148,7 +152,7 @@ func newWeighing(s *study.Study) (*weighing, error) {
 				if !slices.Contains(w.crystals, c) {
 					w.crystals = append(w.crystals, c)
 				}
-				m := element{crystal: c, element: e, place: len(w.crystals) - 1, law: w.law(&e.Law), white: white}
+				m := element{crystal: c, element: e, place: len(w.crystals) - 1, index: j, law: w.law(&e.Law), white: white}
 				if e.OnHost() {
 					m.hosts = hosts
 				}
@@ -257,6 +261,9 @@ func (w *weighing) path(ctx context.Context, i int) error {
 			return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
 		}
 	}
+	if err := p.choose(ctx, w); err != nil {
+		return fmt.Errorf("path %q: %w", path.Name, err)
+	}
 	if err := p.sharpen(ctx); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
@@ -269,24 +276,44 @@ func (w *weighedPath) skip(e element) {
 	w.profiles = append(w.profiles, nil)
 	w.results = append(w.results, ProfileResult{Crystal: e.crystal, Element: e.element})
 	w.curves = append(w.curves, Curve{Crystal: e.place})
+	w.tried = append(w.tried, nil)
 }
 
-// add scans the multipliers on D for one element, with a plan that is fine
-// enough both for the path as it is and at the best of them: a path that hardly
-// diffuses says nothing of the error there.
+// add runs one element with each start that it may have had.
 func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws []LawPrior) error {
-	for refined := 0; ; {
-		p, result, err := audited(&e, path, refined)
+	of := e.element
+	var tried []attempt
+	for k := range of.Starts() {
+		e.element = of.Starting(k)
+		a, err := attempted(ctx, &e, path, laws)
 		if err != nil {
 			return err
+		}
+		tried = append(tried, a)
+	}
+	w.tried = append(w.tried, tried)
+	w.profiles = append(w.profiles, tried[0].profile)
+	w.results = append(w.results, tried[0].result)
+	w.curves = append(w.curves, tried[0].curve)
+	return nil
+}
+
+// attempted scans the multipliers on D for one element, with a plan that is fine
+// enough both for the path as it is and at the best of them: a path that hardly
+// diffuses says nothing of the error there.
+func attempted(ctx context.Context, e *element, path *study.Path, laws []LawPrior) (attempt, error) {
+	for refined := 0; ; {
+		p, result, err := audited(e, path, refined)
+		if err != nil {
+			return attempt{}, err
 		}
 		curve, err := p.curve(ctx)
 		if err != nil {
-			return err
+			return attempt{}, err
 		}
 		best, err := p.errorAtBest(&curve)
 		if err != nil {
-			return err
+			return attempt{}, err
 		}
 		if refined = p.finer(best); refined > p.refined {
 			continue
@@ -297,10 +324,7 @@ func (w *weighedPath) add(ctx context.Context, e element, path *study.Path, laws
 		if curve.Law = e.law; e.law > 0 {
 			curve.ByE = p.byE(laws[e.law-1].E)
 		}
-		w.profiles = append(w.profiles, p)
-		w.results = append(w.results, *result)
-		w.curves = append(w.curves, curve)
-		return nil
+		return attempt{p, *result, curve}, nil
 	}
 }
 
@@ -324,6 +348,7 @@ func (w *weighedPath) sharpen(ctx context.Context) error {
 	err := sharpen(cs, each)
 	for k, n := range of {
 		w.curves[n] = cs[k]
+		w.keep(n)
 	}
 	return err
 }
@@ -530,11 +555,10 @@ func (w *weighing) addScatter() bool {
 			continue
 		}
 		best, lnM := w.ownBest(n)
-		if best < 0 {
+		if best == nil {
 			continue
 		}
-		p := w.paths[best].profiles[n]
-		e.scatter = p.scatter(lnM)
+		e.scatter = best.profile.scatter(lnM)
 		found = found || e.scatter > 0
 	}
 	return found
@@ -570,20 +594,22 @@ func (p *profile) scatter(lnM float64) float64 {
 // largest value.
 const scatterResolution = 1e-6
 
-// ownBest returns the path along which element n fits best, and the multiplier
-// there; -1 if every path is barred.
-func (w *weighing) ownBest(n int) (path int, lnM float64) {
-	path = -1
+// ownBest returns the run of element n, along any path and with any of its starts,
+// that fits best, and the multiplier there; nil if every path is barred.
+func (w *weighing) ownBest(n int) (of *attempt, lnM float64) {
 	best := math.Inf(1)
 	for i := range w.paths {
 		if !w.paths[i].ran(n) {
 			continue
 		}
-		if x, chi := w.paths[i].curves[n].Lowest(); chi < best {
-			path, lnM, best = i, x, chi
+		for k := range w.paths[i].tried[n] {
+			a := &w.paths[i].tried[n][k]
+			if x, chi := a.curve.Lowest(); chi < best {
+				of, lnM, best = a, x, chi
+			}
 		}
 	}
-	return path, lnM
+	return of, lnM
 }
 
 // judge turns curves into verdicts.
@@ -614,11 +640,11 @@ func (w *weighing) judge(ctx context.Context) (*Result, error) {
 func (w *weighing) examine(ctx context.Context, n int) (OwnBest, error) {
 	e := w.elements[n]
 	own := OwnBest{Crystal: e.crystal, Element: e.element, Scatter: e.scatter, Outlier: -1}
-	i, lnM := w.ownBest(n)
-	if i < 0 {
+	best, lnM := w.ownBest(n)
+	if best == nil {
 		return own, nil
 	}
-	p := w.paths[i].profiles[n]
+	p := best.profile
 	solutions, err := p.solveFor(ctx, []float64{lnM})
 	if err != nil {
 		return own, err
@@ -626,15 +652,15 @@ func (w *weighing) examine(ctx context.Context, n int) (OwnBest, error) {
 	own.Path, own.Shift = p.path, math.Exp(lnM)
 	own.Degrees = p.points - p.counted - 1
 	own.examine(&p.fit, solutions[0], w.study.Confidence)
-	own.knowing(&w.paths[i].curves[n], w.study.Confidence)
-	return own, own.host(ctx, p, &w.paths[i].curves[n], w.study.Confidence)
+	own.knowing(&best.curve, w.study.Confidence)
+	return own, own.host(ctx, p, &best.curve, w.study.Confidence)
 }
 
 // verdict judges path i. A path is not blamed for a profile that its own best
 // fit does not pass either.
 func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 	path, p := &w.study.Paths[i], &w.paths[i]
-	r := PathResult{Path: path, Barred: p.barred, Life: path.History.Eruption(), Profiles: p.results}
+	r := PathResult{Path: path, Barred: p.barred, Life: path.History.Eruption(), Profiles: p.results, Starts: p.starts}
 	for _, t := range w.study.Thresholds {
 		r.Above = append(r.Above, path.History.TimeAbove(t.Temp))
 	}

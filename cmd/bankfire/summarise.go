@@ -46,7 +46,7 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 		if f.Verdict == paths.Barred {
 			notes = whyBarred(p, r.Crystals[k].Name)
 		}
-		out.Crystals = append(out.Crystals, judgedCrystal{r.Crystals[k].Name, f.Verdict.String(), newFinding(f, notes)})
+		out.Crystals = append(out.Crystals, judgedCrystal{r.Crystals[k].Name, f.Verdict.String(), newFinding(f, notes), triedStarts(p, k)})
 	}
 	if s := &p.Outcome.Scatter; s.Degrees > 0 {
 		out.Scatter = &scatter{s.Crystals, s.Common, ends(s.Common68), ends(s.Common95), s.ChiSq, s.Degrees, s.Tail}
@@ -65,6 +65,25 @@ func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 			G:       bounded(math.Exp(q.LnG)), StandIn: positive(q.StandIn), NumErr: q.NumErr,
 			FreeValues: freeValues(q.Free),
 		})
+	}
+	return out
+}
+
+// triedStarts are the combinations of starts that were tried for crystal k on the path.
+func triedStarts(p *paths.PathResult, k int) []triedStart {
+	out := []triedStart{}
+	if k >= len(p.Starts) {
+		return out
+	}
+	for _, t := range p.Starts[k] {
+		tried := triedStart{
+			Taken: t.Taken, Verdict: t.Verdict.String(), ShiftFactor: bounded(t.Shift), Tail: bounded(t.Tail),
+			Misfit: bounded(t.Misfit), AboveTaken: bounded(t.AboveOne), Degrees: t.Degrees,
+		}
+		for _, s := range t.Starts {
+			tried.Starts = append(tried.Starts, elementStart{s.Element.Name, s.Name})
+		}
+		out = append(out, tried)
 	}
 	return out
 }

@@ -122,6 +122,24 @@ type judgedCrystal struct {
 	Crystal string `json:"crystal"`
 	Verdict string `json:"verdict"`
 	finding
+	Starts []triedStart `json:"starts_tried"` // none where its elements have no choice of starts
+}
+
+// triedStart is one combination of the starts that a crystal's elements may have had.
+type triedStart struct {
+	Starts      []elementStart `json:"starts"` // of the elements that have a choice
+	Taken       bool           `json:"taken"`
+	Verdict     string         `json:"verdict"`
+	ShiftFactor *float64       `json:"shift_factor"`
+	Tail        *float64       `json:"tail"`
+	Misfit      *float64       `json:"misfit"`
+	AboveTaken  *float64       `json:"misfit_above_taken"`
+	Degrees     int            `json:"degrees_of_freedom"`
+}
+
+type elementStart struct {
+	Element string `json:"element"`
+	Start   string `json:"start"`
 }
 
 // history says how much of their history the crystals share, and what follows.

@@ -43,7 +43,7 @@ func cell(x float64) string {
 // pathsTable writes paths.csv, a row a path.
 func pathsTable(w io.Writer, r *paths.Result) error {
 	table := newCSV(w)
-	head, first := pathsHead(r), profilesOf(r)
+	head := pathsHead(r)
 	table.row(head...)
 	for i := range r.Paths {
 		p := &r.Paths[i]
@@ -62,11 +62,16 @@ func pathsTable(w io.Writer, r *paths.Result) error {
 				row = append(row, crystalCells(&o.Crystals[k])...)
 			}
 		}
+		for k := range r.Crystals {
+			if hasChoice(r, k) {
+				row = append(row, takenText(p, k))
+			}
+		}
 		for j := range p.Profiles {
 			if q := &p.Profiles[j]; q.Ran() {
-				row = append(row, profileCells(q, &o.Profiles[j])...)
+				row = append(row, profileCells(q, &o.Profiles[j], freeOf(r, j))...)
 			} else {
-				row = append(row, make([]string, len(profileHead(&first[j])))...)
+				row = append(row, make([]string, len(profileHead(freeOf(r, j))))...)
 			}
 		}
 		row = append(row, make([]string, len(head)-1-len(row))...) // a path that was not run has no profiles
@@ -88,9 +93,14 @@ func pathsHead(r *paths.Result) []string {
 			}
 		}
 	}
+	for k, c := range r.Crystals {
+		if hasChoice(r, k) {
+			head = append(head, c.Name+": start taken")
+		}
+	}
 	for i := range profilesOf(r) {
 		q := &profilesOf(r)[i]
-		for _, name := range profileHead(q) {
+		for _, name := range profileHead(freeOf(r, i)) {
 			head = append(head, q.Element.Name+" in "+q.Crystal.Name+": "+name)
 		}
 	}
@@ -106,9 +116,9 @@ func crystalCells(f *paths.Finding) []string {
 }
 
 // profileHead names the columns of a profile in paths.csv.
-func profileHead(q *paths.ProfileResult) []string {
+func profileHead(free []paths.FreeFit) []string {
 	head := []string{"verdict", "misfit", "shift_factor", "stand-in temperature [C]", "sqrt(2 G) [um]"}
-	for _, f := range q.Free {
+	for _, f := range free {
 		unit := ""
 		if f.Unit != "" {
 			unit = " [" + f.Unit + "]"
@@ -119,14 +129,18 @@ func profileHead(q *paths.ProfileResult) []string {
 }
 
 // profileCells are the cells of those columns.
-func profileCells(q *paths.ProfileResult, f *paths.Finding) []string {
+func profileCells(q *paths.ProfileResult, f *paths.Finding, free []paths.FreeFit) []string {
 	standIn := ""
 	if q.StandIn > 0 {
 		standIn = cell(q.StandIn - thermal.ZeroCelsius)
 	}
 	row := []string{f.Verdict.String(), cell(f.Misfit), cell(f.Shift), standIn, cell(math.Sqrt2 * math.Exp(q.LnG/2) * 1e6)}
-	for _, v := range q.Free {
-		row = append(row, cell(v.Value), cell(v.Sigma))
+	for i := range free {
+		if v := fitted(q.Free, free[i].Name); v != nil {
+			row = append(row, cell(v.Value), cell(v.Sigma))
+		} else {
+			row = append(row, "", "")
+		}
 	}
 	return append(row, cell(q.NumErr))
 }

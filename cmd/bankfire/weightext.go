@@ -24,6 +24,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	notes := writeVerdicts(&text, r)
 	fmt.Fprintln(&text)
 	writeCrystals(&text, r)
+	writeStarts(&text, r)
 	writeSentences(&text, r)
 	writeFits(&text, r)
 	for i, note := range notes {
@@ -198,9 +199,9 @@ func writeFits(w io.Writer, r *paths.Result) {
 			if fits == nil {
 				fmt.Fprintf(w, "%s in %s, fitted for each path:\n\n", q.Element.Name, q.Crystal.Name)
 				fits = newTable()
-				fits.row(fitHead(q)...)
+				fits.row(fitHead(freeOf(r, n))...)
 			}
-			fits.row(append([]string{r.Paths[i].Path.Name}, fitCells(q)...)...)
+			fits.row(append([]string{r.Paths[i].Path.Name}, fitCells(q, freeOf(r, n))...)...)
 		}
 		if fits != nil {
 			fits.writeTo(w)
@@ -209,17 +210,49 @@ func writeFits(w io.Writer, r *paths.Result) {
 	}
 }
 
-func fitHead(q *paths.ProfileResult) []string {
+// freeOf are the values fitted to profile n on any path, in their order: with one
+// start other values may be open than with another.
+func freeOf(r *paths.Result, n int) []paths.FreeFit {
+	var all []paths.FreeFit
+	for i := range r.Paths {
+		if len(r.Paths[i].Profiles) == 0 {
+			continue
+		}
+		for _, f := range r.Paths[i].Profiles[n].Free {
+			if fitted(all, f.Name) == nil {
+				all = append(all, f)
+			}
+		}
+	}
+	return all
+}
+
+// fitted returns the value of that name; nil if it is not there.
+func fitted(free []paths.FreeFit, name string) *paths.FreeFit {
+	for i := range free {
+		if free[i].Name == name {
+			return &free[i]
+		}
+	}
+	return nil
+}
+
+func fitHead(free []paths.FreeFit) []string {
 	head := []string{"path"}
-	for _, f := range q.Free {
+	for _, f := range free {
 		head = append(head, f.Name)
 	}
 	return append(head, "sqrt(2 G)", "stand-in temperature", "numerical error")
 }
 
-func fitCells(q *paths.ProfileResult) []string {
+func fitCells(q *paths.ProfileResult, free []paths.FreeFit) []string {
 	var cells []string
-	for _, f := range q.Free {
+	for i := range free {
+		f := fitted(q.Free, free[i].Name)
+		if f == nil {
+			cells = append(cells, "")
+			continue
+		}
 		cell := withError(f.Value, f.Sigma, f.Unit)
 		if f.AtEnd {
 			cell += " (end of range)"

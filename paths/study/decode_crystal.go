@@ -213,6 +213,7 @@ func (d *decoder) elements(n *node, c *Crystal, inner *node) {
 	for _, e := range d.tables(list, `begin an element with "[[crystal.element]]"`) {
 		c.Elements = append(c.Elements, d.element(e, c, inner, seen))
 	}
+	d.choosable(list, c)
 }
 
 // sized reports whether every width could be read.

@@ -1,6 +1,7 @@
 package study
 
 import (
+	"slices"
 	"strings"
 
 	"bankfire/diffusion"
@@ -21,7 +22,7 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	u := &units{element: e.Name, measured: n.get("traverse") != nil, known: map[float64]bool{}}
 	d.traverse(n.get("traverse"), c, &e, u)
 	e.Partition = d.partition(n.get("partition"), c, &e)
-	e.Start = d.start(n, c, &e, u)
+	d.starts(n, c, &e, u)
 	e.Rims = d.rims(n.get("rim"), c, u)
 	if e.Inner = d.rims(inner, c, u); allSealed(e.Inner) {
 		e.Inner = nil
@@ -34,7 +35,9 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	d.followers(e.Inner, c.R0, c, &e)
 	d.followers(e.Rims, c.Size(), c, &e)
 	d.assumed(n, c, &e)
-	d.nonlinear(n, c, &e)
+	for k := range e.Starts() {
+		d.nonlinear(n, c, e.Starting(k))
+	}
 	return e
 }
 
@@ -46,7 +49,7 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	d.rimRelations(e)
 	d.otherHost(n, c, e)
 	d.noteXFe(e)
-	if n.get("start").get("edge") == nil && len(c.Zones) > 1 {
+	if len(c.Zones) > 1 && slices.ContainsFunc(startTables(n), func(s *node) bool { return s.get("edge") == nil }) {
 		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)
 	}
 	if e.Tilt != (Nuisance{}) && len(c.Zones) > 1 {
@@ -57,6 +60,15 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 		e.Rims = []Rim{tied(last, d.place(n))}
 		d.note("%s: no rim given, held at the plateau of its outermost zone, %s", e.Name, c.Zones[last].Name)
 	}
+}
+
+// startTables are the tables of an element's start or of its alternatives; nil is one
+// that is left out.
+func startTables(element *node) []*node {
+	if n := element.get("start"); n != nil && n.kind == arrayNode {
+		return n.items
+	}
+	return []*node{element.get("start")}
 }
 
 // otherMineral notes a law that is for another mineral than the crystal's, unless

@@ -5,21 +5,59 @@ import (
 	"strings"
 )
 
-// start reads the profile of an element before diffusion. Where it does not say
-// otherwise every plateau is free, and edges are sharp.
-func (d *decoder) start(element *node, c *Crystal, e *Element, u *units) Start {
+// mostAlternatives bounds the starts of an element: each is run for every path.
+const mostAlternatives = 20
+
+// starts reads the profile of an element before diffusion into it, or the list of
+// those of which one is true.
+func (d *decoder) starts(element *node, c *Crystal, e *Element, u *units) {
+	n := element.get("start")
+	if n == nil || n.kind != arrayNode {
+		e.Start = d.start(element, n, c, e, u)
+		if name := n.get("name"); name != nil {
+			d.report(name, "there is one start, which needs no name", "leave it out, or write a list of alternatives")
+		}
+		return
+	}
+	const example = `write start = [ { name = "melt A", zones = ["free", "58 ppm"] }, { name = "melt B", zones = ["free", "71 ppm"] } ]`
+	if len(n.items) > mostAlternatives {
+		d.report(n, fmt.Sprintf("more than %d alternatives", mostAlternatives), "fewer are enough")
+		return
+	}
+	seen := map[string]int{}
+	for _, v := range d.tables(n, example) {
+		s := d.start(element, v, c, e, u)
+		if name := v.get("name"); name != nil {
+			var ok bool
+			if s.Name, ok = d.name(name, `write a name, such as name = "melt A"`); ok {
+				d.unique(name, s.Name, seen)
+			}
+		}
+		e.Alternatives = append(e.Alternatives, s)
+	}
+	switch len(e.Alternatives) {
+	case 0:
+		e.Start = d.start(element, nil, c, e, u)
+	case 1:
+		d.report(n, "one start is no choice", "write it without the brackets, or add another")
+		fallthrough
+	default:
+		e.Start = e.Alternatives[0]
+	}
+	if !u.measured {
+		d.report(n, "nothing was measured that could tell alternatives apart", "keep one of them, or add a traverse")
+	}
+}
+
+// start reads one profile before diffusion. Where it does not say otherwise every
+// plateau is free, and edges are sharp.
+func (d *decoder) start(element, n *node, c *Crystal, e *Element, u *units) Start {
 	s := Start{Zones: make([]Plateau, len(c.Zones))}
 	for i := range s.Zones {
 		s.Zones[i].Free = true
 	}
 	const example = `write start = { zones = ["free", "58 +- 1.5 ppm"], edge = "0 um" }`
-	n := element.get("start")
-	switch {
-	case n == nil:
-	case n.kind == arrayNode:
-		d.report(n, "alternatives of a start are not known in this version", example)
-		return s
-	case d.is(n, tableNode, example):
+	if n != nil && d.is(n, tableNode, example) {
 		d.keys(n, startTable)
 	}
 	switch way := d.oneWay(n, "zones", "melt", "solubility"); {

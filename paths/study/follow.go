@@ -129,8 +129,10 @@ func (b *ByTemperature) covers(lo, hi float64) error {
 // once each; nil if there are none.
 func (e *Element) Solubilities() []*Solubility {
 	var out []*Solubility
-	if e.Start.Solubility != nil {
-		out = append(out, e.Start.Solubility)
+	for k := range e.Starts() {
+		if s := e.Starting(k).Start.Solubility; s != nil {
+			out = withSolubility(out, s)
+		}
 	}
 	for _, rims := range [][]Rim{e.Inner, e.Rims} {
 		for i := range rims {

@@ -114,13 +114,16 @@ type Element struct {
 	Law        Law
 	Partition  *Partition // couples it to the host; nil is no coupling
 	Start      Start
-	Inner      []Rim              // nil is sealed: at the centre, symmetry
-	Rims       []Rim              // at least one
-	Traverse   *traverse.Traverse // nil if nothing was measured; then no value is free
-	Tilt       Nuisance           // of the boundaries against the measured line, rad, 0 to below a right angle; see traverse.Place
-	Origin     Nuisance           // m, added to every measured position counted as in the file; see traverse.Place
-	Scatter    bool               // scatter beyond the errors is fitted
-	Place      thermal.Place
+	// Alternatives are the starts of which one is true, two or more, Start being the
+	// first; nil if there is no choice.
+	Alternatives []Start
+	Inner        []Rim              // nil is sealed: at the centre, symmetry
+	Rims         []Rim              // at least one
+	Traverse     *traverse.Traverse // nil if nothing was measured; then no value is free
+	Tilt         Nuisance           // of the boundaries against the measured line, rad, 0 to below a right angle; see traverse.Place
+	Origin       Nuisance           // m, added to every measured position counted as in the file; see traverse.Place
+	Scatter      bool               // scatter beyond the errors is fitted
+	Place        thermal.Place
 }
 
 // Nuisance is a value of no interest by itself, of which the study says more or
@@ -294,6 +297,7 @@ type Plateau struct {
 
 // Start is an element's profile before diffusion.
 type Start struct {
+	Name       string      // of an alternative; "" if it has none
 	Zones      []Plateau   // one a zone
 	Edge       Nuisance    // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
 	Solubility *Solubility // that gives the zones; nil is none
