@@ -9,6 +9,7 @@ import (
 	"slices"
 	"strings"
 
+	"bankfire/diffusion/catalogue"
 	"bankfire/paths"
 	"bankfire/paths/study"
 	"bankfire/thermal"
@@ -21,12 +22,15 @@ const care = "A storage time is not a forecast; decisions about safety belong to
 func weighingText(r *paths.Result) bytes.Buffer {
 	var text bytes.Buffer
 	fmt.Fprintf(&text, "%s\n\n", r.Study.Title)
-	notes := writeVerdicts(&text, r)
+	common, notes := writeVerdicts(&text, r)
 	fmt.Fprintln(&text)
 	writeCrystals(&text, r)
 	writeStarts(&text, r)
 	writeSentences(&text, r)
 	writeFits(&text, r)
+	for _, note := range gathered(common) {
+		fmt.Fprintf(&text, "every path: %s\n", note)
+	}
 	for i, note := range notes {
 		fmt.Fprintf(&text, "[%d] %s\n", i+1, note)
 	}
@@ -40,9 +44,9 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	return text
 }
 
-// writeVerdicts writes the table of paths and returns the notes its last
-// column refers to.
-func writeVerdicts(w io.Writer, r *paths.Result) []string {
+// writeVerdicts writes the table of paths and returns the notes that concern
+// every path that was run, and those its last column refers to.
+func writeVerdicts(w io.Writer, r *paths.Result) (common, notes []string) {
 	if !r.Study.Sharing.Whole() {
 		fmt.Fprint(w, "All crystals along one path:\n\n")
 	}
@@ -52,7 +56,12 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 		head = append(head, "above "+t.Name)
 	}
 	table.row(append(head, "")...)
-	var notes numbered
+	beside := make([][]string, len(r.Paths))
+	for i := range r.Paths {
+		beside[i] = notesBeside(&r.Paths[i])
+	}
+	common = commonNotes(r, beside)
+	var list numbered
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
@@ -61,17 +70,51 @@ func writeVerdicts(w io.Writer, r *paths.Result) []string {
 		for _, above := range p.Above {
 			row = append(row, thermal.DurationText(above))
 		}
-		var beside []string
-		if p.Outcome.Verdict != paths.Barred { // its reasons stand in the sentences
-			beside = p.Notes
-		}
-		for j := range p.Profiles {
-			beside = slices.Concat(beside, p.Profiles[j].Notes)
-		}
-		table.row(append(row, notes.marks(beside))...)
+		own := slices.DeleteFunc(beside[i], func(note string) bool { return slices.Contains(common, note) })
+		table.row(append(row, list.marks(own))...)
 	}
 	table.writeTo(w)
+	return common, list
+}
+
+// notesBeside are the notes of a path and of its profiles, each once. The reasons
+// why one is barred stand in the sentences.
+func notesBeside(p *paths.PathResult) []string {
+	var notes []string
+	add := func(more []string) {
+		for _, note := range more {
+			if !slices.Contains(notes, note) {
+				notes = append(notes, note)
+			}
+		}
+	}
+	if p.Outcome.Verdict != paths.Barred {
+		add(p.Notes)
+	}
+	for j := range p.Profiles {
+		add(p.Profiles[j].Notes)
+	}
 	return notes
+}
+
+// commonNotes are the notes that stand beside every path that was run, if those
+// are two or more.
+func commonNotes(r *paths.Result, beside [][]string) []string {
+	if ran(r) < 2 {
+		return nil
+	}
+	var common []string
+	first := true
+	for i := range r.Paths {
+		switch {
+		case len(r.Paths[i].Profiles) == 0:
+		case first:
+			common, first = slices.Clone(beside[i]), false
+		default:
+			common = slices.DeleteFunc(common, func(note string) bool { return !slices.Contains(beside[i], note) })
+		}
+	}
+	return common
 }
 
 // findingCells are the cells of a path's row that a barred path does not have.
@@ -103,24 +146,47 @@ func leaningText(l *paths.LawsAllowed, laws int) string {
 	return "up to " + text + " (" + most.Law + ")"
 }
 
+// gathered returns the notes with all that say of constants that they were not
+// checked in one: "law: the QFM buffer: constants ..." names both.
+func gathered(notes []string) []string {
+	var rest, subjects []string
+	for _, note := range notes {
+		subject, ok := strings.CutSuffix(note, ": "+catalogue.NotChecked)
+		if !ok {
+			rest = append(rest, note)
+			continue
+		}
+		for _, name := range strings.Split(subject, ": ") {
+			if !slices.Contains(subjects, name) {
+				subjects = append(subjects, name)
+			}
+		}
+	}
+	if len(subjects) == 0 {
+		return rest
+	}
+	return append([]string{catalogue.NotChecked + ": " + strings.Join(subjects, ", ")}, rest...)
+}
+
 // numbered is a list of notes without repeats.
 type numbered []string
 
-// marks returns the numbers of the notes, each once, which join the list as needed.
+// marks returns the numbers of the notes, ascending, which join the list as
+// needed.
 func (n *numbered) marks(notes []string) string {
-	var marks strings.Builder
-	for i, note := range notes {
-		if slices.Contains(notes[:i], note) {
-			continue
-		}
-		i := 0
-		for i < len(*n) && (*n)[i] != note {
-			i++
-		}
-		if i == len(*n) {
+	var numbers []int
+	for _, note := range notes {
+		i := slices.Index(*n, note)
+		if i < 0 {
+			i = len(*n)
 			*n = append(*n, note)
 		}
-		fmt.Fprintf(&marks, "[%d]", i+1)
+		numbers = append(numbers, i+1)
+	}
+	slices.Sort(numbers)
+	var marks strings.Builder
+	for _, i := range numbers {
+		fmt.Fprintf(&marks, "[%d]", i)
 	}
 	return marks.String()
 }
