@@ -2,7 +2,7 @@ package catalogue
 
 import (
 	"slices"
-	"strconv"
+	"strings"
 
 	"bankfire/thermal"
 )
@@ -84,6 +84,6 @@ func FindPartition(key string) (*Partition, error) {
 		Field:   "partition",
 		Value:   key,
 		Problem: "no partition relation of the catalogue",
-		Remedy:  "nearest key is " + strconv.Quote(nearestKey(key, keys)),
+		Remedy:  suggestion(key, keys, "known are "+strings.Join(keys, ", ")),
 	}
 }

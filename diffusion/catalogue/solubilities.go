@@ -3,7 +3,7 @@ package catalogue
 import (
 	"math"
 	"slices"
-	"strconv"
+	"strings"
 
 	"bankfire/diffusion"
 	"bankfire/thermal"
@@ -80,7 +80,7 @@ func FindSolubility(key string) (*Solubility, error) {
 		Field:   "solubility",
 		Value:   key,
 		Problem: "no solubility relation of the catalogue",
-		Remedy:  "nearest key is " + strconv.Quote(nearestKey(key, keys)),
+		Remedy:  suggestion(key, keys, "known are "+strings.Join(keys, ", ")),
 	}
 }
 

@@ -44,12 +44,22 @@ func Find(key string) (*Row, error) {
 		Field:   "law",
 		Value:   key,
 		Problem: "not in the catalogue",
-		Remedy:  "nearest key is " + strconv.Quote(nearestKey(key, keys)),
+		Remedy:  suggestion(key, keys, "bankfire laws lists all keys"),
 	}
 }
 
-// nearestKey returns the key that is closest to a mistyped one.
-func nearestKey(key string, keys []string) string {
+// suggestion names the key that is closest to a mistyped one, or, where none is close
+// at all, says where all of them stand.
+func suggestion(key string, keys []string, all string) string {
+	near, slips := nearestKey(key, keys)
+	if slips > 1 && slips > len(key)*2/3 {
+		return all
+	}
+	return "nearest key is " + strconv.Quote(near)
+}
+
+// nearestKey returns the key that is closest to a mistyped one, and by how many slips.
+func nearestKey(key string, keys []string) (string, int) {
 	best, least := "", math.MaxInt
 	for _, k := range keys {
 		d := thermal.Slips(key, k)
@@ -60,7 +70,7 @@ func nearestKey(key string, keys []string) string {
 			best, least = k, d
 		}
 	}
-	return best
+	return best, least
 }
 
 // record is one line of the table by column name. It keeps its first error.

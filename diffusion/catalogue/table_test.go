@@ -227,6 +227,10 @@ func TestFind(t *testing.T) {
 			}
 		})
 	}
+	var in *thermal.InputError
+	if _, err := Find("mine"); !errors.As(err, &in) || in.Remedy != "bankfire laws lists all keys" {
+		t.Errorf("got %v, which is near no key", err)
+	}
 	if _, err := Find(""); err == nil {
 		t.Error("an empty key is found")
 	}

@@ -45,6 +45,7 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	d.otherMineral(c, e)
 	d.otherElement(e)
+	d.oneOfSeveral(e)
 	d.takenAlong(n.get("law"), e)
 	d.rimRelations(e)
 	d.otherHost(n, c, e)

@@ -46,6 +46,16 @@ func (d *decoder) otherElement(e *Element) {
 	}
 }
 
+// oneOfSeveral notes a law of one ingredient of a flux that several share.
+func (d *decoder) oneOfSeveral(e *Element) {
+	for _, law := range e.Law.all() {
+		if law.Row != nil && law.Row.Tag == catalogue.Multicomponent {
+			d.noteOnce("%s: law %s is of one ingredient of a flux that several share; where the others vary too, write the D of their exchange instead, with D0 and E of your own",
+				e.Name, law.Key)
+		}
+	}
+}
+
 // among reports whether the element is one of those with the symbols, or a component
 // of theirs: Fo where Mg is, An where Ca is.
 func (e *Element) among(symbols []string) bool {
