@@ -108,6 +108,7 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 	if begins > 0 {
 		out.Notes = append(out.Notes, fmt.Sprintf("%s exists from %s after the start of the path; earlier it is shown as it began", c.Name, thermal.DurationText(begins)))
 	}
+	out.Notes = append(out.Notes, growthNotes(c, path.History)...)
 	out.Legs = legShares(p.history, e.Law.Law)
 	for i := range out.Legs {
 		out.Legs[i].Start += begins

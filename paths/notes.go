@@ -34,6 +34,7 @@ func (r *ProfileResult) notes(path *study.Path) []string {
 		notes = append(notes, "the fit of edge, tilt and origin did not settle: chi-square may be a little lower than stated")
 	}
 	notes = append(notes, lawNotes(r.Crystal, r.Element, path.History)...)
+	notes = append(notes, boundaryNotes(r.Crystal, r.Element, path.History)...)
 	for _, f := range r.Free {
 		switch {
 		case math.IsInf(f.Sigma, 1):

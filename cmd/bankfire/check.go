@@ -117,6 +117,9 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 		if c.Hosted {
 			zone += " in host " + c.HostText(i)
 		}
+		if z.Added != nil {
+			zone += " added " + quoted(z.Added.Text)
+		}
 		zones = append(zones, zone)
 	}
 	fmt.Fprintf(w, "%s, %s, %s from %s to %s: %s\n", c.Name, c.Mineral, c.Shape, micrometres(c.R0), micrometres(c.Size()), list(zones))

@@ -151,12 +151,13 @@ type frame struct {
 const (
 	shownLegs     = `[ { hold = "750 C", for = "6 kyr" } ]`
 	shownZones    = `{ name = "core", width = "140 um" }`
+	shownMantle   = `{ name = "mantle", width = "60 um" }`
 	shownLaw      = `law = "quartz-ti-cherniak2007"`
 	shownStart    = `{ zones = ["free", "free"], edge = "0 um" }`
 	shownRim      = `{ held = "mantle" }`
 	shownTitle    = "title = \"Harrow Fell rhyolite (invented), quartz HF-12\"\n"
 	shownPath     = "name = \"kept warm\"\nlegs = " + shownLegs + "\n"
-	shownCrystal  = "name = \"HF-12\"\nmineral = \"quartz\"\nshape = \"slab\"\nzones = [ " + shownZones + ", { name = \"mantle\", width = \"60 um\" } ]\n"
+	shownCrystal  = "name = \"HF-12\"\nmineral = \"quartz\"\nshape = \"slab\"\nzones = [ " + shownZones + ", " + shownMantle + " ]\n"
 	shownElement  = "name = \"Ti\"\n" + shownLaw + "\nstart = " + shownStart + "\nrim = " + shownRim + "\n"
 	shownTraverse = "file = \"ti.csv\"\nposition = \"distance [um]\"\nzero = \"rim\"\nvalue = \"Ti [ppm]\"\nerror = \"3 %\"\nspot = \"0.8 um fwhm\"\n"
 )
@@ -199,7 +200,7 @@ func frames() []frame {
 		{"path.legs.conditions", shownLegs, `[ { hold = "750 C", for = "6 kyr", conditions = %s } ]`, true, nil},
 		leg("repeat", `repeat = 2`, `legs = [ { hold = "700 C", for = "1 yr" } ]`),
 		{"crystal", shownCrystal, "%s\n", false, lines(shownCrystal)},
-		{"crystal.zones", shownZones, "%s", true, []string{`name = "core"`, `width = "140 um"`}},
+		{"crystal.zones", shownZones + ", " + shownMantle, shownMantle + ", %s", true, []string{`name = "core"`, `width = "140 um"`}}, // outside
 		{"crystal.host", "shape = \"slab\"\n", "shape = \"slab\"\nhost = %s\n", true, host},
 		{"crystal.host.error", "shape = \"slab\"\n", "shape = \"slab\"\nhost = { " + strings.Join(host, ", ") + ", error = %s }\n", true,
 			[]string{`column = "1s [mole fraction]"`, `sigmas = 1`}},

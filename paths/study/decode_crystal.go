@@ -125,6 +125,7 @@ func (d *decoder) zones(n *node) ([]Zone, bool) {
 	tables := d.tables(list, example)
 	for _, z := range tables {
 		out = append(out, d.zone(z, seen))
+		d.added(z, &out[len(out)-1], out[:len(out)-1])
 	}
 	return out, d.hosted(list, tables)
 }

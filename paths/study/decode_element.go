@@ -23,8 +23,8 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 	d.traverse(n.get("traverse"), c, &e, u)
 	e.Partition = d.partition(n.get("partition"), c, &e)
 	d.starts(n, c, &e, u)
-	e.Rims = d.rims(n.get("rim"), c, u)
-	if e.Inner = d.rims(inner, c, u); allSealed(e.Inner) {
+	e.Rims = d.complete(d.rims(n.get("rim"), c, u, true), c, e.Name)
+	if e.Inner = d.rims(inner, c, u, false); allSealed(e.Inner) {
 		e.Inner = nil
 	}
 	if e.Traverse != nil && e.Traverse.Grey {
@@ -58,8 +58,8 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	}
 	if n.get("rim") == nil && len(c.Zones) > 0 {
 		last := len(c.Zones) - 1
-		e.Rims = []Rim{tied(last, d.place(n))}
 		d.note("%s: no rim given, held at the plateau of its outermost zone, %s", e.Name, c.Zones[last].Name)
+		e.Rims = d.complete([]Rim{tied(last, d.place(n))}, c, e.Name)
 	}
 }
 

@@ -157,7 +157,7 @@ func (d *decoder) pathMoment(n *node) (*thermal.Moment, bool) {
 	}
 	m, ok := d.moment(n)
 	if ok && m.Kind == thermal.Added {
-		d.report(n, "zones that were added are not known in this version", `write another moment, such as "3 yr before eruption"`)
+		d.report(n, "counts from a zone, which paths do not have", `write another moment, such as "3 yr before eruption"`)
 		return nil, false
 	}
 	return m, ok

@@ -24,13 +24,13 @@ func tied(zone int, at thermal.Place) Rim {
 }
 
 // rims reads what holds at one end: one rim, or a list of them with the moment
-// that each is in force from.
-func (d *decoder) rims(n *node, c *Crystal, u *units) []Rim {
+// that each is in force from. Only at the outer end may the first have one.
+func (d *decoder) rims(n *node, c *Crystal, u *units, outer bool) []Rim {
 	if n == nil {
 		return nil
 	}
 	if n.kind != arrayNode {
-		return []Rim{d.rim(n, c, u, true)}
+		return []Rim{d.rim(n, c, u, true, outer)}
 	}
 	if len(n.items) == 0 {
 		d.report(n, "an empty list", rimExample(c, u))
@@ -40,12 +40,12 @@ func (d *decoder) rims(n *node, c *Crystal, u *units) []Rim {
 	}
 	var out []Rim
 	for i, item := range n.items {
-		out = append(out, d.rim(item, c, u, i == 0))
+		out = append(out, d.rim(item, c, u, i == 0, outer))
 	}
 	return out
 }
 
-func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
+func (d *decoder) rim(n *node, c *Crystal, u *units, first, outer bool) Rim {
 	r := Rim{Kind: diffusion.Sealed, Zone: -1, Place: d.place(n)}
 	if n.kind == textNode && n.text == "sealed" {
 		if !first {
@@ -80,7 +80,7 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first bool) Rim {
 	if v := n.get("from"); v != nil {
 		r.Place = d.place(v)
 	}
-	r.From = d.from(n, first)
+	r.From = d.from(n, c, first, first && outer && len(c.Zones) > 0 && c.Staged())
 	return r
 }
 
@@ -118,8 +118,9 @@ func (d *decoder) noRim(n *node, example string) {
 	}
 }
 
-// from reads the moment from which a rim holds.
-func (d *decoder) from(n *node, first bool) *thermal.Moment {
+// from reads the moment from which a rim holds. The first one has one at most if the
+// crystal grew before.
+func (d *decoder) from(n *node, c *Crystal, first, grown bool) *thermal.Moment {
 	v := n.get("from")
 	switch {
 	case v == nil && first:
@@ -127,14 +128,11 @@ func (d *decoder) from(n *node, first bool) *thermal.Moment {
 	case v == nil:
 		d.need(n, "from", `every rim of a list but the first needs the moment it holds from, such as from = "3 yr before eruption"`)
 		return nil
-	case first:
+	case first && !grown:
 		d.report(v, "the first rim holds from the start of the path", "leave from out")
 		return nil
 	}
-	m, _ := d.moment(v)
-	if m != nil && m.Kind == thermal.Added {
-		d.report(v, "zones that were added are not known in this version", `write another moment, such as "3 yr before eruption"`)
-	}
+	m, _ := d.zoneMoment(v, c.Zones)
 	return m
 }
 

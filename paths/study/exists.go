@@ -70,9 +70,9 @@ func (p *Path) bars(c *Crystal) bool {
 	return false
 }
 
-// exists bars the paths that end before the crystal exists, or do not have the
-// moment, and those on which it dissolves. A crystal that exists on no path is a
-// problem.
+// exists bars the paths that end before the crystal or a zone of it exists, or do not
+// have the moment, and those on which it dissolves. A crystal or a zone that exists on
+// no path is a problem.
 func (d *decoder) exists(paths []Path, c *Crystal) {
 	if c.Exists != nil {
 		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError {
@@ -81,6 +81,15 @@ func (d *decoder) exists(paths []Path, c *Crystal) {
 		}) {
 			p.bar(c, fmt.Sprintf("%s exists from %q: %s", c.Name, c.Exists.Text, why.Problem))
 		}
+	}
+	for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError {
+		if p.bars(c) {
+			return nil
+		}
+		_, err := c.Added(p.History)
+		return inputError(err, c.Place)
+	}) {
+		p.bar(c, fmt.Sprintf("%s: %s (%s)", c.Name, why.Problem, why.Value))
 	}
 	for i := range paths {
 		seen, err := c.Sees(paths[i].History)

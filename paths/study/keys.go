@@ -87,7 +87,7 @@ var tables = [...]Table{
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
 	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
 	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "host_law", "exists_from", "dissolves", "element"}},
-	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times"}},
+	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times", "added"}},
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth", "width", "error"}},
 	hostErrorTable:  {"crystal.host.error", errorKeys()},
 	dissolvesTable:  {"crystal.dissolves", []string{"above", "longer"}},

@@ -3,6 +3,7 @@ package study
 import (
 	"errors"
 	"fmt"
+	"slices"
 	"sort"
 
 	"bankfire/diffusion"
@@ -37,22 +38,25 @@ func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, [
 	if e.Partition != nil {
 		out.LnK = e.Partition.LnK
 	}
-	var err error
-	if out.Inner, err = b.rims(e.Inner, c.R0); err != nil {
-		return nil, nil, err
-	}
-	if out.Outer, err = b.rims(e.Rims, c.Size()); err != nil {
-		return nil, nil, err
-	}
 	begins, err := c.Begins(h)
 	if err != nil {
+		return nil, nil, err
+	}
+	added, err := c.Added(h)
+	if err != nil {
+		return nil, nil, err
+	}
+	for i, t := range added {
+		out.Zones[i].Added = max(0, t-begins)
+	}
+	if out.Inner, out.Outer, err = b.rims(); err != nil {
 		return nil, nil, err
 	}
 	countFrom(begins, out.Inner)
 	countFrom(begins, out.Outer)
 	b.zoneValues()
-	b.rimValues("inner rim", e.Inner, func(basis *diffusion.Basis) []float64 { return basis.Inner })
-	b.rimValues("rim", e.Rims, func(basis *diffusion.Basis) []float64 { return basis.Outer })
+	b.rimValues("inner rim", e.Inner, b.inner, func(basis *diffusion.Basis) []float64 { return basis.Inner })
+	b.rimValues("rim", e.Rims, b.outer, func(basis *diffusion.Basis) []float64 { return basis.Outer })
 	out.Free = b.basis
 	return out, b.free, nil
 }
@@ -85,10 +89,7 @@ func minus(t float64, times []float64) []float64 {
 // holds reports, as Problem does, the rim that cannot be placed on the path.
 func (c *Crystal) holds(e *Element, h *thermal.History) error {
 	b := builder{c: c, e: e, h: h}
-	if _, err := b.rims(e.Inner, c.R0); err != nil {
-		return err
-	}
-	_, err := b.rims(e.Rims, c.Size())
+	_, _, err := b.rims()
 	return err
 }
 
@@ -97,6 +98,8 @@ type builder struct {
 	c     *Crystal
 	e     *Element
 	h     *thermal.History
+	inner []inStage // the rims of the problem
+	outer []inStage
 	basis []diffusion.Basis
 	free  []FreeValue
 }
@@ -129,8 +132,8 @@ func (p Plateau) open() bool { return p.Free || p.Sigma > 0 }
 func (b *builder) column(name string, p Plateau) *diffusion.Basis {
 	b.basis = append(b.basis, diffusion.Basis{
 		Start: make([]float64, len(b.c.Zones)),
-		Inner: make([]float64, len(b.e.Inner)),
-		Outer: make([]float64, len(b.e.Rims)),
+		Inner: make([]float64, len(b.inner)),
+		Outer: make([]float64, len(b.outer)),
 	})
 	f := FreeValue{Name: name, HasPrior: !p.Free}
 	if f.HasPrior {
@@ -149,22 +152,29 @@ func (b *builder) zoneValues() {
 		}
 		col := b.column(b.c.Zones[i].Name, p)
 		col.Start[i] = 1
-		markTied(col.Inner, b.e.Inner, i, b.tie(i, b.c.R0))
-		markTied(col.Outer, b.e.Rims, i, b.tie(i, b.c.Size()))
+		b.markTied(col.Inner, b.e.Inner, b.inner, i)
+		b.markTied(col.Outer, b.e.Rims, b.outer, i)
 	}
 }
 
-func markTied(dst []float64, rims []Rim, zone int, times float64) {
-	for i, r := range rims {
-		if r.Kind == diffusion.Held && r.Zone == zone {
-			dst[i] = times
+func (b *builder) markTied(dst []float64, list []Rim, held []inStage, zone int) {
+	for k, at := range held {
+		if r := &list[at.rim]; r.Kind == diffusion.Held && r.Zone == zone {
+			dst[k] = b.tie(zone, at.r)
 		}
 	}
 }
 
 // rimValues adds a column for every open value at which a rim is held or with which
 // it exchanges.
-func (b *builder) rimValues(name string, rims []Rim, end func(*diffusion.Basis) []float64) {
+func (b *builder) rimValues(name string, rims []Rim, held []inStage, end func(*diffusion.Basis) []float64) {
+	for len(rims) > 0 && rims[0].Assumed { // has no value of its own, and the user no number for it
+		rims = rims[1:]
+		held = slices.Clone(held)
+		for k := range held {
+			held[k].rim--
+		}
+	}
 	for i, r := range rims {
 		if !r.valued() || !r.Value.open() {
 			continue
@@ -173,38 +183,32 @@ func (b *builder) rimValues(name string, rims []Rim, end func(*diffusion.Basis) 
 		if len(rims) > 1 {
 			full = fmt.Sprintf("%s %d", name, i+1)
 		}
-		end(b.column(full, r.Value))[i] = 1
+		column := end(b.column(full, r.Value))
+		for k, at := range held {
+			if at.rim == i {
+				column[k] = 1
+			}
+		}
 	}
 }
 
-// rims resolves the moments of the end at r on the path.
-func (b *builder) rims(list []Rim, r float64) ([]diffusion.Rim, error) {
-	var out []diffusion.Rim
-	for i := range list {
-		rim := &list[i]
-		from, err := rim.from(b.h)
-		if err != nil {
-			return nil, err
-		}
-		if i > 0 && !(from > out[i-1].From) {
-			return nil, rim.Place.Error(rim.From.Text, "does not come after the rim before it", "list rims in the order of time")
-		}
-		out = append(out, diffusion.Rim{Kind: rim.Kind, From: from, Value: b.value(rim, r), Rate: rim.Rate})
+// rims resolves the moments of both ends on the path.
+func (b *builder) rims() (inner, outer []diffusion.Rim, err error) {
+	stages, err := b.c.stages(b.h)
+	if err != nil {
+		return nil, nil, err
 	}
-	for i := range list {
-		from, until, err := b.c.inForce(list, i, b.h)
-		switch rim := &list[i]; {
-		case err != nil:
-		case rim.Following != nil:
-			err = b.follow(&out[i], rim, b.c.HostAt(r), from, until)
-		case rim.Given != nil:
-			out[i].Given, err = b.given(rim.Given, from, until)
-		}
-		if err != nil {
-			return nil, err
-		}
+	if b.inner, err = b.inStages(b.e.Inner, []outermost{{r: b.c.R0}}); err != nil {
+		return nil, nil, err
 	}
-	return out, nil
+	if b.outer, err = b.inStages(b.e.Rims, stages); err != nil {
+		return nil, nil, err
+	}
+	if inner, err = b.rimsOf(b.e.Inner, b.inner); err != nil {
+		return nil, nil, err
+	}
+	outer, err = b.rimsOf(b.e.Rims, b.outer)
+	return inner, outer, err
 }
 
 // from is the time, s, from which a rim is in force on a path.

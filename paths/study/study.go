@@ -104,7 +104,9 @@ type Zone struct {
 	Times float64 // factor on D, above 0; 1 where the study says nothing
 	Host  float64 // composition of the host, a mole fraction, if the crystal is Hosted; 0 where it has a Host of its own
 	// HostSigma is the standard deviation of Host; 0 if the study states none.
-	HostSigma float64
+	HostSigma  float64
+	Added      *thermal.Moment // nil is that it is there from the start; counted from the path, whatever zone the study counts from
+	AddedPlace thermal.Place
 }
 
 // Element is one element of a crystal: how it moves, what it started from,
@@ -321,6 +323,7 @@ type Rim struct {
 	Given     *Series             // prescribed
 	Following *Following          // prescribed, unless Given
 	From      *thermal.Moment     // nil in the first of a list: from the start of the path
+	Assumed   bool                // held at the plateau of the zone that was outermost, since the study does not say
 	Place     thermal.Place       // of its moment, or of the rim if it has none
 }
 

@@ -29,7 +29,7 @@ func later(field string) bool {
 	}
 	switch field {
 	case "family", "law.times",
-		"crystal.zones.added", "crystal.element.rivals",
+		"crystal.element.rivals",
 		"crystal.element.start.scaled":
 		return true
 	}

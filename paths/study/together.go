@@ -12,7 +12,11 @@ import (
 func (d *decoder) together(s *Study) {
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
+		before := d.faults
 		d.exists(s.Paths, c)
+		if d.faults > before && c.Staged() {
+			continue // its rims would say so again
+		}
 		for j := range c.Elements {
 			e := &c.Elements[j]
 			d.moments(s.Paths, c, e, e.Inner)
@@ -57,7 +61,15 @@ func (d *decoder) interval(paths []Path, l *Interval) {
 // before that of the rim it follows. A rim that holds on no path is a problem.
 func (d *decoder) moments(paths []Path, c *Crystal, e *Element, rims []Rim) {
 	for i := 1; i < len(rims); i++ {
-		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError { return after(rims, i, p.History) }) {
+		if rims[i].Assumed {
+			continue // goes with a zone
+		}
+		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError {
+			if _, err := c.Added(p.History); err != nil {
+				return nil // barred for it
+			}
+			return after(rims, i, p.History)
+		}) {
 			p.bar(c, fmt.Sprintf("the rim of %s in %s from %q: %s", e.Name, c.Name, rims[i].From.Text, why.Problem))
 		}
 	}
@@ -70,7 +82,7 @@ func after(rims []Rim, i int, h *thermal.History) *thermal.InputError {
 	if err != nil {
 		return inputError(err, rims[i].Place)
 	}
-	if before, err := rims[i-1].from(h); err == nil && !(from > before) {
+	if before, err := rims[i-1].from(h); err == nil && !rims[i-1].Assumed && !(from > before) {
 		return rims[i].Place.Error(rims[i].From.Text, "does not come after the rim before it", "list rims in the order of time")
 	}
 	return nil
