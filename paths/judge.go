@@ -49,6 +49,7 @@ type Outcome struct {
 	Scatter  Scatter     // of the crystals' amounts of diffusion
 	Chance   Chance      // how many crystals fail, and would by chance
 	WithLaws LawsAllowed // the same with the laws' own errors allowed for
+	Odds     []Demand    // by how much profiles disagree, where all or those of a crystal are at odds; Judge leaves it empty
 }
 
 // LawsAllowed is the verdict when the laws may deviate within their errors. Its
@@ -100,6 +101,7 @@ func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 		dst.Crystals = append(dst.Crystals, jointly(curves, each, confidence))
 	}
 	dst.Scatter, dst.Chance = scatterOf(cs, of, dst.Crystals), chanceOf(dst.Crystals, confidence)
+	dst.Odds = nil
 	dst.WithLaws = allow(cs, laws, &dst.Finding, confidence)
 }
 

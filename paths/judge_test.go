@@ -7,8 +7,6 @@ import (
 	"testing"
 )
 
-func square(x float64) float64 { return x * x }
-
 // bowl is the curve of a well-behaved profile: chi-square floor at the
 // multiplier exp(at), rising as ((lnM - at)/sigma)^2. With its own slopes it is
 // exact.

@@ -691,12 +691,20 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 // which it was not that they bar it.
 func (w *weighing) judgePath(dst *Outcome, p *weighedPath) {
 	var cs []Curve
+	var of []int // elements of the curves
 	for n := range p.curves {
 		if p.ran(n) {
-			cs = append(cs, p.curves[n])
+			cs, of = append(cs, p.curves[n]), append(of, n)
 		}
 	}
 	Judge(dst, cs, w.laws, w.study.Confidence)
+	if dst.Verdict == AtOdds || slices.ContainsFunc(dst.Crystals, func(f Finding) bool { return f.Verdict == AtOdds }) {
+		dst.Odds = Demands(cs, dst.Profiles, w.study.Confidence)
+		for k := range dst.Odds {
+			d := &dst.Odds[k]
+			d.Of, d.To = of[d.Of], of[d.To]
+		}
+	}
 	if len(cs) == len(p.curves) {
 		return
 	}

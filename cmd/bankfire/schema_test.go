@@ -103,6 +103,11 @@ func TestSummaryKeepsSchema(t *testing.T) {
 			o.Profiles[0], o.Crystals[0] = o.Finding, o.Finding
 			o.WithLaws = paths.LawsAllowed{Verdict: paths.Unjudged, Tail: math.NaN(), Misfit: math.NaN()}
 		}},
+		{"at odds, with an open end", func(r *paths.Result) {
+			o := &r.Paths[0].Outcome
+			o.Verdict = paths.AtOdds
+			o.Odds = []paths.Demand{{Ratio: 5, Ratio68: [2]float64{2, math.Inf(1)}, Ratio95: [2]float64{0, math.Inf(1)}, ChiSq: 30}}
+		}},
 		{"every verdict of now", func(r *paths.Result) {
 			p := &r.Paths[0]
 			for _, v := range []paths.Verdict{paths.TooSharp, paths.TooSmooth, paths.WrongShape} {

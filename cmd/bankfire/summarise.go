@@ -32,7 +32,7 @@ func summarise(r *paths.Result, made program) *weighing {
 func summarisePath(r *paths.Result, p *paths.PathResult) weighedPath {
 	out := weighedPath{
 		Name: p.Path.Name, Verdict: p.Outcome.Verdict.String(), finding: newFinding(&p.Outcome.Finding, p.Notes),
-		LifeS: p.Life, Above: []timeAbove{}, Crystals: []judgedCrystal{}, Profiles: []weighedProfile{},
+		LifeS: p.Life, Above: []timeAbove{}, Crystals: []judgedCrystal{}, Odds: summariseOdds(p), Profiles: []weighedProfile{},
 	}
 	if len(p.Profiles) > 0 && p.Outcome.Verdict != paths.Barred {
 		out.WithLaws = newWithLaws(&p.Outcome.WithLaws)
@@ -84,6 +84,15 @@ func triedStarts(p *paths.PathResult, k int) []triedStart {
 			tried.Starts = append(tried.Starts, elementStart{s.Element.Name, s.Name})
 		}
 		out = append(out, tried)
+	}
+	return out
+}
+
+func summariseOdds(p *paths.PathResult) []demand {
+	out := []demand{}
+	key := func(i int) elementKey { return elementKey{p.Profiles[i].Crystal.Name, p.Profiles[i].Element.Name} }
+	for _, d := range p.Outcome.Odds {
+		out = append(out, demand{key(d.Of), key(d.To), d.Ratio, ends(d.Ratio68), ends(d.Ratio95), d.ChiSq})
 	}
 	return out
 }

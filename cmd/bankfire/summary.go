@@ -78,7 +78,18 @@ type weighedPath struct {
 	Crystals []judgedCrystal  `json:"crystals"`
 	Scatter  *scatter         `json:"scatter"` // null with fewer than three crystals that have a say
 	Chance   *chance          `json:"chance"`  // null with fewer than two crystals
+	Odds     []demand         `json:"at_odds"` // pairs that disagree, most first
 	Profiles []weighedProfile `json:"profiles"`
+}
+
+// demand is by how much two profiles disagree that pass alone.
+type demand struct {
+	Of         elementKey  `json:"of"`
+	RelativeTo elementKey  `json:"relative_to"`
+	Ratio      float64     `json:"ratio"` // of what D has to be multiplied by
+	Ratio68    [2]*float64 `json:"ratio_68"`
+	Ratio95    [2]*float64 `json:"ratio_95"`
+	ChiSq      float64     `json:"chi_square"` // with one multiplier, above that with one each
 }
 
 // ownBest is the best fit of one profile by itself; its numbers are null if no

@@ -223,6 +223,8 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict == paths.Barred || shared && o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
+		} else if within := withinCrystals(&r.Paths[i]); !shared && len(within) > 0 {
+			fmt.Fprintf(w, "Along %s elements of one crystal are %s.\n", quoted(r.Paths[i].Path.Name), oddsInWords(&r.Paths[i], within))
 		}
 	}
 	fmt.Fprintln(w)
@@ -348,7 +350,7 @@ func verdictInWords(p *paths.PathResult) string {
 	case paths.WrongShape:
 		return "of wrong shape: no amount of diffusion along it fits"
 	case paths.AtOdds:
-		return oddsInWords(p)
+		return oddsInWords(p, o.Odds)
 	case paths.Unjudged:
 		return "not judged: no degrees of freedom are left"
 	case paths.Barred:
@@ -356,22 +358,4 @@ func verdictInWords(p *paths.PathResult) string {
 	default:
 		return o.Verdict.String()
 	}
-}
-
-// oddsInWords names the two profiles that ask for the least and the most
-// diffusion, and the ratio between them.
-func oddsInWords(p *paths.PathResult) string {
-	least, most := 0, 0
-	for i, f := range p.Outcome.Profiles {
-		if f.Shift < p.Outcome.Profiles[least].Shift {
-			least = i
-		}
-		if f.Shift > p.Outcome.Profiles[most].Shift {
-			most = i
-		}
-	}
-	name := func(i int) string { return p.Profiles[i].Element.Name + " in " + p.Profiles[i].Crystal.Name }
-	return fmt.Sprintf("at odds: %s asks for %s times as much diffusion, %s for %s times, a ratio of %s",
-		name(least), number(p.Outcome.Profiles[least].Shift), name(most), number(p.Outcome.Profiles[most].Shift),
-		number(p.Outcome.Profiles[most].Shift/p.Outcome.Profiles[least].Shift))
 }
