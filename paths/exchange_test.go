@@ -17,6 +17,11 @@ import (
 // rate.
 const exchanging = `title = "Ti in a quartz that exchanges with its melt (invented)"
 
+[[partition]]
+name = "kx"
+A = "-100 kJ/mol"
+B = "10 kJ/mol"
+
 [[path]]
 name = "as made"
 legs = [ { hold = "750 C", for = "1 kyr" } ]
@@ -29,13 +34,13 @@ legs = [ { hold = "750 C", for = "10 kyr" } ]
 name = "Q1"
 mineral = "quartz"
 shape = "slab"
-zones = [ { name = "core", width = "100 um" } ]
+zones = [ { name = "core", width = "100 um", host = 0.4 } ]
 
 [[crystal.element]]
 name = "Ti"
 law = { D0 = "7e-8 m2/s", E = "273 kJ/mol" }
 start = { zones = [%s] }
-rim = { transfer = %s, k = { k0 = "2.6e-6 m/s", E = "200 kJ/mol" } }
+rim = { %s, k = { k0 = "2.6e-6 m/s", E = "200 kJ/mol" } }
 traverse = { file = "ti.csv", position = "distance [um]", zero = "rim", value = "Ti [ppm]", error = "1 ppm", spot = "point" }
 `
 
@@ -89,9 +94,16 @@ func TestExchange(t *testing.T) {
 		z, h := x/(2*root), k/d*root
 		return start + (outside-start)*(math.Erfc(z)-math.Exp(-z*z)*numeric.ErfcScaled(z+h))
 	}
-	for _, values := range [][2]string{{`"90 ppm"`, `"60 ppm"`}, {`"free"`, `"60 ppm"`}, {`"90 ppm"`, `"free"`}, {`"free"`, `"60 +- 5 ppm"`}} {
+	followed := fmt.Sprintf(`following = "kx", melt = "%.12g ppm"`, outside/math.Exp((-100e3*0.4+10e3)/rt))
+	for _, values := range [][2]string{
+		{`"90 ppm"`, `transfer = "60 ppm"`}, {`"free"`, `transfer = "60 ppm"`},
+		{`"90 ppm"`, `transfer = "free"`}, {`"free"`, `transfer = "60 +- 5 ppm"`},
+		{`"90 ppm"`, followed}, {`"free"`, `given = "t.csv", temperature = "T [C]", value = "Ti [ppm]"`},
+		{`"free"`, `given = "t.csv", time = "t [yr]", value = "Ti [ppm]"`},
+	} {
 		t.Run(values[0]+" outside "+values[1], func(t *testing.T) {
-			s := readWith(t, fmt.Sprintf(exchanging, values[0], values[1]), exact)
+			const table = "T [C],t [yr],Ti [ppm]\n700,-1,60\n800,20000,60\n"
+			s := readWith(t, fmt.Sprintf(exchanging, values[0], values[1]), exact, "t.csv", table)
 			course, err := Follow(t.Context(), s, &s.Paths[0], nil)
 			if err != nil {
 				t.Fatal(err)

@@ -248,7 +248,7 @@ var beside = map[string][]string{
 // onHost are keys for which the crystal needs a host in every zone.
 var onHost = []string{"crystal.zones host", "crystal host_law", "crystal.element partition", "crystal.element.law host",
 	"crystal.element.rim following following", "crystal.element.rim following melt",
-	"crystal.element.rim following temperature", "crystal.element.rim following value",
+	"crystal.element.rim following temperature", "crystal.element.rim following value", "crystal.element.rim following k",
 	"crystal.element.rim following unit", "crystal.element.rim following from", "crystal.element.law.host ln_slope", "crystal.element.law.host at"}
 
 // hosts gives a host to the zones that have none.

@@ -226,7 +226,9 @@ func (b *builder) follow(dst *diffusion.Rim, r *Rim, host, from, until float64) 
 		}
 	}
 	if a, ok := f.exponential(tried); ok {
-		dst.Kind, dst.Equilibrium = diffusion.Following, &a
+		if dst.Equilibrium = &a; dst.Kind != diffusion.Transfer {
+			dst.Kind = diffusion.Following
+		}
 		return nil
 	}
 	dst.Given = f.along(b.h)

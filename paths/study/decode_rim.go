@@ -60,12 +60,14 @@ func (d *decoder) rim(n *node, c *Crystal, u *units, first, outer bool) Rim {
 	case n.get("following") != nil:
 		d.keys(n, followingTable)
 		d.following(n, &r, u)
+		d.lagging(n, &r)
 	case n.get("held") != nil:
 		d.keys(n, heldTable)
 		d.held(n, &r, c, u)
 	case n.get("given") != nil:
 		d.keys(n, givenTable)
 		d.given(n, &r, u)
+		d.lagging(n, &r)
 	case n.get("transfer") != nil:
 		d.keys(n, transferTable)
 		d.transfer(n, &r, u)
@@ -152,13 +154,25 @@ func (d *decoder) held(n *node, r *Rim, c *Crystal, u *units) {
 	r.Value = d.amount(v, u, d.concentrationUnit(n.get("unit")))
 }
 
-// transfer reads the value with which a rim would be in equilibrium, and the
-// coefficient k = k0 exp(-E/(R T)) of the exchange.
+// transfer reads the value with which a rim would be in equilibrium, and how fast
+// it exchanges.
 func (d *decoder) transfer(n *node, r *Rim, u *units) {
-	r.Kind = diffusion.Transfer
 	r.Value = d.amount(n.get("transfer"), u, d.concentrationUnit(n.get("unit")))
 	const example = `write k = { k0 = "1e-3 m/s", E = "200 kJ/mol" }, or k = { k0 = "1e-12 m/s" } for one that stays the same at every temperature`
-	k := d.need(n, "k", example)
+	d.exchanges(d.need(n, "k", example), r, example)
+}
+
+// lagging reads how fast a rim exchanges with what it follows or is given, if it
+// does not do so at once.
+func (d *decoder) lagging(n *node, r *Rim) {
+	if k := n.get("k"); k != nil {
+		d.exchanges(k, r, `write k = { k0 = "1e-3 m/s", E = "200 kJ/mol" }, or leave k out for a rim in equilibrium at all times`)
+	}
+}
+
+// exchanges makes the rim one of transfer with the coefficient k = k0 exp(-E/(R T)).
+func (d *decoder) exchanges(k *node, r *Rim, example string) {
+	r.Kind = diffusion.Transfer
 	if !d.is(k, tableNode, example) {
 		return
 	}

@@ -31,7 +31,7 @@ func followingStudy(t *testing.T, conditions, rim string, more ...string) (*Stud
 
 // valueOf is the value of a rim that follows at a time, s.
 func valueOf(r diffusion.Rim, h *thermal.History, t float64) float64 {
-	if r.Kind != diffusion.Following {
+	if r.Equilibrium == nil {
 		return r.Given.At(t)
 	}
 	_, temp := h.At(t)

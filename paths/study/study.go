@@ -320,8 +320,8 @@ type Rim struct {
 	Zone      int                 // held at the plateau of this zone; -1 if it is not tied to one
 	Value     Plateau             // held and tied to no zone; of transfer, in equilibrium with what is outside
 	Rate      diffusion.Arrhenius // of transfer: its coefficient, ln(m/s) and K
-	Given     *Series             // prescribed
-	Following *Following          // prescribed, unless Given
+	Given     *Series             // prescribed; of transfer, instead of Value
+	Following *Following          // the same, unless Given
 	From      *thermal.Moment     // nil in the first of a list: from the start of the path
 	Assumed   bool                // held at the plateau of the zone that was outermost, since the study does not say
 	Place     thermal.Place       // of its moment, or of the rim if it has none
@@ -329,7 +329,10 @@ type Rim struct {
 
 // valued reports whether the rim has a value of its own.
 func (r *Rim) valued() bool {
-	return r.Kind == diffusion.Held && r.Zone < 0 || r.Kind == diffusion.Transfer
+	if r.Kind == diffusion.Transfer {
+		return r.Given == nil && r.Following == nil
+	}
+	return r.Kind == diffusion.Held && r.Zone < 0
 }
 
 // Series is a value against time, linear between its rows; equal times jump.
