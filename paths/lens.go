@@ -18,6 +18,7 @@ type lens struct {
 	t                  *traverse.Traverse
 	edge, tilt, origin study.Nuisance
 	mirrored           bool
+	curve              int                 // of the cells, see traverse.NewWeights
 	faces, at          []float64           // of the cells; where blurred profiles are known: both ends and the centres
 	edges, cosines     []float64           // nodes between which edge width and cos tilt are interpolated
 	weights            []*traverse.Weights // one a cosine: at the points if these are fixed, else at `at`
@@ -43,21 +44,21 @@ const (
 func newLens(c *study.Crystal, e *study.Element, faces, edges []float64) (*lens, error) {
 	l := &lens{
 		t: e.Traverse, edge: e.Start.Edge, tilt: e.Tilt, origin: e.Origin,
-		mirrored: c.Mirrored(e), faces: faces, edges: edges, places: make([]float64, len(e.Traverse.Position)),
+		mirrored: c.Mirrored(e), curve: int(c.Shape), faces: faces, edges: edges, places: make([]float64, len(e.Traverse.Position)),
 	}
 	for _, tilt := range nodes(l.tilt, 0, steepest, cosineNodes) {
 		l.cosines = append(l.cosines, math.Cos(tilt))
 	}
 	if l.placed() {
 		l.at = l.places
-		l.weights = []*traverse.Weights{l.t.WeightsAt(faces, l.mirrored, l.origin.Value, l.tilt.Value)}
+		l.weights = []*traverse.Weights{l.t.WeightsAt(faces, l.mirrored, l.curve, l.origin.Value, l.tilt.Value)}
 		return l, nil
 	}
 	l.at = append(append([]float64{faces[0]}, middles(faces)...), faces[len(faces)-1])
 	for _, cosine := range l.cosines {
 		spot := l.t.Spot
 		spot.Width *= cosine
-		w, err := traverse.NewWeights(faces, l.mirrored, spot, l.at)
+		w, err := traverse.NewWeights(faces, l.mirrored, l.curve, spot, l.at)
 		if err != nil {
 			return nil, fmt.Errorf("%s: %w", l.t.Name, err)
 		}

@@ -467,7 +467,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 	p.element.Traverse.Place(r.At, origin, tilt)
 	spot := p.element.Traverse.Spot
 	spot.Width *= math.Cos(tilt)
-	everywhere, err := traverse.NewWeights(p.plan().Faces(), p.lens.mirrored, spot, r.Centres)
+	everywhere, err := traverse.NewWeights(p.plan().Faces(), p.lens.mirrored, p.lens.curve, spot, r.Centres)
 	if err != nil {
 		return nil, err
 	}

@@ -82,7 +82,7 @@ func trueTraverse() ([]float64, error) {
 	for x := firstUm; x <= lastUm; x++ {
 		at = append(at, size-float64(x)*um)
 	}
-	weights, err := traverse.NewWeights(plan.Faces(), true, spot, at)
+	weights, err := traverse.NewWeights(plan.Faces(), true, 0, spot, at)
 	if err != nil {
 		return nil, err
 	}

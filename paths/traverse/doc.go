@@ -10,6 +10,6 @@
 // such as temperature against time.
 //
 //	t, err := traverse.Read("ti.csv", file, options)
-//	w := t.WeightsAt(plan.Faces(), true, 0, 0)
+//	w := t.WeightsAt(plan.Faces(), true, 0, 0, 0)
 //	w.Apply(seen, cells) // one value a measured point
 package traverse

@@ -22,7 +22,7 @@ func Example() {
 	}
 	faces := []float64{0, 1e-6, 2e-6, 3e-6, 4e-6, 5e-6, 6e-6, 7e-6, 8e-6, 9e-6, 10e-6}
 	cells := []float64{90, 90, 90, 90, 90, 60, 60, 60, 60, 60}
-	w := t.WeightsAt(faces, true, 0, 0)
+	w := t.WeightsAt(faces, true, 0, 0, 0)
 	seen := make([]float64, len(t.Position))
 	w.Apply(seen, cells)
 	for i, v := range t.Value {

@@ -37,11 +37,11 @@ func TestWeightsAt(t *testing.T) {
 	faces := []float64{0, 1e-6, 2e-6, 3e-6, 4e-6, 5e-6}
 	for _, spot := range []Spot{{}, {TopHat, 0.7e-6}, {Gaussian, 0.4e-6}} {
 		moved := Traverse{Position: []float64{4.5e-6, 1e-6}, Spot: spot, Zero: Rim, Size: 5e-6}
-		want, err := NewWeights(faces, true, spot, []float64{5e-6, 2e-6})
+		want, err := NewWeights(faces, true, 0, spot, []float64{5e-6, 2e-6})
 		if err != nil {
 			t.Fatal(err)
 		}
-		got := moved.WeightsAt(faces, true, -1e-6, 0) // the first to 5.5 um, half a micrometre beyond the rim
+		got := moved.WeightsAt(faces, true, 0, -1e-6, 0) // the first to 5.5 um, half a micrometre beyond the rim
 		if diff := cmp.Diff(want, got, cmp.Comparer(within(1e-9))); diff != "" {
 			t.Errorf("%v: wanted -, got +:\n%s", spot, diff)
 		}
@@ -53,11 +53,11 @@ func TestWeightsAt(t *testing.T) {
 func TestWeightsAtSlant(t *testing.T) {
 	faces, wide := []float64{0, 1e-6, 2e-6, 3e-6, 4e-6, 5e-6}, []float64{0, 2e-6, 4e-6, 6e-6, 8e-6, 10e-6}
 	slanted := Traverse{Position: []float64{2.5e-6, 9e-6}, Spot: Spot{Gaussian, 1e-6}}
-	want, err := NewWeights(wide, true, slanted.Spot, slanted.Position)
+	want, err := NewWeights(wide, true, 0, slanted.Spot, slanted.Position)
 	if err != nil {
 		t.Fatal(err)
 	}
-	got := slanted.WeightsAt(faces, true, 0, math.Pi/3)
+	got := slanted.WeightsAt(faces, true, 0, 0, math.Pi/3)
 	if diff := cmp.Diff(want, got, cmp.Comparer(within(1e-9))); diff != "" {
 		t.Errorf("wanted -, got +:\n%s", diff)
 	}

@@ -30,7 +30,8 @@ type Weights struct {
 //
 // K the spot and c the profile, which in each cell is the parabola that has
 // the means of this cell and its two neighbours (at an end: of the last three
-// cells). So a parabola is seen exactly, the mean of every cell is kept, and
+// cells), taken over r^curve dr: curve is 0 in a slab, 1 in a cylinder and 2 in a
+// ball, whose faces count from the centre. So a parabola is seen exactly, the mean of every cell is kept, and
 // the error of a smooth profile is of third order in the cells, wide or not; a
 // jump on a face between cells of width h looks blurred by another h/sqrt(6). A
 // Point sees the two parabolas of the cells around it, mixed linearly between
@@ -43,16 +44,14 @@ type Weights struct {
 // epoxy is assumed to have been normalised by what it hit of the crystal.
 // Weights of a row add up to 1.
 //
-// In a cylinder or ball the mean of a cell is taken as the mean over its
-// width, which is right to second order in the cells.
-//
 // A position that is outside the crystal, by more than round-off, or not
 // finite gives a *thermal.InputError with Field "position" and no place; of
 // several, the first 20 are joined. NewWeights panics on fewer than three
-// cells, on faces that do not ascend and on a Spot without a width.
-func NewWeights(faces []float64, mirrored bool, s Spot, at []float64) (*Weights, error) {
+// cells, on faces that do not ascend, on a curve that is none of these and on a
+// Spot without a width.
+func NewWeights(faces []float64, mirrored bool, curve int, s Spot, at []float64) (*Weights, error) {
 	s.check()
-	g := newGrid(faces, mirrored)
+	g := newGrid(faces, mirrored, curve)
 	var problems []error
 	w := &Weights{Row: make([]Sparse, len(at))}
 	for i, x := range at {
@@ -90,9 +89,9 @@ func (w *Weights) Apply(dst, cells []float64) {
 // origin, m, and a tilt, rad; the spot lies along the same line and shrinks with
 // it. A position that these move out of the crystal is taken at the end that it
 // left by: it was measured in the crystal.
-func (t *Traverse) WeightsAt(faces []float64, mirrored bool, origin, tilt float64) *Weights {
+func (t *Traverse) WeightsAt(faces []float64, mirrored bool, curve int, origin, tilt float64) *Weights {
 	t.Spot.check()
-	g := newGrid(faces, mirrored)
+	g := newGrid(faces, mirrored, curve)
 	at := make([]float64, len(t.Position))
 	t.Place(at, origin, tilt)
 	spot := Spot{t.Spot.Kind, t.Spot.Width * math.Cos(tilt)}
@@ -107,11 +106,15 @@ func (t *Traverse) WeightsAt(faces []float64, mirrored bool, origin, tilt float6
 type grid struct {
 	faces  []float64 // ascending, m
 	folded int       // mirrored: cells in the far half, else 0
+	curve  int       // the mean of a cell is over r^curve dr
 	sum    []float64 // weights of one row while it is being made, by cell
 }
 
-func newGrid(faces []float64, mirrored bool) *grid {
+func newGrid(faces []float64, mirrored bool, curve int) *grid {
 	n := len(faces) - 1
+	if curve < 0 || curve > 2 {
+		panic(fmt.Sprintf("traverse: curve %d, want 0, 1 or 2", curve))
+	}
 	if n < 3 {
 		panic(fmt.Sprintf("traverse: %d cells, want at least 3", n))
 	}
@@ -120,7 +123,7 @@ func newGrid(faces []float64, mirrored bool) *grid {
 			panic(fmt.Sprintf("traverse: face %d at %g m, the next at %g m", i, faces[i], faces[i+1]))
 		}
 	}
-	g := &grid{faces: faces, sum: make([]float64, n)}
+	g := &grid{faces: faces, curve: curve, sum: make([]float64, n)}
 	if mirrored {
 		g.folded = n
 		g.faces = make([]float64, 0, 2*n+1)
@@ -244,10 +247,16 @@ func (g *grid) fold(i int) int {
 
 // parabolas returns, for each of the three cells from first on, the parabola
 // whose mean is 1 in this cell and 0 in the other two, as coefficients of 1, u
-// and u^2, u counted from origin. The integral of the profile from the first
+// and u^2, u counted from origin. In a slab the integral of the profile from the first
 // face, known at all four, is the cubic through these four points; the
-// parabola is its derivative.
+// parabola is its derivative. Else it is a column of the inverse of the means of 1, u
+// and u^2 in the three cells.
 func (g *grid) parabolas(first int, origin float64) (q [3]moments) {
+	if g.curve > 0 {
+		a, b, c := g.means(first, origin), g.means(first+1, origin), g.means(first+2, origin)
+		volume := a.dot(b.cross(c))
+		return [3]moments{b.cross(c).times(1 / volume), c.cross(a).times(1 / volume), a.cross(b).times(1 / volume)}
+	}
 	var f [4]float64
 	for k := range f {
 		f[k] = g.faces[first+k] - origin
@@ -259,6 +268,21 @@ func (g *grid) parabolas(first int, origin float64) (q [3]moments) {
 		}
 	}
 	return q
+}
+
+// means returns the means of 1, u and u^2 over |r|^curve dr of cell i, curve being 1
+// or 2, u counted from origin. About its middle m, with half its width e, that of r - m
+// is in a cylinder e^2/(3 m) and in a ball 2 m e^2/(3 v), and that of its square e^2/3
+// and e^2 (m^2/3 + e^2/5)/v, with v = m^2 + e^2/3.
+func (g *grid) means(i int, origin float64) moments {
+	m, e := g.centre(i), (g.faces[i+1]-g.faces[i])/2
+	shift, variance := e*e/(3*m), e*e/3
+	if g.curve == 2 {
+		v := m*m + e*e/3
+		shift, variance = 2*m*e*e/(3*v), e*e*(m*m/3+e*e/5)/v
+	}
+	d := m - origin
+	return moments{1, d + shift, d*d + 2*d*shift + variance}
 }
 
 // slope returns the derivative of the cubic that is 1 at f[k] and 0 at the
@@ -276,6 +300,18 @@ type moments [3]float64
 func (m moments) times(x float64) moments { return moments{m[0] * x, m[1] * x, m[2] * x} }
 
 func (m moments) plus(n moments) moments { return moments{m[0] + n[0], m[1] + n[1], m[2] + n[2]} }
+
+func (m moments) dot(n moments) float64 {
+	return float64(m[0]*n[0]) + float64(m[1]*n[1]) + float64(m[2]*n[2])
+}
+
+func (m moments) cross(n moments) moments {
+	return moments{
+		float64(m[1]*n[2]) - float64(m[2]*n[1]),
+		float64(m[2]*n[0]) - float64(m[0]*n[2]),
+		float64(m[0]*n[1]) - float64(m[1]*n[0]),
+	}
+}
 
 func square(x float64) float64 { return x * x }
 

@@ -55,7 +55,7 @@ func means(faces []float64, integral func(float64) float64) []float64 {
 // see returns what a spot shows of cells at the positions.
 func see(t *testing.T, faces []float64, mirrored bool, s Spot, at, cells []float64) []float64 {
 	t.Helper()
-	w, err := NewWeights(faces, mirrored, s, at)
+	w, err := NewWeights(faces, mirrored, 0, s, at)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -85,7 +85,7 @@ func TestWeightsAddUp(t *testing.T) {
 			t.Run(fmt.Sprintf("%s/mirrored=%v", test.name, mirrored), func(t *testing.T) {
 				faces := randomFaces(rng, 60, 0)
 				at := append(randomPositions(rng, 50, faces, mirrored), faces[0], faces[60], faces[30])
-				w, err := NewWeights(faces, mirrored, test.spot, at)
+				w, err := NewWeights(faces, mirrored, 0, test.spot, at)
 				if err != nil {
 					t.Fatal(err)
 				}
@@ -324,7 +324,7 @@ func TestWeightsRefuse(t *testing.T) {
 		{"infinite", true, []float64{math.Inf(-1)}, `position "-Inf um"`},
 	} {
 		t.Run(test.name, func(t *testing.T) {
-			w, err := NewWeights(faces, test.mirrored, Spot{}, test.at)
+			w, err := NewWeights(faces, test.mirrored, 0, Spot{}, test.at)
 			var input *thermal.InputError
 			if w != nil || !errors.As(err, &input) || !strings.Contains(err.Error(), test.want) {
 				t.Errorf("got %v, %v, want %s", w, err, test.want)
@@ -332,13 +332,13 @@ func TestWeightsRefuse(t *testing.T) {
 		})
 	}
 	t.Run("no more than 20", func(t *testing.T) {
-		_, err := NewWeights(faces, false, Spot{}, slices.Repeat([]float64{-1}, 100))
+		_, err := NewWeights(faces, false, 0, Spot{}, slices.Repeat([]float64{-1}, 100))
 		if n := strings.Count(err.Error(), "outside"); n != maxProblems {
 			t.Errorf("%d problems, want %d", n, maxProblems)
 		}
 	})
 	t.Run("round-off at the ends is no harm", func(t *testing.T) {
-		if _, err := NewWeights(faces, false, Spot{}, []float64{-1e-18, math.Nextafter(3e-6, 1)}); err != nil {
+		if _, err := NewWeights(faces, false, 0, Spot{}, []float64{-1e-18, math.Nextafter(3e-6, 1)}); err != nil {
 			t.Error(err)
 		}
 	})
@@ -350,12 +350,13 @@ func TestWeightsPanic(t *testing.T) {
 		name string
 		call func()
 	}{
-		{"two cells", func() { NewWeights(good[:3], false, Spot{}, nil) }},
-		{"faces that fall", func() { NewWeights([]float64{0, 2, 1, 3}, false, Spot{}, nil) }},
-		{"a face that is no number", func() { NewWeights([]float64{0, 1, math.NaN(), 3}, false, Spot{}, nil) }},
-		{"no width", func() { NewWeights(good, false, Spot{Kind: Gaussian}, nil) }},
-		{"endless width", func() { NewWeights(good, false, Spot{TopHat, math.Inf(1)}, nil) }},
-		{"unknown kind", func() { NewWeights(good, false, Spot{7, 1}, nil) }},
+		{"two cells", func() { NewWeights(good[:3], false, 0, Spot{}, nil) }},
+		{"faces that fall", func() { NewWeights([]float64{0, 2, 1, 3}, false, 0, Spot{}, nil) }},
+		{"a face that is no number", func() { NewWeights([]float64{0, 1, math.NaN(), 3}, false, 0, Spot{}, nil) }},
+		{"no width", func() { NewWeights(good, false, 0, Spot{Kind: Gaussian}, nil) }},
+		{"endless width", func() { NewWeights(good, false, 0, Spot{TopHat, math.Inf(1)}, nil) }},
+		{"unknown kind", func() { NewWeights(good, false, 0, Spot{7, 1}, nil) }},
+		{"unknown curve", func() { NewWeights(good, false, 3, Spot{}, nil) }},
 		{"short dst", func() { (&Weights{Row: make([]Sparse, 2)}).Apply(make([]float64, 1), nil) }},
 	} {
 		t.Run(test.name, func(t *testing.T) {
@@ -371,12 +372,83 @@ func TestWeightsPanic(t *testing.T) {
 
 func TestApplyDoesNotAllocate(t *testing.T) {
 	faces := gradedFaces(100)
-	w, err := NewWeights(faces, true, Spot{Gaussian, 1e-6}, []float64{1e-6, 50e-6, 99e-6})
+	w, err := NewWeights(faces, true, 0, Spot{Gaussian, 1e-6}, []float64{1e-6, 50e-6, 99e-6})
 	if err != nil {
 		t.Fatal(err)
 	}
 	dst, cells := make([]float64, 3), make([]float64, 100)
 	if n := testing.AllocsPerRun(10, func() { w.Apply(dst, cells) }); n != 0 {
 		t.Errorf("%g allocations, want none", n)
+	}
+}
+
+// TestWeightsOfCurvedCells: in a cylinder and a ball, whose cells hold means over r dr
+// and r^2 dr, a parabola is seen as it is, at the centre, across it and in a piece; and
+// a cosine with an error of third order.
+func TestWeightsOfCurvedCells(t *testing.T) {
+	const size, order, slack = 80e-6, 3.0, 0.3 // of the order, between grids of 40 to 160 cells
+	rng := rand.New(rand.NewPCG(11, 2))
+	for curve := 1; curve <= 2; curve++ {
+		n := float64(curve) + 1
+		ball := func(faces []float64, integral func(r float64) float64) []float64 {
+			c := means(faces, integral)
+			for i := range c {
+				c[i] *= n * (faces[i+1] - faces[i]) / (math.Pow(faces[i+1], n) - math.Pow(faces[i], n))
+			}
+			return c
+		}
+		for _, mirrored := range []bool{true, false} {
+			tilt, inner := 0.0, 0.0
+			if !mirrored {
+				tilt, inner = 0.7, 20e-6
+			}
+			faces := randomFaces(rng, 40, inner)
+			cells := ball(faces, func(r float64) float64 {
+				return math.Pow(r, n) * (1/n + tilt*r/size/(n+1) + square(r/size)/(n+2))
+			})
+			at := append(randomPositions(rng, 40, faces, mirrored), faces[0], faces[40])
+			w, err := NewWeights(faces, mirrored, curve, Spot{}, at)
+			if err != nil {
+				t.Fatal(err)
+			}
+			got := make([]float64, len(at))
+			w.Apply(got, cells)
+			for i, r := range at {
+				if want := 1 + tilt*r/size + square(r/size); apart(got[i], want, 1e-11) {
+					t.Errorf("curve %d: parabola at %g m: got %.15g, want %.15g", curve, r, got[i], want)
+				}
+			}
+		}
+		var worst []float64
+		for cells := 40; cells <= 160; cells *= 2 {
+			faces := make([]float64, cells+1)
+			for i := range faces {
+				faces[i] = 2 * float64(i) / float64(cells)
+			}
+			c := ball(faces, func(r float64) float64 { // of r cos r, of r^2 cos r
+				return [3]float64{1: r*math.Sin(r) + math.Cos(r), 2: r*r*math.Sin(r) + 2*r*math.Cos(r) - 2*math.Sin(r)}[curve]
+			})
+			var at []float64
+			for x := range 2001 {
+				at = append(at, float64(x)*1e-3)
+			}
+			w, err := NewWeights(faces, true, curve, Spot{}, at)
+			if err != nil {
+				t.Fatal(err)
+			}
+			got, off := make([]float64, len(at)), 0.0
+			w.Apply(got, c)
+			for i, r := range at {
+				off = max(off, math.Abs(got[i]-math.Cos(r)))
+			}
+			worst = append(worst, off)
+		}
+		for i := 1; i < len(worst); i++ {
+			got := math.Log2(worst[i-1] / worst[i])
+			t.Logf("curve %d: error %.3g, order %.2f", curve, worst[i], got)
+			if !(got >= order-slack) {
+				t.Errorf("curve %d: errors %.3g, order %.2f, want %g", curve, worst, got, order)
+			}
+		}
 	}
 }
