@@ -40,6 +40,26 @@ func (c *Curve) at(lnM float64) (value, slope float64) {
 	return c.piece(i - 1).at(lnM)
 }
 
+// bend returns value, slope and second derivative at lnM, where that jumps at a knot
+// from the side above it.
+func (c *Curve) bend(lnM float64) (value, slope, bend float64) {
+	i, found := slices.BinarySearch(c.LnM, lnM)
+	last := len(c.LnM) - 1
+	switch {
+	case found && i < last:
+		return c.ChiSq[i], c.Slope[i], c.piece(i).bend(lnM)
+	case found:
+		return c.ChiSq[i], c.Slope[i], 0
+	case i == 0:
+		return c.ChiSq[0], 0, 0
+	case i > last:
+		return c.ChiSq[last], 0, 0
+	}
+	q := c.piece(i - 1)
+	value, slope = q.at(lnM)
+	return value, slope, q.bend(lnM)
+}
+
 // cubic is one piece of a curve: value and slope at both ends.
 type cubic struct{ x0, x1, y0, y1, s0, s1 float64 }
 
@@ -55,6 +75,16 @@ func (q cubic) at(x float64) (value, slope float64) {
 	b := 3*rise - h*(2*q.s0+q.s1)
 	a := h*(q.s0+q.s1) - 2*rise
 	return q.y0 + t*(h*q.s0+t*(b+t*a)), q.s0 + t*(2*b+3*t*a)/h
+}
+
+// bend returns the second derivative at x.
+func (q cubic) bend(x float64) float64 {
+	h := q.x1 - q.x0
+	t := (x - q.x0) / h
+	rise := q.y1 - q.y0
+	b := 3*rise - h*(2*q.s0+q.s1)
+	a := h*(q.s0+q.s1) - 2*rise
+	return (2*b + 6*a*t) / (h * h)
 }
 
 // turns returns the ends of the piece and, between them, where it turns,

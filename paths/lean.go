@@ -1,9 +1,9 @@
 package paths
 
 import (
+	"cmp"
 	"math"
-
-	"gonum.org/v1/gonum/optimize"
+	"slices"
 )
 
 // LawPrior is how well a law is known: the standard deviations of ln D in the
@@ -24,21 +24,26 @@ type LawPrior struct {
 // with a prior, and the smallest deviations with which the path alone passes,
 // misfit(z) <= pass: nil if none do.
 func lean(cs []Curve, laws []LawPrior, pass float64) (least float64, smallest []float64) {
-	l := leaning{cs, laws}
-	_, least = l.settle(1)
-	none := make([]float64, 2*len(laws))
-	if l.misfit(none) <= pass {
-		return least, none
+	l := newLeaning(cs, laws)
+	z := make([]float64, 2*len(laws))
+	if l.misfit(z) <= pass {
+		smallest = slices.Clone(z)
+	}
+	l.settle(z, 1)
+	if least = l.misfit(z) + dot(z, z); smallest != nil {
+		return least, smallest
 	}
 	// the lower the price of a deviation, the closer the path comes to the data
-	if smallest, _ = l.settle(cheapest); !(l.misfit(smallest) <= pass) {
+	if l.settle(z, cheapest); !(l.misfit(z) <= pass) {
 		return least, nil
 	}
+	smallest = slices.Clone(z)
 	low, high := math.Log(cheapest), -math.Log(cheapest)
 	for range priceSteps {
 		mid := (low + high) / 2
-		if z, _ := l.settle(math.Exp(mid)); l.misfit(z) <= pass {
-			smallest, low = z, mid
+		if l.settle(z, math.Exp(mid)); l.misfit(z) <= pass {
+			copy(smallest, z)
+			low = mid
 		} else {
 			high = mid
 		}
@@ -52,10 +57,27 @@ const (
 	priceSteps = 30
 )
 
-// leaning is the curves with the laws that they rest on.
+// leaning is the curves with the laws that they rest on. Laws have no profile in
+// common, so that each law's two deviations are found by themselves.
 type leaning struct {
-	cs   []Curve
-	laws []LawPrior
+	cs     []Curve
+	laws   []LawPrior
+	of     [][]int        // the curves of each law
+	starts [][][2]float64 // of each law, deviations from which to descend
+}
+
+func newLeaning(cs []Curve, laws []LawPrior) *leaning {
+	l := &leaning{cs: cs, laws: laws, of: make([][]int, len(laws)), starts: make([][][2]float64, len(laws))}
+	for k := range laws {
+		l.starts[k] = append(l.starts[k], [2]float64{})
+	}
+	for i := range cs {
+		if k := cs[i].Law - 1; k >= 0 {
+			l.of[k] = append(l.of[k], i)
+			l.starts[k] = append(l.starts[k], leanStarts(&cs[i], laws[k])...)
+		}
+	}
+	return l
 }
 
 func (l *leaning) misfit(z []float64) float64 {
@@ -66,18 +88,18 @@ func (l *leaning) misfit(z []float64) float64 {
 	return sum
 }
 
-// settle minimises misfit(z) + price sum of z^2, from no deviation and from
-// those that bring each profile to its own best.
-func (l *leaning) settle(price float64) (z []float64, value float64) {
-	objective := func(z []float64) float64 { return l.misfit(z) + price*dot(z, z) }
-	z = make([]float64, 2*len(l.laws))
-	value = objective(z)
-	for _, start := range leanStarts(l.cs, l.laws) {
-		if found, v := descend(objective, start); v < value {
-			z, value = found, v
+// settle leaves in z what minimises misfit(z) + price sum of z^2: of each law the
+// best of the descents from all its starts.
+func (l *leaning) settle(z []float64, price float64) {
+	for k := range l.laws {
+		best, least := [2]float64{}, math.Inf(1)
+		for _, start := range l.starts[k] {
+			if at, value := l.descend(k, start, price); value < least {
+				best, least = at, value
+			}
 		}
+		z[2*k], z[2*k+1] = best[0], best[1]
 	}
-	return z, value
 }
 
 func dot(a, b []float64) float64 {
@@ -87,6 +109,85 @@ func dot(a, b []float64) float64 {
 	}
 	return sum
 }
+
+// bowl2 is a function of two deviations about a point: value, gradient and second
+// derivatives.
+type bowl2 struct {
+	value, d, e, dd, de, ee float64
+}
+
+// about is what law k's deviations z cost: the chi-square of its profiles and the
+// price of the deviations.
+func (l *leaning) about(k int, z [2]float64, price float64) bowl2 {
+	b := bowl2{value: price * (z[0]*z[0] + z[1]*z[1]), d: 2 * price * z[0], e: 2 * price * z[1], dd: 2 * price, ee: 2 * price}
+	byD, sigmaE := l.laws[k].LnD, l.laws[k].E
+	for _, i := range l.of[k] {
+		c := &l.cs[i]
+		dev := z[1] * sigmaE
+		byE := sigmaE * (c.ByE[0] + dev*c.ByE[1])
+		value, slope, bend := c.bend(z[0]*byD + dev*(c.ByE[0]+dev*c.ByE[1]/2))
+		b.value += value
+		b.d += slope * byD
+		b.e += slope * byE
+		b.dd += bend * byD * byD
+		b.de += bend * byD * byE
+		b.ee += bend*byE*byE + slope*c.ByE[1]*sigmaE*sigmaE
+	}
+	return b
+}
+
+// step returns where the parabola about the point has its lowest point, its second
+// derivatives raised by damp, and how far that is below. It is not ok where the
+// parabola has none.
+func (b *bowl2) step(damp float64) (d, e, gain float64, ok bool) {
+	dd, ee := b.dd+damp, b.ee+damp
+	det := dd*ee - b.de*b.de
+	if !(dd > 0) || !(det > 0) {
+		return 0, 0, 0, false
+	}
+	d, e = (b.de*b.e-ee*b.d)/det, (b.de*b.d-dd*b.e)/det
+	return d, e, -(b.d*d + b.e*e) / 2, true
+}
+
+// descend finds a minimum of what law k's deviations cost near z by Newton's method,
+// its second derivatives raised as far as it takes to descend (Levenberg 1944, Quart.
+// Appl. Math. 2, 164-168; Marquardt 1963, J. SIAM 11, 431-441).
+func (l *leaning) descend(k int, z [2]float64, price float64) ([2]float64, float64) {
+	at, damp := l.about(k, z, price), 0.0
+	for range leanPatience {
+		d, e, gain, ok := at.step(damp)
+		if ok {
+			next := [2]float64{z[0] + d, z[1] + e}
+			to := l.about(k, next, price)
+			if to.value <= at.value {
+				z, at = next, to
+				if gain < leanError {
+					break
+				}
+				if damp /= leanDamp * leanDamp; damp < leanLeast*(math.Abs(at.dd)+math.Abs(at.ee)) {
+					damp = 0
+				}
+				continue
+			}
+			if gain < leanError {
+				break
+			}
+		}
+		damp = math.Max(leanDamp*damp, leanFirst*(math.Abs(at.dd)+math.Abs(at.ee)))
+	}
+	return z, at.value
+}
+
+// When a fit of deviations has settled, in chi-square; how often it is improved at
+// most; and its damping: the first as a part of the second derivatives, by what it is
+// raised, and below which part it is none.
+const (
+	leanError    = 1e-10
+	leanPatience = 200
+	leanFirst    = 1e-3
+	leanDamp     = 4.0
+	leanLeast    = 1e-4
+)
 
 // shift returns by how much the laws' deviations move the profile along LnM.
 func (c *Curve) shift(z []float64, laws []LawPrior) float64 {
@@ -98,44 +199,26 @@ func (c *Curve) shift(z []float64, laws []LawPrior) float64 {
 	return z[2*k]*laws[k].LnD + e*(c.ByE[0]+e*c.ByE[1]/2)
 }
 
-// leanStarts returns no deviation and, for each profile, the likeliest
-// deviations that bring it to its own lowest point.
-func leanStarts(cs []Curve, laws []LawPrior) [][]float64 {
-	starts := [][]float64{make([]float64, 2*len(laws))}
-	for i := range cs {
-		c := &cs[i]
-		if c.Law == 0 {
-			continue
+// leanStarts returns the likeliest deviations of a law that bring a profile which
+// rests on it to each of its lowest points, mostDips of the lowest.
+func leanStarts(c *Curve, law LawPrior) [][2]float64 {
+	byD, byE := law.LnD, law.E*c.ByE[0]
+	norm := byD*byD + byE*byE
+	if !(norm > 0) {
+		return nil
+	}
+	type dip struct{ x, y float64 }
+	var dips []dip
+	for i := range len(c.LnM) - 1 {
+		x, y := c.piece(i).lowest()
+		if c.dips(i, x) && (len(dips) == 0 || dips[len(dips)-1].x != x) {
+			dips = append(dips, dip{x, y})
 		}
-		k := c.Law - 1
-		lnM, _ := c.Lowest()
-		byD, byE := laws[k].LnD, laws[k].E*c.ByE[0]
-		if norm := byD*byD + byE*byE; norm > 0 {
-			z := make([]float64, 2*len(laws))
-			z[2*k], z[2*k+1] = lnM*byD/norm, lnM*byE/norm
-			starts = append(starts, z)
-		}
+	}
+	slices.SortStableFunc(dips, func(a, b dip) int { return cmp.Compare(a.y, b.y) })
+	var starts [][2]float64
+	for _, at := range dips[:min(len(dips), mostDips)] {
+		starts = append(starts, [2]float64{at.x * byD / norm, at.x * byE / norm})
 	}
 	return starts
 }
-
-// descend finds a minimum of f near z by the method of Nelder and Mead 1965,
-// Computer J. 7, 308-313.
-func descend(f func([]float64) float64, z []float64) ([]float64, float64) {
-	if len(z) == 0 {
-		return z, f(z)
-	}
-	result, err := optimize.Minimize(optimize.Problem{Func: f}, z, &optimize.Settings{
-		Converger: &optimize.FunctionConverge{Absolute: leanError, Iterations: leanPatience},
-	}, &optimize.NelderMead{})
-	if err != nil || result == nil {
-		return z, f(z)
-	}
-	return result.X, result.F
-}
-
-// When a fit of deviations has settled, in chi-square.
-const (
-	leanError    = 1e-7
-	leanPatience = 40
-)
