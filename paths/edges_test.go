@@ -51,6 +51,22 @@ func TestFreeEdgesAreForetold(t *testing.T) {
 	}
 }
 
+// Spots as wide as their spacing touch and share nothing, whatever the last bits of
+// the positions say: 16.8 um and 24.8 um differ by a little less than 8 um.
+func TestTouchingSpotsDoNotOverlap(t *testing.T) {
+	for _, first := range []float64{20, 16.8, 0.3} {
+		for width, want := range map[float64]bool{8: false, 8.1: true} {
+			line := &traverse.Traverse{Spot: traverse.Spot{Kind: traverse.TopHat, Width: width * um}}
+			for i := range 40 {
+				line.Position = append(line.Position, (first+8*float64(i))*1e-6)
+			}
+			if got := overlapping(line); got != want {
+				t.Errorf("spots of %g um every 8 um from %g um: overlapping %t, want %t", width, first, got, want)
+			}
+		}
+	}
+}
+
 // Too many points with overlapping spots are refused with a way out.
 func TestOverlapIsBounded(t *testing.T) {
 	c := sharp()

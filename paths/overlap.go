@@ -58,10 +58,16 @@ func overlapWhite(e *study.Element) (*mat.TriDense, error) {
 
 const mostOverlapping = 1000
 
-// overlapping reports whether neighbouring spots cover the same ground.
+// overlapping reports whether neighbouring spots cover the same ground. Spots that
+// touch do not, though the last bits of positions may say that they do.
 func overlapping(t *traverse.Traverse) bool {
-	return t.Spot.Kind != traverse.Point && len(t.Position) > 1 && fullWidth(t.Spot) > leastSpacingOf(t.Position)
+	return t.Spot.Kind != traverse.Point && len(t.Position) > 1 && fullWidth(t.Spot) > leastSpacingOf(t.Position)*(1+touching)
 }
+
+// touching is how much wider than their spacing spots are taken to be no wider,
+// relative: far more than the round-off of positions and far less than a position
+// is known to.
+const touching = 1e-6
 
 func fullWidth(s traverse.Spot) float64 {
 	if s.Kind == traverse.Gaussian {
