@@ -185,8 +185,8 @@ func courseText(c *paths.Course, moments []string) bytes.Buffer {
 }
 
 func writeElement(text *bytes.Buffer, c *paths.Course, e *paths.ElementCourse, moments []string) {
-	fmt.Fprintf(text, "\n%s in %s: G = %s m2, sqrt(2 G) = %s um\n", e.Element.Name, e.Crystal.Name,
-		number(math.Exp(e.LnG)), number(math.Sqrt2*math.Exp(e.LnG/2)*1e6))
+	fmt.Fprintf(text, "\n%s in %s: G = %s m2, sqrt(2 G) = %s\n", e.Element.Name, e.Crystal.Name,
+		number(math.Exp(e.LnG)), blurText(e.Crystal, e.Element, e.LnG))
 	if e.GEnough {
 		fmt.Fprintf(text, "The profile knows the path by G alone (%s): the order of heating cannot be seen in it.\n", e.WhyG)
 	} else {

@@ -327,7 +327,18 @@ func fitCells(q *paths.ProfileResult, free []paths.FreeFit) []string {
 		}
 		cells = append(cells, cell)
 	}
-	return append(cells, number(math.Sqrt2*math.Exp(q.LnG/2)*1e6)+" um", celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")
+	return append(cells, blurText(q.Crystal, q.Element, q.LnG), celsius(q.StandIn), oneDigit(q.NumErr)+" sigma")
+}
+
+// blurText is sqrt(2 G) with the integral exp(lnG) of the law, m2; from the slowest to
+// the fastest place where D differs within the crystal.
+func blurText(c *study.Crystal, e *study.Element, lnG float64) string {
+	least, most := c.Factors(e)
+	blur := func(factor float64) string { return number(math.Sqrt(2*factor) * math.Exp(lnG/2) * 1e6) }
+	if slow, fast := blur(least), blur(most); slow != fast {
+		return slow + " to " + fast + " um"
+	}
+	return blur(most) + " um"
 }
 
 // timesText is by what factor diffusion should differ; where the data set no
