@@ -16,7 +16,8 @@ import (
 type Course struct {
 	plan   *Plan
 	spans  []span
-	stage  int       // that it ends in
+	last   span      // of no time, in which it ends
+	halved *Course   // of the halved plan, where that has other layers to move over
 	events []float64 // s
 	route  route     // of the span in hand
 }
@@ -24,6 +25,7 @@ type Course struct {
 // span is the stretch between two events.
 type span struct {
 	stage        int
+	laid         float64 // at which material is laid down when it begins, if the rim is not sealed
 	lnG          float64 // ln of the integral of D dt, m2
 	inner, outer ending
 	coldness     means // of 1/T, 1/K, over each step, weighted by D; for coupled problems only
@@ -79,7 +81,7 @@ func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 	}
 	dst.plan = p
 	dst.spans = dst.spans[:0]
-	dst.stage = p.stageAt(until)
+	p.begin(&dst.last, h, until)
 	from := 0.0
 	dst.events = p.eventsOn(dst.events, h)
 	for i := 0; i <= len(dst.events) && from < until; i++ {
@@ -89,6 +91,10 @@ func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 		}
 		p.span(dst.addSpan(), &dst.route, h, from, to)
 		from = to
+	}
+	if len(p.problem.Moves) > 0 && p.halved != nil {
+		dst.halved = new(Course)
+		return p.halved.Course(dst.halved, h, until)
 	}
 	return nil
 }
@@ -104,9 +110,7 @@ func (c *Course) addSpan() *span {
 }
 
 func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
-	s.stage = p.stageAt(t0)
-	s.inner.begin(p.problem.Inner, t0)
-	s.outer.begin(p.problem.Outer, t0)
+	p.begin(s, h, t0)
 	law, coupled := &p.problem.Law, p.problem.LnK != nil
 	if !s.inner.follows(p.problem.Inner) && !s.outer.follows(p.problem.Outer) && !coupled && p.problem.source == nil {
 		s.lnG = law.LnIntegral(h, t0, t1)
@@ -125,6 +129,25 @@ func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
 	}
 	if p.problem.source != nil {
 		s.middles, s.widths = p.clock(r.times)
+	}
+}
+
+// begin puts the span to what is in force from t on, s.
+func (p *Plan) begin(s *span, h *thermal.History, t float64) {
+	s.stage = p.stageAt(t)
+	s.inner.begin(p.problem.Inner, t)
+	s.outer.begin(p.problem.Outer, t)
+	if len(p.problem.Moves) == 0 || !s.outer.open {
+		return
+	}
+	switch r := &p.problem.Outer[s.outer.rim]; {
+	case r.Given != nil:
+		s.laid = r.Given.At(t + nudge*(t-p.stages[max(s.stage-1, 0)].from))
+	case r.Equilibrium != nil:
+		_, temp := h.At(t)
+		s.laid = r.Equilibrium.at(temp)
+	default:
+		s.laid = r.Value
 	}
 }
 

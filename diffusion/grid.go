@@ -15,6 +15,8 @@ const (
 	// the leading error of the flux on a graded grid stays that of an even one.
 	minSegment = 8
 	steepest   = 1.2
+	// cellsOfLayer is the least number in a layer over which the outer face moves.
+	cellsOfLayer = 2
 	// perFinest is how many widths w of the grading go into the smallest length
 	// that matters.
 	perFinest = 4
@@ -33,7 +35,8 @@ type grid struct {
 }
 
 // boundaries returns the radii around which cells are refined: every zone
-// boundary, and the ends that are not sealed for good.
+// boundary, where a crystal that grows ended before, and the ends that are not sealed
+// for good.
 func (p *Problem) boundaries() []float64 {
 	var at []float64
 	if open(p.Inner) {
@@ -41,6 +44,9 @@ func (p *Problem) boundaries() []float64 {
 	}
 	for _, z := range p.Zones[:len(p.Zones)-1] {
 		at = append(at, z.Outer)
+	}
+	if len(p.Moves) > 0 && p.before() < p.size() {
+		at = append(at, p.before())
 	}
 	if open(p.Outer) {
 		at = append(at, p.size())
@@ -82,9 +88,10 @@ func (g grading) integral(r float64) float64 {
 func layFaces(p *Problem, cells int, finest float64) []float64 {
 	g := grading{at: p.boundaries(), w: finest / perFinest}
 	marks := segments(p)
-	for i := 1; i < len(marks); i++ {
+	for i := 1; i < len(marks)-max(0, len(p.layers())-1); i++ {
 		g.w = math.Min(g.w, (marks[i]-marks[i-1])/perFinest)
 	}
+	layers := max(0, len(p.layers())-1) // the last of the segments
 	last := len(marks) - 1
 	g.even = 1
 	if len(g.at) > 0 {
@@ -92,31 +99,39 @@ func layFaces(p *Problem, cells int, finest float64) []float64 {
 		g.even = around * evenShare / (1 - evenShare) / (marks[last] - marks[0])
 	}
 	for {
-		faces := spread(g, marks, cells)
-		if steepness(faces) <= steepest {
+		faces := spread(g, marks, layers, cells)
+		if len(p.Moves) > 0 || steepness(faces) <= steepest {
 			return faces
 		}
 		cells += cells/8 + 2
 	}
 }
 
-// segments returns the ends of the crystal and the zone boundaries between.
+// segments returns the ends of the crystal, the zone boundaries between and the bounds
+// of layers, if the outer face moves.
 func segments(p *Problem) []float64 {
 	marks := []float64{p.R0}
-	for _, z := range p.Zones {
+	for _, z := range p.Zones[:len(p.Zones)-1] {
 		marks = append(marks, z.Outer)
 	}
-	return marks
+	if layers := p.layers(); layers != nil {
+		return append(marks, layers...)
+	}
+	return append(marks, p.size())
 }
 
-func spread(g grading, marks []float64, cells int) []float64 {
+func spread(g grading, marks []float64, layers, cells int) []float64 {
 	first, last := marks[0], marks[len(marks)-1]
 	total := g.integral(last) - g.integral(first)
 	faces := []float64{first}
 	for i := 1; i < len(marks); i++ {
 		a, b := marks[i-1], marks[i]
 		share := (g.integral(b) - g.integral(a)) / total
-		n := max(minSegment, 2*int(math.Round(share*float64(cells)/2)))
+		least := minSegment
+		if i >= len(marks)-layers {
+			least = cellsOfLayer
+		}
+		n := max(least, 2*int(math.Round(share*float64(cells)/2)))
 		faces = g.divide(faces, a, b, n)
 	}
 	return faces

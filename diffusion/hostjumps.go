@@ -87,7 +87,7 @@ func (p *Plan) addWall(err, start []float64, job Job, stage int, outer bool) {
 		n := p.stages[stage].cells()
 		cell, next, sign, rims = n-1, n-2, 1, p.problem.Outer
 	}
-	if !outer && p.problem.R0 == 0 && p.problem.Shape != Slab || next < 0 || next == len(err) || endingAt(rims, p.stages[stage].from).open {
+	if !outer && p.problem.R0 == 0 && p.problem.Shape != Slab || next < 0 || next >= len(err) || cell >= len(err) || endingAt(rims, p.stages[stage].from).open {
 		return
 	}
 	begun := false

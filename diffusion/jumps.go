@@ -89,18 +89,18 @@ func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
 				p.addHostEdge(err, edge, job, s)
 			}
 		}
-		if s == job.Course.stage {
+		if s == job.Course.last.stage {
 			break
 		}
 	}
 	if p.host != nil {
 		p.addWall(err, p.fresh[j], job, 0, false)
-		for s := range p.stages[:job.Course.stage+1] {
+		for s := range p.stages[:job.Course.last.stage+1] {
 			p.addWall(err, p.fresh[j], job, s, true)
 		}
 	}
 	p.addRim(err, f, job, j, rim{to: len(p.stages)})
-	for s := range p.stages[:job.Course.stage+1] {
+	for s := range p.stages[:job.Course.last.stage+1] {
 		p.addRim(err, f, job, j, rim{cell: p.stages[s].cells() - 1, side: 1, from: s, to: s + 1})
 	}
 }
@@ -179,6 +179,9 @@ type rim struct {
 // of twice its size between two cells, of which one side is seen. Where more is added
 // there, no rim makes good any more for what has not come in; that spreads.
 func (p *Plan) addRim(err []float64, f *Field, job Job, j int, r rim) {
+	if r.cell >= len(err) {
+		return // it is gone
+	}
 	h := p.width(r.cell)
 	perG := p.problem.factor(p.grid.centres[r.cell]) / (h * h)
 	left, was, sealed := job.during(r.from, r.to), 0.0, true

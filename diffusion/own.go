@@ -98,8 +98,9 @@ func (p *Plan) runOwn(dst [2]*Field, jobs [2]Job, rough bool) {
 	}
 	for n := range its {
 		if f := its[n].f; f != nil {
-			p.grow(f, &its[n].book, its[n].job.Course.stage)
+			p.grow(f, &its[n].book, &its[n].job.Course.last)
 			its[n].book.close(&f.Stats, p, f.Cols[0][:p.stages[f.stage].cells()])
+			p.trim(f)
 		}
 	}
 }
@@ -111,7 +112,7 @@ func (t *iteration) enter(i int) {
 		return
 	}
 	sp := &t.job.Course.spans[i]
-	t.plan.grow(t.f, &t.book, sp.stage)
+	t.plan.grow(t.f, &t.book, sp)
 	t.c = t.f.Cols[0][:t.plan.stages[sp.stage].cells()]
 	t.f.atSpan = t.plan.appendEnds(t.f.atSpan, t.c)
 	if t.g = sp.integral(t.job.LnM); t.g != 0 {

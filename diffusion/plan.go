@@ -57,7 +57,9 @@ func Compile(p *Problem, o Options) (*Plan, error) {
 		return nil, err
 	}
 	if half := everySecond(p, faces); half != nil {
-		if plan.halved, err = compile(p, half, steps); err != nil {
+		thick := *p
+		thick.thick = true
+		if plan.halved, err = compile(&thick, half, steps); err != nil {
 			return nil, err
 		}
 	}
@@ -69,6 +71,11 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 	if err := plan.layStages(); err != nil {
 		return nil, err
 	}
+	for _, s := range plan.stages[1:] {
+		plan.events = append(plan.events, s.from)
+	}
+	slices.Sort(plan.events)
+	plan.events = slices.Compact(plan.events)
 	if p.LnK != nil {
 		plan.host = p.layHost(plan.grid)
 	}
@@ -116,8 +123,8 @@ func (o Options) faces(p *Problem) ([]float64, error) {
 			return nil, fmt.Errorf("diffusion: the boundary at %g m is no face", mark)
 		}
 	}
-	if first, last := o.Faces[0], o.Faces[len(o.Faces)-1]; first != p.R0 || last != p.size() {
-		return nil, fmt.Errorf("diffusion: the faces reach from %g to %g m, the crystal from %g to %g m", first, last, p.R0, p.size())
+	if first, last := o.Faces[0], o.Faces[len(o.Faces)-1]; first != p.R0 || last != p.far() {
+		return nil, fmt.Errorf("diffusion: the faces reach from %g to %g m, the crystal from %g to %g m", first, last, p.R0, p.far())
 	}
 	return o.Faces, nil
 }
@@ -213,17 +220,20 @@ func within(times []float64, lo, hi float64) []float64 {
 }
 
 // Faces returns the cell faces from the inside outwards, m. Not to be changed.
-func (p *Plan) Faces() []float64 { return p.grid.faces }
+func (p *Plan) Faces() []float64 { return p.grid.faces[:p.cells()+1] }
 
 // Centres returns the middles of the cells, m. Not to be changed.
-func (p *Plan) Centres() []float64 { return p.grid.centres }
+func (p *Plan) Centres() []float64 { return p.grid.centres[:p.cells()] }
 
 // Volumes returns the integral of r^n dr over each cell. Not to be changed.
-func (p *Plan) Volumes() []float64 { return p.grid.volumes }
+func (p *Plan) Volumes() []float64 { return p.grid.volumes[:p.cells()] }
+
+// cells is how many there are at the end of a path with all moves.
+func (p *Plan) cells() int { return p.outside[len(p.outside)-1] }
 
 // Start returns the cell means of column j as they would be without diffusion: 0 the
 // profile, then the free values. Not to be changed.
-func (p *Plan) Start(j int) []float64 { return p.starts[j] }
+func (p *Plan) Start(j int) []float64 { return p.starts[j][:p.cells()] }
 
 // GEnough reports whether the final profile depends on the history through the
 // diffusion integral alone, and why or why not. It is decided from the kinds
@@ -231,6 +241,9 @@ func (p *Plan) Start(j int) []float64 { return p.starts[j] }
 func (p *Plan) GEnough() (why string, ok bool) {
 	if p.host != nil {
 		return "in a zoned host the element's equilibrium moves with temperature", false
+	}
+	if len(p.problem.Moves) > 0 {
+		return "the outer face moves along the path", false
 	}
 	if len(p.stages) > 1 {
 		return "zones are added along the path, and each boundary knows the diffusion integral since its own addition", false

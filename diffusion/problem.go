@@ -88,13 +88,16 @@ type Problem struct {
 	// its crystal/melt partition coefficient in a host of composition x at a
 	// temperature, K. The flux is then -D (dC/dr - C d(ln K)/dr), and an element at
 	// rest is proportional to K, not flat. nil is no coupling.
-	LnK    func(x, temp float64) float64
-	Host   func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
-	Own    func(c float64) float64 // factor on D at the element's own value c, never negative; nil is 1; leaves no value free
-	Inner  []Rim                   // nil is sealed (at the centre, symmetry)
-	Outer  []Rim                   // nil is sealed
-	Free   []Basis
-	source func(r, t float64) float64 // dC/dt beside diffusion, per s, for manufactured solutions; set by tests only, with Own
+	LnK     func(x, temp float64) float64
+	Host    func(r float64) float64 // added to the zones' Host; smooth within each zone; nil is nothing
+	Own     func(c float64) float64 // factor on D at the element's own value c, never negative; nil is 1; leaves no value free
+	Inner   []Rim                   // nil is sealed (at the centre, symmetry)
+	Outer   []Rim                   // nil is sealed
+	Moves   []Move                  // of the outer face, in the order of time, after all zones were added; the zones are those after them
+	Free    []Basis
+	thick   bool                       // with layers of twice the thickness, for their error
+	layered int                        // layers over which the face moves; 0 is defaultLayers; set by tests
+	source  func(r, t float64) float64 // dC/dt beside diffusion, per s, for manufactured solutions; set by tests only, with Own
 }
 
 // size returns the outer radius of the crystal, m.
@@ -116,6 +119,9 @@ func (p *Problem) check() error {
 		return err
 	}
 	if err := p.checkZones(); err != nil {
+		return err
+	}
+	if err := p.checkMoves(); err != nil {
 		return err
 	}
 	if err := p.checkRims("inner", p.Inner); err != nil {

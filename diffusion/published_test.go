@@ -38,7 +38,7 @@ func TestPublished(t *testing.T) {
 		{"H01", fujita}, {"H02", ownUptake}, {"H03", emptyHalfSpace}, {"H04", travellingWave}, {"H05", weightedMean},
 		{"I01", amplification}, {"I02", eulerAmplification}, {"I03", stepByHand}, {"I04", spike},
 		{"I05", observedOrder}, {"I06", richardson}, {"I07", balance},
-		{"L01", caseDepth}, {"L02", carburising}, {"L04", homogenisation}, {"N02", zonesAtRest}, {"N03", olderBoundaries},
+		{"L01", caseDepth}, {"L02", carburising}, {"L04", homogenisation}, {"N01", movingFace}, {"N02", zonesAtRest}, {"N03", olderBoundaries},
 	}
 	for _, check := range checks {
 		published.Run(t, check.id, check.check)

@@ -96,6 +96,7 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 	if dst.other == nil {
 		dst.other = new(Field)
 	}
+	whole := job
 	p.runOne(dst, job, false)
 	n, cells := len(dst.Cols), len(dst.Cols[0])
 	dst.StepErr, dst.CellErr = resizedCols(dst.StepErr, n, cells), resizedCols(dst.CellErr, n, cells)
@@ -106,10 +107,13 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 			dst.StepErr[j][i] = (dst.other.Cols[j][i] - c[i]) * (safety / gain)
 		}
 	}
+	if job.Course.halved != nil {
+		job.Course = job.Course.halved
+	}
 	p.halved.runOne(dst.other, job, false)
 	for j, c := range dst.Cols {
 		p.cellError(dst.CellErr[j], c, dst.other.Cols[j], gain)
-		p.addJumps(dst.CellErr[j], dst, job, j)
+		p.addJumps(dst.CellErr[j], dst, whole, j)
 		for i := range dst.CellErr[j] {
 			dst.CellErr[j][i] *= safety
 		}
@@ -137,9 +141,12 @@ func (p *Plan) cellError(dst, fine, coarse []float64, gain float64) {
 // gain returns what the error of a run in half the steps or cells is more than that
 // of a full run, as a part of the latter: 2^p - 1 for order p. That is two; but
 // where D follows the element, or a rim exchanges, fronts and thin layers may show
-// no more than shownOrder.
+// no more than shownOrder; and beside a rim that moves the layers show no more than 1.
 func (p *Problem) gain() float64 {
 	exchanges := func(r Rim) bool { return r.Kind == Transfer }
+	if len(p.Moves) > 0 {
+		return 1
+	}
 	if p.Own != nil || slices.ContainsFunc(p.Inner, exchanges) || slices.ContainsFunc(p.Outer, exchanges) {
 		return math.Pow(2, shownOrder) - 1
 	}
@@ -159,6 +166,13 @@ func (p *Plan) reset(f *Field) {
 	p.noteEdges(f)
 }
 
+// trim takes cells off that no crystal has in the end.
+func (p *Plan) trim(f *Field) {
+	for j := range f.Cols {
+		f.Cols[j] = f.Cols[j][:p.cells()]
+	}
+}
+
 // runOne takes the start through all spans of the job's course.
 func (p *Plan) runOne(f *Field, job Job, rough bool) {
 	if p.problem.Own != nil {
@@ -171,7 +185,7 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 	for i := range job.Course.spans {
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)
-		p.grow(f, &book, sp.stage)
+		p.grow(f, &book, sp)
 		n := p.stages[sp.stage].cells()
 		for _, c := range f.Cols {
 			f.atSpan = p.appendEnds(f.atSpan, c[:n])
@@ -192,8 +206,9 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 			}
 		}
 	}
-	p.grow(f, &book, job.Course.stage)
+	p.grow(f, &book, &job.Course.last)
 	book.close(&f.Stats, p, f.Cols[0][:p.stages[f.stage].cells()])
+	p.trim(f)
 }
 
 // operator returns what solve k of a span needs of the grid: the plan's own, or

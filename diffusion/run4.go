@@ -38,18 +38,24 @@ func (p *Plan) runFour(dst []Field, jobs []Job) {
 	for i := range spans {
 		cr.span(i)
 	}
-	cr.grow(jobs[0].Course.stage)
+	cr.grow(&jobs[0].Course.last)
 	for k := range dst {
 		cr.fetch(k)
 		cr.books[k].close(&dst[k].Stats, p, dst[k].Cols[0][:p.stages[cr.stage].cells()])
+		p.trim(&dst[k])
 	}
 }
 
-// grow takes the crew to a stage, which is the same for all: see abreast.
-func (cr *crew) grow(to int) {
+// grow takes the crew to the stage in which a span begins, which is the same for all:
+// see abreast.
+func (cr *crew) grow(begins *span) {
 	p := cr.plan
-	for cr.stage < to {
+	for cr.stage < begins.stage {
+		before := p.stages[cr.stage].cells()
 		cr.stage++
+		if st := &p.stages[cr.stage]; st.moved {
+			cr.move(before, st, begins)
+		}
 		for j, c := range cr.dst[0].cols4 {
 			for i, v := range p.stages[cr.stage].tails[j] {
 				for k := range c[i] {
@@ -60,6 +66,24 @@ func (cr *crew) grow(to int) {
 		c := cr.dst[0].cols4[0]
 		for k := range cr.dst {
 			cr.books[k].grow(p, cr.stage, func(i int) float64 { return c[i][k] })
+		}
+	}
+}
+
+// move is what grow and move of a plan do for one run.
+func (cr *crew) move(before int, st *stage, begins *span) {
+	p, cols := cr.plan, cr.dst[0].cols4
+	for k := range cr.dst {
+		for i := st.cells(); i < before; i++ {
+			cr.books[k].put(-p.grid.volumes[i] * cols[0][i][k])
+		}
+	}
+	for j, c := range cols {
+		laid, ok := p.lays(&begins.outer, begins.laid, j)
+		for i := before; i < st.cells(); i++ {
+			if c[i] = c[before-1]; ok {
+				c[i] = four{laid, laid, laid, laid}
+			}
 		}
 	}
 }
@@ -77,7 +101,7 @@ func (cr *crew) span(i int) {
 		}
 	}
 	if i < len(cr.jobs[0].Course.spans) {
-		cr.grow(cr.jobs[0].Course.spans[i].stage)
+		cr.grow(&cr.jobs[0].Course.spans[i])
 	}
 	if cr.g == (four{}) {
 		return

@@ -16,6 +16,8 @@ import (
 type stage struct {
 	from  float64     // s from the start of the path; 0 in the first
 	zones [2]int      // those that are added with it: from the first to before the second
+	outer float64     // how far out it reaches, m
+	moved bool        // it begins because the outer face has moved
 	still operator    // of the cells that are there: without coupling the same in every solve; with it, what a resting lane has
 	tails [][]float64 // of each column, what edges that come with the stage add to the cells that were there before
 }
@@ -33,7 +35,12 @@ func (p *Plan) layStages() error {
 			before++
 		}
 		p.stages[before].zones[1] = i + 1
+		p.stages[before].outer = zones[i].Outer
 		p.outside = append(p.outside, slices.Index(p.grid.faces, zones[i].Outer))
+	}
+	if bounds := p.problem.layers(); bounds != nil {
+		p.stages[len(p.stages)-1].outer = p.problem.turns()[0]
+		p.addMoves(bounds)
 	}
 	cond := p.problem.conductances(p.grid)
 	for i, k := range cond {
@@ -43,7 +50,7 @@ func (p *Plan) layStages() error {
 		}
 	}
 	for i := range p.stages {
-		n := p.outside[p.stages[i].zones[1]-1]
+		n := slices.Index(p.grid.faces, p.stages[i].outer)
 		op := operator{vol: p.grid.volumes[:n], cond: cond[:n+1], out: 1 / p.problem.halfCell(p.grid.faces[n], p.grid.faces[n-1])}
 		if p.problem.LnK != nil {
 			ones := slices.Repeat([]float64{1}, n)
@@ -62,8 +69,15 @@ func (p *Plan) addColumn(values []float64, profile func(r float64) float64) erro
 	var means []float64 // of the zones that are there
 	for s := range p.stages {
 		st := &p.stages[s]
+		if st.moved {
+			st.tails = append(st.tails, nil)
+			continue
+		}
 		tail := slices.Clone(means)
-		means = make([]float64, st.cells())
+		means = make([]float64, n)
+		if s+1 < len(p.stages) && !p.stages[s+1].moved {
+			means = means[:st.cells()]
+		}
 		p.problem.cellMeans(means, p.grid, values[:st.zones[1]])
 		copy(fresh[len(tail):], means[len(tail):])
 		for i, v := range tail {
@@ -105,11 +119,20 @@ func (p *Plan) abreast(jobs []Job) int {
 	return n
 }
 
-// grow takes a run to a stage.
-func (p *Plan) grow(f *Field, b *book, to int) {
-	for f.stage < to {
+// grow takes a run to the stage in which a span begins.
+func (p *Plan) grow(f *Field, b *book, begins *span) {
+	for f.stage < begins.stage {
+		before := p.stages[f.stage].cells()
 		f.stage++
 		st := &p.stages[f.stage]
+		if st.moved {
+			for i := st.cells(); i < before; i++ {
+				b.put(-p.grid.volumes[i] * f.Cols[0][i])
+			}
+			for j, c := range f.Cols {
+				p.move(c, j, before, st, begins)
+			}
+		}
 		for j, c := range f.Cols {
 			for i, v := range st.tails[j] {
 				c[i] += v
