@@ -64,8 +64,9 @@ type LawsAllowed struct {
 // Leaning is by how many standard deviations, of ln D and E together, a path
 // leans on a law.
 type Leaning struct {
-	Law   string
-	Sigma float64
+	Law    string
+	Sigma  float64
+	LnD, E float64 // of each, with its sign: above 0 if it is to be larger
 }
 
 // Judge weighs a path by the curves of the profiles it must satisfy, which
@@ -147,7 +148,7 @@ func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) Laws
 	}
 	out.Leaning = []Leaning{}
 	for k, law := range laws {
-		out.Leaning = append(out.Leaning, Leaning{law.Key, math.Hypot(z[2*k], z[2*k+1])})
+		out.Leaning = append(out.Leaning, Leaning{law.Key, math.Hypot(z[2*k], z[2*k+1]), z[2*k], z[2*k+1]})
 	}
 	if len(laws) > 0 && dot(z, z) <= Critical(confidence, len(laws)) {
 		out.Verdict = Reproduces

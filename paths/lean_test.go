@@ -215,6 +215,8 @@ func TestVerdictWithLawErrors(t *testing.T) {
 			t.Fatalf("leaning on %+v, want on a", o.WithLaws.Leaning)
 		}
 		near(t, "leaning", o.WithLaws.Leaning[0].Sigma, want, leanZ*math.Max(1, want))
+		near(t, "leaning on ln D", o.WithLaws.Leaning[0].LnD, want, leanZ*math.Max(1, want))
+		near(t, "leaning on E, which has no error", o.WithLaws.Leaning[0].E, 0, leanZ)
 		near(t, "misfit", o.WithLaws.Misfit, floor+square(test.at)/(width*width+0.36), leanChiSq)
 		near(t, "tail", o.WithLaws.Tail, Tail(floor+square(test.at)/(width*width+0.36), 20), 1e-5)
 	}

@@ -196,7 +196,7 @@ func ownBests(r *paths.Result) []ownBest {
 func newWithLaws(l *paths.LawsAllowed) *withLaws {
 	out := &withLaws{Verdict: l.Verdict.String(), Tail: bounded(l.Tail), Misfit: bounded(l.Misfit), Leaning: []lawLeaning{}}
 	for _, on := range l.Leaning {
-		out.Leaning = append(out.Leaning, lawLeaning{on.Law, on.Sigma})
+		out.Leaning = append(out.Leaning, lawLeaning{on.Law, on.Sigma, on.LnD, on.E})
 	}
 	out.Passes = l.Leaning != nil
 	return out

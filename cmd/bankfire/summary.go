@@ -119,7 +119,9 @@ type withLaws struct {
 
 type lawLeaning struct {
 	Law   string  `json:"law"`
-	Sigma float64 `json:"sigma"`
+	Sigma float64 `json:"sigma"` // of the two together
+	LnD   float64 `json:"D_sigma"`
+	E     float64 `json:"E_sigma"`
 }
 
 type timeAbove struct {

@@ -223,6 +223,7 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict == paths.Barred || shared && o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
+			writeLeaning(w, &r.Paths[i], len(r.Laws))
 		} else if within := withinCrystals(&r.Paths[i]); !shared && len(within) > 0 {
 			fmt.Fprintf(w, "Along %s elements of one crystal are %s.\n", quoted(r.Paths[i].Path.Name), oddsInWords(&r.Paths[i], within))
 		}
