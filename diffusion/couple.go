@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"sync/atomic"
+
+	"gonum.org/v1/gonum/integrate/quad"
 )
 
 // A trace element in a zoned host follows u = C/K, K its crystal/melt partition
@@ -14,8 +16,8 @@ import (
 // Between two cells the flux is (u_L - u_R)/R with R the integral of
 // dr/(r^n D K) over the two half cells (exponential fitting: Scharfetter and
 // Gummel 1969, IEEE Trans. Electron Devices 16, 64-77). So an element in
-// equilibrium stays so to round-off across any jump of the host, and with V K in
-// the place of V the matrix is the one of sweep.go. C is the conserved variable,
+// equilibrium stays so to round-off across any jump of the host and in any that is
+// smooth, and with V K in the place of V the matrix is the one of sweep.go. C is the conserved variable,
 // and K is evaluated anew in every solve, at the step's mean of 1/T. Only ratios
 // of K count: all are in units of the K of one cell.
 
@@ -45,7 +47,8 @@ type hostGrid struct {
 	half    []float64 // of each cell, the integral of dr/(r^n D) over the half at its inner face and the half at its outer
 	x       []float64 // composition in the middle of each cell
 	atFaces []float64 // of each cell, at its inner and its outer face, inside it
-	weights []float64 // of each cell, of K at its inner face, in its middle and at its outer face in its mean
+	inside  []float64 // of each cell, at profilePoints places; nil in steps, where a cell has one composition
+	weights []float64 // of K there in its mean
 
 	panels []atomic.Pointer[panel] // by 1/T, made when first asked for
 	width  float64                 // of each, 1/K
@@ -55,7 +58,7 @@ func (p *Problem) layHost(g *grid) *hostGrid {
 	n := len(g.centres)
 	h := &hostGrid{
 		half: make([]float64, 2*n), x: make([]float64, n),
-		atFaces: make([]float64, 2*n), weights: make([]float64, 0, 3*n),
+		atFaces: make([]float64, 2*n),
 	}
 	for i := range n {
 		a, b := g.faces[i], g.faces[i+1]
@@ -69,31 +72,25 @@ func (p *Problem) layHost(g *grid) *hostGrid {
 			h.x[i] += p.Host(g.centres[i])
 			h.atFaces[2*i] += p.Host(a)
 			h.atFaces[2*i+1] += p.Host(b)
+			h.addInside(p, zone, a, b)
 		}
-		inner, outer := meanWeights(p.Shape, a, b)
-		h.weights = append(h.weights, inner, 1-inner-outer, outer)
 	}
 	h.layPanels(p.LnK)
 	return h
 }
 
-// meanWeights returns the weights of a cell's inner and outer face with which,
-// its centroid having the rest, the mean over its volume of any parabola is
-// exact; in a slab Simpson's, 1/6 and 1/6. Taking the middle for the mean would
-// be of second order too, but an element at rest would be off by it for ever.
-func meanWeights(shape Shape, a, b float64) (inner, outer float64) {
-	m, e := (a+b)/2, (b-a)/2
-	shift, square := 0.0, e*e/3 // means of r - m and of its square
-	switch shape {
-	case Cylinder:
-		shift = e * e / (3 * m)
-	case Ball:
-		volume := m*m + e*e/3
-		shift = 2 * m * e * e / (3 * volume)
-		square = e * e * (m*m/3 + e*e/5) / volume
+// addInside adds the compositions inside a cell from a to b of a zone, at the places
+// over which the means of a start are taken too: so one that is proportional to K is at
+// rest to round-off. The middle for the mean would be of second order, a parabola of
+// fourth, but an element at rest would be off by it for ever.
+func (h *hostGrid) addInside(p *Problem, zone, a, b float64) {
+	var at, weight [profilePoints]float64
+	quad.Legendre{}.FixedLocations(at[:], weight[:], a, b)
+	whole := volume(p.Shape, a, b)
+	for q, r := range at {
+		h.inside = append(h.inside, zone+p.Host(r))
+		h.weights = append(h.weights, weight[q]*math.Pow(r, float64(p.Shape))/whole)
 	}
-	variance := square - shift*shift
-	return variance / (2 * e * (e + shift)), variance / (2 * e * (e - shift))
 }
 
 // couple fills the field's operator for a stage and a temperature, K.
@@ -135,8 +132,10 @@ func (h *hostGrid) evaluate(dst []float64, lnK func(x, temp float64) float64, te
 	for i, x := range h.x {
 		inner, here, outer := lnK(h.atFaces[2*i], temp)-unit, lnK(x, temp)-unit, lnK(h.atFaces[2*i+1], temp)-unit
 		kInner, kOuter := math.Exp(inner), math.Exp(outer)
-		w := h.weights[3*i : 3*i+3]
-		k[i] = float64(w[0]*kInner) + float64(w[1]*math.Exp(here)) + float64(w[2]*kOuter)
+		k[i] = math.Exp(here)
+		if h.inside != nil {
+			k[i] = h.meanK(i, func(x float64) float64 { return lnK(x, temp) - unit })
+		}
 		r := h.half[2*i] * meanInverse(here, inner)
 		if i == 0 {
 			ends[0], cond[0] = kInner, 1/r
@@ -147,6 +146,15 @@ func (h *hostGrid) evaluate(dst []float64, lnK func(x, temp float64) float64, te
 		ends[1] = kOuter
 	}
 	cond[n] = 1 / inside
+}
+
+// meanK returns the mean of K over cell i.
+func (h *hostGrid) meanK(i int, lnK func(x float64) float64) float64 {
+	sum := 0.0
+	for q := i * profilePoints; q < (i+1)*profilePoints; q++ {
+		sum += float64(h.weights[q] * math.Exp(lnK(h.inside[q])))
+	}
+	return sum
 }
 
 // end returns, as evaluate does of all cells, K at the outer end of the first n and

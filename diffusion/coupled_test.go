@@ -641,21 +641,6 @@ func TestNoPanels(t *testing.T) {
 	}
 }
 
-// TestMeanWeights: the mean of any parabola over a cell is exact.
-func TestMeanWeights(t *testing.T) {
-	for shape := Slab; shape <= Ball; shape++ {
-		for _, ends := range [][2]float64{{0, 1}, {0.3, 0.7}, {5, 5.01}} {
-			a, b := ends[0], ends[1]
-			parabola := func(r float64) float64 { return 2 - 3*r + 5*r*r }
-			want := []float64{0}
-			addProfile(want, shape, &grid{faces: []float64{a, b}}, parabola)
-			inner, outer := meanWeights(shape, a, b)
-			got := inner*parabola(a) + outer*parabola(b) + (1-inner-outer)*parabola(centroid(shape, a, b))
-			wantNear(t, fmt.Sprintf("%v from %g to %g", shape, a, b), got/want[0], 1, 1e-14)
-		}
-	}
-}
-
 // zonedTrace is a slab of 200 cells and a rim that follows temperature, of the
 // kind that a screening solves most where the host is zoned.
 func zonedTrace(h *thermal.History) *Problem {

@@ -32,7 +32,8 @@ type few struct {
 // integrals of dr/(r^n h) over its halves.
 type fewCell struct {
 	volume, inner, outer float64
-	host, weight         [3]float64
+	host                 [3]float64 // at the inner face, the centroid and the outer face
+	inside, weight       []float64  // at even places, with Simpson's weights for the mean
 	start                float64
 }
 
@@ -53,11 +54,6 @@ func (f *few) cell(a, b float64) fewCell {
 	moment := func(m float64) float64 { return (math.Pow(b, n+1+m) - math.Pow(a, n+1+m)) / (n + 1 + m) }
 	c := fewCell{volume: moment(0)}
 	r, square := moment(1)/c.volume, moment(2)/c.volume
-	powers := mat.NewDense(3, 3, []float64{1, 1, 1, a, r, b, a * a, r * r, b * b})
-	var weights mat.VecDense // with which the mean of any parabola is exact
-	if err := weights.SolveVec(powers, mat.NewVecDense(3, []float64{1, r, square})); err != nil {
-		panic(err)
-	}
 	zone := f.Zones[0]
 	for _, z := range f.Zones[1:] {
 		if a >= zone.Outer {
@@ -65,10 +61,22 @@ func (f *few) cell(a, b float64) fewCell {
 		}
 	}
 	for i, at := range []float64{a, r, b} {
-		c.weight[i], c.host[i] = weights.AtVec(i), zone.Host
+		c.host[i] = zone.Host
 		if f.Host != nil {
 			c.host[i] += f.Host(at)
 		}
+	}
+	const parts = 20
+	for i := range parts + 1 {
+		at, weight := a+(b-a)*float64(i)/parts, float64(2+2*(i%2))
+		if i == 0 || i == parts {
+			weight = 1
+		}
+		x := zone.Host
+		if f.Host != nil {
+			x += f.Host(at)
+		}
+		c.inside, c.weight = append(c.inside, x), append(c.weight, weight*math.Pow(at, n)*(b-a)/(3*parts)/c.volume)
 	}
 	half := func(face, middle float64) float64 { // right for a parabola, which a point is not in curved cells
 		d := 1.0
@@ -121,7 +129,9 @@ func (f *few) partition(c fewCell, temp float64) (atInner, mean, atOuter, inner,
 	var lnK [3]float64
 	for i, x := range c.host {
 		lnK[i] = f.LnK(x, temp)
-		mean += c.weight[i] * math.Exp(lnK[i])
+	}
+	for i, x := range c.inside {
+		mean += c.weight[i] * math.Exp(f.LnK(x, temp))
 	}
 	inverse := func(face float64) float64 {
 		if face == lnK[1] {
