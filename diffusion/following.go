@@ -26,31 +26,31 @@ func (p *piece) mean(value Arrhenius) float64 {
 func (a Arrhenius) at(temp float64) float64 { return math.Exp(a.LnA - a.E/temp) }
 
 // eventsOn returns the times, s, after 0 at which the solution is damped anew along
-// a history: the plan's, and those at which a rim jumps because the temperature
-// does. dst is used again.
+// a history: the plan's, and those at which the temperature jumps, and with it a rim
+// or, in a zoned host, the equilibrium at every boundary. dst is used again.
 func (p *Plan) eventsOn(dst []float64, h *thermal.History) []float64 {
 	inner, outer := p.problem.Inner, p.problem.Outer
-	if !slices.ContainsFunc(inner, Rim.inEquilibrium) && !slices.ContainsFunc(outer, Rim.inEquilibrium) {
+	if p.host == nil && !slices.ContainsFunc(inner, Rim.jumps) && !slices.ContainsFunc(outer, Rim.jumps) {
 		return append(dst[:0], p.events...)
 	}
 	dst = h.Jumps(dst[:0], evenJump)
-	dst = slices.DeleteFunc(dst, func(t float64) bool { return !jumpsAt(inner, t) && !jumpsAt(outer, t) })
+	dst = slices.DeleteFunc(dst, func(t float64) bool { return p.host == nil && !jumpsAt(inner, t) && !jumpsAt(outer, t) })
 	dst = append(dst, p.events...)
 	slices.Sort(dst)
 	return slices.Compact(dst)
 }
 
-// evenJump is the part of the range of 1/T that is no jump of a rim: a step may
-// cross it like any other change, since the waves between cells that it makes are
-// no larger a part of what the rim does along the path.
+// evenJump is the part of the range of 1/T that is no jump of a rim or a host: a
+// step may cross it like any other change, since the waves between cells that it makes
+// are no larger a part of what the rim does along the path.
 const evenJump = 1e-4
 
-// inEquilibrium reports whether the rim's value, or what it exchanges with, follows
-// temperature.
-func (r Rim) inEquilibrium() bool { return r.Equilibrium != nil && r.Given == nil }
+// jumps reports whether the rim does so with temperature: its value or what it
+// exchanges with does, or how fast it exchanges.
+func (r Rim) jumps() bool { return r.Equilibrium != nil && r.Given == nil || r.Kind == Transfer }
 
-// jumpsAt reports whether the rim in force from t on follows temperature.
+// jumpsAt reports whether the rim in force from t on jumps with temperature.
 func jumpsAt(rims []Rim, t float64) bool {
 	e := endingAt(rims, t)
-	return e.open && rims[e.rim].inEquilibrium()
+	return e.open && rims[e.rim].jumps()
 }

@@ -192,7 +192,7 @@ func TestFollowingIsGiven(t *testing.T) {
 }
 
 // TestSmallJumps: a relaxation that has not quite arrived leaves no event, one that
-// is cut short does, and only where a rim follows temperature.
+// is cut short does, and only where a rim follows temperature or exchanges, and in a host.
 func TestSmallJumps(t *testing.T) {
 	leg := func(kind thermal.Kind, t0, t1, life float64) thermal.Leg {
 		return thermal.Leg{Kind: kind, For: life, T0: t0, T1: t1, Tau: 1e8}
@@ -208,9 +208,14 @@ func TestSmallJumps(t *testing.T) {
 		"held":     {[]Rim{{Kind: Held, Value: 1}}, nil},
 		"later":    {append([]Rim{{Kind: Held}}, Rim{Kind: Following, From: 2e9, Equilibrium: &value}), []float64{2e9}},
 		"sooner":   {append(following(value), Rim{Kind: Sealed, From: 1.4e9}), []float64{1.4e9}},
+		"host":     {nil, []float64{1.5e9}},
+		"constant": {[]Rim{{Kind: Transfer, Value: 1, Rate: Arrhenius{LnA: -20, E: 100}}}, []float64{1.5e9}},
 		"exchange": {[]Rim{{Kind: Transfer, Equilibrium: &value, Rate: Arrhenius{LnA: -20, E: 100}}}, []float64{1.5e9}},
 	} {
 		p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw, Outer: test.rims}
+		if name == "host" {
+			p.LnK = drift(-2e4)
+		}
 		c := newCourse(t, newPlan(t, p, Options{}), h)
 		if len(c.spans) != len(test.want)+1 || len(c.events) != len(test.want) || len(test.want) > 0 && c.events[0] != test.want[0] {
 			t.Errorf("%s: %d spans, events %v, want %v", name, len(c.spans), c.events, test.want)

@@ -14,17 +14,23 @@ type hostEdge struct {
 	ra, rb float64 // roots of D's factors
 }
 
-// addHostEdge is addEdge in a zoned host, of a boundary that comes with a stage.
-func (p *Plan) addHostEdge(err []float64, edge edge, job Job, stage int) {
+// addHostEdge is addEdge in a zoned host, of a boundary that comes with a stage. What
+// the boundary holds when temperature jumps is between what the cells beside it held
+// when that span began, beside(span).
+func (p *Plan) addHostEdge(err []float64, edge edge, job Job, stage int, beside func(span int) [2]float64) {
 	ca, cb := edge.sides[0], edge.sides[1]
 	e := hostEdge{
 		plan: p, a: edge.face - 1, b: edge.face, ca: ca, cb: cb,
 		ra: math.Sqrt(p.problem.factor(p.grid.centres[edge.face-1]) * p.problem.own(ca)),
 		rb: math.Sqrt(p.problem.factor(p.grid.centres[edge.face]) * p.problem.own(cb)),
 	}
-	was, meets := 0.0, 0.0
-	job.eachStep(p, stage, func(temp, left float64) {
+	was, meets, last := 0.0, 0.0, 0
+	job.eachStep(p, stage, func(span int, temp, left float64) {
 		ratio := e.ratio(temp)
+		if was != 0 && span != last {
+			meets = e.meets(beside(span), was)
+		}
+		last = span
 		switch {
 		case was == 0:
 			blur := edge.blur()
@@ -37,6 +43,13 @@ func (p *Plan) addHostEdge(err []float64, edge edge, job Job, stage int) {
 		}
 		was = ratio
 	})
+}
+
+// meets returns what C is on side a of the boundary where the cells beside it hold
+// these values, for the flux of the one half cell to be that of the other.
+func (e *hostEdge) meets(c [2]float64, ratio float64) float64 {
+	ga, gb := e.ra*e.ra/e.plan.width(e.a), e.rb*e.rb/e.plan.width(e.b)
+	return (ga*c[0] + gb*c[1]) / (ga + ratio*gb)
 }
 
 // ratio returns K beyond the boundary over K before it.
@@ -91,7 +104,7 @@ func (p *Plan) addWall(err, start []float64, job Job, stage int, outer bool) {
 		return
 	}
 	begun := false
-	job.eachStep(p, stage, func(temp, left float64) {
+	job.eachStep(p, stage, func(_ int, temp, left float64) {
 		if begun {
 			return
 		}
@@ -116,8 +129,8 @@ func kinkLag(gamma float64) float64 {
 }
 
 // eachStep calls visit for every solve of a coupled job from a stage on, with its
-// temperature, K, and the diffusion integral that is left when it begins.
-func (j Job) eachStep(p *Plan, stage int, visit func(temp, left float64)) {
+// span, its temperature, K, and the diffusion integral that is left when it begins.
+func (j Job) eachStep(p *Plan, stage int, visit func(span int, temp, left float64)) {
 	left := j.during(stage, len(p.stages))
 	for i := range j.Course.spans {
 		sp := &j.Course.spans[i]
@@ -126,7 +139,7 @@ func (j Job) eachStep(p *Plan, stage int, visit func(temp, left float64)) {
 			continue
 		}
 		for k, st := range p.steps {
-			visit(1/sp.coldness.fine[k], left)
+			visit(i, 1/sp.coldness.fine[k], left)
 			left = math.Max(left-st.df*g, 0)
 		}
 	}

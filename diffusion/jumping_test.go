@@ -103,3 +103,54 @@ func TestStatedErrorAlongJumps(t *testing.T) {
 		return p
 	})
 }
+
+// TestStatedErrorOfTransferAlongJumps: rims that exchange with what is constant or
+// follows a temperature that jumps.
+func TestStatedErrorOfTransferAlongJumps(t *testing.T) {
+	honestAlong(t, jumpingHistory, 200, 83, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
+		p := randomProblem(r, h, g)
+		p.Inner, p.Outer = nil, []Rim{transferRim(r, p, h)}
+		if r.IntN(2) == 0 {
+			value := rimValue(r)
+			p.Outer[0].Equilibrium = &value
+		}
+		return p
+	})
+}
+
+// TestStatedErrorInHostsAlongJumps: zoned hosts, sealed, held or following a
+// temperature that jumps.
+func TestStatedErrorInHostsAlongJumps(t *testing.T) {
+	honestAlong(t, jumpingHistory, 200, 85, func(r *rand.Rand, h *thermal.History, g float64) *Problem {
+		p := randomCoupled(r, h, g, logUniform(r, 0.1, 12))
+		value := rimValue(r)
+		p.Inner, p.Outer = nil, [][]Rim{nil, {{Kind: Held, Value: r.Float64()}}, following(value)}[r.IntN(3)]
+		return p
+	})
+}
+
+// TestLagOfExchange compares what the cell at a rim that exchanges is said to lag with a
+// run on an even grid against one in much finer cells, in steps so small that
+// time has no error.
+func TestLagOfExchange(t *testing.T) {
+	const cells, steps, finer = 40, 2000, 32
+	const tol = 0.01 // of the lag, what the finer cells themselves leave
+	h := testSize / cells
+	for _, b := range []float64{0.1, 1, 10} {
+		for _, gamma := range []float64{0.1, 1, 5} {
+			cell := func(n int) float64 {
+				p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: testLaw}
+				path := holdOf(t, gamma*h*h)
+				p.Outer = []Rim{{Kind: Transfer, Value: 1, Rate: rateOf(p, path, b*cells, 0)}}
+				plan := newPlan(t, p, Options{Faces: uniform(0, testSize, n*cells), Fractions: equalSteps(steps)})
+				sum := 0.0
+				for _, c := range run(t, plan, path).Cols[0][n*(cells-1):] {
+					sum += c / float64(n)
+				}
+				return sum
+			}
+			lags := cell(finer) - cell(1)
+			wantNear(t, fmt.Sprintf("lag of b=%g, gamma=%g", b, gamma), exchangeLag(b, gamma), lags, tol*math.Abs(lags))
+		}
+	}
+}

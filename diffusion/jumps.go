@@ -86,7 +86,9 @@ func (p *Plan) addJumps(err []float64, f *Field, job Job, j int) {
 			if p.host == nil {
 				p.addEdge(err, edge, left)
 			} else {
-				p.addHostEdge(err, edge, job, s)
+				p.addHostEdge(err, edge, job, s, func(span int) [2]float64 {
+					return f.beside[(span*len(f.Cols)+j)*(len(p.outside)-1)+i-1]
+				})
 			}
 		}
 		if s == job.Course.last.stage {
@@ -154,6 +156,19 @@ func (p *Plan) addEdge(err []float64, e edge, g float64) {
 // blur returns the diffusion integral that would have made the edge of a jump, m2.
 func (e edge) blur() float64 { return e.width / edgesPerWidth * e.width / edgesPerWidth / 2 }
 
+// noteSpan notes what addJumps needs of a span that begins, where there are n cells.
+func (p *Plan) noteSpan(f *Field, n int) {
+	for _, c := range f.Cols {
+		f.atSpan = p.appendEnds(f.atSpan, c[:n])
+		if p.host == nil {
+			continue
+		}
+		for _, at := range p.outside[:len(p.outside)-1] {
+			f.beside = append(f.beside, [2]float64{c[at-1], c[at]})
+		}
+	}
+}
+
 // appendEnds appends the values of a column at both ends of the crystal, on the
 // straight line through the two cells beside them.
 func (p *Plan) appendEnds(to, c []float64) []float64 {
@@ -176,36 +191,71 @@ type rim struct {
 }
 
 // addRim adds what the grid does to the changes of a rim. Each acts like a jump
-// of twice its size between two cells, of which one side is seen. Where more is added
-// there, no rim makes good any more for what has not come in; that spreads.
+// of twice its size between two cells, of which one side is seen; of a rim that
+// exchanges see rimjumps.go. Where more is added there, no rim makes good any more
+// for what has not come in; that spreads.
 func (p *Plan) addRim(err []float64, f *Field, job Job, j int, r rim) {
 	if r.cell >= len(err) {
 		return // it is gone
 	}
 	h := p.width(r.cell)
 	perG := p.problem.factor(p.grid.centres[r.cell]) / (h * h)
-	left, was, sealed := job.during(r.from, r.to), 0.0, true
+	left, noted := job.during(r.from, r.to), 0
 	late := 1 / math.Sqrt(1+4*math.Pi*perG*job.during(r.to, len(p.stages)))
+	var before outside
 	for i := range job.Course.spans {
 		sp := &job.Course.spans[i]
 		g := sp.integral(job.LnM)
+		if g == 0 {
+			continue
+		}
+		at := noted
+		if sp.exchanges() {
+			noted += len(p.steps) * len(f.Cols)
+		}
 		if sp.stage < r.from || sp.stage >= r.to {
 			continue
 		}
-		if end := [...]ending{sp.inner, sp.outer}[r.side]; !end.open || end.exchange.fine != nil || g == 0 {
-			left, sealed = math.Max(left-g, 0), sealed || !end.open || end.exchange.fine != nil
+		end := [...]*ending{&sp.inner, &sp.outer}[r.side]
+		if !end.open {
+			before, left = outside{}, math.Max(left-g, 0)
 			continue
 		}
-		if sealed {
-			was, sealed = f.atSpan[(i*len(f.Cols)+j)*2+r.side], false
+		exchanges := end.exchange.fine != nil
+		if !exchanges && !math.IsInf(before.b, 1) {
+			before = outside{f.atSpan[(i*len(f.Cols)+j)*2+r.side], math.Inf(1)}
 		}
 		for k, st := range p.steps {
-			e := p.ends(&p.stages[sp.stage].still, sp, j, k, st, g, false)
-			if v := [...]float64{e.vIn, e.vOut}[r.side]; v != was {
-				err[r.cell] -= 2 * (v - was) * lag(0, perG*(p.problem.own(was)+p.problem.own(v))/2*left) * late
-				was = v
+			if !(perG*left > talbotHead) {
+				break // nothing comes in any more
 			}
-			left = math.Max(left-st.df*g, 0)
+			e := p.ends(&p.stages[sp.stage].still, sp, j, k, st, g, false)
+			now := outside{[...]float64{e.vIn, e.vOut}[r.side], math.Inf(1)}
+			if exchanges {
+				c := f.atEnds[at+k*len(f.Cols)+j][r.side]
+				d := p.problem.own(before.surface(c))
+				if now.b = end.exchange.sum(k) / (st.df * g * perG * h * d); !(now.b >= 0) {
+					continue // nothing diffuses
+				}
+				err[r.cell] -= now.since(before, c) * exchangeLag(now.b, perG*d*left) * late
+			} else if now != before && left > 0 {
+				err[r.cell] -= 2 * (now.value - before.value) * p.worstLag(perG*left, before.value, now.value) * late
+			}
+			before, left = now, math.Max(left-st.df*g, 0)
 		}
 	}
 }
+
+// worstLag is lag where D is that of one value or of another or between: a layer that
+// cells do not resolve passes what its shape lets, and neither side of it decides;
+// so it is the largest lag of all.
+func (p *Plan) worstLag(gamma, a, b float64) float64 {
+	da, db := gamma*p.problem.own(a), gamma*p.problem.own(b)
+	if da == db {
+		return lag(0, da)
+	}
+	return lag(0, math.Min(math.Max(da, db), math.Max(math.Min(da, db), mostLag)))
+}
+
+// mostLag is the gamma after which a jump lags most.
+const mostLag = 0.13

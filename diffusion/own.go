@@ -114,7 +114,7 @@ func (t *iteration) enter(i int) {
 	sp := &t.job.Course.spans[i]
 	t.plan.grow(t.f, &t.book, sp)
 	t.c = t.f.Cols[0][:t.plan.stages[sp.stage].cells()]
-	t.f.atSpan = t.plan.appendEnds(t.f.atSpan, t.c)
+	t.plan.noteSpan(t.f, len(t.c))
 	if t.g = sp.integral(t.job.LnM); t.g != 0 {
 		t.sp = sp
 		t.f.newton.length = 0 // after an event there is nothing to go on from
@@ -131,6 +131,7 @@ func (t *iteration) begin(k int) {
 	t.s = t.st.length(t.g)
 	t.op = p.operator(f, t.sp, k, t.rough)
 	t.in, t.out = p.mouths(t.op, t.sp, k, t.st, t.s, t.rough)
+	f.noteEnds(t.sp, t.c)
 	lo, hi := w.guess(t.c, t.s)
 	w.bound(f, t.op, &t.in, &t.out, lo, hi)
 	if p.problem.source != nil {

@@ -37,6 +37,8 @@ type Field struct {
 	u4     []four
 	atSpan []float64    // of each span and column, the values at both ends when it begins
 	atEdge [][2]float64 // of each boundary and column, those on both sides when it begins
+	beside [][2]float64 // of each span, column and boundary, those on both sides when it begins; in a zoned host only
+	atEnds [][2]float64 // of each solve and column in spans in which an end exchanges, those in the first and last cell before it
 	other  *Field       // the coarser runs of Audit
 }
 
@@ -162,7 +164,7 @@ func (p *Plan) reset(f *Field) {
 		copy(f.Cols[j], start)
 	}
 	f.Stats = Stats{}
-	f.stage, f.atSpan, f.atEdge = 0, f.atSpan[:0], f.atEdge[:0]
+	f.stage, f.atSpan, f.atEdge, f.beside, f.atEnds = 0, f.atSpan[:0], f.atEdge[:0], f.beside[:0], f.atEnds[:0]
 	p.noteEdges(f)
 }
 
@@ -187,9 +189,7 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 		g := sp.integral(job.LnM)
 		p.grow(f, &book, sp)
 		n := p.stages[sp.stage].cells()
-		for _, c := range f.Cols {
-			f.atSpan = p.appendEnds(f.atSpan, c[:n])
-		}
+		p.noteSpan(f, n)
 		if g == 0 {
 			continue
 		}
@@ -199,6 +199,7 @@ func (p *Plan) runOne(f *Field, job Job, rough bool) {
 			for j, c := range f.Cols {
 				c = c[:n]
 				e := p.ends(op, sp, j, k, st, g, rough)
+				f.noteEnds(sp, c)
 				first, last := f.solve(op, st.length(g), e, c, j > 0, st.euler)
 				if j == 0 {
 					book.enter(op, e, st.euler, first, last, c[0], c[n-1])
