@@ -39,17 +39,23 @@ type StartTaken struct {
 // best on the path, by itself: the best verdict, of equal ones the largest tail, then
 // the least chi-square for its degrees.
 func (w *weighedPath) choose(ctx context.Context, of *weighing) error {
-	w.starts = make([][]Tried, len(of.crystals))
+	w.starts, w.shared = make([][]Tried, len(of.crystals)), make([]Curve, len(of.crystals))
 	for place, c := range of.crystals {
 		choices := c.Choices()
-		if len(choices) < 2 || w.bars(c) {
+		switch {
+		case w.bars(c):
+			continue
+		case len(choices) < 2:
+			if err := w.share(ctx, of, place); err != nil {
+				return err
+			}
 			continue
 		}
 		members := of.members(place)
 		best := -1
 		for k, choice := range choices {
 			w.take(of, members, choice)
-			t, err := w.try(ctx, of, members)
+			t, err := w.try(ctx, of, place)
 			if err != nil {
 				return err
 			}
@@ -60,6 +66,9 @@ func (w *weighedPath) choose(ctx context.Context, of *weighing) error {
 			}
 		}
 		w.take(of, members, choices[best])
+		if err := w.share(ctx, of, place); err != nil {
+			return err
+		}
 		list := w.starts[place]
 		list[best].Taken = true
 		for k := range list {
@@ -97,23 +106,23 @@ func (w *weighedPath) keep(n int) {
 	}
 }
 
-// try judges the elements jointly with the starts that are in place.
-func (w *weighedPath) try(ctx context.Context, of *weighing, members []int) (Tried, error) {
-	var cs []Curve
-	var each []sampler
-	for _, n := range members {
-		cs, each = append(cs, w.curves[n]), append(each, w.profiles[n].sampler(ctx))
-	}
-	if err := sharpen(cs, each); err != nil {
+// try judges the elements of a crystal jointly with the starts that are in place.
+func (w *weighedPath) try(ctx context.Context, of *weighing, place int) (Tried, error) {
+	if err := w.share(ctx, of, place); err != nil {
 		return Tried{}, err
 	}
-	var alone []Finding
-	for k, n := range members {
-		w.curves[n] = cs[k]
-		w.keep(n)
-		alone = append(alone, find(&cs[k], of.study.Confidence))
+	list := w.gather(ctx, of, place)
+	if err := sharpenAll(list); err != nil {
+		return Tried{}, err
 	}
-	f := jointly(cs, alone, of.study.Confidence)
+	var cs []Curve
+	for _, c := range list {
+		cs = append(cs, *c.of)
+	}
+	for _, n := range of.members(place) {
+		w.keep(n)
+	}
+	f := jointly(cs, alone(cs, of.study.Confidence), of.study.Confidence)
 	return Tried{Verdict: f.Verdict, Shift: f.Shift, Tail: f.Tail, Misfit: f.Misfit, Degrees: f.Degrees}, nil
 }
 

@@ -15,6 +15,7 @@ type Curve struct {
 	Best              float64    // chi-square of the profile's own best fit
 	Points            int        // data points
 	Free              int        // degrees of freedom that values fitted from the points alone take
+	Shared            bool       // of no profile, but of what sharing a value costs those of its crystal
 	Crystal           int        // the crystal it was measured in: those of one number are judged jointly as well
 	Law               int        // the law it rests on, counted from 1 among Judge's laws; 0 if that has no errors
 	ByE               [2]float64 // first and second derivative of ln G by the law's activation energy, mol/J

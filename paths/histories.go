@@ -141,11 +141,12 @@ func (w *weighing) combine(ctx context.Context, g *Group, r *Result, of []int) e
 func (w *weighing) judgeCombination(ctx context.Context, dst *Outcome, path []int) error {
 	var cs []Curve
 	var each []sampler
-	for n, e := range w.elements {
-		p := &w.paths[path[e.place]]
-		c := p.curves[n]
-		c.LnM, c.ChiSq, c.Slope = slices.Clone(c.LnM), slices.Clone(c.ChiSq), slices.Clone(c.Slope)
-		cs, each = append(cs, c), append(each, p.profiles[n].sampler(ctx))
+	for place := range w.crystals {
+		for _, one := range w.paths[path[place]].gather(ctx, w, place) {
+			c := *one.of
+			c.LnM, c.ChiSq, c.Slope = slices.Clone(c.LnM), slices.Clone(c.ChiSq), slices.Clone(c.Slope)
+			cs, each = append(cs, c), append(each, one.sample)
+		}
 	}
 	if err := sharpen(cs, each); err != nil {
 		return err

@@ -87,30 +87,38 @@ type Leaning struct {
 // of its prior. Judge never solves. It panics if there are no curves.
 func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 	dst.Profiles = dst.Profiles[:0]
-	for i := range cs {
-		dst.Profiles = append(dst.Profiles, find(&cs[i], confidence))
-	}
+	dst.Profiles = append(dst.Profiles, alone(cs, confidence)...)
 	dst.Finding = jointly(cs, dst.Profiles, confidence)
 	dst.Crystals = dst.Crystals[:0]
 	of := byCrystal(cs)
 	for _, own := range of {
 		var curves []Curve
-		var each []Finding
 		for _, i := range own {
-			curves, each = append(curves, cs[i]), append(each, dst.Profiles[i])
+			curves = append(curves, cs[i])
 		}
-		dst.Crystals = append(dst.Crystals, jointly(curves, each, confidence))
+		dst.Crystals = append(dst.Crystals, jointly(curves, alone(curves, confidence), confidence))
 	}
 	dst.Scatter, dst.Chance = scatterOf(cs, of, dst.Crystals), chanceOf(dst.Crystals, confidence)
 	dst.Odds = nil
 	dst.WithLaws = allow(cs, laws, &dst.Finding, confidence)
 }
 
+// alone judges each profile by itself.
+func alone(cs []Curve, confidence float64) []Finding {
+	var each []Finding
+	for i := range cs {
+		if !cs[i].Shared {
+			each = append(each, find(&cs[i], confidence))
+		}
+	}
+	return each
+}
+
 // jointly judges several profiles, which have the findings each by itself.
 func jointly(cs []Curve, each []Finding, confidence float64) Finding {
 	sum := Sum(cs)
 	f := find(&sum, confidence)
-	if f.Verdict == WrongShape && len(cs) > 1 && !slices.ContainsFunc(each, Finding.hopeless) {
+	if f.Verdict == WrongShape && len(each) > 1 && !slices.ContainsFunc(each, Finding.hopeless) {
 		f.Verdict = AtOdds
 	}
 	return f

@@ -136,6 +136,7 @@ type weighedPath struct {
 	curves   []Curve
 	tried    [][]attempt // of each element, one a start
 	starts   [][]Tried
+	shared   []Curve // of each crystal, what sharing the width of edges costs
 }
 
 func newWeighing(s *study.Study) (*weighing, error) {
@@ -264,7 +265,10 @@ func (w *weighing) path(ctx context.Context, i int) error {
 	if err := p.choose(ctx, w); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
-	if err := p.sharpen(ctx); err != nil {
+	if err := p.sharpen(ctx, w); err != nil {
+		return fmt.Errorf("path %q: %w", path.Name, err)
+	}
+	if err := p.showShared(w); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	w.paths[i] = p
@@ -330,24 +334,20 @@ func attempted(ctx context.Context, e *element, path *study.Path, laws []LawPrio
 
 // sharpen makes the joint curves, of each crystal and of all, right around their
 // own lowest points.
-func (w *weighedPath) sharpen(ctx context.Context) error {
-	var cs []Curve
-	var each []sampler
-	var of []int // elements of the curves
-	for n, p := range w.profiles {
-		if w.ran(n) {
-			cs, each, of = append(cs, w.curves[n]), append(each, p.sampler(ctx)), append(of, n)
+func (w *weighedPath) sharpen(ctx context.Context, of *weighing) error {
+	var all []curve
+	for place := range of.crystals {
+		list := w.gather(ctx, of, place)
+		if len(list) == 0 {
+			continue
 		}
-	}
-	for _, of := range byCrystal(cs) { // elements of a crystal stand together
-		from, to := of[0], of[len(of)-1]+1
-		if err := sharpen(cs[from:to], each[from:to]); err != nil {
+		if err := sharpenAll(list); err != nil {
 			return err
 		}
+		all = append(all, list...)
 	}
-	err := sharpen(cs, each)
-	for k, n := range of {
-		w.curves[n] = cs[k]
+	err := sharpenAll(all)
+	for n := range w.curves {
 		w.keep(n)
 	}
 	return err
@@ -489,17 +489,28 @@ func (p *profile) freeFits(at least.Solution) []FreeFit {
 		fits = p.plainFits(at)
 	}
 	edge, tilt, origin := p.lens.values(at.Bent)
-	add := func(n study.Nuisance, name string, value, scale float64, unit string) {
-		if !n.Fixed() {
-			margin := endMargin * (n.Hi - n.Lo)
-			fits = append(fits, FreeFit{Name: name, Value: value * scale, Unit: unit, HasPrior: !n.Ranged(),
-				AtEnd: n.Ranged() && (value <= n.Lo+margin || value >= n.Hi-margin)})
-		}
+	if !p.lens.edge.Fixed() {
+		fits = append(fits, p.edgeFit(edge))
 	}
-	add(p.lens.edge, "edge width", edge, 1e6, "um")
-	add(p.lens.tilt, "tilt", tilt, 180/math.Pi, "deg")
-	add(p.lens.origin, "origin", origin, 1e6, "um")
+	if n := p.lens.tilt; !n.Fixed() {
+		fits = append(fits, bentFit(n, "tilt", tilt, 180/math.Pi, "deg"))
+	}
+	if n := p.lens.origin; !n.Fixed() {
+		fits = append(fits, bentFit(n, "origin", origin, 1e6, "um"))
+	}
 	return fits
+}
+
+// edgeFit names a fitted width of the edges, m.
+func (p *profile) edgeFit(width float64) FreeFit {
+	return bentFit(p.lens.edge, "edge width", width, 1e6, "um")
+}
+
+// bentFit names the fitted value of a nuisance, told in a unit of so many in one of SI.
+func bentFit(n study.Nuisance, name string, value, scale float64, unit string) FreeFit {
+	margin := endMargin * (n.Hi - n.Lo)
+	return FreeFit{Name: name, Value: value * scale, Unit: unit, HasPrior: !n.Ranged(),
+		AtEnd: n.Ranged() && (value <= n.Lo+margin || value >= n.Hi-margin)}
 }
 
 // plainFits names the fitted plateaux and rim values.
@@ -691,21 +702,24 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 // which it was not that they bar it.
 func (w *weighing) judgePath(dst *Outcome, p *weighedPath) {
 	var cs []Curve
-	var of []int // elements of the curves
-	for n := range p.curves {
+	var of []int // elements of the profiles
+	for n, e := range w.elements {
 		if p.ran(n) {
 			cs, of = append(cs, p.curves[n]), append(of, n)
+		}
+		if last := n+1 == len(w.elements) || w.elements[n+1].place != e.place; last && p.shared[e.place].Shared {
+			cs = append(cs, p.shared[e.place])
 		}
 	}
 	Judge(dst, cs, w.laws, w.study.Confidence)
 	if dst.Verdict == AtOdds || slices.ContainsFunc(dst.Crystals, func(f Finding) bool { return f.Verdict == AtOdds }) {
-		dst.Odds = Demands(cs, dst.Profiles, w.study.Confidence)
+		dst.Odds = Demands(slices.DeleteFunc(cs, func(c Curve) bool { return c.Shared }), dst.Profiles, w.study.Confidence)
 		for k := range dst.Odds {
 			d := &dst.Odds[k]
 			d.Of, d.To = of[d.Of], of[d.To]
 		}
 	}
-	if len(cs) == len(p.curves) {
+	if len(of) == len(p.curves) {
 		return
 	}
 	profiles, crystals := dst.Profiles, dst.Crystals

@@ -92,3 +92,24 @@ func (d *decoder) choosable(n *node, c *Crystal) {
 		d.report(n, "no alternatives of its elements go together: those of one name do", "give alternatives that belong together one name in all elements")
 	}
 }
+
+// oneEdge reports measured elements of a crystal that leave the width of their edges
+// open in different ways: it is one width, that with which the zones grew.
+func (d *decoder) oneEdge(n *node, c *Crystal) {
+	var first *Element
+	var edge Nuisance
+	for i := range c.Elements {
+		e := &c.Elements[i]
+		for k := range e.Starts() {
+			switch other := e.Starting(k).Start.Edge; {
+			case e.Traverse == nil || other.Fixed():
+			case first == nil:
+				first, edge = e, other
+			case other != edge:
+				d.report(n, fmt.Sprintf("%s and %s leave the width of the edges open in different ways, but it is one width for all elements", first.Name, e.Name),
+					"state it alike in both, or a width without an error in one")
+				return
+			}
+		}
+	}
+}

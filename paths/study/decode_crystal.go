@@ -215,6 +215,7 @@ func (d *decoder) elements(n *node, c *Crystal, inner *node) {
 		c.Elements = append(c.Elements, d.element(e, c, inner, seen))
 	}
 	d.choosable(list, c)
+	d.oneEdge(list, c)
 }
 
 // sized reports whether every width could be read.

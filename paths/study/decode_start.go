@@ -14,9 +14,6 @@ func (d *decoder) starts(element *node, c *Crystal, e *Element, u *units) {
 	n := element.get("start")
 	if n == nil || n.kind != arrayNode {
 		e.Start = d.start(element, n, c, e, u)
-		if name := n.get("name"); name != nil {
-			d.report(name, "there is one start, which needs no name", "leave it out, or write a list of alternatives")
-		}
 		return
 	}
 	const example = `write start = [ { name = "melt A", zones = ["free", "58 ppm"] }, { name = "melt B", zones = ["free", "71 ppm"] } ]`
@@ -27,11 +24,8 @@ func (d *decoder) starts(element *node, c *Crystal, e *Element, u *units) {
 	seen := map[string]int{}
 	for _, v := range d.tables(n, example) {
 		s := d.start(element, v, c, e, u)
-		if name := v.get("name"); name != nil {
-			var ok bool
-			if s.Name, ok = d.name(name, `write a name, such as name = "melt A"`); ok {
-				d.unique(name, s.Name, seen)
-			}
+		if s.Name != "" {
+			d.unique(v.get("name"), s.Name, seen)
 		}
 		e.Alternatives = append(e.Alternatives, s)
 	}
@@ -59,6 +53,9 @@ func (d *decoder) start(element, n *node, c *Crystal, e *Element, u *units) Star
 	const example = `write start = { zones = ["free", "58 +- 1.5 ppm"], edge = "0 um" }`
 	if n != nil && d.is(n, tableNode, example) {
 		d.keys(n, startTable)
+	}
+	if name := n.get("name"); name != nil {
+		s.Name, _ = d.name(name, `write a name, such as name = "melt A"`)
 	}
 	switch way := d.oneWay(n, "zones", "melt", "solubility"); {
 	case way == nil && u.measured:

@@ -328,6 +328,8 @@ func wrongElements() []wrong {
 	const traverse = `{ file = "q1.csv", position = "x [um]", zero = "rim", value = "Ti [ppm]", error = "4 %", spot = "1 um fwhm" }`
 	return append([]wrong{
 		{"elements without end", "[[crystal.element]]", strings.Repeat("[[crystal.element]]\n", 101) + "[[crystal.element]]", "s.toml:20:3", "crystal", "more than 100 crystals or elements", "split"},
+		{"edges open in two ways", start, `[ { zones = ["free", "58 ppm"], edge = "free 0..2 um" }, { zones = ["free", "58 ppm"], edge = "1 +- 0.2 um" } ]`,
+			"s.toml:29:11", "crystal.element", "Ti and Ti leave the width of the edges open", "state it alike"},
 		{"two elements of one name", "[[crystal.element]]", "[[crystal.element]]\nname = \"Ti\"\nlaw = \"mine\"\nstart = { zones = [\"1 ppm\", \"2 ppm\"] }\n[[crystal.element]]", "s.toml:34:8", "crystal.element.name", "used twice, first on line 30", "its own"},
 		{"unknown law", law, `@"quartz-ti-cherniak2008"`, "", "crystal.element.law", "not in the catalogue", "quartz-ti-cherniak2007"},
 		{"law of the study mistyped", law, `@"mime"`, "", "crystal.element.law", "neither in the catalogue nor", `did you mean "mine"?`},
@@ -359,7 +361,6 @@ func wrongElements() []wrong {
 		{"no alternative", start, `@[ ]`, "", "crystal.element.start", "an empty list", `name = "melt A"`},
 		{"alternatives of one name", start, `[ { name = "a", zones = ["free", "58 ppm"] }, { name = @"a", zones = ["free", "60 ppm"] } ]`, "", "crystal.element.start.name", "used twice", ""},
 		{"too many alternatives", start, `@[ ` + strings.Repeat(start+", ", 21) + ` ]`, "", "crystal.element.start", "more than 20 alternatives", "fewer"},
-		{"a name for the only start", start, `{ name = @"a", zones = ["free", "58 ppm"] }`, "", "crystal.element.start.name", "needs no name", "list of alternatives"},
 		{"start scaled", start, `{ @scaled = "P", edge = "0 um" }`, "", "crystal.element.start.scaled", "not known in this version", "leave it out"},
 		{"start in melt, no temperature", start, `@{ melt = ["90 ppm", "80 ppm"], edge = "0 um" }`, "", "crystal.element.start.temperature", "missing", "790 +- 10 C"},
 		{"start in melt without a relation", start, `{ melt = @["90 ppm", "80 ppm"], temperature = ["760 C", "790 C"], edge = "0 um" }`, "", "crystal.element.start.melt", "needs the partition relation", "sr-blundy1991"},
