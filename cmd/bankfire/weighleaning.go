@@ -53,7 +53,11 @@ func askedOf(list []paths.Leaning) string {
 		text += " (" + strings.Join(kinds, ", ") + ")"
 	}
 	if len(list) > 1 {
-		text += ", and no more of any other"
+		sum := 0.0
+		for _, l := range list {
+			sum += l.Sigma * l.Sigma
+		}
+		text += fmt.Sprintf(" and no other by more, in all %.1f sigma", math.Sqrt(sum))
 	}
 	return text
 }

@@ -18,7 +18,7 @@ func TestLeaningInASentence(t *testing.T) {
 		want    string
 	}{
 		{"several", paths.AtOdds, paths.LawsAllowed{Verdict: paths.Reproduces, Leaning: list}, 2,
-			"With the errors of the laws allowed for, \"p\" reproduces what was measured: it asks for b to be off by 1.3 sigma (D smaller by 1.2, E larger by 0.5), and no more of any other.\n"},
+			"With the errors of the laws allowed for, \"p\" reproduces what was measured: it asks for b to be off by 1.3 sigma (D smaller by 1.2, E larger by 0.5) and no other by more, in all 1.4 sigma.\n"},
 		{"too far", paths.TooSharp, paths.LawsAllowed{Verdict: paths.TooSharp, Leaning: []paths.Leaning{{Law: "a", Sigma: 5, LnD: 5}}}, 1,
 			"For \"p\" to pass, laws would have to be off by more than their errors allow: it asks for a to be off by 5.0 sigma (D larger by 5.0).\n"},
 		{"a law without a name", paths.TooSharp, paths.LawsAllowed{Verdict: paths.TooSharp, Leaning: []paths.Leaning{{Sigma: 5, E: -5}}}, 1,
