@@ -71,6 +71,22 @@ func (c *Course) LnG() float64 {
 	return sum
 }
 
+// LnGLast returns ln of the diffusion integral since the last zone was added that is
+// there, m2: the least that a boundary has seen.
+func (c *Course) LnGLast() float64 {
+	last := c.last.stage
+	for last > 0 && c.plan.stages[last].moved {
+		last--
+	}
+	sum := math.Inf(-1)
+	for _, s := range c.spans {
+		if s.stage >= last {
+			sum = numeric.LnAdd(sum, s.lnG)
+		}
+	}
+	return sum
+}
+
 // Course prepares the history up to the time until, in s, for the plan and
 // writes it to dst, whose memory is reused; a rim given as a function of time, or
 // one that exchanges, needs some of its own. It returns an error if until lies

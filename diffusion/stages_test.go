@@ -276,3 +276,12 @@ func TestFarBoundaries(t *testing.T) {
 		before = width
 	}
 }
+
+// TestLeastIntegral: of two zones added along a hold the last has seen what was left.
+func TestLeastIntegral(t *testing.T) {
+	h := holdOf(t, 1e-12)
+	p := &Problem{Law: testLaw, Zones: []Zone{{Outer: testSize}, {Outer: 2 * testSize, Added: 0.3 * h.Life()}, {Outer: 3 * testSize, Added: 0.75 * h.Life()}}}
+	c := newCourse(t, newPlan(t, p, Options{}), h)
+	wantNear(t, "part since the last", math.Exp(c.LnGLast()), 0.25e-12, 1e-24)
+	wantNear(t, "all", math.Exp(c.LnG()), 1e-12, 1e-24)
+}

@@ -12,11 +12,18 @@ import (
 // its diffusion integral in that time.
 func boundaryNotes(c *study.Crystal, e *study.Element, h *thermal.History) []string {
 	added, err := c.Added(h)
-	if err != nil || !c.Staged() {
-		return nil // barred for it, or nothing to tell apart
+	if err != nil {
+		return nil // barred for it
+	}
+	var notes []string
+	if grown, lost := c.GrownLost(h); grown > 0 || lost > 0 {
+		notes = append(notes, fmt.Sprintf("the rim grew by %.4g um and lost %.4g um along the path", grown*1e6, lost*1e6))
+	}
+	if !c.Staged() {
+		return notes
 	}
 	oldest, youngest := 1, len(added)-1
-	notes := []string{boundaryNote(c, e, h, added, oldest)}
+	notes = append(notes, boundaryNote(c, e, h, added, oldest))
 	if added[youngest] > added[oldest] {
 		notes = append(notes, boundaryNote(c, e, h, added, youngest))
 	}

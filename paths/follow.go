@@ -87,7 +87,8 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 		amounts = p.amounts(fitted).stated()
 	}
 	if result == nil {
-		out.Notes = append(lawNotes(c, e, path.History), reachNotes(c, out.LnG+fastest(c, e))...)
+		out.Notes = append(lawNotes(c, e, path.History), boundaryNotes(c, e, path.History)...)
+		out.Notes = append(out.Notes, reachNotes(c, out.LnG+fastest(c, e))...)
 	}
 	if e.OnHost() {
 		out.Notes = append(out.Notes, hostMoved(c, p.history)...)

@@ -440,7 +440,7 @@ const equilibrated = 1e3
 
 // full returns chi-square after diffusion without end.
 func (p *profile) full(chiSq sampler) (float64, error) {
-	lnG := p.runs[0].course.LnG()
+	lnG := p.runs[0].course.LnGLast()
 	if math.IsInf(lnG, -1) {
 		return p.fitStart().ChiSq, nil
 	}

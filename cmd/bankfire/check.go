@@ -126,6 +126,9 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 	if c.Exists != nil {
 		fmt.Fprintf(w, "  it exists from %s\n", quoted(c.Exists.Text))
 	}
+	for _, m := range c.Moves {
+		fmt.Fprintf(w, "  its rim moves at %.4g um/yr from %s until %s\n", m.Rate*1e6*thermal.Year, quoted(m.From.Text), quoted(m.Until.Text))
+	}
 	if d := c.Dissolves; d != nil {
 		fmt.Fprintf(w, "  it dissolves above %s within %s\n", thermal.TemperatureText(d.Temp), thermal.DurationText(d.Most))
 	}

@@ -205,6 +205,7 @@ func frames() []frame {
 		{"crystal.host.error", "shape = \"slab\"\n", "shape = \"slab\"\nhost = { " + strings.Join(host, ", ") + ", error = %s }\n", true,
 			[]string{`column = "1s [mole fraction]"`, `sigmas = 1`}},
 		{"crystal.dissolves", "shape = \"slab\"\n", "shape = \"slab\"\ndissolves = %s\n", true, []string{`above = "790 C"`, `longer = "2 yr"`}},
+		{"crystal.grows", "shape = \"slab\"\n", "shape = \"slab\"\ngrows = [ %s ]\n", true, []string{`rate = "1 um/yr"`, `from = "2 yr after start"`, `until = "12 yr after start"`}},
 		{"crystal.inner", "shape = \"slab\"\n", "shape = \"slab\"\ninner = %s\n", true, nil},
 		{"crystal.element", shownElement, "%s\n", false, lines(shownElement)},
 		{"crystal.element.law", shownLaw, "law = %s", true, law},

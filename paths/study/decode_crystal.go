@@ -58,6 +58,9 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 	inner := d.inner(n.get("inner"), &c)
 	d.hostFile(n.get("host"), &c)
 	d.existence(n, &c)
+	if v := n.get("grows"); v != nil {
+		d.moves(v, &c)
+	}
 	d.elements(n, &c, inner)
 	d.hostLaw(n.get("host_law"), &c)
 	d.noteHost(&c, n.get("host") != nil)

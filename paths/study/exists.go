@@ -87,6 +87,9 @@ func (d *decoder) exists(paths []Path, c *Crystal) {
 			return nil
 		}
 		_, err := c.Added(p.History)
+		if err == nil {
+			_, err = c.Moved(p.History)
+		}
 		return inputError(err, c.Place)
 	}) {
 		p.bar(c, fmt.Sprintf("%s: %s (%s)", c.Name, why.Problem, why.Value))

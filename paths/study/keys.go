@@ -49,6 +49,7 @@ const (
 	hostTable
 	hostErrorTable
 	dissolvesTable
+	growsTable
 	innerTable
 	elementTable
 	lawTable
@@ -86,11 +87,12 @@ var tables = [...]Table{
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
 	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
-	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "host_law", "exists_from", "dissolves", "element"}},
+	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "host_law", "exists_from", "dissolves", "grows", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times", "added"}},
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth", "width", "error"}},
 	hostErrorTable:  {"crystal.host.error", errorKeys()},
 	dissolvesTable:  {"crystal.dissolves", []string{"above", "longer"}},
+	growsTable:      {"crystal.grows", []string{"rate", "from", "until"}},
 	innerTable:      {"crystal.inner", []string{"radius", "rim"}},
 	elementTable:    {"crystal.element", []string{"name", "law", "partition", "start", "rim", "traverse"}},
 	lawTable:        {"crystal.element.law", []string{"D0", "E", "host", "own", "times", "sigma", "range", "citation", "caution"}},

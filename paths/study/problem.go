@@ -49,6 +49,13 @@ func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, [
 	for i, t := range added {
 		out.Zones[i].Added = max(0, t-begins)
 	}
+	if out.Moves, err = c.Moved(h); err != nil {
+		return nil, nil, err
+	}
+	for i := range out.Moves {
+		out.Moves[i].From -= begins
+		out.Moves[i].Until -= begins
+	}
 	if out.Inner, out.Outer, err = b.rims(); err != nil {
 		return nil, nil, err
 	}

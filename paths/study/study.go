@@ -92,6 +92,7 @@ type Crystal struct {
 	Elements      []Element       // at least one
 	Exists        *thermal.Moment // from which on it sees a path; nil is the start
 	ExistsPlace   thermal.Place   // of Exists
+	Moves         []Move          // of its rim, once all zones are there; the widths of these are those in the end
 	Dissolves     *TimeLimit      // bars a path from it, counted from when it exists; nil is never
 	Place         thermal.Place
 }

@@ -14,7 +14,7 @@ func (d *decoder) together(s *Study) {
 		c := &s.Crystals[i]
 		before := d.faults
 		d.exists(s.Paths, c)
-		if d.faults > before && c.Staged() {
+		if d.faults > before && (c.Staged() || len(c.Moves) > 0) {
 			continue // its rims would say so again
 		}
 		for j := range c.Elements {
