@@ -239,23 +239,9 @@ func (p *Plan) addRim(err []float64, f *Field, job Job, j int, r rim) {
 				}
 				err[r.cell] -= now.since(before, c) * exchangeLag(now.b, perG*d*left) * late
 			} else if now != before && left > 0 {
-				err[r.cell] -= 2 * (now.value - before.value) * p.worstLag(perG*left, before.value, now.value) * late
+				err[r.cell] -= 2 * (now.value - before.value) * lag(0, perG*left*(p.problem.own(before.value)+p.problem.own(now.value))/2) * late
 			}
 			before, left = now, math.Max(left-st.df*g, 0)
 		}
 	}
 }
-
-// worstLag is lag where D is that of one value or of another or between: a layer that
-// cells do not resolve passes what its shape lets, and neither side of it decides;
-// so it is the largest lag of all.
-func (p *Plan) worstLag(gamma, a, b float64) float64 {
-	da, db := gamma*p.problem.own(a), gamma*p.problem.own(b)
-	if da == db {
-		return lag(0, da)
-	}
-	return lag(0, math.Min(math.Max(da, db), math.Max(math.Min(da, db), mostLag)))
-}
-
-// mostLag is the gamma after which a jump lags most.
-const mostLag = 0.13
