@@ -83,3 +83,83 @@ func plateauxFitted(e *study.Element, deviation float64) float64 {
 	p, q := (ya*bb-yb*ab)/det, (yb*aa-ya*ab)/det
 	return yy - p*ya - q*yb
 }
+
+// edgesOf compares growth and diffusion without weighing the path.
+func edgesOf(t *testing.T, s *study.Study) EdgeOrigin {
+	t.Helper()
+	w, err := newWeighing(s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	p := &w.paths[0]
+	for i := range w.elements {
+		q, err := newProfile(&w.elements[i], &s.Paths[0], 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		q.points, q.counted = len(q.fit.Obs), len(q.free)
+		p.profiles = append(p.profiles, q)
+	}
+	if err := p.edgeOrigins(t.Context(), w, &s.Paths[0]); err != nil {
+		t.Fatal(err)
+	}
+	return w.judgeEdges()[0]
+}
+
+// Of two elements with D 100 times apart, a planted growth edge is told from diffusion,
+// and diffusion from growth, in at least nine of ten simulations; where D is the same,
+// or the edges are finer than the spot, the report is silent as often.
+func TestGrowthIsToldFromDiffusion(t *testing.T) {
+	if underRace {
+		t.Skip("many simulations")
+	}
+	const draws = 20
+	for _, test := range []struct {
+		name       string
+		fast, slow float64 // standard deviation of the boundary in each
+		same       bool    // one D for both
+		want       Origin
+	}{
+		{"growth", 1.5 * um, 1.5 * um, false, ByGrowth},
+		{"diffusion", 2 * um, 0.2 * um, false, ByDiffusion},
+		{"one D", 1.5 * um, 1.5 * um, true, UnknownOrigin},
+		{"finer than the spot", 0.05 * um, 0.05 * um, false, UnknownOrigin},
+	} {
+		t.Run(test.name, func(t *testing.T) {
+			told := map[Origin]int{}
+			for k := range draws {
+				c := sharp()
+				s := grownCouple(t, rand.New(rand.NewPCG(7, 100+uint64(k))), test.fast, test.slow, c.path(t, "any", 1))
+				if test.same {
+					s.Crystals[0].Elements[1].Law = s.Crystals[0].Elements[0].Law
+				}
+				told[edgesOf(t, s).Prefers]++
+			}
+			if told[test.want] < draws*9/10 {
+				t.Errorf("told %v, want %s in nine of ten", told, test.want)
+			}
+			t.Logf("%v", told)
+		})
+	}
+}
+
+// What is preferred is better by more than the critical value of one degree, and passes.
+func TestWhichOriginIsPreferred(t *testing.T) {
+	for _, test := range []struct {
+		growth, diffusion float64
+		degrees           int
+		want              Origin
+	}{
+		{80, 84, 77, ByGrowth},
+		{84, 80, 77, ByDiffusion},
+		{80, 83.8, 77, UnknownOrigin}, // 3.84 at 95 %
+		{120, 300, 77, UnknownOrigin}, // neither passes: 98.5 does
+		{300, 120, 77, UnknownOrigin},
+		{0, 10, 0, UnknownOrigin},
+		{math.NaN(), 80, 77, UnknownOrigin},
+	} {
+		if got := origin(test.growth, test.diffusion, test.degrees, 0.95); got != test.want {
+			t.Errorf("%g against %g of %d: %s, want %s", test.growth, test.diffusion, test.degrees, got, test.want)
+		}
+	}
+}

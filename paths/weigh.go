@@ -25,7 +25,8 @@ type Result struct {
 	Own      []OwnBest        // one a measured element
 	Crystals []*study.Crystal // those with a measured element, in the order of an Outcome's
 	Paths    []PathResult
-	Groups   []Group // of paths that end alike, where the crystals share their history from a moment on
+	Edges    []EdgeOrigin // of crystals of which elements share an open width of their edges
+	Groups   []Group      // of paths that end alike, where the crystals share their history from a moment on
 }
 
 // PathResult is one path with its verdict as the path of all crystals, whatever
@@ -136,7 +137,8 @@ type weighedPath struct {
 	curves   []Curve
 	tried    [][]attempt // of each element, one a start
 	starts   [][]Tried
-	shared   []Curve // of each crystal, what sharing the width of edges costs
+	shared   []Curve      // of each crystal, what sharing the width of edges costs
+	edges    []EdgeOrigin // of each crystal, without Elements where these do not share a width
 }
 
 func newWeighing(s *study.Study) (*weighing, error) {
@@ -269,6 +271,9 @@ func (w *weighing) path(ctx context.Context, i int) error {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	if err := p.showShared(w); err != nil {
+		return fmt.Errorf("path %q: %w", path.Name, err)
+	}
+	if err := p.edgeOrigins(ctx, w, path); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	w.paths[i] = p
@@ -641,6 +646,7 @@ func (w *weighing) judge(ctx context.Context) (*Result, error) {
 	for i := range w.paths {
 		r.Paths[i] = w.verdict(i, r.Own)
 	}
+	r.Edges = w.judgeEdges()
 	if err := w.groups(ctx, r); err != nil {
 		return nil, err
 	}

@@ -17,7 +17,7 @@ func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
 		Inputs: []input{}, Conditions: conditionsUsed(r.Study), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study), Solubilities: solubilitiesUsed(r.Study),
-		Own: ownBests(r), Paths: []weighedPath{}, History: summariseHistory(r), Families: []struct{}{},
+		Own: ownBests(r), Paths: []weighedPath{}, History: summariseHistory(r), Edges: edgeOrigins(r), Families: []struct{}{},
 		Notes: filled(r.Study.Notes), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {
@@ -93,6 +93,24 @@ func summariseOdds(p *paths.PathResult) []demand {
 	key := func(i int) elementKey { return elementKey{p.Profiles[i].Crystal.Name, p.Profiles[i].Element.Name} }
 	for _, d := range p.Outcome.Odds {
 		out = append(out, demand{key(d.Of), key(d.To), d.Ratio, ends(d.Ratio68), ends(d.Ratio95), d.ChiSq})
+	}
+	return out
+}
+
+// edgeOrigins are how edges came to be, as far as the data tell.
+func edgeOrigins(r *paths.Result) []edgeOrigin {
+	out := []edgeOrigin{}
+	for i := range r.Edges {
+		e := &r.Edges[i]
+		o := edgeOrigin{Crystal: e.Crystal.Name, WidthM: e.Width, Growth: e.Growth, Diffusion: e.Diffusion, Degrees: e.Degrees}
+		for _, of := range e.Elements {
+			o.Elements = append(o.Elements, of.Name)
+		}
+		if e.Prefers != paths.UnknownOrigin {
+			word := e.Prefers.String()
+			o.Prefers = &word
+		}
+		out = append(out, o)
 	}
 	return out
 }

@@ -23,6 +23,7 @@ type weighing struct {
 	Own          []ownBest     `json:"own_best"` // one a measured element
 	Paths        []weighedPath `json:"paths"`
 	History      history       `json:"history"`
+	Edges        []edgeOrigin  `json:"edges"` // of crystals of which elements share an open width of their edges
 	Families     []struct{}    `json:"families"`
 	Notes        []string      `json:"notes"`
 	Files        []string      `json:"files"` // of the folder, written by the same run, this one included; none if there is no folder
@@ -148,6 +149,18 @@ type triedStart struct {
 	Misfit      *float64       `json:"misfit"`
 	AboveTaken  *float64       `json:"misfit_above_taken"`
 	Degrees     int            `json:"degrees_of_freedom"`
+}
+
+// edgeOrigin compares growth and diffusion as what made the edges of a crystal as wide
+// as they are.
+type edgeOrigin struct {
+	Crystal   string   `json:"crystal"`
+	Elements  []string `json:"elements"`
+	WidthM    float64  `json:"growth_width_m"`
+	Growth    float64  `json:"growth_misfit"`
+	Diffusion float64  `json:"diffusion_misfit"`
+	Degrees   int      `json:"degrees_of_freedom"`
+	Prefers   *string  `json:"prefers"` // "growth" or "diffusion"; null where the data do not tell
 }
 
 type elementStart struct {

@@ -72,3 +72,24 @@ func writeStarts(w io.Writer, r *paths.Result) {
 		fmt.Fprintln(w)
 	}
 }
+
+// writeEdges says how the edges of crystals came to be as wide as they are, where the
+// data tell.
+func writeEdges(w io.Writer, r *paths.Result) {
+	for i := range r.Edges {
+		e := &r.Edges[i]
+		var names []string
+		for _, of := range e.Elements {
+			names = append(names, of.Name)
+		}
+		values := []any{e.Crystal.Name, list(names), number(e.Growth), number(e.Diffusion), e.Degrees}
+		switch e.Prefers {
+		case paths.ByGrowth:
+			fmt.Fprintf(w, "The edges of %s are of one width in %s, %s um, as growth makes them, not of widths with the root of D, as diffusion would: chi-square %s against %s, of %d.\n",
+				append(values[:2:2], append([]any{number(e.Width * 1e6)}, values[2:]...)...)...)
+		case paths.ByDiffusion:
+			fmt.Fprintf(w, "The edges of %s in %s are of widths with the root of D, as diffusion makes them, not of one width, as growth would: chi-square %s against %s, of %d.\n",
+				values[0], values[1], values[3], values[2], values[4])
+		}
+	}
+}

@@ -209,6 +209,7 @@ func writeSentences(w io.Writer, r *paths.Result) {
 				own.Element.Name, own.Crystal.Name, number(own.Scatter), own.Element.Traverse.Unit)
 		}
 	}
+	writeEdges(w, r)
 	shared := r.Study.Sharing.Whole()
 	switch {
 	case !shared && ran(r) > 0:
