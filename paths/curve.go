@@ -307,11 +307,16 @@ type sampler func(lnM []float64) ([]float64, error)
 
 // scan builds the curve of what the sampler returns.
 func scan(points, free int, chiSq sampler) (Curve, error) {
-	c := Curve{Points: points, Free: free}
 	var lnM []float64
 	for i := range scanKnots {
 		lnM = append(lnM, (2*float64(i)/(scanKnots-1)-1)*scanDecades*math.Ln10)
 	}
+	return scanFrom(lnM, points, free, chiSq)
+}
+
+// scanFrom is scan from the given knots on.
+func scanFrom(lnM []float64, points, free int, chiSq sampler) (Curve, error) {
+	c := Curve{Points: points, Free: free}
 	add := func(at []float64) ([]float64, error) { return c.sample(chiSq, at) }
 	if _, err := add(lnM); err != nil {
 		return c, err

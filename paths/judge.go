@@ -179,6 +179,13 @@ func find(c *Curve, confidence float64) Finding {
 	f.Shift68 = interval(c, best+Critical(0.68, 1))
 	f.Shift95 = interval(c, best+Critical(0.95, 1))
 	f.Ranges = c.Ranges(best + Critical(0.95, 1))
+	f.decide(lnM, best, confidence)
+	return f
+}
+
+// decide gives the verdict by the tail of the path as it is and the lowest
+// chi-square, which is at lnM.
+func (f *Finding) decide(lnM, best, confidence float64) {
 	passes := func(tail float64) bool { return tail >= 1-confidence } // false for NaN
 	switch {
 	case f.Degrees < 1:
@@ -192,7 +199,6 @@ func find(c *Curve, confidence float64) Finding {
 	default:
 		f.Verdict = TooSmooth
 	}
-	return f
 }
 
 func interval(c *Curve, level float64) [2]float64 {

@@ -19,12 +19,15 @@ import (
 )
 
 // Result is a study weighed: what became of every path, in the study's order.
+// Its Study has, after the paths that are written out, the member of each family
+// that agrees best.
 type Result struct {
 	Study    *study.Study
 	Laws     []LawPrior       // in the order of first use
 	Own      []OwnBest        // one a measured element
 	Crystals []*study.Crystal // those with a measured element, in the order of an Outcome's
-	Paths    []PathResult
+	Paths    []PathResult     // those that are written out, then one member of each family
+	Families []FamilyResult
 	Edges    []EdgeOrigin // of crystals of which elements share an open width of their edges
 	Groups   []Group      // of paths that end alike, where the crystals share their history from a moment on
 }
@@ -96,11 +99,11 @@ func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
 			Error("", "no element has a traverse, so there is nothing to weigh against",
 				`add traverse = { file = "...", ... } to an element, or use follow`)
 	}
-	if err := w.all(ctx, jobs); err != nil {
+	if err := w.run(ctx, jobs); err != nil {
 		return nil, err
 	}
 	if w.addScatter() {
-		if err := w.all(ctx, jobs); err != nil {
+		if err := w.run(ctx, jobs); err != nil {
 			return nil, err
 		}
 	}
@@ -114,6 +117,8 @@ type weighing struct {
 	crystals []*study.Crystal // with a measured element
 	laws     []LawPrior
 	paths    []weighedPath
+	written  []study.Path // those of the study itself
+	families []FamilyResult
 }
 
 // element is one that was measured.
@@ -142,7 +147,8 @@ type weighedPath struct {
 }
 
 func newWeighing(s *study.Study) (*weighing, error) {
-	w := &weighing{study: s, paths: make([]weighedPath, len(s.Paths))}
+	own := *s
+	w := &weighing{study: &own, written: s.Paths, paths: make([]weighedPath, len(s.Paths))}
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
 		hosts := c.Redrawn()
@@ -200,6 +206,28 @@ func lawPrior(l *study.Law) LawPrior {
 	return p
 }
 
+// run screens the families and solves every path, with the best of each family as
+// one more.
+func (w *weighing) run(ctx context.Context, jobs int) error {
+	w.study.Paths = slices.Clone(w.written)
+	w.families = w.families[:0]
+	for i := range w.study.Families {
+		f, err := w.screen(ctx, &w.study.Families[i], jobs)
+		if err != nil {
+			return err
+		}
+		if f.Best >= 0 {
+			var c study.Candidate
+			f.Family.At(&c, f.Best)
+			f.Path = len(w.study.Paths)
+			w.study.Paths = append(w.study.Paths, c.Path())
+		}
+		w.families = append(w.families, *f)
+	}
+	w.paths = make([]weighedPath, len(w.study.Paths))
+	return w.all(ctx, jobs)
+}
+
 // all solves every path.
 func (w *weighing) all(ctx context.Context, jobs int) error {
 	errs := make([]error, len(w.paths))
@@ -255,20 +283,8 @@ func (w *weighing) path(ctx context.Context, i int) error {
 	if !slices.ContainsFunc(w.elements, func(e element) bool { return !p.bars(e.crystal) }) {
 		return nil
 	}
-	for _, e := range w.elements {
-		if p.bars(e.crystal) {
-			p.skip(e)
-			continue
-		}
-		if err := p.add(ctx, e, path, w.laws); err != nil {
-			return fmt.Errorf("path %q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
-		}
-	}
-	if err := p.choose(ctx, w); err != nil {
-		return fmt.Errorf("path %q: %w", path.Name, err)
-	}
-	if err := p.sharpen(ctx, w); err != nil {
-		return fmt.Errorf("path %q: %w", path.Name, err)
+	if err := w.solve(ctx, &p, path); err != nil {
+		return fmt.Errorf("path %q%w", path.Name, err)
 	}
 	if err := p.showShared(w); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
@@ -277,6 +293,26 @@ func (w *weighing) path(ctx context.Context, i int) error {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	w.paths[i] = p
+	return nil
+}
+
+// solve runs every element that is not barred along the path.
+func (w *weighing) solve(ctx context.Context, p *weighedPath, path *study.Path) error {
+	for _, e := range w.elements {
+		if p.bars(e.crystal) {
+			p.skip(e)
+			continue
+		}
+		if err := p.add(ctx, e, path, w.laws); err != nil {
+			return fmt.Errorf(", %s in %s: %w", e.element.Name, e.crystal.Name, err)
+		}
+	}
+	if err := p.choose(ctx, w); err != nil {
+		return fmt.Errorf(": %w", err)
+	}
+	if err := p.sharpen(ctx, w); err != nil {
+		return fmt.Errorf(": %w", err)
+	}
 	return nil
 }
 
@@ -630,7 +666,7 @@ func (w *weighing) ownBest(n int) (of *attempt, lnM float64) {
 
 // judge turns curves into verdicts.
 func (w *weighing) judge(ctx context.Context) (*Result, error) {
-	r := &Result{Study: w.study, Laws: w.laws, Crystals: w.crystals, Paths: make([]PathResult, len(w.paths))}
+	r := &Result{Study: w.study, Laws: w.laws, Crystals: w.crystals, Paths: make([]PathResult, len(w.paths)), Families: w.families}
 	for n := range w.elements {
 		own, err := w.examine(ctx, n)
 		if err != nil {
@@ -704,11 +740,9 @@ func (w *weighing) verdict(i int, own []OwnBest) PathResult {
 	return r
 }
 
-// judgePath judges a path that was run, and says of the elements and crystals for
-// which it was not that they bar it.
-func (w *weighing) judgePath(dst *Outcome, p *weighedPath) {
-	var cs []Curve
-	var of []int // elements of the profiles
+// judged are the curves of a path that was run, with those of what sharing costs, and
+// of which elements the others are.
+func (w *weighing) judged(p *weighedPath) (cs []Curve, of []int) {
 	for n, e := range w.elements {
 		if p.ran(n) {
 			cs, of = append(cs, p.curves[n]), append(of, n)
@@ -717,6 +751,13 @@ func (w *weighing) judgePath(dst *Outcome, p *weighedPath) {
 			cs = append(cs, p.shared[e.place])
 		}
 	}
+	return cs, of
+}
+
+// judgePath judges a path that was run, and says of the elements and crystals for
+// which it was not that they bar it.
+func (w *weighing) judgePath(dst *Outcome, p *weighedPath) {
+	cs, of := w.judged(p)
 	Judge(dst, cs, w.laws, w.study.Confidence)
 	if dst.Verdict == AtOdds || slices.ContainsFunc(dst.Crystals, func(f Finding) bool { return f.Verdict == AtOdds }) {
 		dst.Odds = Demands(slices.DeleteFunc(cs, func(c Curve) bool { return c.Shared }), dst.Profiles, w.study.Confidence)

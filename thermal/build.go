@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 )
 
 // MaxLegs is the largest number of legs in a path, after reheats and repeats are unrolled.
@@ -66,7 +67,11 @@ const backWithin = 1.0
 //
 // Errors are *InputError with the spec's Place, joined if there are several; dst is then as before. Legs are counted before
 // they are unrolled, so that a repeat of too many costs neither time nor memory.
-func Build(dst *History, specs []Spec) error {
+func Build(dst *History, specs []Spec) error { return new(Builder).Build(dst, specs) }
+
+// Build is the function Build in memory that b keeps and uses again: paths of no more legs than before allocate nothing if
+// the specs are the same ones, with other values in them.
+func (b *Builder) Build(dst *History, specs []Spec) error {
 	if err := errors.Join(checkSpecs(specs, nil)...); err != nil {
 		return err
 	}
@@ -76,7 +81,7 @@ func Build(dst *History, specs []Spec) error {
 			return tooMany(n, specs[i].Place)
 		}
 	}
-	b := builder{legs: make([]Leg, 0, int(n)), taken: map[string]bool{}, counts: map[*Spec]int{}}
+	b.reset(int(n))
 	if err := b.unrollAll(specs, false); err != nil {
 		return err
 	}
@@ -178,7 +183,7 @@ func (s *Spec) checkRepeat() *InputError {
 
 // sheet is the sheet with its magma's temperature, nil if there is none.
 func (s *Spec) sheet() *Sheet {
-	if s.Sheet == nil || s.Temp == 0 {
+	if s.Sheet == nil || s.Temp == 0 || s.Temp == s.Sheet.Magma {
 		return s.Sheet
 	}
 	filled := *s.Sheet
@@ -186,14 +191,44 @@ func (s *Spec) sheet() *Sheet {
 	return &filled
 }
 
-// builder is a path while it is unrolled.
-type builder struct {
+// Builder unrolls specs into paths, one after the other. The zero value is ready; it is for one goroutine.
+type Builder struct {
 	legs      []Leg
 	stretches []stretchOf
 	taken     map[string]bool
 	counts    map[*Spec]int // occurrences so far of what is named inside a repeat
-	temp      float64       // where the path has got to, K; 0 at its start
-	setting   int           // of the spec that is unrolled
+	counted   map[occurrence]string
+	temp      float64 // where the path has got to, K; 0 at its start
+	setting   int     // of the spec that is unrolled
+}
+
+// occurrence is one of those that a repeat makes of a named spec.
+type occurrence struct {
+	name string
+	of   int // from 1
+}
+
+// reset forgets the path before and makes room for n legs.
+func (b *Builder) reset(n int) {
+	b.legs, b.stretches = slices.Grow(b.legs[:0], n), b.stretches[:0]
+	b.temp, b.setting = 0, 0
+	if b.taken == nil {
+		b.taken, b.counts, b.counted = map[string]bool{}, map[*Spec]int{}, map[occurrence]string{}
+	}
+	clear(b.taken)
+	clear(b.counts)
+}
+
+// count returns the name of the next occurrence of a spec.
+func (b *Builder) count(s *Spec) string {
+	b.counts[s]++
+	key := occurrence{s.Name, b.counts[s]}
+	name, known := b.counted[key]
+	if !known {
+		name = fmt.Sprintf("%s %d", key.name, key.of)
+		b.counted[key] = name
+	}
+	return name
 }
 
 // stretchOf is a name and the legs from ... to-1 that it stands for.
@@ -202,7 +237,7 @@ type stretchOf struct {
 	from, to int
 }
 
-func (b *builder) unrollAll(specs []Spec, repeated bool) error {
+func (b *Builder) unrollAll(specs []Spec, repeated bool) error {
 	for i := range specs {
 		if err := b.named(&specs[i], repeated); err != nil {
 			return err
@@ -212,14 +247,13 @@ func (b *builder) unrollAll(specs []Spec, repeated bool) error {
 }
 
 // named unrolls a spec and notes its name.
-func (b *builder) named(s *Spec, repeated bool) error {
+func (b *Builder) named(s *Spec, repeated bool) error {
 	if s.Name == "" {
 		return b.unroll(s, repeated)
 	}
 	name := s.Name
 	if repeated {
-		b.counts[s]++
-		name = fmt.Sprintf("%s %d", name, b.counts[s])
+		name = b.count(s)
 	}
 	if b.taken[name] {
 		return s.Place.Error(name, "second leg of this name in the path", "want names that differ; inside a repeat they are counted")
@@ -232,7 +266,7 @@ func (b *builder) named(s *Spec, repeated bool) error {
 	return err
 }
 
-func (b *builder) unroll(s *Spec, repeated bool) error {
+func (b *Builder) unroll(s *Spec, repeated bool) error {
 	b.setting = s.Setting
 	switch s.Kind {
 	case SpecHold:
@@ -254,7 +288,7 @@ func (b *builder) unroll(s *Spec, repeated bool) error {
 }
 
 // unrollFrom unrolls what begins where the path has got to.
-func (b *builder) unrollFrom(s *Spec) error {
+func (b *Builder) unrollFrom(s *Spec) error {
 	from := s.From
 	if from == 0 {
 		from = b.temp
@@ -274,7 +308,7 @@ func (b *builder) unrollFrom(s *Spec) error {
 }
 
 // reheat unrolls a reheat that rises from base.
-func (b *builder) reheat(s *Spec, base float64) error {
+func (b *Builder) reheat(s *Spec, base float64) error {
 	if s.Temp < base {
 		return s.Place.Error(tempText(s.Temp), "peak below "+tempText(base)+", where the reheat begins", "want a peak above it, or a ramp down")
 	}
@@ -296,7 +330,7 @@ func (b *builder) reheat(s *Spec, base float64) error {
 }
 
 // put appends a leg and goes to its end.
-func (b *builder) put(l Leg) {
+func (b *Builder) put(l Leg) {
 	l.Setting = b.setting
 	b.legs = append(b.legs, l)
 	b.temp = l.At(math.Inf(1))

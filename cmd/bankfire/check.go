@@ -88,6 +88,10 @@ func writeConditions(w io.Writer, s *study.Study) {
 
 // writePathsRead writes the paths with what the study's limits say of them.
 func writePathsRead(w io.Writer, s *study.Study) error {
+	writeFamiliesRead(w, s)
+	if len(s.Paths) == 0 {
+		return nil
+	}
 	table := newTable()
 	table.row("path", "life", "lowest", "highest", "")
 	for i := range s.Paths {
@@ -106,6 +110,40 @@ func writePathsRead(w io.Writer, s *study.Study) error {
 	table.writeTo(w)
 	fmt.Fprintln(w)
 	return nil
+}
+
+// writeFamiliesRead writes the families with their open values.
+func writeFamiliesRead(w io.Writer, s *study.Study) {
+	for i := range s.Families {
+		f := &s.Families[i]
+		fmt.Fprintf(w, "family %s, %s to be drawn%s:\n\n", quoted(f.Name), counted(f.Count(), "path"), drawnText(f))
+		table := newTable()
+		table.row("value", "drawn", "spread")
+		for k := range f.Values {
+			table.row(f.Values[k].Name, askedText(&f.Values[k]), f.Values[k].Spread())
+		}
+		table.writeTo(w)
+		fmt.Fprintln(w)
+	}
+}
+
+// askedText is from where a value is drawn.
+func askedText(v *study.Value) string {
+	switch v.Kind {
+	case study.Normal:
+		return valueText(v, v.Mean) + " +- " + valueText(v, v.Sigma)
+	case study.Chosen:
+		var words []string
+		for _, x := range v.Choices {
+			words = append(words, valueText(v, x))
+		}
+		return list(words)
+	}
+	lo, hi, ok := v.Ends()
+	if !ok {
+		return ""
+	}
+	return valueRange(v, [2]float64{lo, hi})
 }
 
 // writeCrystal writes a crystal with its elements. Their files are named from

@@ -20,6 +20,9 @@ func weighingFiles(r *paths.Result, summary *weighing, log *runLog) []results.Fi
 		table("profiles.csv", profilesTable),
 		table("points.csv", pointsTable),
 	}
+	for i, name := range memberFiles(r) {
+		files = append(files, table(name, membersTable(i)))
+	}
 	for i, name := range figureNames(r) {
 		files = append(files, results.File{Name: name, Write: func(w io.Writer) error { return writeFigure(w, r, i) }})
 	}

@@ -80,6 +80,15 @@ func pathNamed(s *study.Study, name string) (*study.Path, error) {
 		}
 		names = append(names, quoted(s.Paths[i].Name))
 	}
+	for i := range s.Families {
+		names = append(names, quoted(s.Families[i].Name+", member 0"))
+	}
+	if p := s.Member(name); p != nil {
+		if p.History == nil {
+			return nil, &thermal.InputError{Field: "--path", Value: name, Problem: "the member is no path: " + p.Barred[0].Why, Remedy: "name another"}
+		}
+		return p, nil
+	}
 	if name == "" {
 		return nil, &thermal.InputError{Field: "--path", Problem: "the study has several paths", Remedy: "name one of " + list(names)}
 	}

@@ -34,6 +34,15 @@ func tailText(x float64) string {
 	return number(x)
 }
 
+// smallText prints a difference of chi-square; below a thousandth nobody should read
+// digits.
+func smallText(x float64) string {
+	if x < 0.001 {
+		return "< 0.001"
+	}
+	return number(x)
+}
+
 // oneDigit prints a size of which only the magnitude matters.
 func oneDigit(x float64) string { return strconv.FormatFloat(x, 'g', 1, 64) }
 

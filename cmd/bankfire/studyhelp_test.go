@@ -35,7 +35,7 @@ func TestTopics(t *testing.T) {
 type entry struct{ key, example string }
 
 var (
-	tableHead = regexp.MustCompile(`^(top level|history|\[+[a-z.]+\]+|path\.legs[ .][a-z]+|(?:limits|law)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
+	tableHead = regexp.MustCompile(`^(top level|history|\[+[a-z.]+\]+|path\.legs[ .][a-z]+|(?:limits|law|family)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
 	entryLine = regexp.MustCompile(`^  ([A-Za-z0-9_]+)(?: = (.*?))?(?:  .*)?$`)
 )
 
@@ -162,6 +162,14 @@ const (
 	shownTraverse = "file = \"ti.csv\"\nposition = \"distance [um]\"\nzero = \"rim\"\nvalue = \"Ti [ppm]\"\nerror = \"3 %\"\nspot = \"0.8 um fwhm\"\n"
 )
 
+// drawnFamily is a family of three members.
+var drawnFamily = []string{
+	`name = "drawn"`,
+	`legs = [ { hold = "{store}", for = "{wait}" }, { ramp = "780 C", for = "{wake}" } ]`,
+	`vary = { store = { from = "640 C", to = "740 C" }, wait = { from = "1 yr", to = "1 kyr" }, wake = "3 +- 1 yr" }`,
+	`draw = { method = "halton", count = 3 }`,
+}
+
 func lines(text string) []string { return strings.Split(strings.TrimSpace(text), "\n") }
 
 func frames() []frame {
@@ -199,6 +207,9 @@ func frames() []frame {
 		leg("table", `table = "tt.csv"`, `time = "t [yr]"`, `temperature = "T [C]"`, `counts = "before eruption"`),
 		{"path.legs.conditions", shownLegs, `[ { hold = "750 C", for = "6 kyr", conditions = %s } ]`, true, nil},
 		leg("repeat", `repeat = 2`, `legs = [ { hold = "700 C", for = "1 yr" } ]`),
+		{"family", "[[threshold]]", "[[family]]\n%s\n\n[[threshold]]", false, drawnFamily},
+		{"family.draw", "[[threshold]]", "[[family]]\n" + strings.Join(drawnFamily[:3], "\n") + "\ndraw = %s\n\n[[threshold]]", true, []string{`method = "halton"`, `count = 3`}},
+		{"family.vary", "[[threshold]]", "[[family]]\n" + strings.Join(drawnFamily[:2], "\n") + "\n" + drawnFamily[3] + "\n[family.vary]\nstore = { from = \"640 C\", to = \"740 C\" }\nwake = \"3 +- 1 yr\"\nwait = %s\n\n[[threshold]]", true, []string{`from = "1 yr"`, `to = "1 kyr"`}},
 		{"crystal", shownCrystal, "%s\n", false, lines(shownCrystal)},
 		{"crystal.zones", shownZones + ", " + shownMantle, shownMantle + ", %s", true, []string{`name = "core"`, `width = "140 um"`}}, // outside
 		{"crystal.host", "shape = \"slab\"\n", "shape = \"slab\"\nhost = %s\n", true, host},
@@ -242,6 +253,7 @@ var beside = map[string][]string{
 	"crystal.element.rim following value":       {"melt", `melt = "sr-melt.csv"`, "temperature", `temperature = "T [C]"`},
 	"crystal.host unit":                         {"value", `value = "bare"`},
 	"crystal.element.traverse.error size":       {"column", "", "sigmas", ""},
+	"family.vary choices":                       {"from", "", "to", ""},
 	"crystal.host width":                        {"smooth", `smooth = "spline"`},
 	"crystal.host.error size":                   {"column", "", "sigmas", ""},
 }

@@ -17,7 +17,7 @@ func summarise(r *paths.Result, made program) *weighing {
 	w := &weighing{
 		Schema: summarySchema, Program: made, Title: r.Study.Title, Confidence: r.Study.Confidence, Year: thermal.Year,
 		Inputs: []input{}, Conditions: conditionsUsed(r.Study), Laws: lawsUsed(r.Study), Partitions: partitionsUsed(r.Study), Solubilities: solubilitiesUsed(r.Study),
-		Own: ownBests(r), Paths: []weighedPath{}, History: summariseHistory(r), Edges: edgeOrigins(r), Families: []struct{}{},
+		Own: ownBests(r), Paths: []weighedPath{}, History: summariseHistory(r), Edges: edgeOrigins(r), Families: summariseFamilies(r), Seed: drawnSeed(r),
 		Notes: filled(r.Study.Notes), Files: []string{},
 	}
 	for _, in := range r.Study.Inputs {

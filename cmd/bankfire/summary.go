@@ -9,24 +9,24 @@ const summarySchema = 1
 // element's own unit; an open end of an interval, and what does not exist, is
 // null. Runs of one build on equal inputs have equal summaries.
 type weighing struct {
-	Schema       int           `json:"schema"`
-	Program      program       `json:"program"`
-	Title        string        `json:"title"`
-	Confidence   float64       `json:"confidence"` // of the verdicts, 0 to 1
-	Year         float64       `json:"year_s"`     // what a year is taken for
-	Seed         *uint64       `json:"seed"`       // of what was drawn at random
-	Inputs       []input       `json:"inputs"`     // the study, then the files it names
-	Conditions   []string      `json:"conditions"` // as the study has them, buffers with their sources
-	Laws         []lawUsed     `json:"laws"`
-	Partitions   []lawUsed     `json:"partitions"`
-	Solubilities []lawUsed     `json:"solubilities"`
-	Own          []ownBest     `json:"own_best"` // one a measured element
-	Paths        []weighedPath `json:"paths"`
-	History      history       `json:"history"`
-	Edges        []edgeOrigin  `json:"edges"` // of crystals of which elements share an open width of their edges
-	Families     []struct{}    `json:"families"`
-	Notes        []string      `json:"notes"`
-	Files        []string      `json:"files"` // of the folder, written by the same run, this one included; none if there is no folder
+	Schema       int             `json:"schema"`
+	Program      program         `json:"program"`
+	Title        string          `json:"title"`
+	Confidence   float64         `json:"confidence"` // of the verdicts, 0 to 1
+	Year         float64         `json:"year_s"`     // what a year is taken for
+	Seed         *uint64         `json:"seed"`       // of all families; null if there are none or each has its own
+	Inputs       []input         `json:"inputs"`     // the study, then the files it names
+	Conditions   []string        `json:"conditions"` // as the study has them, buffers with their sources
+	Laws         []lawUsed       `json:"laws"`
+	Partitions   []lawUsed       `json:"partitions"`
+	Solubilities []lawUsed       `json:"solubilities"`
+	Own          []ownBest       `json:"own_best"` // one a measured element
+	Paths        []weighedPath   `json:"paths"`
+	History      history         `json:"history"`
+	Edges        []edgeOrigin    `json:"edges"` // of crystals of which elements share an open width of their edges
+	Families     []weighedFamily `json:"families"`
+	Notes        []string        `json:"notes"`
+	Files        []string        `json:"files"` // of the folder, written by the same run, this one included; none if there is no folder
 }
 
 // program says what computed a summary.

@@ -28,11 +28,12 @@ func newWeighCommand(disk results.Disk, compute func(context.Context, string, in
 	return &command{
 		name:  "weigh",
 		args:  "STUDY",
-		short: "give every path of a study its verdict",
+		short: "give every path and family of a study its verdict",
 		long: "Runs every path of the study against the measured traverse and gives each its verdict:\n" +
 			"reproduces, too sharp (the path diffuses too little), too smooth (too much) or wrong shape\n" +
 			"(no amount of diffusion would do), with the factor by which D would have to be multiplied\n" +
-			"for the path to agree best. bankfire help verdicts explains these and the columns of the report.",
+			"for the path to agree best. Of a family it draws the members, gives each its verdict and says what\n" +
+			"those that reproduce have in common. bankfire help verdicts explains these and the columns of the report.",
 		examples: []example{
 			{"bankfire weigh study.toml", "print the verdicts"},
 			{"bankfire weigh study.toml --out results", "and write tables and a figure to a new folder"},

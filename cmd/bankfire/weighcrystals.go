@@ -42,7 +42,7 @@ func writeCrystals(w io.Writer, r *paths.Result) {
 // numberCells are the numbers of a finding: shift factor, tail, chi-square and
 // that above best.
 func numberCells(f *paths.Finding) []string {
-	return []string{shiftText(f), tailText(f.Tail), fmt.Sprintf("%s/%d", number(f.Misfit), f.Degrees), number(math.Max(f.Above, 0))}
+	return []string{shiftText(f), tailText(f.Tail), fmt.Sprintf("%s/%d", number(f.Misfit), f.Degrees), smallText(f.Above)}
 }
 
 // writeScatter says along which paths the crystals' amounts of diffusion scatter

@@ -27,6 +27,7 @@ func weighingText(r *paths.Result) bytes.Buffer {
 	writeCrystals(&text, r)
 	writeStarts(&text, r)
 	writeSentences(&text, r)
+	writeFamilies(&text, r)
 	writeFits(&text, r)
 	for _, note := range gathered(common) {
 		fmt.Fprintf(&text, "every path: %s\n", note)
@@ -194,7 +195,8 @@ func (n *numbered) marks(notes []string) string {
 // writeSentences says in words what the table shows.
 func writeSentences(w io.Writer, r *paths.Result) {
 	var fit []string
-	for i := range r.Paths {
+	written := r.Written()
+	for i := range written {
 		if r.Paths[i].Outcome.Verdict == paths.Reproduces {
 			fit = append(fit, quoted(r.Paths[i].Path.Name))
 		}
@@ -214,8 +216,8 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	switch {
 	case !shared && ran(r) > 0:
 		writeHistories(w, r)
-	case slices.ContainsFunc(r.Paths, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }):
-		fmt.Fprintln(w, tally(fit, len(r.Paths), ran(r)))
+	case slices.ContainsFunc(written, func(p paths.PathResult) bool { return p.Outcome.Verdict != paths.Unjudged }):
+		fmt.Fprintln(w, tally(fit, len(written), ran(r)))
 	}
 	if shared {
 		writeScatter(w, r)

@@ -33,6 +33,7 @@ type decoder struct {
 	hostLine   int               // where it says so
 	meant      map[string]bool   // dotted keys, with the place of their table, that a mistyped key stands for
 	legs       int               // of all paths so far
+	open       *openLegs         // of the family that is being read; nil in a path
 	found      []*thermal.InputError
 	faults     int // all found, kept or not
 }
@@ -242,6 +243,9 @@ func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 	if n.kind == numberNode {
 		d.report(n, "a number without a unit", fmt.Sprintf("write it in quotes with its unit, such as %q", b.example))
 		return 0, false
+	}
+	if d.isOpen(n) {
+		return d.hole(n, b)
 	}
 	if !d.is(n, textNode, fmt.Sprintf("write it like %q", b.example)) {
 		return 0, false

@@ -35,10 +35,13 @@ func (k legKind) keys() []string { return slices.Concat(k.needs, k.options, []st
 
 // paths reads every [[path]]. The eruption of the study's top level holds for
 // those that have none of their own.
-func (d *decoder) paths(root *node) []Path {
-	list := d.need(root, "path", "write at least one [[path]] with name and legs")
+func (d *decoder) paths(root *node, seen map[string]int) []Path {
+	list := root.get("path")
+	if list == nil && root.get("family") != nil {
+		return nil
+	}
+	list = d.need(root, "path", "write at least one [[path]] with name and legs, or a [[family]]")
 	var out []Path
-	seen := map[string]int{}
 	for _, n := range d.tables(list, `begin each path with "[[path]]"`) {
 		out = append(out, d.path(n, root.get("eruption"), seen))
 	}
@@ -95,8 +98,10 @@ func (d *decoder) legList(n *node, setting int) []thermal.Spec {
 	const example = `write legs = [ { hold = "750 C", for = "800 yr" } ]`
 	list := d.need(n, "legs", example)
 	var out []thermal.Spec
-	for _, leg := range d.tables(list, example) {
+	for i, leg := range d.tables(list, example) {
+		d.open.enter(i)
 		out = append(out, d.leg(leg, setting))
+		d.open.leave()
 	}
 	return out
 }
@@ -200,13 +205,17 @@ func (d *decoder) legName(n *node) string {
 
 // reheat reports one that ends before it relaxes.
 func (d *decoder) reheat(n *node, spec *thermal.Spec) {
-	if hot := spec.Rise + spec.Dwell; spec.For > 0 && spec.For < hot {
+	if hot := spec.Rise + spec.Dwell; d.open == nil && spec.For > 0 && spec.For < hot {
 		d.report(n.get("for"), "shorter than rise and dwell together, "+span(hot), "for counts the whole reheat: write more, or leave it out")
 	}
 }
 
 func (d *decoder) times(v *node) int {
 	const remedy = "write how many times, such as repeat = 3"
+	if d.isOpen(v) {
+		n, _ := d.hole(v, times)
+		return int(n)
+	}
 	if !d.is(v, numberNode, remedy) {
 		return 0
 	}

@@ -44,6 +44,9 @@ const (
 	partitionTable
 	pathTable
 	duringTable
+	familyTable
+	drawTable
+	varyTable
 	crystalTable
 	zoneTable
 	hostTable
@@ -73,7 +76,7 @@ const (
 // tables are the kinds of table with the keys that the decoder knows. It is
 // never changed.
 var tables = [...]Table{
-	topTable:        {"", []string{"title", "confidence", "eruption", "conditions", "threshold", "limits", "history", "law", "partition", "path", "crystal"}},
+	topTable:        {"", []string{"title", "confidence", "eruption", "conditions", "threshold", "limits", "history", "law", "partition", "path", "family", "seed", "crystal"}},
 	thresholdTable:  {"threshold", []string{"name", "temperature"}},
 	limitsTable:     {"limits", []string{"life", "lowest", "highest", "above", "between"}},
 	lifeTable:       {"limits.life", []string{"shortest", "longest"}},
@@ -87,6 +90,9 @@ var tables = [...]Table{
 	partitionTable:  {"partition", []string{"name", "A", "B"}},
 	pathTable:       {"path", []string{"name", "legs", "eruption"}},
 	duringTable:     {"path.legs.conditions", []string{"pressure", "fO2", "aTiO2", "aSiO2"}},
+	familyTable:     {"family", []string{"name", "legs", "eruption", "draw", "seed", "vary"}},
+	drawTable:       {"family.draw", []string{"method", "count"}},
+	varyTable:       {"family.vary", []string{"from", "to", "spread", "choices"}},
 	crystalTable:    {"crystal", []string{"name", "mineral", "shape", "inner", "zones", "host", "host_law", "exists_from", "dissolves", "grows", "element"}},
 	zoneTable:       {"crystal.zones", []string{"name", "width", "host", "times", "added"}},
 	hostTable:       {"crystal.host", []string{"file", "position", "zero", "value", "unit", "smooth", "width", "error"}},

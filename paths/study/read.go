@@ -68,7 +68,9 @@ func (d *decoder) study(root *node) *Study {
 	s.Thresholds = d.thresholds(root.get("threshold"))
 	s.Limits = d.limits(root.get("limits"), s.Thresholds)
 	s.Sharing = d.sharing(root.get("history"))
-	s.Paths = d.paths(root)
+	seen := map[string]int{}
+	s.Paths = d.paths(root, seen)
+	s.Families = d.families(root, seen)
 	for _, i := range d.inUse() {
 		if i > 1 {
 			s.Settings = append(s.Settings, d.settings[i-1])

@@ -60,7 +60,10 @@ func (d *decoder) shares(s *Study) {
 	if len(s.Crystals) == 1 && !s.Sharing.Whole() {
 		d.note("history: there is one crystal, so that there is nothing to share")
 	}
-	if s.Sharing.From == nil {
+	if len(s.Families) > 0 && !s.Sharing.Whole() {
+		d.note("history: each member of a family is judged as the one path of all crystals")
+	}
+	if s.Sharing.From == nil || len(s.Paths) == 0 {
 		return
 	}
 	lack := d.lacking(s.Paths, func(p *Path) *thermal.InputError {

@@ -22,7 +22,8 @@ type Study struct {
 	Settings   []Setting // those of legs that state conditions of their own
 	Limits     Limits
 	Sharing    Sharing
-	Paths      []Path // at least one, names differ
+	Paths      []Path   // names differ from each other and from those of families
+	Families   []Family // at least one of the two
 	Crystals   []Crystal
 	Inputs     []Input  // the study first, then every other file in the order of its first use
 	Notes      []string // what was assumed or looks odd and stops nothing

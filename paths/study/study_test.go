@@ -77,7 +77,7 @@ func TestEveryKeyPaths(t *testing.T) {
 	near(t, "eruption of the first, from the top level", first.Eruption, (6000+80+100+5)*yr)
 	near(t, "life of the second", second.History.Life(), (400+3*(5+2*50)+30)*yr+86400)
 	near(t, "eruption of the second, its own", second.Eruption, (400+2*(5+2*50)+3)*yr)
-	if p := first.Place; p.Line != 34 || p.Col != 3 || p.File != s.File {
+	if p := first.Place; p.Line != 35 || p.Col != 3 || p.File != s.File {
 		t.Errorf("the first path is at %+v", p)
 	}
 	for _, test := range []struct {

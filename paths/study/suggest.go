@@ -28,7 +28,7 @@ func later(field string) bool {
 		field = strings.ReplaceAll(field, ".legs.legs.", ".legs.")
 	}
 	switch field {
-	case "family", "law.times",
+	case "law.times",
 		"crystal.element.rivals",
 		"crystal.element.start.scaled":
 		return true

@@ -4,37 +4,40 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"bankfire/thermal"
 )
 
 // together checks what only shows when paths, crystals and limits meet.
 func (d *decoder) together(s *Study) {
+	all := slices.Concat(s.Paths, d.probes(s.Families))
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
 		before := d.faults
-		d.exists(s.Paths, c)
+		d.exists(all, c)
 		if d.faults > before && (c.Staged() || len(c.Moves) > 0) {
 			continue // its rims would say so again
 		}
 		for j := range c.Elements {
 			e := &c.Elements[j]
-			d.moments(s.Paths, c, e, e.Inner)
-			d.moments(s.Paths, c, e, e.Rims)
+			d.moments(all, c, e, e.Inner)
+			d.moments(all, c, e, e.Rims)
 			for k := range s.Paths {
-				d.meet(c, e, &s.Paths[k])
+				d.meet(c, e, &all[k])
 			}
 		}
 	}
+	copy(s.Paths, all)
 	d.shares(s)
 	for i := range s.Limits.Between {
-		d.interval(s.Paths, &s.Limits.Between[i])
+		d.interval(all, len(s.Paths), &s.Limits.Between[i])
 	}
 }
 
-// interval notes how many paths a limit between two moments concerns. One that
-// concerns none is a problem.
-func (d *decoder) interval(paths []Path, l *Interval) {
+// interval notes how many paths a limit between two moments concerns, of the first
+// few that are written out. One that concerns none is a problem.
+func (d *decoder) interval(paths []Path, written int, l *Interval) {
 	before := d.faults
 	for _, m := range []thermal.Moment{l.From, l.To} {
 		d.lacking(paths, func(p *Path) *thermal.InputError {
@@ -42,18 +45,21 @@ func (d *decoder) interval(paths []Path, l *Interval) {
 			return inputError(err, l.Place)
 		})
 	}
-	concerned := 0
+	concerned, ofWritten := 0, 0
 	for i := range paths {
 		if l.concerns(paths[i].History) {
 			concerned++
+			if i < written {
+				ofWritten++
+			}
 		}
 	}
 	switch {
-	case d.faults > before || concerned == len(paths):
+	case d.faults > before || concerned > 0 && ofWritten == written:
 	case concerned == 0:
 		d.add(l.Place.Error("", fmt.Sprintf("no path has the legs of both %q and %q", l.From.Text, l.To.Text), "check the names of the legs"))
 	default:
-		d.note("the limit from %q to %q concerns %d of the %d paths: the others do not have its legs", l.From.Text, l.To.Text, concerned, len(paths))
+		d.note("the limit from %q to %q concerns %d of the %d paths: the others do not have its legs", l.From.Text, l.To.Text, ofWritten, written)
 	}
 }
 
@@ -131,7 +137,9 @@ func (d *decoder) meet(c *Crystal, e *Element, p *Path) {
 		on.Problem += fmt.Sprintf(" (path %q)", p.Name)
 		d.add(&on)
 	}
-	d.cold(c, e, p, seen)
+	if in := c.cold(e, p.Name, seen); in != nil {
+		d.add(in)
+	}
 	legs := seen.Legs()
 	for i := range legs {
 		if legs[i].Kind != thermal.Table {
@@ -154,20 +162,20 @@ func (d *decoder) coarse(e *Element, p *Path, rows *thermal.Rows, energy float64
 // maxLnK bounds ln K along a path.
 const maxLnK = 200
 
-// cold reports a path that, where the crystal sees it, is so cold that K of an element is out of all bounds.
-func (d *decoder) cold(c *Crystal, e *Element, p *Path, seen *thermal.History) {
+// cold says of a path that, where the crystal sees it, it is so cold that K of an element is out of all bounds.
+func (c *Crystal) cold(e *Element, name string, seen *thermal.History) *thermal.InputError {
 	if e.Partition == nil {
-		return
+		return nil
 	}
 	lowest, _ := seen.Range()
 	for i, z := range c.Zones {
 		least, most := c.HostRange(i)
 		for _, x := range []float64{least, most} {
 			if lnK := e.Partition.LnK(x, lowest); !(math.Abs(lnK) <= maxLnK) {
-				d.add(e.Place.Error("", fmt.Sprintf("its partition relation gives K = exp(%.3g) in zone %s at the coldest of path %q", lnK, z.Name, p.Name),
-					"check A and B, or leave the coldest leg out"))
-				return
+				return e.Place.Error("", fmt.Sprintf("its partition relation gives K = exp(%.3g) in zone %s at the coldest of path %q", lnK, z.Name, name),
+					"check A and B, or leave the coldest leg out")
 			}
 		}
 	}
+	return nil
 }

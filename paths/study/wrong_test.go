@@ -184,7 +184,7 @@ func wrongText() []wrong {
 		{"unknown key", title, `@titel = "sound"`, "", "titel", "unknown key", `did you mean "title"?`},
 		{"unknown key, none near", title, `@colour = 3`, "", "colour", "unknown key", "known here: title, confidence"},
 		{"unknown table", "[[threshold]]", "[[@treshold]]", "", "treshold", "unknown key", `did you mean "threshold"?`},
-		{"later table", title, "@family = { name = \"cooler\" }", "", "family", "not known in this version", "leave it out"},
+		{"one family", title, "family = @{ name = \"cooler\" }", "", "family", "a table, not a list", `begin each family with "[[family]]"`},
 		{"quoted key", title, `@"two words" = 1`, "", `"two words"`, "unknown key", "known here"},
 		{"title not a text", title, "title = @12", "", "title", "a number, not a text", "one line"},
 		{"title of two lines", title, `title = @"one\ntwo"`, "", "title", "one line of plain text", ""},

@@ -1,0 +1,225 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strconv"
+	"strings"
+
+	"bankfire/paths"
+	"bankfire/paths/study"
+	"bankfire/thermal"
+)
+
+// writeFamilies writes what became of each family.
+func writeFamilies(w io.Writer, r *paths.Result) {
+	for i := range r.Families {
+		f := &r.Families[i]
+		s := f.Summary()
+		fmt.Fprintf(w, "Family %s, %s drawn%s:\n\n", quoted(f.Family.Name), counted(f.Family.Count(), "path"), drawnText(f.Family))
+		writeValues(w, f, &s)
+		fmt.Fprintln(w)
+		for _, sentence := range familySentences(r, f, &s) {
+			fmt.Fprintln(w, sentence)
+		}
+		fmt.Fprintln(w)
+	}
+}
+
+// counted is a number of things.
+func counted(n int64, thing string) string {
+	if n == 1 {
+		return "1 " + thing
+	}
+	return strconv.FormatInt(n, 10) + " " + thing + "s"
+}
+
+// drawnText says how members were drawn.
+func drawnText(f *study.Family) string {
+	text := fmt.Sprintf(" (%s, seed %d)", f.Method(), f.Seed)
+	if f.Count() < f.Asked {
+		text = fmt.Sprintf(" (%s, of the %d asked for)", f.Method(), f.Asked)
+	}
+	return text
+}
+
+// writeValues writes the table of the values.
+func writeValues(w io.Writer, f *paths.FamilyResult, s *paths.FamilySummary) {
+	table := newTable()
+	table.row("value", "drawn", "spread", "of those that reproduce", "nine in ten of them", "")
+	for k := range s.Values {
+		v, of := &f.Family.Values[k], &s.Values[k]
+		row := []string{v.Name, valueRange(v, drawnEnds(v, of)), v.Spread()}
+		if math.IsNaN(of.Kept[0]) {
+			table.row(append(row, "none", "", "")...)
+			continue
+		}
+		table.row(append(row, valueRange(v, of.Kept), valueRange(v, [2]float64{of.Kept90[0], of.Kept90[2]}), openText(of.Open))...)
+	}
+	table.writeTo(w)
+}
+
+// drawnEnds are the ends of a range, else what was drawn.
+func drawnEnds(v *study.Value, of *paths.ValueSummary) [2]float64 {
+	if lo, hi, ok := v.Ends(); ok {
+		return [2]float64{lo, hi}
+	}
+	return of.Drawn
+}
+
+// openText says at which ends of its range the data do not bound a value.
+func openText(open [2]bool) string {
+	switch open {
+	case [2]bool{true, true}:
+		return "not bounded by the data"
+	case [2]bool{true, false}:
+		return "not bounded from below by the data"
+	case [2]bool{false, true}:
+		return "not bounded from above by the data"
+	}
+	return ""
+}
+
+func valueRange(v *study.Value, x [2]float64) string {
+	return valueText(v, x[0]) + " to " + valueText(v, x[1])
+}
+
+// valueText prints a value in the unit that people would write.
+func valueText(v *study.Value, x float64) string {
+	switch {
+	case v.Plain():
+		return number(x)
+	case v.Dim() == thermal.Temperature && v.Level():
+		return celsius(x)
+	case v.Dim() == thermal.Temperature:
+		return fmt.Sprintf("%.0f K", x)
+	case v.Dim() == thermal.Duration && x < 0:
+		return "-" + thermal.DurationText(-x)
+	case v.Dim() == thermal.Duration:
+		return thermal.DurationText(x)
+	case v.Dim() == thermal.Length:
+		return number(x) + " m"
+	}
+	return number(x) + " m2/s"
+}
+
+// familySentences say in words what the members show.
+func familySentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySummary) []string {
+	out := []string{familyTally(f)}
+	if f.Counts[paths.Reproduces] > 0 {
+		out = append(out, "How many do depends on how they were drawn, and their ranges are no confidence intervals: each passes by itself.")
+	}
+	kept := f.Counts[paths.Reproduces]
+	for k := range s.Values {
+		if kept > 0 && s.Values[k].Open != [2]bool{} {
+			out = append(out, openSentence(&f.Family.Values[k], s.Values[k].Open))
+		}
+	}
+	for _, t := range s.TradeOffs {
+		how := "rises"
+		if t.Rank < 0 {
+			how = "falls"
+		}
+		out = append(out, fmt.Sprintf("Among those that reproduce, %s %s as %s rises (rank correlation %.2f): the data bound the two together better than each.",
+			f.Family.Values[t.B].Name, how, f.Family.Values[t.A].Name, t.Rank))
+	}
+	if kept > 0 {
+		out = append(out, keptSentences(r, f, s)...)
+	}
+	if n := f.Counts[paths.TooSharp]; n > 0 {
+		out = append(out, fmt.Sprintf("Those that are too sharp need %s x more diffusion (half of them more than %s x).", span(s.More[0], s.More[2]), number(s.More[1])))
+	}
+	if n := f.Counts[paths.TooSmooth]; n > 0 {
+		out = append(out, fmt.Sprintf("Those that are too smooth need %s x less diffusion (half of them more than %s x).", span(1/s.Less[2], 1/s.Less[0]), number(1/s.Less[1])))
+	}
+	for _, b := range f.Barred {
+		out = append(out, fmt.Sprintf("Barred by %s: %d, such as member %d: %s.", b.Words, b.Count, b.First, b.Why))
+	}
+	for n, m := range f.Methods {
+		out = append(out, methodSentence(r, f, n, m))
+	}
+	return out
+}
+
+func span(lo, hi float64) string { return number(lo) + " to " + number(hi) }
+
+// openSentence says where a value is not bounded.
+func openSentence(v *study.Value, open [2]bool) string {
+	lo, hi, _ := v.Ends()
+	switch open {
+	case [2]bool{true, true}:
+		return fmt.Sprintf("%s is %s: members reproduce at %s and at %s.", v.Name, openText(open), valueText(v, lo), valueText(v, hi))
+	case [2]bool{true, false}:
+		return fmt.Sprintf("%s is %s: members reproduce down to %s, the end of its range.", v.Name, openText(open), valueText(v, lo))
+	}
+	return fmt.Sprintf("%s is %s: members reproduce up to %s, the end of its range.", v.Name, openText(open), valueText(v, hi))
+}
+
+// familyTally says how many members have which verdict.
+func familyTally(f *paths.FamilyResult) string {
+	var others []string
+	for v := paths.Unjudged; v <= paths.Barred; v++ {
+		if n := f.Counts[v]; n > 0 && v != paths.Reproduces {
+			others = append(others, fmt.Sprintf("%d %s", n, severalText(v)))
+		}
+	}
+	text := fmt.Sprintf("Of the %s drawn (%s), %d reproduce what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family), f.Counts[paths.Reproduces])
+	if f.Counts[paths.Reproduces] == 0 {
+		text = fmt.Sprintf("Of the %s drawn (%s), none reproduces what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family))
+	}
+	if len(others) == 0 {
+		return text + "."
+	}
+	return text + "; " + list(others) + "."
+}
+
+// severalText is a verdict of several members.
+func severalText(v paths.Verdict) string {
+	if v == paths.WrongShape {
+		return "are of wrong shape"
+	}
+	return "are " + v.String()
+}
+
+// spreadsText says how the values are spread: "log in wait, even in store".
+func spreadsText(f *study.Family) string {
+	var words []string
+	for i := range f.Values {
+		if v := &f.Values[i]; v.Kind != study.Tied {
+			words = append(words, v.Spread()+" in "+v.Name)
+		}
+	}
+	return strings.Join(words, ", ")
+}
+
+// keptSentences say what those that reproduce have in common.
+func keptSentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySummary) []string {
+	nine := func(q paths.Quantiles, text func(float64) string) string {
+		return text(q[0]) + " to " + text(q[2]) + ", half of them below " + text(q[1])
+	}
+	out := []string{fmt.Sprintf("Nine in ten of those that reproduce live %s.", nine(s.Life, thermal.DurationText))}
+	for k, t := range r.Study.Thresholds {
+		out = append(out, fmt.Sprintf("They spend %s above %s (%s).", nine(s.Above[k], thermal.DurationText), t.Name, celsius(t.Temp)))
+	}
+	for k, e := range f.Elements {
+		out = append(out, fmt.Sprintf("Their stand-in temperature for %s in %s is %s.", e.Element.Name, e.Crystal.Name, nine(s.StandIn[k], celsius)))
+	}
+	return out
+}
+
+// methodSentence says how the members were run for element n, and how far the one that
+// agrees best, which was run by itself as well, differs from that.
+func methodSentence(r *paths.Result, f *paths.FamilyResult, n int, m paths.FamilyMethod) string {
+	e := f.Elements[n]
+	of := e.Element.Name + " in " + e.Crystal.Name
+	if !m.Table {
+		return fmt.Sprintf("Method for %s: steps along each path, since %s.", of, m.Why)
+	}
+	text := fmt.Sprintf("Method for %s: a table of chi-square against G, since %s.", of, m.Why)
+	if f.Best >= 0 && len(f.Methods) == 1 {
+		off := math.Abs(r.Paths[f.Path].Outcome.Misfit - f.Members[f.Best].Misfit)
+		text += fmt.Sprintf(" Run in steps, member %d has a chi-square that differs by %s.", f.Best, smallText(off))
+	}
+	return text
+}
