@@ -22,8 +22,11 @@ const care = "A storage time is not a forecast; decisions about safety belong to
 func weighingText(r *paths.Result) bytes.Buffer {
 	var text bytes.Buffer
 	fmt.Fprintf(&text, "%s\n\n", r.Study.Title)
-	common, notes := writeVerdicts(&text, r)
-	fmt.Fprintln(&text)
+	var common, notes []string
+	if len(r.Paths) > 0 { // there are none where every member of every family is barred
+		common, notes = writeVerdicts(&text, r)
+		fmt.Fprintln(&text)
+	}
 	writeCrystals(&text, r)
 	writeStarts(&text, r)
 	writeSentences(&text, r)
