@@ -33,7 +33,8 @@ func newWeighCommand(disk results.Disk, compute func(context.Context, string, in
 			"reproduces, too sharp (the path diffuses too little), too smooth (too much) or wrong shape\n" +
 			"(no amount of diffusion would do), with the factor by which D would have to be multiplied\n" +
 			"for the path to agree best. Of a family it draws the members, gives each its verdict and says what\n" +
-			"those that reproduce have in common. bankfire help verdicts explains these and the columns of the report.",
+			"those that reproduce have in common. bankfire help verdicts explains these and the columns of\n" +
+			"the report.",
 		examples: []example{
 			{"bankfire weigh study.toml", "print the verdicts"},
 			{"bankfire weigh study.toml --out results", "and write tables and a figure to a new folder"},
