@@ -134,6 +134,10 @@ func familySentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySumm
 		out = append(out, fmt.Sprintf("Those that are too smooth need %s x less diffusion (half of them more than %s x).", span(1/s.Less[2], 1/s.Less[0]), number(1/s.Less[1])))
 	}
 	for _, b := range f.Barred {
+		if b.Words == b.Why {
+			out = append(out, fmt.Sprintf("Barred, %d of them, such as member %d: %s.", b.Count, b.First, b.Why))
+			continue
+		}
 		out = append(out, fmt.Sprintf("Barred by %s: %d, such as member %d: %s.", b.Words, b.Count, b.First, b.Why))
 	}
 	for n, m := range f.Methods {
