@@ -135,6 +135,9 @@ func TestDemandsOfWhom(t *testing.T) {
 // laws the study reproduces as often as its confidence says. Both within 3.3
 // standard deviations of the binomial distribution.
 func TestDemandOfASlowerLaw(t *testing.T) {
+	if underRace {
+		t.Skip("many simulations")
+	}
 	const repeats, slower = 40, 1200
 	p := couple{core: 40, mantle: 90, reach: 2 * um, spot: 0.5 * um, sigma: 3, points: 13, window: 6 * um}
 	path := p.path(t, "as it was", 1)

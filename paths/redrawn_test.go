@@ -117,6 +117,9 @@ func takenAsExact(c *study.Crystal) {
 // its shift factor holds 1 as often, although the host that the study has is off by
 // its errors. With the host taken as exact it is not.
 func TestHostErrorsKeepThePromise(t *testing.T) {
+	if underRace {
+		t.Skip("many simulations")
+	}
 	const deviations, confidence = 3.3, 0.95
 	for _, h := range hostedTruths() {
 		t.Run(h.name, func(t *testing.T) {
