@@ -11,7 +11,7 @@ type Options struct {
 	Cells     int       // about how many cells; 0 is 200
 	Finest    float64   // smallest length that matters (spot, spacing), m; 0 is a fiftieth of the crystal
 	Growth    float64   // growth of a step over the one before, and of the longest step in proportion; 0 is 0.1
-	Refined   int       // how many times Cells are doubled and Growth is halved
+	Refined   int       // how many times Cells are doubled and Growth is halved; below 0 halved and doubled
 	Faces     []float64 // the cells themselves, m; every zone boundary must be one of them
 	Fractions []float64 // the steps themselves, cumulative fractions of G rising to 1
 	Damp      int       // steps after an event done as two backward-Euler half steps; 0 is 8, -1 none
@@ -104,7 +104,7 @@ func (o Options) faces(p *Problem) ([]float64, error) {
 		if cells == 0 {
 			cells = defaultCells
 		}
-		cells <<= o.Refined
+		cells = int(math.Ldexp(float64(cells), o.Refined))
 		if finest == 0 {
 			finest = (p.size() - p.R0) * defaultFinest
 		}

@@ -6,7 +6,8 @@ import (
 	"testing"
 )
 
-// A plan refined once has twice the cells and twice the steps.
+// A plan refined once has twice the cells and twice the steps; one refined minus twice a
+// quarter of each.
 func TestRefined(t *testing.T) {
 	p := &Problem{Zones: []Zone{{Outer: 1e-4, Start: 1}, {Outer: 2e-4}}, Law: NewLaw(1e-20, 0)}
 	usual, finer := newPlan(t, p, Options{}), newPlan(t, p, Options{Refined: 1})
@@ -16,6 +17,10 @@ func TestRefined(t *testing.T) {
 	}
 	if got, want := len(finer.steps), len(named.steps); got != want {
 		t.Errorf("%d steps, want %d", got, want)
+	}
+	coarse, named := newPlan(t, p, Options{Refined: -2}), newPlan(t, p, Options{Cells: defaultCells / 4, Growth: 4 * defaultGrowth})
+	if a, b := len(coarse.Centres()), len(named.Centres()); a != b || len(coarse.steps) != len(named.steps) || len(coarse.steps) > len(usual.steps)/2 {
+		t.Errorf("%d cells and %d steps, want %d and %d", a, len(coarse.steps), b, len(named.steps))
 	}
 }
 

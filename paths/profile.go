@@ -61,7 +61,7 @@ func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
 		return nil, err
 	}
 	p := &profile{crystal: c, element: e, path: path, history: seen, free: free, refined: refined}
-	options := diffusion.Options{Finest: finest(e.Traverse), Refined: refined}
+	options := diffusion.Options{Finest: math.Ldexp(finest(e.Traverse), max(0, -refined)), Refined: refined}
 	if e.Traverse == nil {
 		return p, p.addRun(problem, e.Start.Edge.Middle(), &options)
 	}
