@@ -6,6 +6,7 @@ package failing
 
 import (
 	"errors"
+	"io"
 
 	"bankfire/cmd/bankfire/internal/results"
 )
@@ -32,6 +33,8 @@ type Disk struct {
 	At    int // the operation that fails, from 1; 0 is none
 	Mode  Mode
 	Count int // operations so far
+
+	claimed []results.Claimed
 }
 
 // fails counts an operation and returns its error.
@@ -41,6 +44,9 @@ func (d *Disk) fails() error {
 	case d.At == 0 || d.Count < d.At || d.Count > d.At && d.Mode == Once:
 		return nil
 	case d.Mode == Killed:
+		for _, f := range d.claimed {
+			f.Close() // as the system does
+		}
 		panic(ErrFull)
 	}
 	return ErrFull
@@ -83,6 +89,70 @@ func (d *Disk) Create(name string) (results.Sink, error) {
 		return nil, err
 	}
 	return &sink{f, d}, nil
+}
+
+// Open is an operation, and so is every read and closing.
+func (d *Disk) Open(name string) (io.ReadCloser, error) {
+	if err := d.fails(); err != nil {
+		return nil, err
+	}
+	f, err := results.OnDisk{}.Open(name)
+	if err != nil {
+		return nil, err
+	}
+	return &reader{f, d}, nil
+}
+
+// Claim is an operation, and so is whatever is done to the file. One that failed to be
+// made is not there.
+func (d *Disk) Claim(name string, fresh bool) (results.Claimed, error) {
+	if err := d.fails(); err != nil {
+		return nil, err
+	}
+	f, err := results.OnDisk{}.Claim(name, fresh)
+	if err != nil {
+		return nil, err
+	}
+	d.claimed = append(d.claimed, f)
+	return &file{sink{f, d}, f}, nil
+}
+
+type reader struct {
+	io.ReadCloser
+	disk *Disk
+}
+
+func (r *reader) Read(data []byte) (int, error) {
+	if err := r.disk.fails(); err != nil {
+		return 0, err
+	}
+	return r.ReadCloser.Read(data)
+}
+
+// Close closes the file also where it fails.
+func (r *reader) Close() error { return errors.Join(r.ReadCloser.Close(), r.disk.fails()) }
+
+type file struct {
+	sink
+	file results.Claimed
+}
+
+func (f *file) Read(data []byte) (int, error) {
+	if err := f.disk.fails(); err != nil {
+		return 0, err
+	}
+	return f.file.Read(data)
+}
+
+func (f *file) Seek(offset int64, whence int) (int64, error) {
+	if err := f.disk.fails(); err != nil {
+		return 0, err
+	}
+	return f.file.Seek(offset, whence)
+}
+
+func (f *file) Truncate(size int64) error {
+	return f.disk.do(func() error { return f.file.Truncate(size) })
 }
 
 type sink struct {
