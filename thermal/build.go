@@ -22,11 +22,12 @@ const (
 	SpecSheet
 	SpecTable
 	SpecRepeat // other legs several times over
+	SpecPulses // reheats at moments of their own
 )
 
 // String is the word a study uses for the kind.
 func (k SpecKind) String() string {
-	words := [...]string{"hold", "ramp", "relax", "reheat", "sheet", "table", "repeat"}
+	words := [...]string{"hold", "ramp", "relax", "reheat", "sheet", "table", "repeat", "reheats"}
 	if k < 0 || int(k) >= len(words) {
 		return "leg of no known kind"
 	}
@@ -35,19 +36,20 @@ func (k SpecKind) String() string {
 
 // Spec is a leg as a user writes it.
 type Spec struct {
-	Kind  SpecKind
-	Name  string  // "" = none
-	Temp  float64 // K: temperature of a hold, end of a ramp, ambient of a relax, peak of a reheat, magma of a sheet
-	From  float64 // K: where a ramp, relax or reheat begins; 0 = where the previous leg ended
-	For   float64 // s; 0 = not given, which a reheat and a table allow
-	Efold float64 // s, of a relax or reheat
-	Rise  float64 // s, of a reheat; 0 = at once
-	Dwell float64 // s, of a reheat
-	Sheet *Sheet  // of a sheet; its Magma is Temp where that is given
-	Rows  *Rows   // of a table
-	Times int     // of a repeat
-	Legs  []Spec  // of a repeat
-	Place Place   // where it stands in the study, for errors
+	Kind   SpecKind
+	Name   string  // "" = none
+	Temp   float64 // K: temperature of a hold, end of a ramp, ambient of a relax, peak of a reheat, lowest of reheats, magma of a sheet
+	From   float64 // K: where a ramp, relax, reheat or reheats begin; 0 = where the previous leg ended
+	For    float64 // s; 0 = not given, which a reheat and a table allow
+	Efold  float64 // s, of a relax or reheat
+	Rise   float64 // s, of a reheat; 0 = at once
+	Dwell  float64 // s, of a reheat
+	Sheet  *Sheet  // of a sheet; its Magma is Temp where that is given
+	Rows   *Rows   // of a table
+	Times  int     // of a repeat
+	Legs   []Spec  // of a repeat
+	Pulses []Pulse // of reheats, in the order of their beginnings
+	Place  Place   // where it stands in the study, for errors
 
 	Setting int // of all legs that it becomes, see Leg; a repeat has none, its legs have theirs
 }
@@ -59,8 +61,12 @@ const backWithin = 1.0
 //
 // A reheat becomes a ramp to its peak, a hold, and a relaxation towards the temperature that it rose from. It ends when
 // For has passed since it began, or without For when it is within 1 K of that temperature; the leg after it begins at that
-// temperature, so what is left is a jump. A repeat becomes its legs, Times over. A ramp, relax or reheat begins where the
-// leg before it ended, unless From is given; the first of a path needs From.
+// temperature, so what is left is a jump. A repeat becomes its legs, Times over. A ramp, relax, reheat or reheats begin where
+// the leg before it ended, unless From is given; the first of a path needs From.
+//
+// Reheats stay where they begin for the time For, but that at each moment At of their Pulses one begins: a rise to its Peak,
+// a dwell, and a relaxation. One that begins before the last has come back takes its place from the temperature reached by
+// then on, or is not felt if the last was to be as hot still. What goes on at the end is cut there.
 //
 // A name stands for all the legs that its spec becomes. Inside a repeat its occurrences are counted through the whole
 // path: "wake" becomes "wake 1", "wake 2" ... Two stretches of one name are refused.
@@ -104,6 +110,8 @@ func (s *Spec) count() float64 {
 	switch s.Kind {
 	case SpecReheat:
 		return 3
+	case SpecPulses:
+		return 3 * float64(len(s.Pulses)+1)
 	case SpecRepeat:
 		sum := 0.0
 		for i := range s.Legs {
@@ -144,6 +152,8 @@ func (s *Spec) check() *InputError {
 	case SpecReheat:
 		return firstProblem(checkTemperature(s.Temp), checkDuration(s.For), checkDuration(s.Rise), checkDuration(s.Dwell),
 			checkEfold(s.Efold), s.checkReheat())
+	case SpecPulses:
+		return firstProblem(checkTemperature(s.Temp), checkDuration(s.For), s.checkPulses())
 	case SpecSheet:
 		return firstProblem(s.sheet().check(), checkDuration(s.For))
 	case SpecTable:
@@ -151,12 +161,12 @@ func (s *Spec) check() *InputError {
 	case SpecRepeat:
 		return s.checkRepeat()
 	}
-	return &InputError{Problem: s.Kind.String(), Remedy: "want hold, ramp, relax, reheat, sheet, table or repeat"}
+	return &InputError{Problem: s.Kind.String(), Remedy: "want hold, ramp, relax, reheat, sheet, table, repeat or reheats"}
 }
 
 func (s *Spec) checkFrom() *InputError {
-	if s.Kind != SpecRamp && s.Kind != SpecRelax && s.Kind != SpecReheat {
-		return &InputError{Problem: s.Kind.String() + " with from", Remedy: "leave it out; ramp, relax and reheat have it"}
+	if s.Kind != SpecRamp && s.Kind != SpecRelax && s.Kind != SpecReheat && s.Kind != SpecPulses {
+		return &InputError{Problem: s.Kind.String() + " with from", Remedy: "leave it out; ramp, relax, reheat and reheats have it"}
 	}
 	return checkTemperature(s.From)
 }
@@ -301,6 +311,8 @@ func (b *Builder) unrollFrom(s *Spec) error {
 		b.put(Leg{Kind: Ramp, For: s.For, T0: from, T1: s.Temp})
 	case SpecRelax:
 		b.put(Leg{Kind: Relax, For: s.For, T0: from, T1: s.Temp, Tau: s.Efold})
+	case SpecPulses:
+		return b.pulses(s, from)
 	default:
 		return b.reheat(s, from)
 	}

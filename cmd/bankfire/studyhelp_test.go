@@ -35,7 +35,7 @@ func TestTopics(t *testing.T) {
 type entry struct{ key, example string }
 
 var (
-	tableHead = regexp.MustCompile(`^(top level|history|\[+[a-z.]+\]+|path\.legs[ .][a-z]+|(?:limits|law|family)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
+	tableHead = regexp.MustCompile(`^(top level|history|\[+[a-z.]+\]+|(?:path|family)\.legs[ .][a-z]+|(?:limits|law|family)\.[a-z]+|crystal\.[a-z.]+(?: [a-z]+)?)(?:  |$)`)
 	entryLine = regexp.MustCompile(`^  ([A-Za-z0-9_]+)(?: = (.*?))?(?:  .*)?$`)
 )
 
@@ -208,6 +208,7 @@ func frames() []frame {
 		{"path.legs.conditions", shownLegs, `[ { hold = "750 C", for = "6 kyr", conditions = %s } ]`, true, nil},
 		leg("repeat", `repeat = 2`, `legs = [ { hold = "700 C", for = "1 yr" } ]`),
 		{"family", "[[threshold]]", "[[family]]\n%s\n\n[[threshold]]", false, drawnFamily},
+		{"family.legs reheats", "[[threshold]]", "[[family]]\n" + drawnFamily[0] + "\n" + drawnFamily[3] + "\nlegs = [ { hold = \"690 C\", for = \"9 yr\" }, %s ]\n\n[[threshold]]", true, []string{`reheats = "5 per kyr"`, `peak = "780 C"`, `efold = "1 yr"`, `for = "1 kyr"`}},
 		{"family.draw", "[[threshold]]", "[[family]]\n" + strings.Join(drawnFamily[:3], "\n") + "\ndraw = %s\n\n[[threshold]]", true, []string{`method = "halton"`, `count = 3`}},
 		{"family.vary", "[[threshold]]", "[[family]]\n" + strings.Join(drawnFamily[:2], "\n") + "\n" + drawnFamily[3] + "\n[family.vary]\nstore = { from = \"640 C\", to = \"740 C\" }\nwake = \"3 +- 1 yr\"\nwait = %s\n\n[[threshold]]", true, []string{`from = "1 yr"`, `to = "1 kyr"`}},
 		{"crystal", shownCrystal, "%s\n", false, lines(shownCrystal)},

@@ -93,6 +93,19 @@ func (p *Points) At(dst []float64, i int64) {
 	}
 }
 
+// Stream is random numbers that belong to a point: number k is a function of the
+// seed, the name, the point, the stream and k alone.
+type Stream struct{ key uint64 }
+
+// Stream returns stream n of point i. It has nothing to do with the point's
+// coordinates, and streams have nothing to do with each other.
+func (p *Points) Stream(i int64, n int) Stream {
+	return Stream{mixed(mixed(mixed(p.key)^uint64(i)) ^ uint64(n))}
+}
+
+// Unit is number k of the stream, at least 0 and below 1.
+func (s Stream) Unit(k uint64) float64 { return unit(splitMix(s.key, k)) }
+
 const belowOne = 1 - 0x1p-53
 
 // gridLevels chooses the steps that are left open and counts the points.

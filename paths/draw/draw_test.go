@@ -166,3 +166,32 @@ func BenchmarkHalton(b *testing.B) {
 		p.At(u, int64(i))
 	}
 }
+
+// TestStreams: numbers of one place over all points and streams are uniform and
+// independent of those of the next point and stream, by the same chi-square.
+func TestStreams(t *testing.T) {
+	const n, boxes = 20000, 10
+	p := New(Halton, 7, "streams", make([]int, 2), n)
+	for what, pair := range map[string]func(i int64) (a, b float64){
+		"points":  func(i int64) (a, b float64) { return p.Stream(i, 0).Unit(3), p.Stream(i+1, 0).Unit(3) },
+		"streams": func(i int64) (a, b float64) { return p.Stream(i, 0).Unit(3), p.Stream(i, 1).Unit(3) },
+		"numbers": func(i int64) (a, b float64) { return p.Stream(i, 0).Unit(0), p.Stream(i, 0).Unit(1) },
+		"crossed": func(i int64) (a, b float64) { return p.Stream(i, 1).Unit(0), p.Stream(i+1, 0).Unit(0) },
+	} {
+		counts := make([]float64, boxes*boxes)
+		for i := range int64(n) {
+			a, b := pair(i)
+			counts[int(a*boxes)*boxes+int(b*boxes)]++
+		}
+		chi, want := 0.0, float64(n)/boxes/boxes
+		for _, c := range counts {
+			chi += (c - want) * (c - want) / want
+		}
+		if most := (distuv.ChiSquared{K: boxes*boxes - 1}).Quantile(1 - 1e-6); !(chi <= most) {
+			t.Errorf("%s: chi-square %.4g, want at most %.4g", what, chi, most)
+		}
+	}
+	if New(Halton, 8, "streams", nil, n).Stream(0, 0) == p.Stream(0, 0) || New(Halton, 7, "other", nil, n).Stream(0, 0) == p.Stream(0, 0) {
+		t.Error("the same with another seed or name")
+	}
+}

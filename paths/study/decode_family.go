@@ -22,6 +22,7 @@ type openLegs struct {
 	middle []float64 // of each value, with which the legs are checked
 	at     []int     // the leg that is being read
 	holes  []hole
+	random []randomReheats
 }
 
 // enter and leave follow the reading of legs inside legs; of a path there is
@@ -57,7 +58,7 @@ func (d *decoder) hole(n *node, b bound) (float64, bool) {
 	if !ok {
 		return 0, false
 	}
-	key := n.field[strings.LastIndex(n.field, ".")+1:]
+	key := n.field[strings.LastIndex(n.field, ".legs.")+len(".legs."):]
 	d.open.holes = append(d.open.holes, hole{at: slices.Clone(d.open.at), key: key, value: e, bound: b,
 		words: fmt.Sprintf("%s = %q on line %d", key, n.text, n.line)})
 	x := e.at(d.open.middle)
@@ -73,14 +74,14 @@ func (d *decoder) hole(n *node, b bound) (float64, bool) {
 // holeText reads the expression in n for a value with the bound.
 func (d *decoder) holeText(n *node, text string, b bound) (expression, bool) {
 	e, m, refused := d.open.names.parse(text)
-	want := measure{plain: b == times, dim: b.dim}
+	want := measure{plain: b == times || b == howMany, dim: b.dim}
 	switch {
 	case refused != nil:
 		refused.Value = thermal.Shorten(n.text)
 		d.add(refused.At(d.place(n)))
 	case !m.like(want):
 		d.report(n, fmt.Sprintf("%s where %s belongs", m, want), fmt.Sprintf("want something like %q", b.example))
-	case m.plain && !m.whole:
+	case b == times && !m.whole:
 		d.report(n, "not always a whole number", "give the ends of its range as whole numbers, such as from = 1, to = 20")
 	default:
 		return e, true
@@ -120,7 +121,11 @@ func (d *decoder) family(n, root *node, seen map[string]int) Family {
 	d.open = &openLegs{}
 	defer func() { d.open = nil }()
 	before := d.faults
-	d.vary(d.need(n, "vary", `write [family.vary] with the values that are open, such as store = { from = "640 C", to = "740 C" }`), &f)
+	vary := n.get("vary")
+	if !atRandom(n) {
+		vary = d.need(n, "vary", `write [family.vary] with the values that are open, such as store = { from = "640 C", to = "740 C" }`)
+	}
+	d.vary(vary, &f)
 	if d.faults > before {
 		return f
 	}
@@ -128,8 +133,9 @@ func (d *decoder) family(n, root *node, seen map[string]int) Family {
 	if e := cmpNode(n.get("eruption"), root.get("eruption")); e != nil {
 		d.familyEruption(e, &f)
 	}
-	f.holes = d.open.holes
+	f.holes, f.random = d.open.holes, d.open.random
 	d.unused(n, &f)
+	d.counted(&f)
 	d.draw(d.need(n, "draw", `write draw = { method = "halton", count = 20000 }`), &f)
 	return f
 }
@@ -175,7 +181,7 @@ func (d *decoder) draw(n *node, f *Family) {
 	}
 	var levels []int
 	for i := range f.Values {
-		if v := &f.Values[i]; v.Kind != Tied {
+		if v := &f.Values[i]; v.drawn() {
 			levels = append(levels, v.levels())
 		}
 	}
@@ -216,6 +222,10 @@ func (d *decoder) unused(n *node, f *Family) {
 	}
 	for i := range f.holes {
 		mark(&f.holes[i].value)
+	}
+	for i := range f.random {
+		mark(&f.random[i].count)
+		mark(&f.random[i].per)
 	}
 	if f.eruption != nil && f.eruption.offset != nil {
 		mark(f.eruption.offset)

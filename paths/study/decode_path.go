@@ -28,6 +28,7 @@ func legKinds() []legKind {
 		{thermal.SpecSheet, []string{"sheet", "host", "thickness", "position", "kappa", "for"}, []string{"name"}},
 		{thermal.SpecTable, []string{"table", "time", "temperature"}, []string{"name", "counts"}},
 		{thermal.SpecRepeat, []string{"repeat", "legs"}, []string{"name"}},
+		{thermal.SpecPulses, []string{"reheats", "peak", "efold", "for"}, []string{"name", "from", "rise", "dwell"}},
 	}
 }
 
@@ -118,7 +119,9 @@ func (d *decoder) leg(n *node, setting int) thermal.Spec {
 		d.need(n, name, "a "+kind.needs[0]+" leg needs "+strings.Join(kind.needs, ", "))
 	}
 	for _, k := range n.keys {
-		d.legValue(&spec, k.name, k.value)
+		if kind.kind != thermal.SpecPulses || !slices.Contains(eachReheat, k.name) {
+			d.legValue(&spec, k.name, k.value)
+		}
 	}
 	setting = d.legConditions(n, setting)
 	if kind.kind != thermal.SpecRepeat {
@@ -136,6 +139,8 @@ func (d *decoder) leg(n *node, setting int) thermal.Spec {
 		if n.get("legs") != nil {
 			spec.Legs = d.legList(n, setting)
 		}
+	case thermal.SpecPulses:
+		d.reheats(n, spec.Name)
 	}
 	return spec
 }
@@ -145,7 +150,9 @@ func (d *decoder) legKind(n *node) (legKind, bool) {
 	var found []legKind
 	var words []string
 	for _, kind := range legKinds() {
-		words = append(words, kind.needs[0])
+		if kind.kind != thermal.SpecPulses || d.open != nil {
+			words = append(words, kind.needs[0])
+		}
 		if n.get(kind.needs[0]) != nil {
 			found = append(found, kind)
 		}

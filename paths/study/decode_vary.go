@@ -95,14 +95,29 @@ func (d *decoder) value(n *node) Value {
 	}
 	d.keys(n, varyTable)
 	if c := n.get("choices"); c != nil {
-		for _, other := range []string{"from", "to", "spread"} {
-			if v := n.get(other); v != nil {
-				d.report(v, "beside choices", "keep choices, or from and to")
-			}
-		}
+		d.besideChoices(n)
 		return d.choices(c)
 	}
 	return d.span(n)
+}
+
+// besideChoices reports what does not go with choices.
+func (d *decoder) besideChoices(n *node) {
+	for _, other := range []string{"from", "to", "spread"} {
+		if v := n.get(other); v != nil {
+			d.report(v, "beside choices", "keep choices, or from and to")
+		}
+	}
+}
+
+// spread reads whether a range is even in the logarithm.
+func (d *decoder) spread(n *node) (log bool) {
+	const remedy = `want "even" or "log"`
+	text, ok := d.text(n, remedy)
+	if ok && text != "even" && text != "log" {
+		d.reportWord(n, "no spread", []string{"even", "log"}, remedy)
+	}
+	return text == "log"
 }
 
 // normal reads a value with an error, such as a dated age.
@@ -173,17 +188,7 @@ func (d *decoder) span(n *node) Value {
 	hi, of := d.openValue(to)
 	v := Value{Kind: Ranged, Lo: lo, Hi: hi, is: m}
 	v.is.whole, v.is.level = m.whole && of.whole, m.level || of.level
-	if s := n.get("spread"); s != nil {
-		remedy := `want "even" or "log"`
-		text, ok := d.text(s, remedy)
-		switch {
-		case !ok || text == "even":
-		case text == "log":
-			v.Log = true
-		default:
-			d.reportWord(s, "no spread", []string{"even", "log"}, remedy)
-		}
-	}
+	v.Log = d.spread(n.get("spread"))
 	switch {
 	case from == nil || to == nil || d.faults > 0:
 	case !m.like(of):

@@ -15,12 +15,13 @@ type Family struct {
 	Name   string
 	Seed   uint64
 	Asked  int64   // how many members the study asks for; a grid may have fewer
-	Values []Value // those drawn first, then those that follow from others
+	Values []Value // those drawn first, then those that follow from others, then those that are counted
 	Place  thermal.Place
 
 	points   *draw.Points
 	specs    []thermal.Spec // with what holds in the middle where a value is open
 	holes    []hole
+	random   []randomReheats
 	eruption *openMoment // nil is the end of the path
 }
 
@@ -29,10 +30,11 @@ type ValueKind int
 
 // The kinds of value.
 const (
-	Ranged ValueKind = iota // from a range
-	Chosen                  // one of several
-	Normal                  // normally distributed
-	Tied                    // follows from others
+	Ranged  ValueKind = iota // from a range
+	Chosen                   // one of several
+	Normal                   // normally distributed
+	Tied                     // follows from others
+	Counted                  // how many reheats a leg at random has
 )
 
 // Value is one open value of a family.
@@ -48,20 +50,25 @@ type Value struct {
 	tie expression // of Tied
 }
 
+// drawn reports whether the value is a coordinate of the points that are drawn.
+func (v *Value) drawn() bool { return v.Kind != Tied && v.Kind != Counted }
+
 // Plain reports whether the value is a number without a unit.
 func (v *Value) Plain() bool { return v.is.plain }
 
 // Dim is what the value measures, unless it is Plain.
 func (v *Value) Dim() thermal.Dimension { return v.is.dim }
 
-// Spread says how the value is drawn: "even", "log", "even in whole numbers", "of 3
-// choices", "normal", or as what it follows from others.
+// Spread says how the value is drawn: "even", "log", "one of 3", "normal", "Poisson",
+// or as what it follows from others.
 func (v *Value) Spread() string {
 	switch {
 	case v.Kind == Tied:
 		return "= " + v.tie.text
 	case v.Kind == Normal:
 		return "normal"
+	case v.Kind == Counted:
+		return "Poisson"
 	case v.Kind == Chosen:
 		return fmt.Sprintf("one of %d", len(v.Choices))
 	case v.Log:
@@ -139,6 +146,7 @@ type Candidate struct {
 	unit    []float64
 	specs   []thermal.Spec
 	fill    []target
+	random  []randomReheats // with the candidate's own ranges
 	builder thermal.Builder
 }
 
@@ -162,14 +170,22 @@ func (f *Family) At(dst *Candidate, i int64) {
 	f.points.At(dst.unit, i)
 	dst.Values = dst.Values[:0]
 	for k := range f.Values {
-		if v := &f.Values[k]; v.Kind == Tied {
+		switch v := &f.Values[k]; v.Kind {
+		case Tied:
 			dst.Values = append(dst.Values, v.tie.at(dst.Values))
-		} else {
+		case Counted:
+			dst.Values = append(dst.Values, 0)
+		default:
 			dst.Values = append(dst.Values, v.at(dst.unit[k]))
 		}
 	}
 	for k := range f.holes {
 		if !dst.put(&f.holes[k], &dst.fill[k]) {
+			return
+		}
+	}
+	for k := range dst.random {
+		if !dst.reheat(&dst.random[k], f.points.Stream(i, k)) {
 			return
 		}
 	}
@@ -184,13 +200,13 @@ func (f *Family) At(dst *Candidate, i int64) {
 func (c *Candidate) bind(f *Family) {
 	drawn := 0
 	for i := range f.Values {
-		if f.Values[i].Kind != Tied {
+		if f.Values[i].drawn() {
 			drawn++
 		}
 	}
-	*c = Candidate{family: f, unit: make([]float64, drawn), specs: cloneSpecs(f.specs)}
+	*c = Candidate{family: f, unit: make([]float64, drawn), specs: cloneSpecs(f.specs), random: slices.Clone(f.random)}
 	for i := range f.holes {
-		c.fill = append(c.fill, targetOf(c.specs, &f.holes[i]))
+		c.fill = append(c.fill, c.target(&f.holes[i]))
 	}
 }
 
@@ -206,12 +222,25 @@ func cloneSpecs(specs []thermal.Spec) []thermal.Spec {
 	return out
 }
 
-// targetOf finds the hole in the specs.
-func targetOf(specs []thermal.Spec, h *hole) target {
+// leg is the spec that stands there, counted through the lists of legs.
+func (c *Candidate) leg(at []int) *thermal.Spec {
 	var s *thermal.Spec
-	for _, i := range h.at {
-		s = &specs[i]
+	for specs := c.specs; len(at) > 0; at = at[1:] {
+		s = &specs[at[0]]
 		specs = s.Legs
+	}
+	return s
+}
+
+// target finds where the value of the hole goes.
+func (c *Candidate) target(h *hole) target {
+	s := c.leg(h.at)
+	if s.Kind == thermal.SpecPulses {
+		for i := range c.random {
+			if to := c.random[i].target(h); to != nil {
+				return target{values: to}
+			}
+		}
 	}
 	switch h.key {
 	case "sheet":

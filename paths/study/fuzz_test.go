@@ -40,6 +40,9 @@ life = { shortest = "1e-9 s", longest = "1e10 yr" }`,
 		f.Add(uint8(0), uint16(strings.Index(sound, "[[path]]")), uint16(0), text+"\n")
 		f.Add(uint8(0), uint16(strings.Index(sound, "spot =")), uint16(0), text+", ")
 	}
+	for _, leg := range []string{wakesLeg, `{ reheats = "{n} per {life}", from = "1 K", peak = "{n} * 1 K", efold = "{life}", for = "{life}" }`} {
+		f.Add(uint8(0), uint16(strings.Index(sound, "[[crystal]]")), uint16(0), "[[family]]\nname = \"wakes\"\nlegs = [ "+leg+" ]\ndraw = { method = \"halton\", count = 9 }\n[family.vary]\nn = { from = 0, to = 1e5 }\nlife = \"2 +- 1 kyr\"\n")
+	}
 	files := seedFiles(f)
 	f.Fuzz(func(t *testing.T, which uint8, at, length uint16, text string) {
 		base := texts[int(which)%len(texts)]
@@ -89,6 +92,7 @@ func holds(t *testing.T, data []byte, files map[string]string) {
 		return
 	}
 	mustBeFinite(t, "limits", s.Limits.Life[0], s.Limits.Life[1], s.Limits.Lowest)
+	finiteMembers(t, s)
 	for i := range s.Paths {
 		finitePath(t, &s.Paths[i])
 		if _, err := s.Limits.Barred(s.Paths[i].History); err != nil {
@@ -100,6 +104,25 @@ func holds(t *testing.T, data []byte, files map[string]string) {
 		for j := range s.Crystals {
 			for k := range s.Crystals[j].Elements {
 				finiteProblem(t, &s.Crystals[j], &s.Crystals[j].Elements[k], &s.Paths[i])
+			}
+		}
+	}
+}
+
+// finiteMembers looks at the first members of each family.
+func finiteMembers(t *testing.T, s *Study) {
+	var c Candidate
+	for i := range s.Families {
+		f := &s.Families[i]
+		for k := range min(f.Count(), 9) {
+			f.At(&c, k)
+			mustBeFinite(t, "values", c.Values...)
+			if c.Barred == "" {
+				path := c.Path()
+				finitePath(t, &path)
+			}
+			if s.Bar(&c); c.Barred != "" && c.Why == "" {
+				t.Fatalf("member %d is barred by %q, but why?", k, c.Barred)
 			}
 		}
 	}

@@ -1,6 +1,10 @@
 package study
 
-import "slices"
+import (
+	"slices"
+
+	"bankfire/thermal"
+)
 
 // Table is one kind of table of a study file.
 type Table struct {
@@ -19,7 +23,11 @@ func Tables() []Table {
 		all = append(all, Table{t.Name, slices.Clone(t.Keys)})
 		if t.Name == tables[pathTable].Name {
 			for _, kind := range legKinds() {
-				all = append(all, Table{"path.legs " + kind.needs[0], kind.keys()})
+				of := "path.legs "
+				if kind.kind == thermal.SpecPulses {
+					of = "family.legs "
+				}
+				all = append(all, Table{of + kind.needs[0], kind.keys()})
 			}
 		}
 	}

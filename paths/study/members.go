@@ -25,7 +25,10 @@ func (d *decoder) probes(families []Family) []Path {
 				out = append(out, c.Path())
 				found++
 			} else if why == "" {
-				why = c.Barred + ": " + c.Why
+				why = c.Why
+				if c.Why != c.Barred {
+					why = c.Barred + ": " + c.Why
+				}
 			}
 		}
 		if found == 0 {
