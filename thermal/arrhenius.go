@@ -58,13 +58,31 @@ func (l *Leg) LnArrheniusCold(e, t0, t1 float64) (ln, coldness float64) {
 // in a path of a million years counts in full. It does not allocate.
 func (h *History) LnArrhenius(e float64, k int, t0, t1 float64) float64 {
 	checkPower(k)
+	return h.sum(t0, t1, func(l *Leg, from, to float64) scaled { return l.arrhenius(e, k, from, to) })
+}
+
+// sum is the logarithm of the sum of what part says of the legs between t0 and t1, s, where its times count from the start of
+// the leg. It asks once about legs that come again whole.
+func (h *History) sum(t0, t1 float64, part func(l *Leg, from, to float64) scaled) float64 {
 	var sum scaled
-	for i := h.leg(t0); i < len(h.legs) && h.starts[i] < t1; i++ {
-		l, to := &h.legs[i], math.Inf(1) // whole legs by their own length: starts are rounded
+	var last [memory]scaled // of the legs before, by place
+	first := h.leg(t0)
+	whole := first // the first leg that is not cut
+	if first < len(h.legs) && h.starts[first] < t0 {
+		whole++
+	}
+	for i := first; i < len(h.legs) && h.starts[i] < t1; i++ {
+		to := math.Inf(1) // whole legs by their own length: starts are rounded
 		if t1 < h.starts[i+1] {
 			to = t1 - h.starts[i]
 		}
-		sum.add(l.arrhenius(e, k, t0-h.starts[i], to))
+		this, back := &last[i%memory], h.again[i]
+		if back > 0 && i-back >= whole && math.IsInf(to, 1) {
+			*this = last[(i-back)%memory]
+		} else {
+			*this = part(&h.legs[i], t0-h.starts[i], to)
+		}
+		*this = sum.add(*this)
 	}
 	return sum.log()
 }
@@ -78,19 +96,21 @@ func checkPower(k int) {
 // scaled is the number m exp(ln), with m of ordinary size. The zero value is 0.
 type scaled struct{ m, ln float64 }
 
-// add adds b to a.
-func (a *scaled) add(b scaled) {
+// add adds b to a and returns b with the ln of the sum, so that adding it again takes no exponential.
+func (a *scaled) add(b scaled) scaled {
 	switch {
 	case b.m == 0 || math.IsInf(b.ln, -1):
+		return b
 	case a.m == 0:
 		*a = b
-	case b.ln == a.ln:
-		a.m += b.m
+		return b
 	case b.ln > a.ln:
-		a.m, a.ln = b.m+a.m*math.Exp(a.ln-b.ln), b.ln
-	default:
-		a.m += b.m * math.Exp(b.ln-a.ln)
+		a.m, a.ln = a.m*math.Exp(a.ln-b.ln), b.ln
+	case b.ln < a.ln:
+		b.m, b.ln = b.m*math.Exp(b.ln-a.ln), a.ln
 	}
+	a.m += b.m
+	return b
 }
 
 // log is its natural logarithm.

@@ -334,7 +334,7 @@ func (b *Builder) reheat(s *Spec, base float64) error {
 		{Kind: Relax, For: back, T0: s.Temp, T1: base, Tau: s.Efold},
 	} {
 		if l.For > 0 {
-			b.put(l)
+			b.add(l)
 		}
 	}
 	b.temp = base
@@ -343,7 +343,12 @@ func (b *Builder) reheat(s *Spec, base float64) error {
 
 // put appends a leg and goes to its end.
 func (b *Builder) put(l Leg) {
+	b.add(l)
+	b.temp = l.At(math.Inf(1))
+}
+
+// add appends a leg.
+func (b *Builder) add(l Leg) {
 	l.Setting = b.setting
 	b.legs = append(b.legs, l)
-	b.temp = l.At(math.Inf(1))
 }

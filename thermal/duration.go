@@ -66,12 +66,18 @@ func (r *Rows) timeAbove(temp, until float64) float64 {
 // TimeAbove is how long the path is hotter than temp (K) before the eruption, s. See Leg.TimeAbove.
 func (h *History) TimeAbove(temp float64) float64 {
 	sum := 0.0
+	var last [memory]float64 // of the legs before, by place
 	for i := range h.legs {
-		if l := &h.legs[i]; h.starts[i+1] <= h.eruption {
-			sum += l.timeAbove(temp, l.For)
-		} else if h.starts[i] < h.eruption {
-			sum += l.timeAbove(temp, h.eruption-h.starts[i])
+		l, this, back := &h.legs[i], &last[i%memory], h.again[i]
+		switch {
+		case h.starts[i+1] > h.eruption:
+			*this = l.timeAbove(temp, max(0, h.eruption-h.starts[i]))
+		case back > 0:
+			*this = last[(i-back)%memory]
+		default:
+			*this = l.timeAbove(temp, l.For)
 		}
+		sum += *this
 	}
 	return sum
 }

@@ -3,6 +3,7 @@ package thermal
 import (
 	"fmt"
 	"math"
+	"slices"
 	"sort"
 )
 
@@ -12,6 +13,7 @@ import (
 type History struct {
 	legs     []Leg
 	starts   []float64 // of each leg, and the end of the last, s
+	again    []int     // of each leg, how far before it an equal one is; 0 if none of the last few is
 	names    []Named
 	eruption float64 // s
 }
@@ -44,7 +46,34 @@ func (h *History) Set(legs []Leg) error {
 		h.starts = append(h.starts, end)
 	}
 	h.eruption = end
+	h.findAgain()
 	return nil
+}
+
+// memory is how many legs back an equal one is looked for: more than one occurrence of most repeats has.
+const memory = 8
+
+// findAgain finds the legs that come again. In most paths they do so at the same distance as the leg before.
+func (h *History) findAgain() {
+	h.again = slices.Grow(h.again[:0], len(h.legs))
+	back := 0
+	for i := range h.legs {
+		if back == 0 || h.legs[i] != h.legs[i-back] {
+			back = h.equalBefore(i)
+		}
+		h.again = append(h.again, back)
+	}
+}
+
+// equalBefore is how far before leg i the nearest equal one is, 0 if that is too far.
+func (h *History) equalBefore(i int) int {
+	l := &h.legs[i]
+	for back := 1; back < memory && back <= i; back++ {
+		if like := &h.legs[i-back]; like.For == l.For && *like == *l {
+			return back
+		}
+	}
+	return 0
 }
 
 // checkLegs is nil, or an *InputError with the first thing that Set refuses.

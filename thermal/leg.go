@@ -156,20 +156,28 @@ func firstProblem(problems ...*InputError) *InputError {
 }
 
 func checkTemperature(temp float64) *InputError {
-	switch {
-	case temp >= coldest && temp <= hottest:
+	if temp >= coldest && temp <= hottest {
 		return nil
-	case temp <= 0:
+	}
+	return noTemperature(temp)
+}
+
+func noTemperature(temp float64) *InputError {
+	if temp <= 0 {
 		return &InputError{Value: tempText(temp), Problem: "not above absolute zero", Remedy: "want a temperature above -273.15 C"}
 	}
 	return &InputError{Value: tempText(temp), Problem: "not a temperature that a rock can have", Remedy: "want one between 1 and 100,000 K"}
 }
 
 func checkDuration(t float64) *InputError {
-	switch {
-	case t >= 0 && t <= longest:
+	if t >= 0 && t <= longest {
 		return nil
-	case t < 0:
+	}
+	return noDuration(t)
+}
+
+func noDuration(t float64) *InputError {
+	if t < 0 {
 		return &InputError{Value: timeText(t), Problem: "negative duration", Remedy: "times run forward; want a positive duration"}
 	}
 	return &InputError{Value: timeText(t), Problem: "not a duration", Remedy: "want one of at most 1e20 s (3e12 yr)"}

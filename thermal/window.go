@@ -42,18 +42,12 @@ func (w Window) below() float64 {
 // LnArrheniusIn panics unless k is 0 or 1. It does not allocate.
 func (h *History) LnArrheniusIn(e float64, k int, w Window, t0, t1 float64) float64 {
 	checkPower(k)
-	var sum scaled
-	for i := h.leg(t0); i < len(h.legs) && h.starts[i] < t1; i++ {
-		l, to := &h.legs[i], math.Inf(1) // whole legs by their own length: starts are rounded
+	return h.sum(t0, t1, func(l *Leg, from, to float64) scaled {
 		if !w.in(l.Setting) {
-			continue
+			return scaled{}
 		}
-		if t1 < h.starts[i+1] {
-			to = t1 - h.starts[i]
-		}
-		sum.add(l.arrheniusIn(e, k, w.Above, w.below(), t0-h.starts[i], to))
-	}
-	return sum.log()
+		return l.arrheniusIn(e, k, w.Above, w.below(), from, to)
+	})
 }
 
 // arrheniusIn is the integral over the part of the leg between t0 and t1 that is hotter than above and not hotter than below.
