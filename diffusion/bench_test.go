@@ -5,12 +5,12 @@ import (
 	"math"
 	"slices"
 	"testing"
-	"time"
 
+	"bankfire/diffusion/yardstick"
 	"bankfire/thermal"
 )
 
-const benchCells = 200
+const benchCells = yardstick.Cells
 
 // benchProblem is a slab of 200 cells with three zones and a held rim, of the
 // kind that a screening solves most.
@@ -56,57 +56,12 @@ func benchJobs(tb testing.TB, plan *Plan, n int) []Job {
 	return jobs
 }
 
-// referenceKernel is one path on 200 cells by Crank-Nicolson, the matrix factored
-// in every step and solved by plain elimination from one end (Thomas 1949): what
-// speeds are measured against.
-type referenceKernel struct{ c, factor, rhs []float64 }
-
-func newReferenceKernel() *referenceKernel {
-	k := &referenceKernel{c: make([]float64, benchCells), factor: make([]float64, benchCells), rhs: make([]float64, benchCells)}
-	for i := range k.c {
-		k.c[i] = float64(i % 7)
-	}
-	return k
-}
-
-// step solves (I - r/2 L) w = c and puts c to 2 w - c, sealed at one end and held
-// at 70 at the other.
-func (k *referenceKernel) step(r float64) {
-	c, factor, rhs := k.c, k.factor[:len(k.c)], k.rhs[:len(k.c)]
-	half := r / 2
-	n := len(c)
-	inv := 1 / (1 + half)
-	factor[0], rhs[0] = half*inv, c[0]*inv
-	for i := 1; i < n; i++ {
-		diagonal, right := 1+2*half, c[i]
-		if i == n-1 {
-			diagonal, right = 1+3*half, c[i]+2*half*70
-		}
-		inv = 1 / (diagonal - half*factor[i-1])
-		factor[i] = half * inv
-		rhs[i] = (right + half*rhs[i-1]) * inv
-	}
-	w := rhs[n-1]
-	c[n-1] = 2*w - c[n-1]
-	for i := n - 2; i >= 0; i-- {
-		w = rhs[i] + factor[i]*w
-		c[i] = 2*w - c[i]
-	}
-}
-
-// run does as many steps as one run of the solver on benchProblem.
-func (k *referenceKernel) run(steps int) {
-	for i := range steps {
-		k.step(0.5 + float64(i%10))
-	}
-}
-
 func BenchmarkReference(b *testing.B) {
-	k := newReferenceKernel()
+	k := yardstick.NewKernel()
 	const steps = 200
 	b.ReportAllocs()
 	for b.Loop() {
-		k.run(steps)
+		k.Run(steps)
 	}
 	perNodeStep(b, steps*benchCells)
 }
@@ -203,27 +158,15 @@ func BenchmarkCourse(b *testing.B) {
 // kernelRatio returns the time of a node and step in Run, as a part of that in
 // the reference kernel: the median of rounds that alternate.
 func kernelRatio(plan *Plan, dst []Field, jobs []Job, rounds int) float64 {
-	k := newReferenceKernel()
+	k := yardstick.NewKernel()
 	_ = plan.Run(dst, jobs)
 	steps := dst[0].Stats.Steps
 	ratios := make([]float64, rounds)
 	for i := range ratios {
-		ours := timed(func() { _ = plan.Run(dst, jobs) })
-		reference := timed(func() { k.run(steps) })
+		ours := yardstick.Timed(func() { _ = plan.Run(dst, jobs) })
+		reference := yardstick.Timed(func() { k.Run(steps) })
 		ratios[i] = ours / float64(len(jobs)) / reference
 	}
 	slices.Sort(ratios)
 	return ratios[rounds/2]
-}
-
-// timed returns the least time of one call of f among some, s: what else the
-// machine does can only add to it.
-func timed(f func()) float64 {
-	best := math.Inf(1)
-	for range 5 {
-		start := time.Now()
-		f()
-		best = math.Min(best, time.Since(start).Seconds())
-	}
-	return best
 }

@@ -7,6 +7,7 @@ import (
 	"slices"
 	"testing"
 
+	"bankfire/diffusion/yardstick"
 	"bankfire/thermal"
 )
 
@@ -723,16 +724,16 @@ func BenchmarkCoupled(b *testing.B) {
 			for b.Loop() {
 				part.do()
 			}
-			k := newReferenceKernel()
+			k := yardstick.NewKernel()
 			best := math.Inf(1)
 			for try := 0; try < tries && !(best <= limit); try++ { // a busy machine can spoil a measurement, not improve it
 				const paths, steps = 30, 100
-				ours := timed(func() {
+				ours := yardstick.Timed(func() {
 					for range paths {
 						part.do()
 					}
 				})
-				best = math.Min(best, ours/paths/(timed(func() { k.run(steps) })/steps))
+				best = math.Min(best, ours/paths/(yardstick.Timed(func() { k.Run(steps) })/steps))
 			}
 			b.ReportMetric(float64(dst[0].Stats.Steps), "solves")
 			b.ReportMetric(best, "reference-steps")

@@ -7,6 +7,7 @@ import (
 	"slices"
 	"testing"
 
+	"bankfire/diffusion/yardstick"
 	"bankfire/thermal"
 )
 
@@ -500,17 +501,17 @@ func BenchmarkOwn(b *testing.B) {
 			for b.Loop() {
 				paths()
 			}
-			k := newReferenceKernel()
+			k := yardstick.NewKernel()
 			best := math.Inf(1)
 			for try := 0; try < 5 && !(best <= test.limit); try++ { // as in BenchmarkRun
 				const steps = 100
 				rounds := 24 / test.jobs // short enough to be left alone
-				ours := timed(func() {
+				ours := yardstick.Timed(func() {
 					for range rounds {
 						paths()
 					}
 				})
-				best = math.Min(best, ours/float64(rounds*test.jobs)/(timed(func() { k.run(steps) })/steps))
+				best = math.Min(best, ours/float64(rounds*test.jobs)/(yardstick.Timed(func() { k.Run(steps) })/steps))
 			}
 			b.ReportMetric(best, "reference-steps")
 			b.ReportMetric(float64(dst[0].Stats.Steps), "solves")
