@@ -5,29 +5,30 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"sync"
-	"sync/atomic"
 
 	"bankfire/paths/study"
+	"bankfire/thermal"
 )
 
 // FamilyResult is a family weighed.
 type FamilyResult struct {
 	Family   *study.Family
-	Methods  []FamilyMethod // one a measured element
-	Members  []Member       // in the order of their index
+	Methods  []FamilyMethod // one a measured element; none if every member is barred
+	Tally    Tally          // of the members that were screened
 	Barred   []FamilyBar    // why members are ruled out, the commonest first
-	Counts   [Barred + 1]int64
-	Best     int64 // the member with the lowest chi-square; -1 if all are barred
-	Path     int   // its place among the paths of the result
+	Path     int            // the place of the best member among the paths of the result
 	Elements []FamilyElement
+	Summary  FamilySummary
 }
+
+// Best is the member with the lowest chi-square; -1 if all that were screened are barred.
+func (f *FamilyResult) Best() int64 { return f.Tally.Best }
 
 // Written are the paths that the study writes out, without the members of families.
 func (r *Result) Written() []PathResult {
 	n := len(r.Paths)
 	for i := range r.Families {
-		if r.Families[i].Best >= 0 {
+		if r.Families[i].Best() >= 0 {
 			n--
 		}
 	}
@@ -46,81 +47,70 @@ type FamilyMethod struct {
 	Why   string
 }
 
-// FamilyBar is one reason for which members are ruled out.
-type FamilyBar struct {
-	Words string // the same for all
-	Count int64
-	First int64  // the first of them
-	Why   string // what is wrong with that
-}
-
-// Member is what is kept of one member.
-type Member struct {
-	Values  []float64 // SI, in the order of the family's
-	Verdict Verdict
-	Shift   float64 // NaN, as the rest, if it is barred
-	Shift95 [2]float64
-	Tail    float64
-	Misfit  float64
-	Life    float64   // start to eruption, s
-	Above   []float64 // time above each of the study's thresholds before eruption, s
-	StandIn []float64 // of each measured element, K, if the member reproduces; 0 where nothing diffuses
-}
-
-// How many members are a unit of work: those that are only looked up, and those that
-// are run.
+// The ways to find what chi-square a member has.
 const (
-	tableBlock = 4096
-	stepBlock  = 8
+	ByChoice Method = iota // by a table where one serves, else in steps
+	ByTable                // by a table of chi-square against G
+	InSteps                // by running each member
 )
 
-// screening is a family in the course of being weighed.
-type screening struct {
+// Method is one of them.
+type Method int
+
+// engine gives the members of one family their verdicts.
+type engine struct {
 	*weighing
-	family *study.Family
-	tables []*gTable // one an element; nil if its members are run
-	kept   []Member
+	family  *study.Family
+	tables  []*gTable // one an element; nil if its members are run
+	methods []FamilyMethod
+	steps   bool // at least one element is run
 }
 
-// screen gives every member of a family its verdict, up to jobs at the same time.
-func (w *weighing) screen(ctx context.Context, f *study.Family, jobs int) (*FamilyResult, error) {
-	s := &screening{weighing: w, family: f, kept: make([]Member, f.Count())}
-	out := &FamilyResult{Family: f, Best: -1}
-	for _, e := range w.elements {
-		out.Elements = append(out.Elements, FamilyElement{e.crystal, e.element})
+// engine prepares the screening of a family of which first is the first member that is
+// not barred, nil if all are.
+func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Path, by Method) (*engine, error) {
+	e := &engine{weighing: w, family: f, tables: make([]*gTable, len(w.elements))}
+	if first == nil {
+		return e, nil
 	}
-	first, err := s.first(ctx)
-	if err != nil {
-		return nil, err
+	why := e.linked()
+	if by == InSteps {
+		why = "that was asked for"
 	}
-	if first != nil {
-		if out.Methods, err = s.prepare(ctx, first); err != nil {
-			return nil, err
+	e.methods = slices.Repeat([]FamilyMethod{{Why: why}}, len(e.elements))
+	for n := range e.elements {
+		of := &e.elements[n]
+		if why == "" {
+			t, reason, err := newTable(ctx, of, first, w.study.Confidence)
+			if err != nil {
+				return nil, fmt.Errorf("%s, %s in %s: %w", first.Name, of.element.Name, of.crystal.Name, err)
+			}
+			e.tables[n], e.methods[n] = t, FamilyMethod{t != nil, reason}
+		}
+		if by == ByTable && e.tables[n] == nil {
+			return nil, noTable(f, of, e.methods[n].Why)
 		}
 	}
-	if out.Barred, err = s.all(ctx, jobs); err != nil {
-		return nil, err
-	}
-	out.Members = s.kept
-	for i := range out.Members {
-		m := &out.Members[i]
-		out.Counts[m.Verdict]++
-		if m.Verdict != Barred && (out.Best < 0 || m.Misfit < out.Members[out.Best].Misfit) {
-			out.Best = int64(i)
-		}
-	}
-	return out, nil
+	e.steps = slices.Contains(e.tables, nil)
+	return e, nil
 }
 
-// first is the first member that is not barred; nil if all are.
-func (s *screening) first(ctx context.Context) (*study.Path, error) {
+// noTable says why a table that is asked for cannot be.
+func noTable(f *study.Family, of *element, why string) error {
+	return &thermal.InputError{Field: "method", Value: "table",
+		Problem: fmt.Sprintf("no table holds %s in %s for family %q: %s", of.element.Name, of.crystal.Name, f.Name, why),
+		Remedy:  "leave the method out; members are then run in steps where they must be"}
+}
+
+// first is the first member of a family that is not barred; nil if all are.
+func (w *weighing) first(ctx context.Context, f *study.Family) (*study.Path, error) {
 	var c study.Candidate
-	for i := range s.family.Count() {
+	for i := range f.Count() {
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		s.family.At(&c, i)
-		if s.study.Bar(&c); c.Barred == "" {
+		f.At(&c, i)
+		if w.study.Bar(&c); c.Barred == "" {
 			path := c.Path()
 			return &path, nil
 		}
@@ -128,35 +118,16 @@ func (s *screening) first(ctx context.Context) (*study.Path, error) {
 	return nil, nil
 }
 
-// prepare makes the tables.
-func (s *screening) prepare(ctx context.Context, first *study.Path) ([]FamilyMethod, error) {
-	if why := s.linked(); why != "" {
-		s.tables = make([]*gTable, len(s.elements))
-		return slices.Repeat([]FamilyMethod{{Why: why}}, len(s.elements)), nil
-	}
-	var methods []FamilyMethod
-	for n := range s.elements {
-		e := &s.elements[n]
-		t, why, err := newTable(ctx, e, first, s.study.Confidence)
-		if err != nil {
-			return nil, fmt.Errorf("%s, %s in %s: %w", first.Name, e.element.Name, e.crystal.Name, err)
-		}
-		s.tables = append(s.tables, t)
-		methods = append(methods, FamilyMethod{t != nil, why})
-	}
-	return methods, nil
-}
-
 // linked says what elements of a crystal decide together on each path, "" if nothing:
 // then no table of one by itself holds it.
-func (s *screening) linked() string {
-	for place, c := range s.crystals {
+func (e *engine) linked() string {
+	for place, c := range e.crystals {
 		if len(c.Choices()) > 1 {
 			return "the start is one of several, from which each path takes one"
 		}
 		open := 0
-		for _, n := range s.members(place) {
-			if !s.elements[n].element.Start.Edge.Fixed() {
+		for _, n := range e.members(place) {
+			if !e.elements[n].element.Start.Edge.Fixed() {
 				open++
 			}
 		}
@@ -167,164 +138,114 @@ func (s *screening) linked() string {
 	return ""
 }
 
-// all screens the members in blocks and returns the reasons of those that are barred.
-func (s *screening) all(ctx context.Context, jobs int) ([]FamilyBar, error) {
-	size := int64(tableBlock)
-	if slices.Contains(s.tables, nil) {
-		size = stepBlock
+// How many members are a unit of work: those that are only looked up, and those that
+// are run.
+const (
+	tableChunk = BlockSize
+	stepChunk  = 8
+)
+
+// chunk is how many members are a unit of work.
+func (e *engine) chunk() int64 {
+	if e.steps {
+		return stepChunk
 	}
-	count := s.family.Count()
-	blocks := (count + size - 1) / size
-	bars, errs := make([]map[string]FamilyBar, blocks), make([]error, blocks)
-	var next atomic.Int64
-	var failed atomic.Bool
-	var team sync.WaitGroup
-	for range max(1, min(int64(jobs), blocks)) {
-		team.Go(func() {
-			var c study.Candidate
-			for !failed.Load() {
-				k := next.Add(1) - 1
-				if k >= blocks {
-					return
-				}
-				if bars[k], errs[k] = s.block(ctx, &c, k*size, min((k+1)*size, count)); errs[k] != nil {
-					failed.Store(true)
-				}
+	return tableChunk
+}
+
+// member is one in the course of being screened.
+type member struct {
+	Row
+	values, above []float64
+	life          float64
+	numErr        float64 // that was audited, in sigma; NaN if it was not
+	barred, why   string
+}
+
+// desk is what one worker works with, from member to member.
+type desk struct {
+	candidates [stepChunk]study.Candidate // those of a chunk that are run, else the first
+	lnG        []float64
+}
+
+// judge gives each of the members its verdict.
+func (e *engine) judge(ctx context.Context, d *desk, members []member) error {
+	if e.steps {
+		return e.run(ctx, d, members)
+	}
+	c := &d.candidates[0]
+	for i := range members {
+		if i%mostUnasked == 0 && ctx.Err() != nil {
+			return ctx.Err()
+		}
+		if m := &members[i]; e.draw(c, m) {
+			if err := e.look(c, m, d); err != nil {
+				return err
 			}
-		})
-	}
-	team.Wait()
-	if err := ctx.Err(); err != nil {
-		return nil, err
-	}
-	for _, err := range errs {
-		if err != nil {
-			return nil, err
-		}
-	}
-	return joinBars(bars), nil
-}
-
-// joinBars adds the reasons of all blocks, the commonest first.
-func joinBars(blocks []map[string]FamilyBar) []FamilyBar {
-	place := map[string]int{}
-	var all []FamilyBar
-	for _, block := range blocks {
-		for words, b := range block {
-			k, known := place[words]
-			if !known {
-				place[words] = len(all)
-				all = append(all, b)
-				continue
-			}
-			all[k].Count += b.Count
-		}
-	}
-	slices.SortFunc(all, func(a, b FamilyBar) int {
-		if a.Count != b.Count {
-			return int(b.Count - a.Count)
-		}
-		return int(a.First - b.First)
-	})
-	return all
-}
-
-// block screens the members from ... to-1.
-func (s *screening) block(ctx context.Context, c *study.Candidate, from, to int64) (map[string]FamilyBar, error) {
-	bars := map[string]FamilyBar{}
-	numbers := make([]float64, 0, int(to-from)*(len(s.family.Values)+len(s.study.Thresholds)))
-	lnG := make([]float64, len(s.elements))
-	for i := from; i < to; i++ {
-		if err := ctx.Err(); err != nil {
-			return nil, err
-		}
-		s.family.At(c, i)
-		s.study.Bar(c)
-		m := &s.kept[i]
-		at := len(numbers)
-		numbers = append(numbers, c.Values...)
-		m.Values = numbers[at:len(numbers):len(numbers)]
-		if c.Barred != "" {
-			b, known := bars[c.Barred]
-			if !known {
-				b = FamilyBar{Words: c.Barred, First: i, Why: c.Why}
-			}
-			b.Count++
-			bars[c.Barred] = b
-			m.bar()
-			continue
-		}
-		at = len(numbers)
-		for _, t := range s.study.Thresholds {
-			numbers = append(numbers, c.History.TimeAbove(t.Temp))
-		}
-		m.Above, m.Life = numbers[at:len(numbers):len(numbers)], c.History.Eruption()
-		if err := s.member(ctx, c, m, lnG); err != nil {
-			return nil, err
-		}
-	}
-	return bars, nil
-}
-
-// bar is what is kept of a member that is barred.
-func (m *Member) bar() {
-	nan := math.NaN()
-	m.Verdict, m.Shift, m.Shift95, m.Tail, m.Misfit, m.Life = Barred, nan, [2]float64{nan, nan}, nan, nan, nan
-}
-
-// member judges one member. lnG is scratch.
-func (s *screening) member(ctx context.Context, c *study.Candidate, m *Member, lnG []float64) error {
-	for n := range s.elements {
-		lnG[n] = s.elements[n].element.Law.Law.LnIntegral(&c.History, 0, c.History.Life())
-	}
-	var f Finding
-	if t := s.tables[0]; len(s.tables) == 1 && t != nil {
-		f = t.find(lnG[0], s.study.Confidence)
-	} else {
-		path := c.Path()
-		cs, err := s.curves(ctx, &path, lnG)
-		if err != nil {
-			return err
-		}
-		f = jointly(cs, alone(cs, s.study.Confidence), s.study.Confidence)
-	}
-	m.Verdict, m.Shift, m.Shift95, m.Tail, m.Misfit = f.Verdict, f.Shift, f.Shift95, f.Tail, f.Misfit
-	if m.Verdict == Reproduces {
-		for n := range s.elements {
-			m.StandIn = append(m.StandIn, standIn(s.elements[n].element.Law.Law, &c.History, lnG[n]))
 		}
 	}
 	return nil
 }
 
-// curves are those of a member's profiles, from the tables or by running it.
-func (s *screening) curves(ctx context.Context, path *study.Path, lnG []float64) ([]Curve, error) {
-	var p weighedPath
-	if !slices.ContainsFunc(s.tables, func(t *gTable) bool { return t != nil }) {
-		if err := s.solve(ctx, &p, path); err != nil {
-			return nil, fmt.Errorf("%q%w", path.Name, err)
-		}
-		cs, _ := s.judged(&p)
-		return cs, nil
+// mostUnasked is how many members are looked up before it is asked again whether to stop.
+const mostUnasked = 64
+
+// draw makes c the member and reports whether it is to be judged: it is not if it is barred.
+func (e *engine) draw(c *study.Candidate, m *member) bool {
+	e.family.At(c, m.Index)
+	e.study.Bar(c)
+	copy(m.values, c.Values)
+	m.numErr, m.barred, m.why = math.NaN(), c.Barred, c.Why
+	if c.Barred != "" {
+		m.bar()
+		return false
 	}
-	var cs []Curve
-	var each []sampler
-	for n, e := range s.elements {
-		if t := s.tables[n]; t != nil {
-			cs, each = append(cs, t.on(lnG[n])), append(each, t.sampler(lnG[n]))
-			continue
-		}
-		if err := p.add(ctx, e, path, s.laws); err != nil {
-			return nil, fmt.Errorf("%q, %s in %s: %w", path.Name, e.element.Name, e.crystal.Name, err)
-		}
-		last := len(p.profiles) - 1
-		cs, each = append(cs, p.curves[last]), append(each, p.profiles[last].sampler(ctx))
+	m.life = c.History.Eruption()
+	for k := range e.study.Thresholds {
+		m.above[k] = c.History.TimeAbove(e.study.Thresholds[k].Temp)
 	}
-	if len(p.profiles) == 0 {
-		return cs, nil
+	return true
+}
+
+// look judges a member by the tables.
+func (e *engine) look(c *study.Candidate, m *member, d *desk) error {
+	lnG := e.integrals(d, c)
+	if len(e.tables) == 1 {
+		f := e.tables[0].find(lnG[0], e.study.Confidence)
+		e.found(m, &f, c, lnG)
+		return nil
+	}
+	cs := make([]Curve, len(e.tables))
+	each := make([]sampler, len(e.tables))
+	for n, t := range e.tables {
+		cs[n], each[n] = t.on(lnG[n]), t.sampler(lnG[n])
 	}
 	if err := sharpen(cs, each); err != nil {
-		return nil, fmt.Errorf("%q: %w", path.Name, err)
+		return fmt.Errorf("%q: %w", c.Path().Name, err)
 	}
-	return cs, nil
+	f := jointly(cs, alone(cs, e.study.Confidence), e.study.Confidence)
+	e.found(m, &f, c, lnG)
+	return nil
+}
+
+// integrals are ln G of each element along the member, in memory of the desk's.
+func (e *engine) integrals(d *desk, c *study.Candidate) []float64 {
+	d.lnG = d.lnG[:0]
+	for n := range e.elements {
+		d.lnG = append(d.lnG, e.elements[n].element.Law.Law.LnIntegral(&c.History, 0, c.History.Life()))
+	}
+	return d.lnG
+}
+
+// found notes what was found of the member.
+func (e *engine) found(m *member, f *Finding, c *study.Candidate, lnG []float64) {
+	m.find(f)
+	if m.Verdict != Reproduces {
+		m.StandIn = m.StandIn[:0]
+		return
+	}
+	m.StandIn = m.StandIn[:len(e.elements)]
+	for n := range e.elements {
+		m.StandIn[n] = standIn(e.elements[n].element.Law.Law, &c.History, lnG[n])
+	}
 }

@@ -1,6 +1,7 @@
 package paths
 
 import (
+	"bytes"
 	"fmt"
 	"math"
 	"os"
@@ -57,6 +58,31 @@ dwell = { choices = ["1 yr", "10 yr"] }
 	return s
 }
 
+// screened is a study with the rows of all members of its first family.
+func screened(t *testing.T, s *study.Study, jobs int) (*Result, []Row) {
+	t.Helper()
+	sc, err := NewScreening(t.Context(), s, ScreenOptions{Keep: Keep{All: true}, Jobs: jobs})
+	if err != nil {
+		t.Fatal(err)
+	}
+	tallies := make([]Tally, len(s.Families))
+	var rows []Row
+	if err := sc.Screen(t.Context(), 0, sc.Blocks(), func(b *Block) error {
+		tallies[b.Family].Add(&b.Tally)
+		if b.Family == 0 {
+			rows = append(rows, b.Rows...)
+		}
+		return nil
+	}); err != nil {
+		t.Fatal(err)
+	}
+	r, err := sc.Finish(t.Context(), tallies)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return r, rows
+}
+
 const stepsRim = `[ { held = "mantle" }, { held = "mantle", from = "end of store" } ]`
 
 func weighedBy(t *testing.T, s *study.Study, jobs int) *Result {
@@ -84,12 +110,12 @@ func TestMemberInStepsIsItsPath(t *testing.T) {
 	for i := range int64(members) {
 		text.WriteString(writtenOut(&s.Families[0], i))
 	}
-	r := weighedBy(t, familyStudy(t, members, stepsRim, text.String()), 2)
+	r, rows := screened(t, familyStudy(t, members, stepsRim, text.String()), 2)
 	if m := r.Families[0].Methods; len(m) != 1 || m[0].Table || !strings.Contains(m[0].Why, "rim") {
 		t.Errorf("methods %v", m)
 	}
-	for i := range r.Families[0].Members {
-		m, o := &r.Families[0].Members[i], &r.Paths[i].Outcome
+	for i := range rows {
+		m, o := &rows[i], &r.Paths[i].Outcome
 		if m.Verdict != o.Verdict || m.Misfit != o.Misfit || m.Shift != o.Shift || m.Tail != o.Tail || m.Shift95 != o.Shift95 {
 			t.Errorf("member %d: %v, chi-square %v, shift %v; as a path %v, %v, %v", i, m.Verdict, m.Misfit, m.Shift, o.Verdict, o.Misfit, o.Shift)
 		}
@@ -114,15 +140,15 @@ func TestTableAgreesWithSteps(t *testing.T) {
 	for i := int64(0); i < members; i += every {
 		text.WriteString(writtenOut(&s.Families[0], i))
 	}
-	r := weighedBy(t, familyStudy(t, members, held, text.String()), 2)
+	r, rows := screened(t, familyStudy(t, members, held, text.String()), 2)
 	f := &r.Families[0]
 	if !f.Methods[0].Table {
 		t.Fatalf("methods %v", f.Methods)
 	}
-	lowest := f.Members[f.Best].Misfit
+	lowest := f.Tally.Misfit
 	verdicts := map[Verdict]int{}
 	for i := range r.Written() {
-		m, o := &f.Members[i*every], &r.Paths[i].Outcome
+		m, o := &rows[i*every], &r.Paths[i].Outcome
 		verdicts[o.Verdict]++
 		allowed := tableError(o.Misfit, lowest)
 		if !(math.Abs(m.Misfit-o.Misfit) <= allowed) {
@@ -141,49 +167,78 @@ func TestTableAgreesWithSteps(t *testing.T) {
 	}
 }
 
-// TestFamilyDoesNotDependOnJobs, nor on how many are drawn.
+// TestFamilyDoesNotDependOnJobs, nor a member on how many are drawn.
 func TestFamilyDoesNotDependOnJobs(t *testing.T) {
-	one := weighedBy(t, familyStudy(t, 9000, `{ held = "mantle" }`, ""), 1).Families[0]
-	four := weighedBy(t, familyStudy(t, 9000, `{ held = "mantle" }`, ""), 4).Families[0]
-	more := weighedBy(t, familyStudy(t, 9500, `{ held = "mantle" }`, ""), 3).Families[0]
-	for i := range one.Members {
-		a := fmt.Sprint(one.Members[i])
-		if b, c := fmt.Sprint(four.Members[i]), fmt.Sprint(more.Members[i]); a != b || a != c {
-			t.Fatalf("member %d: %s, %s and %s", i, a, b, c)
+	one, rows := screened(t, familyStudy(t, 9000, `{ held = "mantle" }`, ""), 1)
+	want := encoded(t, &one.Families[0].Tally)
+	for _, jobs := range []int{2, 3, 8} {
+		r, more := screened(t, familyStudy(t, 9000, `{ held = "mantle" }`, ""), jobs)
+		if got := encoded(t, &r.Families[0].Tally); !bytes.Equal(got, want) || fmt.Sprint(more) != fmt.Sprint(rows) {
+			t.Errorf("%d jobs give another tally or other rows", jobs)
 		}
 	}
-	if one.Counts != four.Counts || one.Best != four.Best {
-		t.Errorf("%v and %v", one.Counts, four.Counts)
+	_, more := screened(t, familyStudy(t, 9500, `{ held = "mantle" }`, ""), 3)
+	for i := range rows {
+		if a, b := fmt.Sprint(rows[i]), fmt.Sprint(more[i]); a != b {
+			t.Fatalf("member %d: %s and %s", i, a, b)
+		}
 	}
 }
 
-// TestFamilySummary counts by hand.
+// exactly is the quantile of what is read of the members, without bins.
+func exactly(x []float64, p float64) float64 {
+	slices.Sort(x)
+	return x[int(math.Ceil(p*float64(len(x))))-1]
+}
+
+// TestFamilySummary reads all members again, without bins or samples.
 func TestFamilySummary(t *testing.T) {
-	r := weighedBy(t, familyStudy(t, 4000, `{ held = "mantle" }`, ""), 2)
+	r, rows := screened(t, familyStudy(t, 4000, `{ held = "mantle" }`, ""), 2)
 	f := &r.Families[0]
-	s := f.Summary()
-	kept := f.Reproducing()
-	if int64(len(kept)) != f.Counts[Reproduces] || len(kept) < 100 {
-		t.Fatalf("%d reproduce, counted %d", len(kept), f.Counts[Reproduces])
-	}
+	s := &f.Summary
 	law := r.Study.Crystals[0].Elements[0].Law.Law
-	best := &f.Members[f.Best]
-	lnG := law.LnD(best.StandIn[0]) + math.Log(best.Life*best.Shift) // at which the profile is the best, whatever the path
-	lo, hi, above := math.Inf(1), math.Inf(-1), 0
-	for _, m := range kept {
-		lo, hi = math.Min(lo, m.Values[1]), math.Max(hi, m.Values[1])
-		if m.Above[0] <= s.Above[0][1] {
-			above++
+	lists := map[*Quantiles][]float64{}
+	put := func(q *Quantiles, x float64) { lists[q] = append(lists[q], x) }
+	var c study.Candidate
+	lnG := math.NaN() // at which the profile is the best, whatever the path
+	lo, hi := math.Inf(1), math.Inf(-1)
+	for i := range rows {
+		m := &rows[i]
+		f.Family.At(&c, m.Index)
+		switch m.Verdict {
+		case TooSharp:
+			put(&s.More, m.Shift)
+		case TooSmooth:
+			put(&s.Less, m.Shift)
+		case Reproduces:
+			for k := range s.Values {
+				put(&s.Values[k].Kept90, c.Values[k])
+			}
+			lo, hi = math.Min(lo, c.Values[1]), math.Max(hi, c.Values[1])
+			put(&s.Life, c.History.Life())
+			put(&s.Above[0], c.History.TimeAbove(760+thermal.ZeroCelsius))
+			put(&s.StandIn[0], m.StandIn[0])
+			g := law.LnD(m.StandIn[0]) + math.Log(c.History.Life()*m.Shift)
+			if !(math.Abs(g-lnG) > 1e-6) { // to where standIn stops; true at first
+				lnG = g
+			} else {
+				t.Fatalf("at its shift factor a member has ln G %v, another %v", g, lnG)
+			}
 		}
-		if g := law.LnD(m.StandIn[0]) + math.Log(m.Life*m.Shift); !(math.Abs(g-lnG) < 1e-6) { // to where standIn stops
-			t.Fatalf("at its shift factor a member has ln G %v, another %v", g, lnG)
+	}
+	if n := len(lists[&s.Life]); int64(n) != f.Tally.Counts[Reproduces] || n < 100 || len(lists) != 8 {
+		t.Fatalf("%d reproduce, counted %d", n, f.Tally.Counts[Reproduces])
+	}
+	for q, list := range lists {
+		for k, p := range [...]float64{0.05, 0.5, 0.95} {
+			want := exactly(list, p)
+			if !(math.Abs(q[k]-want) <= binWidth*want) {
+				t.Errorf("%v of %d: %v, want %v", p, len(list), q[k], want)
+			}
 		}
 	}
 	if s.Values[1].Kept != [2]float64{lo, hi} {
 		t.Errorf("waits %v, want %v and %v", s.Values[1].Kept, lo, hi)
-	}
-	if part := float64(above) / float64(len(kept)); math.Abs(part-0.5) > 0.02 {
-		t.Errorf("%v of the times above are at most their median", part)
 	}
 	// the colder the longer: G at 620 C and 1 yr is far too little, at 780 C and 100 kyr far too much
 	if i := slices.IndexFunc(s.TradeOffs, func(x TradeOff) bool { return x.A == 0 && x.B == 1 }); i < 0 || s.TradeOffs[i].Rank > -0.6 {
@@ -197,40 +252,39 @@ func TestFamilySummary(t *testing.T) {
 	}
 }
 
-// TestMembersCostNothing: a member by the table allocates nothing, but for the stand-in
-// temperature of one that reproduces.
+// binWidth is that of a bin, as a part of what it holds.
+const binWidth = 0x1p-11
+
+// engineOf is that of the study's first family.
+func engineOf(tb testing.TB, s *study.Study) *engine {
+	tb.Helper()
+	sc, err := NewScreening(tb.Context(), s, ScreenOptions{})
+	if err != nil {
+		tb.Fatal(err)
+	}
+	return sc.engines[0]
+}
+
+// TestMembersCostNothing: members by the table allocate nothing.
 func TestMembersCostNothing(t *testing.T) {
-	s := familyStudy(t, 3000, `{ held = "mantle" }`, "")
-	w, err := newWeighing(s)
-	if err != nil {
-		t.Fatal(err)
-	}
-	sc := &screening{weighing: w, family: &s.Families[0], kept: make([]Member, 3000)}
-	first, err := sc.first(t.Context())
-	if err != nil {
-		t.Fatal(err)
-	}
-	if _, err := sc.prepare(t.Context(), first); err != nil {
-		t.Fatal(err)
-	}
-	var c study.Candidate
-	lnG := make([]float64, 1)
-	run := func(i int64) Verdict {
-		sc.family.At(&c, i)
-		sc.study.Bar(&c)
-		m := Member{}
-		if err := sc.member(t.Context(), &c, &m, lnG); err != nil {
+	e := engineOf(t, familyStudy(t, 3000, `{ held = "mantle" }`, ""))
+	var w work
+	w.begin(e, new(Block), 100)
+	var d desk
+	screen := func() {
+		if err := e.judge(t.Context(), &d, w.members); err != nil {
 			t.Fatal(err)
 		}
-		return m.Verdict
 	}
-	missing := slices.DeleteFunc([]int64{0, 1, 2, 3, 4, 5, 6, 7, 8, 9}, func(i int64) bool { return run(i) == Reproduces })
-	if n := testing.AllocsPerRun(100, func() {
-		for _, i := range missing {
-			run(i)
-		}
-	}); n != 0 || len(missing) < 3 {
-		t.Errorf("%v allocations for %d members", n, len(missing))
+	if n := testing.AllocsPerRun(10, screen); n != 0 {
+		t.Errorf("%v allocations for %d members", n, len(w.members))
+	}
+	seen := map[Verdict]int{}
+	for i := range w.members {
+		seen[w.members[i].Verdict]++
+	}
+	if seen[Reproduces] < 10 || seen[TooSharp] < 10 || seen[TooSmooth] < 10 {
+		t.Errorf("verdicts %v", seen)
 	}
 }
 
@@ -239,22 +293,14 @@ func BenchmarkFamilyByTable(b *testing.B) {
 	if err != nil {
 		b.Fatal(err)
 	}
-	w, err := newWeighing(s)
+	sc, err := NewScreening(b.Context(), s, ScreenOptions{})
 	if err != nil {
-		b.Fatal(err)
-	}
-	sc := &screening{weighing: w, family: &s.Families[0], kept: make([]Member, s.Families[0].Count())}
-	first, err := sc.first(b.Context())
-	if err != nil {
-		b.Fatal(err)
-	}
-	if _, err := sc.prepare(b.Context(), first); err != nil {
 		b.Fatal(err)
 	}
 	for b.Loop() {
-		if _, err := sc.all(b.Context(), 1); err != nil {
+		if err := sc.Screen(b.Context(), 0, sc.Blocks(), func(*Block) error { return nil }); err != nil {
 			b.Fatal(err)
 		}
 	}
-	b.ReportMetric(float64(len(sc.kept)*b.N)/b.Elapsed().Seconds(), "members/s")
+	b.ReportMetric(float64(s.Families[0].Count()*int64(b.N))/b.Elapsed().Seconds(), "members/s")
 }

@@ -2,10 +2,13 @@ package paths
 
 import (
 	"cmp"
+	"fmt"
 	"math"
 	"slices"
 
 	"gonum.org/v1/gonum/stat"
+
+	"bankfire/paths/study"
 )
 
 // FamilySummary is what can be read from a family's members.
@@ -47,92 +50,96 @@ const (
 	openCount = 3    // or as near as the lowest of so many would be by chance
 )
 
-// Reproducing are the members that reproduce.
-func (f *FamilyResult) Reproducing() []*Member { return f.with(Reproduces) }
-
-// with are the members with the verdict.
-func (f *FamilyResult) with(v Verdict) []*Member {
-	out := make([]*Member, 0, f.Counts[v])
-	for i := range f.Members {
-		if f.Members[i].Verdict == v {
-			out = append(out, &f.Members[i])
-		}
+// result is the family with the tally of its members.
+func (e *engine) result(t *Tally) (*FamilyResult, error) {
+	if !t.fits(e.family, len(e.study.Thresholds), len(e.elements)) {
+		return nil, fmt.Errorf("paths: the tally is not one of the family %q", e.family.Name)
 	}
-	return out
+	f := &FamilyResult{Family: e.family, Methods: e.methods}
+	f.Tally.Add(t)
+	if len(f.Tally.Drawn) == 0 { // of no members
+		f.Tally = newTally(len(e.family.Values), len(e.study.Thresholds), len(e.elements))
+	}
+	f.Barred = slices.Clone(f.Tally.Bars)
+	slices.SortStableFunc(f.Barred, func(a, b FamilyBar) int {
+		return cmp.Or(cmp.Compare(b.Count, a.Count), cmp.Compare(a.First, b.First))
+	})
+	for _, of := range e.elements {
+		f.Elements = append(f.Elements, FamilyElement{of.crystal, of.element})
+	}
+	f.Summary = f.summary()
+	return f, nil
 }
 
-// Summary reads the members.
-func (f *FamilyResult) Summary() FamilySummary {
-	kept := f.Reproducing()
-	s := FamilySummary{Life: quantiles(kept, func(m *Member) float64 { return m.Life })}
+// summary reads the tally.
+func (f *FamilyResult) summary() FamilySummary {
+	t := &f.Tally
+	s := FamilySummary{Life: quantiles(&t.Life), More: quantiles(&t.More), Less: quantiles(&t.Less)}
 	for k := range f.Family.Values {
-		s.Values = append(s.Values, f.value(k, kept))
+		s.Values = append(s.Values, f.value(k))
 	}
-	if len(kept) >= fewest {
-		s.TradeOffs = f.tradeOffs(kept)
+	if t.Counts[Reproduces] == 0 {
+		return s
 	}
-	if len(kept) > 0 {
-		for k := range kept[0].Above {
-			s.Above = append(s.Above, quantiles(kept, func(m *Member) float64 { return m.Above[k] }))
-		}
-		for k := range kept[0].StandIn {
-			s.StandIn = append(s.StandIn, quantiles(kept, func(m *Member) float64 { return m.StandIn[k] }))
-		}
+	for k := range t.Above {
+		s.Above = append(s.Above, quantiles(&t.Above[k]))
 	}
-	shift := func(m *Member) float64 { return m.Shift }
-	s.More, s.Less = quantiles(f.with(TooSharp), shift), quantiles(f.with(TooSmooth), shift)
+	for k := range t.StandIn {
+		s.StandIn = append(s.StandIn, quantiles(&t.StandIn[k]))
+	}
+	if t.Counts[Reproduces] >= fewest {
+		s.TradeOffs = tradeOffs(f.sampleValues())
+	}
 	return s
 }
 
-// quantiles are those of what is read of the members.
-func quantiles(members []*Member, of func(*Member) float64) Quantiles {
-	if len(members) == 0 {
-		return Quantiles{math.NaN(), math.NaN(), math.NaN()}
-	}
-	x := make([]float64, len(members))
-	for i, m := range members {
-		x[i] = of(m)
-	}
-	slices.Sort(x)
-	var q Quantiles
-	for i, p := range [...]float64{0.05, 0.5, 0.95} {
-		q[i] = stat.Quantile(p, stat.Empirical, x, nil)
-	}
-	return q
+// quantiles are those of what was counted.
+func quantiles(h *Histogram) Quantiles {
+	return Quantiles{h.Quantile(0.05), h.Quantile(0.5), h.Quantile(0.95)}
 }
 
 // value summarises value k.
-func (f *FamilyResult) value(k int, kept []*Member) ValueSummary {
+func (f *FamilyResult) value(k int) ValueSummary {
 	nan := math.NaN()
-	s := ValueSummary{Drawn: [2]float64{math.Inf(1), math.Inf(-1)}, Kept: [2]float64{nan, nan}}
-	s.Kept90 = quantiles(kept, func(m *Member) float64 { return m.Values[k] })
-	for i := range f.Members {
-		x := f.Members[i].Values[k]
-		s.Drawn = [2]float64{math.Min(s.Drawn[0], x), math.Max(s.Drawn[1], x)}
-	}
-	if len(kept) == 0 {
+	h, v := &f.Tally.Values[k], &f.Family.Values[k]
+	s := ValueSummary{Drawn: f.Tally.Drawn[k], Kept: [2]float64{nan, nan}, Kept90: quantiles(h)}
+	if h.Count() == 0 {
 		return s
 	}
-	by := func(a, b *Member) int { return cmp.Compare(a.Values[k], b.Values[k]) }
-	s.Kept = [2]float64{slices.MinFunc(kept, by).Values[k], slices.MaxFunc(kept, by).Values[k]}
-	v := &f.Family.Values[k]
+	s.Kept = [2]float64{h.Min, h.Max}
 	lo, hi, ends := v.Ends()
 	switch {
 	case !ends:
 	case v.Steps():
 		s.Open = [2]bool{s.Kept[0] == lo, s.Kept[1] == hi}
+		for i, x := range s.Kept90 {
+			s.Kept90[i] = v.Step(x)
+		}
 	default:
-		near := math.Max(openPart, openCount/float64(len(f.Members)))
+		near := math.Max(openPart, openCount/float64(f.Tally.Count()))
 		s.Open = [2]bool{v.Below(s.Kept[0]) <= near, v.Below(s.Kept[1]) >= 1-near}
 	}
 	return s
 }
 
+// sampleValues are the values of the sample of members that reproduce: one list a value.
+func (f *FamilyResult) sampleValues() [][]float64 {
+	out := make([][]float64, len(f.Family.Values))
+	var c study.Candidate
+	for _, i := range f.Tally.Sample() {
+		f.Family.At(&c, i)
+		for k, x := range c.Values {
+			out[k] = append(out[k], x)
+		}
+	}
+	return out
+}
+
 // tradeOffs are the pairs of values that go together.
-func (f *FamilyResult) tradeOffs(kept []*Member) []TradeOff {
-	ranks := make([][]float64, len(f.Family.Values))
+func tradeOffs(values [][]float64) []TradeOff {
+	ranks := make([][]float64, len(values))
 	for k := range ranks {
-		ranks[k] = ranksOf(kept, k)
+		ranks[k] = ranksOf(values[k])
 	}
 	var out []TradeOff
 	for b := range ranks {
@@ -146,19 +153,17 @@ func (f *FamilyResult) tradeOffs(kept []*Member) []TradeOff {
 	return out
 }
 
-// ranksOf are the ranks of the members by value k, equal ones sharing their mean.
-func ranksOf(members []*Member, k int) []float64 {
-	order := make([]int, len(members))
+// ranksOf are the ranks of numbers, equal ones sharing their mean.
+func ranksOf(x []float64) []float64 {
+	order := make([]int, len(x))
 	for i := range order {
 		order[i] = i
 	}
-	slices.SortFunc(order, func(a, b int) int {
-		return cmp.Or(cmp.Compare(members[a].Values[k], members[b].Values[k]), a-b)
-	})
-	ranks := make([]float64, len(members))
+	slices.SortFunc(order, func(a, b int) int { return cmp.Or(cmp.Compare(x[a], x[b]), a-b) })
+	ranks := make([]float64, len(x))
 	for from := 0; from < len(order); {
 		to := from + 1
-		for to < len(order) && members[order[to]].Values[k] == members[order[from]].Values[k] {
+		for to < len(order) && x[order[to]] == x[order[from]] {
 			to++
 		}
 		for _, i := range order[from:to] {

@@ -84,32 +84,6 @@ type FreeFit struct {
 	AtEnd        bool // it is at the end of the range in which it may lie
 }
 
-// Weigh runs every path of the study against every traverse and judges it.
-// Up to jobs paths go at the same time; the result does not depend on jobs. The
-// result is nil if there is an error: that of ctx if it is done before the last
-// profile is judged, else those of up to 20 paths, each with the path's name,
-// joined.
-func Weigh(ctx context.Context, s *study.Study, jobs int) (*Result, error) {
-	w, err := newWeighing(s)
-	if err != nil {
-		return nil, err
-	}
-	if len(w.elements) == 0 {
-		return nil, thermal.Place{File: s.File, Field: "crystal.element.traverse"}.
-			Error("", "no element has a traverse, so there is nothing to weigh against",
-				`add traverse = { file = "...", ... } to an element, or use follow`)
-	}
-	if err := w.run(ctx, jobs); err != nil {
-		return nil, err
-	}
-	if w.addScatter() {
-		if err := w.run(ctx, jobs); err != nil {
-			return nil, err
-		}
-	}
-	return w.judge(ctx)
-}
-
 // weighing is a study in the course of being weighed.
 type weighing struct {
 	study    *study.Study
@@ -118,6 +92,7 @@ type weighing struct {
 	laws     []LawPrior
 	paths    []weighedPath
 	written  []study.Path // those of the study itself
+	solved   int          // how many of those need not be solved again
 	families []FamilyResult
 }
 
@@ -148,7 +123,7 @@ type weighedPath struct {
 
 func newWeighing(s *study.Study) (*weighing, error) {
 	own := *s
-	w := &weighing{study: &own, written: s.Paths, paths: make([]weighedPath, len(s.Paths))}
+	w := &weighing{study: &own, written: s.Paths}
 	for i := range s.Crystals {
 		c := &s.Crystals[i]
 		hosts := c.Redrawn()
@@ -206,41 +181,41 @@ func lawPrior(l *study.Law) LawPrior {
 	return p
 }
 
-// run screens the families and solves every path, with the best of each family as
-// one more.
-func (w *weighing) run(ctx context.Context, jobs int) error {
-	w.study.Paths = slices.Clone(w.written)
-	w.families = w.families[:0]
-	for i := range w.study.Families {
-		f, err := w.screen(ctx, &w.study.Families[i], jobs)
-		if err != nil {
-			return err
-		}
-		if f.Best >= 0 {
-			var c study.Candidate
-			f.Family.At(&c, f.Best)
-			f.Path = len(w.study.Paths)
-			w.study.Paths = append(w.study.Paths, c.Path())
-		}
-		w.families = append(w.families, *f)
+// findScatter finds the extra scatter that traverses leave open, along the written
+// paths and the first of the members of each family, nil where there is none.
+func (w *weighing) findScatter(ctx context.Context, firsts []*study.Path, jobs int) error {
+	if !slices.ContainsFunc(w.elements, func(e element) bool { return e.element.Scatter }) {
+		return nil
 	}
-	w.paths = make([]weighedPath, len(w.study.Paths))
-	return w.all(ctx, jobs)
+	w.study.Paths = slices.Clone(w.written)
+	for _, first := range firsts {
+		if first != nil {
+			w.study.Paths = append(w.study.Paths, *first)
+		}
+	}
+	if err := w.all(ctx, jobs); err != nil {
+		return err
+	}
+	if !w.addScatter() {
+		w.solved = len(w.written)
+	}
+	return nil
 }
 
-// all solves every path.
+// all solves every path of the study.
 func (w *weighing) all(ctx context.Context, jobs int) error {
+	w.paths = slices.Grow(w.paths[:w.solved], len(w.study.Paths))[:len(w.study.Paths)]
 	errs := make([]error, len(w.paths))
 	next := make(chan int)
 	var team sync.WaitGroup
-	for range max(1, min(jobs, len(w.paths))) {
+	for range max(1, min(jobs, len(w.paths)-w.solved)) {
 		team.Go(func() {
 			for i := range next {
 				errs[i] = w.path(ctx, i)
 			}
 		})
 	}
-	for i := range w.paths {
+	for i := w.solved; i < len(w.paths); i++ {
 		select {
 		case next <- i:
 		case <-ctx.Done():
@@ -795,29 +770,34 @@ func notRun(v Verdict) Finding {
 
 // standIn returns the one constant temperature, in K, at which the law gives
 // the diffusion integral exp(lnG) along the legs of the history, each with its
-// setting; 0 if there is none between standInLow and standInHigh.
+// setting; 0 if there is none between standInLow and standInHigh. It allocates only
+// for a law that has windows.
 func standIn(law diffusion.Law, h *thermal.History, lnG float64) float64 {
-	lasts := map[int]float64{} // s, by setting
 	if law.Where == nil {
-		lasts[0] = h.Life()
-	} else {
-		for _, leg := range h.Legs() {
-			lasts[leg.Setting] += leg.For
-		}
+		lnLife := math.Log(h.Life())
+		return tempAt(lnG, func(temp float64) float64 { return law.LnD(temp) + lnLife })
+	}
+	lasts := map[int]float64{} // s, by setting
+	for _, leg := range h.Legs() {
+		lasts[leg.Setting] += leg.For
 	}
 	settings := slices.Sorted(maps.Keys(lasts))
 	laws := make([]diffusion.Law, len(settings))
 	for i, s := range settings {
 		laws[i] = law.In(s)
 	}
-	miss := func(temp float64) float64 {
+	return tempAt(lnG, func(temp float64) float64 {
 		sum := math.Inf(-1)
 		for i, s := range settings {
 			sum = numeric.LnAdd(sum, laws[i].LnD(temp)+math.Log(lasts[s]))
 		}
-		return sum - lnG
-	}
-	t, err := numeric.Root(miss, standInLow, standInHigh, standInResolution)
+		return sum
+	})
+}
+
+// tempAt returns the temperature, in K, at which ln G is lnG; 0 if there is none.
+func tempAt(lnG float64, of func(temp float64) float64) float64 {
+	t, err := numeric.Root(func(temp float64) float64 { return of(temp) - lnG }, standInLow, standInHigh, standInResolution)
 	if err != nil {
 		return 0
 	}

@@ -52,7 +52,7 @@ func TestEveryWriteFails(t *testing.T) {
 // weighOn runs weigh on the disk, which computes that result. It returns the status, what
 // it printed and what it said had gone wrong.
 func weighOn(disk *failing.Disk, r *paths.Result, out string) (status int, printed, said string) {
-	compute := func(context.Context, string, int) (*paths.Result, error) { return r, nil }
+	compute := func(context.Context, string, int) (*paths.Result, [][]paths.Row, error) { return r, nil, nil }
 	var stdout, stderr bytes.Buffer
 	args := []string{"weigh", "study.toml", "--out", out, "--replace"}
 	status = execute([]*command{newWeighCommand(disk, compute)}, args, streams{nil, &stdout, &stderr})

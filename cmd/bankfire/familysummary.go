@@ -86,7 +86,7 @@ func summariseFamilies(r *paths.Result) []weighedFamily {
 }
 
 func summariseFamily(r *paths.Result, f *paths.FamilyResult) weighedFamily {
-	s := f.Summary()
+	s := &f.Summary
 	out := weighedFamily{
 		Name: f.Family.Name, Method: f.Family.Method().String(), Seed: f.Family.Seed, Count: f.Family.Count(),
 		Values: []familyValue{}, Verdicts: []verdictCount{}, Barred: []familyBar{}, Trade: []familyTrade{},
@@ -99,7 +99,7 @@ func summariseFamily(r *paths.Result, f *paths.FamilyResult) weighedFamily {
 			[2]*float64{bounded(of.Kept[0]), bounded(of.Kept[1])}, newQuantiles(of.Kept90), of.Open})
 	}
 	for v := paths.Unjudged; v <= paths.Barred; v++ {
-		out.Verdicts = append(out.Verdicts, verdictCount{v.String(), f.Counts[v]})
+		out.Verdicts = append(out.Verdicts, verdictCount{v.String(), f.Tally.Counts[v]})
 	}
 	for _, b := range f.Barred {
 		out.Barred = append(out.Barred, familyBar{b.Words, b.Count, b.First, b.Why})
@@ -119,8 +119,8 @@ func summariseFamily(r *paths.Result, f *paths.FamilyResult) weighedFamily {
 		e := f.Elements[k]
 		out.Engines = append(out.Engines, familyEngine{elementKey{e.Crystal.Name, e.Element.Name}, engineName(m), m.Why})
 	}
-	if f.Best >= 0 {
-		out.Best, out.Path = &f.Best, &r.Paths[f.Path].Path.Name
+	if best := f.Best(); best >= 0 {
+		out.Best, out.Path = &best, &r.Paths[f.Path].Path.Name
 	}
 	return out
 }

@@ -25,16 +25,18 @@ func usualUnit(v *study.Value) (unit string, zero, size float64) {
 	return siUnit(v), 0, 1
 }
 
-// membersTable returns what writes a row for each member of family i.
-func membersTable(i int) func(w io.Writer, r *paths.Result) error {
+// membersTable returns what writes a row for each of the members of family i.
+func membersTable(i int, rows []paths.Row) func(w io.Writer, r *paths.Result) error {
 	return func(w io.Writer, r *paths.Result) error {
 		f := &r.Families[i]
 		table := newCSV(w)
 		table.row(membersHead(r, f)...)
-		var row []string
-		for k := range f.Members {
-			row = memberCells(row[:0], r, f, int64(k))
-			table.row(row...)
+		var c study.Candidate
+		var cells []string
+		for k := range rows {
+			f.Family.At(&c, rows[k].Index)
+			cells = memberCells(cells[:0], r, f, &c, &rows[k])
+			table.row(cells...)
 		}
 		return table.end()
 	}
@@ -62,29 +64,32 @@ func membersHead(r *paths.Result, f *paths.FamilyResult) []string {
 
 // memberCells appends the cells of a member. Stand-in temperatures are those of members
 // that reproduce.
-func memberCells(row []string, r *paths.Result, f *paths.FamilyResult, k int64) []string {
-	m := &f.Members[k]
-	row = append(row, strconv.FormatInt(k, 10))
-	for i, x := range m.Values {
+func memberCells(cells []string, r *paths.Result, f *paths.FamilyResult, c *study.Candidate, m *paths.Row) []string {
+	cells = append(cells, strconv.FormatInt(m.Index, 10))
+	for i, x := range c.Values {
 		_, zero, size := usualUnit(&f.Family.Values[i])
-		row = append(row, cell((x-zero)/size))
+		cells = append(cells, cell((x-zero)/size))
 	}
-	row = append(row, m.Verdict.String(), cell(m.Tail), cell(m.Misfit), cell(m.Shift), openEnd(m.Shift95[0]), openEnd(m.Shift95[1]), cell(m.Life/thermal.Year))
-	for i := range r.Study.Thresholds {
+	life := math.NaN()
+	if m.Verdict != paths.Barred {
+		life = c.History.Eruption()
+	}
+	cells = append(cells, m.Verdict.String(), cell(m.Tail), cell(m.Misfit), cell(m.Shift), openEnd(m.Shift95[0]), openEnd(m.Shift95[1]), cell(life/thermal.Year))
+	for _, t := range r.Study.Thresholds {
 		above := math.NaN()
-		if i < len(m.Above) {
-			above = m.Above[i] / thermal.Year
+		if m.Verdict != paths.Barred {
+			above = c.History.TimeAbove(t.Temp)
 		}
-		row = append(row, cell(above))
+		cells = append(cells, cell(above/thermal.Year))
 	}
 	for i := range f.Elements {
 		standIn := math.NaN()
 		if i < len(m.StandIn) && m.StandIn[i] > 0 {
 			standIn = m.StandIn[i] - thermal.ZeroCelsius
 		}
-		row = append(row, cell(standIn))
+		cells = append(cells, cell(standIn))
 	}
-	return row
+	return cells
 }
 
 // memberFiles are the names of the tables of members, one a family.

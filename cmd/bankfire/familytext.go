@@ -16,11 +16,11 @@ import (
 func writeFamilies(w io.Writer, r *paths.Result) {
 	for i := range r.Families {
 		f := &r.Families[i]
-		s := f.Summary()
+		s := &f.Summary
 		fmt.Fprintf(w, "Family %s, %s drawn%s:\n\n", quoted(f.Family.Name), counted(f.Family.Count(), "path"), drawnText(f.Family))
-		writeValues(w, f, &s)
+		writeValues(w, f, s)
 		fmt.Fprintln(w)
-		for _, sentence := range familySentences(r, f, &s) {
+		for _, sentence := range familySentences(r, f, s) {
 			fmt.Fprintln(w, sentence)
 		}
 		fmt.Fprintln(w)
@@ -107,10 +107,10 @@ func valueText(v *study.Value, x float64) string {
 // familySentences say in words what the members show.
 func familySentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySummary) []string {
 	out := []string{familyTally(f)}
-	if f.Counts[paths.Reproduces] > 0 {
+	if f.Tally.Counts[paths.Reproduces] > 0 {
 		out = append(out, "How many do depends on how they were drawn, and their ranges are no confidence intervals: each passes by itself.")
 	}
-	kept := f.Counts[paths.Reproduces]
+	kept := f.Tally.Counts[paths.Reproduces]
 	for k := range s.Values {
 		if kept > 0 && s.Values[k].Open != [2]bool{} {
 			out = append(out, openSentence(&f.Family.Values[k], s.Values[k].Open))
@@ -127,10 +127,10 @@ func familySentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySumm
 	if kept > 0 {
 		out = append(out, keptSentences(r, f, s)...)
 	}
-	if n := f.Counts[paths.TooSharp]; n > 0 {
+	if n := f.Tally.Counts[paths.TooSharp]; n > 0 {
 		out = append(out, fmt.Sprintf("Those that are too sharp need %s x more diffusion (half of them more than %s x).", span(s.More[0], s.More[2]), number(s.More[1])))
 	}
-	if n := f.Counts[paths.TooSmooth]; n > 0 {
+	if n := f.Tally.Counts[paths.TooSmooth]; n > 0 {
 		out = append(out, fmt.Sprintf("Those that are too smooth need %s x less diffusion (half of them more than %s x).", span(1/s.Less[2], 1/s.Less[0]), number(1/s.Less[1])))
 	}
 	for _, b := range f.Barred {
@@ -164,12 +164,12 @@ func openSentence(v *study.Value, open [2]bool) string {
 func familyTally(f *paths.FamilyResult) string {
 	var others []string
 	for v := paths.Unjudged; v <= paths.Barred; v++ {
-		if n := f.Counts[v]; n > 0 && v != paths.Reproduces {
+		if n := f.Tally.Counts[v]; n > 0 && v != paths.Reproduces {
 			others = append(others, fmt.Sprintf("%d %s", n, severalText(v)))
 		}
 	}
-	text := fmt.Sprintf("Of the %s drawn (%s), %d reproduce what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family), f.Counts[paths.Reproduces])
-	if f.Counts[paths.Reproduces] == 0 {
+	text := fmt.Sprintf("Of the %s drawn (%s), %d reproduce what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family), f.Tally.Counts[paths.Reproduces])
+	if f.Tally.Counts[paths.Reproduces] == 0 {
 		text = fmt.Sprintf("Of the %s drawn (%s), none reproduces what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family))
 	}
 	if len(others) == 0 {
@@ -221,9 +221,9 @@ func methodSentence(r *paths.Result, f *paths.FamilyResult, n int, m paths.Famil
 		return fmt.Sprintf("Method for %s: steps along each path, since %s.", of, m.Why)
 	}
 	text := fmt.Sprintf("Method for %s: a table of chi-square against G, since %s.", of, m.Why)
-	if f.Best >= 0 && len(f.Methods) == 1 {
-		off := math.Abs(r.Paths[f.Path].Outcome.Misfit - f.Members[f.Best].Misfit)
-		text += fmt.Sprintf(" Run in steps, member %d has a chi-square that differs by %s.", f.Best, smallText(off))
+	if f.Best() >= 0 && len(f.Methods) == 1 {
+		off := math.Abs(r.Paths[f.Path].Outcome.Misfit - f.Tally.Misfit)
+		text += fmt.Sprintf(" Run in steps, member %d has a chi-square that differs by %s.", f.Best(), smallText(off))
 	}
 	return text
 }

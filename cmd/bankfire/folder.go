@@ -7,10 +7,11 @@ import (
 	"bankfire/paths"
 )
 
-// weighingFiles returns the files of a weighing and puts their names into the
+// weighingFiles returns the files of a weighing, with rows of the members of each
+// family, and puts their names into the
 // summary, which is the first of them. Equal runs of one program make them with
 // equal bytes, all but run.log.
-func weighingFiles(r *paths.Result, summary *weighing, log *runLog) []results.File {
+func weighingFiles(r *paths.Result, rows [][]paths.Row, summary *weighing, log *runLog) []results.File {
 	table := func(name string, write func(io.Writer, *paths.Result) error) results.File {
 		return results.File{Name: name, Write: func(w io.Writer) error { return write(w, r) }}
 	}
@@ -21,7 +22,7 @@ func weighingFiles(r *paths.Result, summary *weighing, log *runLog) []results.Fi
 		table("points.csv", pointsTable),
 	}
 	for i, name := range memberFiles(r) {
-		files = append(files, table(name, membersTable(i)))
+		files = append(files, table(name, membersTable(i, rows[i])))
 	}
 	for i, name := range figureNames(r) {
 		files = append(files, results.File{Name: name, Write: func(w io.Writer) error { return writeFigure(w, r, i) }})

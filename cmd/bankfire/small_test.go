@@ -46,7 +46,8 @@ var weighSmall = sync.OnceValues(func() (*paths.Result, error) {
 	if err != nil {
 		return nil, err
 	}
-	return weighStudy(context.Background(), name, 1)
+	r, _, err := weighStudy(context.Background(), name, 1)
+	return r, err
 })
 
 // smallResult is the small study weighed, for the test to change as it likes.

@@ -23,7 +23,7 @@ func weighCommand() *command { return newWeighCommand(results.OnDisk{}, weighStu
 
 // newWeighCommand is `bankfire weigh` with its results on that disk and with
 // what computes them.
-func newWeighCommand(disk results.Disk, compute func(context.Context, string, int) (*paths.Result, error)) *command {
+func newWeighCommand(disk results.Disk, compute func(context.Context, string, int) (*paths.Result, [][]paths.Row, error)) *command {
 	w := &weigh{disk: disk, compute: compute}
 	return &command{
 		name:  "weigh",
@@ -49,7 +49,7 @@ func newWeighCommand(disk results.Disk, compute func(context.Context, string, in
 // weigh is one run of the command.
 type weigh struct {
 	disk                   results.Disk
-	compute                func(ctx context.Context, file string, jobs int) (*paths.Result, error)
+	compute                func(ctx context.Context, file string, jobs int) (*paths.Result, [][]paths.Row, error)
 	flags                  *pflag.FlagSet
 	out                    string
 	replace, asJSON, quiet bool
@@ -74,14 +74,14 @@ func (o *weigh) run(ctx context.Context, s streams, operands []string) error {
 	if err != nil {
 		return err
 	}
-	result, err := o.compute(ctx, operands[0], o.jobs)
+	result, rows, err := o.compute(ctx, operands[0], o.jobs)
 	if err != nil {
 		return err
 	}
 	log.took = time.Since(log.started)
 	summary := summarise(result, log.made)
 	if folder != nil {
-		files := weighingFiles(result, summary, log)
+		files := weighingFiles(result, rows, summary, log)
 		if err := folder.Write(files); err != nil {
 			return err
 		}
@@ -108,13 +108,28 @@ func (o *weigh) open() (*results.Folder, error) {
 	return results.Open(o.disk, o.out, o.replace)
 }
 
-// weighStudy weighs the study in the file, jobs paths at a time.
-func weighStudy(ctx context.Context, file string, jobs int) (*paths.Result, error) {
+// weighStudy weighs the study in the file, jobs paths at a time, and returns the rows of
+// the members of each family.
+func weighStudy(ctx context.Context, file string, jobs int) (*paths.Result, [][]paths.Row, error) {
 	s, err := study.Read(file)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
-	return paths.Weigh(ctx, s, jobs)
+	screening, err := paths.NewScreening(ctx, s, paths.ScreenOptions{Keep: paths.Keep{All: true}, Jobs: jobs})
+	if err != nil {
+		return nil, nil, err
+	}
+	tallies, rows := make([]paths.Tally, len(s.Families)), make([][]paths.Row, len(s.Families))
+	err = screening.Screen(ctx, 0, screening.Blocks(), func(b *paths.Block) error {
+		tallies[b.Family].Add(&b.Tally)
+		rows[b.Family] = append(rows[b.Family], b.Rows...)
+		return nil
+	})
+	if err != nil {
+		return nil, nil, err
+	}
+	r, err := screening.Finish(ctx, tallies)
+	return r, rows, err
 }
 
 // print prints the result as the flags ask.

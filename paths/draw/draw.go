@@ -82,12 +82,12 @@ func (p *Points) At(dst []float64, i int64) {
 		}
 	case Random:
 		for j := range dst {
-			dst[j] = unit(splitMix(p.key, uint64(i)*uint64(len(dst))+uint64(j)))
+			dst[j] = unit(SplitMix(p.key, uint64(i)*uint64(len(dst))+uint64(j)))
 		}
 	case Latin:
 		for j := range dst {
 			slice := shuffled(uint64(i), uint64(p.count), mixed(p.key+uint64(j)))
-			within := unit(splitMix(p.key, uint64(i)*uint64(len(dst))+uint64(j)))
+			within := unit(SplitMix(p.key, uint64(i)*uint64(len(dst))+uint64(j)))
 			dst[j] = math.Min((float64(slice)+within)/float64(p.count), belowOne)
 		}
 	}
@@ -153,9 +153,9 @@ func keyOf(seed uint64, name string) uint64 {
 	return mixed(mixed(seed) ^ h.Sum64())
 }
 
-// splitMix is output n, counted from 0, of the generator SplitMix64 with the seed.
+// SplitMix is output n, counted from 0, of the generator SplitMix64 with the seed.
 // Source: Steele, Lea and Flood 2014, Proc. OOPSLA, 453-472.
-func splitMix(seed, n uint64) uint64 { return mixed(seed + (n+1)*0x9e3779b97f4a7c15) }
+func SplitMix(seed, n uint64) uint64 { return mixed(seed + (n+1)*0x9e3779b97f4a7c15) }
 
 // mixed is that generator's finaliser.
 func mixed(z uint64) uint64 {

@@ -49,7 +49,7 @@ func TestHaltonByHand(t *testing.T) {
 // 1234567.
 func TestSplitMix(t *testing.T) {
 	for n, want := range []uint64{6457827717110365317, 3203168211198807973, 9817491932198370423, 4593380528125082431, 16408922859458223821} {
-		if got := splitMix(1234567, uint64(n)); got != want {
+		if got := SplitMix(1234567, uint64(n)); got != want {
 			t.Errorf("output %d: %d, want %d", n, got, want)
 		}
 	}

@@ -20,7 +20,7 @@ func newVanDerCorput(base int, key uint64) vanDerCorput {
 	place := uint64(0)
 	return vanDerCorputOf(base, func(p []int) {
 		for i := len(p) - 1; i > 0; i-- {
-			j := int(splitMix(key, place) % uint64(i+1))
+			j := int(SplitMix(key, place) % uint64(i+1))
 			p[i], p[j] = p[j], p[i]
 			place++
 		}

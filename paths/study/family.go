@@ -1,6 +1,7 @@
 package study
 
 import (
+	"cmp"
 	"errors"
 	"fmt"
 	"math"
@@ -345,6 +346,14 @@ func (v *Value) Ends() (lo, hi float64, ok bool) {
 
 // Steps reports whether only some values between the ends can be drawn.
 func (v *Value) Steps() bool { return v.Kind == Chosen || v.is.whole }
+
+// Step is the value nearest to x of those that can be drawn, where Steps.
+func (v *Value) Step(x float64) float64 {
+	if v.Kind != Chosen {
+		return math.Max(v.Lo, math.Min(math.Round(x), v.Hi))
+	}
+	return slices.MinFunc(v.Choices, func(a, b float64) int { return cmp.Compare(math.Abs(a-x), math.Abs(b-x)) })
+}
 
 // Below is the part of a range's distribution that lies below x.
 func (v *Value) Below(x float64) float64 {
