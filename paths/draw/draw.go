@@ -104,7 +104,7 @@ func (p *Points) Stream(i int64, n int) Stream {
 }
 
 // Unit is number k of the stream, at least 0 and below 1.
-func (s Stream) Unit(k uint64) float64 { return unit(splitMix(s.key, k)) }
+func (s Stream) Unit(k uint64) float64 { return unit(SplitMix(s.key, k)) }
 
 const belowOne = 1 - 0x1p-53
 
