@@ -87,7 +87,7 @@ func compile(p *Problem, faces []float64, steps schedule) (*Plan, error) {
 		return nil, err
 	}
 	for _, b := range p.Free {
-		if err := plan.addColumn(b.Start, nil); err != nil {
+		if err := plan.addColumn(b.Start, b.Profile); err != nil {
 			return nil, err
 		}
 	}

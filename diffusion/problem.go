@@ -72,8 +72,9 @@ type Given struct {
 // Basis is a value left open: the solution is linear in it, so its derivative
 // is solved along as one more right-hand side.
 type Basis struct {
-	Start        []float64 // change of each zone's start per unit of the value
-	Inner, Outer []float64 // the same of each entry of Problem.Inner and Problem.Outer; nil is no change
+	Start        []float64               // change of each zone's start per unit of the value
+	Inner, Outer []float64               // the same of each entry of Problem.Inner and Problem.Outer; nil is no change
+	Profile      func(r float64) float64 // the same of Problem.Profile; nil is no change
 }
 
 // Problem is one element in one crystal without its history: plain data in SI.

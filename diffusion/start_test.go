@@ -38,3 +38,33 @@ func TestFormByHand(t *testing.T) {
 	}
 	wantClose(t, "exp", newPlan(t, p, Options{Faces: faces}).Start(0), want, rounding)
 }
+
+// TestFreeProfile: a free value that adds a profile solves what the profile alone
+// does, also where zones are added and the face moves, and leaves G enough where it was.
+func TestFreeProfile(t *testing.T) {
+	h := holdOf(t, 0.09*testSize*testSize)
+	life := h.Life()
+	profile := func(r float64) float64 { return 1 + math.Cos(3*r/testSize) }
+	for name, change := range map[string]func(p *Problem){
+		"plain":  func(*Problem) {},
+		"staged": func(p *Problem) { p.Zones[1].Added = 0.4 * life },
+		"grows": func(p *Problem) {
+			p.Moves = []Move{{From: 0.2 * life, Until: 0.6 * life, Rate: 0.25 * testSize / life}}
+		},
+	} {
+		t.Run(name, func(t *testing.T) {
+			p := &Problem{Law: testLaw, Zones: []Zone{{Outer: 0.4 * testSize}, {Outer: testSize}}, Outer: []Rim{{Kind: Held}}}
+			change(p)
+			alone := *p
+			alone.Profile = profile
+			alone.Outer = []Rim{{Kind: Held, Value: 1.5}}
+			p.Free = []Basis{{Start: []float64{0, 0}, Outer: []float64{1.5}, Profile: profile}}
+			got, want := run(t, newPlan(t, p, Options{}), h), run(t, newPlan(t, &alone, Options{}), h)
+			wantClose(t, "the profile", got.Cols[1], want.Cols[0], rounding)
+			_, enough := newPlan(t, p, Options{}).GEnough()
+			if enough != (name == "plain") {
+				t.Errorf("G is enough: %t", enough)
+			}
+		})
+	}
+}

@@ -70,7 +70,7 @@ func lawNotes(c *study.Crystal, e *study.Element, h *thermal.History) []string {
 		}
 	}
 	notes = append(notes, c.Beyond(e, h)...)
-	return notes
+	return append(notes, shapeMoved(c, e, seen)...)
 }
 
 // farReach is the part of the way to another face beyond which one dimension

@@ -249,6 +249,11 @@ var beside = map[string][]string{
 	"crystal.element.start melt":                {"temperature", `temperature = ["760 C", "790 C"]`},
 	"crystal.element.start solubility":          {"temperature", `temperature = ["760 C", "790 C"]`},
 	"crystal.element.start temperature":         {"solubility", `solubility = "ti-quartz-wark2006"`},
+	"crystal.element.start lowest":              {"scaled", `scaled = "P"`, "smooth", `smooth = "steps"`},
+	"crystal.element.start highest":             {"scaled", `scaled = "P"`, "smooth", `smooth = "steps"`},
+	"crystal.element.start smooth":              {"scaled", `scaled = "P"`},
+	"crystal.element.start scaled":              {"smooth", `smooth = "steps"`},
+	"crystal.element.start width":               {"scaled", `scaled = "P"`, "smooth", `smooth = "spline"`},
 	"crystal.element.rim given temperature":     {"time", ""},
 	"crystal.element.rim following temperature": {"melt", `melt = "sr-melt.csv"`, "value", `value = "Sr [ppm]"`},
 	"crystal.element.rim following value":       {"melt", `melt = "sr-melt.csv"`, "temperature", `temperature = "T [C]"`},
@@ -281,6 +286,14 @@ var (
 	inMelt    = []string{"crystal.element.start melt"}
 	saturated = []string{"crystal.element.start solubility", "crystal.element.start temperature"}
 )
+
+// copied are keys for which the crystal needs another element, whose shape a start has.
+var copied = []string{"crystal.element.start scaled", "crystal.element.start lowest", "crystal.element.start highest",
+	"crystal.element.start smooth", "crystal.element.start width"}
+
+// copiedElement is that element.
+const copiedElement = "[[crystal.element]]\nname = \"P\"\n" + shownLaw + "\nstart = " + shownStart +
+	"\ntraverse = { file = \"p.csv\", position = \"distance [um]\", zero = \"rim\", value = \"P [ppm]\", error = \"3 %\", spot = \"point\" }\n\n"
 
 // with returns the keys of the frame with the one that is tried.
 func (f *frame) with(e entry) string {
@@ -321,6 +334,7 @@ func TestStudyHelpEntries(t *testing.T) {
 	folder, files := shownFiles(t)
 	sound := files["study.toml"]
 	writeFile(t, folder, "ti.csv", "distance [um],Ti [ppm],2se [ppm],crack\n50,58,4,\n60,75,4,x\n64,91,4,\n")
+	writeFile(t, folder, "p.csv", "distance [um],P [ppm]\n40,20\n50,21\n58,24\n70,38\n90,40\n")
 	writeFile(t, folder, "tt.csv", "t [yr],T [C]\n90,690\n50,750\n0,700\n")
 	writeFile(t, folder, "rim.csv", "t [yr],Ti [ppm],T [C]\n0,60,600\n1e5,70,900\n")
 	writeFile(t, folder, "sr-melt.csv", "T [C],Sr [ppm]\n900,60\n600,70\n")
@@ -344,6 +358,9 @@ func TestStudyHelpEntries(t *testing.T) {
 				}
 				if slices.Contains(onHost, f.table+" "+e.key) {
 					text = hosts.Replace(text)
+				}
+				if slices.Contains(copied, f.table+" "+e.key) {
+					text = strings.Replace(text, "[[crystal.element]]", copiedElement+"[[crystal.element]]", 1)
 				}
 				if slices.Contains(stated, f.table+" "+e.key) {
 					text = exact.Replace(text)

@@ -32,6 +32,8 @@ type decoder struct {
 	hostIs     string            // what the host of the crystal is known to be, catalogue.XAn or XFe; "" is not known
 	hostLine   int               // where it says so
 	meant      map[string]bool   // dotted keys, with the place of their table, that a mistyped key stands for
+	everyone   map[string]bool   // elements of all crystals
+	copies     []scaledStart     // of the crystal that is being read
 	legs       int               // of all paths so far
 	open       *openLegs         // of the family that is being read; nil in a path
 	found      []*thermal.InputError

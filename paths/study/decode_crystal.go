@@ -30,6 +30,7 @@ func (d *decoder) crystals(root *node) []Crystal {
 	for _, n := range tables {
 		if e := n.get("element"); e != nil {
 			elements += len(e.items)
+			d.names(e)
 		}
 	}
 	if len(tables) > maxElements || elements > maxElements {
@@ -40,6 +41,18 @@ func (d *decoder) crystals(root *node) []Crystal {
 		out = append(out, d.crystal(n, seen))
 	}
 	return out
+}
+
+// names notes the names of a crystal's elements.
+func (d *decoder) names(elements *node) {
+	if d.everyone == nil {
+		d.everyone = map[string]bool{}
+	}
+	for _, e := range elements.items {
+		if name := e.get("name"); name != nil {
+			d.everyone[name.text] = true
+		}
+	}
 }
 
 func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
@@ -214,8 +227,12 @@ func (d *decoder) inner(n *node, c *Crystal) *node {
 func (d *decoder) elements(n *node, c *Crystal, inner *node) {
 	list := d.need(n, "element", "write one [[crystal.element]] with name, law, start and rim")
 	seen := map[string]int{}
+	d.copies = nil
 	for _, e := range d.tables(list, `begin an element with "[[crystal.element]]"`) {
 		c.Elements = append(c.Elements, d.element(e, c, inner, seen))
+	}
+	for _, copied := range d.copies {
+		d.resolve(copied, c)
 	}
 	d.choosable(list, c)
 	d.oneEdge(list, c)

@@ -50,7 +50,7 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	d.rimRelations(e)
 	d.otherHost(n, c, e)
 	d.noteXFe(e)
-	if len(c.Zones) > 1 && slices.ContainsFunc(startTables(n), func(s *node) bool { return s.get("edge") == nil }) {
+	if len(c.Zones) > 1 && slices.ContainsFunc(startTables(n), edgeless) {
 		d.note("%s: no edge given, taken to begin with sharp ones", e.Name)
 	}
 	if e.Tilt != (Nuisance{}) && len(c.Zones) > 1 {
@@ -70,6 +70,11 @@ func startTables(element *node) []*node {
 		return n.items
 	}
 	return []*node{element.get("start")}
+}
+
+// edgeless reports whether a start has edges and does not say how wide they are.
+func edgeless(start *node) bool {
+	return start.get("edge") == nil && (start.get("scaled") == nil || start.get("width") == nil)
 }
 
 // otherMineral notes a law that is for another mineral than the crystal's, unless

@@ -44,9 +44,10 @@ func (d *decoder) hostFile(n *node, c *Crystal) {
 	}
 }
 
-// smoothing reads how a host is smoothed: the width of a spline, m; 0 is steps.
+// smoothing reads how measured points are smoothed: the width of a spline, m; 0 is
+// steps.
 func (d *decoder) smoothing(n *node) (spline float64) {
-	const remedy = `write smooth = "steps": one host a zone, the median of the points in it; or smooth = "spline" and a width`
+	const remedy = `write smooth = "steps": one value a zone, the median of the points in it; or smooth = "spline" and a width`
 	smooth := d.need(n, "smooth", remedy)
 	text, ok := d.text(smooth, remedy)
 	switch {
@@ -56,7 +57,7 @@ func (d *decoder) smoothing(n *node) (spline float64) {
 		w := d.need(n, "width", example)
 		spline, _ = d.quantity(w, width)
 	case text != "steps":
-		d.reportWord(smooth, "no way to smooth a host", []string{"steps", "spline"}, remedy)
+		d.reportWord(smooth, "no way to smooth it", []string{"steps", "spline"}, remedy)
 	case n.get("width") != nil:
 		d.report(n.get("width"), "steps have no width", `leave it out, or write smooth = "spline"`)
 	}
@@ -129,19 +130,16 @@ func (d *decoder) hostPoints(n, file *node, o traverse.Options, c *Crystal) (t *
 
 // steps gives each zone the median of its points and notes it.
 func (d *decoder) steps(file *node, t *traverse.Traverse, c *Crystal) {
-	next, outer := 0, c.R0
+	ends := c.pointsUpTo(t.Position)
 	for i := range c.Zones {
 		z := &c.Zones[i]
-		from := next
-		for outer += z.Width; next < len(t.Position) && (t.Position[next] < outer || i == len(c.Zones)-1); {
-			next++
-		}
+		from, next := ends[i], ends[i+1]
 		in := slices.Sorted(slices.Values(t.Value[from:next]))
 		if len(in) == 0 {
 			d.report(file, fmt.Sprintf("no point of the host lies in zone %s", z.Name), "give the host of each zone by hand: host = 0.55")
 			continue
 		}
-		z.Host = (in[(len(in)-1)/2] + in[len(in)/2]) / 2
+		z.Host = median(in)
 		text := fmt.Sprintf("%s: host of zone %s is %.4g, the median of %s from %.4g to %.4g", c.Name, z.Name, z.Host, count(len(in), "point"), in[0], in[len(in)-1])
 		if t.Sigma != nil {
 			z.HostSigma = medianSigma(t.Sigma[from:next])
@@ -149,6 +147,25 @@ func (d *decoder) steps(file *node, t *traverse.Traverse, c *Crystal) {
 		}
 		d.note("%s", text)
 	}
+}
+
+// pointsUpTo returns how many of ascending positions, m from the centre, lie in each
+// zone and further in: those of zone i are from entry i to before entry i+1.
+func (c *Crystal) pointsUpTo(position []float64) []int {
+	ends := make([]int, len(c.Zones)+1)
+	outer, last := c.R0, len(c.Zones)-1
+	for i, z := range c.Zones {
+		outer += z.Width
+		ends[i+1], _ = slices.BinarySearch(position, outer)
+	}
+	ends[last+1] = len(position)
+	return ends
+}
+
+// median returns that of values which ascend.
+func median(ascending []float64) float64 {
+	n := len(ascending)
+	return (ascending[(n-1)/2] + ascending[n/2]) / 2
 }
 
 // medianSigma returns the standard deviation of the median of values with the given
@@ -174,15 +191,24 @@ const (
 	perWidth = 3
 )
 
+// splines reports points of which no spline can be made, or none of the width.
+func (d *decoder) splines(position []float64, points, wide *node, width float64) bool {
+	count := len(position)
+	if count < fewestInSpline || count > mostInSpline {
+		d.report(points, fmt.Sprintf("%d points, and a spline is made of %d to %d", count, fewestInSpline, mostInSpline), `write smooth = "steps", or choose other points`)
+		return false
+	}
+	if long := position[count-1] - position[0]; width > long {
+		d.report(wide, fmt.Sprintf("wider than the traverse, which is %.4g um long", long*1e6), "choose a width between the spacing of the points and the zones")
+		return false
+	}
+	return true
+}
+
 // spline gives the crystal the smoothed profile, and notes what it cannot know.
 func (d *decoder) spline(n *node, t *traverse.Traverse, width float64, c *Crystal) {
 	count, first, last := len(t.Position), t.Position[0], t.Position[len(t.Position)-1]
-	if count < fewestInSpline || count > mostInSpline {
-		d.report(n.get("file"), fmt.Sprintf("%d points, and a spline is made of %d to %d", count, fewestInSpline, mostInSpline), `write smooth = "steps", or choose other points`)
-		return
-	}
-	if width > last-first {
-		d.report(n.get("width"), fmt.Sprintf("wider than the traverse, which is %.4g um long", (last-first)*1e6), "choose a width between the spacing of the points and the zones")
+	if !d.splines(t.Position, n.get("file"), n.get("width"), width) {
 		return
 	}
 	c.Host = NewHost(t.Position, t.Value, t.Sigma, width)
@@ -191,12 +217,17 @@ func (d *decoder) spline(n *node, t *traverse.Traverse, width float64, c *Crysta
 	if spacing := (last - first) / float64(count-1); width < perWidth*spacing*(1-positionSlack) {
 		d.note("%s: the width of its host, %.4g um, holds few points %.3g um apart, so that their noise may show as drift", c.Name, width*1e6, spacing*1e6)
 	}
+	d.noteGaps(c.Name+": its host", t.Position, width, c)
+}
+
+// noteGaps notes how much of the crystal lies beyond the points of a spline.
+func (d *decoder) noteGaps(what string, position []float64, width float64, c *Crystal) {
 	for _, gap := range []struct {
 		where string
 		size  float64
-	}{{"innermost", first - c.R0}, {"outermost", c.Size() - last}} {
+	}{{"innermost", position[0] - c.R0}, {"outermost", c.Size() - position[len(position)-1]}} {
 		if gap.size > width/2 {
-			d.note("%s: its host is not measured over the %s %.4g um, where it is taken to stay as it is at the last point", c.Name, gap.where, gap.size*1e6)
+			d.note("%s is not measured over the %s %.4g um, where it is taken to stay as it is at the last point", what, gap.where, gap.size*1e6)
 		}
 	}
 }

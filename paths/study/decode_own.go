@@ -96,8 +96,12 @@ func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
 	if v := n.get("start"); v != nil {
 		at = d.place(v)
 	}
-	for i, p := range e.Start.Zones {
+	for i, p := range e.Start.plateaux() {
 		if p.open() {
+			if e.Start.Scaled != nil {
+				d.add(at.Error("", problem+": "+e.Start.Scaled.endName(i), `write it like lowest = "58 ppm", without "free" and "+-"`))
+				return
+			}
 			d.add(at.Error("", problem+": "+c.Zones[i].Name, `state one value a zone, such as zones = ["90 ppm", "58 ppm"], without "free" and "+-"`))
 			return
 		}
@@ -122,7 +126,7 @@ func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
 func (c *Crystal) values(e *Element) (lo, hi float64) {
 	lo, hi = math.Inf(1), math.Inf(-1)
 	add := func(x float64) { lo, hi = min(lo, x), max(hi, x) }
-	for _, p := range e.Start.Zones {
+	for _, p := range e.Start.plateaux() {
 		add(p.Value)
 	}
 	for _, rims := range [][]Rim{e.Inner, e.Rims} {

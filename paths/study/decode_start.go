@@ -57,22 +57,37 @@ func (d *decoder) start(element, n *node, c *Crystal, e *Element, u *units) Star
 	if name := n.get("name"); name != nil {
 		s.Name, _ = d.name(name, `write a name, such as name = "melt A"`)
 	}
-	switch way := d.oneWay(n, "zones", "melt", "solubility"); {
+	switch way := d.oneWay(n, "zones", "melt", "solubility", "scaled"); {
 	case way == nil && u.measured:
 	case way == nil:
 		d.report(element, "all plateaux are free, but there is no traverse to fit them to", example)
 	case way == n.get("zones"):
 		d.plateaux(way, s.Zones, c, u, d.concentrationUnit(n.get("unit")))
+	case way == n.get("scaled"):
+		d.scaled(n, &s, e, u)
 	default:
 		d.equilibrium(n, way, &s, c, e, u)
 	}
-	if v := n.get("temperature"); v != nil && n.get("melt") == nil && n.get("solubility") == nil {
-		d.report(v, "goes with a melt or a solubility", "leave it out")
-	}
+	d.astray(n)
 	if edge := n.get("edge"); edge != nil {
 		s.Edge = d.nuisance(edge, edgeLatitude())
 	}
 	return s
+}
+
+// astray reports keys that go with another way to give the start.
+func (d *decoder) astray(n *node) {
+	if v := n.get("temperature"); v != nil && n.get("melt") == nil && n.get("solubility") == nil {
+		d.report(v, "goes with a melt or a solubility", "leave it out")
+	}
+	if n.get("scaled") != nil {
+		return
+	}
+	for _, name := range []string{"lowest", "highest", "smooth", "width"} {
+		if v := n.get(name); v != nil {
+			d.report(v, "goes with scaled", `leave it out, or write scaled = "P", the element whose shape it has`)
+		}
+	}
 }
 
 // oneWay returns the first of the keys that the table has, nil if it has none;

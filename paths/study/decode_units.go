@@ -219,6 +219,6 @@ func (d *decoder) grey(n *node, e *Element, u *units) {
 
 // uncertain reports whether a plateau or a rim value is known with an error.
 func (e *Element) uncertain() bool {
-	return slices.ContainsFunc(e.Start.Zones, func(p Plateau) bool { return p.Sigma > 0 }) ||
+	return slices.ContainsFunc(e.Start.plateaux(), func(p Plateau) bool { return p.Sigma > 0 }) ||
 		slices.ContainsFunc(slices.Concat(e.Inner, e.Rims), func(r Rim) bool { return r.valued() && r.Value.Sigma > 0 })
 }

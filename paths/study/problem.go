@@ -65,6 +65,9 @@ func (c *Crystal) Problem(e *Element, h *thermal.History) (*diffusion.Problem, [
 	b.rimValues("inner rim", e.Inner, b.inner, func(basis *diffusion.Basis) []float64 { return basis.Inner })
 	b.rimValues("rim", e.Rims, b.outer, func(basis *diffusion.Basis) []float64 { return basis.Outer })
 	out.Free = b.basis
+	if s := e.Start.Scaled; s != nil && s.Width > 0 {
+		out.Profile = s.between(s.Lowest.base(), s.Highest.base())
+	}
 	return out, b.free, nil
 }
 
@@ -116,7 +119,7 @@ func (b *builder) zones() []diffusion.Zone {
 	r := b.c.R0
 	for i, z := range b.c.Zones {
 		r += z.Width
-		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.Zones[i].base(), Times: b.c.Factor(b.e, i), Host: z.Host, Form: b.c.form(b.e, i)}
+		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.base(i), Times: b.c.Factor(b.e, i), Host: z.Host, Form: b.c.form(b.e, i)}
 		if i < len(zones)-1 {
 			zones[i].Edge = b.e.Start.Edge.Middle()
 		}
@@ -130,6 +133,14 @@ func (p Plateau) base() float64 {
 		return 0
 	}
 	return p.Value
+}
+
+// base is the plateau of zone i that a problem is set up with.
+func (s *Start) base(i int) float64 {
+	if s.Scaled == nil {
+		return s.Zones[i].base()
+	}
+	return s.Scaled.plateau(i, s.Scaled.Lowest.base(), s.Scaled.Highest.base())
 }
 
 // open reports whether the traverse has a say in the value.
@@ -153,23 +164,58 @@ func (b *builder) column(name string, p Plateau) *diffusion.Basis {
 // zoneValues adds a column for every open plateau: the start of its zone and
 // the rims held at it.
 func (b *builder) zoneValues() {
+	if b.e.Start.Scaled != nil {
+		b.scaledValues()
+		return
+	}
 	for i, p := range b.e.Start.Zones {
 		if !p.open() {
 			continue
 		}
 		col := b.column(b.c.Zones[i].Name, p)
 		col.Start[i] = 1
-		b.markTied(col.Inner, b.e.Inner, b.inner, i)
-		b.markTied(col.Outer, b.e.Rims, b.outer, i)
+		tie := func(zone int, r float64) float64 {
+			if zone != i {
+				return 0
+			}
+			return b.tie(i, r)
+		}
+		b.markTied(col, tie)
 	}
 }
 
-func (b *builder) markTied(dst []float64, list []Rim, held []inStage, zone int) {
-	for k, at := range held {
-		if r := &list[at.rim]; r.Kind == diffusion.Held && r.Zone == zone {
-			dst[k] = b.tie(zone, at.r)
+// scaledValues adds a column for each end of a scaled start that is open: what of its
+// shape goes with it, and the rims held at a zone of it.
+func (b *builder) scaledValues() {
+	s := b.e.Start.Scaled
+	for k, p := range s.ends() {
+		if !p.open() {
+			continue
+		}
+		lowest, highest := float64(1-k), float64(k)
+		col := b.column(s.endName(k), p)
+		for i := range col.Start {
+			col.Start[i] = s.plateau(i, lowest, highest)
+		}
+		if s.Width > 0 {
+			col.Profile = s.between(lowest, highest)
+		}
+		b.markTied(col, func(zone int, r float64) float64 { return b.c.scaledAt(s, zone, r, lowest, highest) })
+	}
+}
+
+// markTied puts into the column what rims that are held at a zone have of its value,
+// tie by the zone and where the rim is.
+func (b *builder) markTied(col *diffusion.Basis, tie func(zone int, r float64) float64) {
+	mark := func(dst []float64, list []Rim, held []inStage) {
+		for k, at := range held {
+			if r := &list[at.rim]; r.Kind == diffusion.Held && r.Zone >= 0 {
+				dst[k] = tie(r.Zone, at.r)
+			}
 		}
 	}
+	mark(col.Inner, b.e.Inner, b.inner)
+	mark(col.Outer, b.e.Rims, b.outer)
 }
 
 // rimValues adds a column for every open value at which a rim is held or with which
@@ -233,6 +279,9 @@ func (r *Rim) from(h *thermal.History) (float64, error) {
 
 // value is what a rim at r is held at, or exchanges with, in the problem.
 func (b *builder) value(rim *Rim, r float64) float64 {
+	if s := b.e.Start.Scaled; s != nil && rim.Zone >= 0 {
+		return b.c.scaledAt(s, rim.Zone, r, s.Lowest.base(), s.Highest.base())
+	}
 	if rim.Zone >= 0 {
 		return b.e.Start.Zones[rim.Zone].base() * b.tie(rim.Zone, r)
 	}

@@ -306,6 +306,7 @@ type Start struct {
 	Edge       Nuisance    // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
 	Solubility *Solubility // that gives the zones; nil is none
 	Melts      []Grown     // one a zone if each is in equilibrium with a melt by the element's Partition; else nil
+	Scaled     *Scaled     // a start with the shape of another element, instead of Zones, which are then all 0; nil is none
 }
 
 // Grown is how a zone grew in equilibrium with a melt: its plateau is that in a host of

@@ -29,8 +29,7 @@ func later(field string) bool {
 	}
 	switch field {
 	case "law.times",
-		"crystal.element.rivals",
-		"crystal.element.start.scaled":
+		"crystal.element.rivals":
 		return true
 	}
 	return false

@@ -361,7 +361,6 @@ func wrongElements() []wrong {
 		{"no alternative", start, `@[ ]`, "", "crystal.element.start", "an empty list", `name = "melt A"`},
 		{"alternatives of one name", start, `[ { name = "a", zones = ["free", "58 ppm"] }, { name = @"a", zones = ["free", "60 ppm"] } ]`, "", "crystal.element.start.name", "used twice", ""},
 		{"too many alternatives", start, `@[ ` + strings.Repeat(start+", ", 21) + ` ]`, "", "crystal.element.start", "more than 20 alternatives", "fewer"},
-		{"start scaled", start, `{ @scaled = "P", edge = "0 um" }`, "", "crystal.element.start.scaled", "not known in this version", "leave it out"},
 		{"start in melt, no temperature", start, `@{ melt = ["90 ppm", "80 ppm"], edge = "0 um" }`, "", "crystal.element.start.temperature", "missing", "790 +- 10 C"},
 		{"start in melt without a relation", start, `{ melt = @["90 ppm", "80 ppm"], temperature = ["760 C", "790 C"], edge = "0 um" }`, "", "crystal.element.start.melt", "needs the partition relation", "sr-blundy1991"},
 		{"start in one melt", start, `{ melt = @["90 ppm"], temperature = ["760 C", "790 C"] }`, "", "crystal.element.start.melt", "1 value for 2 zones", "core, skin"},

@@ -133,8 +133,8 @@ func (s *Spline) At(x float64) float64 {
 	return a*s.value[i-1] + b*s.value[i] - h*h/6*a*b*((1+a)*s.bend[i-1]+(1+b)*s.bend[i])
 }
 
-// Range returns the least and the largest value between lo and hi, among those at
-// both, at the knots and half way between knots.
+// Range returns the least and the largest value between lo and hi: among those at
+// both, at the knots and where the spline turns between them.
 func (s *Spline) Range(lo, hi float64) (least, most float64) {
 	least, most = math.Inf(1), math.Inf(-1)
 	see := func(x float64) {
@@ -146,8 +146,32 @@ func (s *Spline) Range(lo, hi float64) (least, most float64) {
 	for i, x := range s.at {
 		see(x)
 		if i > 0 {
-			see(s.at[i-1] + (x-s.at[i-1])/2)
+			for _, b := range s.turns(i) {
+				see(s.at[i-1] + b*(x-s.at[i-1]))
+			}
 		}
 	}
 	return least, most
+}
+
+// turns returns where the slope is zero between knots i-1 and i, as parts of the way:
+// with m0 and m1 the second derivatives there, h apart, the slope at b is
+//
+//	y1 - y0 - h^2 (2 m0 + m1)/6 + h^2 (m0 b + (m1 - m0) b^2/2).
+func (s *Spline) turns(i int) []float64 {
+	h := s.at[i] - s.at[i-1]
+	m0, m1 := h*h*s.bend[i-1], h*h*s.bend[i]
+	a, half, c := (m1-m0)/2, m0/2, s.value[i]-s.value[i-1]-(2*m0+m1)/6
+	root := half*half - a*c
+	if !(root >= 0) {
+		return nil
+	}
+	q := -(half + math.Copysign(math.Sqrt(root), half))
+	var out []float64
+	for _, b := range []float64{q / a, c / q} {
+		if b > 0 && b < 1 {
+			out = append(out, b)
+		}
+	}
+	return out
 }

@@ -177,3 +177,26 @@ func TestSmoothNoise(t *testing.T) {
 		t.Errorf("variance of the slope %g, of that between raw points %g", slopes, raw)
 	}
 }
+
+// Least and most of a spline are those of a fine search, wherever it turns.
+func TestRangeAgainstSearch(t *testing.T) {
+	const places = 20000
+	rng := rand.New(rand.NewPCG(5, 6))
+	for range 20 {
+		var x, y []float64
+		for i := range 7 {
+			x, y = append(x, float64(i)+0.8*rng.Float64()), append(y, rng.NormFloat64())
+		}
+		s := Smooth(x, y, 0.5)
+		lo, hi := rng.Float64()*3, 4+rng.Float64()*3
+		least, most := math.Inf(1), math.Inf(-1)
+		for k := range places + 1 {
+			v := s.At(lo + (hi-lo)*float64(k)/places)
+			least, most = math.Min(least, v), math.Max(most, v)
+		}
+		const fine = 1e-5 // of values of order one that bend, 7/20000 apart
+		if gotLeast, gotMost := s.Range(lo, hi); !(math.Abs(gotLeast-least) <= fine && math.Abs(gotMost-most) <= fine) {
+			t.Errorf("from %g to %g, a search finds %g to %g", gotLeast, gotMost, least, most)
+		}
+	}
+}
