@@ -328,14 +328,14 @@ func (b *Builder) reheat(s *Spec, base float64) error {
 	if s.For == 0 {
 		back = s.Efold * max(0, math.Log((s.Temp-base)/backWithin))
 	}
-	for _, l := range [...]Leg{
-		{Kind: Ramp, For: s.Rise, T0: base, T1: s.Temp},
-		{Kind: Hold, For: s.Dwell, T0: s.Temp},
-		{Kind: Relax, For: back, T0: s.Temp, T1: base, Tau: s.Efold},
-	} {
-		if l.For > 0 {
-			b.add(l)
-		}
+	if s.Rise > 0 {
+		b.add(Leg{Kind: Ramp, For: s.Rise, T0: base, T1: s.Temp})
+	}
+	if s.Dwell > 0 {
+		b.add(Leg{Kind: Hold, For: s.Dwell, T0: s.Temp})
+	}
+	if back > 0 {
+		b.add(Leg{Kind: Relax, For: back, T0: s.Temp, T1: base, Tau: s.Efold})
 	}
 	b.temp = base
 	return nil

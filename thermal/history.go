@@ -32,7 +32,9 @@ type Named struct {
 // temperature not above 0 K, a table or sheet that makes no sense, no leg or more than MaxLegs, a path of no duration.
 // h is then as before.
 func (h *History) Set(legs []Leg) error {
-	if err := checkLegs(legs); err != nil {
+	h.findAgain(legs)
+	if err := h.checkLegs(legs); err != nil {
+		h.findAgain(h.legs)
 		return err
 	}
 	h.legs = append(h.legs[:0], legs...)
@@ -46,7 +48,6 @@ func (h *History) Set(legs []Leg) error {
 		h.starts = append(h.starts, end)
 	}
 	h.eruption = end
-	h.findAgain()
 	return nil
 }
 
@@ -54,35 +55,38 @@ func (h *History) Set(legs []Leg) error {
 const memory = 8
 
 // findAgain finds the legs that come again. In most paths they do so at the same distance as the leg before.
-func (h *History) findAgain() {
-	h.again = slices.Grow(h.again[:0], len(h.legs))
+func (h *History) findAgain(legs []Leg) {
+	h.again = slices.Grow(h.again[:0], len(legs))[:len(legs)]
 	back := 0
-	for i := range h.legs {
-		if back == 0 || h.legs[i] != h.legs[i-back] {
-			back = h.equalBefore(i)
+	for i := range legs {
+		if back == 0 || legs[i] != legs[i-back] {
+			back = equalBefore(legs, i)
 		}
-		h.again = append(h.again, back)
+		h.again[i] = back
 	}
 }
 
 // equalBefore is how far before leg i the nearest equal one is, 0 if that is too far.
-func (h *History) equalBefore(i int) int {
-	l := &h.legs[i]
+func equalBefore(legs []Leg, i int) int {
+	l := &legs[i]
 	for back := 1; back < memory && back <= i; back++ {
-		if like := &h.legs[i-back]; like.For == l.For && *like == *l {
+		if like := &legs[i-back]; like.For == l.For && *like == *l {
 			return back
 		}
 	}
 	return 0
 }
 
-// checkLegs is nil, or an *InputError with the first thing that Set refuses.
-func checkLegs(legs []Leg) error {
+// checkLegs is nil, or an *InputError with the first thing that Set refuses. One of equal legs is enough.
+func (h *History) checkLegs(legs []Leg) error {
 	if len(legs) > MaxLegs {
 		return tooMany(float64(len(legs)), Place{})
 	}
 	lasts := false
 	for i := range legs {
+		if h.again[i] > 0 {
+			continue
+		}
 		if p := legs[i].check(); p != nil {
 			p.Field = fmt.Sprintf("leg %d (%s)", i+1, legs[i].Kind)
 			if p.Line != 0 {
