@@ -40,13 +40,12 @@ func (k *keys) histogram() Histogram {
 	return h
 }
 
-// count is the tally of members of the family.
-func (c *counter) count(e *engine, members []member) Tally {
-	t := newTally(len(e.family.Values), len(e.study.Thresholds), len(e.elements))
+// count makes t, which is of no members, the tally of these.
+func (c *counter) count(t *Tally, members []member) {
 	c.values, c.above, c.standIn = keysFor(c.values, t.Values), keysFor(c.above, t.Above), keysFor(c.standIn, t.StandIn)
 	c.sample = c.sample[:0]
 	for i := range members {
-		c.member(&t, &members[i])
+		c.member(t, &members[i])
 	}
 	histograms(t.Values, c.values)
 	histograms(t.Above, c.above)
@@ -54,7 +53,6 @@ func (c *counter) count(e *engine, members []member) Tally {
 	t.Life, t.More, t.Less = c.life.histogram(), c.more.histogram(), c.less.histogram()
 	slices.SortFunc(c.sample, byHash)
 	t.sample = slices.Clone(c.sample[:min(len(c.sample), mostSampled)])
-	return t
 }
 
 // member counts one.

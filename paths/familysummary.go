@@ -58,7 +58,7 @@ func (e *engine) result(t *Tally) (*FamilyResult, error) {
 	f := &FamilyResult{Family: e.family, Methods: e.methods}
 	f.Tally.Add(t)
 	if len(f.Tally.Drawn) == 0 { // of no members
-		f.Tally = newTally(len(e.family.Values), len(e.study.Thresholds), len(e.elements))
+		f.Tally = e.tally()
 	}
 	f.Barred = slices.Clone(f.Tally.Bars)
 	slices.SortStableFunc(f.Barred, func(a, b FamilyBar) int {
@@ -69,6 +69,11 @@ func (e *engine) result(t *Tally) (*FamilyResult, error) {
 	}
 	f.Summary = f.summary()
 	return f, nil
+}
+
+// tally is that of no members of the family.
+func (e *engine) tally() Tally {
+	return newTally(len(e.family.Values), len(e.study.Thresholds), len(e.elements))
 }
 
 // summary reads the tally.

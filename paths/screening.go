@@ -284,7 +284,8 @@ func (w *work) end(c *chunk, err error, keep Keep) {
 	}
 	if w.err == nil {
 		w.block.Rows = rowsOf(keep.of(nil, w.members))
-		w.block.Tally = w.counter.count(w.engine, w.members)
+		w.block.Tally = w.engine.tally()
+		w.counter.count(&w.block.Tally, w.members)
 	}
 	close(w.whole)
 }
