@@ -62,10 +62,21 @@ func NewScreening(ctx context.Context, s *study.Study, o ScreenOptions) (*Screen
 			return nil, err
 		}
 		out.engines = append(out.engines, e)
-		out.starts = append(out.starts, out.starts[i]+(f.Count()+BlockSize-1)/BlockSize)
+		out.starts = append(out.starts, out.starts[i]+blocksOf(f))
 	}
 	return out, nil
 }
+
+// Blocks is how many blocks the families of a study have together.
+func Blocks(s *study.Study) int64 {
+	var n int64
+	for i := range s.Families {
+		n += blocksOf(&s.Families[i])
+	}
+	return n
+}
+
+func blocksOf(f *study.Family) int64 { return (f.Count() + BlockSize - 1) / BlockSize }
 
 // Blocks is how many blocks all families have together, those of each in turn.
 func (s *Screening) Blocks() int64 { return s.starts[len(s.starts)-1] }

@@ -185,14 +185,21 @@ func TestHelpExamples(t *testing.T) {
 			if err := os.MkdirAll(filepath.Join(home, ".config/fish/completions"), 0o777); err != nil {
 				t.Fatal(err)
 			}
-			if err := os.CopyFS(filepath.Join(home, "study"), os.DirFS("../../examples/cold-store")); err != nil {
+			if err := os.CopyFS(home, os.DirFS("../../examples")); err != nil {
 				t.Fatal(err)
 			}
+			folder, lines := "cold-store", []string{}
+			if c.name == "gather" {
+				folder, lines = "cooler-but-longer", []string{"bankfire weigh study.toml --part 1/1 --out results"}
+			}
 			for _, e := range c.examples {
-				shell := exec.Command(bash, "-c", e.line)
-				shell.Dir = filepath.Join(home, "study")
+				lines = append(lines, e.line)
+			}
+			for _, line := range lines {
+				shell := exec.Command(bash, "-c", line)
+				shell.Dir = filepath.Join(home, folder)
 				if out, err := shell.CombinedOutput(); err != nil {
-					t.Errorf("%s: %v\n%s", e.line, err, out)
+					t.Errorf("%s: %v\n%s", line, err, out)
 				}
 			}
 		})

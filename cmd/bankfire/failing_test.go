@@ -2,14 +2,14 @@ package main
 
 import (
 	"bytes"
-	"context"
+	"errors"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
 
+	"bankfire/cmd/bankfire/internal/results"
 	"bankfire/cmd/bankfire/internal/results/failing"
-	"bankfire/paths"
 )
 
 // TestEveryWriteFails makes each operation on the disk fail in turn while earlier results
@@ -17,16 +17,17 @@ import (
 // nothing is printed as if it had gone well and that the earlier results are still there.
 func TestEveryWriteFails(t *testing.T) {
 	t.Parallel() // much of the time is waiting for the disk
-	out := filepath.Join(t.TempDir(), "out")
-	earlier, result := smallResult(t), smallResult(t)
-	earlier.Study.Title = "earlier"
-	if status, _, said := weighOn(&failing.Disk{}, earlier, out); status != done {
+	dir := t.TempDir()
+	out := filepath.Join(dir, "out")
+	plantStudy(t, filepath.Join(dir, "earlier.toml"), strings.Replace(smallStudy, `"small"`, `"earlier"`, 1), smallTraverse)
+	plantStudy(t, filepath.Join(dir, "study.toml"), smallStudy, smallTraverse)
+	if status, _, said := weighOn(&failing.Disk{}, filepath.Join(dir, "earlier.toml"), "--out", out); status != done {
 		t.Fatal(said)
 	}
 	title := `"title": "earlier"`
 	for at := 1; ; at++ {
 		disk := &failing.Disk{At: at}
-		status, printed, said := weighOn(disk, result, out)
+		status, printed, said := weighOn(disk, filepath.Join(dir, "study.toml"), "--out", out, "--replace")
 		if disk.Count < at {
 			if status != done || said != "" || printed == "" {
 				t.Errorf("without a failure: status %d, printed %q, said %q", status, printed, said)
@@ -49,13 +50,21 @@ func TestEveryWriteFails(t *testing.T) {
 	}
 }
 
-// weighOn runs weigh on the disk, which computes that result. It returns the status, what
-// it printed and what it said had gone wrong.
-func weighOn(disk *failing.Disk, r *paths.Result, out string) (status int, printed, said string) {
-	compute := func(context.Context, string, int) (*paths.Result, [][]paths.Row, error) { return r, nil, nil }
+// plantStudy writes a study and, beside it, the traverse ti.csv.
+func plantStudy(t testing.TB, name, text, traverse string) {
+	t.Helper()
+	err := errors.Join(os.WriteFile(name, []byte(text), 0o666),
+		os.WriteFile(filepath.Join(filepath.Dir(name), "ti.csv"), []byte(traverse), 0o666))
+	if err != nil {
+		t.Fatal(err)
+	}
+}
+
+// weighOn runs weigh with its results on the disk. It returns the status, what it printed
+// and what it said had gone wrong.
+func weighOn(disk results.Disk, args ...string) (status int, printed, said string) {
 	var stdout, stderr bytes.Buffer
-	args := []string{"weigh", "study.toml", "--out", out, "--replace"}
-	status = execute([]*command{newWeighCommand(disk, compute)}, args, streams{nil, &stdout, &stderr})
+	status = execute([]*command{newWeighCommand(disk)}, append([]string{"weigh"}, args...), streams{nil, &stdout, &stderr})
 	return status, stdout.String(), stderr.String()
 }
 

@@ -1,17 +1,17 @@
 package main
 
 import (
+	"context"
 	"io"
 
 	"bankfire/cmd/bankfire/internal/results"
 	"bankfire/paths"
 )
 
-// weighingFiles returns the files of a weighing, with rows of the members of each
-// family, and puts their names into the
-// summary, which is the first of them. Equal runs of one program make them with
-// equal bytes, all but run.log.
-func weighingFiles(r *paths.Result, rows [][]paths.Row, summary *weighing, log *runLog) []results.File {
+// weighingFiles returns the files of a weighing, with rows of members from the parts,
+// and puts their names into the summary, which is the first of them. Equal runs of one
+// program make them with equal bytes, all but run.log.
+func weighingFiles(ctx context.Context, r *paths.Result, from *parts, summary *weighing, log *runLog) []results.File {
 	table := func(name string, write func(io.Writer, *paths.Result) error) results.File {
 		return results.File{Name: name, Write: func(w io.Writer) error { return write(w, r) }}
 	}
@@ -21,9 +21,7 @@ func weighingFiles(r *paths.Result, rows [][]paths.Row, summary *weighing, log *
 		table("profiles.csv", profilesTable),
 		table("points.csv", pointsTable),
 	}
-	for i, name := range memberFiles(r) {
-		files = append(files, table(name, membersTable(i, rows[i])))
-	}
+	files = append(files, memberFiles(ctx, r, from)...)
 	for i, name := range figureNames(r) {
 		files = append(files, results.File{Name: name, Write: func(w io.Writer) error { return writeFigure(w, r, i) }})
 	}

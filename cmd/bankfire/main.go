@@ -26,6 +26,7 @@ func commands() []*command {
 	return []*command{
 		checkCommand(),
 		weighCommand(),
+		gatherCommand(),
 		followCommand(),
 		lawsCommand(),
 		completionCommand(),

@@ -124,7 +124,7 @@ func TestSummaryKeepsSchema(t *testing.T) {
 			if err := schema.Validate(asJSON(t, w)); err != nil {
 				t.Errorf("without files: %v", err)
 			}
-			weighingFiles(r, nil, w, &runLog{})
+			weighingFiles(t.Context(), r, nil, w, &runLog{})
 			if err := schema.Validate(asJSON(t, w)); err != nil {
 				t.Errorf("with files: %v", err)
 			}

@@ -11,6 +11,7 @@ import (
 	"testing"
 
 	"bankfire/paths"
+	"bankfire/paths/study"
 )
 
 // smallStudy has one path and the traverse of smallTraverse, to be quick.
@@ -46,9 +47,17 @@ var weighSmall = sync.OnceValues(func() (*paths.Result, error) {
 	if err != nil {
 		return nil, err
 	}
-	r, _, err := weighStudy(context.Background(), name, 1)
-	return r, err
+	return weighStudy(context.Background(), name)
 })
+
+// weighStudy weighs the study in the file.
+func weighStudy(ctx context.Context, file string) (*paths.Result, error) {
+	s, err := study.Read(file)
+	if err != nil {
+		return nil, err
+	}
+	return paths.Weigh(ctx, s, 1)
+}
 
 // smallResult is the small study weighed, for the test to change as it likes.
 func smallResult(t *testing.T) *paths.Result {

@@ -129,7 +129,7 @@ func TestStudyHelpExamples(t *testing.T) {
 		}
 		studies++
 		t.Run(name, func(t *testing.T) {
-			if _, _, err := weighStudy(t.Context(), filepath.Join(folder, name), 1); err != nil {
+			if _, err := weighStudy(t.Context(), filepath.Join(folder, name)); err != nil {
 				t.Error(err)
 			}
 		})

@@ -73,7 +73,7 @@ func TestCurvesPassWhereThePointsSaw(t *testing.T) {
 			name := filepath.Join(dir, "study.toml")
 			write(t, name, strings.Replace(smallStudy, test.old, test.new, 1))
 			write(t, filepath.Join(dir, "ti.csv"), smallTraverse)
-			r, _, err := weighStudy(context.Background(), name, 1)
+			r, err := weighStudy(context.Background(), name)
 			if err != nil {
 				t.Fatal(err)
 			}
