@@ -19,6 +19,7 @@ type Curve struct {
 	Crystal           int        // the crystal it was measured in: those of one number are judged jointly as well
 	Law               int        // the law it rests on, counted from 1 among Judge's laws; 0 if that has no errors
 	ByE               [2]float64 // first and second derivative of ln G by the law's activation energy, mol/J
+	By                *By        // what deviations of other constants make of it; nil if none do
 }
 
 // At returns chi-square at lnM.
@@ -44,21 +45,29 @@ func (c *Curve) at(lnM float64) (value, slope float64) {
 // bend returns value, slope and second derivative at lnM, where that jumps at a knot
 // from the side above it.
 func (c *Curve) bend(lnM float64) (value, slope, bend float64) {
-	i, found := slices.BinarySearch(c.LnM, lnM)
-	last := len(c.LnM) - 1
+	return hermite(c.LnM, c.ChiSq, c.Slope, lnM)
+}
+
+// hermite returns value, slope and second derivative at x of the cubic Hermite
+// polynomial with values ys and slopes at the knots xs, beyond which it is constant. The
+// second derivative jumps at a knot from the side above it.
+func hermite(xs, ys, slopes []float64, x float64) (value, slope, bend float64) {
+	i, found := slices.BinarySearch(xs, x)
+	last := len(xs) - 1
+	piece := func(i int) cubic { return cubic{xs[i], xs[i+1], ys[i], ys[i+1], slopes[i], slopes[i+1]} }
 	switch {
 	case found && i < last:
-		return c.ChiSq[i], c.Slope[i], c.piece(i).bend(lnM)
+		return ys[i], slopes[i], piece(i).bend(x)
 	case found:
-		return c.ChiSq[i], c.Slope[i], 0
+		return ys[i], slopes[i], 0
 	case i == 0:
-		return c.ChiSq[0], 0, 0
+		return ys[0], 0, 0
 	case i > last:
-		return c.ChiSq[last], 0, 0
+		return ys[last], 0, 0
 	}
-	q := c.piece(i - 1)
-	value, slope = q.at(lnM)
-	return value, slope, q.bend(lnM)
+	q := piece(i - 1)
+	value, slope = q.at(x)
+	return value, slope, q.bend(x)
 }
 
 // cubic is one piece of a curve: value and slope at both ends.

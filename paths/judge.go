@@ -4,6 +4,7 @@ import (
 	"math"
 	"slices"
 
+	"bankfire/paths/study"
 	"gonum.org/v1/gonum/mathext"
 	"gonum.org/v1/gonum/stat/distuv"
 )
@@ -59,6 +60,14 @@ type LawsAllowed struct {
 	Tail    float64
 	Misfit  float64   // chi-square with the deviations fitted, and their own added
 	Leaning []Leaning // the smallest deviations with which the path passes, in the order of the laws, empty if there are none; nil if it does not pass
+	Others  []Off     // those of other constants, with those of the laws
+}
+
+// Off is by how many standard deviations a path asks for a constant to be off, with its
+// sign: above 0 if it is to be larger.
+type Off struct {
+	study.Deviation
+	Sigma float64
 }
 
 // Leaning is by how many standard deviations, of ln D and E together, a path
@@ -84,7 +93,7 @@ type Leaning struct {
 // counts as one again. What is not a number does not pass. The profiles of each
 // crystal are judged jointly in the same way. The second verdict
 // allows each of the laws to deviate, shared by all its profiles, at the cost
-// of its prior. Judge never solves. It panics if there are no curves.
+// of its prior, and so each other constant of Curve.By. Judge never solves. It panics if there are no curves.
 func Judge(dst *Outcome, cs []Curve, laws []LawPrior, confidence float64) {
 	dst.Profiles = dst.Profiles[:0]
 	dst.Profiles = append(dst.Profiles, alone(cs, confidence)...)
@@ -141,9 +150,9 @@ func byCrystal(cs []Curve) [][]int {
 	return of
 }
 
-// allow judges the path with the laws' own errors. It passes if the smallest
-// deviations with which it does are no larger than they would be by chance at
-// the confidence, one degree of freedom a law.
+// allow judges the path with the laws' own errors and those of other constants. It
+// passes if the smallest deviations with which it does are no larger than they would be
+// by chance at the confidence, one degree of freedom a law and one each other constant.
 func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) LawsAllowed {
 	out := LawsAllowed{Verdict: joint.Verdict, Tail: math.NaN(), Misfit: math.NaN()}
 	if joint.Degrees < 1 || math.IsNaN(joint.Misfit) {
@@ -158,7 +167,10 @@ func allow(cs []Curve, laws []LawPrior, joint *Finding, confidence float64) Laws
 	for k, law := range laws {
 		out.Leaning = append(out.Leaning, Leaning{law.Key, math.Hypot(z[2*k], z[2*k+1]), z[2*k], z[2*k+1]})
 	}
-	if len(laws) > 0 && dot(z, z) <= Critical(confidence, len(laws)) {
+	for k, d := range deviationsOf(cs) {
+		out.Others = append(out.Others, Off{d, z[2*len(laws)+k]})
+	}
+	if n := len(out.Leaning) + len(out.Others); n > 0 && dot(z, z) <= Critical(confidence, n) {
 		out.Verdict = Reproduces
 	}
 	return out

@@ -4,6 +4,8 @@ import (
 	"cmp"
 	"math"
 	"slices"
+
+	"bankfire/paths/study"
 )
 
 // LawPrior is how well a law is known: the standard deviations of ln D in the
@@ -15,27 +17,35 @@ type LawPrior struct {
 }
 
 // lean looks for deviations of the laws, z of ln D and E each in units of their
-// standard deviations, that bring the path to the data:
+// standard deviations, and of the other constants on which the curves rest, that
+// bring the path to the data:
 //
-//	misfit(z) = sum over profiles of chi-square(shift),
-//	shift = sD zD + ByE[0] sE zE + ByE[1] (sE zE)^2 / 2.
+//	misfit(z) = sum over profiles of chi-square(shift, z),
+//	shift = sD zD + ByE[0] sE zE + ByE[1] (sE zE)^2 / 2 + sum of By.Shift z.
 //
 // It returns the least of misfit + sum of z^2, the deviations taken as values
 // with a prior, and the smallest deviations with which the path alone passes,
-// misfit(z) <= pass: nil if none do.
+// misfit(z) <= pass: nil if none do. They are those of ln D and E of each law and
+// then those of the constants in the order of deviationsOf.
 func lean(cs []Curve, laws []LawPrior, pass float64) (least float64, smallest []float64) {
-	l := newLeaning(cs, laws)
-	z := make([]float64, 2*len(laws))
+	least, _, smallest = newLeaning(cs, laws).find(pass)
+	return least, smallest
+}
+
+// find is lean, with the deviations of the least as well.
+func (l *leaning) find(pass float64) (least float64, at, smallest []float64) {
+	z := make([]float64, l.size())
 	if l.misfit(z) <= pass {
 		smallest = slices.Clone(z)
 	}
 	l.settle(z, 1)
+	at = slices.Clone(z)
 	if least = l.misfit(z) + dot(z, z); smallest != nil {
-		return least, smallest
+		return least, at, smallest
 	}
 	// the lower the price of a deviation, the closer the path comes to the data
 	if l.settle(z, cheapest); !(l.misfit(z) <= pass) {
-		return least, nil
+		return least, at, nil
 	}
 	smallest = slices.Clone(z)
 	low, high := math.Log(cheapest), -math.Log(cheapest)
@@ -48,7 +58,7 @@ func lean(cs []Curve, laws []LawPrior, pass float64) (least float64, smallest []
 			high = mid
 		}
 	}
-	return least, smallest
+	return least, at, smallest
 }
 
 // How far the price of a deviation is lowered, and how finely it is found.
@@ -57,48 +67,185 @@ const (
 	priceSteps = 30
 )
 
-// leaning is the curves with the laws that they rest on. Laws have no profile in
-// common, so that each law's two deviations are found by themselves.
+// leaning is the curves with what they rest on: two deviations a law, numbered first,
+// and one of each constant on which a curve rests.
 type leaning struct {
 	cs     []Curve
 	laws   []LawPrior
-	of     [][]int        // the curves of each law
-	starts [][][2]float64 // of each law, deviations from which to descend
+	others []study.Deviation
+	vars   [][]int // of each curve, the numbers of its deviations: D and E of its law, if it has one, then those of other constants
+	groups []leanGroup
+	at, to basin // scratch, as the rest
+	move   []float64
+	part   pull
+}
+
+// leanGroup is deviations that have profiles in common, which are found together.
+type leanGroup struct {
+	vars   []int       // their numbers, ascending
+	curves []int       // the curves that depend on them
+	places [][]int     // of the deviations of each curve, in vars
+	starts [][]float64 // deviations from which to descend, in the order of vars
+}
+
+// deviationsOf are the constants of other constants, in the order of the curves.
+func deviationsOf(cs []Curve) []study.Deviation {
+	var list []study.Deviation
+	for i := range cs {
+		if cs[i].By == nil {
+			continue
+		}
+		for _, d := range cs[i].By.Of {
+			if !slices.Contains(list, d) {
+				list = append(list, d)
+			}
+		}
+	}
+	return list
 }
 
 func newLeaning(cs []Curve, laws []LawPrior) *leaning {
-	l := &leaning{cs: cs, laws: laws, of: make([][]int, len(laws)), starts: make([][][2]float64, len(laws))}
-	for k := range laws {
-		l.starts[k] = append(l.starts[k], [2]float64{})
-	}
+	l := &leaning{cs: cs, laws: laws, others: deviationsOf(cs)}
 	for i := range cs {
-		if k := cs[i].Law - 1; k >= 0 {
-			l.of[k] = append(l.of[k], i)
-			l.starts[k] = append(l.starts[k], leanStarts(&cs[i], laws[k])...)
-		}
+		l.vars = append(l.vars, l.varsOf(&cs[i]))
+	}
+	for _, vars := range l.joined() {
+		l.groups = append(l.groups, l.group(vars))
 	}
 	return l
+}
+
+func (l *leaning) size() int { return 2*len(l.laws) + len(l.others) }
+
+// isLaw reports whether a deviation is one of a law's.
+func (l *leaning) isLaw(v int) bool { return v < 2*len(l.laws) }
+
+// law is the law of a curve, nil if it has none with errors.
+func (l *leaning) law(c *Curve) *LawPrior {
+	if c.Law == 0 {
+		return nil
+	}
+	return &l.laws[c.Law-1]
+}
+
+// varsOf are the numbers of the deviations that a curve depends on.
+func (l *leaning) varsOf(c *Curve) []int {
+	var vars []int
+	if c.Law > 0 {
+		vars = append(vars, 2*c.Law-2, 2*c.Law-1)
+	}
+	if c.By != nil {
+		for _, d := range c.By.Of {
+			vars = append(vars, 2*len(l.laws)+slices.Index(l.others, d))
+		}
+	}
+	return vars
+}
+
+// joined divides the deviations into those that have profiles in common.
+func (l *leaning) joined() [][]int {
+	of := make([]int, l.size()) // the least number of those that each is joined to
+	for v := range of {
+		of[v] = v
+	}
+	join := func(a, b int) {
+		from, to := max(of[a], of[b]), min(of[a], of[b])
+		for v := range of {
+			if of[v] == from {
+				of[v] = to
+			}
+		}
+	}
+	for k := range l.laws {
+		join(2*k, 2*k+1)
+	}
+	for _, vars := range l.vars {
+		for _, v := range vars {
+			join(vars[0], v)
+		}
+	}
+	var groups [][]int
+	for first := range of {
+		var vars []int
+		for v := range of {
+			if of[v] == first {
+				vars = append(vars, v)
+			}
+		}
+		if vars != nil {
+			groups = append(groups, vars)
+		}
+	}
+	return groups
+}
+
+// group gathers what depends on deviations, and from where to look for the best: from
+// none, from the likeliest that bring a profile to its lowest points, and from some of
+// each constant of other constants.
+func (l *leaning) group(vars []int) leanGroup {
+	g := leanGroup{vars: vars}
+	start := func(places []int, z []float64) {
+		at := make([]float64, len(vars))
+		for k, place := range places {
+			at[place] = z[k]
+		}
+		g.starts = append(g.starts, at)
+	}
+	start(nil, nil)
+	for i := range l.cs {
+		if len(l.vars[i]) == 0 || !slices.Contains(vars, l.vars[i][0]) {
+			continue
+		}
+		var places []int
+		for _, v := range l.vars[i] {
+			places = append(places, slices.Index(vars, v))
+		}
+		g.curves, g.places = append(g.curves, i), append(g.places, places)
+		for _, z := range leanStarts(&l.cs[i], l.law(&l.cs[i])) {
+			start(places, z)
+		}
+	}
+	for k, v := range vars {
+		if !l.isLaw(v) {
+			start([]int{k}, []float64{mostDeviation / 2})
+			start([]int{k}, []float64{-mostDeviation / 2})
+		}
+	}
+	return g
 }
 
 func (l *leaning) misfit(z []float64) float64 {
 	sum := 0.0
 	for i := range l.cs {
-		sum += l.cs[i].At(l.cs[i].shift(z, l.laws))
+		sum += l.cs[i].leant(l.own(i, z), l.law(&l.cs[i]))
 	}
 	return sum
 }
 
-// settle leaves in z what minimises misfit(z) + price sum of z^2: of each law the
+// own are the deviations of curve i, in scratch.
+func (l *leaning) own(i int, z []float64) []float64 {
+	l.part.reset(len(l.vars[i]))
+	for k, v := range l.vars[i] {
+		l.part.z[k] = z[v]
+	}
+	return l.part.z
+}
+
+// settle leaves in z what minimises misfit(z) + price sum of z^2: of each group the
 // best of the descents from all its starts.
 func (l *leaning) settle(z []float64, price float64) {
-	for k := range l.laws {
-		best, least := [2]float64{}, math.Inf(1)
-		for _, start := range l.starts[k] {
-			if at, value := l.descend(k, start, price); value < least {
-				best, least = at, value
+	for k := range l.groups {
+		g := &l.groups[k]
+		least := math.Inf(1)
+		for _, start := range g.starts {
+			value := l.descend(g, start, price)
+			if value < least {
+				least = value
+				for i, v := range g.vars {
+					z[v] = l.at.z[i]
+				}
 			}
 		}
-		z[2*k], z[2*k+1] = best[0], best[1]
 	}
 }
 
@@ -110,61 +257,60 @@ func dot(a, b []float64) float64 {
 	return sum
 }
 
-// bowl2 is a function of two deviations about a point: value, gradient and second
-// derivatives.
-type bowl2 struct {
-	value, d, e, dd, de, ee float64
-}
-
-// about is what law k's deviations z cost: the chi-square of its profiles and the
-// price of the deviations.
-func (l *leaning) about(k int, z [2]float64, price float64) bowl2 {
-	b := bowl2{value: price * (z[0]*z[0] + z[1]*z[1]), d: 2 * price * z[0], e: 2 * price * z[1], dd: 2 * price, ee: 2 * price}
-	byD, sigmaE := l.laws[k].LnD, l.laws[k].E
-	for _, i := range l.of[k] {
-		c := &l.cs[i]
-		dev := z[1] * sigmaE
-		byE := sigmaE * (c.ByE[0] + dev*c.ByE[1])
-		value, slope, bend := c.bend(z[0]*byD + dev*(c.ByE[0]+dev*c.ByE[1]/2))
-		b.value += value
-		b.d += slope * byD
-		b.e += slope * byE
-		b.dd += bend * byD * byD
-		b.de += bend * byD * byE
-		b.ee += bend*byE*byE + slope*c.ByE[1]*sigmaE*sigmaE
+// about leaves in b what the deviations b.z of a group cost: the chi-square of its
+// profiles and the price of the deviations.
+func (l *leaning) about(b *basin, g *leanGroup, price float64) {
+	n := len(g.vars)
+	b.value = price * dot(b.z, b.z)
+	clear(b.bend)
+	for i, x := range b.z {
+		b.grad[i], b.bend[i*n+i] = 2*price*x, 2*price
 	}
-	return b
-}
-
-// step returns where the parabola about the point has its lowest point, its second
-// derivatives raised by damp, and how far that is below. It is not ok where the
-// parabola has none.
-func (b *bowl2) step(damp float64) (d, e, gain float64, ok bool) {
-	dd, ee := b.dd+damp, b.ee+damp
-	det := dd*ee - b.de*b.de
-	if !(dd > 0) || !(det > 0) {
-		return 0, 0, 0, false
+	for k, of := range g.curves {
+		places, p := g.places[k], &l.part
+		p.reset(len(places))
+		for i, at := range places {
+			p.z[i] = b.z[at]
+		}
+		p.read(&l.cs[of], l.law(&l.cs[of]))
+		b.value += p.value
+		for i, at := range places {
+			b.grad[at] += p.grad[i]
+			for j, other := range places {
+				b.bend[at*n+other] += p.bend[i*len(places)+j]
+			}
+		}
 	}
-	d, e = (b.de*b.e-ee*b.d)/det, (b.de*b.d-dd*b.e)/det
-	return d, e, -(b.d*d + b.e*e) / 2, true
+	for i, v := range g.vars { // one that would go on beyond the end of its range stays there
+		if out := -math.Copysign(1, b.grad[i]); !l.isLaw(v) && b.z[i]*out >= mostDeviation {
+			b.hold(i)
+		}
+	}
 }
 
-// descend finds a minimum of what law k's deviations cost near z by Newton's method,
-// its second derivatives raised as far as it takes to descend (Levenberg 1944, Quart.
-// Appl. Math. 2, 164-168; Marquardt 1963, J. SIAM 11, 431-441).
-func (l *leaning) descend(k int, z [2]float64, price float64) ([2]float64, float64) {
-	at, damp := l.about(k, z, price), 0.0
+// descend finds a minimum of what a group's deviations cost near start, which it
+// leaves in at, by Newton's method, its second derivatives raised as far as it takes to
+// descend (Levenberg 1944, Quart. Appl. Math. 2, 164-168; Marquardt 1963, J. SIAM 11,
+// 431-441).
+func (l *leaning) descend(g *leanGroup, start []float64, price float64) float64 {
+	n := len(start)
+	l.at.reset(n)
+	l.to.reset(n)
+	l.move = append(l.move[:0], start...)
+	copy(l.at.z, start)
+	l.about(&l.at, g, price)
+	damp := 0.0
 	for range leanPatience {
-		d, e, gain, ok := at.step(damp)
+		gain, ok := l.at.step(l.move, damp)
 		if ok {
-			next := [2]float64{z[0] + d, z[1] + e}
-			to := l.about(k, next, price)
-			if to.value <= at.value {
-				z, at = next, to
+			l.advance(g)
+			l.about(&l.to, g, price)
+			if l.to.value <= l.at.value {
+				l.at, l.to = l.to, l.at
 				if gain < leanError {
 					break
 				}
-				if damp /= leanDamp * leanDamp; damp < leanLeast*(math.Abs(at.dd)+math.Abs(at.ee)) {
+				if damp /= leanDamp * leanDamp; damp < leanLeast*l.at.size() {
 					damp = 0
 				}
 				continue
@@ -173,9 +319,21 @@ func (l *leaning) descend(k int, z [2]float64, price float64) ([2]float64, float
 				break
 			}
 		}
-		damp = math.Max(leanDamp*damp, leanFirst*(math.Abs(at.dd)+math.Abs(at.ee)))
+		damp = math.Max(leanDamp*damp, leanFirst*l.at.size())
 	}
-	return z, at.value
+	return l.at.value
+}
+
+// advance leaves in to the deviations that the step makes of those in at, those by
+// which curves rest on beside laws within their range.
+func (l *leaning) advance(g *leanGroup) {
+	for i, v := range g.vars {
+		x := l.at.z[i] + l.move[i]
+		if !l.isLaw(v) {
+			x = math.Min(math.Max(x, -mostDeviation), mostDeviation)
+		}
+		l.to.z[i] = x
+	}
 }
 
 // When a fit of deviations has settled, in chi-square; how often it is improved at
@@ -189,21 +347,11 @@ const (
 	leanLeast    = 1e-4
 )
 
-// shift returns by how much the laws' deviations move the profile along LnM.
-func (c *Curve) shift(z []float64, laws []LawPrior) float64 {
-	if c.Law == 0 {
-		return 0
-	}
-	k := c.Law - 1
-	e := z[2*k+1] * laws[k].E
-	return z[2*k]*laws[k].LnD + e*(c.ByE[0]+e*c.ByE[1]/2)
-}
-
-// leanStarts returns the likeliest deviations of a law that bring a profile which
-// rests on it to each of its lowest points, mostDips of the lowest.
-func leanStarts(c *Curve, law LawPrior) [][2]float64 {
-	byD, byE := law.LnD, law.E*c.ByE[0]
-	norm := byD*byD + byE*byE
+// leanStarts returns the likeliest deviations that bring a profile to each of its
+// lowest points, mostDips of the lowest. Its law is nil if that has no errors.
+func leanStarts(c *Curve, law *LawPrior) [][]float64 {
+	along := c.along(nil, law)
+	norm := dot(along, along)
 	if !(norm > 0) {
 		return nil
 	}
@@ -216,9 +364,13 @@ func leanStarts(c *Curve, law LawPrior) [][2]float64 {
 		}
 	}
 	slices.SortStableFunc(dips, func(a, b dip) int { return cmp.Compare(a.y, b.y) })
-	var starts [][2]float64
+	var starts [][]float64
 	for _, at := range dips[:min(len(dips), mostDips)] {
-		starts = append(starts, [2]float64{at.x * byD / norm, at.x * byE / norm})
+		z := make([]float64, len(along))
+		for k, x := range along {
+			z[k] = at.x * x / norm
+		}
+		starts = append(starts, z)
 	}
 	return starts
 }

@@ -69,18 +69,20 @@ func (p *profile) spreads(cols, drawn [][][]float64, a amounts) [][]float64 {
 // fields number field. To relative data the free values are counted from those of
 // about, in the element's unit.
 func (p *profile) fitRun(field int, about []float64) least.Solution {
-	return p.fitHosts(p.columns(field), columnsOf(p.redrawn, field), about)
+	cols := p.columns(field)
+	return p.fitHosts(cols, cols, columnsOf(p.redrawn, field), about)
 }
 
 // fitStart is fitRun for the columns before diffusion, which depend on the host where
 // the start does.
 func (p *profile) fitStart() least.Solution {
-	return p.fitHosts(p.starts(), p.startsOf(p.redrawn), nil)
+	cols := p.starts()
+	return p.fitHosts(cols, cols, p.startsOf(p.redrawn), nil)
 }
 
-// fitHosts fits the values that are open to the data, for the columns of the runs and
-// of the draws.
-func (p *profile) fitHosts(cols, drawn [][][]float64, about []float64) least.Solution {
+// fitHosts fits the values that are open to the data, for columns and what those of the
+// draws differ by from others, the host as it was measured.
+func (p *profile) fitHosts(cols, measured, drawn [][][]float64, about []float64) least.Solution {
 	at := p.fitAbout(cols, nil, about)
 	if len(drawn) == 0 {
 		return at
@@ -92,7 +94,7 @@ func (p *profile) fitHosts(cols, drawn [][][]float64, about []float64) least.Sol
 				a.values[j] += a.scale * x
 			}
 		}
-		at = p.fitAbout(cols, p.spreads(cols, drawn, a), about)
+		at = p.fitAbout(cols, p.spreads(measured, drawn, a), about)
 	}
 	return at
 }

@@ -128,6 +128,7 @@ func lawLines(r *catalogue.Row) [][2]string {
 		{"measured at", r.PRange},
 		{"uncertainty", uncertaintyText(r)},
 		{"error of E", fmt.Sprintf("%.4g kJ/mol (%s)", r.SigmaE.Value/1e3, r.SigmaE.Origin)},
+		{"slope error", slopeErrorText(r.Composition)},
 		{"as printed", printedText(r)},
 		{"known from", knownText(r)},
 		{"remark", r.Remark},
@@ -165,6 +166,17 @@ func termText(t catalogue.Term) string {
 		return fmt.Sprintf(" %s %s", slopeText(t.Slope), above(t.Variable, t.Reference, fmt.Sprintf("%g", t.Reference)))
 	case catalogue.Power:
 		return fmt.Sprintf(" %s log10(%s)", slopeText(t.Slope), over(t.Variable, t.Reference))
+	}
+	return ""
+}
+
+// slopeErrorText is how well the slope against a composition is known, and whose it is.
+func slopeErrorText(t catalogue.Term) string {
+	switch {
+	case t.SlopeOf != "":
+		return "that of " + t.SlopeOf + ", from which the slope was taken"
+	case t.Sigma > 0:
+		return fmt.Sprintf("%.3g, of log10 D against %s (%s)", t.Sigma, t.Variable, catalogue.FromSource)
 	}
 	return ""
 }

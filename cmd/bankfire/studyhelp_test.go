@@ -259,6 +259,9 @@ var beside = map[string][]string{
 	"crystal.element.rim following value":       {"melt", `melt = "sr-melt.csv"`, "temperature", `temperature = "T [C]"`},
 	"crystal.host unit":                         {"value", `value = "bare"`},
 	"crystal.element.traverse.error size":       {"column", "", "sigmas", ""},
+	"law.host slope_of":                         {"ln_slope", ""},
+	"crystal.element.law.host slope_of":         {"ln_slope", ""},
+	"crystal.element.law like slope_sigma":      {"like", `like = "plagioclase-sr-giletti1994"`},
 	"family.vary choices":                       {"from", "", "to", ""},
 	"crystal.host width":                        {"smooth", `smooth = "spline"`},
 	"crystal.host.error size":                   {"column", "", "sigmas", ""},
@@ -268,7 +271,8 @@ var beside = map[string][]string{
 var onHost = []string{"crystal.zones host", "crystal host_law", "crystal.element partition", "crystal.element.law host",
 	"crystal.element.rim following following", "crystal.element.rim following melt",
 	"crystal.element.rim following temperature", "crystal.element.rim following value", "crystal.element.rim following k",
-	"crystal.element.rim following unit", "crystal.element.rim following from", "crystal.element.law.host ln_slope", "crystal.element.law.host at"}
+	"crystal.element.rim following unit", "crystal.element.rim following from", "crystal.element.law.host ln_slope", "crystal.element.law.host slope_of", "crystal.element.law.host at",
+	"crystal.element.law like slope_sigma"}
 
 // hosts gives a host to the zones that have none.
 var hosts = strings.NewReplacer(`"140 um" }`, `"140 um", host = 0.5 }`, `"60 um" }`, `"60 um", host = 0.4 }`)

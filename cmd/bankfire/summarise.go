@@ -212,9 +212,12 @@ func ownBests(r *paths.Result) []ownBest {
 }
 
 func newWithLaws(l *paths.LawsAllowed) *withLaws {
-	out := &withLaws{Verdict: l.Verdict.String(), Tail: bounded(l.Tail), Misfit: bounded(l.Misfit), Leaning: []lawLeaning{}}
+	out := &withLaws{Verdict: l.Verdict.String(), Tail: bounded(l.Tail), Misfit: bounded(l.Misfit), Leaning: []lawLeaning{}, Others: []constantLeaning{}}
 	for _, on := range l.Leaning {
 		out.Leaning = append(out.Leaning, lawLeaning{on.Law, on.Sigma, on.LnD, on.E})
+	}
+	for _, off := range l.Others {
+		out.Others = append(out.Others, constantLeaning{off.Of, off.What.String(), off.Sigma})
 	}
 	out.Passes = l.Leaning != nil
 	return out

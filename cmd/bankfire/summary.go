@@ -111,11 +111,18 @@ type ownBest struct {
 // withLaws is the verdict with the laws' own errors allowed for; its numbers are
 // null where nothing was judged.
 type withLaws struct {
-	Verdict string       `json:"verdict"`
-	Tail    *float64     `json:"tail"`
-	Misfit  *float64     `json:"misfit"`
-	Passes  bool         `json:"passes_with_some_error"`
-	Leaning []lawLeaning `json:"leaning"` // the smallest with which it passes
+	Verdict string            `json:"verdict"`
+	Tail    *float64          `json:"tail"`
+	Misfit  *float64          `json:"misfit"`
+	Passes  bool              `json:"passes_with_some_error"`
+	Leaning []lawLeaning      `json:"leaning"`       // the smallest with which it passes
+	Others  []constantLeaning `json:"other_leaning"` // those of other constants, with these
+}
+
+type constantLeaning struct {
+	Of       string  `json:"of"`
+	Constant string  `json:"constant"`
+	Sigma    float64 `json:"sigma"`
 }
 
 type lawLeaning struct {

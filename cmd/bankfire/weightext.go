@@ -2,7 +2,6 @@ package main
 
 import (
 	"bytes"
-	"cmp"
 	"fmt"
 	"io"
 	"math"
@@ -69,7 +68,7 @@ func writeVerdicts(w io.Writer, r *paths.Result) (common, notes []string) {
 	for i := range r.Paths {
 		p := &r.Paths[i]
 		o := &p.Outcome
-		row := append([]string{p.Path.Name, o.Verdict.String()}, findingCells(o, len(r.Laws))...)
+		row := append([]string{p.Path.Name, o.Verdict.String()}, findingCells(o, r.WithErrors())...)
 		row = append(row, thermal.DurationText(p.Life))
 		for _, above := range p.Above {
 			row = append(row, thermal.DurationText(above))
@@ -122,32 +121,32 @@ func commonNotes(r *paths.Result, beside [][]string) []string {
 }
 
 // findingCells are the cells of a path's row that a barred path does not have.
-func findingCells(o *paths.Outcome, laws int) []string {
+func findingCells(o *paths.Outcome, errors int) []string {
 	if o.Verdict == paths.Barred {
 		return make([]string, 5)
 	}
-	return append(numberCells(&o.Finding), leaningText(&o.WithLaws, laws))
+	return append(numberCells(&o.Finding), leaningText(&o.WithLaws, errors))
 }
 
-// leaningText says by how much the laws, so many as have errors, would have to
-// be off: the one that is furthest.
-func leaningText(l *paths.LawsAllowed, laws int) string {
+// leaningText says by how much the laws and other constants, so many as have errors,
+// would have to be off: the one that is furthest.
+func leaningText(l *paths.LawsAllowed, errors int) string {
 	switch {
 	case l.Verdict == paths.Unjudged:
 		return ""
-	case laws == 0:
+	case errors == 0:
 		return "no error stated"
 	case l.Leaning == nil:
 		return "no error helps"
-	case len(l.Leaning) == 0:
+	case len(l.Leaning)+len(l.Others) == 0:
 		return ""
 	}
-	most := slices.MaxFunc(l.Leaning, func(a, b paths.Leaning) int { return cmp.Compare(a.Sigma, b.Sigma) })
-	text := fmt.Sprintf("%.1f sigma", most.Sigma)
-	if len(l.Leaning) == 1 || text == "0.0 sigma" {
+	list := asking(l)
+	text := fmt.Sprintf("%.1f sigma", list[0].sigma)
+	if len(list) == 1 || text == "0.0 sigma" {
 		return text
 	}
-	return "up to " + text + " (" + most.Law + ")"
+	return "up to " + text + " (" + list[0].name + ")"
 }
 
 // gathered returns the notes with all that say of constants that they were not
@@ -229,7 +228,7 @@ func writeSentences(w io.Writer, r *paths.Result) {
 	for i := range r.Paths {
 		if o := &r.Paths[i].Outcome; o.Verdict == paths.Barred || shared && o.Verdict != paths.Reproduces {
 			fmt.Fprintf(w, "%s is %s.\n", quoted(r.Paths[i].Path.Name), verdictInWords(&r.Paths[i]))
-			writeLeaning(w, &r.Paths[i], len(r.Laws))
+			writeLeaning(w, &r.Paths[i], r.WithErrors())
 		} else if within := withinCrystals(&r.Paths[i]); !shared && len(within) > 0 {
 			fmt.Fprintf(w, "Along %s elements of one crystal are %s.\n", quoted(r.Paths[i].Path.Name), oddsInWords(&r.Paths[i], within))
 		}

@@ -98,6 +98,8 @@ type Term struct {
 	Variable         string // name of a condition
 	Form             Form
 	Slope, Reference float64
+	Sigma            float64 // standard deviation of Slope, at Reference held; 0 if not known
+	SlopeOf          string  // key of the law of another element from which Slope was taken; "" is none
 }
 
 // log10 returns the summand of log10 D at x.

@@ -172,6 +172,8 @@ func (rec *record) composition() Term {
 		Form:      form,
 		Slope:     rec.number("composition_slope"),
 		Reference: rec.number("composition_reference"),
+		Sigma:     rec.number("composition_sigma"),
+		SlopeOf:   rec.field["composition_slope_of"],
 	}
 }
 

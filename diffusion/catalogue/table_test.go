@@ -86,6 +86,14 @@ func checkTerms(t *testing.T, r *Row) {
 	if (onHost || r.OwnComposition()) && r.Composition.Form != Linear {
 		t.Errorf("a term of the host or the element is %s, want linear: it becomes a factor exp(slope (X - at))", r.Composition.Form)
 	}
+	if c := r.Composition; (c.Sigma != 0 || c.SlopeOf != "") && !onHost || !(c.Sigma >= 0 && c.Sigma <= math.Abs(c.Slope)/2) {
+		t.Errorf("slope %g +- %g of %q", c.Slope, c.Sigma, c.SlopeOf)
+	}
+	if key := r.Composition.SlopeOf; key != "" {
+		if of, err := Find(key); err != nil || of.Composition.Slope != r.Composition.Slope || of.Species == r.Species {
+			t.Errorf("its slope %g is not that of another element's law %s", r.Composition.Slope, key)
+		}
+	}
 	for _, term := range r.terms() {
 		if term.Slope == 0 {
 			t.Errorf("no slope by %s", term.Variable)

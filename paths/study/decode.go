@@ -21,23 +21,24 @@ const (
 // a table, return what they could read and report what is wrong; nothing that
 // they return is used once a problem was reported.
 type decoder struct {
-	file       string // the study as the user named it
-	files      *files
-	settings   []Setting            // the first is the study's own; legs have the number of one, from 1
-	used       map[string]bool      // conditions that a law depends on
-	laws       map[string]Law       // the study's own, by name
-	partitions map[string]Partition // the same
-	notes      []string
-	measured   map[string]string // element and crystal that a traverse is of, by its file and columns
-	hostIs     string            // what the host of the crystal is known to be, catalogue.XAn or XFe; "" is not known
-	hostLine   int               // where it says so
-	meant      map[string]bool   // dotted keys, with the place of their table, that a mistyped key stands for
-	everyone   map[string]bool   // elements of all crystals
-	copies     []scaledStart     // of the crystal that is being read
-	legs       int               // of all paths so far
-	open       *openLegs         // of the family that is being read; nil in a path
-	found      []*thermal.InputError
-	faults     int // all found, kept or not
+	file        string // the study as the user named it
+	files       *files
+	settings    []Setting             // the first is the study's own; legs have the number of one, from 1
+	used        map[string]bool       // conditions that a law depends on
+	laws        map[string]Law        // the study's own, by name
+	partitions  map[string]Partition  // the same
+	slopeSigmas map[string]slopeSigma // of laws with a name
+	notes       []string
+	measured    map[string]string // element and crystal that a traverse is of, by its file and columns
+	hostIs      string            // what the host of the crystal is known to be, catalogue.XAn or XFe; "" is not known
+	hostLine    int               // where it says so
+	meant       map[string]bool   // dotted keys, with the place of their table, that a mistyped key stands for
+	everyone    map[string]bool   // elements of all crystals
+	copies      []scaledStart     // of the crystal that is being read
+	legs        int               // of all paths so far
+	open        *openLegs         // of the family that is being read; nil in a path
+	found       []*thermal.InputError
+	faults      int // all found, kept or not
 }
 
 func (d *decoder) add(e *thermal.InputError) {

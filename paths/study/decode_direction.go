@@ -142,6 +142,7 @@ func (d *decoder) joined(n *node, parts []Part) Law {
 		if !d.agree(n, &law, &p.Law) {
 			return Law{}
 		}
+		law.leastKnown(&p.Law)
 		keys = append(keys, p.Law.Key)
 		if p.Law.Citation != "" && !slices.Contains(citations, p.Law.Citation) {
 			citations = append(citations, p.Law.Citation)

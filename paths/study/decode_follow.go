@@ -162,7 +162,7 @@ func (d *decoder) followers(rims []Rim, r float64, c *Crystal, e *Element) {
 			d.add(at.Error("", "a rim that follows a partition relation needs the host's composition", hostRemedy))
 		case f.related() && e.Traverse != nil && e.Traverse.Grey:
 			d.add(at.Error("", "relative values cannot follow a relation", "give the traverse in a unit of concentration"))
-		case e.Law.OwnSlope != 0:
+		case e.Law.onItself():
 			d.add(at.Error("", "D depends on "+e.Name+" itself, so that its rim must be known without a path", `write held = "90 ppm", or given = "rim.csv" against time`))
 		}
 		if f.Partition != nil {

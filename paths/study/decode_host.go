@@ -87,20 +87,17 @@ const maxSlope = 100
 //
 //	D x exp(ln_slope (X - at)).
 func (d *decoder) lawHost(n *node, kind tableKind, law *Law) {
-	const example = `write host = { ln_slope = -9.4, at = 0 }: D times exp(ln_slope (X - at))`
+	const example = `write host = { ln_slope = -9.4, at = 0 }, or ln_slope = "-9.4 +- 0.9": D times exp(ln_slope (X - at))`
 	if !d.is(n, tableNode, example) {
 		return
 	}
 	d.keys(n, kind)
-	slope, at := d.need(n, "ln_slope", example), n.get("at")
-	if d.is(slope, numberNode, example) {
-		if !(slope.number >= -maxSlope && slope.number <= maxSlope) {
-			d.report(slope, fmt.Sprintf("not from -%d to %d", maxSlope, maxSlope), example)
-			return
-		}
-		law.HostSlope = slope.number
+	if of := n.get("slope_of"); of != nil {
+		d.slopeOf(n, of, law)
+	} else if slope, ok := d.slope(d.need(n, "ln_slope", example), example); ok {
+		law.HostSlope, law.HostSlopeSigma = slope.Value, slope.Sigma
 	}
-	if at != nil {
+	if at := n.get("at"); at != nil {
 		law.HostAt = d.host(at)
 	}
 }

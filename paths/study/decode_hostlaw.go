@@ -45,7 +45,7 @@ func (d *decoder) statedHostLaw(n *node, c *Crystal) {
 	}
 	before := d.faults
 	law := d.law(n, c, itself())
-	if law.OwnSlope != 0 {
+	if law.onItself() {
 		d.report(n, "its own is the composition of the host, of which this law has no unit", "write host = { ln_slope = ... } in place of own in the law")
 	}
 	if d.faults == before {

@@ -137,7 +137,7 @@ func (d *decoder) unscaled(n *node, c *Crystal, e *Element) Law {
 
 // onHost reports a law of the study that depends on a host that is not given.
 func (d *decoder) onHost(n *node, law Law, c *Crystal) Law {
-	if law.HostSlope != 0 && !c.Hosted && len(c.Zones) > 0 {
+	if law.onAHost() && !c.Hosted && len(c.Zones) > 0 {
 		d.report(n, "this law depends on the host's composition", hostRemedy)
 	}
 	return law
@@ -164,13 +164,23 @@ func (d *decoder) published(n *node, row *catalogue.Row, c *Crystal, e *Element)
 	switch term := row.Composition; {
 	case e.onHost(row):
 		at[term.Variable] = term.Reference
-		law.HostSlope, law.HostAt = math.Ln10*term.Slope, term.Reference
+		of := hostTerm(row)
+		law.HostSlope, law.HostAt, law.HostSlopeSigma, law.SlopeOf = of.HostSlope, of.HostAt, of.HostSlopeSigma, of.SlopeOf
 	case row.OwnComposition():
 		at[term.Variable] = term.Reference
 		d.ownIron(n, row, e, &law)
 	}
 	d.underConditions(n, row, at, &law)
 	return law
+}
+
+// hostTerm is a law with nothing but how the law of a row depends on the host.
+func hostTerm(row *catalogue.Row) Law {
+	term := &row.Composition
+	if _, on := row.OnHost(); !on && !row.OwnComposition() {
+		return Law{}
+	}
+	return Law{Key: row.Key, HostSlope: math.Ln10 * term.Slope, HostAt: term.Reference, HostSlopeSigma: math.Ln10 * term.Sigma, SlopeOf: term.SlopeOf}
 }
 
 // onHost reports whether the law of a row depends on the host of the zones: a

@@ -17,21 +17,35 @@ const maxOwn = 50
 //
 //	D x exp(ln_slope (C - at)), C in the element's unit.
 func (d *decoder) lawOwn(n *node, kind tableKind, law *Law) {
-	const example = `write own = { ln_slope = 3, at = 0 }: D times exp(ln_slope (C - at)), C in the element's unit`
+	const example = `write own = { ln_slope = 3, at = 0 }, or ln_slope = "3 +- 0.5": D times exp(ln_slope (C - at)), C in the element's unit`
 	if !d.is(n, tableNode, example) {
 		return
 	}
 	d.keys(n, kind)
-	slope, at := d.need(n, "ln_slope", example), n.get("at")
-	if d.is(slope, numberNode, example) {
-		law.OwnSlope = slope.number
+	if slope := d.need(n, "ln_slope", example); slope != nil {
+		law.OwnSlope, law.OwnSlopeSigma = d.ownSlope(slope, example)
 	}
-	if d.is(at, numberNode, example) {
+	if at := n.get("at"); d.is(at, numberNode, example) {
 		if at.number < 0 {
 			d.report(at, "below zero", "a value is zero or more")
 		}
 		law.OwnAt = at.number
 	}
+}
+
+// ownSlope reads a slope of ln D in one over the element's unit, perhaps with its error.
+func (d *decoder) ownSlope(n *node, example string) (slope, sigma float64) {
+	if n.kind == textNode {
+		x, err := thermal.ParseFactor(n.text)
+		if err != nil {
+			d.reportError(n, err)
+		}
+		return x.Value, x.Sigma
+	}
+	if !d.is(n, numberNode, example) {
+		return 0, 0
+	}
+	return n.number, 0
 }
 
 // ownIron makes a law of the catalogue, whose log10 D has the term
@@ -88,7 +102,7 @@ func (d *decoder) noteXFe(e *Element) {
 // nonlinear checks an element whose law depends on the element itself: its profile
 // is no sum of parts, one for each value that would be fitted.
 func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
-	if e.Law.OwnSlope == 0 {
+	if !e.Law.onItself() {
 		return
 	}
 	problem := "D depends on " + e.Name + " itself, so that this value must be known exactly"
@@ -115,7 +129,9 @@ func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
 		}
 	}
 	lo, hi := c.values(e)
-	if most := max(e.Law.lnOwn(hi), e.Law.lnOwn(lo), -e.Law.lnOwn(lo), -e.Law.lnOwn(hi)); !(most <= maxOwn) {
+	steepest := e.Law
+	steepest.OwnSlope = math.Abs(e.Law.OwnSlope) + MostDeviation*math.Abs(e.Law.OwnSlopeSigma)
+	if most := max(math.Abs(steepest.lnOwn(hi)), math.Abs(steepest.lnOwn(lo))); !(most <= maxOwn) {
 		d.report(n.get("law"), fmt.Sprintf("its own composition, from %.4g to %.4g %s, changes D by a factor of e^%.3g", lo, hi, e.Unit, most),
 			"check the values, and ln_slope and at if the law is yours: C is in "+e.Unit)
 	}
@@ -143,6 +159,12 @@ func (c *Crystal) values(e *Element) (lo, hi float64) {
 	}
 	return lo, hi
 }
+
+// onItself reports whether D depends, or may depend, on the element's own value.
+func (l *Law) onItself() bool { return l.OwnSlope != 0 || l.OwnSlopeSigma != 0 }
+
+// onAHost reports whether D depends, or may depend, on the host.
+func (l *Law) onAHost() bool { return l.HostSlope != 0 || l.HostSlopeSigma != 0 }
 
 // lnOwn is ln of the factor that D has at the element's own value.
 func (l *Law) lnOwn(value float64) float64 {

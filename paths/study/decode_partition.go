@@ -3,6 +3,7 @@ package study
 import (
 	"fmt"
 	"maps"
+	"math"
 	"slices"
 	"strings"
 	"unicode"
@@ -24,9 +25,11 @@ func (d *decoder) ownPartitions(n *node) {
 	for _, t := range d.tables(n, `begin each partition relation with "[[partition]]"`) {
 		d.keys(t, partitionTable)
 		const example = `write R T ln K = A X + B as A = "-26.7 kJ/mol" and B = "26.7 kJ/mol"`
-		p := Partition{
-			A: d.signedEnergy(d.need(t, "A", example), example),
-			B: d.signedEnergy(d.need(t, "B", example), example),
+		var p Partition
+		p.A, p.SigmaA = d.signedEnergy(d.need(t, "A", example), example)
+		p.B, p.SigmaB = d.signedEnergy(d.need(t, "B", example), example)
+		if at := t.get("at"); at != nil {
+			p.At = d.host(at)
 		}
 		v := d.need(t, "name", `write a name, such as name = "kx"`)
 		if v == nil {
@@ -48,28 +51,36 @@ func (d *decoder) ownPartitions(n *node) {
 	}
 }
 
-// signedEnergy reads a molar energy of either sign, J/mol.
-func (d *decoder) signedEnergy(n *node, remedy string) float64 {
+// signedEnergy reads a molar energy of either sign, J/mol, perhaps with its error.
+func (d *decoder) signedEnergy(n *node, remedy string) (value, sigma float64) {
 	if n == nil {
-		return 0
+		return 0, 0
 	}
 	if n.kind == numberNode {
 		d.report(n, "a number without a unit", remedy)
-		return 0
+		return 0, 0
 	}
 	if !d.is(n, textNode, remedy) {
-		return 0
+		return 0, 0
 	}
-	x, err := thermal.ParseQuantity(n.text, thermal.MolarEnergy)
+	x, err := thermal.ParseUncertain(n.text, thermal.MolarEnergy)
 	switch {
 	case err != nil:
 		d.reportError(n, err)
-		return 0
-	case !(x >= -maxPartition && x <= maxPartition):
-		d.report(n, fmt.Sprintf("more than %g kJ/mol", maxPartition/1e3), "check the unit")
-		return 0
+		return 0, 0
+	case !(math.Abs(x.Value)+MostDeviation*x.Sigma <= maxPartition):
+		d.report(n, fmt.Sprintf("more than %g kJ/mol%s", maxPartition/1e3, withDeviation(x.Sigma)), "check the unit")
+		return 0, 0
 	}
-	return x
+	return x.Value, x.Sigma
+}
+
+// withDeviation adds to a limit that the value is over it with its error.
+func withDeviation(sigma float64) string {
+	if sigma == 0 {
+		return ""
+	}
+	return fmt.Sprintf(" with %g standard deviations", MostDeviation)
 }
 
 // partition reads the partition relation of an element: a key of the catalogue or
@@ -107,7 +118,11 @@ func (d *decoder) relation(n *node, key string) (Partition, bool) {
 		d.unknownPartition(n, key, err)
 		return Partition{}, false
 	}
-	return Partition{Key: key, Row: row, A: row.A, B: row.B}, true
+	p := Partition{Key: key, Row: row, A: row.A, B: row.B, SigmaA: row.SigmaA, SigmaB: row.SigmaB}
+	if row.RangeKnown() {
+		p.At = (row.XMin + row.XMax) / 2
+	}
+	return p, true
 }
 
 // hostRemedy says how a host is given.

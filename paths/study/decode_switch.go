@@ -76,6 +76,17 @@ func (d *decoder) switchAt(n *node) (at switching) {
 	return at
 }
 
+// leastKnown takes the errors of a part's slopes if they are larger. They are those of
+// the slopes that the parts have in common.
+func (l *Law) leastKnown(part *Law) {
+	if part.HostSlopeSigma > l.HostSlopeSigma {
+		l.HostSlopeSigma, l.SlopeOf = part.HostSlopeSigma, part.slopeKey()
+	}
+	if math.Abs(part.OwnSlopeSigma) > math.Abs(l.OwnSlopeSigma) {
+		l.OwnSlopeSigma = part.OwnSlopeSigma
+	}
+}
+
 // agree reports laws of which one factor for the composition cannot be taken out.
 func (d *decoder) agree(n *node, a, b *Law) bool {
 	const remedy = "choose laws of one slope, or name the law along your traverse"
@@ -105,6 +116,7 @@ func (d *decoder) regimes(at switching, laws [2]Law) Law {
 	var citations []string
 	for i := range laws {
 		part := laws[i]
+		law.leastKnown(&part)
 		whole := scaled(part.Law, law.lnAt(&part))
 		part.Law = d.bySetting(func(setting int, c *Conditions) diffusion.Law {
 			return windowed(whole.In(setting), at.windows(c)[i])

@@ -9,15 +9,24 @@ import (
 	"bankfire/thermal"
 )
 
-// like reads a law that has a name, and is multiplied by a factor.
+// like reads a law that has a name, and is multiplied by a factor or has an error of its
+// slope that is stated here.
 func (d *decoder) like(n *node, c *Crystal, e *Element) Law {
 	d.keys(n, likeTable)
-	d.need(n, "times", timesRemedy)
+	slope := n.get("slope_sigma")
+	if slope == nil {
+		d.need(n, "times", timesRemedy)
+	}
 	v := n.get("like")
 	if !d.is(v, textNode, `write a key that "bankfire laws" lists, or the name of a [[law]]`) {
 		return Law{}
 	}
-	return d.law(v, c, e)
+	before := d.faults
+	law := d.law(v, c, e)
+	if slope != nil && d.faults == before {
+		d.likeSlope(slope, &law)
+	}
+	return law
 }
 
 const timesRemedy = `write what D is multiplied by, a number above 0 without a unit, such as times = "10 +- 3" or times = 0.5`

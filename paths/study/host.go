@@ -99,7 +99,7 @@ func (c *Crystal) HostText(i int) string {
 }
 
 // OnHost reports whether what the element does depends on the host.
-func (e *Element) OnHost() bool { return e.Partitions() != nil || e.Law.HostSlope != 0 }
+func (e *Element) OnHost() bool { return e.Partitions() != nil || e.Law.onAHost() }
 
 // mostRedrawn is how many parts of a spline's error are drawn at most: it is enough
 // for a traverse of some 30 widths.

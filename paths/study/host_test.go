@@ -175,7 +175,11 @@ func TestWrongHosts(t *testing.T) {
 	list := []wrong{
 		{"host law without a host", law, `law = @"plagioclase-sr-giletti1994"`, "", "crystal.element.law", "depends on XAn, not given", "give every zone of the crystal its host, such as host = 0.55"},
 		{"own host law without a host", law, `law = @{ D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { ln_slope = 3, at = 0 } }`, "", "crystal.element.law", "depends on the host", "host = 0.55"},
-		{"named host law without a host", `E = "273 kJ/mol"` + "\n\n[[path]]", `E = "273 kJ/mol"` + "\nhost = { ln_slope = @\"3\" }\n\n[[path]]", "", "law.host.ln_slope", "a text, not a number", "ln_slope = -9.4"},
+		{"named host law without a host", `E = "273 kJ/mol"` + "\n\n[[path]]", `E = "273 kJ/mol"` + "\nhost = { ln_slope = @\"3 +- x\" }\n\n[[path]]", "", "law.host.ln_slope", "not a plain number", "10 +- 3"},
+		{"host law known too badly", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { ln_slope = @"-9 +- 40" } }`, "", "crystal.element.law.host.ln_slope", "not from -100 to 100 with 3 standard deviations", "ln_slope"},
+		{"slope of no law", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { slope_of = @"plagioclase-sr-gilleti1994" } }`, "", "crystal.element.law.host.slope_of", "catalogue", "plagioclase-sr-giletti1994"},
+		{"slope of a law without", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { slope_of = @"plagioclase-mg-faak2013" } }`, "", "crystal.element.law.host.slope_of", "does not depend on a host", "slope_of ="},
+		{"two slopes", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { slope_of = "plagioclase-sr-giletti1994", ln_slope = @3 } }`, "", "crystal.element.law.host.ln_slope", "beside one taken from another law", "leave one"},
 		{"host law without a slope", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = @{ at = 0 } }`, "", "crystal.element.law.host.ln_slope", "missing", "ln_slope = -9.4"},
 		{"host law too steep", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { ln_slope = @-3000 } }`, "", "crystal.element.law.host.ln_slope", "not from -100 to 100", "ln_slope"},
 		{"host law at no host", law, `law = { D0 = "1e-9 m2/s", E = "250 kJ/mol", host = { ln_slope = 0, at = @50 } }`, "", "crystal.element.law.host.at", "not from 0 to 1", "mole fraction"},

@@ -41,7 +41,7 @@ func parse(file string, data []byte, load loader) (*Study, error) {
 		}
 		return nil, err
 	}
-	d := &decoder{file: file, files: newFiles(file, data, load), used: map[string]bool{}, laws: map[string]Law{}, partitions: map[string]Partition{}, meant: map[string]bool{},
+	d := &decoder{file: file, files: newFiles(file, data, load), used: map[string]bool{}, laws: map[string]Law{}, partitions: map[string]Partition{}, slopeSigmas: map[string]slopeSigma{}, meant: map[string]bool{},
 		measured: map[string]string{}}
 	s := d.study(root)
 	if err := d.err(); err != nil {
@@ -77,6 +77,7 @@ func (d *decoder) study(root *node) *Study {
 		}
 	}
 	s.Crystals = d.crystals(root)
+	d.shareSlopes(s.Crystals)
 	d.noteUnused()
 	if d.faults == 0 {
 		d.together(s)

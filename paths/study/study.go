@@ -165,10 +165,13 @@ type Law struct {
 	HostSlope, HostAt float64
 	// Where the element has the value C, D has the factor exp(OwnSlope (C - OwnAt)).
 	OwnSlope, OwnAt float64
-	Times           thermal.Uncertain // the user's factor on D, which Law holds; its error is one beside Sigma; 0 is none
-	Fugacities      []Fugacity        // under which Law holds, one a setting; nil if it does not depend on fO2
-	Parts           []Part            // of which a law by direction is the sum; then Row and Fugacities are nil, Key joins theirs, and Sigma is 0
-	Switch          string            // of a law that is Parts[0] above it and else Parts[1]: "fO2 1e-10 Pa" or "800 C"; "" is none
+	// Standard deviations of the slopes, D at HostAt and OwnAt held; 0 if none is stated.
+	HostSlopeSigma, OwnSlopeSigma float64
+	SlopeOf                       string            // the law whose HostSlope it is; "" is its own
+	Times                         thermal.Uncertain // the user's factor on D, which Law holds; its error is one beside Sigma; 0 is none
+	Fugacities                    []Fugacity        // under which Law holds, one a setting; nil if it does not depend on fO2
+	Parts                         []Part            // of which a law by direction is the sum; then Row and Fugacities are nil, Key joins theirs, and Sigma is 0
+	Switch                        string            // of a law that is Parts[0] above it and else Parts[1]: "fO2 1e-10 Pa" or "800 C"; "" is none
 }
 
 // Fugacity is what the fO2 of a law's constants is in legs of a setting.
@@ -276,6 +279,10 @@ type Partition struct {
 	Key  string               // key in the catalogue, or name of a [[partition]]
 	Row  *catalogue.Partition // nil unless it is from the catalogue
 	A, B float64              // J/mol
+	// Standard deviations, J/mol, 0 if none is stated: of A, R T ln K in a host At held,
+	// and of B, which is that of R T ln K there.
+	SigmaA, SigmaB float64
+	At             float64
 }
 
 // LnK returns the logarithm of the partition coefficient in a host of

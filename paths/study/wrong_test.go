@@ -345,7 +345,7 @@ func wrongElements() []wrong {
 			"\nstart = { zones = [\"9 ppm\", \"8 ppm\"], edge = \"0 um\" }\nrim = @{ held = \"9 +- 1 ppm\" }", "", "crystal.element.rim", "must be known exactly", `"90 ppm"`},
 		{"own without a slope", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = @{ at = 0 } }`, "", "crystal.element.law.own.ln_slope", "missing", "ln_slope = 3"},
 		{"own a number", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = @3 }`, "", "crystal.element.law.own", "a number, not a table", "ln_slope = 3"},
-		{"own in quotes", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = @"3" } }`, "", "crystal.element.law.own.ln_slope", "a text, not a number", "ln_slope = 3"},
+		{"own in quotes", law, `{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = @"3 +-" } }`, "", "crystal.element.law.own.ln_slope", "not a plain number", "10 +- 3"},
 		{"own at less than nothing", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nown = { ln_slope = 3, at = @-1 }", "", "law.own.at", "below zero", "zero or more"},
 		{"own mistyped", `E = "273 kJ/mol"`, `E = "273 kJ/mol"` + "\nown = { @lnslope = 3, ln_slope = 3 }", "", "law.own.lnslope", "unknown key", `did you mean "ln_slope"?`},
 		{"own too steep", law + "\nstart = " + start, `@{ D0 = "1e-9 m2/s", E = "250 kJ/mol", own = { ln_slope = -3 } }` +
