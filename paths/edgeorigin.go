@@ -60,7 +60,7 @@ func (w *weighedPath) edgeOrigins(ctx context.Context, of *weighing, path *study
 		var cs []Curve
 		var each []sampler
 		for _, n := range list {
-			sharp, err := w.profiles[n].sharp(of.elements[n])
+			sharp, err := w.profiles[n].sharp(of.elements[n].on(path))
 			if err != nil {
 				return err
 			}

@@ -80,7 +80,11 @@ func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Pat
 	e.methods = slices.Repeat([]FamilyMethod{{Why: why}}, len(e.elements))
 	for n := range e.elements {
 		of := &e.elements[n]
-		if why == "" {
+		switch open := of.element.Open; {
+		case why != "":
+		case open != "":
+			e.methods[n].Why = open + " is open in the family"
+		default:
 			t, reason, err := newTable(ctx, of, first, w.study.Confidence)
 			if err != nil {
 				return nil, fmt.Errorf("%s, %s in %s: %w", first.Name, of.element.Name, of.crystal.Name, err)

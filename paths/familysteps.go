@@ -47,7 +47,7 @@ func (e *engine) curves(ctx context.Context, path *study.Path, lnG []float64) ([
 			cs, each = append(cs, t.on(lnG[n])), append(each, t.sampler(lnG[n]))
 			continue
 		}
-		if err := p.add(ctx, of, path, e.laws); err != nil {
+		if err := p.add(ctx, of.on(path), path, e.laws); err != nil {
 			return nil, fmt.Errorf("%q, %s in %s: %w", path.Name, of.element.Name, of.crystal.Name, err)
 		}
 		last := len(p.profiles) - 1

@@ -58,7 +58,7 @@ type Snapshot struct {
 func Follow(ctx context.Context, s *study.Study, path *study.Path, at []float64) (*Course, error) {
 	out := &Course{Path: path}
 	for i := range s.Crystals {
-		c := &s.Crystals[i]
+		c := path.Crystal(&s.Crystals[i])
 		for j := range c.Elements {
 			e, err := follow(ctx, c, &c.Elements[j], path, at)
 			if err != nil {

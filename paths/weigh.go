@@ -108,6 +108,20 @@ type element struct {
 	hosts   []*study.Crystal // the crystal with its host redrawn; nil where that is exact or does not matter
 }
 
+// on is the element as the path has it: as that of its crystals if it is a member of a
+// family with values in them.
+func (e element) on(path *study.Path) element {
+	c := path.Crystal(e.crystal)
+	if c == e.crystal {
+		return e
+	}
+	e.crystal, e.element = c, &c.Elements[e.index]
+	if e.hosts != nil {
+		e.hosts = c.Redrawn()
+	}
+	return e
+}
+
 // weighedPath is what the solver said of one path: one entry an element, empty if
 // its crystal bars the path, or none at all if nothing was run.
 type weighedPath struct {
@@ -277,6 +291,7 @@ func (w *weighing) path(ctx context.Context, i int) error {
 // solve runs every element that is not barred along the path.
 func (w *weighing) solve(ctx context.Context, p *weighedPath, path *study.Path) error {
 	for _, e := range w.elements {
+		e = e.on(path)
 		if p.bars(e.crystal) {
 			p.skip(e)
 			continue

@@ -131,6 +131,9 @@ func writeFamiliesRead(w io.Writer, s *study.Study) {
 func askedText(v *study.Value) string {
 	switch v.Kind {
 	case study.Normal:
+		if v.Level() {
+			return fmt.Sprintf("%s +- %s", valueText(v, v.Mean), celsius(thermal.ZeroCelsius+v.Sigma))
+		}
 		return valueText(v, v.Mean) + " +- " + valueText(v, v.Sigma)
 	case study.Chosen:
 		var words []string

@@ -136,10 +136,11 @@ func newQuantiles(q paths.Quantiles) quantiles {
 	return quantiles{bounded(q[0]), bounded(q[1]), bounded(q[2])}
 }
 
-// siUnit is the unit of a value in SI, "" of a plain number.
+// siUnit is the unit of a value in SI, of a concentration that in which it was written,
+// "" of a plain number.
 func siUnit(v *study.Value) string {
-	if v.Plain() {
-		return ""
+	if v.Plain() || v.Unit() != "" {
+		return v.Unit()
 	}
 	return map[thermal.Dimension]string{thermal.Temperature: "K", thermal.Duration: "s", thermal.Length: "m", thermal.Diffusivity: "m2/s"}[v.Dim()]
 }

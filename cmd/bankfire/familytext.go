@@ -98,11 +98,14 @@ func valueText(v *study.Value, x float64) string {
 		return "-" + thermal.DurationText(-x)
 	case v.Dim() == thermal.Duration:
 		return thermal.DurationText(x)
-	case v.Dim() == thermal.Length:
-		return number(x) + " m"
+	case v.Dim() == thermal.Length && math.Abs(x) < oneMillimetre:
+		return number(x/1e-6) + " um"
 	}
-	return number(x) + " m2/s"
+	return number(x) + " " + siUnit(v)
 }
+
+// oneMillimetre is the length below which people write um.
+const oneMillimetre = 1e-3
 
 // familySentences say in words what the members show.
 func familySentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySummary) []string {

@@ -24,8 +24,19 @@ func usualUnit(v *study.Value) (unit string, zero, size float64) {
 		return "C", thermal.ZeroCelsius, 1
 	case v.Dim() == thermal.Duration:
 		return "yr", 0, thermal.Year
+	case inCrystals(v):
+		return "um", 0, 1e-6
 	}
 	return siUnit(v), 0, 1
+}
+
+// inCrystals reports whether the value is a length such as crystals have.
+func inCrystals(v *study.Value) bool {
+	_, most, ok := v.Ends()
+	if v.Kind == study.Normal {
+		most, ok = v.Mean, true
+	}
+	return ok && !v.Plain() && v.Dim() == thermal.Length && most < oneMillimetre
 }
 
 // memberFiles are the tables of the members of each family whose rows the parts keep.

@@ -195,7 +195,7 @@ func ofCrystal(p *paths.PathResult, c *study.Crystal, k int) *paths.PathResult {
 	out.Outcome.Finding = p.Outcome.Crystals[k]
 	out.Outcome.Profiles, out.Profiles = nil, nil
 	for j := range p.Profiles {
-		if p.Profiles[j].Crystal == c {
+		if p.Profiles[j].Crystal.Name == c.Name {
 			out.Profiles = append(out.Profiles, p.Profiles[j])
 			out.Outcome.Profiles = append(out.Outcome.Profiles, p.Outcome.Profiles[j])
 		}

@@ -37,6 +37,7 @@ type decoder struct {
 	copies      []scaledStart     // of the crystal that is being read
 	legs        int               // of all paths so far
 	open        *openLegs         // of the family that is being read; nil in a path
+	fill        *filling          // of the crystals that are being read; nil elsewhere
 	found       []*thermal.InputError
 	faults      int // all found, kept or not
 }
@@ -248,7 +249,7 @@ func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 		return 0, false
 	}
 	if d.isOpen(n) {
-		return d.hole(n, b)
+		return d.openQuantity(n, b)
 	}
 	if !d.is(n, textNode, fmt.Sprintf("write it like %q", b.example)) {
 		return 0, false
@@ -295,6 +296,9 @@ func (d *decoder) number(n *node, remedy string) (float64, bool) {
 
 // moment returns a moment of a path, such as "end of wake 1".
 func (d *decoder) moment(n *node) (*thermal.Moment, bool) {
+	if d.isOpen(n) && d.open == nil {
+		return d.filledMoment(n)
+	}
 	text, ok := d.text(n, `write a moment, such as "4 kyr after start"`)
 	if !ok {
 		return nil, false

@@ -85,6 +85,9 @@ func (d *decoder) crystal(n *node, seen map[string]int) Crystal {
 func (d *decoder) mineral(n *node, crystal string) string {
 	v := d.need(n, "mineral", `write the mineral, such as mineral = "quartz"`)
 	name, ok := d.name(v, `write it like "quartz"`)
+	if d.again() {
+		return name
+	}
 	if near := nearest(name, minerals()); ok && near != "" && !strings.EqualFold(near, name) {
 		d.note("%s: the catalogue has no laws for %q; did you mean %q?", crystal, name, near)
 	}

@@ -43,6 +43,18 @@ func (d *decoder) element(n *node, c *Crystal, inner *node, seen map[string]int)
 
 // assumed notes what was taken because the study does not say.
 func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
+	if !d.again() {
+		d.odd(n, c, e)
+	}
+	if n.get("rim") == nil && len(c.Zones) > 0 {
+		last := len(c.Zones) - 1
+		d.note("%s: no rim given, held at the plateau of its outermost zone, %s", e.Name, c.Zones[last].Name)
+		e.Rims = d.complete([]Rim{tied(last, d.place(n))}, c, e.Name)
+	}
+}
+
+// odd notes what of an element may not be meant.
+func (d *decoder) odd(n *node, c *Crystal, e *Element) {
 	d.otherMineral(c, e)
 	d.otherElement(e)
 	d.oneOfSeveral(e)
@@ -55,11 +67,6 @@ func (d *decoder) assumed(n *node, c *Crystal, e *Element) {
 	}
 	if e.Tilt != (Nuisance{}) && len(c.Zones) > 1 {
 		d.note("%s: the tilt shortens measured positions, not the widths of zones: these must be true ones, or the origin free", e.Name)
-	}
-	if n.get("rim") == nil && len(c.Zones) > 0 {
-		last := len(c.Zones) - 1
-		d.note("%s: no rim given, held at the plateau of its outermost zone, %s", e.Name, c.Zones[last].Name)
-		e.Rims = d.complete([]Rim{tied(last, d.place(n))}, c, e.Name)
 	}
 }
 

@@ -59,6 +59,10 @@ func (d *decoder) uncertainTemperature(n *node, example string) thermal.Uncertai
 		d.report(n, "a number without a unit", example)
 		return thermal.Uncertain{}
 	}
+	if d.isOpen(n) {
+		x, _ := d.filledQuantity(n, n.text, temperature)
+		return thermal.Uncertain{Value: x}
+	}
 	text, ok := d.text(n, example)
 	if !ok {
 		return thermal.Uncertain{}

@@ -44,7 +44,15 @@ var times = bound{zero: false, top: thermal.MaxLegs, topText: fmt.Sprint(thermal
 
 // isOpen reports whether the value is one that a family fills.
 func (d *decoder) isOpen(n *node) bool {
-	return d.open != nil && n.kind == textNode && strings.ContainsAny(n.text, "{}")
+	return (d.open != nil || d.fill != nil) && n != nil && n.kind == textNode && strings.ContainsAny(n.text, "{}")
+}
+
+// openQuantity reads a value of a leg or of a crystal that a family fills.
+func (d *decoder) openQuantity(n *node, b bound) (float64, bool) {
+	if d.open == nil {
+		return d.filledQuantity(n, n.text, b)
+	}
+	return d.hole(n, b)
 }
 
 // hole reads a value of a leg that a family fills, and returns what it is in the
@@ -129,12 +137,13 @@ func (d *decoder) family(n, root *node, seen map[string]int) Family {
 	if d.faults > before {
 		return f
 	}
+	f.vary, f.names, f.middle = vary, d.open.names, d.open.middle
 	f.specs = d.legList(n, 1)
 	if e := cmpNode(n.get("eruption"), root.get("eruption")); e != nil {
 		d.familyEruption(e, &f)
 	}
 	f.holes, f.random = d.open.holes, d.open.random
-	d.unused(n, &f)
+	f.markUsed()
 	d.counted(&f)
 	d.draw(d.need(n, "draw", `write draw = { method = "halton", count = 20000 }`), &f)
 	return f
@@ -210,35 +219,21 @@ func (d *decoder) count(n *node, method int) int64 {
 	return 0
 }
 
-// unused reports values that neither the legs nor other values speak of.
-func (d *decoder) unused(n *node, f *Family) {
-	used := make([]bool, len(f.Values))
-	mark := func(e *expression) {
-		for _, t := range e.terms {
-			for _, k := range t.of {
-				used[k] = true
-			}
-		}
-	}
+// markUsed notes which values the legs or other values speak of.
+func (f *Family) markUsed() {
+	f.used = make([]bool, len(f.Values))
 	for i := range f.holes {
-		mark(&f.holes[i].value)
+		f.holes[i].value.mark(f.used)
 	}
 	for i := range f.random {
-		mark(&f.random[i].count)
-		mark(&f.random[i].per)
+		f.random[i].count.mark(f.used)
+		f.random[i].per.mark(f.used)
 	}
 	if f.eruption != nil && f.eruption.offset != nil {
-		mark(f.eruption.offset)
+		f.eruption.offset.mark(f.used)
 	}
 	for i := range f.Values {
-		if f.Values[i].Kind == Tied {
-			mark(&f.Values[i].tie)
-		}
-	}
-	for i := range f.Values {
-		if vary := n.get("vary"); !used[i] {
-			d.report(vary.get(f.Values[i].Name), "nothing uses the value", fmt.Sprintf("write \"{%s}\" in a leg, or leave it out", f.Values[i].Name))
-		}
+		f.Values[i].tie.mark(f.used)
 	}
 }
 
@@ -252,20 +247,16 @@ func (d *decoder) familyEruption(n *node, f *Family) {
 	}
 	e := &openMoment{}
 	if d.isOpen(n) {
-		i := strings.Index(text+" ", " after ")
-		if j := strings.Index(text+" ", " before "); i < 0 || j >= 0 && j < i {
-			i = j
-		}
-		if i < 0 {
+		by, rest, ok := cutMoment(text)
+		if !ok {
 			d.report(n, "a duration, not a moment", remedy)
 			return
 		}
-		offset, ok := d.holeText(n, text[:i], duration)
+		offset, ok := d.holeText(n, by, duration)
 		if !ok {
 			return
 		}
-		e.offset = &offset
-		text = "1 s" + text[i:]
+		e.offset, text = &offset, rest
 	}
 	var err error
 	if e.moment, err = thermal.ParseEruption(text); err != nil {

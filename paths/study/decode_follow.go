@@ -75,7 +75,7 @@ func (d *decoder) melt(n, melt *node, f *Following, u *units) {
 	case columns:
 		f.Table = d.byTemperature(n, melt, u)
 		return
-	case melt.kind == textNode && melt.text != "free" && !looksLikeValue(melt.text):
+	case melt.kind == textNode && melt.text != "free" && !looksLikeValue(melt.text) && !d.isOpen(melt):
 		d.report(melt, "neither a value nor a file with its columns", example)
 		return
 	}

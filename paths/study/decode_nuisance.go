@@ -46,6 +46,10 @@ func (d *decoder) nuisance(n *node, l latitude) Nuisance {
 	if !ok {
 		return Nuisance{}
 	}
+	if d.isOpen(n) {
+		x, _ := d.filledQuantity(n, n.text, edgeWidth)
+		return Nuisance{Value: x}
+	}
 	var v Nuisance
 	var err error
 	text, free := strings.CutPrefix(strings.TrimSpace(text), "free")

@@ -143,7 +143,7 @@ func (d *decoder) from(n *node, c *Crystal, first, grown bool) *thermal.Moment {
 func (d *decoder) held(n *node, r *Rim, c *Crystal, u *units) {
 	v := n.get("held")
 	r.Kind = diffusion.Held
-	if v.kind == textNode && v.text != "free" && !looksLikeValue(v.text) {
+	if v.kind == textNode && v.text != "free" && !looksLikeValue(v.text) && (!d.isOpen(v) || zoneIndex(c, v.text) >= 0) {
 		unreadable := zoneIndex(c, "") >= 0 || len(c.Zones) == 0
 		if r.Zone = zoneIndex(c, v.text); r.Zone < 0 && !unreadable {
 			d.reportWord(v, "no zone has this name", zoneNames(c),

@@ -15,6 +15,10 @@ func (d *decoder) traverse(n *node, c *Crystal, e *Element, u *units) {
 	if !d.is(n, tableNode, example) {
 		return
 	}
+	if d.again() {
+		d.remeasured(n, e, u)
+		return
+	}
 	before := d.faults
 	d.keys(n, traverseTable)
 	e.Tilt = d.nuisance(n.get("tilt"), tiltLatitude())

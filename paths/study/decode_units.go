@@ -24,6 +24,8 @@ type units struct {
 func (d *decoder) amount(n *node, u *units, beside string) Plateau {
 	const example = `write it like "58 ppm", "58 +- 1.5 ppm" or "free"`
 	switch {
+	case d.isOpen(n):
+		return d.filledAmount(n, u, beside)
 	case n.kind == textNode && n.text == "free":
 		if !u.measured {
 			d.report(n, "no traverse to fit it to", "write a value, or give a traverse")

@@ -76,7 +76,7 @@ func (p *Path) bars(c *Crystal) bool {
 func (d *decoder) exists(paths []Path, c *Crystal) {
 	if c.Exists != nil {
 		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError {
-			_, err := c.Begins(p.History)
+			_, err := p.Crystal(c).Begins(p.History)
 			return inputError(err, c.ExistsPlace)
 		}) {
 			p.bar(c, fmt.Sprintf("%s exists from %q: %s", c.Name, c.Exists.Text, why.Problem))
@@ -86,23 +86,25 @@ func (d *decoder) exists(paths []Path, c *Crystal) {
 		if p.bars(c) {
 			return nil
 		}
-		_, err := c.Added(p.History)
+		own := p.Crystal(c)
+		_, err := own.Added(p.History)
 		if err == nil {
-			_, err = c.Moved(p.History)
+			_, err = own.Moved(p.History)
 		}
 		return inputError(err, c.Place)
 	}) {
 		p.bar(c, fmt.Sprintf("%s: %s (%s)", c.Name, why.Problem, why.Value))
 	}
 	for i := range paths {
-		seen, err := c.Sees(paths[i].History)
+		own := paths[i].Crystal(c)
+		seen, err := own.Sees(paths[i].History)
 		if err != nil {
 			continue
 		}
-		if t, _ := c.Begins(paths[i].History); t > paths[i].Eruption {
+		if t, _ := own.Begins(paths[i].History); t > paths[i].Eruption {
 			d.note("%s exists only after the eruption of path %q: is exists_from the right moment?", c.Name, paths[i].Name)
 		}
-		for _, why := range c.dissolved(seen) {
+		for _, why := range own.dissolved(seen) {
 			paths[i].bar(c, why)
 		}
 	}

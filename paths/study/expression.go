@@ -43,18 +43,24 @@ type measure struct {
 	// level says that it is a temperature on a scale with a zero of its own, C or
 	// F, so that two cannot be added; one in K may be a difference as well.
 	level bool
-	whole bool // a plain number that is always whole
+	whole bool   // a plain number that is always whole
+	unit  string // of a concentration: values are in it
 }
 
 func (m measure) String() string {
 	if m.plain {
 		return "a plain number"
 	}
+	if m.unit != "" {
+		return m.dim.String() + " in " + m.unit
+	}
 	return m.dim.String()
 }
 
 // like reports whether both measure the same kind of thing.
-func (m measure) like(o measure) bool { return m.plain == o.plain && (m.plain || m.dim == o.dim) }
+func (m measure) like(o measure) bool {
+	return m.plain == o.plain && (m.plain || m.dim == o.dim && m.unit == o.unit)
+}
 
 // legDimensions are the kinds of quantity that a leg has.
 var legDimensions = [...]thermal.Dimension{thermal.Temperature, thermal.Duration, thermal.Length, thermal.Diffusivity}
@@ -71,8 +77,11 @@ func readAny(text string) (value thermal.Uncertain, m measure, refused *thermal.
 			return value, measure{dim: dim, level: level}, nil
 		}
 	}
-	return value, m, &thermal.InputError{Value: text, Problem: "neither a number nor a quantity that a leg has",
-		Remedy: `want a temperature, a duration, a length or a diffusivity with its unit, such as "12 kyr"`}
+	if value, unit, err := thermal.ParseConcentration(text); err == nil {
+		return value, measure{dim: thermal.Concentration, unit: unit}, nil
+	}
+	return value, m, &thermal.InputError{Value: text, Problem: "neither a number nor a quantity that a leg or a crystal has",
+		Remedy: `want a temperature, a duration, a length, a diffusivity or a concentration with its unit, such as "12 kyr"`}
 }
 
 // names are the values that an expression may speak of.
@@ -165,7 +174,7 @@ func (n *names) product(text string) (product, measure, *thermal.InputError) {
 		case of.plain:
 			m.whole = m.whole && of.whole
 		default:
-			m = measure{dim: of.dim, level: of.level}
+			m = measure{dim: of.dim, level: of.level, unit: of.unit}
 		}
 	}
 	return p, m, nil

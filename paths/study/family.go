@@ -23,7 +23,14 @@ type Family struct {
 	specs    []thermal.Spec // with what holds in the middle where a value is open
 	holes    []hole
 	random   []randomReheats
-	eruption *openMoment // nil is the end of the path
+	eruption *openMoment   // nil is the end of the path
+	crystals *openCrystals // nil where they are the same for all members
+
+	vary   *node
+	names  names            // of the values that are drawn or tied
+	middle []float64        // these in the middle
+	used   []bool           // which of these something speaks of
+	known  map[*node]parsed // what is in braces in crystals
 }
 
 // ValueKind says where a value comes from.
@@ -138,6 +145,9 @@ type Candidate struct {
 	Index   int64
 	Values  []float64 // SI, in the order of the family's
 	History thermal.History
+	// Crystals are the study's with the member's values in them, nil where they have no
+	// place for any. They are never changed, and made anew for each member.
+	Crystals []Crystal
 	// Barred is what rules the member out, in words that are the same for all members
 	// that it rules out alike, and Why those about this one. Both are "" if nothing does;
 	// else the history is that of the member before.
@@ -158,8 +168,8 @@ type target struct {
 }
 
 // At makes dst member i of the family, a function of the study, the seed and i
-// alone. It allocates only when dst was of another family before, or where a member
-// has more legs than any before, or is barred. It panics unless 0 <= i < Count.
+// alone. It allocates only when dst was of another family before, where crystals differ
+// from member to member, or where a member has more legs than any before, or is barred. It panics unless 0 <= i < Count.
 func (f *Family) At(dst *Candidate, i int64) {
 	if i < 0 || i >= f.Count() {
 		panic(fmt.Sprintf("study: no member %d of %d", i, f.Count()))
@@ -167,7 +177,7 @@ func (f *Family) At(dst *Candidate, i int64) {
 	if dst.family != f {
 		dst.bind(f)
 	}
-	dst.Index, dst.Barred, dst.Why = i, "", ""
+	dst.Index, dst.Barred, dst.Why, dst.Crystals = i, "", "", nil
 	f.points.At(dst.unit, i)
 	dst.Values = dst.Values[:0]
 	for k := range f.Values {
@@ -195,6 +205,18 @@ func (f *Family) At(dst *Candidate, i int64) {
 		return
 	}
 	dst.erupt(f.eruption)
+	if f.crystals != nil && dst.Barred == "" {
+		dst.grow(f)
+	}
+}
+
+// grow makes the crystals of the member.
+func (c *Candidate) grow(f *Family) {
+	var wrong *thermal.InputError
+	if c.Crystals, wrong = f.crystals.at(f, c.Values); wrong == nil {
+		return
+	}
+	c.Barred, c.Why = fmt.Sprintf("%s on line %d cannot be", wrong.Field, wrong.Line), wrong.Problem
 }
 
 // bind makes dst ready for the family.
@@ -331,6 +353,9 @@ func (c *Candidate) erupt(at *openMoment) {
 // Level reports whether the value is a temperature on a scale with a zero of its
 // own; one that is not may be a difference, K.
 func (v *Value) Level() bool { return v.is.level }
+
+// Unit is the unit that values are in if they are concentrations, else "" for SI.
+func (v *Value) Unit() string { return v.is.unit }
 
 // Ends are the ends of what may be drawn; there are none of a Normal value or one that
 // follows from others.

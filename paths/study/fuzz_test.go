@@ -52,7 +52,7 @@ life = { shortest = "1e-9 s", longest = "1e10 yr" }`,
 	})
 }
 
-// seeds returns the sound study and those of testdata.
+// seeds returns the sound study, those of testdata and one with open crystals.
 func seeds(f *testing.F) []string {
 	texts := []string{sound}
 	for _, name := range []string{"every-key", "harrow"} {
@@ -62,6 +62,7 @@ func seeds(f *testing.F) []string {
 		}
 		texts = append(texts, string(data))
 	}
+	texts = append(texts, openText(5))
 	return texts
 }
 
@@ -120,6 +121,14 @@ func finiteMembers(t *testing.T, s *Study) {
 			if c.Barred == "" {
 				path := c.Path()
 				finitePath(t, &path)
+				s.Bar(&c)
+				for j := range path.Crystals {
+					for e := range path.Crystals[j].Elements {
+						if c.Barred == "" && k < 2 {
+							finiteProblem(t, &path.Crystals[j], &path.Crystals[j].Elements[e], &path)
+						}
+					}
+				}
 			}
 			if s.Bar(&c); c.Barred != "" && c.Why == "" {
 				t.Fatalf("member %d is barred by %q, but why?", k, c.Barred)

@@ -42,7 +42,7 @@ func (d *decoder) probes(families []Family) []Path {
 // Path is the member as a path, which holds until the next is made.
 func (c *Candidate) Path() Path {
 	return Path{Name: fmt.Sprintf("%s, member %d", c.family.Name, c.Index), History: &c.History,
-		Eruption: c.History.Eruption(), Place: c.family.Place}
+		Eruption: c.History.Eruption(), Place: c.family.Place, Crystals: c.Crystals}
 }
 
 // Member is the member of a family that goes by its name as a path, such as "cooler
@@ -79,8 +79,12 @@ func (s *Study) Bar(c *Candidate) {
 	if s.Limits.bar(c); c.Barred != "" {
 		return
 	}
-	for i := range s.Crystals {
-		if s.Crystals[i].bar(c); c.Barred != "" {
+	crystals := s.Crystals
+	if c.Crystals != nil {
+		crystals = c.Crystals
+	}
+	for i := range crystals {
+		if crystals[i].bar(c); c.Barred != "" {
 			return
 		}
 	}

@@ -76,7 +76,7 @@ func (d *decoder) study(root *node) *Study {
 			s.Settings = append(s.Settings, d.settings[i-1])
 		}
 	}
-	s.Crystals = d.crystals(root)
+	d.openCrystals(root, s)
 	d.shareSlopes(s.Crystals)
 	d.noteUnused()
 	if d.faults == 0 {

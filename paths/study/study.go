@@ -48,6 +48,17 @@ type Path struct {
 	Eruption float64 // that of History, s from the start; the end of the path where the study says nothing
 	Barred   []Bar   // why crystals cannot have seen it: it does not have moments of theirs, or dissolves them; see also Limits
 	Place    thermal.Place
+	Crystals []Crystal // of a member of a family: the study's with its values in them; nil where these are the study's
+}
+
+// Crystal is a crystal of the study as the path has it.
+func (p *Path) Crystal(c *Crystal) *Crystal {
+	for i := range p.Crystals {
+		if p.Crystals[i].Name == c.Name {
+			return &p.Crystals[i]
+		}
+	}
+	return c
 }
 
 // Limits are what the user rules out whatever the crystals say. The zero value
@@ -127,6 +138,7 @@ type Element struct {
 	Tilt         Nuisance           // of the boundaries against the measured line, rad, 0 to below a right angle; see traverse.Place
 	Origin       Nuisance           // m, added to every measured position counted as in the file; see traverse.Place
 	Scatter      bool               // scatter beyond the errors is fitted
+	Open         string             // what of it differs between the members of families: "its start"; "" is nothing
 	Place        thermal.Place
 }
 

@@ -21,8 +21,12 @@ func (d *decoder) together(s *Study) {
 		}
 		for j := range c.Elements {
 			e := &c.Elements[j]
-			d.moments(all, c, e, e.Inner)
-			d.moments(all, c, e, e.Rims)
+			for i := range e.Inner {
+				d.moments(all, c, e, func(c *Crystal) []Rim { return c.Elements[j].Inner[:i+1] })
+			}
+			for i := range e.Rims {
+				d.moments(all, c, e, func(c *Crystal) []Rim { return c.Elements[j].Rims[:i+1] })
+			}
 			for k := range s.Paths {
 				d.meet(c, e, &all[k])
 			}
@@ -63,21 +67,22 @@ func (d *decoder) interval(paths []Path, written int, l *Interval) {
 	}
 }
 
-// moments bars the paths that do not have the moment of a rim, or have it
-// before that of the rim it follows. A rim that holds on no path is a problem.
-func (d *decoder) moments(paths []Path, c *Crystal, e *Element, rims []Rim) {
-	for i := 1; i < len(rims); i++ {
-		if rims[i].Assumed {
-			continue // goes with a zone
+// moments bars the paths that do not have the moment of the last of some rims, or have
+// it before that of the rim it follows. A rim that holds on no path is a problem.
+func (d *decoder) moments(paths []Path, c *Crystal, e *Element, upTo func(c *Crystal) []Rim) {
+	rims := upTo(c)
+	i := len(rims) - 1
+	if i == 0 || rims[i].Assumed {
+		return // holds from the start, or goes with a zone
+	}
+	for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError {
+		own := p.Crystal(c)
+		if _, err := own.Added(p.History); err != nil {
+			return nil // barred for it
 		}
-		for p, why := range d.lacking(paths, func(p *Path) *thermal.InputError {
-			if _, err := c.Added(p.History); err != nil {
-				return nil // barred for it
-			}
-			return after(rims, i, p.History)
-		}) {
-			p.bar(c, fmt.Sprintf("the rim of %s in %s from %q: %s", e.Name, c.Name, rims[i].From.Text, why.Problem))
-		}
+		return after(upTo(own), i, p.History)
+	}) {
+		p.bar(c, fmt.Sprintf("the rim of %s in %s from %q: %s", e.Name, c.Name, rims[i].From.Text, why.Problem))
 	}
 }
 
