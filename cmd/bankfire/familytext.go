@@ -171,9 +171,13 @@ func familyTally(f *paths.FamilyResult) string {
 			others = append(others, fmt.Sprintf("%d %s", n, severalText(v)))
 		}
 	}
-	text := fmt.Sprintf("Of the %s drawn (%s), %d reproduce what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family), f.Tally.Counts[paths.Reproduces])
+	of := counted(f.Family.Count(), "path") + " drawn"
+	if n := f.Tally.Count(); n < f.Family.Count() {
+		of = counted(n, "path") + " screened so far"
+	}
+	text := fmt.Sprintf("Of the %s (%s), %d reproduce what was measured", of, spreadsText(f.Family), f.Tally.Counts[paths.Reproduces])
 	if f.Tally.Counts[paths.Reproduces] == 0 {
-		text = fmt.Sprintf("Of the %s drawn (%s), none reproduces what was measured", counted(f.Family.Count(), "path"), spreadsText(f.Family))
+		text = fmt.Sprintf("Of the %s (%s), none reproduces what was measured", of, spreadsText(f.Family))
 	}
 	if len(others) == 0 {
 		return text + "."
