@@ -136,7 +136,11 @@ func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
 	if s.lnG = r.lnG; math.IsInf(s.lnG, -1) {
 		return
 	}
-	r.cut(p.steps)
+	if p.coarse() {
+		r.cut(p.steps, coarsePace, true)
+	} else {
+		r.cut(p.steps, pace, false)
+	}
 	p.attend(&s.inner, p.problem.Inner, h, r)
 	p.attend(&s.outer, p.problem.Outer, h, r)
 	if coupled {
@@ -146,6 +150,14 @@ func (p *Plan) span(s *span, r *route, h *thermal.History, t0, t1 float64) {
 	if p.problem.source != nil {
 		s.middles, s.widths = p.clock(r.times)
 	}
+}
+
+// coarse reports whether the plan's steps are so long that they need not end just when
+// the integral has grown by their part, and nothing asks when they do.
+func (p *Plan) coarse() bool {
+	timed := func(r Rim) bool { return r.Given != nil || r.Kind == Transfer }
+	return p.steps.longest() > coarseStep && p.problem.source == nil &&
+		!slices.ContainsFunc(p.problem.Inner, timed) && !slices.ContainsFunc(p.problem.Outer, timed)
 }
 
 // begin puts the span to what is in force from t on, s.

@@ -67,7 +67,7 @@ func TestRimMeans(t *testing.T) {
 func stepTimes(plan *Plan, h *thermal.History) []float64 {
 	var r route
 	r.lay(&plan.problem.Law, h, 0, h.Life())
-	r.cut(plan.steps)
+	r.cut(plan.steps, pace, false)
 	return r.times
 }
 

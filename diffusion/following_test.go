@@ -3,6 +3,7 @@ package diffusion
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"gonum.org/v1/gonum/integrate/quad"
@@ -249,5 +250,52 @@ func TestCourseMemory(t *testing.T) {
 		if n := testing.AllocsPerRun(3, func() { _ = plan.Course(used, h, h.Life()) }); n != 0 {
 			t.Errorf("problem %d: a course used again allocates %g times", i, n)
 		}
+	}
+}
+
+// TestCoarseMeans: where steps are long their ends are found roughly, and what each ends too early or too late is settled:
+// the means are those of a cut that is exact, but for the square of what was missed.
+func TestCoarseMeans(t *testing.T) {
+	const typical = coarsePace * coarsePace // of the range of the value, the largest of a path in most
+	fractions := []float64{0.003, 0.02, 0.1, 0.25, 0.4, 0.55, 0.7, 0.85, 0.93, 0.97, 0.99, 0.999, 1}
+	var off []float64
+	for i := range 200 {
+		r := source(73, i)
+		h := randomHistory(t, r)
+		if i%2 == 0 { // legs that come again
+			legs := h.Legs()
+			h = newHistory(t, append(append(legs[:len(legs):len(legs)], legs...), legs...)...)
+		}
+		law, value := randomSum(r), rimValue(r)
+		steps := newSchedule(fractions, 1, 0)
+		var exact, coarse route
+		exact.lay(&law, h, 0, h.Life())
+		exact.cut(steps, 1e-12, false)
+		coarse.lay(&law, h, 0, h.Life())
+		coarse.cut(steps, coarsePace, true)
+		for name, over := range map[string]func(*piece) float64{
+			"1/T": (*piece).meanColdness, "rim": func(p *piece) float64 { return p.mean(value) },
+		} {
+			want, got := make([]float64, len(steps)), make([]float64, len(steps))
+			exact.means(want, over)
+			coarse.means(got, over)
+			lo, hi := h.Range()
+			span := 1/lo - 1/hi
+			if name == "rim" {
+				span = math.Abs(value.at(lo) - value.at(hi))
+			}
+			k, diff := farthest(got, want)
+			if !(diff <= coarsePace*span+1e-9*math.Abs(want[k])) { // a step that holds a quench may miss it all
+				t.Errorf("path %d: mean of %s in step %d is %.9g, exactly %.9g; %g of its range", i, name, k, got[k], want[k], diff/span)
+			}
+			if span > 1e-6*math.Abs(want[k]) {
+				off = append(off, diff/span)
+			}
+		}
+	}
+	slices.Sort(off)
+	t.Logf("of the range: median %.2g, nine in ten below %.2g, worst %.2g", off[len(off)/2], off[len(off)*9/10], off[len(off)-1])
+	if !(off[len(off)*3/4] <= typical) {
+		t.Errorf("three in four means are off by less than %.2g of their range, want %.2g", off[len(off)*3/4], typical)
 	}
 }

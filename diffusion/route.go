@@ -19,6 +19,7 @@ type route struct {
 	ends      []int     // of each step, how many stretches there are up to its end
 	times     []float64 // s from the start of the path: at which steps begin and end
 	lnG       float64   // ln of the span's integral of D dt, m2
+	known     []float64 // of each piece, its mean of the value in hand; NaN is not known yet
 }
 
 // piece is a part of one leg along which temperature is smooth and the law does
@@ -31,7 +32,19 @@ type piece struct {
 	ln       float64 // ln of the integral of D dt along it; NaN is not known yet
 	coldness float64 // mean of 1/T along it, 1/K, weighted by D
 	share    float64 // of the span's integral of D dt
+	role     role
+	of       int // the first piece like the one that it is or was cut from
 }
+
+// role is what a stretch is of a piece.
+type role int
+
+const (
+	wholePiece role = iota
+	partOfPiece
+	tailOfPiece // all that is left, a good part of the integral
+	moment      // no time at all: by what a step ends too early or too late, or the one before it did
+)
 
 // measure finds the integral along the piece and the mean of 1/T.
 func (p *piece) measure() {
@@ -69,12 +82,16 @@ func (r *route) lay(law *Law, h *thermal.History, t0, t1 float64) {
 		if t1 < h.Start(i+1) {
 			p.to = t1 - p.start
 		}
-		r.addPieces(p, breaks)
+		r.addAlike(p, h.Again(i), breaks)
 	}
 	most := math.Inf(-1)
 	for i := range r.pieces {
 		p := &r.pieces[i]
-		p.measure()
+		if like := &r.pieces[p.of]; p.of < i {
+			p.ln, p.coldness = like.ln, like.coldness
+		} else {
+			p.measure()
+		}
 		most = math.Max(most, p.ln)
 	}
 	if r.lnG = most; math.IsInf(most, -1) {
@@ -90,6 +107,21 @@ func (r *route) lay(law *Law, h *thermal.History, t0, t1 float64) {
 		r.pieces[i].share /= sum
 	}
 	r.lnG += math.Log(sum)
+}
+
+// addAlike is addPieces for a leg that comes again so many pieces later, if each of these is a whole leg; 0 is that it
+// does not.
+func (r *route) addAlike(p piece, again int, breaks []float64) {
+	before := len(r.pieces)
+	r.addPieces(p, breaks)
+	last := len(r.pieces) - 1
+	if last != before || again == 0 || again > last {
+		return
+	}
+	now, like := &r.pieces[last], &r.pieces[last-again]
+	if *like.leg == *now.leg && like.from == now.from && like.to == now.to {
+		now.of = like.of
+	}
 }
 
 // addPieces adds a part of a leg, cut at the rows of a table and at the given
@@ -119,35 +151,64 @@ func (r *route) addPiece(p piece, to float64) piece {
 		law := p.law.acting(p.leg.Setting, p.leg.At(p.from+(to-p.from)/2))
 		p.law = &law
 	}
+	p.of = len(r.pieces)
 	r.pieces = append(r.pieces, p)
 	return rest
 }
 
 // cut finds the stretches of each step. A step ends where the integral has grown
-// by its part of the whole.
-func (r *route) cut(steps schedule) {
+// by its part of the whole, or as near to that as within says, as a part of the step.
+// What it misses the next one gets, so a mean is moved by this part of its change from
+// step to step; unless they are settled, so that it is moved by the square of that.
+func (r *route) cut(steps schedule, within float64, settled bool) {
 	r.stretches, r.ends, r.times = r.stretches[:0], r.ends[:0], r.times[:0]
 	rest, j := r.pieces[0], 0 // what is left of the piece in hand
 	r.times = append(r.times, rest.start+rest.from)
 	owed := 0.0
 	for k, s := range steps {
+		if settled && owed != 0 {
+			r.settle(rest, -owed)
+		}
 		owed += s.df
 		last := k == len(steps)-1
 		for j+1 < len(r.pieces) && (rest.share <= owed || last) {
-			owed -= r.pass(rest)
+			owed -= r.passRest(rest, settled)
 			j++
 			rest = r.pieces[j]
 		}
 		if rest.share <= owed || last {
-			owed -= r.pass(rest)
+			owed -= r.passRest(rest, settled)
 			rest.from, rest.share = rest.to, 0
 		} else {
-			part := r.split(&rest, owed, pace*s.df)
+			part := r.split(&rest, owed, within*s.df)
 			owed -= r.pass(part)
+		}
+		if settled && owed != 0 && !last {
+			r.settle(rest, owed)
 		}
 		r.ends, r.times = append(r.ends, len(r.stretches)), append(r.times, rest.start+rest.from)
 	}
 }
+
+// settle adds to the step in hand a share of what holds at the moment.
+func (r *route) settle(at piece, share float64) {
+	at.to, at.share, at.role = at.from, share, moment
+	r.stretches = append(r.stretches, at)
+}
+
+// passRest passes what is left of a piece.
+func (r *route) passRest(p piece, settled bool) float64 {
+	if settled && p.leg.Kind != thermal.Hold && p.role == partOfPiece && p.share > tailShare*r.pieces[p.of].share {
+		p.role = tailOfPiece
+		r.stretches = append(r.stretches, p)
+		return p.share
+	}
+	return r.pass(p)
+}
+
+// tailShare is the part of its piece from which on the mean over a tail is found from
+// those over the piece and what was cut off it, of which it loses so many digits.
+const tailShare = 0.05
 
 // pass adds a piece to the step in hand and returns its share.
 func (r *route) pass(p piece) float64 {
@@ -158,14 +219,18 @@ func (r *route) pass(p piece) float64 {
 	return p.share
 }
 
-// pace is how closely a step must get the part of the integral that is its own, as
-// a part of it. What it misses the next one gets, so a mean is only moved by this
-// part of its change from step to step.
-const pace = 1e-5
+// How closely steps get the part of the integral that is their own: of a plan, and of
+// one so coarse that its longest step is longer than coarseStep, if they are settled.
+const (
+	pace       = 1e-5
+	coarsePace = 3e-3
+	coarseStep = 0.025
+)
 
 // split takes from the beginning of a piece what has owed of the whole integral, at
 // most slack off.
 func (r *route) split(rest *piece, owed, slack float64) piece {
+	rest.role = partOfPiece
 	part := *rest
 	switch {
 	case !(owed > 0): // the step before got all of it
@@ -228,20 +293,50 @@ func evenly(by, rate, plain float64) float64 {
 // means writes to dst the mean over each step of a value, weighted by D; over gives
 // that over a stretch.
 func (r *route) means(dst []float64, over func(p *piece) float64) {
+	r.known = resized(r.known, len(r.pieces))
+	for i := range r.known {
+		r.known[i] = math.NaN()
+	}
 	from := 0
+	cutOff := 0.0 // of the piece in hand, the integral of the value over what was cut off
 	for k, to := range r.ends {
 		mean, weight := 0.0, 0.0
 		for i := from; i < to; i++ {
 			s := &r.stretches[i]
-			if weight += s.share; s.share > 0 {
-				mean += float64(s.share / weight * (over(s) - mean))
+			if s.share == 0 {
+				continue
 			}
+			var value float64
+			switch s.role {
+			case wholePiece:
+				value = r.overWhole(s.of, over)
+			case tailOfPiece:
+				value = (r.overWhole(s.of, over)*r.pieces[s.of].share - cutOff) / s.share
+			default:
+				value = over(s)
+			}
+			if s.role == partOfPiece {
+				if s.from == r.pieces[s.of].from {
+					cutOff = 0
+				}
+				cutOff += s.share * value
+			}
+			weight += s.share
+			mean += float64(s.share / weight * (value - mean))
 		}
 		if weight == 0 { // a step of no width: any value near it will do
 			mean = over(&r.stretches[to-1])
 		}
 		dst[k], from = mean, to
 	}
+}
+
+// overWhole is the mean of the value in hand over a piece, found once.
+func (r *route) overWhole(piece int, over func(p *piece) float64) float64 {
+	if math.IsNaN(r.known[piece]) {
+		r.known[piece] = over(&r.pieces[piece])
+	}
+	return r.known[piece]
 }
 
 // meanColdness returns the mean of 1/T over the piece, 1/K, weighted by D.

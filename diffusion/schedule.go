@@ -52,6 +52,15 @@ func newSchedule(fractions []float64, damp, end int) schedule {
 	return s
 }
 
+// longest returns the part of G in the longest step.
+func (s schedule) longest() float64 {
+	longest := 0.0
+	for _, st := range s {
+		longest = math.Max(longest, st.df)
+	}
+	return longest
+}
+
 // merged returns the schedule of half as many solves: each pair of one kind
 // becomes one. A step without a partner stays alone.
 func (s schedule) merged() schedule {

@@ -66,6 +66,9 @@ func (h *History) findAgain(legs []Leg) {
 	}
 }
 
+// Again is how many legs before leg i an equal one is, 0 if none of the last few is: what was found of that holds of this one.
+func (h *History) Again(i int) int { return h.again[i] }
+
 // equalBefore is how far before leg i the nearest equal one is, 0 if that is too far.
 func equalBefore(legs []Leg, i int) int {
 	l := &legs[i]
