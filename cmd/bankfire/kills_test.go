@@ -57,7 +57,7 @@ const familyTraverse = "x [um],Ti [ppm]\n20,98\n26,101\n30,99\n34,97\n36,92\n38,
 const (
 	kills       = 1000
 	killSeed    = 7
-	killMembers = 150_000
+	killMembers = 50_000
 )
 
 // killRecord is where the record of all kills lies.
@@ -65,7 +65,7 @@ const killRecord = root + "/testdata/records/kills.csv"
 
 var killColumns = []string{"commit", "seed", "kill", "moment", "members_kept", "results"}
 
-const killPreamble = `# Runs of bankfire weigh over a family of 150000 members that were killed (SIGKILL) and resumed. Written by
+const killPreamble = `# Runs of bankfire weigh over a family of 50000 members that were killed (SIGKILL) and resumed. Written by
 # go test ./cmd/bankfire -run TestKills -long; a run that is broken off goes on where the rows end. The moment of a
 # kill depends on seed and kill alone, in parts of what a run takes, with the writing of its results. Members kept are
 # those that the resumed run found; whole: the results were there already. Results are the same if no byte of any file but

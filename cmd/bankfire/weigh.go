@@ -213,7 +213,15 @@ func (o *weigh) screen(ctx context.Context, s streams, st *study.Study, p *plan,
 	if err != nil {
 		return nil, err
 	}
-	shown := o.show(s.err, all-there, screening.Done)
+	need, err := expectDisk(ctx, st, screening, next, h.To)
+	if err != nil {
+		return nil, err
+	}
+	if text := need.text(part.dir, p.divided); text != "" {
+		o.say(s.err, "%s", text)
+	}
+	looked := screening.Done()
+	shown := o.show(s.err, all-there, func() int64 { return screening.Done() - looked })
 	defer shown.end()
 	return screening, part.screen(ctx, screening)
 }
