@@ -251,7 +251,7 @@ func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 	if d.isOpen(n) {
 		return d.openQuantity(n, b)
 	}
-	if !d.is(n, textNode, fmt.Sprintf("write it like %q", b.example)) {
+	if !d.is(n, textNode, fmt.Sprintf("write it like %q", b.example)) || d.braced(n) {
 		return 0, false
 	}
 	x, err := thermal.ParseQuantity(n.text, b.dim)
@@ -263,6 +263,15 @@ func (d *decoder) quantity(n *node, b bound) (float64, bool) {
 		return 0, false
 	}
 	return x, true
+}
+
+// braced reports braces where no family fills them.
+func (d *decoder) braced(n *node) bool {
+	if !strings.ContainsAny(n.text, "{}") {
+		return false
+	}
+	d.report(n, "in braces, but nothing fills them here", "write a value; braces may stand in a [[family]], and in starts, rims and moments of crystals")
+	return true
 }
 
 func (d *decoder) within(n *node, x float64, b bound) bool {
@@ -300,7 +309,7 @@ func (d *decoder) moment(n *node) (*thermal.Moment, bool) {
 		return d.filledMoment(n)
 	}
 	text, ok := d.text(n, `write a moment, such as "4 kyr after start"`)
-	if !ok {
+	if !ok || d.braced(n) {
 		return nil, false
 	}
 	m, err := thermal.ParseMoment(text)

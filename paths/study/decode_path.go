@@ -253,7 +253,7 @@ func (d *decoder) erupt(h *thermal.History, v *node) {
 		return
 	}
 	text, ok := d.text(v, `write a moment, such as "end of wake 2" or "4 kyr after start"`)
-	if !ok {
+	if !ok || d.braced(v) {
 		return
 	}
 	m, err := thermal.ParseEruption(text)

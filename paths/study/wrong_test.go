@@ -184,6 +184,8 @@ func wrongText() []wrong {
 		{"unknown key", title, `@titel = "sound"`, "", "titel", "unknown key", `did you mean "title"?`},
 		{"unknown key, none near", title, `@colour = 3`, "", "colour", "unknown key", "known here: title, confidence"},
 		{"unknown table", "[[threshold]]", "[[@treshold]]", "", "treshold", "unknown key", `did you mean "threshold"?`},
+		{"braces in a path", `hold = "750 C"`, `hold = @"{store}"`, "", "path.legs.hold", "nothing fills them here", "[[family]]"},
+		{"braces in a threshold", `temperature = "750 C"`, `temperature = @"{hot} + 3 K"`, "", "threshold.temperature", "nothing fills them here", "[[family]]"},
 		{"one family", title, "family = @{ name = \"cooler\" }", "", "family", "a table, not a list", `begin each family with "[[family]]"`},
 		{"quoted key", title, `@"two words" = 1`, "", `"two words"`, "unknown key", "known here"},
 		{"title not a text", title, "title = @12", "", "title", "a number, not a text", "one line"},
