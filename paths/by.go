@@ -86,12 +86,16 @@ func (c *Curve) along(dst []float64, law *LawPrior) []float64 {
 
 // leant returns chi-square at deviations.
 func (c *Curve) leant(z []float64, law *LawPrior) float64 {
-	x := c.shift(z, law)
+	_, off := c.split(z)
+	return c.with(c.shift(z, law), off)
+}
+
+// with returns chi-square read at x with constants off.
+func (c *Curve) with(x float64, off []float64) float64 {
 	value := c.At(x)
 	if c.By == nil {
 		return value
 	}
-	_, off := c.split(z)
 	for k := range c.By.Terms {
 		t := &c.By.Terms[k]
 		v, _, _ := hermite(c.By.LnM, t.Value, t.Slope, x)

@@ -2,6 +2,7 @@ package paths
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"slices"
 
@@ -79,7 +80,7 @@ func (b *deviating) lay() error {
 		e, lnD := b.crystal.Deviated(b.element, b.of, z)
 		problem, _, err := b.crystal.Problem(e, b.path.History)
 		if err != nil {
-			return err
+			return fmt.Errorf("with constants of %s off by %g standard deviations: %w", b.element.Name, devStep, err)
 		}
 		if err := own.addRun(problem, b.lens.edges[b.middle()], &options); err != nil {
 			return err

@@ -257,3 +257,89 @@ func TestByForetellsRuns(t *testing.T) {
 		}
 	}
 }
+
+// itself is an element whose D may depend on its own value, which hardly changes: to a
+// part in a thousand of the error, D is off by one factor everywhere.
+const itself = `
+[[law]]
+name = "mine"
+D0 = "8.317637711e-5 m2/s"
+E = "276 kJ/mol"
+own = { ln_slope = "0 +- 0.0002", at = 0 }
+
+[[path]]
+name = "as made"
+legs = [ { hold = "750 C", for = "1 yr" } ]
+
+[[crystal]]
+name = "A"
+mineral = "plagioclase"
+shape = "slab"
+zones = [ { name = "core", width = "100 um" }, { name = "skin", width = "100 um" } ]
+
+[[crystal.element]]
+name = "Sr"
+law = "mine"
+start = { zones = ["4999 ppm", "5001 ppm"], edge = "0 um" }
+rim = { held = "skin" }
+traverse = { file = "sr.csv", position = "distance [um]", zero = "centre", value = "Sr [ppm]", error = "0.02 ppm", spot = "point" }
+`
+
+// A slope on the element's own value is off too, also one that is 0 but for its error.
+func TestOwnSlopeIsOff(t *testing.T) {
+	const noise, lnD = 0.02, 0.0002 * 5000 // a standard deviation of the slope
+	rng := rand.New(rand.NewPCG(80, 1))
+	at := func(r, z float64) float64 {
+		return 5000 + (coupleIn(r, 0, lnD*z-math.Log(20))-(srCore+srSkin)/2)*2/(srSkin-srCore)
+	}
+	var place, value []float64
+	var data strings.Builder
+	data.WriteString("distance [um],Sr [ppm]\n")
+	for um2 := 60.5; um2 < 140; um2 += 2 {
+		v := at(um2*um, 1.5) + noise*rng.NormFloat64()
+		place, value = append(place, um2*um), append(value, v)
+		fmt.Fprintf(&data, "%g,%.9g\n", um2, v)
+	}
+	o := &weighed(t, readStudy(t, itself, "sr.csv", data.String())).Paths[0].Outcome
+	o.wantDeviations(t, func(z, _ float64) float64 {
+		sum := 0.0
+		for i, r := range place {
+			sum += square((value[i] - at(r, z)) / noise)
+		}
+		return sum
+	}, len(place), true, false)
+	if want := (study.Deviation{Of: "mine", What: study.OwnSlope}); len(o.WithLaws.Others) != 1 || o.WithLaws.Others[0].Deviation != want {
+		t.Errorf("leans on %v, want %v", o.WithLaws.Others, want)
+	}
+}
+
+// With no error stated nothing else is run and the curves are what they were, to the
+// bit; with one, the verdict without it is the same.
+func TestNoErrorsNoDeviations(t *testing.T) {
+	_, _, csv := offData(1.5, 0)
+	exact := weighed(t, readStudy(t, fmt.Sprintf(offPlagioclase, "", fmt.Sprint(lnSlope)), "sr.csv", csv))
+	known := weighed(t, readStudy(t, fmt.Sprintf(offPlagioclase, "", `"-9.440599 +- 1"`), "sr.csv", csv))
+	if exact.WithErrors() != 0 || known.WithErrors() != 1 {
+		t.Errorf("%d and %d constants with errors, want 0 and 1", exact.WithErrors(), known.WithErrors())
+	}
+	o, with := exact.Paths[0].Outcome, known.Paths[0].Outcome
+	if o.WithLaws.Verdict != o.Verdict || len(o.WithLaws.Others) != 0 {
+		t.Errorf("with no error stated %+v", o.WithLaws)
+	}
+	if o.Verdict != with.Verdict || o.Misfit != with.Misfit || o.Degrees != with.Degrees {
+		t.Errorf("without errors %v, with them not allowed for %v", o.Finding, with.Finding)
+	}
+	near(t, "shift factor", with.Shift, o.Shift, 2e-3*o.Shift) // it is as right as a curve's is
+}
+
+// A host that was measured with errors is redrawn beside constants that are off, and
+// plateaux are fitted: errors of all only help.
+func TestDeviationsBesideARedrawnHost(t *testing.T) {
+	_, _, csv := offData(1.5, 0)
+	text := strings.NewReplacer(`host = 0.55`, `host = "0.55 +- 0.01"`, `["500 ppm", "700 ppm"]`, `["free", "700 +- 5 ppm"]`).
+		Replace(fmt.Sprintf(offPlagioclase, " +- 1.5 kJ/mol", `"-9.440599 +- 1"`))
+	o := weighed(t, readStudy(t, text, "sr.csv", csv)).Paths[0].Outcome
+	if o.WithLaws.Verdict != Reproduces || !(o.WithLaws.Misfit < o.Misfit) || len(o.WithLaws.Others) != 2 {
+		t.Errorf("%s with %g, with errors %+v", o.Verdict, o.Misfit, o.WithLaws)
+	}
+}

@@ -10,8 +10,8 @@
 //
 // weigh.go takes a path through every element; profile.go is one element on one
 // path, solved, audited and fitted; lens.go is how its traverse sees it; curve.go
-// scans and reads chi-square; judge.go gives verdicts, lean.go what the laws'
-// errors would change of them, and ownbest.go what no path can be blamed for;
-// notes.go says what goes with them. Sub-packages read studies and traverses, and
+// scans and reads chi-square; judge.go gives verdicts, lean.go what the errors of
+// laws and, by deviate.go, of other constants would change of them, and ownbest.go
+// what no path can be blamed for; notes.go says what goes with them. Sub-packages read studies and traverses, and
 // fit by least squares.
 package paths

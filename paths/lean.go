@@ -1,7 +1,6 @@
 package paths
 
 import (
-	"cmp"
 	"math"
 	"slices"
 
@@ -180,8 +179,8 @@ func (l *leaning) joined() [][]int {
 }
 
 // group gathers what depends on deviations, and from where to look for the best: from
-// none, from the likeliest that bring a profile to its lowest points, and from some of
-// each constant of other constants.
+// none, from the likeliest that bring a profile to its lowest points, and with constants
+// off, see startOff.
 func (l *leaning) group(vars []int) leanGroup {
 	g := leanGroup{vars: vars}
 	start := func(places []int, z []float64) {
@@ -189,6 +188,7 @@ func (l *leaning) group(vars []int) leanGroup {
 		for k, place := range places {
 			at[place] = z[k]
 		}
+		l.within(vars, at)
 		g.starts = append(g.starts, at)
 	}
 	start(nil, nil)
@@ -205,12 +205,7 @@ func (l *leaning) group(vars []int) leanGroup {
 			start(places, z)
 		}
 	}
-	for k, v := range vars {
-		if !l.isLaw(v) {
-			start([]int{k}, []float64{mostDeviation / 2})
-			start([]int{k}, []float64{-mostDeviation / 2})
-		}
-	}
+	l.startOff(&g)
 	return g
 }
 
@@ -237,7 +232,7 @@ func (l *leaning) settle(z []float64, price float64) {
 	for k := range l.groups {
 		g := &l.groups[k]
 		least := math.Inf(1)
-		for _, start := range g.starts {
+		for _, start := range l.promising(g, price) {
 			value := l.descend(g, start, price)
 			if value < least {
 				least = value
@@ -327,12 +322,18 @@ func (l *leaning) descend(g *leanGroup, start []float64, price float64) float64 
 // advance leaves in to the deviations that the step makes of those in at, those by
 // which curves rest on beside laws within their range.
 func (l *leaning) advance(g *leanGroup) {
-	for i, v := range g.vars {
-		x := l.at.z[i] + l.move[i]
+	for i := range g.vars {
+		l.to.z[i] = l.at.z[i] + l.move[i]
+	}
+	l.within(g.vars, l.to.z)
+}
+
+// within brings deviations of constants that are beyond their range to its end.
+func (l *leaning) within(vars []int, z []float64) {
+	for i, v := range vars {
 		if !l.isLaw(v) {
-			x = math.Min(math.Max(x, -mostDeviation), mostDeviation)
+			z[i] = math.Min(math.Max(z[i], -mostDeviation), mostDeviation)
 		}
-		l.to.z[i] = x
 	}
 }
 
@@ -346,31 +347,3 @@ const (
 	leanDamp     = 4.0
 	leanLeast    = 1e-4
 )
-
-// leanStarts returns the likeliest deviations that bring a profile to each of its
-// lowest points, mostDips of the lowest. Its law is nil if that has no errors.
-func leanStarts(c *Curve, law *LawPrior) [][]float64 {
-	along := c.along(nil, law)
-	norm := dot(along, along)
-	if !(norm > 0) {
-		return nil
-	}
-	type dip struct{ x, y float64 }
-	var dips []dip
-	for i := range len(c.LnM) - 1 {
-		x, y := c.piece(i).lowest()
-		if c.dips(i, x) && (len(dips) == 0 || dips[len(dips)-1].x != x) {
-			dips = append(dips, dip{x, y})
-		}
-	}
-	slices.SortStableFunc(dips, func(a, b dip) int { return cmp.Compare(a.y, b.y) })
-	var starts [][]float64
-	for _, at := range dips[:min(len(dips), mostDips)] {
-		z := make([]float64, len(along))
-		for k, x := range along {
-			z[k] = at.x * x / norm
-		}
-		starts = append(starts, z)
-	}
-	return starts
-}

@@ -185,6 +185,9 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 			}
 		}
 		if t := e.Traverse; t != nil {
+			if text := deviationsText(c.Deviations(e)); text != "" {
+				fmt.Fprintf(w, "  %s is judged with and without errors of %s\n", e.Name, text)
+			}
 			name, err := filepath.Rel(folder, t.Name)
 			if err != nil {
 				name = t.Name
@@ -193,6 +196,15 @@ func writeCrystal(w io.Writer, c *study.Crystal, folder string) {
 		}
 	}
 	fmt.Fprintln(w)
+}
+
+// deviationsText names constants with errors.
+func deviationsText(all []study.Deviation) string {
+	var names []string
+	for _, d := range all {
+		names = append(names, constantName(d))
+	}
+	return list(names)
 }
 
 // lawText names a law with how far its constants can be trusted.

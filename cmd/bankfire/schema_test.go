@@ -81,6 +81,12 @@ func TestSummaryKeepsSchema(t *testing.T) {
 			o.Scatter = paths.Scatter{Crystals: 3, Common: 1.2, Common68: [2]float64{1, 1.4}, Common95: [2]float64{0, 2}, ChiSq: 2.5, Degrees: 2, Tail: 0.3}
 			o.Chance = paths.Chance{Judged: 3, Failed: 1, Expected: 0.15, Most: 1, Worst: 0.02}
 		}},
+		{"leaning on constants", func(r *paths.Result) {
+			for _, what := range []study.Constant{study.HostSlope, study.OwnSlope, study.PartitionA, study.PartitionB} {
+				l := &r.Paths[0].Outcome.WithLaws
+				l.Others = append(l.Others, paths.Off{Deviation: study.Deviation{Of: "kx", What: what}, Sigma: -1.5})
+			}
+		}},
 		{"each its own history", func(r *paths.Result) { r.Study.Sharing.Each = true }},
 		{"histories shared from a moment", func(r *paths.Result) {
 			p := &r.Paths[0]

@@ -31,7 +31,7 @@ func writeLeaning(w io.Writer, p *paths.PathResult, errors int) {
 // asked is what a path asks of a law or of another constant.
 type asked struct {
 	sigma float64
-	name  string // "mine", "composition slope of mine"
+	name  string // "mine", "the composition slope of mine"
 	text  string // "mine to be off by 1.8 sigma (D larger by 1.8)"
 }
 
@@ -107,5 +107,12 @@ func larger(sigma float64) string {
 	return "larger"
 }
 
-// constantName names a constant with what it belongs to: "composition slope of mine".
-func constantName(d study.Deviation) string { return d.What.String() + " of " + d.Of }
+// constantName names a constant with what it belongs to: "the composition slope of mine",
+// "A of kx".
+func constantName(d study.Deviation) string {
+	name := d.What.String() + " of " + d.Of
+	if d.What == study.HostSlope || d.What == study.OwnSlope {
+		return "the " + name
+	}
+	return name
+}

@@ -23,6 +23,11 @@ func TestLeaningInASentence(t *testing.T) {
 			"For \"p\" to pass, laws would have to be off by more than their errors allow: it asks for a to be off by 5.0 sigma (D larger by 5.0).\n"},
 		{"a law without a name", paths.TooSharp, paths.LawsAllowed{Verdict: paths.TooSharp, Leaning: []paths.Leaning{{Sigma: 5, E: -5}}}, 1,
 			"For \"p\" to pass, laws would have to be off by more than their errors allow: it asks for the law in the study to be off by 5.0 sigma (E smaller by 5.0).\n"},
+		{"a constant alone", paths.AtOdds, paths.LawsAllowed{Verdict: paths.Reproduces, Leaning: []paths.Leaning{}, Others: []paths.Off{{Deviation: study.Deviation{Of: "c", What: study.HostSlope}, Sigma: -1.84}}}, 1,
+			"With the errors of the laws allowed for, \"p\" reproduces what was measured: it asks for the composition slope of c to be smaller by 1.8 sigma.\n"},
+		{"laws and constants", paths.AtOdds, paths.LawsAllowed{Verdict: paths.AtOdds, Leaning: list, Others: []paths.Off{
+			{Deviation: study.Deviation{Of: "kx", What: study.PartitionA}, Sigma: 2}, {Deviation: study.Deviation{Of: "kx", What: study.PartitionB}, Sigma: 0.01}}}, 4,
+			"For \"p\" to pass, laws would have to be off by more than their errors allow: it asks for A of kx to be larger by 2.0 sigma, b to be off by 1.3 sigma (D smaller by 1.2, E larger by 0.5) and a to be off by 0.5 sigma (D larger by 0.5), in all 2.4 sigma.\n"},
 		{"none helps", paths.WrongShape, paths.LawsAllowed{Verdict: paths.WrongShape}, 1, "No error of the laws would make \"p\" pass.\n"},
 		{"no error stated", paths.WrongShape, paths.LawsAllowed{Verdict: paths.WrongShape, Leaning: []paths.Leaning{}}, 0, ""},
 		{"barred", paths.Barred, paths.LawsAllowed{}, 1, ""},

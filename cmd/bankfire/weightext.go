@@ -146,7 +146,7 @@ func leaningText(l *paths.LawsAllowed, errors int) string {
 	if len(list) == 1 || text == "0.0 sigma" {
 		return text
 	}
-	return "up to " + text + " (" + list[0].name + ")"
+	return "up to " + text + " (" + strings.TrimPrefix(list[0].name, "the ") + ")"
 }
 
 // gathered returns the notes with all that say of constants that they were not
