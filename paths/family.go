@@ -19,6 +19,7 @@ type FamilyResult struct {
 	Path     int            // the place of the best member among the paths of the result
 	Elements []FamilyElement
 	Summary  FamilySummary
+	Shown    Shown // for figures
 }
 
 // Best is the member with the lowest chi-square; -1 if all that were screened are barred.

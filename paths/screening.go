@@ -135,6 +135,9 @@ func (s *Screening) Finish(ctx context.Context, tallies []Tally) (*Result, error
 		if err != nil {
 			return nil, err
 		}
+		if f.Shown, err = e.show(ctx, &tallies[i]); err != nil {
+			return nil, err
+		}
 		if f.Best() >= 0 {
 			var c study.Candidate
 			f.Family.At(&c, f.Best())

@@ -25,6 +25,11 @@ func weighingFiles(ctx context.Context, r *paths.Result, from *parts, summary *w
 	for i, name := range figureNames(r) {
 		files = append(files, results.File{Name: name, Write: func(w io.Writer) error { return writeFigure(w, r, i) }})
 	}
+	for i, name := range familyFigureNames(r) {
+		if name != "" {
+			files = append(files, results.File{Name: name, Write: func(w io.Writer) error { return writeFamilyFigure(w, r, i) }})
+		}
+	}
 	files = append(files, table("run.log", log.write))
 	for _, x := range files {
 		summary.Files = append(summary.Files, x.Name)

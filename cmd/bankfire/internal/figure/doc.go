@@ -1,6 +1,7 @@
-// Package figure draws the one picture of a weighed profile: the measured
+// Package figure draws the picture of a weighed profile: the measured
 // traverse with its start and the modelled profile of every path, the duration
-// curves, and below them a row a path with its residuals and its verdict in words.
+// curves, and below them a row a path with its residuals and its verdict in words;
+// and that of a family of paths, a [Family] for [DrawFamily].
 //
 // Fill a [Weighing] with plain data in SI units and call [Draw]:
 //
