@@ -48,6 +48,9 @@ func (r *Row) find(f *Finding) {
 	r.Verdict, r.Shift, r.Shift95, r.Tail, r.Misfit = f.Verdict, f.Shift, f.Shift95, f.Tail, f.Misfit
 }
 
+// verdict reports whether the row of a member with the verdict may be kept.
+func (k Keep) verdict(v Verdict) bool { return k.All || k.Lowest > 0 || v == Reproduces }
+
 // of appends the members whose rows are to be kept to dst.
 func (k Keep) of(dst []*member, all []member) []*member {
 	for i := range all {

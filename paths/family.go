@@ -61,20 +61,23 @@ type Method int
 // engine gives the members of one family their verdicts.
 type engine struct {
 	*weighing
-	family  *study.Family
-	tables  []*gTable // one an element; nil if its members are run
-	methods []FamilyMethod
-	steps   bool // at least one element is run
+	family   *study.Family
+	keep     Keep
+	tables   []*gTable // one an element; nil if its members are run
+	methods  []FamilyMethod
+	steps    bool      // at least one element is run
+	stepping *stepping // how; nil where members are weighed like paths
 }
 
 // engine prepares the screening of a family of which first is the first member that is
 // not barred, nil if all are.
-func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Path, by Method) (*engine, error) {
-	e := &engine{weighing: w, family: f, tables: make([]*gTable, len(w.elements))}
+func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Path, by Method, keep Keep) (*engine, error) {
+	e := &engine{weighing: w, family: f, keep: keep, tables: make([]*gTable, len(w.elements))}
 	if first == nil {
 		return e, nil
 	}
 	why := e.linked()
+	alone := why == ""
 	if by == InSteps {
 		why = "that was asked for"
 	}
@@ -96,7 +99,12 @@ func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Pat
 			return nil, noTable(f, of, e.methods[n].Why)
 		}
 	}
-	e.steps = slices.Contains(e.tables, nil)
+	if e.steps = slices.Contains(e.tables, nil); e.steps && alone {
+		var err error
+		if e.stepping, err = w.newStepping(ctx, f, e.tables, first); err != nil {
+			return nil, err
+		}
+	}
 	return e, nil
 }
 
@@ -171,6 +179,7 @@ type member struct {
 type desk struct {
 	candidates [stepChunk]study.Candidate // those of a chunk that are run, else the first
 	lnG        []float64
+	runs       *runner // of the family in hand, where its members are run
 }
 
 // judge gives each of the members its verdict.

@@ -3,13 +3,17 @@ package paths
 import (
 	"context"
 	"fmt"
-	"slices"
+	"math"
 
 	"bankfire/paths/study"
 )
 
 // run judges members of which at least one element must be run, at most stepChunk.
 func (e *engine) run(ctx context.Context, d *desk, members []member) error {
+	r, err := d.runner(e)
+	if err != nil {
+		return err
+	}
 	for i := range members {
 		if err := ctx.Err(); err != nil {
 			return err
@@ -20,41 +24,44 @@ func (e *engine) run(ctx context.Context, d *desk, members []member) error {
 		}
 		path := c.Path()
 		lnG := e.integrals(d, c)
-		cs, err := e.curves(ctx, &path, lnG)
+		var f Finding
+		if r == nil {
+			f, m.numErr, err = e.weighed(ctx, &path)
+		} else {
+			f, m.numErr, err = r.judge(ctx, &path, m.Index, lnG, e.keep.verdict)
+		}
 		if err != nil {
 			return err
 		}
-		f := jointly(cs, alone(cs, e.study.Confidence), e.study.Confidence)
 		e.found(m, &f, c, lnG)
 	}
 	return nil
 }
 
-// curves are those of a member's profiles, from the tables or by running it.
-func (e *engine) curves(ctx context.Context, path *study.Path, lnG []float64) ([]Curve, error) {
+// runner is the desk's runner for the family; nil where its members are weighed like
+// paths.
+func (d *desk) runner(e *engine) (*runner, error) {
+	if e.stepping == nil {
+		return nil, nil
+	}
+	if d.runs != nil && d.runs.stepping == e.stepping {
+		return d.runs, nil
+	}
+	var err error
+	d.runs, err = e.stepping.newRunner()
+	return d.runs, err
+}
+
+// weighed judges a member like a path that is written out. numErr is its largest
+// numerical error, in sigma.
+func (e *engine) weighed(ctx context.Context, path *study.Path) (f Finding, numErr float64, err error) {
 	var p weighedPath
-	if !slices.ContainsFunc(e.tables, func(t *gTable) bool { return t != nil }) {
-		if err := e.solve(ctx, &p, path); err != nil {
-			return nil, fmt.Errorf("%q%w", path.Name, err)
-		}
-		cs, _ := e.judged(&p)
-		return cs, nil
+	if err := e.solve(ctx, &p, path); err != nil {
+		return f, math.NaN(), fmt.Errorf("%q%w", path.Name, err)
 	}
-	var cs []Curve
-	var each []sampler
-	for n, of := range e.elements {
-		if t := e.tables[n]; t != nil {
-			cs, each = append(cs, t.on(lnG[n])), append(each, t.sampler(lnG[n]))
-			continue
-		}
-		if err := p.add(ctx, of.on(path), path, e.laws); err != nil {
-			return nil, fmt.Errorf("%q, %s in %s: %w", path.Name, of.element.Name, of.crystal.Name, err)
-		}
-		last := len(p.profiles) - 1
-		cs, each = append(cs, p.curves[last]), append(each, p.profiles[last].sampler(ctx))
+	for i := range p.results {
+		numErr = math.Max(numErr, p.results[i].NumErr)
 	}
-	if err := sharpen(cs, each); err != nil {
-		return nil, fmt.Errorf("%q: %w", path.Name, err)
-	}
-	return cs, nil
+	cs, _ := e.judged(&p)
+	return jointly(cs, alone(cs, e.study.Confidence), e.study.Confidence), numErr, nil
 }

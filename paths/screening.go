@@ -57,7 +57,7 @@ func NewScreening(ctx context.Context, s *study.Study, o ScreenOptions) (*Screen
 	out := &Screening{weighing: w, options: o, starts: []int64{0}}
 	for i := range firsts {
 		f := &w.study.Families[i]
-		e, err := w.engine(ctx, f, firsts[i], o.Method)
+		e, err := w.engine(ctx, f, firsts[i], o.Method, o.Keep)
 		if err != nil {
 			return nil, err
 		}
