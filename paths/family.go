@@ -44,8 +44,9 @@ type FamilyElement struct {
 
 // FamilyMethod says how the members were run for an element, and why.
 type FamilyMethod struct {
-	Table bool
-	Why   string
+	Table  bool
+	Why    string
+	NumErr float64 // of a table, the largest numerical error that was audited at data points, for any G that members reach, in sigma
 }
 
 // The ways to find what chi-square a member has.
@@ -82,6 +83,7 @@ func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Pat
 		why = "that was asked for"
 	}
 	e.methods = slices.Repeat([]FamilyMethod{{Why: why}}, len(e.elements))
+	reached := e.reached(first)
 	for n := range e.elements {
 		of := &e.elements[n]
 		switch open := of.element.Open; {
@@ -89,11 +91,13 @@ func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Pat
 		case open != "":
 			e.methods[n].Why = open + " is open in the family"
 		default:
-			t, reason, err := newTable(ctx, of, first, w.study.Confidence)
+			t, reason, err := newTable(ctx, of, first, reached[n], w.study.Confidence)
 			if err != nil {
 				return nil, fmt.Errorf("%s, %s in %s: %w", first.Name, of.element.Name, of.crystal.Name, err)
 			}
-			e.tables[n], e.methods[n] = t, FamilyMethod{t != nil, reason}
+			if e.tables[n], e.methods[n].Why = t, reason; t != nil {
+				e.methods[n].Table, e.methods[n].NumErr = true, t.numErr
+			}
 		}
 		if by == ByTable && e.tables[n] == nil {
 			return nil, noTable(f, of, e.methods[n].Why)
@@ -106,6 +110,49 @@ func (w *weighing) engine(ctx context.Context, f *study.Family, first *study.Pat
 		}
 	}
 	return e, nil
+}
+
+// probed is how many members are drawn, spread over the family, to see how far apart
+// their diffusion integrals lie.
+const probed = 1024
+
+// reached are about the lowest and highest ln G of members, of each element.
+func (e *engine) reached(first *study.Path) [][2]float64 {
+	out := make([][2]float64, len(e.elements))
+	see := func(n int, h *thermal.History) {
+		if g := e.lnG(n, h); !math.IsInf(g, 0) {
+			out[n] = [2]float64{math.Min(out[n][0], g), math.Max(out[n][1], g)}
+		}
+	}
+	for n := range out {
+		out[n] = noRange()
+		see(n, first.History)
+	}
+	var c study.Candidate
+	for i := int64(0); i < e.family.Count(); i += max(1, e.family.Count()/probed) {
+		if e.family.At(&c, i); c.Barred == "" {
+			for n := range out {
+				see(n, &c.History)
+			}
+		}
+	}
+	return out
+}
+
+// lnG is the logarithm of the diffusion integral of element n along a path, m2.
+func (e *engine) lnG(n int, h *thermal.History) float64 {
+	h = e.seen(n, h)
+	return e.elements[n].element.Law.Law.LnIntegral(h, 0, h.Life())
+}
+
+// seen is what the crystal of element n sees of the path of a member that is not barred.
+func (e *engine) seen(n int, h *thermal.History) *thermal.History {
+	if c := e.elements[n].crystal; c.Exists != nil {
+		if from, err := c.Sees(h); err == nil {
+			return from
+		}
+	}
+	return h
 }
 
 // noTable says why a table that is asked for cannot be.
@@ -246,7 +293,7 @@ func (e *engine) look(c *study.Candidate, m *member, d *desk) error {
 func (e *engine) integrals(d *desk, c *study.Candidate) []float64 {
 	d.lnG = d.lnG[:0]
 	for n := range e.elements {
-		d.lnG = append(d.lnG, e.elements[n].element.Law.Law.LnIntegral(&c.History, 0, c.History.Life()))
+		d.lnG = append(d.lnG, e.lnG(n, &c.History))
 	}
 	return d.lnG
 }
@@ -260,6 +307,6 @@ func (e *engine) found(m *member, f *Finding, c *study.Candidate, lnG []float64)
 	}
 	m.StandIn = m.StandIn[:len(e.elements)]
 	for n := range e.elements {
-		m.StandIn[n] = standIn(e.elements[n].element.Law.Law, &c.History, lnG[n])
+		m.StandIn[n] = standIn(e.elements[n].element.Law.Law, e.seen(n, &c.History), lnG[n])
 	}
 }

@@ -304,3 +304,38 @@ func BenchmarkFamilyByTable(b *testing.B) {
 	}
 	b.ReportMetric(float64(s.Families[0].Count()*int64(b.N))/b.Elapsed().Seconds(), "members/s")
 }
+
+// TestTableIsAudited: with errors of the data so small that the usual plan is too coarse
+// for the hottest members, though not where the data agree best, the table's is finer.
+func TestTableIsAudited(t *testing.T) {
+	s := familyStudy(t, 300, heldRim, "")
+	for i := range s.Crystals[0].Elements[0].Traverse.Sigma {
+		s.Crystals[0].Elements[0].Traverse.Sigma[i] = 0.1
+	}
+	e := engineOf(t, s)
+	worst := func(refined int) (all float64) {
+		var c study.Candidate
+		for i := int64(0); i < 300; i += 10 {
+			e.family.At(&c, i)
+			path := c.Path()
+			p, err := newProfile(&e.elements[0], &path, refined)
+			if err != nil {
+				t.Fatal(err)
+			}
+			r, err := p.asItIs()
+			if err != nil {
+				t.Fatal(err)
+			}
+			all = math.Max(all, r.NumErr)
+		}
+		return all
+	}
+	coarse, fine, stated := worst(0), worst(1), e.methods[0].NumErr
+	t.Logf("members are off by up to %.3g sigma, with a finer plan %.3g; stated %.3g", coarse, fine, stated)
+	if !(coarse > errorAim) || !(fine <= errorAim) {
+		t.Fatal("the study tests nothing")
+	}
+	if !(stated <= errorAim) || !(stated >= fine/2) {
+		t.Errorf("the table states %v, want up to %v and about %v", stated, errorAim, fine)
+	}
+}

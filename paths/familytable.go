@@ -18,12 +18,13 @@ type gTable struct {
 	at      Finding // of the curve itself: its shift factors are diffusion integrals, m2
 	lnG     float64 // of the lowest chi-square
 	lowest  float64
-	numErr  float64 // in sigma, where it is lowest
+	numErr  float64 // the largest that was audited, in sigma
 }
 
-// newTable makes the table of an element with a plan that is fine enough on the path
-// and where the data agree best. It is nil, with the reason, where G is not enough.
-func newTable(ctx context.Context, e *element, path *study.Path, confidence float64) (t *gTable, why string, err error) {
+// newTable makes the table of an element with a plan that is fine enough on the path,
+// where the data agree best and wherever ln G of members lies, from reached[0] to
+// reached[1]. It is nil, with the reason, where G is not enough.
+func newTable(ctx context.Context, e *element, path *study.Path, reached [2]float64, confidence float64) (t *gTable, why string, err error) {
 	for refined := 0; ; {
 		p, _, err := audited(e, path, refined)
 		if err != nil {
@@ -37,10 +38,9 @@ func newTable(ctx context.Context, e *element, path *study.Path, confidence floa
 		if err := t.solve(ctx, p); err != nil {
 			return nil, "", err
 		}
-		if err := p.audit(t.lnG - p.runs[0].course.LnG()); err != nil {
+		if err := t.audit(ctx, p, reached); err != nil {
 			return nil, "", err
 		}
-		t.numErr = p.numErr(p.fitRun(0, nil))
 		if refined = p.finer(t.numErr); refined > p.refined {
 			continue
 		}
@@ -48,6 +48,33 @@ func newTable(ctx context.Context, e *element, path *study.Path, confidence floa
 		t.curve.Crystal = e.place
 		return t, why, nil
 	}
+}
+
+// auditSpacing is how far apart in ln G knots are audited: about a factor of three.
+const auditSpacing = 1.0
+
+// audit measures the numerical error, which is one of ln G alone, where the data agree
+// best, and at knots that include what members reach.
+func (t *gTable) audit(ctx context.Context, p *profile, reached [2]float64) error {
+	x := t.curve.LnM
+	first, _ := slices.BinarySearch(x, reached[0])
+	last, _ := slices.BinarySearch(x, reached[1])
+	at := []float64{t.lnG}
+	for i := max(first-1, 0); i <= min(last, len(x)-1); i++ {
+		if len(at) == 1 || i == last || x[i]-at[len(at)-1] >= auditSpacing {
+			at = append(at, x[i])
+		}
+	}
+	for _, lnG := range at {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
+		if err := p.audit(lnG - p.runs[0].course.LnG()); err != nil {
+			return err
+		}
+		t.numErr = math.Max(t.numErr, p.numErr(p.fitRun(0, nil)))
+	}
+	return nil
 }
 
 // gEnough reports whether the profile knows a path by its diffusion integral alone,

@@ -6,6 +6,8 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strconv"
+	"strings"
 
 	"bankfire/paths/draw"
 	"bankfire/thermal"
@@ -390,3 +392,23 @@ func (v *Value) Below(x float64) float64 {
 
 // Method is how members are drawn.
 func (f *Family) Method() draw.Method { return f.points.Method() }
+
+// Unnumbered is the name of a leg of a member as the study has it: without the number
+// that comes to a name inside a repeat.
+func (f *Family) Unnumbered(name string) string {
+	at := strings.LastIndexByte(name, ' ')
+	if at < 0 {
+		return name
+	}
+	if _, err := strconv.ParseUint(name[at+1:], 10, 64); err != nil || !repeated(f.specs, name[:at], false) {
+		return name
+	}
+	return name[:at]
+}
+
+// repeated reports whether a leg of the name is inside a repeat.
+func repeated(specs []thermal.Spec, name string, inside bool) bool {
+	return slices.ContainsFunc(specs, func(s thermal.Spec) bool {
+		return inside && s.Name == name || repeated(s.Legs, name, true)
+	})
+}
