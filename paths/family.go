@@ -119,20 +119,20 @@ const probed = 1024
 // reached are about the lowest and highest ln G of members, of each element.
 func (e *engine) reached(first *study.Path) [][2]float64 {
 	out := make([][2]float64, len(e.elements))
-	see := func(n int, h *thermal.History) {
-		if g := e.lnG(n, h); !math.IsInf(g, 0) {
+	see := func(n int, path study.Path) {
+		if g := e.lnG(n, &path); !math.IsInf(g, 0) {
 			out[n] = [2]float64{math.Min(out[n][0], g), math.Max(out[n][1], g)}
 		}
 	}
 	for n := range out {
 		out[n] = noRange()
-		see(n, first.History)
+		see(n, *first)
 	}
 	var c study.Candidate
 	for i := int64(0); i < e.family.Count(); i += max(1, e.family.Count()/probed) {
 		if e.family.At(&c, i); c.Barred == "" {
 			for n := range out {
-				see(n, &c.History)
+				see(n, study.Path{History: &c.History, Crystals: c.Crystals})
 			}
 		}
 	}
@@ -140,19 +140,19 @@ func (e *engine) reached(first *study.Path) [][2]float64 {
 }
 
 // lnG is the logarithm of the diffusion integral of element n along a path, m2.
-func (e *engine) lnG(n int, h *thermal.History) float64 {
-	h = e.seen(n, h)
+func (e *engine) lnG(n int, path *study.Path) float64 {
+	h := e.seen(n, path)
 	return e.elements[n].element.Law.Law.LnIntegral(h, 0, h.Life())
 }
 
-// seen is what the crystal of element n sees of the path of a member that is not barred.
-func (e *engine) seen(n int, h *thermal.History) *thermal.History {
-	if c := e.elements[n].crystal; c.Exists != nil {
-		if from, err := c.Sees(h); err == nil {
-			return from
+// seen is what the crystal of element n sees of a path that is not barred.
+func (e *engine) seen(n int, path *study.Path) *thermal.History {
+	if c := path.Crystal(e.elements[n].crystal); c.Exists != nil {
+		if h, err := c.Sees(path.History); err == nil {
+			return h
 		}
 	}
-	return h
+	return path.History
 }
 
 // noTable says why a table that is asked for cannot be.
@@ -292,8 +292,9 @@ func (e *engine) look(c *study.Candidate, m *member, d *desk) error {
 // integrals are ln G of each element along the member, in memory of the desk's.
 func (e *engine) integrals(d *desk, c *study.Candidate) []float64 {
 	d.lnG = d.lnG[:0]
+	path := study.Path{History: &c.History, Crystals: c.Crystals}
 	for n := range e.elements {
-		d.lnG = append(d.lnG, e.lnG(n, &c.History))
+		d.lnG = append(d.lnG, e.lnG(n, &path))
 	}
 	return d.lnG
 }
@@ -306,7 +307,8 @@ func (e *engine) found(m *member, f *Finding, c *study.Candidate, lnG []float64)
 		return
 	}
 	m.StandIn = m.StandIn[:len(e.elements)]
+	path := study.Path{History: &c.History, Crystals: c.Crystals}
 	for n := range e.elements {
-		m.StandIn[n] = standIn(e.elements[n].element.Law.Law, e.seen(n, &c.History), lnG[n])
+		m.StandIn[n] = standIn(e.elements[n].element.Law.Law, e.seen(n, &path), lnG[n])
 	}
 }

@@ -47,7 +47,7 @@ func (e *engine) readSample(sample []int64) *sampled {
 		lo, hi := c.History.RangeIn(0, c.History.Eruption())
 		s.between = [2]float64{math.Min(s.between[0], lo), math.Max(s.between[1], hi)}
 		for n := range e.elements {
-			s.share(e, n, &c.History)
+			s.share(e, n, &study.Path{History: &c.History, Crystals: c.Crystals})
 		}
 		s.count++
 	}
@@ -55,8 +55,8 @@ func (e *engine) readSample(sample []int64) *sampled {
 }
 
 // share adds the parts of the diffusion integral of element n that a member's legs do.
-func (s *sampled) share(e *engine, n int, h *thermal.History) {
-	h = e.seen(n, h)
+func (s *sampled) share(e *engine, n int, path *study.Path) {
+	h := e.seen(n, path)
 	law := e.elements[n].element.Law.Law
 	all := law.LnIntegral(h, 0, h.Life())
 	legs := h.Legs()

@@ -104,7 +104,7 @@ wait = { from = "1 yr", to = "20 yr" }
 		return math.Exp(e.elements[0].element.Law.Law.LnD(celsius + thermal.ZeroCelsius))
 	}
 	parts := map[DiffusionShare]float64{{Kind: thermal.Hold}: 3 * wait * d(700), {Name: "episode"}: 2 * wait * d(700), {Name: "late 2"}: wait * d(750)}
-	all := math.Exp(e.lnG(0, &c.History))
+	all := math.Exp(e.lnG(0, &study.Path{History: &c.History}))
 	parts[DiffusionShare{Name: "wake"}] = all - 5*wait*d(700) - wait*d(750)
 	if len(got) != len(parts) {
 		t.Fatalf("shares %v, want of %v", got, parts)

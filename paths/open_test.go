@@ -86,7 +86,7 @@ func TestOpenMembersAreTheirPaths(t *testing.T) {
 	s := openedStudy(t, drawnOpen(fmt.Sprintf(`{ method = "halton", count = %d }`, members)))
 	r, rows := screened(t, s, 2)
 	f := &s.Families[0]
-	for n, want := range []FamilyMethod{{false, "its start is open in the family"}, {true, ""}} {
+	for n, want := range []FamilyMethod{{Why: "its start is open in the family"}, {Table: true}} {
 		if got := r.Families[0].Methods[n]; got.Table != want.Table || want.Why != "" && got.Why != want.Why {
 			t.Errorf("method %d: %+v, want %+v", n, got, want)
 		}

@@ -13,6 +13,7 @@ type weighedFamily struct {
 	Method   string          `json:"method"` // how members are drawn
 	Seed     uint64          `json:"seed"`
 	Count    int64           `json:"count"`
+	Screened int64           `json:"screened"` // fewer where results are partial
 	Values   []familyValue   `json:"values"`
 	Verdicts []verdictCount  `json:"verdicts"`
 	Barred   []familyBar     `json:"barred"` // the commonest first
@@ -22,7 +23,11 @@ type weighedFamily struct {
 	StandIn  []familyStandIn `json:"stand_in_temperature"`
 	Sharp    quantiles       `json:"shift_factor_too_sharp"`
 	Smooth   quantiles       `json:"shift_factor_too_smooth"`
+	Duration []familyHot     `json:"duration_curve"` // of the sample, as the next and the trade-offs
+	Shares   []familyShare   `json:"diffusion_shares"`
+	Sampled  int64           `json:"sampled"`
 	Engines  []familyEngine  `json:"engines"`
+	Audit    *familyAudit    `json:"audit"`
 	Best     *int64          `json:"best_member"` // the one with the lowest chi-square
 	Path     *string         `json:"best_path"`   // as which it is among the paths
 }
@@ -69,11 +74,32 @@ type familyStandIn struct {
 	Temperature quantiles `json:"temperature_K"`
 }
 
+type familyHot struct {
+	Temperature float64   `json:"temperature_K"`
+	Time        quantiles `json:"time_s"`
+}
+
+// familyShare is what a leg does of the diffusion of an element. Legs without a name
+// stand together by their kind.
+type familyShare struct {
+	elementKey
+	Leg   *string   `json:"leg"`
+	Kind  *string   `json:"kind"`
+	Share quantiles `json:"share"`
+}
+
+// familyAudit is the largest numerical error of a member that was audited.
+type familyAudit struct {
+	Member int64   `json:"member"`
+	Error  float64 `json:"numerical_error_sigma"`
+}
+
 // familyEngine says how members were run for an element.
 type familyEngine struct {
 	elementKey
-	Method string `json:"method"` // "table" or "steps"
-	Why    string `json:"why"`
+	Method string   `json:"method"` // "table" or "steps"
+	Why    string   `json:"why"`
+	Error  *float64 `json:"numerical_error_sigma"` // of a table
 }
 
 // summariseFamilies summarises the families of the result.
@@ -88,10 +114,10 @@ func summariseFamilies(r *paths.Result) []weighedFamily {
 func summariseFamily(r *paths.Result, f *paths.FamilyResult) weighedFamily {
 	s := &f.Summary
 	out := weighedFamily{
-		Name: f.Family.Name, Method: f.Family.Method().String(), Seed: f.Family.Seed, Count: f.Family.Count(),
+		Name: f.Family.Name, Method: f.Family.Method().String(), Seed: f.Family.Seed, Count: f.Family.Count(), Screened: f.Tally.Count(),
 		Values: []familyValue{}, Verdicts: []verdictCount{}, Barred: []familyBar{}, Trade: []familyTrade{},
 		Life: newQuantiles(s.Life), Above: []familyAbove{}, StandIn: []familyStandIn{},
-		Sharp: newQuantiles(s.More), Smooth: newQuantiles(s.Less), Engines: []familyEngine{},
+		Sharp: newQuantiles(s.More), Smooth: newQuantiles(s.Less), Duration: []familyHot{}, Shares: []familyShare{}, Sampled: s.Sampled, Engines: []familyEngine{},
 	}
 	for k := range s.Values {
 		v, of := &f.Family.Values[k], &s.Values[k]
@@ -115,12 +141,35 @@ func summariseFamily(r *paths.Result, f *paths.FamilyResult) weighedFamily {
 		e := f.Elements[k]
 		out.StandIn = append(out.StandIn, familyStandIn{elementKey{e.Crystal.Name, e.Element.Name}, newQuantiles(q)})
 	}
+	for _, d := range s.Duration {
+		out.Duration = append(out.Duration, familyHot{d.Temp, newQuantiles(d.Time)})
+	}
+	for k, shares := range s.Shares {
+		for i := range shares {
+			out.Shares = append(out.Shares, newFamilyShare(f.Elements[k], &shares[i]))
+		}
+	}
 	for k, m := range f.Methods {
 		e := f.Elements[k]
-		out.Engines = append(out.Engines, familyEngine{elementKey{e.Crystal.Name, e.Element.Name}, engineName(m), m.Why})
+		out.Engines = append(out.Engines, familyEngine{elementKey{e.Crystal.Name, e.Element.Name}, engineName(m), m.Why, nil})
+		if m.Table {
+			out.Engines[k].Error = bounded(m.NumErr)
+		}
+	}
+	if f.Tally.NumErrOf >= 0 {
+		out.Audit = &familyAudit{f.Tally.NumErrOf, f.Tally.NumErr}
 	}
 	if best := f.Best(); best >= 0 {
 		out.Best, out.Path = &best, &r.Paths[f.Path].Path.Name
+	}
+	return out
+}
+
+func newFamilyShare(e paths.FamilyElement, of *paths.DiffusionShare) familyShare {
+	out := familyShare{elementKey: elementKey{e.Crystal.Name, e.Element.Name}, Share: newQuantiles(of.Share)}
+	if out.Leg = &of.Name; of.Name == "" {
+		kind := of.Kind.String()
+		out.Leg, out.Kind = nil, &kind
 	}
 	return out
 }

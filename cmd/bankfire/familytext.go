@@ -216,7 +216,68 @@ func keptSentences(r *paths.Result, f *paths.FamilyResult, s *paths.FamilySummar
 	for k, e := range f.Elements {
 		out = append(out, fmt.Sprintf("Their stand-in temperature for %s in %s is %s.", e.Element.Name, e.Crystal.Name, nine(s.StandIn[k], celsius)))
 	}
+	before := len(out)
+	if text := durationSentence(s.Duration); text != "" {
+		out = append(out, text)
+	}
+	for n, e := range f.Elements {
+		if text := legsText(s.Shares[n]); text != "" {
+			out = append(out, fmt.Sprintf("In the median, of the diffusion of %s in %s %s.", e.Element.Name, e.Crystal.Name, text))
+		}
+	}
+	if s.Sampled < f.Tally.Counts[paths.Reproduces] {
+		out = append(out, fmt.Sprintf("The last %s and rank correlations are of a fair sample of %d of them.", counted(int64(len(out)-before), "line"), s.Sampled))
+	}
 	return out
+}
+
+// mostHot is of how many temperatures of a duration curve the text speaks.
+const mostHot = 4
+
+// durationSentence says for how long half of the members are hotter than some
+// temperatures, "" if they are never hotter than any.
+func durationSentence(curve []paths.DurationQuantiles) string {
+	var hot []paths.DurationQuantiles // without the first, above which is all of their lives
+	for _, d := range curve[min(1, len(curve)):] {
+		if d.Time[1] > 0 {
+			hot = append(hot, d)
+		}
+	}
+	if len(hot) == 0 {
+		return ""
+	}
+	var words []string
+	for k, n := 0, min(mostHot, len(hot)); k < n; k++ {
+		d := hot[k*(len(hot)-1)/max(1, n-1)]
+		words = append(words, thermal.DurationText(d.Time[1])+" above "+celsius(d.Temp))
+	}
+	words[0] = strings.Replace(words[0], " above", " or more above", 1)
+	return "Half of them spend " + list(words) + "."
+}
+
+// leastShare is the least median share that the text speaks of.
+const leastShare = 0.01
+
+// legsText says what legs do of the diffusion, "" if none does a part of it.
+func legsText(shares []paths.DiffusionShare) string {
+	var words []string
+	for _, of := range shares {
+		if of.Share[1] < leastShare {
+			continue
+		}
+		name := of.Name
+		if name == "" {
+			name = of.Kind.String() + " legs without a name"
+		}
+		words = append(words, fmt.Sprintf("%.0f %% is done in %s", 100*of.Share[1], name))
+	}
+	if len(words) == 0 {
+		return ""
+	}
+	for k := range words[1:] {
+		words[k+1] = strings.Replace(words[k+1], " is done", "", 1)
+	}
+	return list(words)
 }
 
 // methodSentence says how the members were run for element n, and how far the one that
@@ -225,9 +286,13 @@ func methodSentence(r *paths.Result, f *paths.FamilyResult, n int, m paths.Famil
 	e := f.Elements[n]
 	of := e.Element.Name + " in " + e.Crystal.Name
 	if !m.Table {
-		return fmt.Sprintf("Method for %s: steps along each path, since %s.", of, m.Why)
+		text := fmt.Sprintf("Method for %s: steps along each path, since %s.", of, m.Why)
+		if f.Tally.NumErrOf >= 0 {
+			text += fmt.Sprintf(" Numerical error of those that were audited: at most %s sigma, of member %d.", oneDigit(f.Tally.NumErr), f.Tally.NumErrOf)
+		}
+		return text
 	}
-	text := fmt.Sprintf("Method for %s: a table of chi-square against G, since %s.", of, m.Why)
+	text := fmt.Sprintf("Method for %s: a table of chi-square against G, since %s. Numerical error, wherever members have their G: at most %s sigma.", of, m.Why, oneDigit(m.NumErr))
 	if f.Best() >= 0 && len(f.Methods) == 1 {
 		off := math.Abs(r.Paths[f.Path].Outcome.Misfit - f.Tally.Misfit)
 		text += fmt.Sprintf(" Run in steps, member %d has a chi-square that differs by %s.", f.Best(), smallText(off))
