@@ -135,6 +135,8 @@ func askedText(v *study.Value) string {
 			return fmt.Sprintf("%s +- %s", valueText(v, v.Mean), celsius(thermal.ZeroCelsius+v.Sigma))
 		}
 		return valueText(v, v.Mean) + " +- " + valueText(v, v.Sigma)
+	case study.Counted:
+		return v.Rate()
 	case study.Chosen:
 		var words []string
 		for _, x := range v.Choices {

@@ -191,7 +191,7 @@ func siUnit(v *study.Value) string {
 	if v.Plain() || v.Unit() != "" {
 		return v.Unit()
 	}
-	return map[thermal.Dimension]string{thermal.Temperature: "K", thermal.Duration: "s", thermal.Length: "m", thermal.Diffusivity: "m2/s"}[v.Dim()]
+	return map[thermal.Dimension]string{thermal.Temperature: "K", thermal.Duration: "s", thermal.Length: "m", thermal.Diffusivity: "m2/s", thermal.Velocity: "m/s"}[v.Dim()]
 }
 
 // drawnSeed is the seed of all families, nil if there are none or they differ.

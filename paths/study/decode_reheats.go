@@ -60,6 +60,7 @@ func (d *decoder) rate(n *node, r *randomReheats) {
 	if per = strings.TrimSpace(per); !looksLikeValue(per) && per[0] != '{' {
 		per = "1 " + per
 	}
+	r.rate = text
 	if r.count, ok = d.holeText(n, strings.TrimSpace(count), howMany); ok {
 		r.per, ok = d.holeText(n, per, duration)
 	}
@@ -120,6 +121,6 @@ func (d *decoder) eachChoice(n *node, b bound) Value {
 func (d *decoder) counted(f *Family) {
 	for i := range f.random {
 		f.random[i].value = len(f.Values)
-		f.Values = append(f.Values, Value{Name: f.random[i].name, Kind: Counted, is: measure{plain: true, whole: true}})
+		f.Values = append(f.Values, Value{Name: f.random[i].name, Kind: Counted, rate: f.random[i].rate, is: measure{plain: true, whole: true}})
 	}
 }

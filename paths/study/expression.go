@@ -62,8 +62,9 @@ func (m measure) like(o measure) bool {
 	return m.plain == o.plain && (m.plain || m.dim == o.dim && m.unit == o.unit)
 }
 
-// legDimensions are the kinds of quantity that a leg has.
-var legDimensions = [...]thermal.Dimension{thermal.Temperature, thermal.Duration, thermal.Length, thermal.Diffusivity}
+// openDimensions are the kinds of quantity that a leg or a crystal has, but for
+// concentrations, whose unit stays.
+var openDimensions = [...]thermal.Dimension{thermal.Temperature, thermal.Duration, thermal.Length, thermal.Diffusivity, thermal.Velocity}
 
 // readAny reads a plain number or a quantity of any kind that a leg has, perhaps
 // with an error.
@@ -71,7 +72,7 @@ func readAny(text string) (value thermal.Uncertain, m measure, refused *thermal.
 	if value, err := thermal.ParseFactor(text); err == nil {
 		return value, measure{plain: true, whole: value.Sigma == 0 && value.Value == math.Trunc(value.Value)}, nil
 	}
-	for _, dim := range legDimensions {
+	for _, dim := range openDimensions {
 		if value, err := thermal.ParseUncertain(text, dim); err == nil {
 			level := dim == thermal.Temperature && !strings.HasSuffix(strings.TrimSpace(text), "K")
 			return value, measure{dim: dim, level: level}, nil
@@ -81,7 +82,7 @@ func readAny(text string) (value thermal.Uncertain, m measure, refused *thermal.
 		return value, measure{dim: thermal.Concentration, unit: unit}, nil
 	}
 	return value, m, &thermal.InputError{Value: text, Problem: "neither a number nor a quantity that a leg or a crystal has",
-		Remedy: `want a temperature, a duration, a length, a diffusivity or a concentration with its unit, such as "12 kyr"`}
+		Remedy: `want a temperature, a duration, a length, a diffusivity, a velocity or a concentration with its unit, such as "12 kyr"`}
 }
 
 // names are the values that an expression may speak of.

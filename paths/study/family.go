@@ -56,9 +56,13 @@ type Value struct {
 	Choices     []float64 // of Chosen
 	Mean, Sigma float64   // of Normal
 
-	is  measure
-	tie expression // of Tied
+	is   measure
+	tie  expression // of Tied
+	rate string     // of Counted
 }
+
+// Rate is how many reheats there are in a time, on average, of a Counted value.
+func (v *Value) Rate() string { return v.rate }
 
 // drawn reports whether the value is a coordinate of the points that are drawn.
 func (v *Value) drawn() bool { return v.Kind != Tied && v.Kind != Counted }

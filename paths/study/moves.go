@@ -81,10 +81,9 @@ func (d *decoder) moves(n *node, c *Crystal) {
 		d.keys(t, growsTable)
 		m := Move{Place: d.place(t)}
 		if v := d.need(t, "rate", example); v != nil && d.is(v, textNode, example) {
-			rate, err := thermal.ParseQuantity(v.text, thermal.Velocity)
+			rate, ok := d.moveRate(v)
 			switch {
-			case err != nil:
-				d.reportError(v, err)
+			case !ok:
 			case rate == 0 || !(rate > -exchange.top && rate < exchange.top):
 				d.report(v, "no rate at which a rim moves", `write it like "5 um/yr", or "-5 um/yr" where the crystal dissolves`)
 			}
@@ -97,6 +96,24 @@ func (d *decoder) moves(n *node, c *Crystal) {
 			c.Moves = append(c.Moves, m)
 		}
 	}
+}
+
+// moveRate reads a velocity of either sign.
+func (d *decoder) moveRate(n *node) (float64, bool) {
+	if d.isOpen(n) {
+		rate, m, ok := d.filled(n, n.text)
+		if ok && !m.like(measure{dim: thermal.Velocity}) {
+			d.report(n, fmt.Sprintf("%s where %s belongs", m, measure{dim: thermal.Velocity}), `want something like "5 um/yr"`)
+			return 0, false
+		}
+		return rate, ok
+	}
+	rate, err := thermal.ParseQuantity(n.text, thermal.Velocity)
+	if err != nil {
+		d.reportError(n, err)
+		return 0, false
+	}
+	return rate, true
 }
 
 func (d *decoder) moveMoment(v *node, c *Crystal) (*thermal.Moment, bool) {

@@ -24,6 +24,7 @@ late = "30 +- 2 yr"
 grown = "{life} - 2 * {late}"
 melt = "200 +- 10 ppm"
 hot = { from = "760 C", to = "790 C" }
+rate = { from = "-0.01 um/yr", to = "0.02 um/yr" }
 `
 
 // openCrystal has braces wherever a crystal may.
@@ -33,7 +34,7 @@ mineral = "plagioclase"
 shape = "slab"
 exists_from = "{late} after start"
 dissolves = { above = "{hot} + 100 K", longer = "{late}" }
-grows = [ { rate = "0.01 um/yr", from = "{late} after start of wake", until = "end of wake" } ]
+grows = [ { rate = "{rate}", from = "{late} after start of wake", until = "end of wake" } ]
 zones = [ { name = "core", width = "140 um", host = 0.5 }, { name = "mantle", width = "60 um", host = 0.4, added = "{grown} after start" } ]
 [[crystal.element]]
 name = "Sr"
@@ -85,7 +86,7 @@ func writtenOut(f *Family, c *Candidate) string {
 	pairs := []string{ // sums first
 		"{hot} + 100 K", exact(value["hot"]+100, "K"), "{hot} - 10 K", exact(value["hot"]-10, "K"), "{outside} + 1 ppm", exact(value["outside"]+1, "ppm"),
 	}
-	for name, unit := range map[string]string{"store": "K", "life": "s", "edge": "m", "core": "ppm", "late": "s", "grown": "s", "melt": "ppm", "hot": "K"} {
+	for name, unit := range map[string]string{"store": "K", "life": "s", "edge": "m", "core": "ppm", "late": "s", "grown": "s", "melt": "ppm", "hot": "K", "rate": "m/s"} {
 		pairs = append(pairs, "{"+name+"}", exact(value[name], unit))
 	}
 	return strings.NewReplacer(pairs...).Replace(text)
@@ -192,6 +193,7 @@ func TestWrongOpen(t *testing.T) {
 		{"a time as a value", `"{core}"`, `"{late}"`, "crystal.element.start.zones", "a duration where a concentration belongs", "58 ppm"},
 		{"a temperature as a moment", `"{grown} after start"`, `"{hot} after start"`, "crystal.zones.added", "a temperature where a duration belongs", ""},
 		{"a bare duration", `"{grown} after start"`, `"{grown}"`, "crystal.zones.added", "a duration, not a moment", "after start"},
+		{"a rate of growth", `rate = "{rate}"`, `rate = "{edge}"`, "crystal.grows.rate", "a length where a velocity belongs", "5 um/yr"},
 		{"a width", `width = "140 um"`, `width = "100 um + {edge}"`, "crystal.zones.width", "does not vary within a family", "starts, in rims and in moments"},
 		{"unused", `edge = "{edge}"`, `edge = "1 um"`, "family.vary.edge", "nothing uses the value", "in a leg or a crystal"},
 		{"two units", `"{outside} + 1 ppm"`, `"{outside} + 1 mole fraction"`, "crystal.element.rim.held", "a concentration in ppm and a concentration in mole fraction do not add up", ""},

@@ -21,6 +21,7 @@ type randomReheats struct {
 	each       [4]Value   // what each draws for itself, in the order of eachReheat
 	name       string     // of their number
 	value      int        // the place of that among the values
+	rate       string     // as it was written
 	words      string     // "the reheats on line 12"
 }
 
