@@ -73,22 +73,31 @@ func (b *deviating) lay() error {
 			b.z = append(b.z, off(float64(k), devStep, float64(l), devStep))
 		}
 	}
+	for _, z := range b.z {
+		r, lnD, err := b.run(z)
+		if err != nil {
+			return err
+		}
+		b.runs, b.lnD = append(b.runs, r), append(b.lnD, lnD)
+	}
+	return nil
+}
+
+// run compiles the element with constants off, and returns ln of the factor on D that By
+// counts as a shift.
+func (b *deviating) run(z []float64) (r variant, lnD float64, err error) {
+	e, lnD := b.crystal.Deviated(b.element, b.of, z)
+	problem, _, err := b.crystal.Problem(e, b.path.History)
+	if err != nil {
+		return r, 0, fmt.Errorf("with constants of %s off: %w", b.element.Name, err)
+	}
 	own := *b.profile
 	own.runs = nil
 	options := diffusion.Options{Finest: finest(b.element.Traverse), Refined: b.refined, Faces: b.plan().Faces()}
-	for _, z := range b.z {
-		e, lnD := b.crystal.Deviated(b.element, b.of, z)
-		problem, _, err := b.crystal.Problem(e, b.path.History)
-		if err != nil {
-			return fmt.Errorf("with constants of %s off by %g standard deviations: %w", b.element.Name, devStep, err)
-		}
-		if err := own.addRun(problem, b.lens.edges[b.middle()], &options); err != nil {
-			return err
-		}
-		b.lnD = append(b.lnD, lnD)
+	if err := own.addRun(problem, b.lens.edges[b.middle()], &options); err != nil {
+		return r, 0, err
 	}
-	b.runs = own.runs
-	return nil
+	return own.runs[0], lnD, nil
 }
 
 // weights are those of the runs in y(z), beside that of y(0).
@@ -115,6 +124,11 @@ func (b *deviating) weights(z []float64) []float64 {
 // fit fits the values that are open to the data at deviations z, for what was left in
 // field number field.
 func (b *deviating) fit(field int, z []float64) least.Solution {
+	return b.fitMoved(field, b.runs, b.weights(z))
+}
+
+// fitMoved is fit for the profile with so much of what each of the runs differs by.
+func (b *deviating) fitMoved(field int, runs []variant, weights []float64) least.Solution {
 	cols := b.columns(field)
 	from := cols[b.middle()]
 	moved := make([][][]float64, len(cols))
@@ -123,8 +137,8 @@ func (b *deviating) fit(field int, z []float64) least.Solution {
 			moved[i] = append(moved[i], slices.Clone(col))
 		}
 	}
-	for r, w := range b.weights(z) {
-		for j, col := range b.runs[r].fields[field].Cols {
+	for r, w := range weights {
+		for j, col := range runs[r].fields[field].Cols {
 			for c, v := range col {
 				by := w * (v - from[j][c])
 				for i := range moved {
@@ -261,11 +275,14 @@ func thinned(lnM []float64) []float64 {
 }
 
 // How near knots of By are at first, of lnM; how right it must be where deviations
-// bring a profile, of chi-square; and how often it is improved.
+// bring a profile, of chi-square; how often it is improved; and by how much it may be
+// wrong in the end without a word, of chi-square and as a part of it.
 const (
 	devSpacing = 0.05
 	devError   = 0.05
 	devRounds  = 8
+	devMissed  = 1.0
+	devPart    = 0.02
 )
 
 // deviate says of the curves of a path what deviations of constants with errors make of
@@ -301,11 +318,13 @@ func (w *weighedPath) deviate(ctx context.Context, of *weighing) error {
 	}
 	w.deviateShared(of)
 	for range devRounds {
-		if right, err := w.rectify(ctx, of, runs); right || err != nil {
+		if right, err := w.rectify(ctx, of, runs); err != nil {
 			return err
+		} else if right {
+			break
 		}
 	}
-	return nil
+	return w.noteForetold(ctx, of, runs)
 }
 
 // deviateShared gives the curves of what elements of a crystal share the shifts of the
@@ -321,15 +340,14 @@ func (w *weighedPath) deviateShared(of *weighing) {
 	}
 }
 
-// rectify adds knots where the deviations that bring the path to the data take its
-// profiles, the likeliest and the smallest with which it passes. It reports whether By
-// was right there.
-func (w *weighedPath) rectify(ctx context.Context, of *weighing, runs []*deviating) (right bool, err error) {
+// asked calls see for each profile that was run with constants off, with its law and its
+// deviations where those that bring the path to the data take it: the likeliest and the
+// smallest with which it passes.
+func (w *weighedPath) asked(of *weighing, runs []*deviating, see func(n int, law *LawPrior, z []float64) error) error {
 	cs, which := of.judged(w)
 	joint := Sum(cs)
 	l := newLeaning(cs, of.laws)
 	_, likeliest, smallest := l.find(Critical(of.study.Confidence, max(joint.Points-joint.Free, 1)))
-	right = true
 	for i := range cs {
 		if cs[i].Shared {
 			continue
@@ -340,15 +358,71 @@ func (w *weighedPath) rectify(ctx context.Context, of *weighing, runs []*deviati
 			if z == nil || runs[n] == nil {
 				continue
 			}
-			told, err := runs[n].rectify(ctx, &w.curves[n], l.law(&cs[i]), l.own(i, z))
-			if err != nil {
-				return false, err
+			if err := see(n, l.law(&cs[i]), l.own(i, z)); err != nil {
+				return err
 			}
-			right = right && told
 		}
-		w.keep(n)
 	}
-	return right, nil
+	return nil
+}
+
+// rectify adds knots where a path asks profiles to go. It reports whether By was right
+// there.
+func (w *weighedPath) rectify(ctx context.Context, of *weighing, runs []*deviating) (right bool, err error) {
+	right = true
+	err = w.asked(of, runs, func(n int, law *LawPrior, z []float64) error {
+		told, err := runs[n].rectify(ctx, &w.curves[n], law, z)
+		right = right && told
+		w.keep(n)
+		return err
+	})
+	return right, err
+}
+
+// noteForetold runs the profiles with constants off as the path asks for, and says of
+// those of which By foretells something else.
+func (w *weighedPath) noteForetold(ctx context.Context, of *weighing, runs []*deviating) error {
+	missed := make([]float64, len(runs))
+	err := w.asked(of, runs, func(n int, law *LawPrior, z []float64) error {
+		value, err := runs[n].exactly(ctx, &w.curves[n], law, z)
+		if miss := math.Abs(value - w.curves[n].leant(z, law)); miss > devMissed+devPart*value {
+			missed[n] = math.Max(missed[n], miss)
+		}
+		return err
+	})
+	for n, miss := range missed {
+		if b := runs[n]; miss > 0 {
+			w.results[n].Notes = append(w.results[n].Notes, fmt.Sprintf("with constants off, chi-square of %s in %s is foretold to %.2g only", b.element.Name, b.crystal.Name, miss))
+		}
+	}
+	return err
+}
+
+// exactly runs the profile with the deviations of the curve and returns chi-square.
+func (b *deviating) exactly(ctx context.Context, c *Curve, law *LawPrior, z []float64) (float64, error) {
+	x := []float64{c.shift(z, law)}
+	if _, err := b.solveFor(ctx, x); err != nil {
+		return 0, err
+	}
+	r, lnD, err := b.run(b.among(c, z))
+	if err != nil {
+		return 0, err
+	}
+	x[0] -= lnD
+	if err := r.at(x, make([]diffusion.Job, 1)); err != nil {
+		return 0, err
+	}
+	return b.fitMoved(0, []variant{r}, []float64{1}).ChiSq, nil
+}
+
+// among are those of the curve's deviations that are run.
+func (b *deviating) among(c *Curve, z []float64) []float64 {
+	_, all := c.split(z)
+	var out []float64
+	for _, d := range b.of {
+		out = append(out, all[slices.Index(c.By.Of, d)])
+	}
+	return out
 }
 
 // rectify adds a knot where deviations take the profile of the curve, and reports
@@ -367,12 +441,7 @@ func (b *deviating) rectify(ctx context.Context, c *Curve, law *LawPrior, z []fl
 		c.settleSlopes()
 	}
 	b.put(c.By)
-	_, off := c.split(z)
-	var at []float64
-	for _, d := range b.of {
-		at = append(at, off[slices.Index(c.By.Of, d)])
-	}
-	return math.Abs(b.fit(0, at).ChiSq-before) <= devError, nil
+	return math.Abs(b.fit(0, b.among(c, z)).ChiSq-before) <= devError, nil
 }
 
 // WithErrors counts the laws and other constants with errors, on which a path may lean.

@@ -198,29 +198,51 @@ func inEquilibrium(x, b float64) float64 {
 	return rim + (start-rim)*math.Erf(x/(2*math.Sqrt(srD(0)*coupleAge)))
 }
 
+// meltedData is inEquilibrium with noise, for B off by so many J/mol.
+func meltedData(b float64) (at, value []float64, csv string) {
+	rng := rand.New(rand.NewPCG(79, 1))
+	var data strings.Builder
+	data.WriteString("distance [um],Sr [ppm]\n")
+	for um2 := 0.5; um2 < 60; um2 += 1.5 {
+		v := inEquilibrium(um2*um, b) + 5*rng.NormFloat64()
+		at, value = append(at, um2*um), append(value, v)
+		fmt.Fprintf(&data, "%g,%.9g\n", um2, v)
+	}
+	return at, value, data.String()
+}
+
+// foretoldOnly is how the note begins that By is not right.
+const foretoldOnly = "with constants off, chi-square of Sr in A is foretold to"
+
 // What a zone started with and what a rim follows are off with B.
 func TestBIsOffInStartAndRim(t *testing.T) {
 	const sigma = 0.6e3 // J/mol, K by 7 %
-	for _, true_ := range []float64{1.5, -1.5} {
-		t.Run(fmt.Sprint(true_), func(t *testing.T) {
-			rng := rand.New(rand.NewPCG(79, 1))
-			var at, value []float64
-			var data strings.Builder
-			data.WriteString("distance [um],Sr [ppm]\n")
-			for um2 := 0.5; um2 < 60; um2 += 1.5 {
-				v := inEquilibrium(um2*um, true_*sigma) + 5*rng.NormFloat64()
-				at, value = append(at, um2*um), append(value, v)
-				fmt.Fprintf(&data, "%g,%.9g\n", um2, v)
-			}
-			o := &weighed(t, readStudy(t, fmt.Sprintf(melted, sigma/1e3), "sr.csv", data.String())).Paths[0].Outcome
-			o.wantDeviations(t, func(z, _ float64) float64 {
+	for _, off := range []float64{1.5, -1.5} {
+		t.Run(fmt.Sprint(off), func(t *testing.T) {
+			at, value, csv := meltedData(off * sigma)
+			p := &weighed(t, readStudy(t, fmt.Sprintf(melted, sigma/1e3), "sr.csv", csv)).Paths[0]
+			p.Outcome.wantDeviations(t, func(z, _ float64) float64 {
 				sum := 0.0
 				for i, x := range at {
 					sum += square((value[i] - inEquilibrium(x, z*sigma)) / 5)
 				}
 				return sum
 			}, len(at), true, false)
+			if notes := strings.Join(p.Profiles[0].Notes, "; "); strings.Contains(notes, foretoldOnly) {
+				t.Errorf("notes %q", notes)
+			}
 		})
+	}
+}
+
+// Where a constant is known so badly that what it does is no parabola, a note says so: K
+// goes with exp(B), here by 70 % a standard deviation.
+func TestWhatByCannotForetellIsSaid(t *testing.T) {
+	const sigma = 4.5e3
+	_, _, csv := meltedData(sigma)
+	p := &weighed(t, readStudy(t, fmt.Sprintf(melted, sigma/1e3), "sr.csv", csv)).Paths[0]
+	if notes := strings.Join(p.Profiles[0].Notes, "; "); !strings.Contains(notes, foretoldOnly) {
+		t.Errorf("notes %q", notes)
 	}
 }
 

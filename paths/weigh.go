@@ -275,10 +275,10 @@ func (w *weighing) path(ctx context.Context, i int) error {
 	if err := w.solve(ctx, &p, path); err != nil {
 		return fmt.Errorf("path %q%w", path.Name, err)
 	}
-	if err := p.deviate(ctx, w); err != nil {
+	if err := p.showShared(w); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
-	if err := p.showShared(w); err != nil {
+	if err := p.deviate(ctx, w); err != nil {
 		return fmt.Errorf("path %q: %w", path.Name, err)
 	}
 	if err := p.edgeOrigins(ctx, w, path); err != nil {

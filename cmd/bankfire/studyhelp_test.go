@@ -262,6 +262,7 @@ var beside = map[string][]string{
 	"law.host slope_of":                         {"ln_slope", ""},
 	"crystal.element.law.host slope_of":         {"ln_slope", ""},
 	"crystal.element.law like slope_sigma":      {"like", `like = "plagioclase-sr-giletti1994"`},
+	"crystal.element.law like at":               {"like", `like = "plagioclase-sr-giletti1994"`, "slope_sigma", "slope_sigma = 0.9"},
 	"family.vary choices":                       {"from", "", "to", ""},
 	"crystal.host width":                        {"smooth", `smooth = "spline"`},
 	"crystal.host.error size":                   {"column", "", "sigmas", ""},
@@ -272,7 +273,7 @@ var onHost = []string{"crystal.zones host", "crystal host_law", "crystal.element
 	"crystal.element.rim following following", "crystal.element.rim following melt",
 	"crystal.element.rim following temperature", "crystal.element.rim following value", "crystal.element.rim following k",
 	"crystal.element.rim following unit", "crystal.element.rim following from", "crystal.element.law.host ln_slope", "crystal.element.law.host slope_of", "crystal.element.law.host at",
-	"crystal.element.law like slope_sigma"}
+	"crystal.element.law like slope_sigma", "crystal.element.law like at"}
 
 // hosts gives a host to the zones that have none.
 var hosts = strings.NewReplacer(`"140 um" }`, `"140 um", host = 0.5 }`, `"60 um" }`, `"60 um", host = 0.4 }`)

@@ -96,6 +96,20 @@ func (d *decoder) likeSlope(n *node, law *Law) {
 	}
 }
 
+// heldAt reads the host in which D is held when the slope, of which n states the error,
+// is off.
+func (d *decoder) heldAt(at, n *node, law *Law) {
+	x := d.host(at)
+	switch {
+	case n == nil:
+		d.report(at, "the host in which D is held when its slope is off, of which no error is stated", "write slope_sigma too, or leave it out")
+	case law.onAHost():
+		law.HeldAbove = x - law.HostAt
+	default:
+		d.report(at, "this law depends on no host", "leave it out")
+	}
+}
+
 // shareSlopes gives every law the error that the study states elsewhere for its slope.
 func (d *decoder) shareSlopes(crystals []Crystal) {
 	for i := range crystals {

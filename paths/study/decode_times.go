@@ -26,6 +26,9 @@ func (d *decoder) like(n *node, c *Crystal, e *Element) Law {
 	if slope != nil && d.faults == before {
 		d.likeSlope(slope, &law)
 	}
+	if at := n.get("at"); at != nil && d.faults == before {
+		d.heldAt(at, slope, &law)
+	}
 	return law
 }
 

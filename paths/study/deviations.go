@@ -111,7 +111,8 @@ func (c *Crystal) Deviated(e *Element, of []Deviation, z []float64) (out *Elemen
 		case HostSlope:
 			by := z[k] * e.Law.HostSlopeSigma
 			off.Law.HostSlope += by
-			lnD += by * ((lo+hi)/2 - e.Law.HostAt)
+			off.Law.Law = scaled(off.Law.Law, -by*e.Law.HeldAbove)
+			lnD += by * ((lo+hi)/2 - e.Law.HostAt - e.Law.HeldAbove)
 		case OwnSlope:
 			by := z[k] * e.Law.OwnSlopeSigma
 			off.Law.OwnSlope += by

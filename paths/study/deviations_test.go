@@ -167,7 +167,18 @@ start = { zones = ["100 ppm", "70 ppm"], edge = "0 um" }
 			}
 		}
 	}
-	_, err := parse("s.toml", fmt.Appendf(nil, text, `{ like = `+giletti+`, slope_sigma = 0.9 }`, `{ like = `+costa+`, slope_sigma = 0.8 }`), nil)
+	s, err := parse("s.toml", fmt.Appendf(nil, text, `{ like = `+giletti+`, slope_sigma = 0.9, at = 0.5 }`, costa), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := &s.Crystals[0]
+	e := &c.Elements[0]
+	off, _ := c.Deviated(e, []Deviation{{"plagioclase-sr-giletti1994", HostSlope}}, []float64{2})
+	for i, x := range []float64{0.6, 0.4} {
+		lnD := func(e *Element) float64 { return e.Law.Law.LnD(1000) + math.Log(c.Factor(e, i)) }
+		near(t, "ln of what D changes by", lnD(off)-lnD(e), 2*0.9*(x-0.5))
+	}
+	_, err = parse("s.toml", fmt.Appendf(nil, text, `{ like = `+giletti+`, slope_sigma = 0.9 }`, `{ like = `+costa+`, slope_sigma = 0.8 }`), nil)
 	if err == nil || !strings.Contains(err.Error(), `another error of the slope of plagioclase-sr-giletti1994 than 0.9 in line 26`) {
 		t.Errorf("two errors of one slope: %v", err)
 	}

@@ -115,7 +115,7 @@ var tables = [...]Table{
 	directionTable:  {"crystal.element.law a", []string{"a", "b", "c", "ratio", "normal", "times"}},
 	switchTable:     {"crystal.element.law above", []string{"above", "below", "at", "times"}},
 	switchAtTable:   {"crystal.element.law.at", []string{"fO2", "temperature"}},
-	likeTable:       {"crystal.element.law like", []string{"like", "times", "slope_sigma"}},
+	likeTable:       {"crystal.element.law like", []string{"like", "times", "slope_sigma", "at"}},
 	startTable:      {"crystal.element.start", []string{"name", "zones", "melt", "solubility", "temperature", "scaled", "lowest", "highest", "smooth", "width", "edge", "unit"}},
 	heldTable:       {"crystal.element.rim held", []string{"held", "unit", "from"}},
 	givenTable:      {"crystal.element.rim given", []string{"given", "time", "temperature", "value", "counts", "k", "unit", "from"}},

@@ -177,8 +177,10 @@ type Law struct {
 	HostSlope, HostAt float64
 	// Where the element has the value C, D has the factor exp(OwnSlope (C - OwnAt)).
 	OwnSlope, OwnAt float64
-	// Standard deviations of the slopes, D at HostAt and OwnAt held; 0 if none is stated.
+	// Standard deviations of the slopes, D at HostAt, or as much above as HeldAbove says,
+	// and at OwnAt held; 0 if none is stated.
 	HostSlopeSigma, OwnSlopeSigma float64
+	HeldAbove                     float64
 	SlopeOf                       string            // the law whose HostSlope it is; "" is its own
 	Times                         thermal.Uncertain // the user's factor on D, which Law holds; its error is one beside Sigma; 0 is none
 	Fugacities                    []Fugacity        // under which Law holds, one a setting; nil if it does not depend on fO2
