@@ -51,13 +51,6 @@ func TestBrokenOff(t *testing.T) {
 	}
 }
 
-// inFolder is the program, to be run in a folder.
-func inFolder(dir string, args ...string) *exec.Cmd {
-	c := exec.Command("bankfire", args...)
-	c.Dir = dir
-	return c
-}
-
 // checkSays runs the command and compares its status, and what it says on the standard
 // error.
 func checkSays(t *testing.T, c *exec.Cmd, status int, want string) {

@@ -116,8 +116,13 @@ func (k *killing) whole(t *testing.T, out string) map[string][32]byte {
 }
 
 func (k *killing) command(out string, more ...string) *exec.Cmd {
-	c := exec.Command("bankfire", append([]string{"weigh", "study.toml", "--out", out, "--keep", "all"}, more...)...)
-	c.Dir = k.dir
+	return inFolder(k.dir, append([]string{"weigh", "study.toml", "--out", out, "--keep", "all"}, more...)...)
+}
+
+// inFolder is the program, to be run in a folder.
+func inFolder(dir string, args ...string) *exec.Cmd {
+	c := exec.Command("bankfire", args...)
+	c.Dir = dir
 	return c
 }
 

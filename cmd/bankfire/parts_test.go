@@ -1,10 +1,53 @@
 package main
 
 import (
+	"bytes"
+	"fmt"
+	"maps"
 	"math/rand/v2"
+	"path/filepath"
 	"slices"
+	"strconv"
 	"testing"
 )
+
+// TestSameBytes weighs a family of 16 blocks in several ways: whatever the number of jobs
+// and of parts, no byte of the results but of run.log differs.
+func TestSameBytes(t *testing.T) {
+	dir := t.TempDir()
+	study := filepath.Join(dir, "study.toml")
+	plantStudy(t, study, familyStudy(65_000), familyTraverse)
+	run := func(args ...string) {
+		t.Helper()
+		var said bytes.Buffer
+		if status := execute(commands(), append(args, "--keep", "all", "--quiet"), streams{nil, &said, &said}); status != done || said.Len() > 0 {
+			t.Fatalf("%q: status %d, said %q", args, status, said.String())
+		}
+	}
+	run("weigh", study, "--out", filepath.Join(dir, "whole"), "--jobs", "1")
+	want := hashes(t, filepath.Join(dir, "whole"))
+	for _, jobs := range []int{2, 4} {
+		out := filepath.Join(dir, strconv.Itoa(jobs)+" jobs")
+		run("weigh", study, "--out", out, "--jobs", strconv.Itoa(jobs))
+		if !maps.Equal(hashes(t, out), want) {
+			t.Errorf("other results with %d jobs", jobs)
+		}
+	}
+	for _, n := range []int{1, 4, 16} {
+		out := filepath.Join(dir, strconv.Itoa(n)+" parts")
+		for k := n; k > 0; k-- {
+			run("weigh", study, "--out", out, "--part", fmt.Sprintf("%d/%d", k, n), "--jobs", strconv.Itoa(1+k%3))
+		}
+		var said bytes.Buffer
+		args := []string{"gather", study, out + partsSuffix, "--out", out, "--quiet"}
+		if status := execute(commands(), args, streams{nil, &said, &said}); status != done || said.Len() > 0 {
+			t.Fatalf("%q: status %d, said %q", args, status, said.String())
+		}
+		if !maps.Equal(hashes(t, out), want) {
+			t.Errorf("other results of %d parts", n)
+		}
+	}
+}
 
 // TestShares has the shares of runs of all sizes follow each other without a gap, and
 // none larger than another by more than a block.

@@ -14,11 +14,12 @@ type parquetTable struct {
 	rows    []parquet.Row // that wait to be written
 }
 
-// How many rows are compressed together, and how many handed over at a time. Both show
-// in the bytes.
+// How many rows stand together, how many are handed over at a time, and how many bytes of
+// a column are compressed at once. All show in the bytes, and more of the last in the memory.
 const (
 	groupRows = 1 << 16
 	batchRows = 1 << 9
+	pageBytes = 1 << 16
 )
 
 // Parquet is one table of optional columns, in groups of 65536 rows, with numbers in
@@ -28,6 +29,7 @@ func Parquet(w io.Writer, columns []Column) Table {
 		parquet.NewSchema("members", newSchema(columns)),
 		parquet.Compression(&zstd.Codec{Level: zstd.SpeedFastest}),
 		parquet.MaxRowsPerRowGroup(groupRows),
+		parquet.PageBufferSize(pageBytes),
 		parquet.CreatedBy("bankfire", "1", "1"),
 	)}
 }
