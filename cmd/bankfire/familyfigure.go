@@ -67,7 +67,8 @@ func familyShown(r *paths.Result, i int) *figure.Family {
 	for _, t := range r.Study.Thresholds {
 		out.Thresholds = append(out.Thresholds, figure.Threshold{Name: t.Name, Temp: t.Temp})
 	}
-	kept, all := drawnMembers(f, f.Shown.Reproduces), drawnMembers(f, f.Shown.Drawn)
+	kept, all := sampledMembers(f), drawnMembers(f, f.Shown.Drawn)
+	dots := slices.Concat(all, drawnMembers(f, f.Shown.Reproduces))
 	out.Temps = familyTemps(kept, all)
 	out.Kept, out.All = durationBand(kept, out.Temps), durationBand(all, out.Temps)
 	every := 1 + (len(kept)-1)/mostTraces
@@ -77,14 +78,24 @@ func familyShown(r *paths.Result, i int) *figure.Family {
 	if best := f.Best(); best >= 0 && len(kept) > 0 {
 		out.Best = drawnTrace(r.Paths[f.Path].Path.History)
 	}
-	for _, m := range slices.Concat(all, kept) {
+	for _, m := range dots {
 		out.Stores = append(out.Stores, figure.Store{Life: m.history.Eruption(), Temp: halfTemp(m.history), Reproduces: m.Verdict == paths.Reproduces})
 	}
 	out.Equal, out.Said = equalLines(f, kept, out.Temps)
 	for k := range f.Family.Values {
-		out.Values = append(out.Values, drawnValue(f, k, slices.Concat(all, kept)))
+		out.Values = append(out.Values, drawnValue(f, k, dots))
 	}
 	return out
+}
+
+// sampledMembers draws the sample of those that reproduce again, of which the report's
+// duration curve is too.
+func sampledMembers(f *paths.FamilyResult) []drawnMember {
+	var rows []paths.Row
+	for _, i := range f.Tally.Sample() {
+		rows = append(rows, paths.Row{Index: i, Verdict: paths.Reproduces})
+	}
+	return drawnMembers(f, rows)
 }
 
 // drawnMembers draws members again, without those that are barred.
@@ -138,7 +149,7 @@ func durationBand(members []drawnMember, temps []float64) (b figure.Band) {
 		}
 		slices.Sort(times)
 		for k, part := range []float64{0.05, 0.5, 0.95} {
-			b[k] = append(b[k], times[int(part*float64(len(times)-1)+0.5)])
+			b[k] = append(b[k], times[int(math.Ceil(part*float64(len(times))))-1])
 		}
 	}
 	return b
@@ -194,14 +205,17 @@ func equalLines(f *paths.FamilyResult, kept []drawnMember, temps []float64) (lin
 		if len(kept) == 0 || !f.Methods[n].Table {
 			continue
 		}
+		name := of.Element.Name + " in " + of.Crystal.Name
+		names = append(names, name)
+		if of.Crystal.Exists != nil { // it does not see the whole life
+			continue
+		}
 		law := of.Element.Law.Law
 		var lnG []float64
 		for k := range kept {
 			lnG = append(lnG, law.LnIntegral(kept[k].history, 0, kept[k].history.Life()))
 		}
 		slices.Sort(lnG)
-		name := of.Element.Name + " in " + of.Crystal.Name
-		names = append(names, name)
 		line := func(lnG float64, name string, light bool) {
 			e := figure.Equal{Name: name, Light: light, Temp: temps}
 			for _, temp := range temps {
@@ -218,11 +232,19 @@ func equalLines(f *paths.FamilyResult, kept []drawnMember, temps []float64) (lin
 		line(middle, "as those that reproduce", false)
 		line(middle+math.Log(10), "ten times", true)
 	}
-	if len(names) > 0 {
-		said = list(names) + " can tell of a path only how much it diffused in all: not the order of its heatings, nor whether it was " +
-			"cooler for longer."
+	return lines, onlyHowMuch(names)
+}
+
+// onlyHowMuch says what elements that know a path by its diffusion integral cannot tell. Several
+// of them, each with an integral of its own, can tell hot from long together.
+func onlyHowMuch(names []string) string {
+	switch len(names) {
+	case 0:
+		return ""
+	case 1:
+		return names[0] + " can tell of a path only how much it diffused in all: not the order of its heatings, nor whether it was cooler for longer."
 	}
-	return lines, said
+	return list(names) + " can each tell of a path only how much they diffused in all: not the order of its heatings."
 }
 
 // drawnValue is value k against the chi-square of members.
@@ -231,8 +253,8 @@ func drawnValue(f *paths.FamilyResult, k int, members []drawnMember) figure.Valu
 	unit, zero, size := usualUnit(v)
 	ends := drawnEnds(v, &f.Summary.Values[k])
 	out := figure.Value{Name: v.Name, Lo: (ends[0] - zero) / size, Hi: (ends[1] - zero) / size, Log: v.Log, Years: unit == "yr", Unit: unit}
-	if unit == "C" {
-		out.Unit = "°C"
+	if printed, ok := map[string]string{"C": "°C", "um": "µm"}[unit]; ok {
+		out.Unit = printed
 	}
 	for i := range members {
 		m := &members[i]

@@ -107,6 +107,9 @@ store = { choices = ["750 C", "751 C"] }
 	if !strings.Contains(f.Said, "Ti in HF-1") || !strings.Contains(f.Said, "not the order of its heatings") {
 		t.Errorf("said: %q", f.Said)
 	}
+	if two := onlyHowMuch([]string{"Ti in A", "Sr in B"}); strings.Contains(two, "cooler") || !strings.HasPrefix(two, "Ti in A and Sr in B can each") {
+		t.Errorf("of two elements, which know hot from long together: %q", two)
+	}
 	if len(f.Values) != 1 || math.Abs(f.Values[0].Lo-750) > 1e-9 || math.Abs(f.Values[0].Hi-751) > 1e-9 || f.Values[0].Unit != "°C" || len(f.Values[0].Dots) != 4 {
 		t.Errorf("value %+v", f.Values)
 	}
