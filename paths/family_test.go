@@ -32,6 +32,12 @@ traverse = { file = "ti.csv", position = "x [um]", zero = "centre", value = "Ti 
 // a rim that only steps can follow, and with the paths given.
 func familyStudy(t *testing.T, count int, rim, paths string) *study.Study {
 	t.Helper()
+	return familyStudyOf(t, familyCrystal, count, rim, paths)
+}
+
+// familyStudyOf is the same with another crystal.
+func familyStudyOf(t *testing.T, crystal string, count int, rim, paths string) *study.Study {
+	t.Helper()
 	text := `[[threshold]]
 name = "hot"
 temperature = "760 C"
@@ -43,7 +49,7 @@ legs = [ { name = "store", hold = "{store}", for = "{wait}" }, { name = "wake", 
 store = { from = "620 C", to = "780 C" }
 wait = { from = "1 yr", to = "100 kyr", spread = "log" }
 dwell = { choices = ["1 yr", "10 yr"] }
-` + paths + strings.Replace(familyCrystal, "RIM", rim, 1)
+` + paths + strings.Replace(crystal, "RIM", rim, 1)
 	dir := t.TempDir()
 	data := "x [um],Ti [ppm]\n20,98\n26,101\n30,99\n34,97\n36,92\n38,86\n39,79\n40,74\n41,69\n42,63\n44,57\n46,53\n50,51\n54,48\n"
 	for name, text := range map[string]string{"study.toml": text, "ti.csv": data} {
@@ -337,5 +343,17 @@ func TestTableIsAudited(t *testing.T) {
 	}
 	if !(stated <= errorAim) || !(stated >= fine/2) {
 		t.Errorf("the table states %v, want up to %v and about %v", stated, errorAim, fine)
+	}
+}
+
+// TestStandInOfWhatExisted: the stand-in temperature of a member is that of its path as
+// the crystal saw it, which only existed in the end.
+func TestStandInOfWhatExisted(t *testing.T) {
+	crystal := strings.Replace(familyCrystal, "shape =", "exists_from = \"end of store\"\nshape =", 1)
+	r, rows := screened(t, familyStudyOf(t, crystal, 6, heldRim, ""), 2)
+	f := &r.Families[0]
+	best, of := &rows[f.Best()], &r.Paths[f.Path].Profiles[0]
+	if best.Verdict != Reproduces || !(math.Abs(best.StandIn[0]-of.StandIn) <= 2*standInResolution) {
+		t.Errorf("%v, stand-in temperature %v, of its path %v", best.Verdict, best.StandIn, of.StandIn)
 	}
 }

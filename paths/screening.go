@@ -265,11 +265,11 @@ type work struct {
 
 // begin begins a block of n members.
 func (w *work) begin(e *engine, b *Block, n int) {
-	if w.members == nil {
-		w.members = make([]member, BlockSize)
+	if cap(w.members) < n {
+		w.members = make([]member, n)
 	}
 	values, above, elements := len(e.family.Values), len(e.study.Thresholds), len(e.elements)
-	if size := BlockSize * (values + above + elements); len(w.numbers) < size {
+	if size := n * (values + above + elements); len(w.numbers) < size {
 		w.numbers = make([]float64, size)
 	}
 	w.engine, w.block, w.whole, w.err, w.left = e, b, make(chan struct{}), nil, n

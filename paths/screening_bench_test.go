@@ -30,10 +30,25 @@ dwell = { from = "5 yr", to = "30 yr" }
 efold = { from = "5 yr", to = "20 yr" }
 `
 
+// twoLegs is a family of a store and a ramp from it.
+const twoLegs = `[[family]]
+name = "ramped"
+draw = { method = "halton", count = COUNT }
+legs = [ { hold = "{store}", for = "{life}" }, { ramp = "{peak}", for = "{rise}" } ]
+[family.vary]
+life = { from = "1000 yr", to = "3000 yr" }
+store = { from = "675 C", to = "705 C" }
+peak = { from = "750 C", to = "800 C" }
+rise = { from = "1 yr", to = "80 yr" }
+`
+
+// tenfold makes the reheatings ten: 31 legs.
+var tenfold = strings.NewReplacer("wakes = { from = 3, to = 12 }\n", "", `"{wakes}"`, "10", "{wakes} * 80 yr", "800 yr")
+
 // reheatedStudy is a study of a traverse with 60 points, spread by 4 um, and that family, of so many members.
-func reheatedStudy(b *testing.B, count int) *study.Study {
+func reheatedStudy(b *testing.B, family string, count int) *study.Study {
 	b.Helper()
-	text := strings.Replace(reheated, "COUNT", strconv.Itoa(count), 1) + strings.Replace(familyCrystal, "RIM", `{ held = "mantle" }`, 1)
+	text := strings.Replace(family, "COUNT", strconv.Itoa(count), 1) + strings.Replace(familyCrystal, "RIM", `{ held = "mantle" }`, 1)
 	var data strings.Builder
 	data.WriteString("x [um],Ti [ppm]\n")
 	for i := range 60 {
@@ -57,8 +72,22 @@ func reheatedStudy(b *testing.B, count int) *study.Study {
 // BenchmarkScreening is what a member takes where the diffusion integral is enough: it is drawn, built, integrated, judged by
 // the table and counted. It also holds that time to steps of the reference kernel.
 func BenchmarkScreening(b *testing.B) {
-	const members, limit = 512, 1.6 // few members, so that a busy machine leaves some measurements alone
-	screening, err := NewScreening(b.Context(), reheatedStudy(b, members), ScreenOptions{})
+	for _, test := range []struct {
+		name, family string
+		limit        float64
+	}{
+		{"legs=2", twoLegs, 1},
+		{"legs=31", tenfold.Replace(reheated), 2},
+		{"legs=10-37", reheated, 1.6},
+	} {
+		b.Run(test.name, func(b *testing.B) { screeningSteps(b, test.family, test.limit) })
+	}
+}
+
+// screeningSteps screens the family and holds a member to so many steps of the reference kernel.
+func screeningSteps(b *testing.B, family string, limit float64) {
+	const members = 512 // few, so that a busy machine leaves some measurements alone
+	screening, err := NewScreening(b.Context(), reheatedStudy(b, family, members), ScreenOptions{})
 	if err != nil {
 		b.Fatal(err)
 	}
@@ -87,7 +116,7 @@ func BenchmarkScreening(b *testing.B) {
 
 // BenchmarkMember is the parts of it.
 func BenchmarkMember(b *testing.B) {
-	s := reheatedStudy(b, 100_000)
+	s := reheatedStudy(b, reheated, 100_000)
 	f, law := &s.Families[0], s.Crystals[0].Elements[0].Law.Law
 	var c study.Candidate
 	i := int64(0)
