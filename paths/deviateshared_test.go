@@ -365,3 +365,70 @@ func TestDeviationsBesideARedrawnHost(t *testing.T) {
 		t.Errorf("%s with %g, with errors %+v", o.Verdict, o.Misfit, o.WithLaws)
 	}
 }
+
+// n copies of a crystal have n times the chi-square of one. With the law's error, which
+// is one for all, they have that of one parabola n times as deep: about at, of width s,
+//
+//	n floor + at^2/(s^2/n + S^2).
+func TestLeaningOfCopies(t *testing.T) {
+	const floor, at, width, byD = 19.0, 1.5, 0.3, 0.6
+	one := on(1, [2]float64{}, bowl(floor, at, width, 22, 2))
+	for _, n := range []int{1, 2, 5} {
+		var cs []Curve
+		for k := range n {
+			c := one
+			c.Crystal = k
+			cs = append(cs, c)
+		}
+		var o Outcome
+		Judge(&o, cs, []LawPrior{{Key: "a", LnD: byD}}, 0.95)
+		near(t, "chi-square", o.Misfit, float64(n)*(floor+square(at/width)), 1e-9)
+		near(t, "chi-square with errors", o.WithLaws.Misfit, float64(n)*floor+at*at/(width*width/float64(n)+byD*byD), leanChiSq)
+	}
+}
+
+// A true path passes with errors allowed for as often as is said, or more often, where
+// the constants are off by as much as their errors say: a slope that three crystals have
+// in common, and ln D of a law of each. With one of them taken as exact it does not.
+func TestErrorsOfConstantsKeepThePromise(t *testing.T) {
+	const (
+		draws, points, width, byD, slope = 600, 20, 0.1, 0.3, 2.0
+		confidence                       = 0.95
+		slack                            = 3.3 // standard deviations of a rate
+	)
+	rng := rand.New(rand.NewPCG(81, 1))
+	host := [3]float64{0.1, 0.3, 0.5}
+	shared := study.Deviation{Of: "sr", What: study.HostSlope}
+	passed, exactly := 0, 0
+	for range draws {
+		z := rng.NormFloat64()
+		var with, without []Curve
+		var laws []LawPrior
+		for k, x := range host {
+			// all points but one scatter about the best fit, that one is what the amount of diffusion is known by
+			floor := 0.0
+			for range points - 1 {
+				floor += square(rng.NormFloat64())
+			}
+			c := bowl(floor, byD*rng.NormFloat64()+slope*x*z+width*rng.NormFloat64(), width, points, 0)
+			c.Crystal, c.Law = k, k+1
+			without = append(without, c)
+			c.By = &By{Of: []study.Deviation{shared}, Shift: []float64{slope * x}}
+			with = append(with, c)
+			laws = append(laws, LawPrior{Key: fmt.Sprint(k), LnD: byD})
+		}
+		var o Outcome
+		Judge(&o, with, laws, confidence)
+		passed += oneIf(o.WithLaws.Verdict == Reproduces)
+		Judge(&o, without, laws, confidence)
+		exactly += oneIf(o.WithLaws.Verdict == Reproduces)
+	}
+	rate := float64(passed) / draws
+	if least := confidence - slack*math.Sqrt(confidence*(1-confidence)/draws); !(rate >= least) {
+		t.Errorf("%.3f pass, want %.3f or more", rate, least)
+	}
+	if !(float64(exactly) < 0.8*draws) {
+		t.Errorf("with the slope as exact %d of %d pass, want fewer than 80 %%", exactly, draws)
+	}
+	t.Logf("%.3f pass, with the slope as exact %.3f", rate, float64(exactly)/draws)
+}
