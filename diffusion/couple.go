@@ -52,6 +52,8 @@ type hostGrid struct {
 
 	panels []atomic.Pointer[panel] // by 1/T, made when first asked for
 	width  float64                 // of each, 1/K
+	wide   []atomic.Pointer[panel] // over so many panels each, which are made from them; nil if over one
+	over   int
 }
 
 func (p *Problem) layHost(g *grid) *hostGrid {
@@ -206,6 +208,7 @@ const (
 	// leastPanels keeps each narrow beside the 1/T it is at, for an ln K that is
 	// not linear in 1/T, and mostPanels their number.
 	leastPanels, mostPanels = 100, 1000
+	mostOver                = 12 // panels in a wide one
 )
 
 // panelOrder is the order of the nodes in the Newton forms: each far from those
@@ -228,6 +231,9 @@ func (h *hostGrid) layPanels(lnK func(x, temp float64) float64) {
 		n := min(max(int(math.Ceil(moves/shortReach)), leastPanels), mostPanels)
 		h.panels = make([]atomic.Pointer[panel], n)
 		h.width = 1 / coldestPanel / float64(n)
+		if h.over = int(math.Min(panelReach*float64(n)/moves, mostOver)); h.over > 1 {
+			h.wide = make([]atomic.Pointer[panel], (n+h.over-1)/h.over)
+		}
 	}
 }
 
@@ -240,45 +246,100 @@ func (h *hostGrid) panelAt(lnK func(x, temp float64) float64, coldness float64) 
 	}
 	at := h.panels[i].Load()
 	if at == nil {
-		at = h.newPanel(lnK, float64(i)*h.width)
+		at = h.newPanel(lnK, i)
 		h.panels[i].Store(at) // another goroutine may do the same, to the bit
 	}
-	if at.short == nil && at.long == nil {
+	if !at.fits() {
 		return nil
 	}
 	return at
 }
 
-// newPanel returns the panel that begins at a value of 1/T, one without
-// polynomials if they are no good.
-func (h *hostGrid) newPanel(lnK func(x, temp float64) float64, from float64) *panel {
-	values := make([]float64, 2*len(h.x)+3)
-	at := &panel{long: make([][panelNodes]float64, len(values))}
-	for j, place := range panelOrder {
-		at.nodes[j] = from + h.width/2*(1-math.Cos(math.Pi*(place+0.5)/panelNodes))
-		h.evaluate(values, lnK, 1/at.nodes[j])
+// fits reports whether the panel has polynomials.
+func (at *panel) fits() bool { return at.short != nil || at.long != nil }
+
+// newPanel returns panel i, one without polynomials if they are no good: made from the
+// wide one that it lies in, where that is good and few terms do.
+func (h *hostGrid) newPanel(lnK func(x, temp float64) float64, i int) *panel {
+	from := float64(i) * h.width
+	exactly := func(dst []float64, coldness float64) { h.evaluate(dst, lnK, 1/coldness) }
+	if h.wide != nil {
+		if wide := h.wideAt(exactly, i/h.over); wide.fits() {
+			if at := h.fitFew(wide, from); at.fits() {
+				return at
+			}
+		}
+	}
+	return h.fit(exactly, from, h.width)
+}
+
+// fitFew returns the panel that begins at a value of 1/T, made from the wide one around
+// it; one without polynomials if few terms will not do.
+func (h *hostGrid) fitFew(wide *panel, from float64) *panel {
+	n := 2*len(h.x) + 3
+	values, tried := make([]float64, n), make([]float64, n)
+	at := &panel{short: make([][shortForm]float64, n)}
+	at.place(from, h.width)
+	for j := range shortForm {
+		wide.read(values, at.nodes[j])
 		at.add(j, values)
+	}
+	middle := from + h.width/2 // few terms are worst there, and what the wide one is right for has no surprises elsewhere
+	wide.read(values, middle)
+	if at.read(tried, middle); !same(tried, values) {
+		return &panel{}
+	}
+	return at
+}
+
+// wideAt returns a wide panel.
+func (h *hostGrid) wideAt(exactly func([]float64, float64), i int) *panel {
+	at := h.wide[i].Load()
+	if at == nil {
+		width := h.width * float64(h.over)
+		at = h.fit(exactly, float64(i)*width, width)
+		h.wide[i].Store(at)
+	}
+	return at
+}
+
+// fit returns a panel that begins at a value of 1/T, of a width, for what values gives,
+// one without polynomials if they are no good.
+func (h *hostGrid) fit(values func(dst []float64, coldness float64), from, width float64) *panel {
+	v := make([]float64, 2*len(h.x)+3)
+	at := &panel{long: make([][panelNodes]float64, len(v))}
+	at.place(from, width)
+	for j := range panelNodes {
+		values(v, at.nodes[j])
+		at.add(j, v)
 		if j+1 == shortForm {
-			if at.shorten(); at.good(h, lnK, from) {
+			if at.shorten(); at.good(values, from, width) {
 				at.long = nil
 				return at
 			}
 			at.short = nil
 		}
 	}
-	if at.good(h, lnK, from) {
+	if at.good(values, from, width) {
 		return at
 	}
 	return &panel{}
 }
 
-// good tries the panel that begins at a value of 1/T.
-func (at *panel) good(h *hostGrid, lnK func(x, temp float64) float64, from float64) bool {
-	values, tried := make([]float64, 2*len(h.x)+3), make([]float64, 2*len(h.x)+3)
+// place lays the nodes of a panel that begins at a value of 1/T, of a width.
+func (at *panel) place(from, width float64) {
+	for j, place := range panelOrder {
+		at.nodes[j] = from + width/2*(1-math.Cos(math.Pi*(place+0.5)/panelNodes))
+	}
+}
+
+// good tries the panel that begins at a value of 1/T, of a width.
+func (at *panel) good(values func(dst []float64, coldness float64), from, width float64) bool {
+	v, tried := make([]float64, len(at.long)), make([]float64, len(at.long))
 	for _, part := range []float64{0.001, 0.5, 1} { // not 0, where the first begins
-		coldness := from + part*h.width
-		h.evaluate(values, lnK, 1/coldness)
-		if at.read(tried, coldness); !same(tried, values) {
+		coldness := from + part*width
+		values(v, coldness)
+		if at.read(tried, coldness); !same(tried, v) {
 			return false
 		}
 	}
@@ -298,12 +359,20 @@ func same(a, b []float64) bool {
 // add takes in the values at node j.
 func (at *panel) add(j int, values []float64) {
 	for i, v := range values {
-		form := &at.long[i]
+		form := at.form(i)
 		for m := range j { // v becomes the divided difference of nodes 0 to m and j
 			v = (v - form[m]) / (at.nodes[j] - at.nodes[m])
 		}
 		form[j] = v
 	}
+}
+
+// form is the terms of value i.
+func (at *panel) form(i int) []float64 {
+	if at.long == nil {
+		return at.short[i][:]
+	}
+	return at.long[i][:]
 }
 
 // shorten leaves the last terms out.

@@ -109,8 +109,12 @@ func (p *Plan) Course(dst *Course, h *thermal.History, until float64) error {
 		from = to
 	}
 	if len(p.problem.Moves) > 0 && p.halved != nil {
+		half, err := p.halved()
+		if err != nil {
+			return err
+		}
 		dst.halved = new(Course)
-		return p.halved.Course(dst.halved, h, until)
+		return half.Course(dst.halved, h, until)
 	}
 	return nil
 }

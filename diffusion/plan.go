@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"sync"
 )
 
 // Options choose the plan. The zero value is the program's own.
@@ -35,9 +36,13 @@ type Plan struct {
 	own     *ownTable   // nil where D does not follow the element
 	steps   schedule    // between two events
 	events  []float64   // s, ascending: times after 0 at which the solution is damped anew
-	halved  *Plan       // on half the cells; nil in a halved plan itself
+	halved  halving     // nil in a halved plan itself, and where the faces do not pair up
 	rough   schedule    // half the steps
 }
+
+// halving lays the plan on half the cells when it is first asked for: only what measures
+// errors does.
+type halving func() (*Plan, error)
 
 // Compile checks the problem and lays its plan.
 func Compile(p *Problem, o Options) (*Plan, error) {
@@ -59,9 +64,7 @@ func Compile(p *Problem, o Options) (*Plan, error) {
 	if half := everySecond(p, faces); half != nil {
 		thick := *p
 		thick.thick = true
-		if plan.halved, err = compile(&thick, half, steps); err != nil {
-			return nil, err
-		}
+		plan.halved = sync.OnceValues(func() (*Plan, error) { return compile(&thick, half, steps) })
 	}
 	return plan, nil
 }

@@ -1,6 +1,9 @@
 package diffusion
 
-import "slices"
+import (
+	"slices"
+	"sync"
+)
 
 // Retimed returns the plan for a problem that differs from its own in times alone: when
 // zones were added, from when rims are in force, and what rims do that are given as
@@ -26,12 +29,18 @@ func (p *Plan) Retimed(q *Problem) (plan *Plan, ok bool) {
 	}
 	out.events = q.events()
 	if p.halved != nil {
-		halved := *p.halved
-		halved.problem, halved.stages, halved.events = q, slices.Clone(p.halved.stages), out.events
-		for s := range halved.stages {
-			halved.stages[s].from = out.stages[s].from
-		}
-		out.halved = &halved
+		out.halved = sync.OnceValues(func() (*Plan, error) {
+			half, err := p.halved()
+			if err != nil {
+				return nil, err
+			}
+			halved := *half
+			halved.problem, halved.stages, halved.events = q, slices.Clone(half.stages), out.events
+			for s := range halved.stages {
+				halved.stages[s].from = out.stages[s].from
+			}
+			return &halved, nil
+		})
 	}
 	return &out, true
 }

@@ -92,6 +92,10 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 	if p.halved == nil {
 		return fmt.Errorf("diffusion: the faces do not pair up, so the error of the cells cannot be measured")
 	}
+	half, err := p.halved()
+	if err != nil {
+		return err
+	}
 	if err := p.checkJobs([]Job{job}); err != nil {
 		return err
 	}
@@ -112,7 +116,7 @@ func (p *Plan) Audit(dst *Field, job Job) error {
 	if job.Course.halved != nil {
 		job.Course = job.Course.halved
 	}
-	p.halved.runOne(dst.other, job, false)
+	half.runOne(dst.other, job, false)
 	for j, c := range dst.Cols {
 		p.cellError(dst.CellErr[j], c, dst.other.Cols[j], gain)
 		p.addJumps(dst.CellErr[j], dst, whole, j)
