@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"bankfire/thermal/numeric"
@@ -33,6 +34,7 @@ func TestLegsComeAgain(t *testing.T) {
 		for _, back := range h.again {
 			found += back
 		}
+		rangeAndJumps(t, h)
 		e, k, temp := between(r, -5000, 80000), r.IntN(2), between(r, 700, 1500)
 		first, last := r.IntN(10), 10+r.IntN(20)
 		t0, t1 := h.Start(first)+between(r, 0, 0.9)*h.legs[first].For, h.Start(last)+between(r, 0.1, 1)*h.legs[last].For
@@ -64,5 +66,26 @@ func TestLegsComeAgain(t *testing.T) {
 	}
 	if found < 1000 {
 		t.Errorf("legs came again %d legs later in all; the test would not see much", found)
+	}
+}
+
+// rangeAndJumps compares both with what each leg says for itself.
+func rangeAndJumps(t *testing.T, h *History) {
+	t.Helper()
+	lo, hi := math.Inf(1), math.Inf(-1)
+	for i := range h.legs {
+		a, b := h.legs[i].Range()
+		lo, hi = min(lo, a), max(hi, b)
+	}
+	if a, b := h.Range(); a != lo || b != hi {
+		t.Errorf("from %g to %g K, want %g to %g K", a, b, lo, hi)
+	}
+	jumps := h.Jumps(nil, 1e-3)
+	for i := 1; i < len(h.legs); i++ {
+		before, after := h.legs[i-1].before(math.Inf(1)), h.legs[i].At(0)
+		want := math.Abs(1/before-1/after) > 1e-3*(1/lo-1/hi)
+		if got := slices.Contains(jumps, h.Start(i)); got != want {
+			t.Errorf("from %g to %g K at the start of leg %d: jump %t, want %t", before, after, i, got, want)
+		}
 	}
 }

@@ -212,12 +212,18 @@ func (h *History) Jumps(dst []float64, part float64) []float64 {
 			dst = append(dst, t)
 		}
 	}
+	var last [memory][2]float64 // where the legs before begin and end, K, by place
 	for i := range h.legs {
-		l := &h.legs[i]
-		if l.For == 0 {
+		l, this, back := &h.legs[i], &last[i%memory], h.again[i]
+		switch {
+		case l.For == 0:
 			continue
+		case back > 0:
+			*this = last[(i-back)%memory]
+		default:
+			*this = [2]float64{l.At(0), l.before(math.Inf(1))}
 		}
-		put(h.starts[i], l.At(0))
+		put(h.starts[i], this[0])
 		if r := l.Rows; l.Kind == Table {
 			for j := 1; j+1 < len(r.Time) && r.Time[j] < l.For; j++ {
 				if t := r.Time[j]; t > 0 && t == r.Time[j-1] && t != r.Time[j+1] {
@@ -226,7 +232,7 @@ func (h *History) Jumps(dst []float64, part float64) []float64 {
 				}
 			}
 		}
-		before = l.before(math.Inf(1))
+		before = this[1]
 	}
 	return dst
 }
@@ -235,7 +241,7 @@ func (h *History) Jumps(dst []float64, part float64) []float64 {
 func (h *History) Range() (lo, hi float64) {
 	lo, hi = math.Inf(1), math.Inf(-1)
 	for i := range h.legs {
-		if l := &h.legs[i]; l.For > 0 {
+		if l := &h.legs[i]; l.For > 0 && h.again[i] == 0 {
 			a, b := l.Range()
 			lo, hi = min(lo, a), max(hi, b)
 		}
