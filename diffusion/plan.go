@@ -161,7 +161,7 @@ func (o Options) schedule(p *Problem) (schedule, error) {
 // everySecond returns every second face, or nil where a zone boundary or end
 // would be lost (faces chosen by the caller).
 func everySecond(p *Problem, faces []float64) []float64 {
-	var half []float64
+	half := make([]float64, 0, len(faces)/2+1)
 	for i := 0; i < len(faces); i += 2 {
 		half = append(half, faces[i])
 	}
