@@ -152,29 +152,11 @@ func TestIn(t *testing.T) {
 
 // TestSwitchedRim: the means of a rim value along a law that switches are those of closed forms.
 func TestSwitchedRim(t *testing.T) {
-	const tol = 1e-7 // see TestRimMeans
-	const a, b = 8.0, 6000.0
-	bound := 1000.0
+	const bound = 1000.0
 	plain := testLaw.Terms[0]
 	law := Law{Terms: []Arrhenius{plain, {LnA: plain.LnA + 1, E: plain.E}}, Where: []thermal.Window{{Below: bound}, {Above: bound}}}
-	shifted := Law{Terms: []Arrhenius{{plain.LnA + a, plain.E + b}, {plain.LnA + 1 + a, plain.E + b}}, Where: law.Where}
 	for name, h := range longHistories(t) {
-		t.Run(name, func(t *testing.T) {
-			given := &Given{At: func(at float64) float64 { temp, _ := h.At(at); return math.Exp(a - b/temp) }}
-			p := &Problem{Zones: []Zone{{Outer: testSize}}, Law: law, Outer: []Rim{{Kind: Prescribed, Given: given}}}
-			plan := newPlan(t, p, Options{})
-			got := newCourse(t, plan, h).spans[0].outer.value.fine
-			times := stepTimes(plan, h)
-			for i := range got {
-				if i+1 < len(got) && times[i+1] <= times[i] || plan.steps[i].euler && i > len(got)/2 {
-					continue // no time in the step, or a value led to its end
-				}
-				want := math.Exp(shifted.LnIntegral(h, times[i], times[i+1]) - law.LnIntegral(h, times[i], times[i+1]))
-				if diff := math.Abs(got[i]/want - 1); !(diff <= tol) {
-					t.Fatalf("step %d of %d: mean %.12g, want %.12g, relative difference %.2g", i, len(got), got[i], want, diff)
-				}
-			}
-		})
+		t.Run(name, func(t *testing.T) { wantRimMeans(t, law, h) })
 	}
 }
 
