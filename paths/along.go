@@ -32,8 +32,8 @@ func (p *profile) along(m *element, path *study.Path) (ok bool, err error) {
 		return false, err
 	}
 	p.path = path
-	for i := range p.runs {
-		if ok, err = p.runs[i].along(withEdges(problem, p.lens.edges[i]), p.history); !ok {
+	for i, widths := range p.lens.edges.runs() {
+		if ok, err = p.runs[i].along(withEdges(problem, widths), p.history); !ok {
 			return false, err
 		}
 	}
@@ -41,7 +41,7 @@ func (p *profile) along(m *element, path *study.Path) (ok bool, err error) {
 		if problem, _, err = m.hosts[i].Problem(m.element, path.History); err != nil {
 			return false, err
 		}
-		if ok, err = p.redrawn[i].along(withEdges(problem, p.lens.edges[p.middle()]), p.history); !ok {
+		if ok, err = p.redrawn[i].along(withEdges(problem, p.lens.edges.middles()), p.history); !ok {
 			return false, err
 		}
 	}

@@ -18,7 +18,7 @@ func TestBelowZero(t *testing.T) {
 		t.Fatalf("a sound path is %g below zero, settled %t", r.BelowZero, r.Settled)
 	}
 	a := amounts{scale: 1, values: []float64{-3, 5}} // the core is at -3 ppm
-	if got := p.belowZero(0, a); !(got > 2.9 && got <= 3) {
+	if got := p.belowZero([]float64{0}, a); !(got > 2.9 && got <= 3) {
 		t.Errorf("a core at -3 ppm is %g below zero", got)
 	}
 	r.BelowZero, r.Settled = 3, false

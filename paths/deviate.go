@@ -94,7 +94,7 @@ func (b *deviating) run(z []float64) (r variant, lnD float64, err error) {
 	own := *b.profile
 	own.runs = nil
 	options := diffusion.Options{Finest: finest(b.element.Traverse), Refined: b.refined, Faces: b.plan().Faces()}
-	if err := own.addRun(problem, b.lens.edges[b.middle()], &options); err != nil {
+	if err := own.addRun(problem, b.lens.edges.middles(), &options); err != nil {
 		return r, 0, err
 	}
 	return own.runs[0], lnD, nil
@@ -334,7 +334,7 @@ func (w *weighedPath) deviateShared(of *weighing) {
 		if !w.shared[place].Shared {
 			continue
 		}
-		if by := w.curves[w.sharing(of, place)[0]].By; by != nil {
+		if by := w.curves[w.sharing(of, place).of[0]].By; by != nil {
 			w.shared[place].By = &By{Of: by.Of, Shift: by.Shift}
 		}
 	}

@@ -33,11 +33,11 @@ func TestFreeEdgesAreForetold(t *testing.T) {
 			}
 			for _, part := range []float64{0.03, 0.2, 0.41, 0.77} {
 				edge := part * test.upTo
-				plan, err := diffusion.Compile(withEdges(problem, edge), diffusion.Options{Faces: p.plan().Faces()})
+				plan, err := diffusion.Compile(withEdges(problem, []float64{edge}), diffusion.Options{Faces: p.plan().Faces()})
 				if err != nil {
 					t.Fatal(err)
 				}
-				mixed := p.mix(p.starts(), edge)
+				mixed := p.mix(p.starts(), []float64{edge})
 				for j := 1; j < len(mixed); j++ {
 					seen, exact := p.lens.through(mixed[j], 0, 0), p.lens.through(plan.Start(j), 0, 0)
 					for i := range seen {

@@ -185,14 +185,18 @@ func (e *engine) linked() string {
 		if len(c.Choices()) > 1 {
 			return "the start is one of several, from which each path takes one"
 		}
-		open := 0
+		open := map[int]int{} // elements by the number of the width
 		for _, n := range e.members(place) {
-			if !e.elements[n].element.Start.Edge.Fixed() {
-				open++
+			for k, width := range e.elements[n].element.Start.Widths() {
+				if !width.Fixed() {
+					open[k]++
+				}
 			}
 		}
-		if open > 1 {
-			return "the elements of a crystal have the width of their edges in common"
+		for _, elements := range open {
+			if elements > 1 {
+				return "the elements of a crystal have the width of their edges in common"
+			}
 		}
 	}
 	return ""

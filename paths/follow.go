@@ -79,11 +79,11 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 		return nil, err
 	}
 	out := &ElementCourse{Crystal: c, Element: e, Centres: p.plan().Centres(), LnG: p.runs[0].course.LnG()}
-	edge, amounts := e.Start.Edge.Middle(), amounts{scale: 1, values: make([]float64, len(p.free))}
+	widths, amounts := middleWidths(&e.Start), amounts{scale: 1, values: make([]float64, len(p.free))}
 	if result != nil {
 		out.Free, out.Notes = result.Free, result.notes(path)
 		fitted := p.fitRun(0, nil)
-		edge, _, _ = p.lens.values(fitted.Bent)
+		widths, _, _ = p.lens.values(fitted.Bent)
 		amounts = p.amounts(fitted).stated()
 	}
 	if result == nil {
@@ -97,8 +97,8 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 		out.Notes = append(out.Notes, fmt.Sprintf("%s may have had %d starts; it is followed from the first, %s", e.Name, len(e.Alternatives), e.StartName(0)))
 	}
 	out.WhyG, out.GEnough = p.plan().GEnough()
-	out.Start, out.Final = amounts.of(p.mix(p.starts(), edge)), amounts.of(p.mix(p.columns(0), edge))
-	steps, cells := p.errors(edge, amounts)
+	out.Start, out.Final = amounts.of(p.mix(p.starts(), widths)), amounts.of(p.mix(p.columns(0), widths))
+	steps, cells := p.errors(widths, amounts)
 	for i := range steps {
 		out.NumErr = math.Max(out.NumErr, math.Abs(steps[i])+math.Abs(cells[i]))
 	}
@@ -126,7 +126,7 @@ func follow(ctx context.Context, c *study.Crystal, e *study.Element, path *study
 		if err != nil {
 			return nil, err
 		}
-		out.Snapshots = append(out.Snapshots, Snapshot{t, amounts.of(p.mix(cols, edge))})
+		out.Snapshots = append(out.Snapshots, Snapshot{t, amounts.of(p.mix(cols, widths))})
 	}
 	return out, nil
 }

@@ -55,7 +55,9 @@ func finestOfHost(c *study.Crystal) (size float64, what string) {
 		if !e.OnHost() {
 			continue
 		}
-		see(e.Start.Edge.Middle(), "the edge of "+e.Name)
+		for _, width := range middleWidths(&e.Start) {
+			see(width, "the edge of "+e.Name)
+		}
 		if t := e.Traverse; t != nil && t.Spot.Kind != traverse.Point {
 			see(fullWidth(t.Spot), "the spot of "+e.Name)
 		}

@@ -13,16 +13,17 @@ import (
 // lens is how a traverse looks at a profile: through its spot, at positions
 // that may be off by an origin and slanted by a tilt, on a start whose edges may
 // have any of several widths. What is not known exactly is a bent value of the
-// fit: edge, tilt and origin, in this order, those that are fixed left out.
+// fit: edges, tilt and origin, in this order, those that are fixed left out.
 type lens struct {
-	t                  *traverse.Traverse
-	edge, tilt, origin study.Nuisance
-	mirrored           bool
-	curve              int                 // of the cells, see traverse.NewWeights
-	faces, at          []float64           // of the cells; where blurred profiles are known: both ends and the centres
-	edges, cosines     []float64           // nodes between which edge width and cos tilt are interpolated
-	weights            []*traverse.Weights // one a cosine: at the points if these are fixed, else at `at`
-	places             []float64           // scratch: positions of the points
+	t            *traverse.Traverse
+	edges        edges
+	tilt, origin study.Nuisance
+	mirrored     bool
+	curve        int                 // of the cells, see traverse.NewWeights
+	faces, at    []float64           // of the cells; where blurred profiles are known: both ends and the centres
+	cosines      []float64           // nodes between which cos tilt is interpolated
+	weights      []*traverse.Weights // one a cosine: at the points if these are fixed, else at `at`
+	places       []float64           // scratch: positions of the points
 }
 
 // The nodes of interpolation. Between six Chebyshev nodes a profile seen
@@ -41,10 +42,10 @@ const (
 	steepest      = 1.45 // rad, beyond which a tilt makes no sense
 )
 
-func newLens(c *study.Crystal, e *study.Element, faces, edges []float64) (*lens, error) {
+func newLens(c *study.Crystal, e *study.Element, faces []float64, edges edges) (*lens, error) {
 	l := &lens{
-		t: e.Traverse, edge: e.Start.Edge, tilt: e.Tilt, origin: e.Origin,
-		mirrored: c.Mirrored(e), curve: int(c.Shape), faces: faces, edges: edges, places: make([]float64, len(e.Traverse.Position)),
+		t: e.Traverse, edges: edges, tilt: e.Tilt, origin: e.Origin,
+		mirrored: c.Mirrored(e), curve: int(c.Shape), faces: faces, places: make([]float64, len(e.Traverse.Position)),
 	}
 	for _, tilt := range nodes(l.tilt, 0, steepest, cosineNodes) {
 		l.cosines = append(l.cosines, math.Cos(tilt))
@@ -118,7 +119,9 @@ func (l *lens) bent() []least.Bent {
 		}
 		bent = append(bent, v)
 	}
-	add(l.edge, 0, math.Inf(1), fewStarts, func(k int) int { return k % fewStarts })
+	for _, n := range l.edges.known {
+		add(n, 0, math.Inf(1), fewStarts, func(k int) int { return k % fewStarts })
+	}
 	add(l.tilt, 0, steepest, tilts, func(k int) int { return k / origins % tilts })
 	add(l.origin, math.Inf(-1), math.Inf(1), origins, func(k int) int { return k % origins })
 	return bent
@@ -162,7 +165,7 @@ func (l *lens) farthest() float64 {
 }
 
 // values splits the bent values of a fit again.
-func (l *lens) values(bent []float64) (edge, tilt, origin float64) {
+func (l *lens) values(bent []float64) (widths []float64, tilt, origin float64) {
 	next := func(n study.Nuisance) float64 {
 		if n.Fixed() {
 			return n.Value
@@ -171,35 +174,37 @@ func (l *lens) values(bent []float64) (edge, tilt, origin float64) {
 		bent = bent[1:]
 		return v
 	}
-	edge = next(l.edge)
+	for _, n := range l.edges.known {
+		widths = append(widths, next(n))
+	}
 	tilt = next(l.tilt)
-	return edge, tilt, next(l.origin)
+	return widths, tilt, next(l.origin)
 }
 
-// view is a set of columns of cell means seen through the lens: for each edge
-// node and each cosine, what each column looks like at the lens's places.
+// view is a set of columns of cell means seen through the lens: for each run
+// and each cosine, what each column looks like at the lens's places.
 type view struct {
 	l       *lens
-	blurred [][][][]float64 // edge, cosine, column
+	blurred [][][][]float64 // run, cosine, column
 	mixed   []float64       // scratch
 	slopes  []float64
 }
 
-// look blurs the columns: cols holds, for each edge node, the answer and the
+// look blurs the columns: cols holds, for each run, the answer and the
 // derivatives by the free values.
 func (l *lens) look(cols [][][]float64) *view {
 	v := &view{l: l, mixed: make([]float64, len(l.at)), slopes: make([]float64, len(l.at))}
 	for _, set := range cols {
-		var atEdge [][][]float64
+		var atCosines [][][]float64
 		for _, w := range l.weights {
 			seen := make([][]float64, len(set))
 			for j, c := range set {
 				seen[j] = make([]float64, len(l.at))
 				w.Apply(seen[j], c)
 			}
-			atEdge = append(atEdge, seen)
+			atCosines = append(atCosines, seen)
 		}
-		v.blurred = append(v.blurred, atEdge)
+		v.blurred = append(v.blurred, atCosines)
 	}
 	return v
 }
@@ -207,19 +212,19 @@ func (l *lens) look(cols [][][]float64) *view {
 // columns fills dst with what the columns look like at the points for the
 // given bent values.
 func (v *view) columns(dst [][]float64, bent []float64) {
-	edge, tilt, origin := v.l.values(bent)
-	byEdge := lagrange(v.l.edges, edge)
+	widths, tilt, origin := v.l.values(bent)
+	byRun := v.l.edges.weights(widths)
 	for j := range dst {
-		v.show(dst[j], j, byEdge, tilt, origin)
+		v.show(dst[j], j, byRun, tilt, origin)
 	}
 }
 
-// show fills dst with what column j looks like at the points; byEdge are the
-// weights of the edge nodes.
-func (v *view) show(dst []float64, j int, byEdge []float64, tilt, origin float64) {
+// show fills dst with what column j looks like at the points; byRun are the
+// weights of the runs.
+func (v *view) show(dst []float64, j int, byRun []float64, tilt, origin float64) {
 	clear(v.mixed)
 	byTilt := lagrange(v.l.cosines, math.Cos(tilt))
-	for a, we := range byEdge {
+	for a, we := range byRun {
 		for b, wt := range byTilt {
 			w := we * wt
 			for i, y := range v.blurred[a][b][j] {

@@ -30,9 +30,10 @@ type profile struct {
 	path    *study.Path
 	history *thermal.History // what the crystal sees of the path
 	free    []study.FreeValue
-	runs    []variant // one an edge width between which the lens interpolates
+	runs    []variant // those between which the lens interpolates the widths of edges
 	redrawn []variant // one a redrawn host; none where the host is exact
 	lens    *lens     // nil without a traverse
+	seen    *view     // what columns look like that are fitted again and again; nil is looked at anew
 	fit     least.Problem
 	grey    bool    // a scale and an offset are two more linear values
 	refined int     // how often the plan is finer than the usual one
@@ -41,7 +42,7 @@ type profile struct {
 	counted int     // values that the points alone decide, at the path as it is
 }
 
-// variant is the problem with one width of the start's edges.
+// variant is the problem with the start's edges of known widths.
 type variant struct {
 	plan   *diffusion.Plan
 	course diffusion.Course
@@ -63,7 +64,7 @@ func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
 	p := &profile{crystal: c, element: e, path: path, history: seen, free: free, refined: refined}
 	options := diffusion.Options{Finest: math.Ldexp(finest(e.Traverse), max(0, -refined)), Refined: refined}
 	if e.Traverse == nil {
-		return p, p.addRun(problem, e.Start.Edge.Middle(), &options)
+		return p, p.addRun(problem, middleWidths(&e.Start), &options)
 	}
 	if err := p.layEdges(problem, &options); err != nil {
 		return nil, err
@@ -74,43 +75,63 @@ func newProfile(m *element, path *study.Path, refined int) (*profile, error) {
 	return p, p.setFit(m)
 }
 
-// layEdges adds a run for each edge width between which the lens interpolates:
-// the one that is known, or as many as it takes to foretell, between them, what
-// a start that has not diffused looks like.
+// middleWidths are the widths of the edges to begin with: one for all, or one a
+// boundary.
+func middleWidths(s *study.Start) []float64 {
+	var out []float64
+	for _, n := range s.Widths() {
+		out = append(out, n.Middle())
+	}
+	return out
+}
+
+// layEdges adds a run for each set of edge widths between which the lens
+// interpolates: the one that is known, or as many as it takes to foretell, between
+// them, what a start that has not diffused looks like.
 func (p *profile) layEdges(problem *diffusion.Problem, options *diffusion.Options) error {
-	for count := edgeNodes; ; count *= 2 {
+	known := p.element.Start.Widths()
+	counts := slices.Repeat([]int{edgeNodes}, len(known))
+	for {
 		p.runs = p.runs[:0]
-		widths := nodes(p.element.Start.Edge, 0, math.Inf(1), count)
-		for _, edge := range widths {
-			if err := p.addRun(problem, edge, options); err != nil {
+		edges := newEdges(known, counts)
+		for _, widths := range edges.runs() {
+			if err := p.addRun(problem, widths, options); err != nil {
 				return err
 			}
 		}
 		var err error
-		if p.lens, err = newLens(p.crystal, p.element, p.plan().Faces(), widths); err != nil || len(widths) == 1 {
+		if p.lens, err = newLens(p.crystal, p.element, p.plan().Faces(), edges); err != nil || len(p.runs) == 1 {
 			return err
 		}
-		missed, err := p.missedStarts(problem, options)
-		if err != nil || missed <= errorAim || count >= mostEdgeNodes {
-			return err
+		more := false
+		for _, k := range edges.open() {
+			missed, err := p.missedStarts(problem, options, edges.halfways(k))
+			if err != nil {
+				return err
+			}
+			if missed > errorAim && counts[k] < mostEdgeNodes {
+				counts[k], more = 2*counts[k], true
+			}
+		}
+		if !more {
+			return nil
 		}
 	}
 }
 
-// missedStarts returns by how much, in sigma of the data, the start half way
-// between the edge widths is missed by interpolation, where free values are as
+// missedStarts returns by how much, in sigma of the data, the start with edges of
+// the given widths is missed by interpolation at most, where free values are as
 // large as the range of the data.
-func (p *profile) missedStarts(problem *diffusion.Problem, options *diffusion.Options) (float64, error) {
+func (p *profile) missedStarts(problem *diffusion.Problem, options *diffusion.Options, at [][]float64) (float64, error) {
 	t := p.element.Traverse
 	size := (slices.Max(t.Value) - slices.Min(t.Value)) / slices.Min(t.Sigma)
 	worst := 0.0
-	for k := 1; k < len(p.lens.edges); k++ {
-		edge := (p.lens.edges[k-1] + p.lens.edges[k]) / 2
-		plan, err := diffusion.Compile(withEdges(problem, edge), *options)
+	for _, widths := range at {
+		plan, err := diffusion.Compile(withEdges(problem, widths), *options)
 		if err != nil {
 			return 0, err
 		}
-		for j, mixed := range p.mix(p.starts(), edge) {
+		for j, mixed := range p.mix(p.starts(), widths) {
 			amount := size
 			if j == 0 {
 				amount = 1 / slices.Min(t.Sigma)
@@ -124,20 +145,21 @@ func (p *profile) missedStarts(problem *diffusion.Problem, options *diffusion.Op
 	return worst, nil
 }
 
-// withEdges returns the problem with all its edges of one width.
-func withEdges(problem *diffusion.Problem, edge float64) *diffusion.Problem {
+// withEdges returns the problem with its edges of the given widths, one for all or one
+// a boundary.
+func withEdges(problem *diffusion.Problem, widths []float64) *diffusion.Problem {
 	this := *problem
 	this.Zones = slices.Clone(problem.Zones)
 	for i := range len(this.Zones) - 1 {
-		this.Zones[i].Edge = edge
+		this.Zones[i].Edge = widths[min(i, len(widths)-1)]
 	}
 	return &this
 }
 
-// addRun adds the problem with the given width of its edges. All runs share
+// addRun adds the problem with its edges of the given widths. All runs share
 // the faces of the first, which are left in the options.
-func (p *profile) addRun(problem *diffusion.Problem, edge float64, options *diffusion.Options) error {
-	plan, err := diffusion.Compile(withEdges(problem, edge), *options)
+func (p *profile) addRun(problem *diffusion.Problem, widths []float64, options *diffusion.Options) error {
+	plan, err := diffusion.Compile(withEdges(problem, widths), *options)
 	if err != nil {
 		return err
 	}
@@ -366,7 +388,10 @@ func (p *profile) fitAbout(cols [][][]float64, spreads [][]float64, about []floa
 		}
 		problem.Linear = slices.Concat(problem.Linear, slices.Repeat([]least.Prior{{Sigma: 1}}, len(spreads)))
 	}
-	v := p.lens.look(cols)
+	v := p.seen
+	if v == nil || len(spreads) > 0 {
+		v = p.lens.look(cols)
+	}
 	n := 1 + len(p.free)
 	model := func(dst [][]float64, bent []float64) {
 		v.columns(append(dst[:n:n], dst[len(dst)-len(spreads):]...), bent)
@@ -498,12 +523,12 @@ func (a amounts) of(cols [][]float64) []float64 {
 	return dst
 }
 
-// mix returns the columns at one width of the edges, from those at the nodes.
-func (p *profile) mix(cols [][][]float64, edge float64) [][]float64 {
+// mix returns the columns at some widths of the edges, from those of the runs.
+func (p *profile) mix(cols [][][]float64, widths []float64) [][]float64 {
 	if len(cols) == 1 {
 		return cols[0]
 	}
-	weights := lagrange(p.lens.edges, edge)
+	weights := p.lens.edges.weights(widths)
 	out := make([][]float64, len(cols[0]))
 	for j := range out {
 		out[j] = make([]float64, len(cols[0][j]))
@@ -535,22 +560,22 @@ func (p *profile) audit(lnM float64) error {
 }
 
 // errors returns the audited errors, by steps and by cells, of the profile that
-// the amounts make at one width of the edges.
-func (p *profile) errors(edge float64, a amounts) (steps, cells []float64) {
+// the amounts make at some widths of the edges.
+func (p *profile) errors(widths []float64, a amounts) (steps, cells []float64) {
 	var s, c [][][]float64
 	for i := range p.runs {
 		s = append(s, p.runs[i].fields[0].StepErr)
 		c = append(c, p.runs[i].fields[0].CellErr)
 	}
 	a.offset = 0
-	return a.of(p.mix(s, edge)), a.of(p.mix(c, edge))
+	return a.of(p.mix(s, widths)), a.of(p.mix(c, widths))
 }
 
 // numErr returns the largest estimated numerical error of the fitted model at
 // the data points, in units of their sigma. The path must have been audited.
 func (p *profile) numErr(at least.Solution) float64 {
-	edge, tilt, origin := p.lens.values(at.Bent)
-	steps, cells := p.errors(edge, p.amounts(at))
+	widths, tilt, origin := p.lens.values(at.Bent)
+	steps, cells := p.errors(widths, p.amounts(at))
 	steps, cells = p.lens.through(steps, tilt, origin), p.lens.through(cells, tilt, origin)
 	worst := 0.0
 	for i, s := range p.fit.Sigma {
@@ -562,13 +587,13 @@ func (p *profile) numErr(at least.Solution) float64 {
 // belowZero returns by how much the lowest concentration at the end of the
 // audited path is below zero, beyond its estimated numerical error and round-off.
 // Relative values may be negative.
-func (p *profile) belowZero(edge float64, a amounts) float64 {
+func (p *profile) belowZero(widths []float64, a amounts) float64 {
 	if p.grey {
 		return 0
 	}
-	steps, cells := p.errors(edge, a)
+	steps, cells := p.errors(widths, a)
 	worst := 0.0
-	for i, c := range a.of(p.mix(p.columns(0), edge)) {
+	for i, c := range a.of(p.mix(p.columns(0), widths)) {
 		allowed := math.Abs(steps[i]) + math.Abs(cells[i]) + 10*pinned*p.size
 		worst = math.Max(worst, -c-allowed)
 	}

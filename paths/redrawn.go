@@ -31,7 +31,7 @@ func (p *profile) layRedrawn(hosts []*study.Crystal, options *diffusion.Options)
 	if len(hosts) == 0 {
 		return nil
 	}
-	edge := p.lens.edges[p.middle()]
+	widths := p.lens.edges.middles()
 	main := p.runs
 	defer func() { p.runs = main }()
 	p.runs = nil
@@ -40,7 +40,7 @@ func (p *profile) layRedrawn(hosts []*study.Crystal, options *diffusion.Options)
 		if err != nil {
 			return err
 		}
-		if err := p.addRun(problem, edge, options); err != nil {
+		if err := p.addRun(problem, widths, options); err != nil {
 			return err
 		}
 	}
@@ -49,7 +49,7 @@ func (p *profile) layRedrawn(hosts []*study.Crystal, options *diffusion.Options)
 }
 
 // middle is the run whose edges the redrawn hosts have.
-func (p *profile) middle() int { return len(p.lens.edges) / 2 }
+func (p *profile) middle() int { return p.lens.edges.middleRun() }
 
 // spreads returns d_k/sqrt(n) in the cells, for the columns of the runs and of the
 // draws.

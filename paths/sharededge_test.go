@@ -91,6 +91,7 @@ func edgesOf(t *testing.T, s *study.Study) EdgeOrigin {
 	if err != nil {
 		t.Fatal(err)
 	}
+	w.paths = make([]weighedPath, 1)
 	p := &w.paths[0]
 	for i := range w.elements {
 		q, err := newProfile(&w.elements[i], &s.Paths[0], 0)

@@ -131,8 +131,9 @@ type weighedPath struct {
 	curves   []Curve
 	tried    [][]attempt // of each element, one a start
 	starts   [][]Tried
-	shared   []Curve      // of each crystal, what sharing the width of edges costs
-	edges    []EdgeOrigin // of each crystal, without Elements where these do not share a width
+	told     map[*profile]map[float64]float64 // chi-square by ln of the multiplier, where sharing was sampled
+	shared   []Curve                          // of each crystal, what sharing the width of edges costs
+	edges    [][]EdgeOrigin                   // of each crystal, one a width that its elements share
 }
 
 func newWeighing(s *study.Study) (*weighing, error) {
@@ -485,7 +486,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 	}
 	at := p.fitRun(0, nil)
 	p.points, p.counted = telling(&p.fit, at), p.spent(at)
-	edge, tilt, origin := p.lens.values(at.Bent)
+	widths, tilt, origin := p.lens.values(at.Bent)
 	a := p.amounts(at)
 	r := &ProfileResult{
 		Crystal: p.crystal, Element: p.element,
@@ -496,7 +497,7 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		At:   make([]float64, len(p.fit.Obs)),
 		Seen: at.Model, Sigma: p.fit.Sigma, Residuals: at.Residuals,
 		Centres: p.plan().Centres(),
-		Settled: at.Settled, BelowZero: p.belowZero(edge, a),
+		Settled: at.Settled, BelowZero: p.belowZero(widths, a),
 	}
 	p.element.Traverse.Place(r.At, origin, tilt)
 	spot := p.element.Traverse.Spot
@@ -506,8 +507,8 @@ func (p *profile) asItIs() (*ProfileResult, error) {
 		return nil, err
 	}
 	r.Start, r.Final = make([]float64, len(r.Centres)), make([]float64, len(r.Centres))
-	everywhere.Apply(r.Start, a.of(p.mix(p.starts(), edge)))
-	final := a.of(p.mix(p.columns(0), edge))
+	everywhere.Apply(r.Start, a.of(p.mix(p.starts(), widths)))
+	final := a.of(p.mix(p.columns(0), widths))
 	p.addHost(final, 0, at)
 	everywhere.Apply(r.Final, final)
 	r.StandIn = standIn(p.element.Law.Law, p.history, r.LnG)
@@ -522,9 +523,9 @@ func (p *profile) freeFits(at least.Solution) []FreeFit {
 	} else {
 		fits = p.plainFits(at)
 	}
-	edge, tilt, origin := p.lens.values(at.Bent)
-	if !p.lens.edge.Fixed() {
-		fits = append(fits, p.edgeFit(edge))
+	widths, tilt, origin := p.lens.values(at.Bent)
+	for _, k := range p.lens.edges.free() {
+		fits = append(fits, p.edgeFit(k, widths[k]))
 	}
 	if n := p.lens.tilt; !n.Fixed() {
 		fits = append(fits, bentFit(n, "tilt", tilt, 180/math.Pi, "deg"))
@@ -535,9 +536,13 @@ func (p *profile) freeFits(at least.Solution) []FreeFit {
 	return fits
 }
 
-// edgeFit names a fitted width of the edges, m.
-func (p *profile) edgeFit(width float64) FreeFit {
-	return bentFit(p.lens.edge, "edge width", width, 1e6, "um")
+// edgeFit names fitted width k of the edges, m.
+func (p *profile) edgeFit(k int, width float64) FreeFit {
+	name := "edge width"
+	if len(p.element.Start.Edges) > 0 {
+		name += " " + p.crystal.Zones[k].Name + "/" + p.crystal.Zones[k+1].Name
+	}
+	return bentFit(p.element.Start.Widths()[k], name, width, 1e6, "um")
 }
 
 // bentFit names the fitted value of a nuisance, told in a unit of so many in one of SI.

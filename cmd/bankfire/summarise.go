@@ -106,6 +106,9 @@ func edgeOrigins(r *paths.Result) []edgeOrigin {
 		for _, of := range e.Elements {
 			o.Elements = append(o.Elements, of.Name)
 		}
+		if text := e.BoundaryText(); text != "" {
+			o.Boundary = &text
+		}
 		if e.Prefers != paths.UnknownOrigin {
 			word := e.Prefers.String()
 			o.Prefers = &word

@@ -162,6 +162,7 @@ type triedStart struct {
 // as they are.
 type edgeOrigin struct {
 	Crystal   string   `json:"crystal"`
+	Boundary  *string  `json:"boundary"` // its zones, "core and mantle"; null is all of one width
 	Elements  []string `json:"elements"`
 	WidthM    float64  `json:"growth_width_m"`
 	Growth    float64  `json:"growth_misfit"`

@@ -82,14 +82,18 @@ func writeEdges(w io.Writer, r *paths.Result) {
 		for _, of := range e.Elements {
 			names = append(names, of.Name)
 		}
-		values := []any{e.Crystal.Name, list(names), number(e.Growth), number(e.Diffusion), e.Degrees}
+		of, are, them := "The edges of "+e.Crystal.Name, "are", "them"
+		if boundary := e.BoundaryText(); boundary != "" {
+			of, are, them = fmt.Sprintf("The edge between %s in %s", boundary, e.Crystal.Name), "is", "it"
+		}
+		growth, diffusion := number(e.Growth), number(e.Diffusion)
 		switch e.Prefers {
 		case paths.ByGrowth:
-			fmt.Fprintf(w, "The edges of %s are of one width in %s, %s um, as growth makes them, not of widths with the root of D, as diffusion would: chi-square %s against %s, of %d.\n",
-				append(values[:2:2], append([]any{number(e.Width * 1e6)}, values[2:]...)...)...)
+			fmt.Fprintf(w, "%s %s of one width in %s, %s um, as growth makes %s, not of widths with the root of D, as diffusion would: chi-square %s against %s, of %d.\n",
+				of, are, list(names), number(e.Width*1e6), them, growth, diffusion, e.Degrees)
 		case paths.ByDiffusion:
-			fmt.Fprintf(w, "The edges of %s in %s are of widths with the root of D, as diffusion makes them, not of one width, as growth would: chi-square %s against %s, of %d.\n",
-				values[0], values[1], values[3], values[2], values[4])
+			fmt.Fprintf(w, "%s in %s %s of widths with the root of D, as diffusion makes %s, not of one width, as growth would: chi-square %s against %s, of %d.\n",
+				of, list(names), are, them, diffusion, growth, e.Degrees)
 		}
 	}
 }

@@ -93,23 +93,47 @@ func (d *decoder) choosable(n *node, c *Crystal) {
 	}
 }
 
-// oneEdge reports measured elements of a crystal that leave the width of their edges
-// open in different ways: it is one width, that with which the zones grew.
+// oneEdge reports measured elements of a crystal that leave a width of their edges
+// open in different ways: it is one width, that with which the zones grew. Where one of
+// them has a width for each boundary, all that leave any open have.
 func (d *decoder) oneEdge(n *node, c *Crystal) {
 	var first *Element
-	var edge Nuisance
+	var widths []Nuisance
 	for i := range c.Elements {
 		e := &c.Elements[i]
 		for k := range e.Starts() {
-			switch other := e.Starting(k).Start.Edge; {
-			case e.Traverse == nil || other.Fixed():
+			s := e.Starting(k).Start
+			other := s.Widths()
+			switch {
+			case e.Traverse == nil || !slices.ContainsFunc(other, Nuisance.open):
 			case first == nil:
-				first, edge = e, other
-			case other != edge:
+				first, widths = e, slices.Clone(other)
+			case len(other) != len(widths):
+				d.report(n, fmt.Sprintf("%s and %s leave widths of the edges open, one with a width for each boundary and one with a width for all", first.Name, e.Name),
+					"state widths in both as a list of one a boundary, or in neither")
+				return
+			case !agree(widths, other):
 				d.report(n, fmt.Sprintf("%s and %s leave the width of the edges open in different ways, but it is one width for all elements", first.Name, e.Name),
 					"state it alike in both, or a width without an error in one")
 				return
 			}
 		}
 	}
+}
+
+func (n Nuisance) open() bool { return !n.Fixed() }
+
+// agree reports whether all widths that are open in both lists are so in the same way;
+// those that are only in the other one are taken over.
+func agree(widths, other []Nuisance) bool {
+	for k, w := range other {
+		switch {
+		case w.Fixed():
+		case widths[k].Fixed():
+			widths[k] = w
+		case w != widths[k]:
+			return false
+		}
+	}
+	return true
 }

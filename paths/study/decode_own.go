@@ -128,6 +128,11 @@ func (d *decoder) nonlinear(n *node, c *Crystal, e *Element) {
 			}
 		}
 	}
+	if open := slices.DeleteFunc(slices.Clone(e.Start.Widths()), Nuisance.Fixed); len(open) > 1 {
+		d.add(at.Error("", fmt.Sprintf("D depends on %s itself, so that one width of its edges can be open, and %d are", e.Name, len(open)),
+			`state all but one like "0.5 um", or one width for all boundaries: edge = "free 0..2 um"`))
+		return
+	}
 	lo, hi := c.values(e)
 	steepest := e.Law
 	steepest.OwnSlope = math.Abs(e.Law.OwnSlope) + MostDeviation*math.Abs(e.Law.OwnSlopeSigma)

@@ -70,9 +70,31 @@ func (d *decoder) start(element, n *node, c *Crystal, e *Element, u *units) Star
 	}
 	d.astray(n)
 	if edge := n.get("edge"); edge != nil {
-		s.Edge = d.nuisance(edge, edgeLatitude())
+		d.edges(edge, &s, c)
 	}
 	return s
+}
+
+// edges reads the width of the edges: one for all boundaries, or a list of one each.
+func (d *decoder) edges(n *node, s *Start, c *Crystal) {
+	if n.kind != arrayNode {
+		s.Edge = d.nuisance(n, edgeLatitude())
+		return
+	}
+	boundaries := max(0, len(c.Zones)-1)
+	if len(n.items) != boundaries {
+		if len(c.Zones) > 0 {
+			d.report(n, fmt.Sprintf("%s for %d between the zones", count(len(n.items), "width"), boundaries),
+				`write one width a boundary, from the inside outwards, such as edge = ["free 0..2 um", "0.5 um"]; or one for all without the brackets`)
+		}
+		return
+	}
+	for _, v := range n.items {
+		s.Edges = append(s.Edges, d.nuisance(v, edgeLatitude()))
+	}
+	if boundaries == 1 {
+		s.Edge, s.Edges = s.Edges[0], nil
+	}
 }
 
 // astray reports keys that go with another way to give the start.

@@ -184,7 +184,7 @@ func finiteProblem(t *testing.T, c *Crystal, e *Element, p *Path) {
 		mustBeFinite(t, "traverse", e.Traverse.Position...)
 		mustBeFinite(t, "traverse", e.Traverse.Value...)
 		mustBeFinite(t, "traverse", e.Traverse.Sigma...)
-		for _, n := range []Nuisance{e.Start.Edge, e.Tilt, e.Origin} {
+		for _, n := range append(e.Start.Widths(), e.Tilt, e.Origin) {
 			mustBeFinite(t, "nuisance", n.Value, n.Sigma, n.Lo, n.Hi)
 		}
 		at := make([]float64, len(e.Traverse.Position))

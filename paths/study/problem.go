@@ -19,8 +19,8 @@ import (
 //
 //	profile = answer + sum of (value - base) x column,  base 0 or Prior.Value.
 //
-// Edges have their middle width: where the width is not Fixed, set Edge of all
-// zones but the last to the one wanted.
+// Edges have their middle widths: where a width is not Fixed, set Edge of the zones
+// that have it, the last left out, to the one wanted.
 //
 // An element whose law depends on the element itself has no free values, and
 // Problem.Own.
@@ -121,7 +121,8 @@ func (b *builder) zones() []diffusion.Zone {
 		r += z.Width
 		zones[i] = diffusion.Zone{Outer: r, Start: b.e.Start.base(i), Times: b.c.Factor(b.e, i), Host: z.Host, Form: b.c.form(b.e, i)}
 		if i < len(zones)-1 {
-			zones[i].Edge = b.e.Start.Edge.Middle()
+			widths := b.e.Start.Widths()
+			zones[i].Edge = widths[min(i, len(widths)-1)].Middle()
 		}
 	}
 	return zones

@@ -325,9 +325,18 @@ type Start struct {
 	Name       string      // of an alternative; "" if it has none
 	Zones      []Plateau   // one a zone
 	Edge       Nuisance    // width of the edges between zones, m, at least 0: error functions of standard deviation width/4; 0 is a jump
+	Edges      []Nuisance  // instead, one a boundary, from the inside outwards, two or more; nil is Edge for all
 	Solubility *Solubility // that gives the zones; nil is none
 	Melts      []Grown     // one a zone if each is in equilibrium with a melt by the element's Partition; else nil
 	Scaled     *Scaled     // a start with the shape of another element, instead of Zones, which are then all 0; nil is none
+}
+
+// Widths are those of the edges: one for all boundaries, or one each.
+func (s *Start) Widths() []Nuisance {
+	if s.Edges != nil {
+		return s.Edges
+	}
+	return []Nuisance{s.Edge}
 }
 
 // Grown is how a zone grew in equilibrium with a melt: its plateau is that in a host of

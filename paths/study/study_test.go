@@ -269,8 +269,9 @@ func TestEveryKeyNuisances(t *testing.T) {
 	near(t, "origin, its lower end", e[0].Origin.Lo, -1*um)
 	near(t, "tilt, known", e[1].Tilt.Value, math.Pi/18)
 	near(t, "origin, its error", e[1].Origin.Sigma, 0.2*um)
-	near(t, "edge", e[2].Start.Edge.Value, 0.4*um)
-	near(t, "its error", e[2].Start.Edge.Sigma, 0.1*um)
+	near(t, "edge", e[2].Start.Edges[0].Value, 0.4*um)
+	near(t, "its error", e[2].Start.Edges[0].Sigma, 0.1*um)
+	near(t, "edge of the next boundary", e[2].Start.Widths()[1].Value, 0.3*um)
 	near(t, "error of three analyses, two of it", e[1].Traverse.Sigma[0], 1.5/math.Sqrt(3))
 	if !e[0].Scatter || e[1].Scatter || e[1].Traverse.Limit != nil {
 		t.Errorf("elements %+v", e)
