@@ -39,16 +39,24 @@ const (
 // model moves there.
 type slack float64
 
+// exactSlack is that by the exact plan, whose curve of few multipliers alone may miss the
+// lowest chi-square.
+const exactSlack slack = 1e-3
+
 // side is 1 where chi-square is surely above the critical one of so many degrees of
-// freedom for a path that is written out, -1 where it is surely below, else 0. There may
-// be a degree more or less, since they are counted from the profile.
+// freedom for a path that is written out, -1 where it is surely below, else 0. By another
+// plan there may be a degree more or less, since they are counted from the profile.
 func (s slack) side(chiSq, confidence float64, degrees int) int {
+	around := 0
+	if s > exactSlack {
+		around = 1
+	}
 	switch {
-	case degrees < 2:
+	case degrees < 1+around:
 		return 0
-	case s.clear(chiSq, Critical(confidence, degrees+1)) > 0:
+	case s.clear(chiSq, Critical(confidence, degrees+around)) > 0:
 		return 1
-	case s.clear(chiSq, Critical(confidence, degrees-1)) < 0:
+	case s.clear(chiSq, Critical(confidence, degrees-around)) < 0:
 		return -1
 	}
 	return 0

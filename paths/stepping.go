@@ -21,9 +21,10 @@ import (
 //     errorAim and whose chi-square is close to the exact is that of the family.
 //
 // All members get a glance, see there, with the family's plan, and the interval of their
-// shift factor if their row is kept. Those whose verdict a glance leaves in doubt get the exact plan.
-// The errors of every auditEvery-th member are audited while it is screened, and change
-// nothing any more.
+// shift factor if their row is kept. Where that leaves the verdict in doubt they get
+// another with the exact plan, and if that does too they are scanned in full. The errors
+// of every auditEvery-th member are audited while it is screened, and change nothing any
+// more.
 type stepping struct {
 	*weighing
 	tables  []*gTable // one an element; nil if it is run
@@ -137,7 +138,7 @@ func (s *stepping) compare(ctx context.Context, f *study.Family, trials []trial)
 		return 0, err
 	}
 	var c study.Candidate
-	s.slack = 0
+	s.slack = 2 * exactSlack
 	for _, t := range trials {
 		f.At(&c, t.index)
 		path := c.Path()
@@ -209,24 +210,39 @@ func (r *runner) judge(ctx context.Context, path *study.Path, i int64, lnG []flo
 	if !known {
 		numErr = math.NaN()
 	}
-	if r.glances {
-		cs, each, err := r.lay(ctx, r.quick, path, lnG)
-		if err != nil {
-			return f, numErr, err
-		}
-		f, sum, sure, err := r.glance(cs, each)
-		if err == nil && !known && i%auditEvery == 0 {
-			numErr, err = r.audit(cs)
-		}
-		if err == nil && sure && keeps(f.Verdict) {
-			f.Shift, f.Shift95, err = bounds(cs, each, sum)
-		}
-		if err != nil || sure {
-			return f, numErr, named(path, err)
-		}
+	if !r.glances {
+		f, err = r.exactly(ctx, path, lnG)
+		return f, numErr, err
+	}
+	cs, each, err := r.lay(ctx, r.quick, path, lnG)
+	if err != nil {
+		return f, numErr, err
+	}
+	f, sure, err := r.look(cs, each, r.slack, keeps)
+	if err == nil && !known && i%auditEvery == 0 {
+		numErr, err = r.audit(cs)
+	}
+	if err != nil || sure {
+		return f, numErr, named(path, err)
+	}
+	if cs, each, err = r.lay(ctx, r.exact, path, lnG); err != nil {
+		return f, numErr, err
+	}
+	if f, sure, err = r.look(cs, each, exactSlack, keeps); err != nil || sure {
+		return f, numErr, named(path, err)
 	}
 	f, err = r.exactly(ctx, path, lnG)
 	return f, numErr, err
+}
+
+// look judges the curves of a member that were laid, and bounds the shift factor if its
+// row is kept.
+func (r *runner) look(cs []Curve, each []sampler, s slack, keeps func(Verdict) bool) (f Finding, sure bool, err error) {
+	f, sum, sure, err := r.glance(cs, each, s)
+	if err == nil && sure && keeps(f.Verdict) {
+		f.Shift, f.Shift95, err = bounds(cs, each, sum)
+	}
+	return f, sure, err
 }
 
 // named says of which path an error tells.
@@ -237,9 +253,9 @@ func named(path *study.Path, err error) error {
 	return nil
 }
 
-// glance judges the curves of a member that were laid by the plan of the family. It also
+// glance judges the curves of a member that were laid by a plan with the slack. It also
 // returns their sum.
-func (r *runner) glance(cs []Curve, each []sampler) (f Finding, sum Curve, sure bool, err error) {
+func (r *runner) glance(cs []Curve, each []sampler, s slack) (f Finding, sum Curve, sure bool, err error) {
 	degrees := 0
 	for k := range cs {
 		degrees += cs[k].Points - cs[k].Free
@@ -247,7 +263,7 @@ func (r *runner) glance(cs []Curve, each []sampler) (f Finding, sum Curve, sure 
 	if sum, err = settle(cs, each, Critical(r.study.Confidence, max(degrees, 1))); err != nil {
 		return f, sum, false, err
 	}
-	f, sure, err = r.slack.glanced(cs, each, &sum, r.study.Confidence)
+	f, sure, err = s.glanced(cs, each, &sum, r.study.Confidence)
 	return f, sum, sure, err
 }
 

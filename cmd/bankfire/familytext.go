@@ -290,6 +290,10 @@ func methodSentence(r *paths.Result, f *paths.FamilyResult, n int, m paths.Famil
 		if f.Tally.NumErrOf >= 0 {
 			text += fmt.Sprintf(" Numerical error of those that were audited: at most %s sigma, of member %d.", oneDigit(f.Tally.NumErr), f.Tally.NumErrOf)
 		}
+		if f.Best() >= 0 && len(f.Methods) == 1 {
+			off := math.Abs(r.Paths[f.Path].Outcome.Misfit - f.Tally.Misfit)
+			text += fmt.Sprintf(" By the plan of a path that is written out, member %d has a chi-square that differs by %s.", f.Best(), smallText(off))
+		}
 		return text
 	}
 	text := fmt.Sprintf("Method for %s: a table of chi-square against G, since %s. Numerical error, wherever members have their G: at most %s sigma.", of, m.Why, oneDigit(m.NumErr))
