@@ -76,7 +76,8 @@ func completeAll(all []*command) []completed {
 			}
 			return offer{words: c.words[value]}
 		}
-		table[i] = completed{name: c.name, short: c.short, operands: offerFor(strings.Trim(c.args, "[.]"))}
+		first, _, _ := strings.Cut(c.args, " ") // studies come with folders, so they serve the second operand too
+		table[i] = completed{name: c.name, short: c.short, operands: offerFor(strings.Trim(first, "[.]"))}
 		c.flagSet().VisitAll(func(f *pflag.Flag) {
 			value, usage := pflag.UnquoteUsage(f)
 			table[i].flags = append(table[i].flags, completedFlag{f.Name, usage, value, offerFor(value)})

@@ -3,6 +3,7 @@ package main
 import (
 	"bytes"
 	"crypto/sha256"
+	"encoding/binary"
 	"encoding/csv"
 	"flag"
 	"fmt"
@@ -11,6 +12,7 @@ import (
 	"os/exec"
 	"path/filepath"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -221,6 +223,36 @@ func TestKills(t *testing.T) {
 		}
 		rows = append(rows, row)
 		writeKills(t, rows)
+	}
+}
+
+// leastKills is how many kills the record has at least.
+const leastKills = 500
+
+// TestKillsReplay runs rows of the record again that a hash of it chooses, and checks that
+// all are of this test and well.
+func TestKillsReplay(t *testing.T) {
+	content, err := os.ReadFile(killRecord)
+	if err != nil {
+		t.Fatal(err)
+	}
+	rows := killRows(t)
+	if len(rows) < leastKills || !strings.HasPrefix(string(content), killPreamble+strings.Join(killColumns, ",")+"\n") {
+		t.Fatalf("%d rows, want at least %d, with the head of this test", len(rows), leastKills)
+	}
+	for n, row := range rows {
+		want := []string{row[0], strconv.Itoa(killSeed), strconv.Itoa(n), strconv.FormatFloat(momentOf(n), 'f', 4, 64), row[4], "same"}
+		if !slices.Equal(row, want) {
+			t.Errorf("row %v, want %v", row, want)
+		}
+	}
+	k := newKilling(t)
+	hash := sha256.Sum256(content)
+	for i := range 3 {
+		n := int(binary.BigEndian.Uint64(hash[8*i:]) % uint64(len(rows)))
+		if row := k.row(t, "", n); row[5] != "same" {
+			t.Errorf("%v", row)
+		}
 	}
 }
 

@@ -10,7 +10,7 @@ import (
 // parquetTable writes Parquet.
 type parquetTable struct {
 	columns []Column
-	out     *parquet.Writer
+	out     *parquet.GenericWriter[any]
 	rows    []parquet.Row // that wait to be written
 }
 
@@ -25,7 +25,7 @@ const (
 // Parquet is one table of optional columns, in groups of 65536 rows, with numbers in
 // full and compressed with Zstandard.
 func Parquet(w io.Writer, columns []Column) Table {
-	return &parquetTable{columns: columns, out: parquet.NewWriter(w,
+	return &parquetTable{columns: columns, out: parquet.NewGenericWriter[any](w,
 		parquet.NewSchema("members", newSchema(columns)),
 		parquet.Compression(&zstd.Codec{Level: zstd.SpeedFastest}),
 		parquet.MaxRowsPerRowGroup(groupRows),
