@@ -26,7 +26,7 @@ func glanceKnots() []float64 {
 const (
 	glanceNear   = 0.2  // of lnM: how near to a dip a knot is near
 	glanceFar    = 30.0 // chi-square above what passes from which on a dip is far
-	glanceRounds = 12
+	glanceRounds = 20
 	doubts       = 2.0 // times the largest difference that was found between a glance and a path that is written out
 )
 
@@ -97,8 +97,9 @@ func bounds(cs []Curve, each []sampler, sum Curve) (shift float64, shift95 [2]fl
 	for round := range glanceRounds {
 		var best float64
 		lnM, best = sum.Lowest()
-		lo, hi = sum.Below(best + Critical(0.95, 1))
-		wanted := []float64{lo, lnM, hi}
+		level := best + Critical(0.95, 1)
+		lo, hi = sum.Below(level)
+		wanted := []float64{sum.crossed(lo, level), lnM, sum.crossed(hi, level)}
 		if round == 0 {
 			wanted = append(wanted, (lo+lnM)/2, (lnM+hi)/2)
 		}
@@ -111,6 +112,21 @@ func bounds(cs []Curve, each []sampler, sum Curve) (shift float64, shift95 [2]fl
 		}
 	}
 	return math.Exp(lnM), [2]float64{math.Exp(lo), math.Exp(hi)}, nil
+}
+
+// crossed returns where a knot tells more of where the curve crosses level, which is at
+// x as far as is known: there, or away from both knots about it if these have not seen
+// level, since what is steep between them is met only slowly else; NaN if one of them has.
+func (c *Curve) crossed(x, level float64) float64 {
+	i, found := slices.BinarySearch(c.LnM, x)
+	if found || i == 0 || i == len(c.LnM) {
+		return math.NaN()
+	}
+	a, b := c.LnM[i-1], c.LnM[i]
+	if math.Min(math.Abs(c.ChiSq[i-1]-level), math.Abs(c.ChiSq[i]-level)) <= curveError || b-a <= 4*shiftError {
+		return math.NaN()
+	}
+	return math.Max(a+(b-a)/8, math.Min(x, b-(b-a)/8))
 }
 
 // sampleAll puts knots at the multipliers on all curves, and returns their sum.
