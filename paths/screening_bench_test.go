@@ -76,8 +76,8 @@ func BenchmarkScreening(b *testing.B) {
 		name, family string
 		limit        float64
 	}{
-		{"legs=2", twoLegs, 1},
-		{"legs=31", tenfold.Replace(reheated), 2},
+		{"legs=2", twoLegs, 1.2},
+		{"legs=31", tenfold.Replace(reheated), 2.2},
 		{"legs=10-37", reheated, 1.6},
 	} {
 		b.Run(test.name, func(b *testing.B) { screeningSteps(b, test.family, test.limit) })
