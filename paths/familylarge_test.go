@@ -4,6 +4,7 @@ import (
 	"math"
 	"math/rand/v2"
 	"runtime"
+	"slices"
 	"testing"
 
 	"gonum.org/v1/gonum/stat"
@@ -22,9 +23,14 @@ func TestTradeOffs(t *testing.T) {
 			values[k] = append(values[k], v)
 		}
 	}
-	got := tradeOffs(values)
-	if len(got) != 1 || got[0].A != 1 || got[0].B != 3 || !(got[0].Rank < -0.99) {
+	drawn := slices.Clone(values)
+	drawn[3] = values[0] // falls with nothing
+	got := tradeOffs(values, drawn)
+	if len(got) != 1 || got[0].A != 1 || got[0].B != 3 || !(got[0].Rank < -0.99) || !(math.Abs(got[0].Drawn) < 0.1) {
 		t.Errorf("planted that value 3 falls as value 1 rises, found %v", got)
+	}
+	if got := tradeOffs(values, values); got != nil {
+		t.Errorf("what was drawn so is no trade-off, found %v", got)
 	}
 }
 

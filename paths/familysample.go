@@ -7,6 +7,7 @@ import (
 
 	"gonum.org/v1/gonum/stat"
 
+	"bankfire/paths/draw"
 	"bankfire/paths/study"
 	"bankfire/thermal"
 )
@@ -52,6 +53,20 @@ func (e *engine) readSample(sample []int64) *sampled {
 		s.count++
 	}
 	return s
+}
+
+// drawn are the values of members of which each is as likely, one list a value.
+func (e *engine) drawn() [][]float64 {
+	values := make([][]float64, len(e.family.Values))
+	count := e.family.Count()
+	var c study.Candidate
+	for k := range uint64(min(count, mostSampled)) {
+		e.family.At(&c, int64(draw.SplitMix(0, k)%uint64(count)))
+		for v, x := range c.Values {
+			values[v] = append(values[v], x)
+		}
+	}
+	return values
 }
 
 // share adds the parts of the diffusion integral of element n that a member's legs do.

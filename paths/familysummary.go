@@ -42,16 +42,17 @@ type Quantiles [3]float64
 var quantileParts = [3]float64{0.05, 0.5, 0.95}
 
 // TradeOff is two values, by their places, that go together among the members that
-// reproduce, by Spearman's rank correlation.
+// reproduce, and more so than among all that were drawn, by Spearman's rank correlation.
 type TradeOff struct {
-	A, B int
-	Rank float64
+	A, B  int
+	Rank  float64
+	Drawn float64 // that of all that were drawn
 }
 
 // What is said of members that reproduce.
 const (
 	fewest    = 20   // members, below which no correlation is looked at
-	together  = 0.5  // the least correlation that is said
+	together  = 0.5  // the least correlation that is said, and the least by which it differs from that of what was drawn
 	openPart  = 0.01 // of the range: members nearer to its end reach it
 	openCount = 3    // or as near as the lowest of so many would be by chance
 )
@@ -102,7 +103,7 @@ func (e *engine) summary(f *FamilyResult) FamilySummary {
 	read := e.readSample(sample)
 	s.Sampled, s.Shares, s.Duration = int64(len(sample)), read.legShares(), e.durations(sample, read.between)
 	if len(sample) >= fewest {
-		s.TradeOffs = tradeOffs(read.values)
+		s.TradeOffs = tradeOffs(read.values, e.drawn())
 	}
 	return s
 }
@@ -140,22 +141,33 @@ func (f *FamilyResult) value(k int) ValueSummary {
 	return s
 }
 
-// tradeOffs are the pairs of values that go together.
-func tradeOffs(values [][]float64) []TradeOff {
-	ranks := make([][]float64, len(values))
-	for k := range ranks {
-		ranks[k] = ranksOf(values[k])
-	}
+// tradeOffs are the pairs of values that go together among members that reproduce, if
+// they do so less among those drawn: values that depend on each other by how they are
+// drawn say nothing of the data. Correlations are compared by Fisher's transform.
+func tradeOffs(kept, drawn [][]float64) []TradeOff {
+	ofKept, ofDrawn := allRanks(kept), allRanks(drawn)
 	var out []TradeOff
-	for b := range ranks {
+	for b := range kept {
 		for a := range b {
-			if r := stat.Correlation(ranks[a], ranks[b], nil); math.Abs(r) >= together {
-				out = append(out, TradeOff{a, b, r})
+			r, all := stat.Correlation(ofKept[a], ofKept[b], nil), stat.Correlation(ofDrawn[a], ofDrawn[b], nil)
+			if math.IsNaN(all) { // one of them is always the same
+				all = 0
+			}
+			if math.Abs(r) >= together && math.Abs(math.Atanh(r)-math.Atanh(all)) >= math.Atanh(together) {
+				out = append(out, TradeOff{a, b, r, all})
 			}
 		}
 	}
 	slices.SortStableFunc(out, func(x, y TradeOff) int { return cmp.Compare(math.Abs(y.Rank), math.Abs(x.Rank)) })
 	return out
+}
+
+func allRanks(values [][]float64) [][]float64 {
+	ranks := make([][]float64, len(values))
+	for k := range ranks {
+		ranks[k] = ranksOf(values[k])
+	}
+	return ranks
 }
 
 // ranksOf are the ranks of numbers, equal ones sharing their mean.

@@ -58,9 +58,10 @@ type familyBar struct {
 }
 
 type familyTrade struct {
-	A    string  `json:"a"`
-	B    string  `json:"b"`
-	Rank float64 `json:"rank_correlation"`
+	A     string  `json:"a"`
+	B     string  `json:"b"`
+	Rank  float64 `json:"rank_correlation"`
+	Drawn float64 `json:"rank_correlation_drawn"`
 }
 
 type familyAbove struct {
@@ -131,7 +132,7 @@ func summariseFamily(r *paths.Result, f *paths.FamilyResult) weighedFamily {
 		out.Barred = append(out.Barred, familyBar{b.Words, b.Count, b.First, b.Why})
 	}
 	for _, t := range s.TradeOffs {
-		out.Trade = append(out.Trade, familyTrade{f.Family.Values[t.A].Name, f.Family.Values[t.B].Name, t.Rank})
+		out.Trade = append(out.Trade, familyTrade{f.Family.Values[t.A].Name, f.Family.Values[t.B].Name, t.Rank, t.Drawn})
 	}
 	for k, q := range s.Above {
 		t := &r.Study.Thresholds[k]
