@@ -170,3 +170,22 @@ func kernelRatio(plan *Plan, dst []Field, jobs []Job, rounds int) float64 {
 	slices.Sort(ratios)
 	return ratios[rounds/2]
 }
+
+// BenchmarkCoupledFirst is the first path of a plan in a zoned host, with the plan and all that is made when first asked for.
+func BenchmarkCoupledFirst(b *testing.B) {
+	h := benchWake(b)
+	p := zonedTrace(h)
+	first := func() {
+		plan := newPlan(b, p, fewSteps())
+		jobs := []Job{{Course: newCourse(b, plan, h)}}
+		if err := plan.Run(make([]Field, 1), jobs); err != nil {
+			b.Fatal(err)
+		}
+	}
+	b.ReportAllocs()
+	for b.Loop() {
+		first()
+	}
+	b.ReportMetric(yardstick.Steps(func() { newPlan(b, p, fewSteps()) }, 0), "reference-steps/plan")
+	b.ReportMetric(yardstick.Steps(first, 0), "reference-steps/path")
+}

@@ -33,8 +33,9 @@ func (w *newton) layBridges(p *Plan, op *operator, temp float64) {
 			continue
 		}
 		inside, outside := lnK(h.atFaces[2*a+1], temp)-unit, lnK(h.atFaces[2*b], temp)-unit
-		ra := h.half[2*a+1] * meanInverse(lnK(h.x[a], temp)-unit, inside)
-		rb := h.half[2*b] * meanInverse(lnK(h.x[b], temp)-unit, outside)
+		left, right := lnK(h.x[a], temp)-unit, lnK(h.x[b], temp)-unit
+		ra := h.half[2*a+1] * meanInverse(math.Exp(-left), left, inside)
+		rb := h.half[2*b] * meanInverse(math.Exp(-right), right, outside)
 		w.bridges = append(w.bridges, bridge{b, ra / (ra + rb), math.Exp(inside), math.Exp(outside)})
 	}
 }

@@ -62,6 +62,11 @@ func (p *Problem) layHost(g *grid) *hostGrid {
 		half: make([]float64, 2*n), x: make([]float64, n),
 		atFaces: make([]float64, 2*n),
 	}
+	inner := 0.0 // what the host adds at the inner face of the cell in hand
+	if p.Host != nil {
+		inner = p.Host(g.faces[0])
+		h.addInside(p, g)
+	}
 	for i := range n {
 		a, b := g.faces[i], g.faces[i+1]
 		h.half[2*i], h.half[2*i+1] = math.Inf(1), p.halfCell(b, a)
@@ -72,26 +77,31 @@ func (p *Problem) layHost(g *grid) *hostGrid {
 		h.x[i], h.atFaces[2*i], h.atFaces[2*i+1] = zone, zone, zone
 		if p.Host != nil {
 			h.x[i] += p.Host(g.centres[i])
-			h.atFaces[2*i] += p.Host(a)
-			h.atFaces[2*i+1] += p.Host(b)
-			h.addInside(p, zone, a, b)
+			h.atFaces[2*i] += inner
+			inner = p.Host(b)
+			h.atFaces[2*i+1] += inner
 		}
 	}
 	h.layPanels(p.LnK)
 	return h
 }
 
-// addInside adds the compositions inside a cell from a to b of a zone, at the places
-// over which the means of a start are taken too: so one that is proportional to K is at
-// rest to round-off. The middle for the mean would be of second order, a parabola of
-// fourth, but an element at rest would be off by it for ever.
-func (h *hostGrid) addInside(p *Problem, zone, a, b float64) {
+// addInside adds the compositions inside each cell, at the places over which the means
+// of a start are taken too: so one that is proportional to K is at rest to round-off.
+// The middle for the mean would be of second order, a parabola of fourth, but an element
+// at rest would be off by it for ever.
+func (h *hostGrid) addInside(p *Problem, g *grid) {
 	var at, weight [profilePoints]float64
-	quad.Legendre{}.FixedLocations(at[:], weight[:], a, b)
-	whole := volume(p.Shape, a, b)
-	for q, r := range at {
-		h.inside = append(h.inside, zone+p.Host(r))
-		h.weights = append(h.weights, weight[q]*math.Pow(r, float64(p.Shape))/whole)
+	quad.Legendre{}.FixedLocations(at[:], weight[:], 0, 1)
+	h.inside, h.weights = make([]float64, 0, len(g.centres)*profilePoints), make([]float64, 0, len(g.centres)*profilePoints)
+	for i, centre := range g.centres {
+		a, b := g.faces[i], g.faces[i+1]
+		zone, perVolume := p.Zones[p.zone(centre)].Host, (b-a)/volume(p.Shape, a, b)
+		for q, x := range at {
+			r := a + (b-a)*x
+			h.inside = append(h.inside, zone+p.Host(r))
+			h.weights = append(h.weights, weight[q]*p.Shape.area(r)*perVolume)
+		}
 	}
 }
 
@@ -130,33 +140,46 @@ func (h *hostGrid) evaluate(dst []float64, lnK func(x, temp float64) float64, te
 	n := len(h.x)
 	k, cond, ends := dst[:n], dst[n:2*n+1], dst[2*n+1:]
 	unit := lnK(h.x[n/2], temp)
-	inside := math.Inf(1) // resistance of the half cell inside the face in hand
+	inside, outer := math.Inf(1), math.NaN() // resistance of the half cell inside the face in hand, and ln K there
 	for i, x := range h.x {
-		inner, here, outer := lnK(h.atFaces[2*i], temp)-unit, lnK(x, temp)-unit, lnK(h.atFaces[2*i+1], temp)-unit
-		kInner, kOuter := math.Exp(inner), math.Exp(outer)
-		k[i] = math.Exp(here)
-		if h.inside != nil {
-			k[i] = h.meanK(i, func(x float64) float64 { return lnK(x, temp) - unit })
+		inner, middle := outer, lnK(x, temp)
+		here := middle - unit
+		if i == 0 || h.atFaces[2*i] != h.atFaces[2*i-1] {
+			inner = lnK(h.atFaces[2*i], temp) - unit
 		}
-		r := h.half[2*i] * meanInverse(here, inner)
+		outer = lnK(h.atFaces[2*i+1], temp) - unit
+		k[i] = math.Exp(here)
+		inverse := 1 / k[i]
+		if h.inside != nil {
+			k[i] *= h.meanK(i, lnK, temp, middle)
+		}
+		r := h.half[2*i] * meanInverse(inverse, here, inner)
 		if i == 0 {
-			ends[0], cond[0] = kInner, 1/r
+			ends[0], cond[0] = math.Exp(inner), 1/r
 		} else {
 			cond[i] = 1 / (inside + r)
 		}
-		inside = h.half[2*i+1] * meanInverse(here, outer)
-		ends[1] = kOuter
+		inside = h.half[2*i+1] * meanInverse(inverse, here, outer)
 	}
-	cond[n] = 1 / inside
+	ends[1], cond[n] = math.Exp(outer), 1/inside
 }
 
-// meanK returns the mean of K over cell i.
-func (h *hostGrid) meanK(i int, lnK func(x float64) float64) float64 {
+// meanK returns the mean of K over cell i in units of the K whose logarithm is unit.
+func (h *hostGrid) meanK(i int, lnK func(x, temp float64) float64, temp, unit float64) float64 {
 	sum := 0.0
-	for q := i * profilePoints; q < (i+1)*profilePoints; q++ {
-		sum += float64(h.weights[q] * math.Exp(lnK(h.inside[q])))
+	inside, weights := h.inside[i*profilePoints:][:profilePoints], h.weights[i*profilePoints:][:profilePoints]
+	for q, x := range inside {
+		sum += float64(weights[q] * expNear(lnK(x, temp)-unit))
 	}
 	return sum
+}
+
+// expNear is exp(x), as its series near 0.
+func expNear(x float64) float64 {
+	if math.Abs(x) < evenK {
+		return 1 + x*(1+x/2*(1+x/3*(1+x/4)))
+	}
+	return math.Exp(x)
 }
 
 // end returns, as evaluate does of all cells, K at the outer end of the first n and
@@ -164,23 +187,24 @@ func (h *hostGrid) meanK(i int, lnK func(x float64) float64) float64 {
 func (h *hostGrid) end(lnK func(x, temp float64) float64, temp float64, n int) (k, cond float64) {
 	unit := lnK(h.x[len(h.x)/2], temp)
 	here, outer := lnK(h.x[n-1], temp)-unit, lnK(h.atFaces[2*n-1], temp)-unit
-	return math.Exp(outer), 1 / (h.half[2*n-1] * meanInverse(here, outer))
+	return math.Exp(outer), 1 / (h.half[2*n-1] * meanInverse(math.Exp(-here), here, outer))
 }
 
-// meanInverse returns the mean of 1/K over a stretch along which ln K goes
-// evenly from a to b,
+// meanInverse returns the mean of 1/K over a stretch along which ln K goes evenly
+// from a, where 1/K is inverse, to b,
 //
-//	exp(-(a+b)/2) sinh(h)/h,  h = (b-a)/2.
-func meanInverse(a, b float64) float64 {
+//	exp(-(a+b)/2) sinh(h)/h,  h = (b-a)/2,
+//
+// which is inverse (1 - exp(-2h))/(2h).
+func meanInverse(inverse, a, b float64) float64 {
 	h := (b - a) / 2
-	mean := math.Exp(-(a + b) / 2)
 	if math.Abs(h) < evenK {
-		return mean * (1 + h*h/6)
+		return inverse * (1 - h*(1-h*2/3*(1-h/2*(1-h*2/5))))
 	}
-	return mean * math.Sinh(h) / h
+	return math.Exp(-(a+b)/2) * math.Sinh(h) / h
 }
 
-// evenK is the change of ln K below which sinh(h)/h is its series to round-off.
+// evenK is the change of ln K below which the series of exp(h), and of what is made of it, have round-off with so few terms.
 const evenK = 1e-3
 
 // panel holds what evaluate gives over a range of 1/T, as polynomials that are
@@ -358,10 +382,14 @@ func same(a, b []float64) bool {
 
 // add takes in the values at node j.
 func (at *panel) add(j int, values []float64) {
+	var per [panelNodes]float64 // over the distances of the nodes
+	for m := range j {
+		per[m] = 1 / (at.nodes[j] - at.nodes[m])
+	}
 	for i, v := range values {
 		form := at.form(i)
-		for m := range j { // v becomes the divided difference of nodes 0 to m and j
-			v = (v - form[m]) / (at.nodes[j] - at.nodes[m])
+		for m, was := range form[:j] { // v becomes the divided difference of nodes 0 to m and j
+			v = float64((v - was) * per[m])
 		}
 		form[j] = v
 	}
@@ -394,11 +422,8 @@ func (at *panel) read(dst []float64, coldness float64) {
 	}
 	for i := range at.long {
 		f := &at.long[i]
-		v := f[panelNodes-1]
-		for j := panelNodes - 2; j >= 0; j-- {
-			v = f[j] + float64(v*d[j])
-		}
-		dst[i] = v
+		v := f[4] + float64((f[5]+float64((f[6]+float64(f[7]*d[6]))*d[5]))*d[4])
+		dst[i] = f[0] + float64((f[1]+float64((f[2]+float64((f[3]+float64(v*d[3]))*d[2]))*d[1]))*d[0])
 	}
 }
 

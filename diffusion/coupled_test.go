@@ -743,3 +743,20 @@ func BenchmarkCoupled(b *testing.B) {
 		})
 	}
 }
+
+// TestSeriesOfK: the mean of 1/K over a stretch and K near another are those of Expm1 on both sides of where their series begin.
+func TestSeriesOfK(t *testing.T) {
+	const roundOff = 1e-15 // a few units in the last place
+	const a = 0.7
+	for _, h := range []float64{1e-9, evenK / 3, evenK * 0.999, evenK * 1.001, 0.05, 2} {
+		for _, h := range []float64{h, -h} {
+			want := -math.Expm1(-2*h) / (2 * h) * math.Exp(-a)
+			if got := meanInverse(math.Exp(-a), a, a+2*h); !(math.Abs(got/want-1) <= roundOff) {
+				t.Errorf("half a change of %g: the mean of 1/K is off by %.2g of itself", h, got/want-1)
+			}
+			if want := 1 + math.Expm1(h); !(math.Abs(expNear(h)/want-1) <= roundOff) {
+				t.Errorf("change of %g: K is off by %.2g of itself", h, expNear(h)/want-1)
+			}
+		}
+	}
+}
