@@ -71,7 +71,8 @@ func TestLargeFamily(t *testing.T) {
 	}); err != nil {
 		t.Fatal(err)
 	}
-	if grown := int64(heap[40]) - int64(heap[8]); grown > 1<<20 {
+	// kept, they would take 19 MB; of the blocks in work, half a megabyte each, sometimes one more is counted
+	if grown := int64(heap[40]) - int64(heap[8]); grown > 4<<20 {
 		t.Errorf("32 blocks more take %d bytes", grown)
 	}
 	r, err := sc.Finish(t.Context(), tallies)
