@@ -178,6 +178,7 @@ func (cr *crew) operator(i, n, k int) *operator {
 			return cr.ops[b]
 		}
 	}
+	cr.dst[k].op.place = k
 	return cr.dst[k].couple(cr.plan, cr.stage, 1/cr.jobs[k].Course.spans[i].coldness.fine[n])
 }
 
