@@ -92,6 +92,9 @@ func upTo(hi float64) study.Nuisance { return study.Nuisance{Lo: 0, Hi: hi} }
 // Boundaries of 6 and 2 um, known or found, after diffusion: each is the error function
 // of its own width, and its plateaux and width come out of data without noise.
 func TestEachBoundaryHasItsWidth(t *testing.T) {
+	if underRace {
+		t.Skip("other tests see what runs side by side")
+	}
 	const (
 		numerical = 0.05 // chi-square of 141 points: errors within a tenth of sigma, most of them far less
 		found     = 0.05 // um
