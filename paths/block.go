@@ -4,10 +4,50 @@ import (
 	"cmp"
 	"math"
 	"slices"
+
+	"bankfire/paths/study"
 )
 
 // BlockSize is how many members a block has, but for the last of a family.
 const BlockSize = 4096
+
+// Blocks is how many blocks the families of a study have together, those of each in turn.
+func Blocks(s *study.Study) int64 {
+	var n int64
+	for i := range s.Families {
+		n += blocksOf(s.Families[i].Count())
+	}
+	return n
+}
+
+// blocksOf is how many blocks so many members are.
+func blocksOf(members int64) int64 { return (members + BlockSize - 1) / BlockSize }
+
+// MembersOf says which members a block has: those of the family from the first to the one
+// before the last. A block beyond all has none, of no family.
+func MembersOf(s *study.Study, block int64) (family int, from, to int64) {
+	for i := range s.Families {
+		n := s.Families[i].Count()
+		if blocks := blocksOf(n); block >= blocks {
+			block -= blocks
+			continue
+		}
+		return i, block * BlockSize, min((block+1)*BlockSize, n)
+	}
+	return -1, 0, 0
+}
+
+// MembersIn is how many members the blocks from ... to-1 have.
+func MembersIn(s *study.Study, from, to int64) int64 {
+	all := int64(0)
+	for i := range s.Families {
+		n := s.Families[i].Count()
+		until := func(block int64) int64 { return min(max(block, 0)*BlockSize, n) }
+		all += until(to) - until(from)
+		from, to = from-blocksOf(n), to-blocksOf(n)
+	}
+	return all
+}
 
 // Block is the members of a family from one number on, screened: the tally of all, and
 // the rows of those that are kept, by their index.

@@ -140,14 +140,14 @@ func (e *engine) reached(first *study.Path) [][2]float64 {
 }
 
 // lnG is the logarithm of the diffusion integral of element n along a path, m2.
-func (e *engine) lnG(n int, path *study.Path) float64 {
-	h := e.seen(n, path)
-	return e.elements[n].element.Law.Law.LnIntegral(h, 0, h.Life())
+func (w *weighing) lnG(n int, path *study.Path) float64 {
+	h := w.seen(n, path)
+	return w.elements[n].element.Law.Law.LnIntegral(h, 0, h.Life())
 }
 
 // seen is what the crystal of element n sees of a path that is not barred.
-func (e *engine) seen(n int, path *study.Path) *thermal.History {
-	if c := path.Crystal(e.elements[n].crystal); c.Exists != nil {
+func (w *weighing) seen(n int, path *study.Path) *thermal.History {
+	if c := path.Crystal(w.elements[n].crystal); c.Exists != nil {
 		if h, err := c.Sees(path.History); err == nil {
 			return h
 		}
@@ -274,7 +274,8 @@ func (e *engine) draw(c *study.Candidate, m *member) bool {
 
 // look judges a member by the tables.
 func (e *engine) look(c *study.Candidate, m *member, d *desk) error {
-	lnG := e.integrals(d, c)
+	d.lnG = e.integrals(d.lnG[:0], c)
+	lnG := d.lnG
 	if len(e.tables) == 1 {
 		f := e.tables[0].find(lnG[0], e.study.Confidence)
 		e.found(m, &f, c, lnG)
@@ -293,14 +294,13 @@ func (e *engine) look(c *study.Candidate, m *member, d *desk) error {
 	return nil
 }
 
-// integrals are ln G of each element along the member, in memory of the desk's.
-func (e *engine) integrals(d *desk, c *study.Candidate) []float64 {
-	d.lnG = d.lnG[:0]
+// integrals appends ln G of each element along a member to dst.
+func (w *weighing) integrals(dst []float64, c *study.Candidate) []float64 {
 	path := study.Path{History: &c.History, Crystals: c.Crystals}
-	for n := range e.elements {
-		d.lnG = append(d.lnG, e.lnG(n, &path))
+	for n := range w.elements {
+		dst = append(dst, w.lnG(n, &path))
 	}
-	return d.lnG
+	return dst
 }
 
 // found notes what was found of the member.

@@ -7,7 +7,6 @@ import (
 
 	"gonum.org/v1/gonum/stat"
 
-	"bankfire/paths/draw"
 	"bankfire/paths/study"
 	"bankfire/thermal"
 )
@@ -58,10 +57,9 @@ func (e *engine) readSample(sample []int64) *sampled {
 // drawn are the values of members of which each is as likely, one list a value.
 func (e *engine) drawn() [][]float64 {
 	values := make([][]float64, len(e.family.Values))
-	count := e.family.Count()
 	var c study.Candidate
-	for k := range uint64(min(count, mostSampled)) {
-		e.family.At(&c, int64(draw.SplitMix(0, k)%uint64(count)))
+	for _, i := range e.anyOf(mostSampled) {
+		e.family.At(&c, i)
 		for v, x := range c.Values {
 			values[v] = append(values[v], x)
 		}

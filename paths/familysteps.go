@@ -23,17 +23,17 @@ func (e *engine) run(ctx context.Context, d *desk, members []member) error {
 			continue
 		}
 		path := c.Path()
-		lnG := e.integrals(d, c)
+		d.lnG = e.integrals(d.lnG[:0], c)
 		var f Finding
 		if r == nil {
 			f, m.numErr, err = e.weighed(ctx, &path)
 		} else {
-			f, m.numErr, err = r.judge(ctx, &path, m.Index, lnG, e.keep.verdict)
+			f, m.numErr, err = r.judge(ctx, &path, m.Index, d.lnG, e.keep.verdict)
 		}
 		if err != nil {
 			return err
 		}
-		e.found(m, &f, c, lnG)
+		e.found(m, &f, c, d.lnG)
 	}
 	return nil
 }

@@ -26,7 +26,6 @@ type Screening struct {
 	weighing *weighing
 	options  ScreenOptions
 	engines  []*engine // one a family
-	starts   []int64   // the first block of each family, and the end of the last
 	done     atomic.Int64
 }
 
@@ -54,7 +53,7 @@ func NewScreening(ctx context.Context, s *study.Study, o ScreenOptions) (*Screen
 	if err := w.findScatter(ctx, firsts, o.Jobs); err != nil {
 		return nil, err
 	}
-	out := &Screening{weighing: w, options: o, starts: []int64{0}}
+	out := &Screening{weighing: w, options: o}
 	for i := range firsts {
 		f := &w.study.Families[i]
 		e, err := w.engine(ctx, f, firsts[i], o.Method, o.Keep)
@@ -62,24 +61,12 @@ func NewScreening(ctx context.Context, s *study.Study, o ScreenOptions) (*Screen
 			return nil, err
 		}
 		out.engines = append(out.engines, e)
-		out.starts = append(out.starts, out.starts[i]+blocksOf(f))
 	}
 	return out, nil
 }
 
-// Blocks is how many blocks the families of a study have together.
-func Blocks(s *study.Study) int64 {
-	var n int64
-	for i := range s.Families {
-		n += blocksOf(&s.Families[i])
-	}
-	return n
-}
-
-func blocksOf(f *study.Family) int64 { return (f.Count() + BlockSize - 1) / BlockSize }
-
 // Blocks is how many blocks all families have together, those of each in turn.
-func (s *Screening) Blocks() int64 { return s.starts[len(s.starts)-1] }
+func (s *Screening) Blocks() int64 { return Blocks(s.weighing.study) }
 
 // Done is how many members have been screened so far. Any goroutine may ask.
 func (s *Screening) Done() int64 { return s.done.Load() }
@@ -240,13 +227,8 @@ func (l *line) start(ctx context.Context, from, to int64, jobs int) {
 
 // open makes w block k.
 func (l *line) open(w *work, k int64) {
-	family := 0
-	for l.starts[family+1] <= k {
-		family++
-	}
-	e := l.engines[family]
-	from := (k - l.starts[family]) * BlockSize
-	w.begin(e, &Block{Number: k, Family: family, From: from}, int(min(BlockSize, e.family.Count()-from)))
+	family, from, to := MembersOf(l.weighing.study, k)
+	w.begin(l.engines[family], &Block{Number: k, Family: family, From: from}, int(to-from))
 }
 
 // work is a block in the course of being screened, in memory that is used again.

@@ -90,7 +90,7 @@ func (w *weighing) auditedFirst(f *study.Family) []int64 {
 		i := k * f.Count() / n
 		f.At(&c, i)
 		if w.study.Bar(&c); c.Barred == "" {
-			all = append(all, drawn{i, w.elements[0].element.Law.Law.LnIntegral(&c.History, 0, c.History.Life())})
+			all = append(all, drawn{i, w.lnG(0, &study.Path{History: &c.History, Crystals: c.Crystals})})
 		}
 	}
 	if len(all) == 0 {
@@ -112,7 +112,7 @@ func (s *stepping) try(ctx context.Context, f *study.Family, i int64) (trial, er
 	f.At(&c, i)
 	path := c.Path()
 	t := trial{index: i}
-	lnG := s.integrals(&c, nil)
+	lnG := s.integrals(nil, &c)
 	for n := range s.elements {
 		if of := s.tables[n]; of != nil {
 			t.exact = append(t.exact, of.on(lnG[n]))
@@ -142,7 +142,7 @@ func (s *stepping) compare(ctx context.Context, f *study.Family, trials []trial)
 	for _, t := range trials {
 		f.At(&c, t.index)
 		path := c.Path()
-		cs, _, err := r.lay(ctx, r.quick, &path, s.integrals(&c, nil))
+		cs, _, err := r.lay(ctx, r.quick, &path, s.integrals(nil, &c))
 		if err != nil {
 			return 0, err
 		}
@@ -169,14 +169,6 @@ func (s *stepping) apart(quick, exact *Curve) slack {
 		worst = math.Max(worst, math.Abs(a-b)/(1+math.Abs(b-level)))
 	}
 	return slack(worst)
-}
-
-// integrals appends the logarithms of the diffusion integrals of all elements along a member.
-func (s *stepping) integrals(c *study.Candidate, dst []float64) []float64 {
-	for n := range s.elements {
-		dst = append(dst, s.elements[n].element.Law.Law.LnIntegral(&c.History, 0, c.History.Life()))
-	}
-	return dst
 }
 
 // runner runs members, one after the other, in memory of its own.

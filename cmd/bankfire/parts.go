@@ -77,7 +77,7 @@ func (p *parts) check(b *paths.Block, data []byte, number int64) error {
 	if err := b.UnmarshalBinary(data); err != nil {
 		return fmt.Errorf("%w: %w", journal.ErrForeign, err)
 	}
-	family, from, to := membersOf(p.study, number)
+	family, from, to := paths.MembersOf(p.study, number)
 	last := from - 1
 	if n := len(b.Rows); n > 0 {
 		last = b.Rows[n-1].Index
@@ -86,33 +86,6 @@ func (p *parts) check(b *paths.Block, data []byte, number int64) error {
 		return fmt.Errorf("%w: block %d is another one", journal.ErrForeign, number)
 	}
 	return nil
-}
-
-// membersOf says which members a block has: those of the family from the first to the one
-// before the last. A block beyond all has none, of no family.
-func membersOf(s *study.Study, block int64) (family int, from, to int64) {
-	for i := range s.Families {
-		n := s.Families[i].Count()
-		if blocks := (n + paths.BlockSize - 1) / paths.BlockSize; block >= blocks {
-			block -= blocks
-			continue
-		}
-		return i, block * paths.BlockSize, min((block+1)*paths.BlockSize, n)
-	}
-	return -1, 0, 0
-}
-
-// membersIn is how many members the blocks from ... to-1 have.
-func membersIn(s *study.Study, from, to int64) int64 {
-	all := int64(0)
-	for i := range s.Families {
-		n := s.Families[i].Count()
-		blocks := (n + paths.BlockSize - 1) / paths.BlockSize
-		until := func(block int64) int64 { return min(max(block, 0)*paths.BlockSize, n) }
-		all += until(to) - until(from)
-		from, to = from-blocks, to-blocks
-	}
-	return all
 }
 
 // tallies adds up the tallies of each family, and finds the last rows to be kept.

@@ -152,7 +152,7 @@ func (o *weigh) withoutParts(ctx context.Context, s streams, st *study.Study, p 
 		return err
 	}
 	tallies := make([]paths.Tally, len(st.Families))
-	shown := o.show(s.err, membersIn(st, 0, screening.Blocks()), screening.Done)
+	shown := o.show(s.err, paths.MembersIn(st, 0, screening.Blocks()), screening.Done)
 	err = screening.Screen(ctx, 0, screening.Blocks(), func(b *paths.Block) error {
 		tallies[b.Family].Add(&b.Tally)
 		return nil
@@ -202,7 +202,7 @@ func (o *weigh) inParts(ctx context.Context, s streams, st *study.Study, p *plan
 // screen screens the blocks that the part does not have yet, and says so if it has some.
 func (o *weigh) screen(ctx context.Context, s streams, st *study.Study, p *plan, part *part) (*paths.Screening, error) {
 	h, next := part.journal.Header(), part.journal.Next()
-	all, there := membersIn(st, h.From, h.To), membersIn(st, h.From, next)
+	all, there := paths.MembersIn(st, h.From, h.To), paths.MembersIn(st, h.From, next)
 	if part.begun {
 		o.say(s.err, "%s: %d of %s are there already%s", part.name, there, counted(all, "member"), lostText(part.lost))
 	}
@@ -255,7 +255,7 @@ func (o *weigh) goOn(err error, st *study.Study, part *part) error {
 		return err
 	}
 	if errors.Is(err, context.Canceled) {
-		err = fmt.Errorf("interrupted after %d of %s", membersIn(st, h.From, next), counted(membersIn(st, h.From, h.To), "member"))
+		err = fmt.Errorf("interrupted after %d of %s", paths.MembersIn(st, h.From, next), counted(paths.MembersIn(st, h.From, h.To), "member"))
 	}
 	return hinted{err, fmt.Sprintf("the same command with --resume goes on; bankfire gather %s --partial --out DIR shows what there is",
 		commandLine([]string{st.File, part.dir}))}
@@ -268,7 +268,7 @@ func (o *weigh) saySo(w io.Writer, st *study.Study, part *part) error {
 	}
 	h := part.journal.Header()
 	_, err := fmt.Fprintf(w, "part %d of %d, %s, is written to %s; when all parts are: bankfire gather %s\n", h.Part, h.Parts,
-		counted(membersIn(st, h.From, h.To), "member"), part.name, commandLine([]string{st.File, part.dir, "--out", o.out}))
+		counted(paths.MembersIn(st, h.From, h.To), "member"), part.name, commandLine([]string{st.File, part.dir, "--out", o.out}))
 	return err
 }
 
