@@ -66,12 +66,7 @@ func DrawFamily(w io.Writer, f *Family) error {
 	if err != nil {
 		return err
 	}
-	page, err := encode(paint(d))
-	if err != nil {
-		return fmt.Errorf("figure: %w", err)
-	}
-	_, err = w.Write(page)
-	return err
+	return d.writePNG(w)
 }
 
 // Measures of the page of a family in printer's points.

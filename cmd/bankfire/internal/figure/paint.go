@@ -3,10 +3,12 @@ package figure
 import (
 	"bytes"
 	"encoding/binary"
+	"fmt"
 	"hash/crc32"
 	"image"
 	"image/color"
 	"image/png"
+	"io"
 	"math"
 
 	"github.com/fogleman/gg"
@@ -139,4 +141,14 @@ func paperSize() []byte {
 	chunk := binary.BigEndian.AppendUint32(nil, 9)
 	chunk = append(chunk, body...)
 	return binary.BigEndian.AppendUint32(chunk, crc32.ChecksumIEEE(body))
+}
+
+// writePNG paints the drawing and writes it to w.
+func (d *drawing) writePNG(w io.Writer) error {
+	page, err := encode(paint(d))
+	if err != nil {
+		return fmt.Errorf("figure: %w", err)
+	}
+	_, err = w.Write(page)
+	return err
 }

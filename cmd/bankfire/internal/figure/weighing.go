@@ -75,12 +75,7 @@ func Draw(w io.Writer, f *Weighing) error {
 	if err != nil {
 		return err
 	}
-	page, err := encode(paint(d))
-	if err != nil {
-		return fmt.Errorf("figure: %w", err)
-	}
-	_, err = w.Write(page)
-	return err
+	return d.writePNG(w)
 }
 
 // compose checks the data and lays the whole figure out.
