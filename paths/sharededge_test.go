@@ -84,27 +84,10 @@ func plateauxFitted(e *study.Element, deviation float64) float64 {
 	return yy - p*ya - q*yb
 }
 
-// edgesOf compares growth and diffusion without weighing the path.
+// edgesOf is boundariesOf of crystals with one width of their edges.
 func edgesOf(t *testing.T, s *study.Study) EdgeOrigin {
 	t.Helper()
-	w, err := newWeighing(s)
-	if err != nil {
-		t.Fatal(err)
-	}
-	w.paths = make([]weighedPath, 1)
-	p := &w.paths[0]
-	for i := range w.elements {
-		q, err := newProfile(&w.elements[i], &s.Paths[0], 0)
-		if err != nil {
-			t.Fatal(err)
-		}
-		q.points, q.counted = len(q.fit.Obs), len(q.free)
-		p.profiles = append(p.profiles, q)
-	}
-	if err := p.edgeOrigins(t.Context(), w, &s.Paths[0]); err != nil {
-		t.Fatal(err)
-	}
-	return w.judgeEdges()[0]
+	return boundariesOf(t, s)[0]
 }
 
 // Of two elements with D 100 times apart, a planted growth edge is told from diffusion,

@@ -19,9 +19,9 @@ import (
 // among the results of STUDY.toml, at half its size.
 var shownFigure = regexp.MustCompile(`\((study|[a-z-]+?)-((?:weigh|family)(?:-\d+)?\.png)\)`)
 
-// allowedShade is by how much the shades of figures may differ in the mean, of 255:
-// round-off on another processor moves a line by a fraction of a pixel, while one curve
-// more or less is some hundredths.
+// allowedShade is by how much the shades of figures may differ in the mean, of 255: on
+// another processor round-off may move a line by a fraction of a pixel. A path of four
+// that is one degree hotter makes 0.2.
 const allowedShade = 0.01
 
 // TestDocFigures draws every figure that a README file of an example shows, and compares.

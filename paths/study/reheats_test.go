@@ -211,19 +211,7 @@ func TestReheatsArePure(t *testing.T) {
 }
 
 func TestReheatsDoNotAllocate(t *testing.T) {
-	s := wakesStudy(t, wakesLeg, "", 3000)
-	var c Candidate
-	for i := range s.Families[0].Count() {
-		s.Families[0].At(&c, i)
-	}
-	i := int64(0)
-	if n := testing.AllocsPerRun(1000, func() {
-		s.Families[0].At(&c, i)
-		s.Bar(&c)
-		i++
-	}); n != 0 {
-		t.Errorf("%v allocations a member", n)
-	}
+	membersDoNotAllocate(t, wakesStudy(t, wakesLeg, "", 3000))
 }
 
 // TestBarredReheats: values with which no reheats can be drawn.
